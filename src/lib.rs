@@ -1,0 +1,11 @@
+//! Special functions and uniform asymptotics near coalescing saddle points.
+#![forbid(unsafe_code)]
+#![deny(missing_docs)]
+
+mod error;
+mod scaled;
+pub mod special;
+
+pub use error::Error;
+pub use num_complex::{self, Complex64};
+pub use scaled::Scaled;

@@ -1,0 +1,3 @@
+//! Functions of numbers: the ground floor, which knows no phases.
+
+pub mod airy;
