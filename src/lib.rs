@@ -3,9 +3,13 @@
 #![deny(missing_docs)]
 
 mod error;
+mod estimate;
+pub mod integral;
 mod scaled;
 pub mod special;
 
 pub use error::Error;
+pub use estimate::{Estimate, Form};
+pub use integral::{Contour, Integral, Phase};
 pub use num_complex::{self, Complex64};
 pub use scaled::Scaled;
