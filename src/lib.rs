@@ -5,6 +5,7 @@
 mod error;
 mod estimate;
 pub mod integral;
+pub mod ring;
 mod scaled;
 pub mod special;
 
