@@ -5,6 +5,7 @@
 mod error;
 mod estimate;
 pub mod integral;
+mod quadrature;
 mod scaled;
 pub mod special;
 
