@@ -7,6 +7,7 @@ mod estimate;
 mod expansion;
 pub mod field;
 pub mod integral;
+mod quadrature;
 pub mod ring;
 pub mod saddles;
 mod scaled;
