@@ -111,7 +111,7 @@ fn attempt(
         }
     }
 
-    let tree = Tree::new(&saddles, LARGEST_CLUSTER);
+    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
