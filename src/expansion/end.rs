@@ -15,6 +15,7 @@
 use super::figure::Parts;
 use super::incomplete::incomplete;
 use super::series::{Contribution, Series};
+use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::Phase;
 use crate::ring::{MAX_ORDERS, NormalForm};
@@ -83,7 +84,9 @@ impl NearEnd {
         let mut best: Option<(usize, usize, f64, _)> = None;
         for (index, boundary) in self.boundaries.iter().enumerate() {
             let ring = &series.rings()[boundary.ring];
-            let Some(moments) = incomplete(&ring.form, boundary.u, boundary.valley, k) else {
+            let Some(moments) =
+                incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k)
+            else {
                 continue;
             };
             let mut parts = Parts::of_ring(ring, &moments.map(|c| c.norm()), k, orders);

@@ -11,7 +11,8 @@
 //! Source: the rule's nodes are the zeros of P_20 (DLMF 18.3, 3.5(v)).
 
 use super::canonical::Moments;
-use crate::ring::{MAX_SADDLES, NormalForm, ZERO};
+use super::unfolding::Unfolding;
+use crate::ring::{MAX_SADDLES, ZERO};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
 use std::f64::consts::PI;
@@ -35,50 +36,16 @@ const STEPS: usize = 60;
 /// Where the integrand is below rounding.
 const FLOOR: f64 = 42.0;
 
-/// `Phi` as a polynomial in `u` without constant term: coefficients of `u^0 .. u^D`.
-pub(crate) struct Unfolding {
-    c: [Complex64; MAX_SADDLES + 2],
-    degree: usize,
-}
-
-impl Unfolding {
-    pub fn new(form: &NormalForm) -> Unfolding {
-        let degree = form.degree();
-        let mut c = [ZERO; MAX_SADDLES + 2];
-        for j in 1..form.saddles() {
-            c[j] = form.x(j);
-        }
-        c[degree] += 1.0;
-        Unfolding { c, degree }
-    }
-
-    /// Taylor coefficients of `Phi` about `u`.
-    fn about(&self, u: Complex64) -> [Complex64; MAX_SADDLES + 2] {
-        let mut t = self.c;
-        for start in 0..self.degree {
-            for j in (start..self.degree).rev() {
-                t[j] = t[j] + t[j + 1] * u;
-            }
-        }
-        t
-    }
-
-    pub fn value(&self, u: Complex64) -> Complex64 {
-        crate::ring::evaluate(&self.c[..=self.degree], u)
-    }
-}
-
 /// Moments `J_0 .. J_K` from `u_e` into the valley, without the factor `exp(i k Phi(u_e))`; None if
 /// the descent does not arrive.
 pub(crate) fn incomplete(
-    form: &NormalForm,
+    phi: &Unfolding,
     u_e: Complex64,
     valley: usize,
     k: f64,
 ) -> Option<[Complex64; MAX_SADDLES]> {
-    let phi = Unfolding::new(form);
-    let count = form.saddles();
-    let degree = form.degree();
+    let degree = phi.degree();
+    let count = degree - 1;
     let ik = Complex64::new(0.0, k);
     let mut sum = [ZERO; MAX_SADDLES];
     let mut u = u_e;
@@ -116,7 +83,7 @@ pub(crate) fn incomplete(
     for _ in 0..STEPS {
         let lead = at.norm().powi(degree as i32 - 1) * degree as f64;
         let rest: f64 =
-            (1..count).map(|j| j as f64 * form.x(j).norm() * at.norm().powi(j as i32 - 1)).sum();
+            (1..count).map(|j| j as f64 * phi.x(j).norm() * at.norm().powi(j as i32 - 1)).sum();
         let phase = (Complex64::new(0.0, 1.0) * at.powi(degree as i32)).re;
         if rest < 0.3 * lead && phase < -0.8 * at.norm().powi(degree as i32) {
             break;
@@ -134,7 +101,7 @@ pub(crate) fn incomplete(
             m[v] = 1;
             v = (v + 1) % degree;
         }
-        let between = Moments::new(form, &m, k);
+        let between = Moments::new(phi, &m, k);
         let factor = crate::Scaled::exp(-ik * phi.value(u_e));
         for (sum, &value) in sum.iter_mut().zip(&between.values) {
             *sum += (factor * crate::Scaled::new(value, between.exponent)).to_complex();

@@ -5,6 +5,7 @@ mod end;
 mod figure;
 mod incomplete;
 mod series;
+mod unfolding;
 
 pub(crate) use canonical::LARGEST_CLUSTER;
 pub(crate) use end::NearEnd;

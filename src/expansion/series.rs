@@ -6,6 +6,7 @@
 
 use super::canonical::Moments;
 use super::figure::Parts;
+use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
 use crate::ring::{NormalForm, Orders, Start};
@@ -211,7 +212,7 @@ impl Series {
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         let form = &self.rings[self.reference].form;
-        let moments = Moments::new(form, &self.m, k);
+        let moments = Moments::new(&Unfolding::new(form), &self.m, k);
         let count = form.saddles().max(1);
         let sizes = moments.values.map(|c| c.norm());
         let mut best = (0, 0, f64::INFINITY);
