@@ -87,6 +87,9 @@ impl Tally {
                 }
                 if difference > 3.0 * doubt {
                     self.ratios.push(figure / difference);
+                    if figure / difference > 3e3 {
+                        println!(figure / size, difference / size, got.form);
+                    }
                 }
             }
         }
@@ -297,4 +300,46 @@ fn finite_end_points_on_and_near_saddles() {
         tally.enter(&label, got, integral.quadrature(k, 1e-13));
     }
     tally.check("ends near saddles", 0.95);
+}
+
+#[test]
+fn simple_and_double_poles_anywhere() {
+    let mut random = Random(6);
+    let mut tally = Tally::default();
+    for case in 0..500 {
+        let degree = 2 + random.below(2);
+        let (phase, radius) = polynomial(&mut random, degree);
+        let lead = phase.0[degree];
+        let from = random.below(degree);
+        let to = (from + 1 + random.below(degree - 1)) % degree;
+        let contour = Contour::through([
+            valley(lead, degree, from, radius),
+            random.disc(0.5),
+            valley(lead, degree, to, radius),
+        ]);
+        // Anywhere, or near a zero of f'.
+        let pole = if random.next() < 0.5 {
+            random.disc(2.0)
+        } else {
+            let mut z = random.disc(1.0);
+            for _ in 0..50 {
+                let [_, d, dd] = phase.jet(z);
+                z -= d / dd;
+            }
+            z + Complex64::from_polar(10f64.powf(random.within(-4.0, 0.0)), 7.0 * random.next())
+        };
+        let smooth = amplitude(&mut random);
+        let (simple, double) = (random.disc(1.0), random.disc(1.0));
+        let double = if random.next() < 0.5 { double } else { double * 0.0 };
+        let g = move |z: Complex64| {
+            let inverse = (z - pole).inv();
+            smooth(z) + (double * inverse + simple) * inverse
+        };
+        let k = 10f64.powf(random.within(0.5, 4.0));
+        let integral = Integral::new(phase, contour).amplitude(g).pole(pole);
+        let got = integral.plan().and_then(|plan| plan.at(k));
+        let label = format!("case {case} degree {degree} k {k:.1} pole {pole:.3}");
+        tally.enter(&label, got, integral.quadrature(k, 1e-13));
+    }
+    tally.check("poles", 0.9);
 }

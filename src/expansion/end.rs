@@ -55,11 +55,15 @@ impl NearEnd {
     ) -> Option<NearEnd> {
         let mut boundaries = Vec::new();
         for (index, ring) in series.rings().iter().enumerate() {
+            // An end and a pole split off in one ring: not covered.
+            if ring.split != 0 {
+                continue;
+            }
             let Some(v) = ring.form.preimage(e, Complex64::new(0.0, 0.0)) else { continue };
             if v.norm() > INSIDE {
                 continue;
             }
-            let Some(valley) = Topology::exit(&ring.form, v, tail) else { continue };
+            let Some(valley) = Topology::leaves_by_valley(&ring.form, v, tail) else { continue };
             let (terms, noise) = ring.orders.boundary(&ring.form, &ring.start, v);
             boundaries.push(Boundary {
                 ring: index,

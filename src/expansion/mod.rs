@@ -4,9 +4,11 @@ mod canonical;
 mod end;
 mod figure;
 mod incomplete;
+mod pole;
 mod series;
 mod unfolding;
 
 pub(crate) use canonical::LARGEST_CLUSTER;
 pub(crate) use end::NearEnd;
-pub(crate) use series::{Contribution, Series};
+pub(crate) use pole::Pole;
+pub(crate) use series::{Contribution, Given, Series};

@@ -6,6 +6,7 @@
 
 use super::canonical::Moments;
 use super::figure::Parts;
+use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
@@ -40,14 +41,24 @@ struct Trial {
     start: Start,
     /// The largest `|u_s|/R`.
     filling: f64,
+    /// Poles that are split off, one bit each.
+    split: u32,
+    poles: Vec<Option<MappedPole>>,
 }
 
 impl Trial {
-    fn new(form: NormalForm, amplitude: &dyn Amplitude) -> Option<Trial> {
-        let start = Start::new(&form, amplitude)?;
+    fn new(form: NormalForm, given: &Given) -> Option<Trial> {
+        let map = |(pole, ascent): &(Pole, Vec<Complex64>)| MappedPole::new(&form, pole, ascent);
+        let poles: Vec<Option<MappedPole>> = given.poles.iter().map(map).collect();
+        let split = poles
+            .iter()
+            .enumerate()
+            .fold(0, |bits, (n, pole)| bits | u32::from(pole.is_some()) << n);
+        let part = |u| poles.iter().flatten().map(|pole| pole.part(u)).sum();
+        let start = Start::without(&form, given.amplitude, part)?;
         let filling =
             form.saddles_on_disc()[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
-        Some(Trial { form, start, filling })
+        Some(Trial { form, start, filling, split, poles })
     }
 
     fn tail(&self) -> f64 {
@@ -61,6 +72,15 @@ pub(super) struct Ring {
     pub start: Start,
     pub orders: Orders,
     pub filling: f64,
+    /// Poles that are split off, one bit each.
+    pub split: u32,
+}
+
+/// What a caller gave, as the series need it: the poles each with its steepest ascent.
+pub(crate) struct Given<'a> {
+    pub phase: &'a dyn Phase,
+    pub amplitude: &'a dyn Amplitude,
+    pub poles: &'a [(Pole, Vec<Complex64>)],
 }
 
 /// One cluster or end point, ready for any wavenumber.
@@ -70,6 +90,7 @@ pub(crate) struct Series {
     inner: NormalForm,
     /// The ring whose normal form left the smallest residual: `A` and `x_m` are taken from it.
     reference: usize,
+    poles: Vec<Option<MappedPole>>,
     m: Multiplicities,
     sign: f64,
     noise_scale: f64,
@@ -119,13 +140,13 @@ impl Series {
     /// The rings for `saddles` saddles (0: an end point) round `centre`, the first one at about
     /// `reach` from it but not below `least`. None if there is no normal form.
     pub fn new(
-        phase: &dyn Phase,
-        amplitude: &dyn Amplitude,
+        given: &Given,
         saddles: usize,
         centre: Complex64,
         (reach, least): (f64, f64),
     ) -> Option<Series> {
-        let first = first_ring(phase, amplitude, saddles, centre, reach, least)?;
+        let phase = given.phase;
+        let first = first_ring(given, saddles, centre, reach, least)?;
         let degree = first.form.degree() as i32;
         let height = |form: &NormalForm| form.radius().powi(degree);
         let low =
@@ -138,27 +159,33 @@ impl Series {
                 break;
             }
             let Some(next) =
-                last.form.resized(phase, RATIO).and_then(|form| Trial::new(form, amplitude))
+                last.form.resized(phase, RATIO).and_then(|form| Trial::new(form, given))
             else {
                 break;
             };
+            // Past a pole the tails may recover.
             let worse = next.tail() > WORST_TAIL && next.tail() > last.tail();
-            if worse {
+            if worse && (given.poles.is_empty() || next.form.tail() > WORST_TAIL) {
                 break;
             }
             trials.push(next);
         }
         let largest = trials.last()?.form.radius();
-        let kept =
-            |ring: &Trial| ring.filling < FILLING && ring.form.radius() >= SMALLEST * largest;
+        let kept = |ring: &Trial| {
+            ring.filling < FILLING
+                && ring.form.radius() >= SMALLEST * largest
+                && ring.poles.iter().flatten().all(|pole| pole.is_clear_of(&ring.form))
+        };
+        let mut poles = vec![None; given.poles.len()];
         let rings: Vec<Ring> = trials
             .into_iter()
             .filter(kept)
-            .map(|Trial { form, start, filling }| Ring {
-                orders: Orders::new(&form, &start),
-                form,
-                start,
-                filling,
+            .map(|Trial { form, start, filling, split, poles: mapped }| {
+                // The place of a pole is the same on every ring, best known well inside.
+                for (pole, mapped) in poles.iter_mut().zip(mapped) {
+                    *pole = mapped.or(pole.take());
+                }
+                Ring { orders: Orders::new(&form, &start), form, start, filling, split }
             })
             .collect();
         let reference = (0..rings.len())
@@ -167,6 +194,7 @@ impl Series {
             rings,
             inner,
             reference,
+            poles,
             m: [0; 6],
             sign: 1.0,
             noise_scale: phase.noise_scale(centre),
@@ -211,22 +239,31 @@ impl Series {
 
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
-        let form = &self.rings[self.reference].form;
-        let moments = Moments::new(&Unfolding::new(form), &self.m, k);
-        let count = form.saddles().max(1);
+        let phi = Unfolding::new(&self.rings[self.reference].form);
+        let moments = Moments::new(&phi, &self.m, k);
         let sizes = moments.values.map(|c| c.norm());
-        let mut best = (0, 0, f64::INFINITY);
+        let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
+            let residual = ring.form.residual();
+            self.poles[n].as_ref()?.contribution(&phi, &moments.values, k, residual)
+        };
+        let mut best = (0, 0, f64::INFINITY, Complex64::new(0.0, 0.0));
         for (index, ring) in self.rings.iter().enumerate() {
-            let (kept, figure) = Parts::of_ring(ring, &sizes[..count], k, orders).least();
+            let (kept, mut figure) = Parts::of_ring(ring, &sizes, k, orders).least();
+            let mut split_off = Complex64::new(0.0, 0.0);
+            for n in (0..self.poles.len()).filter(|n| ring.split >> n & 1 == 1) {
+                let (value, error) = pole(n, ring).unwrap_or((split_off, f64::INFINITY));
+                split_off += value;
+                figure += error;
+            }
             if figure < best.2 {
-                best = (index, kept, figure);
+                best = (index, kept, figure, split_off);
             }
         }
-        let (index, kept, figure) = best;
-        let mut sum = Complex64::new(0.0, 0.0);
+        let (index, kept, figure, mut sum) = best;
+        let ring = &self.rings[index];
         let mut power = 1.0;
         for n in 0..kept {
-            let p = self.rings[index].orders.coefficients(n);
+            let p = ring.orders.coefficients(n);
             let order: Complex64 = p.iter().zip(&moments.values).map(|(p, c)| p * c).sum();
             sum += order * power;
             power /= k;
@@ -248,8 +285,7 @@ impl Series {
 /// The first ring: smaller while there is no form or the tails are not negligible, larger while
 /// the mapped saddles do not fit.
 fn first_ring(
-    phase: &dyn Phase,
-    amplitude: &dyn Amplitude,
+    given: &Given,
     saddles: usize,
     centre: Complex64,
     reach: f64,
@@ -261,8 +297,8 @@ fn first_ring(
         if reach < least {
             break;
         }
-        if let Some(ring) = NormalForm::find(phase, saddles, centre, reach)
-            .and_then(|form| Trial::new(form, amplitude))
+        if let Some(ring) = NormalForm::find(given.phase, saddles, centre, reach)
+            .and_then(|form| Trial::new(form, given))
         {
             let crowded = ring.filling * RATIO > FILLING;
             // Where the noise of the phase sets the tails a smaller ring is no better.

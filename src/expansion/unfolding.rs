@@ -32,6 +32,11 @@ impl Unfolding {
         t
     }
 
+    /// Coefficients of `Phi'`, `u^0 .. u^(K+1)`.
+    pub fn derivative(&self) -> [Complex64; MAX_SADDLES + 1] {
+        std::array::from_fn(|j| self.c[j + 1] * (j + 1) as f64)
+    }
+
     /// `K + 2`.
     pub fn degree(&self) -> usize {
         self.degree

@@ -2,8 +2,8 @@
 
 use super::plan::{End, MAX_GROUPS, Node, Plan, decided};
 use crate::Error;
-use crate::expansion::{LARGEST_CLUSTER, NearEnd, Series};
-use crate::integral::{Amplitude, Phase, Termination};
+use crate::expansion::{Given, LARGEST_CLUSTER, NearEnd, Pole, Series};
+use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::saddles::{DROP, Group, Region, Saddle, Topology, Tree, locate};
 use num_complex::Complex64;
 
@@ -14,13 +14,17 @@ fn undecided(reason: impl Into<String>) -> Error {
     }
 }
 
-pub(super) fn attempt(
-    phase: &dyn Phase,
-    amplitude: &dyn Amplitude,
-    contour: &crate::Contour,
-    margin: f64,
-    finest: u32,
-) -> Result<Plan, Error> {
+/// An integral without its types.
+pub(super) struct Problem<'a> {
+    pub phase: &'a dyn Phase,
+    pub amplitude: &'a dyn Amplitude,
+    pub contour: &'a Contour,
+    pub poles: &'a [Complex64],
+}
+
+/// One attempt: saddles are looked for within `margin` of the contour.
+pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Plan, Error> {
+    let Problem { phase, amplitude, contour, .. } = *problem;
     let region = Region::around(contour.points(), margin);
     let saddles = locate(phase, region, finest)?;
     let size = region.size();
@@ -35,18 +39,27 @@ pub(super) fn attempt(
     {
         if termination == Termination::Finite {
             let near = saddles.iter().map(|s| (s.z - at).norm()).fold(size, f64::min);
-            let own = Series::new(phase, amplitude, 0, at, (0.3 * near, 1e-6 * size));
+            let given = Given { phase, amplitude, poles: &[] };
+            let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
             let f = phase.value(at);
             reach.include(height(f), topology.turned_height(f));
             ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
         }
     }
 
+    let poles = measure(problem, &topology, size)?;
+    for (pole, _) in &poles {
+        if pole.crossings != 0 {
+            reach.include(height(pole.value), topology.turned_height(pole.value));
+        }
+    }
+    let given = Given { phase, amplitude, poles: &poles };
+
     let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
-    let nodes = resolve(phase, amplitude, &topology, &tree, &saddles, &ends, &mut reach, size)?;
+    let nodes = resolve(&given, &topology, &tree, &saddles, &ends, &mut reach, size)?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
@@ -62,7 +75,8 @@ pub(super) fn attempt(
         }
     }
     let top = reach.top;
-    let mut plan = Plan { nodes, roots: tree.roots, ends, saddles: Vec::new(), top };
+    let poles = poles.into_iter().map(|(pole, _)| pole).collect();
+    let mut plan = Plan { nodes, roots: tree.roots, ends, poles, saddles: Vec::new(), top };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
     certify(&plan, &topology, lowest - DROP)?;
     for saddle in &saddles {
@@ -73,6 +87,28 @@ pub(super) fn attempt(
         plan.saddles.push((h, if weight.is_finite() { weight } else { 0.0 }));
     }
     Ok(plan)
+}
+
+/// The poles with their steepest ascents and the contour's crossings of those.
+fn measure(
+    problem: &Problem,
+    topology: &Topology,
+    size: f64,
+) -> Result<Vec<(Pole, Vec<Complex64>)>, Error> {
+    let mut list = Vec::new();
+    for &z in problem.poles {
+        let others = problem.poles.iter().map(|other| (other - z).norm());
+        let near = others.filter(|&distance| distance > 0.0).fold(0.3 * size, f64::min);
+        let mut pole = Pole::measure(problem.phase, problem.amplitude, z, 0.5 * near)?;
+        let Some((ascent, crossings)) = topology.ascent(z) else {
+            return Err(undecided(format!(
+                "the steepest ascent from the pole {z} can't be followed"
+            )));
+        };
+        pole.crossings = crossings;
+        list.push((pole, ascent));
+    }
+    Ok(list)
 }
 
 /// `Re(i f)`.
@@ -97,8 +133,7 @@ impl Reach {
 
 /// Series and multiplicities of all groups, from the highest downwards.
 fn resolve(
-    phase: &dyn Phase,
-    amplitude: &dyn Amplitude,
+    given: &Given,
     topology: &Topology,
     tree: &Tree,
     saddles: &[Saddle],
@@ -126,8 +161,7 @@ fn resolve(
             continue;
         }
         let Some(series) = Series::new(
-            phase,
-            amplitude,
+            given,
             group.members.len(),
             group.centre,
             ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius),

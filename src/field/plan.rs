@@ -1,8 +1,8 @@
 //! A plan: every decision about an integral that does not depend on the wavenumber.
 
-use super::build::attempt;
+use super::build::{Problem, attempt};
 use crate::estimate::Form;
-use crate::expansion::{Contribution, NearEnd, Series};
+use crate::expansion::{Contribution, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::saddles::{DROP, Group};
 use crate::{Error, Estimate, Scaled};
@@ -10,6 +10,8 @@ use num_complex::Complex64;
 
 /// The largest number of groups of saddles in a plan.
 pub(super) const MAX_GROUPS: usize = 64;
+/// The largest number of poles.
+const MAX_POLES: usize = 32;
 /// Groups with one bit a saddle: a tree of `n` saddles has at most `2 n - 1` groups.
 const _: () = assert!(MAX_GROUPS <= 64);
 
@@ -71,6 +73,7 @@ pub struct Plan {
     pub(super) nodes: Vec<Node>,
     pub(super) roots: Vec<usize>,
     pub(super) ends: Vec<End>,
+    pub(super) poles: Vec<Pole>,
     /// `i f` at every saddle, and the size of its leading term without the power of `k`: the lower
     /// term at a Stokes line.
     pub(super) saddles: Vec<(Complex64, f64)>,
@@ -120,9 +123,24 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 return Err(Error::NotFinite { what: "phase", at: z });
             }
         }
+        for &z in self.poles() {
+            if !(z.re.is_finite() && z.im.is_finite()) {
+                return Err(Error::Domain { what: "pole", value: z, remedy: "name finite places" });
+            }
+        }
+        if self.poles().len() > MAX_POLES {
+            let count = self.poles().len() as f64;
+            return Err(Error::domain("number of poles", count, "name at most 32, the nearest"));
+        }
+        let problem = Problem {
+            phase: self.phase(),
+            amplitude: self.amplitude_ref(),
+            contour: self.contour(),
+            poles: self.poles(),
+        };
         let mut last = None;
         for (margin, finest) in MARGINS.into_iter().zip(FINEST..) {
-            match attempt(self.phase(), self.amplitude_ref(), self.contour(), margin, finest) {
+            match attempt(&problem, margin, finest) {
                 Ok(plan) => return Ok(plan),
                 Err(error) => last = Some(error),
             }
@@ -158,6 +176,9 @@ impl Plan {
         let mut total = Contribution::NONE;
         for end in &self.ends {
             total = total.and(&end.at(&self.nodes, k, orders));
+        }
+        for pole in self.poles.iter().filter(|pole| pole.crossings != 0) {
+            total = total.and(&pole.at(k));
         }
         let mut best = [Choice::NONE; MAX_GROUPS];
         for (index, node) in self.nodes.iter().enumerate() {

@@ -16,7 +16,7 @@
 
 use super::{
     Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, divide, evaluate, tail,
-    taylor, to_coefficients, to_values,
+    taylor, to_coefficients, to_values, unit_points,
 };
 use crate::integral::Amplitude;
 use num_complex::Complex64;
@@ -63,16 +63,27 @@ pub struct Start {
 impl Start {
     /// Samples the amplitude on the ring of a normal form. None if it is not finite there.
     pub fn new(form: &NormalForm, amplitude: &dyn Amplitude) -> Option<Start> {
+        Start::without(form, amplitude, |_| ZERO)
+    }
+
+    /// The same with a function of `u` taken away: the principal parts of poles.
+    pub(crate) fn without(
+        form: &NormalForm,
+        amplitude: &dyn Amplitude,
+        part: impl Fn(Complex64) -> Complex64,
+    ) -> Option<Start> {
         let mut values = to_values(&form.map_derivative());
         let points = to_values(form.map());
         let mut size = 0.0f64;
-        for (value, &z) in values.iter_mut().zip(&points) {
-            *value *= amplitude.value(z);
-            let square = value.norm_sqr();
+        for ((value, &z), &v) in values.iter_mut().zip(&points).zip(unit_points()) {
+            let whole = *value * amplitude.value(z);
+            // The noise is that of the whole, which is large where a pole lies near the ring.
+            let square = whole.norm_sqr();
             if !square.is_finite() {
                 return None;
             }
             size = size.max(square);
+            *value = whole - part(v * form.radius());
         }
         to_coefficients(&mut values);
         Some(Start { coefficients: taylor(&values), size: size.sqrt(), tail: tail(&values, 0) })

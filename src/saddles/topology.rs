@@ -226,30 +226,28 @@ impl<'a> Topology<'a> {
 
     /// The valley through which a path, given from a point inside the ring (at `v`) on, leaves it.
     /// A path that ends inside is judged by its last point.
-    pub fn exit(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<usize> {
-        let saddles = form.saddles_on_disc();
-        let mut v = v;
-        let mut last = *path.first()?;
-        'path: for &next in &path[1..] {
-            const PIECES: usize = 4;
-            for piece in 1..=PIECES {
-                let z = last + (next - last) * (piece as f64 / PIECES as f64);
-                match form.preimage(z, v) {
-                    Some(ahead) => v = ahead,
-                    None => break 'path,
-                }
-                if v.norm() > 1.0 {
-                    break 'path;
-                }
-            }
-            last = next;
-        }
-        let reach = saddles[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
-        if v.norm() < 1.1 * reach {
+    pub fn leaves_by_valley(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<usize> {
+        let turns = (leaves(form, v, path)? - PI) / (2.0 * PI);
+        Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize)
+    }
+
+    /// The same for a path that leaves by a ridge.
+    pub fn leaves_by_ridge(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<usize> {
+        let turns = leaves(form, v, path)? / (2.0 * PI) - 1.0;
+        Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize)
+    }
+
+    /// The steepest ascent from a point until it is above the contour, and how often the contour
+    /// crosses it from right to left. None if it can't be followed.
+    pub fn ascent(&self, z: Complex64) -> Option<(Vec<Complex64>, i32)> {
+        let mut path = vec![z];
+        if self.h.height(z) < self.top
+            && trace(&self.h, z, self.top, self.longest, &mut path) == Ended::Stalled
+        {
             return None;
         }
-        let valley = ((lift(form, &saddles, v) - PI) / (2.0 * PI)).round() as i64;
-        Some(valley.rem_euclid(form.degree() as i64) as usize)
+        let count = crossings(&path, &self.path);
+        Some((path, count))
     }
 
     /// The highest point of each ridge's arc on the ring, the lowest of each valley's.
@@ -290,6 +288,33 @@ impl<'a> Topology<'a> {
 fn lift(form: &NormalForm, saddles: &[Complex64; MAX_SADDLES], v: Complex64) -> f64 {
     let turns: f64 = saddles[..form.saddles()].iter().map(|s| (1.0 - s / v).arg()).sum();
     0.5 * PI + form.degree() as f64 * v.arg() + turns
+}
+
+/// The lift where a path from `v` inside the ring leaves it (some way out, for a path that starts
+/// close to the ring).
+fn leaves(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<f64> {
+    let saddles = form.saddles_on_disc();
+    let mut v = v;
+    let mut last = *path.first()?;
+    let mut seen = v.norm();
+    'path: for &next in &path[1..] {
+        const PIECES: usize = 4;
+        for piece in 1..=PIECES {
+            let z = last + (next - last) * (piece as f64 / PIECES as f64);
+            match form.preimage(z, v) {
+                Some(ahead) => v = ahead,
+                None => break 'path,
+            }
+            // Going out, and far enough out.
+            if v.norm() > 1.0 && v.norm() > seen + 0.1 {
+                break 'path;
+            }
+            seen = seen.min(v.norm());
+        }
+        last = next;
+    }
+    let reach = saddles[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
+    (v.norm() > 1.1 * reach).then(|| lift(form, &saddles, v))
 }
 
 struct Arcs {

@@ -1,0 +1,210 @@
+//! Simple and double poles of the amplitude.
+//!
+//! Far from all clusters a pole adds `2 pi i n Res`, `n` the signed crossings of its steepest ascent
+//! with the contour. Near a cluster, at `p` in the plane of `u`, its part of the amplitude,
+//! `r/(u - p) + s/(u - p)^2`, is split off before the expansion; what that part adds to the cluster,
+//! beyond the term `2 pi i n Res` above, is
+//!
+//! `P = integral of exp(i k Phi)/(u - p) du = -i k sum_l C_l e^(i k Phi(p)) integral_p^(ridge) q_l(q) e^(-i k Phi(q)) dq`,
+//! `sum_l q_l(q) u^l = (Phi'(u) - Phi'(q))/(u - q)`,
+//!
+//! the ridge being the one through which the pole's steepest ascent leaves the ring. It follows from
+//! `dP/dp = i k Phi'(p) P + i k sum_l q_l(p) C_l` taken in the stable direction. The last integral is an
+//! incomplete canonical integral of the conjugate problem. For K = 0 it is the error function
+//! (DLMF 7.2). A double pole follows by differentiation: `i k [Phi'(p) P + sum_l q_l(p) C_l]`.
+//!
+//! Source: B. L. van der Waerden, Appl. Sci. Res. B 2 (1951) 33 for one saddle and a pole; the form
+//! for clusters was worked out for this crate.
+
+use super::incomplete::incomplete;
+use super::series::Contribution;
+use super::unfolding::Unfolding;
+use crate::integral::{Amplitude, Phase};
+use crate::ring::{
+    KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, to_coefficients, unit_points,
+};
+use crate::saddles::Topology;
+use crate::{Error, Scaled};
+use num_complex::Complex64;
+use std::f64::consts::PI;
+
+/// A pole of the amplitude: `g = double/(z - z_p)^2 + simple/(z - z_p) + ..`.
+#[derive(Clone, Copy, Debug)]
+pub(crate) struct Pole {
+    pub z: Complex64,
+    pub simple: Complex64,
+    pub double: Complex64,
+    /// Rounding errors of the two.
+    pub noise: (f64, f64),
+    /// `f` and `f'` there.
+    pub value: Complex64,
+    pub slope: Complex64,
+    /// Signed crossings of its steepest ascent with the contour.
+    pub crossings: i32,
+    pub noise_scale: f64,
+}
+
+impl Pole {
+    /// Measures the principal part from [`POINTS`] values on a circle, made smaller from `radius`
+    /// until nothing else singular is near it.
+    ///
+    /// # Errors
+    /// If the amplitude is not finite there, or has a pole of higher order.
+    pub fn measure(
+        phase: &dyn Phase,
+        amplitude: &dyn Amplitude,
+        z: Complex64,
+        radius: f64,
+    ) -> Result<Pole, Error> {
+        let mut radius = radius;
+        for _ in 0..CIRCLES {
+            let mut values: Values =
+                std::array::from_fn(|s| amplitude.value(z + unit_points()[s] * radius));
+            let size = values.iter().fold(0.0f64, |m, g| m.max(g.norm()));
+            to_coefficients(&mut values);
+            let principal = |n: usize| values[POINTS - n];
+            // Between the two orders that are covered and the far end of the Taylor half.
+            let rest = values[KEPT * 3 / 4..POINTS - 2].iter().fold(0.0f64, |m, c| m.max(c.norm()));
+            if size.is_finite() && rest < 1e-14 * size {
+                let (value, slope) = phase.value_and_derivative(z);
+                let noise = 4.0 * f64::EPSILON * size * radius;
+                return Ok(Pole {
+                    z,
+                    simple: principal(1) * radius,
+                    double: principal(2) * (radius * radius),
+                    noise: (noise, noise * radius),
+                    value,
+                    slope,
+                    crossings: 0,
+                    noise_scale: phase.noise_scale(z),
+                });
+            }
+            radius *= 0.5;
+        }
+        Err(Error::Unsupported {
+            what: format!("the amplitude's singularity at {z} (not a pole of order 1 or 2)"),
+            remedy: "use `quadrature`, or write a higher pole as a derivative in a parameter",
+        })
+    }
+
+    /// `2 pi i n Res(g exp(i k f))`.
+    pub fn at(&self, k: f64) -> Contribution {
+        let residue = self.simple + self.double * self.slope * Complex64::new(0.0, k);
+        let value = residue * Complex64::new(0.0, 2.0 * PI * f64::from(self.crossings));
+        let noise = 4.0 * f64::EPSILON * (16.0 + k * self.noise_scale) * value.norm()
+            + (self.noise.0 + self.noise.1 * self.slope.norm() * k)
+                * 7.0
+                * f64::from(self.crossings.abs());
+        Contribution::new(
+            Complex64::new(0.0, k) * self.value,
+            Scaled::from(value),
+            Scaled::from(Complex64::new(noise, 0.0)),
+            0,
+        )
+    }
+}
+
+/// A pole in the plane of `u` of one cluster.
+#[derive(Clone, Debug)]
+pub(crate) struct MappedPole {
+    /// Its place; inside the ring where `|u| < R`.
+    pub u: Complex64,
+    pub simple: Complex64,
+    pub double: Complex64,
+    noise: (f64, f64),
+    ridge: usize,
+}
+
+impl MappedPole {
+    /// None if the pole lies too far outside the ring. `ascent` is its steepest ascent.
+    pub fn new(form: &NormalForm, pole: &Pole, ascent: &[Complex64]) -> Option<MappedPole> {
+        let v = form.preimage(pole.z, ZERO)?;
+        if v.norm() > OUTSIDE {
+            return None;
+        }
+        let ridge = Topology::leaves_by_ridge(form, v, ascent)?;
+        let slope: Complex64 = form
+            .map()
+            .iter()
+            .enumerate()
+            .skip(1)
+            .rev()
+            .fold(ZERO, |sum, (n, c)| sum * v + c * n as f64)
+            / form.radius();
+        Some(MappedPole {
+            u: v * form.radius(),
+            // The residue of g dz does not depend on the variable.
+            simple: pole.simple,
+            double: pole.double / slope,
+            noise: (pole.noise.0, pole.noise.1 / slope.norm()),
+            ridge,
+        })
+    }
+
+    /// Whether the ring keeps its distance from it.
+    pub fn is_clear_of(&self, form: &NormalForm) -> bool {
+        (self.u.norm() / form.radius() - 1.0).abs() > CLOSE
+    }
+
+    /// Its principal part at `u`.
+    pub fn part(&self, u: Complex64) -> Complex64 {
+        let inverse = (u - self.u).inv();
+        (self.double * inverse + self.simple) * inverse
+    }
+
+    /// What it adds to a cluster with moments `c` (same exponent), and the rounding error of that;
+    /// `residual` is that of the normal form. None if the ascent did not arrive.
+    pub fn contribution(
+        &self,
+        phi: &Unfolding,
+        c: &[Complex64; MAX_SADDLES],
+        k: f64,
+        residual: f64,
+    ) -> Option<(Complex64, f64)> {
+        let degree = phi.degree();
+        let count = degree - 1;
+        let valley = degree - 1 - self.ridge;
+        let conjugate = incomplete(&phi.conj(), self.u.conj(), valley, k)?;
+        let ik = Complex64::new(0.0, k);
+        let d = phi.derivative();
+        let mut integral = ZERO;
+        let mut at_pole = ZERO;
+        // Sizes of what the two principal parts are multiplied with.
+        let (mut size, mut size_at_pole) = (0.0, 0.0);
+        for (l, c) in c.iter().enumerate().take(count) {
+            // q_l(q) = sum_(j > l) d_j q^(j - 1 - l)
+            let mut power = Complex64::new(1.0, 0.0);
+            for (s, d) in d[l + 1..degree].iter().enumerate() {
+                let term = c * d * conjugate[s].conj();
+                integral += term;
+                at_pole += c * d * power;
+                size += k * term.norm();
+                size_at_pole += k * (c * d * power).norm();
+                power *= self.u;
+            }
+        }
+        let p = -ik * integral;
+        let slope = d[..degree].iter().rev().fold(ZERO, |sum, d| sum * self.u + d);
+        let second = ik * (slope * p + at_pole);
+        // Rounding: the incomplete integrals are good to some 7e-14 at worst; the second order is a
+        // difference where the pole is far.
+        let rounding = ROUNDING
+            * (self.simple.norm() * size
+                + self.double.norm() * (k * slope.norm() * size + size_at_pole));
+        // The pole's place in u is known to rounding and to the residual of the form.
+        let shift = 4.0 * f64::EPSILON * self.u.norm() + residual / slope.norm().max(k.powf(-0.5));
+        let third = second.norm() * (2.0 / self.u.norm()).min(k * slope.norm()).max(k.sqrt());
+        let place = shift * (self.simple.norm() * second.norm() + self.double.norm() * third);
+        let measured = self.noise.0 * p.norm() + self.noise.1 * second.norm();
+        Some((self.simple * p + self.double * second, rounding + place + measured))
+    }
+}
+
+/// Circles round a pole that are tried.
+const CIRCLES: usize = 12;
+/// Poles up to this multiple of the ring's radius are split off.
+const OUTSIDE: f64 = 1.15;
+/// The error of an incomplete integral, relative.
+const ROUNDING: f64 = 1e-13;
+/// No ring may pass a pole closer than this part of its radius.
+const CLOSE: f64 = 0.06;
