@@ -1,0 +1,145 @@
+//! The Airy family against tables of 22 digits (the header of each says how it was made).
+//!
+//! The measure: an error of f counts against `max(|f|, |f'|/sqrt(1+|z|))`, one of f' against
+//! `max(|f'|, |f| sqrt(1+|z|))`; for real x < 0 against the moduli `sqrt(Ai^2+Bi^2)` and
+//! `sqrt(Ai'^2+Bi'^2)`.
+
+use merging_saddles::special::airy::*;
+use merging_saddles::{Complex64, Scaled};
+
+/// The fields of a table in tests/data.
+fn fields(name: &str) -> Vec<Vec<String>> {
+    let path = format!("{}/tests/data/{name}.csv", env!("CARGO_MANIFEST_DIR"));
+    let mut reader =
+        csv::ReaderBuilder::new().comment(Some(b'#')).from_path(path).expect("the table is there");
+    reader.records().map(|row| row.unwrap().iter().map(String::from).collect()).collect()
+}
+
+/// The rows of a table of numbers.
+fn table(name: &str) -> Vec<Vec<f64>> {
+    let number = |x: &String| x.parse().expect("a number");
+    fields(name).iter().map(|row| row.iter().map(number).collect()).collect()
+}
+
+/// Complex numbers from a row of real and imaginary parts.
+fn complex(row: &[f64]) -> Vec<Complex64> {
+    row.chunks(2).map(|p| Complex64::new(p[0], p[1])).collect()
+}
+
+/// Prints maximum, 99th percentile and median, and checks the first two.
+fn judge(what: &str, mut errors: Vec<f64>, max: f64, p99: f64) {
+    assert!(errors.len() >= 50 && errors.iter().all(|e| !e.is_nan()), "{what}: NaN or too few");
+    errors.sort_by(f64::total_cmp);
+    let at = |q: f64| errors[((errors.len() - 1) as f64 * q).round() as usize];
+    let line = format!("{what}: max {:.2e}, p99 {:.2e}, median {:.2e}", at(1.0), at(0.99), at(0.5));
+    println!("{line}");
+    assert!(at(1.0) <= max && at(0.99) <= p99, "{line}");
+}
+
+/// Errors of f and f' on the natural scale at a point of modulus `r`.
+fn natural(value: [Complex64; 2], exact: [Complex64; 2], r: f64) -> [f64; 2] {
+    let root = (1.0 + r).sqrt();
+    let (f, g) = (exact[0].norm(), exact[1].norm());
+    [(value[0] - exact[0]).norm() / f.max(g / root), (value[1] - exact[1]).norm() / g.max(f * root)]
+}
+
+fn four<T: Copy>(v: Airy<T>) -> [T; 4] {
+    [v.ai, v.ai_prime, v.bi, v.bi_prime]
+}
+
+fn natural_four(v: Airy<Complex64>, exact: &[Complex64], r: f64) -> Vec<f64> {
+    let v = four(v);
+    let mut out = natural([v[0], v[1]], [exact[0], exact[1]], r).to_vec();
+    out.extend(natural([v[2], v[3]], [exact[2], exact[3]], r));
+    out
+}
+
+#[test]
+fn complex_argument() {
+    let (mut plain, mut apart) = (vec![], vec![]);
+    for row in table("airy_complex") {
+        let row = complex(&row);
+        let z = row[0];
+        plain.extend(natural_four(airy(z), &row[1..], z.norm()));
+        let extended = four(airy_extended(z)).map(Scaled::to_complex);
+        let [ai, ai_prime, bi, bi_prime] = extended;
+        apart.extend(natural_four(Airy { ai, ai_prime, bi, bi_prime }, &row[1..], z.norm()));
+    }
+    judge("complex", plain, 2e-15, 6e-16);
+    judge("complex, exponent apart", apart, 2e-15, 6e-16);
+}
+
+#[test]
+fn complex_argument_scaled() {
+    let mut errors = vec![];
+    for row in table("airy_scaled") {
+        let row = complex(&row);
+        errors.extend(natural_four(airy_scaled(row[0]), &row[1..], row[0].norm()));
+    }
+    judge("scaled", errors, 2e-15, 6e-16);
+}
+
+/// One exact value with the exponent apart (three fields: the exponent can exceed 2^53).
+fn exact(fields: &[String]) -> (Complex64, i64) {
+    let part = |i: usize| fields[i].parse().expect("a number");
+    (Complex64::new(part(0), part(1)), fields[2].parse().expect("an integer"))
+}
+
+/// A value and its derivative with the exponent apart, judged at the exponent of the exact value.
+fn apart(value: [Scaled; 2], fields: &[String], r: f64) -> [f64; 2] {
+    let ((f, top), (g, other)) = (exact(fields), exact(&fields[3..]));
+    let g = g * 2f64.powi((other - top) as i32);
+    natural(value.map(|v| v.mantissa_at(top)), [f, g], r)
+}
+
+#[test]
+fn exponent_apart_and_rotated() {
+    let (mut near, mut far, mut rotation) = (vec![], vec![], vec![]);
+    for row in fields("airy_extended") {
+        let z = Complex64::new(row[0].parse().unwrap(), row[1].parse().unwrap());
+        let r = z.norm();
+        let (v, w) = (airy_extended(z), rotated_extended(z));
+        let mut errors = apart([v.ai, v.ai_prime], &row[2..8], r).to_vec();
+        errors.extend(apart([v.bi, v.bi_prime], &row[8..14], r));
+        errors.extend(apart([w.plus, w.plus_prime], &row[14..20], r));
+        errors.extend(apart([w.minus, w.minus_prime], &row[20..26], r));
+        if r <= 100.0 {
+            let p = rotated(z);
+            let parts = |a: Complex64, b: Complex64| [Scaled::from(a), Scaled::from(b)];
+            rotation.extend(apart(parts(p.plus, p.plus_prime), &row[14..20], r));
+            rotation.extend(apart(parts(p.minus, p.minus_prime), &row[20..26], r));
+        }
+        if r <= 1e6 { near.extend(errors) } else { far.extend(errors) }
+    }
+    judge("rotated", rotation, 2e-15, 6e-16);
+    judge("exponent apart, |z| <= 1e6", near, 2e-15, 6e-16);
+    // The phase of up to 10^18 in double-double is what limits these.
+    judge("exponent apart, |z| <= 1e12", far, 1e-14, 1e-14);
+}
+
+#[test]
+fn real_argument() {
+    let (mut plain, mut scaled) = (vec![], vec![]);
+    for row in table("airy_real") {
+        let x = row[0];
+        let exact = &row[1..];
+        let root = (1.0 + x.abs()).sqrt();
+        let scales = if x < 0.0 {
+            let (m, n) = (exact[0].hypot(exact[2]), exact[1].hypot(exact[3]));
+            [m, n, m, n]
+        } else {
+            let pair = |f: f64, g: f64| [f.abs().max(g.abs() / root), g.abs().max(f.abs() * root)];
+            let (a, b) = (pair(exact[0], exact[1]), pair(exact[2], exact[3]));
+            [a[0], a[1], b[0], b[1]]
+        };
+        let v = four(airy_real(x));
+        plain.extend((0..4).map(|i| (v[i] - exact[i]).abs() / scales[i]));
+        // The scaled values where the exponential is known without effort.
+        if (0.0..1e-12).contains(&x.abs()) {
+            let v = four(airy_real_scaled(x));
+            scaled.extend((0..4).map(|i| (v[i] - exact[i]).abs() / scales[i]));
+        }
+    }
+    judge("real", plain, 1e-15, 6e-16);
+    assert!(scaled.iter().all(|e| *e < 1e-15) && scaled.len() >= 4);
+}
