@@ -4,6 +4,7 @@
 
 mod error;
 mod estimate;
+pub mod guide;
 pub mod integral;
 mod scaled;
 pub mod special;
