@@ -266,7 +266,7 @@ impl AcousticGuide {
         let incoming = sloping.adiabatic(q * reference_depth_m)?;
         Ok(ModeCutOff {
             sloping,
-            sign: if mode % 2 == 0 { -1.0 } else { 1.0 },
+            sign: if mode.is_multiple_of(2) { -1.0 } else { 1.0 },
             gradient,
             density_ratio: self.density_ratio,
             cutoff_depth_m,

@@ -29,7 +29,7 @@
 //! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_pde.rs`.
 
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Side};
-use crate::{Complex64, Contour, Error, Integral};
+use crate::{Complex64, Contour, Error, Estimate, Integral, Scaled};
 use std::f64::consts::{FRAC_PI_2, PI};
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
@@ -126,7 +126,7 @@ impl SlopingGuide {
         x: impl Into<Complex64>,
     ) -> Result<UniformField, Error> {
         let x = x.into();
-        let sign = if self.mode % 2 == 0 { -1.0 } else { 1.0 };
+        let sign = if self.mode.is_multiple_of(2) { -1.0 } else { 1.0 };
         self.field(h.into(), Side::Inside { x }, Complex64::new(0.0, 0.0), sign)
     }
 
@@ -250,7 +250,7 @@ impl SlopingGuide {
                 break;
             }
         }
-        if !converged || !(w.im > 0.0 && w.im < FRAC_PI_2) {
+        if !(converged && w.im > 0.0 && w.im < FRAC_PI_2) {
             return Err(Error::NoConvergence {
                 what: "the bound mode with losses",
                 limit: 30,
@@ -291,8 +291,52 @@ impl UniformField {
         self.prefactor
     }
 
+    /// The field by uniform expansions at the saddles: cost flat in `1/eps`.
+    ///
+    /// The error figure is that of the integral (and of what is neglected at the Brewster
+    /// parameter), not of the formula in `eps`.
+    ///
+    /// Errors: as [`Integral::plan`] and [`crate::Plan::at`].
+    pub fn evaluate(&self) -> Result<Estimate, Error> {
+        Ok(self.finish(self.integral.plan()?.at(self.wavenumber)?))
+    }
+
+    /// TEMP
+    pub fn evaluate_along(&self, c: Contour) -> Result<Estimate, Error> {
+        let i = Integral::new(self.integral.phase().clone(), c).amplitude(self.integral.amplitude_ref().clone());
+        Ok(self.finish(i.plan()?.at(self.wavenumber)?))
+    }
+
+    /// Multiplies by the prefactor and adds what is neglected to the error.
+    fn finish(&self, integral: Estimate) -> Estimate {
+        let field = times(integral, Scaled::from(self.prefactor));
+        if self.neglected == 0.0 {
+            return field;
+        }
+        let neglected = Complex64::new(self.neglected * self.prefactor.norm(), 0.0);
+        let error = error_of(&field) + Scaled::from(neglected);
+        Estimate::new(field.scaled, error, field.orders, field.form)
+    }
+
     /// Size of the integrand at the Brewster parameter, relative to the mode; 0 for `m <= 1`.
     pub fn neglected(&self) -> f64 {
         self.neglected
     }
+}
+
+/// An estimate multiplied by an exact factor.
+pub(super) fn times(estimate: Estimate, factor: Scaled) -> Estimate {
+    let size = Scaled::new(Complex64::new(factor.mantissa.norm(), 0.0), factor.exponent);
+    let error = error_of(&estimate) * size;
+    Estimate::new(estimate.scaled * factor, error, estimate.orders, estimate.form)
+}
+
+/// The error figure with its exponent apart.
+fn error_of(estimate: &Estimate) -> Scaled {
+    let value = estimate.scaled;
+    if value.is_zero() || !estimate.relative_error.is_finite() {
+        return Scaled::from(Complex64::new(estimate.error, 0.0));
+    }
+    let mantissa = estimate.relative_error * value.mantissa.norm();
+    Scaled::new(Complex64::new(mantissa, 0.0), value.exponent)
 }
