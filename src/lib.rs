@@ -8,6 +8,7 @@ mod expansion;
 pub mod field;
 pub mod guide;
 pub mod integral;
+mod quadrature;
 pub mod ring;
 pub mod saddles;
 mod scaled;

@@ -19,9 +19,19 @@ const TRIED: usize = 30;
 /// Mapped saddles must lie within this part of the ring.
 const FILLING: f64 = 0.9;
 /// Tails beyond which a ring is of no use.
-const WORST_TAIL: f64 = 1e-2;
+const WORST_TAIL: f64 = 1e-5;
+/// No ring is enlarged once `R^(K+2)` is beyond this: for `k >= 1` nothing is gained there, and the
+/// rounding error of `A` grows with it.
+const LARGEST: f64 = 150.0;
+/// The topology looks at the cluster on a ring with `R^(K+2)` no larger than this, if the saddles
+/// allow: the contour's descents must leave it.
+const LOW: f64 = 6.0;
+/// The first ring is made smaller until its tails are below this.
+const CLEAN: f64 = 1e-12;
+/// Times that the first ring may be made smaller.
+const FIRST: usize = 24;
 /// The smallest ring that is kept, relative to the largest.
-const SMALLEST: f64 = 0.25;
+const SMALLEST: f64 = 0.3;
 
 struct Ring {
     form: NormalForm,
@@ -46,6 +56,8 @@ impl Ring {
 /// One cluster or end point, ready for any wavenumber.
 pub(crate) struct Series {
     rings: Vec<Ring>,
+    /// A small ring for the topology.
+    inner: NormalForm,
     /// The ring whose normal form left the smallest residual: `A` and `x_m` are taken from it.
     reference: usize,
     m: Multiplicities,
@@ -64,6 +76,14 @@ pub(crate) struct Contribution {
 impl Contribution {
     pub const NONE: Contribution =
         Contribution { value: Scaled::ZERO, error: Scaled::ZERO, orders: 0 };
+
+    pub fn and(&self, other: &Contribution) -> Contribution {
+        Contribution {
+            value: self.value + other.value,
+            error: self.error + other.error,
+            orders: self.orders.max(other.orders),
+        }
+    }
 }
 
 impl Series {
@@ -77,9 +97,17 @@ impl Series {
         (reach, least): (f64, f64),
     ) -> Option<Series> {
         let first = first_ring(phase, amplitude, saddles, centre, reach, least)?;
+        let degree = first.form.degree() as i32;
+        let height = |form: &NormalForm| form.radius().powi(degree);
+        let low =
+            (LOW / height(&first.form)).powf(1.0 / f64::from(degree)).max(first.filling / 0.8);
+        let inner = if low < 1.0 { first.form.resized(phase, low)? } else { first.form.clone() };
         let mut rings = vec![first];
         for _ in 0..TRIED {
             let last = &rings[rings.len() - 1];
+            if height(&last.form) > LARGEST {
+                break;
+            }
             let Some(next) =
                 last.form.resized(phase, RATIO).and_then(|form| Ring::new(form, amplitude))
             else {
@@ -94,17 +122,12 @@ impl Series {
         }
         rings.retain(|ring| ring.filling < FILLING);
         let largest = rings.last()?.form.radius();
-        let count = rings.len();
-        let mut index = 0;
-        // Every second ring, counted from the largest.
-        rings.retain(|ring| {
-            index += 1;
-            (count - index) % 2 == 0 && ring.form.radius() >= SMALLEST * largest
-        });
+        rings.retain(|ring| ring.form.radius() >= SMALLEST * largest);
         let reference = (0..rings.len())
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
         Some(Series {
             rings,
+            inner,
             reference,
             m: [0; 6],
             sign: 1.0,
@@ -112,9 +135,9 @@ impl Series {
         })
     }
 
-    /// The normal form on the smallest ring that is kept.
+    /// The normal form on a small ring.
     pub fn form(&self) -> &NormalForm {
-        &self.rings[0].form
+        &self.inner
     }
 
     /// Sets what the contour makes of the cluster.
@@ -222,23 +245,23 @@ fn first_ring(
 ) -> Option<Ring> {
     let mut reach = reach;
     let mut found: Option<Ring> = None;
-    for _ in 0..12 {
+    for _ in 0..FIRST {
         if reach < least {
             break;
         }
         if let Some(ring) = NormalForm::find(phase, saddles, centre, reach)
             .and_then(|form| Ring::new(form, amplitude))
         {
-            let crowded = ring.filling / (RATIO * RATIO) > FILLING / (RATIO * RATIO);
-            let done = ring.tail() < 1e-12 || crowded;
-            if !crowded || found.is_none() {
+            let crowded = ring.filling * RATIO > FILLING;
+            let done = crowded || ring.tail() < CLEAN;
+            if ring.filling < FILLING || found.is_none() {
                 found = Some(ring);
             }
             if done {
                 break;
             }
         }
-        reach /= RATIO * RATIO;
+        reach /= RATIO;
     }
     found
 }

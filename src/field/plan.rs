@@ -9,6 +9,8 @@ use num_complex::Complex64;
 
 /// The largest number of groups of saddles in a plan.
 const MAX_GROUPS: usize = 64;
+/// Groups with one bit a saddle: a tree of `n` saddles has at most `2 n - 1` groups.
+const _: () = assert!(MAX_GROUPS <= 64);
 
 /// How wide round the contour saddles are looked for, in units of its size: wider if the
 /// certificate says that a contributing saddle is missing.
@@ -20,6 +22,17 @@ const FINEST: u32 = 2;
 struct Node {
     series: Option<Series>,
     parts: Option<(usize, usize)>,
+    /// Its series is known, or it needs none: too high or too low to matter.
+    settled: bool,
+    /// Its saddles, one bit for each entry of the plan's list.
+    members: u64,
+}
+
+impl Node {
+    fn new(group: &Group) -> Node {
+        let members = group.members.iter().fold(0, |bits, m| bits | 1u64 << m);
+        Node { series: None, parts: group.parts, settled: false, members }
+    }
 }
 
 /// Everything about an integral that does not depend on the wavenumber; see
@@ -29,8 +42,8 @@ pub struct Plan {
     nodes: Vec<Node>,
     roots: Vec<usize>,
     ends: Vec<Series>,
-    /// `i f` at every saddle that may matter at a Stokes line, and the size of its leading term
-    /// without the power of `k`.
+    /// `i f` at every saddle, and the size of its leading term without the power of `k`: the lower
+    /// term at a Stokes line.
     saddles: Vec<(Complex64, f64)>,
     /// The greatest `Re(i f)` that contributes; nothing below `top - DROP` was looked at.
     top: f64,
@@ -99,7 +112,7 @@ fn attempt(
     }
 
     let tree = Tree::new(&saddles, LARGEST_CLUSTER);
-    if tree.groups.len() > MAX_GROUPS {
+    if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
     let nodes = resolve(phase, amplitude, &topology, &tree, &saddles, &mut reach, size)?;
@@ -112,9 +125,7 @@ fn attempt(
         let weight = amplitude.value(saddle.z).norm()
             * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
-        if weight.is_finite() && h.re < top + 0.1 * DROP {
-            plan.saddles.push((h, weight));
-        }
+        plan.saddles.push((h, if weight.is_finite() { weight } else { 0.0 }));
     }
     Ok(plan)
 }
@@ -156,15 +167,13 @@ fn resolve(
         let heights = g.members.iter().map(|&m| topology.turned_height(saddles[m].value));
         heights.fold(f64::INFINITY, f64::min)
     };
-    let mut nodes: Vec<Node> =
-        tree.groups.iter().map(|g| Node { series: None, parts: g.parts }).collect();
+    let mut nodes: Vec<Node> = tree.groups.iter().map(Node::new).collect();
     let mut order: Vec<usize> = (0..tree.groups.len()).collect();
     order.sort_by(|&a, &b| highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a])));
-    let mut passed = vec![false; nodes.len()];
     for index in order {
         let group = &tree.groups[index];
         if topology.above(lowest(group)) || highest(group) < reach.top - DROP {
-            passed[index] = true;
+            nodes[index].settled = true;
             continue;
         }
         let gap = if group.gap.is_finite() { group.gap } else { size };
@@ -177,23 +186,19 @@ fn resolve(
         ) else {
             continue;
         };
-        let Some(m) = topology.multiplicities(series.form()) else { continue };
+        let Some(m) = topology.multiplicities(series.form()) else {
+            continue;
+        };
         let series = series.with_multiplicities(m);
         if series.contributes() {
             reach.include(highest(group), lowest(group));
         }
         nodes[index].series = Some(series);
-        passed[index] = true;
+        nodes[index].settled = true;
     }
     // Every root must be decided, as a whole or by its parts.
-    fn decided(index: usize, nodes: &[Node], passed: &[bool]) -> bool {
-        passed[index]
-            || nodes[index]
-                .parts
-                .is_some_and(|(a, b)| decided(a, nodes, passed) && decided(b, nodes, passed))
-    }
     for &root in &tree.roots {
-        if !decided(root, &nodes, &passed) {
+        if !decided(&nodes, root) {
             return Err(undecided(format!(
                 "no normal form or no clear ridge for the saddles near {:.4}",
                 tree.groups[root].centre
@@ -201,6 +206,12 @@ fn resolve(
         }
     }
     Ok(nodes)
+}
+
+/// Whether a group is settled as a whole or by its parts.
+fn decided(nodes: &[Node], index: usize) -> bool {
+    let node = &nodes[index];
+    node.settled || node.parts.is_some_and(|(a, b)| decided(nodes, a) && decided(nodes, b))
 }
 
 /// The certificate for the finest level that is known, then for each group against its parts.
@@ -218,7 +229,9 @@ fn certify(plan: &Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
     while let Some(index) = stack.pop() {
         let node = &plan.nodes[index];
         match node.parts {
-            Some((a, b)) if plan.known(a) && plan.known(b) => stack.extend([a, b]),
+            Some((a, b)) if decided(&plan.nodes, a) && decided(&plan.nodes, b) => {
+                stack.extend([a, b])
+            }
             _ => match node.series.as_ref().map(valleys) {
                 Some(Some(list)) => all.extend(list),
                 Some(None) => missing = true,
@@ -233,12 +246,6 @@ fn certify(plan: &Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
 }
 
 impl Plan {
-    /// Whether a group or its parts have been decided (those far above or below count as such).
-    fn known(&self, index: usize) -> bool {
-        let node = &self.nodes[index];
-        node.series.is_some() || node.parts.is_none_or(|(a, b)| self.known(a) && self.known(b))
-    }
-
     /// The integral at wavenumber `k`, with as many orders as lower the error figure.
     ///
     /// # Errors
@@ -256,103 +263,118 @@ impl Plan {
         if orders == 0 {
             return Err(Error::domain("orders", 0.0, "keep one order or more"));
         }
-        let mut total = Total::default();
+        let mut total = Contribution::NONE;
         for end in &self.ends {
-            total.add(end.at(k, orders), 0);
+            total = total.and(&end.at(k, orders));
         }
-        let mut chosen = [(Contribution::NONE, 0usize, 0usize); MAX_GROUPS];
+        let mut best = [Choice::NONE; MAX_GROUPS];
         for (index, node) in self.nodes.iter().enumerate() {
-            let whole = match &node.series {
-                Some(series) if series.contributes() => {
-                    Some((series.at(k, orders), 1, series.saddles()))
-                }
-                Some(_) => Some((Contribution::NONE, 0, 0)),
-                None => None,
-            };
             let parts =
-                node.parts.filter(|&(a, b)| self.known(a) && self.known(b)).map(|(a, b)| {
-                    let ((x, n, large), (y, m, larger)) = (chosen[a], chosen[b]);
-                    let sum = Contribution {
-                        value: x.value + y.value,
-                        error: x.error + y.error,
-                        orders: x.orders.max(y.orders),
-                    };
-                    (sum, n + m, large.max(larger))
-                });
-            chosen[index] = match (whole, parts) {
-                (Some(a), Some(b)) if smaller(b.0.error, a.0.error) => b,
-                (Some(a), _) => a,
-                (None, Some(b)) => b,
-                (None, None) => (Contribution::NONE, 0, 0),
+                node.parts.filter(|&(a, b)| decided(&self.nodes, a) && decided(&self.nodes, b));
+            let parts = parts.map(|(a, b)| best[a].and(&best[b]));
+            let whole = node.series.as_ref().map(|series| {
+                if !series.contributes() {
+                    return Choice::NONE;
+                }
+                Choice {
+                    part: series.at(k, orders),
+                    clusters: 1,
+                    largest: series.saddles(),
+                    as_whole: true,
+                }
+            });
+            best[index] = match (whole, parts) {
+                (Some(whole), Some(parts)) if below(parts.part.error, whole.part.error) => parts,
+                (Some(whole), _) => whole,
+                (None, Some(parts)) => parts,
+                (None, None) => Choice::NONE,
             };
         }
+        let mut clusters = 0;
+        let mut largest = 0;
         for &root in &self.roots {
-            let (contribution, clusters, largest) = chosen[root];
-            total.add(contribution, clusters);
-            total.largest = total.largest.max(largest);
+            total = total.and(&best[root].part);
+            clusters += best[root].clusters;
+            largest = largest.max(best[root].largest);
+            self.add_lower(root, &best, k, &mut total);
         }
-        total.finish(self.neglected(k), k)
+        total.error = total.error + Scaled::exp(Complex64::new(k * (self.top - DROP), 0.0));
+        let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
+        finish(total, form, k)
     }
 
-    /// What lies below the floor, and the lower term at a Stokes line.
-    fn neglected(&self, k: f64) -> Scaled {
-        let mut sum = Scaled::exp(Complex64::new(k * (self.top - DROP), 0.0));
-        for &(lower, weight) in &self.saddles {
-            let near = self.saddles.iter().any(|&(upper, _)| {
+    /// Adds to the error what lies on the far side of a Stokes line close by: there the term of a
+    /// lower saddle is being switched on (M. V. Berry, Proc. R. Soc. Lond. A 422 (1989) 7), by
+    /// `erfc(-s)/2`, `s = Im F/sqrt(2 Re F)`, `F` the difference of the exponents.
+    fn add_lower(
+        &self,
+        index: usize,
+        best: &[Choice; MAX_GROUPS],
+        k: f64,
+        total: &mut Contribution,
+    ) {
+        let node = &self.nodes[index];
+        if !best[index].as_whole {
+            if let Some((a, b)) = node.parts.filter(|_| best[index].clusters > 0) {
+                self.add_lower(a, best, k, total);
+                self.add_lower(b, best, k, total);
+            }
+            return;
+        }
+        for (other, &(lower, weight)) in self.saddles.iter().enumerate() {
+            if node.members >> other & 1 == 1 {
+                continue;
+            }
+            let near = self.saddles.iter().enumerate().any(|(own, &(upper, _))| {
                 let f = (upper - lower) * k;
-                f.re > 2.0 && f.im.abs() < 3.0 * (2.0 * f.re).sqrt()
+                node.members >> own & 1 == 1
+                    && (1.0..45.0).contains(&f.re)
+                    && f.im.abs() < 3.0 * (2.0 * f.re).sqrt()
             });
-            if near && k * (self.top - lower.re) < 40.0 {
-                sum = sum + Scaled::exp(Complex64::new(k * lower.re, 0.0)) * (weight / k.sqrt());
+            if near {
+                let size = Scaled::exp(Complex64::new(k * lower.re, 0.0)) * (weight / k.sqrt());
+                total.error = total.error + size;
             }
         }
-        sum
     }
 }
 
-fn smaller(a: Scaled, b: Scaled) -> bool {
+/// How a group is best summed at one wavenumber.
+#[derive(Clone, Copy)]
+struct Choice {
+    part: Contribution,
+    clusters: usize,
+    largest: usize,
+    as_whole: bool,
+}
+
+impl Choice {
+    const NONE: Choice =
+        Choice { part: Contribution::NONE, clusters: 0, largest: 0, as_whole: false };
+
+    fn and(&self, other: &Choice) -> Choice {
+        Choice {
+            part: self.part.and(&other.part),
+            clusters: self.clusters + other.clusters,
+            largest: self.largest.max(other.largest),
+            as_whole: false,
+        }
+    }
+}
+
+/// Whether one error is below another.
+fn below(a: Scaled, b: Scaled) -> bool {
     a.ln_norm() < b.ln_norm()
 }
 
-/// The sum of all contributions.
-struct Total {
-    value: Scaled,
-    error: Scaled,
-    orders: usize,
-    clusters: usize,
-    largest: usize,
-}
-
-impl Default for Total {
-    fn default() -> Self {
-        Total { value: Scaled::ZERO, error: Scaled::ZERO, orders: 0, clusters: 0, largest: 0 }
+fn finish(total: Contribution, form: Form, k: f64) -> Result<Estimate, Error> {
+    if !total.value.is_finite() || !total.error.is_finite() {
+        return Err(Error::NoDigits {
+            what: "the expansion",
+            value: Complex64::new(k, 0.0),
+            digits: 0.0,
+            remedy: "use `quadrature` at this wavenumber",
+        });
     }
-}
-
-impl Total {
-    fn add(&mut self, part: Contribution, clusters: usize) {
-        self.value = self.value + part.value;
-        self.error = self.error + part.error;
-        self.orders = self.orders.max(part.orders);
-        self.clusters += clusters;
-    }
-
-    fn finish(self, neglected: Scaled, k: f64) -> Result<Estimate, Error> {
-        let form = if self.clusters > 0 {
-            Form::Saddles { clusters: self.clusters, largest: self.largest }
-        } else {
-            Form::EndPoints
-        };
-        let error = self.error + neglected;
-        let estimate = Estimate::new(self.value, error, self.orders, form);
-        if !self.value.is_finite() || !error.is_finite() {
-            return Err(Error::NoDigits {
-                what: "the expansion",
-                value: Complex64::new(k, 0.0),
-                digits: 0.0,
-                remedy: "use `quadrature` at this wavenumber",
-            });
-        }
-        Ok(estimate)
-    }
+    Ok(Estimate::new(total.value, total.error, total.orders, form))
 }

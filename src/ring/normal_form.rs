@@ -14,7 +14,7 @@
 //! memory); for K = 1 C. Chester, B. Friedman, F. Ursell (1957).
 
 use super::{
-    Coefficients, I, KEPT, MAX_SADDLES, POINTS, Values, ZERO, divide, evaluate, tail, taylor,
+    Coefficients, I, KEPT, MAX_SADDLES, POINTS, Values, ZERO, divide, evaluate, tail,
     to_coefficients, to_values, unit_points,
 };
 use crate::integral::Phase;
@@ -118,17 +118,17 @@ impl NormalForm {
             }
             self.residual = largest;
             to_coefficients(&mut residual);
-            let mut quotient = taylor(&residual);
+            // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
+            let dividend = &mut residual[..KEPT + saddles];
             if saddles == 0 {
                 // The end point stays where it is.
-                quotient[0] = ZERO;
+                dividend[0] = ZERO;
             }
-            divide(&mut quotient, &self.derivative()[..self.degree]);
-            for (x, p) in self.unfolding.iter_mut().zip(&quotient).take(saddles) {
+            divide(dividend, &self.derivative()[..self.degree]);
+            for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles) {
                 *x += p;
             }
-            quotient.copy_within(saddles.., 0);
-            quotient[KEPT - saddles..].fill(ZERO);
+            let quotient: Coefficients = std::array::from_fn(|n| dividend[n + saddles]);
             let mut correction = to_values(&quotient);
             let slope = to_values(&self.map_derivative());
             for (c, s) in correction.iter_mut().zip(&slope) {
@@ -250,7 +250,10 @@ impl NormalForm {
             roots[1] = -roots[0];
         } else if count > 2 {
             for (j, root) in roots.iter_mut().take(count).enumerate() {
-                *root = Complex64::from_polar(0.5, 0.4 + 6.3 * j as f64 / count as f64);
+                *root = Complex64::from_polar(
+                    0.5,
+                    0.4 + std::f64::consts::TAU * j as f64 / count as f64,
+                );
             }
             for _ in 0..60 {
                 let mut step = 0.0f64;

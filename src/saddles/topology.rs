@@ -31,6 +31,8 @@ pub(crate) type Multiplicities = [i32; MAX_SADDLES + 1];
 
 /// How far below the highest contribution a cluster may lie and still be evaluated.
 pub(crate) const DROP: f64 = 20.0;
+/// How exactly a traced point keeps the height it was sent to.
+const SLACK: f64 = 0.05 * DROP;
 /// The angle that the exponent is turned by.
 const DELTA: f64 = 0.03;
 
@@ -168,7 +170,7 @@ impl<'a> Topology<'a> {
         ends.push((-1, self.end));
         // An end at infinity must really be down there; a finite end that contributes has been
         // followed down like the others.
-        if ends.iter().any(|(_, z)| self.h.height(*z) > floor + 1e-6 * (1.0 + floor.abs())) {
+        if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK) {
             return false;
         }
         let mut open = vec![true; ends.len()];
@@ -203,7 +205,7 @@ impl<'a> Topology<'a> {
             const PIECES: usize = 24;
             let below = |piece: usize| {
                 let z = a + (b - a) * (piece as f64 / PIECES as f64);
-                self.h.height(z) < floor + 1e-6 * (1.0 + floor.abs())
+                self.h.height(z) < floor + SLACK
             };
             if (1..PIECES).all(below) {
                 return true;

@@ -94,8 +94,15 @@ pub(crate) fn trace(
             bend = secant;
             shrink = 1.0;
         } else {
-            // The secant of a step that failed is no guide; measure anew.
-            bend = h.jet(z)[2];
+            // Put the point exactly on its height and measure anew before a shorter step.
+            for _ in 0..2 {
+                let [here, d, dd] = h.jet(z);
+                let polish = (origin + direction * t - here) / d;
+                if (polish * dd / d).norm() < 0.3 {
+                    z += polish;
+                }
+                (slope, bend) = (d + dd * polish, dd);
+            }
             shrink *= 0.4;
             if shrink < 1e-8 {
                 return Ended::Stalled;
