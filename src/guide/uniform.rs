@@ -301,10 +301,22 @@ impl UniformField {
         Ok(self.finish(self.integral.plan()?.at(self.wavenumber)?))
     }
 
+    /// The field by quadrature along the contour, to a relative `tolerance`: the yardstick.
+    ///
+    /// Errors: as [`Integral::quadrature`].
+    pub fn quadrature(&self, tolerance: f64) -> Result<Estimate, Error> {
+        Ok(self.finish(self.integral.quadrature(self.wavenumber, tolerance)?))
+    }
+
     /// TEMP
     pub fn evaluate_along(&self, c: Contour) -> Result<Estimate, Error> {
         let i = Integral::new(self.integral.phase().clone(), c).amplitude(self.integral.amplitude_ref().clone());
         Ok(self.finish(i.plan()?.at(self.wavenumber)?))
+    }
+    /// TEMP
+    pub fn quadrature_along(&self, c: Contour) -> Result<Estimate, Error> {
+        let i = Integral::new(self.integral.phase().clone(), c).amplitude(self.integral.amplitude_ref().clone());
+        Ok(self.finish(i.quadrature(self.wavenumber, 1e-9)?))
     }
 
     /// Multiplies by the prefactor and adds what is neglected to the error.
