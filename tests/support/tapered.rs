@@ -85,7 +85,8 @@ impl Taper {
     /// The adiabatic mode of unit energy: `kappa cot(kappa h) = -m gamma`, `kappa^2 + gamma^2 = 1`.
     fn mode(&self, h: f64) -> impl Fn(f64) -> C {
         let (n, m) = (f64::from(self.mode), self.m);
-        let (mut low, mut high) = ((n - 0.5) * std::f64::consts::PI / h, 1f64.min(n * std::f64::consts::PI / h));
+        let (mut low, mut high) =
+            ((n - 0.5) * std::f64::consts::PI / h, 1f64.min(n * std::f64::consts::PI / h));
         for _ in 0..60 {
             let k = 0.5 * (low + high);
             let g = (1.0 - k * k).max(0.0).sqrt();
@@ -96,9 +97,7 @@ impl Taper {
         let edge = (k * h).sin();
         let energy = 0.5 * h - (2.0 * k * h).sin() / (4.0 * k) + m * edge * edge / (2.0 * g);
         let size = energy.sqrt().recip();
-        move |x| {
-            C::from(size * if x < h { (k * x).sin() } else { edge * (-g * (x - h)).exp() })
-        }
+        move |x| C::from(size * if x < h { (k * x).sin() } else { edge * (-g * (x - h)).exp() })
     }
 
     fn single(&self, widths: &[f64], mesh: Mesh) -> Vec<Snapshot> {
@@ -195,7 +194,11 @@ impl System {
     fn new(nodes: usize) -> Self {
         let zero = C::from(0.0);
         let row = Row { left: [zero; 3], right: [zero; 3] };
-        System { rows: vec![row; nodes + 1], pivots: vec![zero; nodes + 1], work: vec![zero; nodes + 1] }
+        System {
+            rows: vec![row; nodes + 1],
+            pivots: vec![zero; nodes + 1],
+            work: vec![zero; nodes + 1],
+        }
     }
 
     fn clear(&mut self, from: usize, to: usize) {
