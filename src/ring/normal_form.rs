@@ -142,7 +142,7 @@ impl NormalForm {
                 step = step.max(c.norm());
             }
             let scale = self.map[1].norm();
-            if !(step.is_finite() && step < 10.0 * scale) {
+            if !(step.is_finite() && step < 10.0 * scale && step < 4.0 * last_step) {
                 return false;
             }
             // Settled: at the rounding level, or small and no longer falling.
