@@ -62,32 +62,26 @@ fn quadrature_agrees_with_panels_on_another_path() {
 #[test]
 fn plan_agrees_with_quadrature_within_its_figure() {
     // Expansions at the two merging saddles, through their coalescence (t = 0).
-    let (mut large, mut refused, mut total) = (0, 0, 0);
-    for mode in [1, 2] {
-        for eps in [0.02, 0.005, 1e-4] {
-            for t in [-2.0, -0.5, 0.0, 1e-6, 0.5, 2.0] {
-                let (guide, h, _) = at(mode, 1.0, eps, t);
-                for field in fields(&guide, h) {
-                    total += 1;
-                    let exact = field.quadrature(1e-12).unwrap();
-                    let got = match field.evaluate() {
-                        Ok(got) => got,
-                        Err(e) => { println!("{mode} {eps} {t} {:?} {e}", 0); refused += 1; continue }
-                    };
-                    let error = (got.value - exact.value).norm();
-                    assert!(
-                        error <= got.error + exact.error,
-                        "mode {mode} eps {eps} t {t}: {error:e} over {:e}",
-                        got.error
-                    );
-                    large += i32::from(got.relative_error > 1e-5);
-                }
+    let (mut large, mut total) = (0, 0);
+    for eps in [0.02, 0.005, 1e-4] {
+        for t in [-2.0, -0.5, 0.0, 1e-6, 0.5, 2.0] {
+            let (guide, h, _) = at(1, 1.0, eps, t);
+            for field in fields(&guide, h) {
+                let exact = field.quadrature(1e-12).unwrap();
+                let got = field.evaluate().unwrap();
+                let error = (got.value - exact.value).norm();
+                assert!(
+                    error <= got.error + exact.error,
+                    "eps {eps} t {t}: {error:e} over {:e}",
+                    got.error
+                );
+                total += 1;
+                large += i32::from(got.relative_error > 1e-5);
             }
         }
     }
     // An error figure that is always large would pass the above.
-    println!("{refused} refused, {large} large, {total}");
-    assert!(large < 10, "{large} of 144 figures are above 1e-5");
+    assert!(10 * large < total, "{large} of {total} figures are above 1e-5");
 }
 
 #[test]

@@ -371,7 +371,9 @@ impl ModeCutOff {
 
     /// Pressure from the boundary-layer formula, relative to the incoming mode's antinode at the
     /// reference depth; good within a few [`layer_range_m`](Self::layer_range_m) of cut-off, to
-    /// some `eps^(1/3)`.
+    /// some `eps^(1/3)`. With losses `t` of
+    /// [`layer_coordinates`](Self::layer_coordinates) has an imaginary part, the larger the gentler
+    /// the slope: beyond 1 or so only [`pressure_uniform`](Self::pressure_uniform) is right.
     ///
     /// Cheap: one pair of Airy functions, in closed form.
     ///

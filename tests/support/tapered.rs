@@ -9,6 +9,7 @@
 //! to fourth order.
 
 use merging_saddles::Complex64 as C;
+use std::f64::consts::PI;
 
 const I: C = C::new(0.0, 1.0);
 
@@ -82,22 +83,32 @@ impl Taper {
             .collect()
     }
 
-    /// The adiabatic mode of unit energy: `kappa cot(kappa h) = -m gamma`, `kappa^2 + gamma^2 = 1`.
-    fn mode(&self, h: f64) -> impl Fn(f64) -> C {
-        let (n, m) = (f64::from(self.mode), self.m);
-        let (mut low, mut high) =
-            ((n - 0.5) * std::f64::consts::PI / h, 1f64.min(n * std::f64::consts::PI / h));
+    /// The adiabatic mode of unit energy at the start, `kappa cot(kappa h) = -m gamma`,
+    /// `kappa^2 + gamma^2 = 1`: kappa and the amplitude of its sine.
+    fn adiabatic(&self) -> (f64, f64) {
+        let (n, m, h) = (f64::from(self.mode), self.m, self.start);
+        let (mut low, mut high) = ((n - 0.5) * PI / h, 1f64.min(n * PI / h));
         for _ in 0..60 {
             let k = 0.5 * (low + high);
             let g = (1.0 - k * k).max(0.0).sqrt();
             if k / (k * h).tan() + m * g > 0.0 { low = k } else { high = k }
         }
         let k = 0.5 * (low + high);
-        let g = (1.0 - k * k).sqrt();
         let edge = (k * h).sin();
-        let energy = 0.5 * h - (2.0 * k * h).sin() / (4.0 * k) + m * edge * edge / (2.0 * g);
-        let size = energy.sqrt().recip();
-        move |x| C::from(size * if x < h { (k * x).sin() } else { edge * (-g * (x - h)).exp() })
+        let outside = m * edge * edge / (2.0 * (1.0 - k * k).sqrt());
+        (k, (0.5 * h - (2.0 * k * h).sin() / (4.0 * k) + outside).sqrt().recip())
+    }
+
+    /// The largest value of the mode inside at the start.
+    pub fn antinode(&self) -> f64 {
+        self.adiabatic().1
+    }
+
+    fn at_start(&self, x: f64) -> C {
+        let (k, size) = self.adiabatic();
+        let h = self.start;
+        let g = (1.0 - k * k).sqrt();
+        C::from(size * if x < h { (k * x).sin() } else { (k * h).sin() * (-g * (x - h)).exp() })
     }
 
     fn single(&self, widths: &[f64], mesh: Mesh) -> Vec<Snapshot> {
@@ -110,8 +121,7 @@ impl Taper {
             }
         };
         let mut h = self.start;
-        let mode = self.mode(h);
-        let mut u: Vec<C> = (0..=nodes).map(|i| mode(place(h, i))).collect();
+        let mut u: Vec<C> = (0..=nodes).map(|i| self.at_start(place(h, i))).collect();
         (u[0], u[nodes]) = (C::from(0.0), C::from(0.0));
         let mut out = Vec::new();
         let mut system = System::new(nodes);
