@@ -180,14 +180,20 @@ impl SlopingGuide {
         Ok(UniformField { integral, wavenumber: size.recip(), prefactor, neglected })
     }
 
-    /// From the valley on the left, between `i pi/2 - artanh m` and `i pi/2`, to the right; with
-    /// the size of the exponential where it ends (0 at infinity).
+    /// From the valley on the left to the right, with the size of the exponential where it ends (0
+    /// at infinity).
     ///
     /// For `m > 1` it ends before the Brewster parameter, beyond which the integrand grows again.
     fn contour(&self, h: Complex64) -> Result<(Contour, f64), Error> {
         let m = self.dispersion.m;
-        let gate = if m < 1.0 { (0.5 * m.atanh()).min(0.5) } else { 0.5 };
-        let left = Complex64::new(-1.5, 0.75 * PI);
+        let gate = if self.dispersion.passes_left() {
+            m.atanh() + 0.35
+        } else if m < 1.0 {
+            (0.5 * m.atanh()).min(0.5)
+        } else {
+            0.5
+        };
+        let left = Complex64::new(-1.5f64.max(gate + 0.5), 0.75 * PI);
         let middle = Complex64::new(-gate, FRAC_PI_2);
         // Near the saddles but on none of them: a contour that is flowed downhill would rest there.
         let near = Complex64::new(0.1, 0.3);
@@ -311,9 +317,10 @@ impl UniformField {
     /// The error figure is that of the integral (and of what is neglected at the Brewster
     /// parameter), not of the formula in `eps`. Cost: a plan, some 4 ms.
     ///
-    /// Errors: as [`Integral::plan`] and [`crate::Plan::at`]. Refused most often for `m` other than 1, where
-    /// the saddles' valleys run into the logarithms of the phase, and imprecise for higher modes, which have
-    /// a third saddle near (at `w = -i/((n/2 - 1/4) pi)` at cut-off): use [`quadrature`](Self::quadrature) then.
+    /// Errors: as [`Integral::plan`] and [`crate::Plan::at`]. Refused often for `m > 1`, where the
+    /// descent from the saddles runs into the Brewster point, and imprecise for higher modes, which
+    /// have a third saddle near (at `w = -2 i m/((n - 1/2) pi)` at cut-off): use
+    /// [`quadrature`](Self::quadrature) then.
     pub fn evaluate(&self) -> Result<Estimate, Error> {
         Ok(self.finish(self.integral.plan()?.at(self.wavenumber)?))
     }

@@ -14,7 +14,8 @@ pub fn panels(field: &UniformField, omega: f64, brewster: bool) -> C {
         C::new(0.0, 0.0),
         from,
         from + C::new(-0.35, 0.3),
-        C::new(-0.45, 1.571),
+        // On the same side of the logarithm of the phase as the field's contour.
+        field.integral().contour().points()[1],
         C::new(-3.0, 2.356),
     ];
     let (lift, end) = if brewster { (0.001, 0.98 * (1.0f64 / 1.4).atanh()) } else { (0.0, 3.0) };
