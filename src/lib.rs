@@ -59,6 +59,7 @@ mod error;
 mod estimate;
 mod expansion;
 pub mod field;
+pub mod guide;
 pub mod integral;
 mod quadrature;
 pub mod ring;

@@ -1,4 +1,4 @@
 //! Functions of numbers: the ground floor, which knows no phases.
 
 pub mod airy;
-mod double_double;
+pub(crate) mod double_double;
