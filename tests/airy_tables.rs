@@ -56,15 +56,18 @@ fn natural_four(v: Airy<Complex64>, exact: &[Complex64], r: f64) -> Vec<f64> {
 
 #[test]
 fn complex_argument() {
-    let (mut plain, mut apart) = (vec![], vec![]);
+    let (mut plain, mut apart, mut alone) = (vec![], vec![], vec![]);
     for row in table("airy_complex") {
         let row = complex(&row);
         let z = row[0];
         plain.extend(natural_four(airy(z), &row[1..], z.norm()));
+        alone.push(natural([ai(z), row[2]], [row[1], row[2]], z.norm())[0]);
+        alone.push(natural([bi(z), row[4]], [row[3], row[4]], z.norm())[0]);
         let extended = four(airy_extended(z)).map(Scaled::to_complex);
         let [ai, ai_prime, bi, bi_prime] = extended;
         apart.extend(natural_four(Airy { ai, ai_prime, bi, bi_prime }, &row[1..], z.norm()));
     }
+    judge("complex, alone", alone, 2e-15, 6e-16);
     judge("complex", plain, 2e-15, 6e-16);
     judge("complex, exponent apart", apart, 2e-15, 6e-16);
 }
@@ -119,7 +122,7 @@ fn exponent_apart_and_rotated() {
 
 #[test]
 fn real_argument() {
-    let (mut plain, mut scaled) = (vec![], vec![]);
+    let (mut plain, mut alone, mut scaled) = (vec![], vec![], vec![]);
     for row in table("airy_real") {
         let x = row[0];
         let exact = &row[1..];
@@ -134,12 +137,47 @@ fn real_argument() {
         };
         let v = four(airy_real(x));
         plain.extend((0..4).map(|i| (v[i] - exact[i]).abs() / scales[i]));
+        alone.push((ai_real(x) - exact[0]).abs() / scales[0]);
+        alone.push((bi_real(x) - exact[2]).abs() / scales[2]);
         // The scaled values where the exponential is known without effort.
         if (0.0..1e-12).contains(&x.abs()) {
             let v = four(airy_real_scaled(x));
             scaled.extend((0..4).map(|i| (v[i] - exact[i]).abs() / scales[i]));
         }
     }
+    judge("real, alone", alone, 1e-15, 6e-16);
     judge("real", plain, 1e-15, 6e-16);
     assert!(scaled.iter().all(|e| *e < 1e-15) && scaled.len() >= 4);
+}
+
+#[test]
+fn real_zeros() {
+    let mut errors = vec![];
+    for row in table("airy_zeros") {
+        let k = row[0] as usize;
+        for (i, zero) in
+            [ai_zero(k), ai_prime_zero(k), bi_zero(k), bi_prime_zero(k)].iter().enumerate()
+        {
+            let zero = zero.as_ref().expect("k is at least 1");
+            errors.push((zero.location / row[2 * i + 1] - 1.0).abs());
+            errors.push((zero.value / row[2 * i + 2] - 1.0).abs());
+        }
+    }
+    judge("real zeros", errors, 1e-15, 1e-15);
+    assert!(ai_zero(0).is_err() && bi_complex_zero(0).is_err());
+}
+
+#[test]
+fn complex_zeros() {
+    let mut errors = vec![];
+    for row in table("airy_complex_zeros") {
+        let k = row[0] as usize;
+        let exact = complex(&row[1..]);
+        for (i, zero) in [bi_complex_zero(k), bi_prime_complex_zero(k)].iter().enumerate() {
+            let zero = zero.as_ref().expect("k is at least 1");
+            errors.push((zero.location / exact[2 * i] - 1.0).norm());
+            errors.push((zero.value / exact[2 * i + 1] - 1.0).norm());
+        }
+    }
+    judge("complex zeros", errors, 1e-15, 1e-15);
 }
