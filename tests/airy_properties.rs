@@ -106,6 +106,39 @@ proptest! {
         }
     }
 
+    /// Gi + Hi = Bi (DLMF 9.12.11), and the phase functions reproduce the values (9.8.1, 9.8.5).
+    #[test]
+    fn scorer_and_modulus(z in disc(60.0)) {
+        let (s, v) = (scorer(z), airy(z));
+        let size = largest(&[s.gi, s.hi, v.bi]) + largest(&[s.gi_prime, s.hi_prime, v.bi_prime]) / (1.0 + z.norm()).sqrt();
+        prop_assert!((s.gi + s.hi - v.bi).norm() <= 3e-15 * size);
+        let x = -z.norm();
+        let (m, v) = (modulus_phase(x).unwrap(), airy_real(x));
+        let turn = 1e-15 * (3.0 + m.phase);
+        prop_assert!((m.modulus * m.phase.sin() - v.ai).abs() <= turn * m.modulus);
+        prop_assert!((m.modulus * m.phase.cos() - v.bi).abs() <= turn * m.modulus);
+        prop_assert!((m.prime_modulus * m.prime_phase.sin() - v.ai_prime).abs() <= turn * m.prime_modulus);
+        prop_assert!((m.prime_modulus * m.prime_phase.cos() - v.bi_prime).abs() <= turn * m.prime_modulus);
+    }
+
+    /// The equation of Hi, u'' = z u + 1/pi (DLMF 9.12.1), and the integral of Ai: differences over a
+    /// short step against Simpson's rule.
+    #[test]
+    fn scorer_equation(z in disc(40.0), angle in -PI..PI) {
+        let h = Complex64::from_polar(1e-3 / (1.0 + z.norm().sqrt()), angle);
+        let (a, b, c) = (scorer(z - h), scorer(z), scorer(z + h));
+        let step = ((z + h) - (z - h)) / 6.0;
+        let size = largest(&[a.hi_prime, c.hi_prime]) + largest(&[a.hi, c.hi]) * (1.0 + z.norm()).sqrt();
+        let second = |u: Complex64, z: Complex64| z * u + 1.0 / PI;
+        let simpson = step * (second(a.hi, z - h) + 4.0 * second(b.hi, z) + second(c.hi, z + h));
+        prop_assert!((c.hi_prime - a.hi_prime - simpson).norm() <= 5e-15 * size);
+        let (i, j) = (ai_integral(z - h), ai_integral(z + h));
+        let simpson = step * (airy(z - h).ai + 4.0 * airy(z).ai + airy(z + h).ai);
+        let size = largest(&[i.to_infinity, j.to_infinity]);
+        prop_assert!((i.to_infinity - j.to_infinity - simpson).norm() <= 5e-15 * size);
+        prop_assert!((i.from_zero + i.to_infinity - 1.0 / 3.0).norm() <= 2e-15 * size.max(0.3));
+    }
+
     /// No input makes any of them panic, and the modulus of what is plain never exceeds what is apart.
     #[test]
     fn any_bits(re in any::<f64>(), im in any::<f64>()) {
@@ -121,6 +154,11 @@ proptest! {
         ai_real(re);
         bi_real(re);
         airy_real_scaled(re);
+        scorer(z);
+        scorer_real(re);
+        ai_integral(z);
+        ai_integral_real(re);
+        prop_assert_eq!(modulus_phase(re).is_ok(), re <= 0.0 && re.is_finite());
         if e.ai.is_finite() {
             let plain = e.ai.to_complex();
             prop_assert!((v.ai - plain).norm() <= 1e-14 * plain.norm() + 1e-300 || !plain.norm().is_finite());

@@ -181,3 +181,86 @@ fn complex_zeros() {
     }
     judge("complex zeros", errors, 1e-15, 1e-15);
 }
+
+/// Relative to the modulus.
+fn relative(value: Complex64, exact: Complex64) -> f64 {
+    if exact.norm() == 0.0 { value.norm() } else { (value - exact).norm() / exact.norm() }
+}
+
+#[test]
+fn scorer_functions() {
+    let (mut errors, mut far, mut scale) = (vec![], vec![], vec![]);
+    let rows =
+        table("scorer").into_iter().chain(table("airy_integrals").into_iter().map(|mut r| {
+            r.drain(2..6);
+            r
+        }));
+    for row in rows {
+        let row = complex(&row);
+        let (z, r) = (row[0], row[0].norm());
+        let v = scorer(z);
+        let values = [v.gi, v.gi_prime, v.hi, v.hi_prime];
+        let list = if r <= 25.0 { &mut errors } else { &mut far };
+        list.extend((0..4).map(|i| relative(values[i], row[i + 1])));
+        scale.extend(natural([values[0], values[1]], [row[1], row[2]], r));
+        scale.extend(natural([values[2], values[3]], [row[3], row[4]], r));
+    }
+    // Two of the points lie close to zeros: 2e-14 and 3e-15 there.
+    judge("scorer |z| <= 25, relative", errors, 3e-14, 1e-15);
+    judge("scorer |z| <= 100, relative", far, 1e-15, 1e-15);
+    judge("scorer, natural scale", scale, 2e-15, 1e-15);
+}
+
+#[test]
+fn integrals_of_ai() {
+    let (mut zero, mut infinity) = (vec![], vec![]);
+    for row in table("airy_integrals") {
+        let row = complex(&row);
+        let v = ai_integral(row[0]);
+        zero.push(relative(v.from_zero, row[1]));
+        infinity.push(relative(v.to_infinity, row[2]));
+    }
+    judge("integral of Ai from 0", zero, 1e-15, 1e-15);
+    judge("integral of Ai to infinity", infinity, 1e-15, 1e-15);
+}
+
+/// theta(a_k) = k pi, theta(b_k) = (k - 1/2) pi, phi(a'_k) = (k - 1) pi, phi(b'_k) = (k - 1/2) pi
+/// (DLMF 9.8.3, 9.8.7 with the values at 0), and the moduli from the values there.
+#[test]
+fn modulus_and_phase() {
+    use std::f64::consts::PI;
+    let mut errors = vec![];
+    for row in table("airy_zeros") {
+        let k = row[0];
+        let at = |i: usize| modulus_phase(row[i]).expect("zeros are negative");
+        let (a, a1, b, b1) = (at(1), at(3), at(5), at(7));
+        let phases = [
+            (a.phase, k),
+            (a1.prime_phase, k - 1.0),
+            (b.phase, k - 0.5),
+            (b1.prime_phase, k - 0.5),
+        ];
+        errors.extend(
+            phases.map(|(value, turns)| (value - turns * PI).abs() / (turns * PI).max(1.0)),
+        );
+        // At a zero of one function the other is the modulus; by the Wronskian (DLMF 9.2.7) it is
+        // 1/(pi |value|), value being what the table lists beside the zero.
+        for (modulus, value) in [
+            (a.modulus, row[2]),
+            (a1.prime_modulus, row[4]),
+            (b.modulus, row[6]),
+            (b1.prime_modulus, row[8]),
+        ] {
+            errors.push((modulus * value.abs() * PI - 1.0).abs());
+        }
+        // DLMF 9.8.13.
+        for v in [a, a1, b, b1] {
+            let sine = (v.phase - v.prime_phase).sin();
+            // The phases themselves are rounded: their last place times the slope of the sine.
+            let tolerance =
+                4.0 * f64::EPSILON * (1.0 + v.phase.abs() * v.modulus * v.prime_modulus);
+            assert!((v.modulus * v.prime_modulus * sine * PI - 1.0).abs() <= 4.0 * tolerance);
+        }
+    }
+    judge("modulus and phase", errors, 1e-15, 1e-15);
+}

@@ -73,6 +73,8 @@ fn terms(size: f64) -> usize {
 /// `1/(2 sqrt(pi))`.
 const HALF_RSQRT_PI: f64 = 0.282_094_791_773_878_14;
 
+/// `1/sqrt(pi)`.
+pub(super) const RSQRT_PI: f64 = 0.564_189_583_547_756_3;
 /// `1/sqrt(2 pi)`.
 const RSQRT_TAU: f64 = 0.398_942_280_401_432_7;
 
@@ -190,13 +192,19 @@ pub(super) fn growing(zeta: f64, w: f64) -> [f64; 4] {
     ]
 }
 
+/// Even and odd parts of the expansions with `u_k` and `v_k` at `1/(i xi)`, the odd ones without `1/i`.
+#[inline]
+pub(super) fn parts(xi: f64) -> [f64; 4] {
+    let t = 1.0 / xi;
+    let [u_even, u_odd, v_even, v_odd] = f64::polynomials(&SERIES[..terms(xi)], -t * t);
+    [u_even, t * u_odd, v_even, t * v_odd]
+}
+
 /// Ai, Ai', Bi, Bi' for `x = -y`, `y >= RADIUS`, given `xi = (2/3) y^(3/2)`, `sqrt y`, and sine and
 /// cosine of xi (DLMF 9.7.9 to 9.7.12; the phase xi - pi/4 is taken apart).
 #[inline]
 pub(super) fn oscillating(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 4] {
-    let t = 1.0 / xi;
-    let [u_even, u_odd, v_even, v_odd] = f64::polynomials(&SERIES[..terms(xi)], -t * t);
-    let (u_odd, v_odd) = (t * u_odd, t * v_odd);
+    let [u_even, u_odd, v_even, v_odd] = parts(xi);
     let root = w.sqrt();
     let (g, h) = (RSQRT_TAU / root, RSQRT_TAU * root);
     let (sum, difference) = (cos + sin, cos - sin);

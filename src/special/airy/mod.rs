@@ -14,14 +14,21 @@
 //! infinity for Bi on the positive real axis, `e^zeta Ai` in full) and NaN for the rest.
 
 mod asymptotic;
+mod integral;
+mod modulus;
 mod nodes;
 mod pair;
 mod scaled;
+mod scorer;
+mod scorer_nodes;
 mod single;
 mod taylor;
 mod zeros;
 
+pub use self::integral::{AiryIntegral, ai_integral, ai_integral_real};
+pub use self::modulus::{ModulusPhase, modulus_phase};
 pub use self::scaled::{airy_real_scaled, airy_scaled};
+pub use self::scorer::{Scorer, scorer, scorer_real};
 pub use self::single::{ai, ai_real, bi, bi_real};
 pub use self::zeros::{
     Zero, ai_prime_zero, ai_zero, bi_complex_zero, bi_prime_complex_zero, bi_prime_zero, bi_zero,

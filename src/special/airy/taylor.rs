@@ -9,13 +9,15 @@
 //!
 //! with real polynomials that are the same at every node. They follow from the recurrence
 //! `t_(n+2) = (q t_n + c t_(n-1))/((n+1)(n+2))` of the Taylor terms (the differential equation,
-//! DLMF 9.2.1, at `z0`). The solution of `p'' = z p + 1` that vanishes at `z0` with its derivative
-//! is `d^2 sum_j c^j R_j(q)` by the same recurrence. All polynomials are evaluated side by side;
+//! DLMF 9.2.1, at `z0`). A solution of `u'' = z u + r`, r constant, is
+//! `u(z0) (1 + h) + u'(z0) g + u''(z0) p` with `h'' = z h + d` and `p'' = z p + 1`, both zero with
+//! their derivatives at `z0` (`1 + h = f - z0 p`: r enters through `u''` alone, and nothing cancels
+//! where u is algebraic). All polynomials are evaluated side by side;
 //! one with real coefficients at a complex point takes the three-term form of the recurrence
 //! (common practice), which needs half the multiplications of Horner's.
 //!
-//! Region: `|z| < 14.7`, `|d| <= sqrt(2)/4` (real: `|z| < 8.8`, `|d| <= 1/4`); the neglected terms
-//! are below 2e-17.
+//! Region: `|d| <= sqrt(2)/4` (real: 1/4), `|z| < 8.8` for the Airy, 16 for the Scorer functions; the neglected terms
+//! are below 1e-16 of the largest.
 
 use super::nodes::{NODES, ROW, SPACING};
 use num_complex::Complex64;
@@ -28,10 +30,14 @@ const POWERS: usize = 11;
 /// Coefficients of M series at one power of `c`, by powers of `q`.
 type Level<const M: usize> = [[f64; M]; POWERS];
 
-/// `phi[j][k]` of `sum phi c^j q^k`, for f (start 0), g/d (start 1) or p/d^2 (start 2).
+/// `phi[j][k]` of `sum phi c^j q^k`, for f (start 0), g/d (start 1), p/d^2 (2) or h/d^3 (3).
 const fn series(start: usize) -> [[f64; POWERS + 1]; LEVELS] {
     let mut phi = [[0.0; POWERS + 1]; LEVELS];
-    phi[0][0] = if start == 2 { 0.5 } else { 1.0 };
+    phi[0][0] = match start {
+        2 => 1.0 / 2.0,
+        3 => 1.0 / 6.0,
+        _ => 1.0,
+    };
     let mut j = 0;
     while j < LEVELS {
         let mut k = 0;
@@ -90,15 +96,20 @@ const VALUES: [Level<2>; LEVELS] = {
     out
 };
 
-/// `p/d^2` and `p'/d`.
-const PARTICULAR: [Level<2>; LEVELS] = {
-    let p = series(2);
-    let mut out = [[[0.0; 2]; POWERS]; LEVELS];
+/// `g/d`, `p/d^2`, `h/d^3`, `g'`, `p'/d`, `h'/d^2`.
+const INHOMOGENEOUS: [Level<6>; LEVELS] = {
+    let series = [series(1), series(2), series(3)];
+    let mut out = [[[0.0; 6]; POWERS]; LEVELS];
     let mut j = 0;
     while j < LEVELS {
         let mut k = 0;
         while k < POWERS {
-            out[j][k] = [p[j][k], (2 + 3 * j + 2 * k) as f64 * p[j][k]];
+            let mut i = 0;
+            while i < 3 {
+                out[j][k][i] = series[i][j][k];
+                out[j][k][3 + i] = (1 + i + 3 * j + 2 * k) as f64 * series[i][j][k];
+                i += 1;
+            }
             k += 1;
         }
         j += 1;
@@ -173,7 +184,7 @@ fn sums<P: Point, const M: usize>(levels: &[Level<M>; LEVELS], q: P, c: P) -> [[
 
 /// f, g, f', g' at the distance `d` from `z0`.
 #[inline]
-pub(super) fn unit_solutions<P: Point>(z0: P, d: P) -> [P; 4] {
+fn unit_solutions<P: Point>(z0: P, d: P) -> [P; 4] {
     let d2 = d * d;
     let c = d2 * d;
     let [low, high] = sums(&HOMOGENEOUS, z0 * d2, c);
@@ -194,13 +205,18 @@ fn unit_values<P: Point>(z0: P, d: P) -> [P; 2] {
     [low[0] + c * high[0], d * (low[1] + c * high[1])]
 }
 
-/// p and p'.
+/// The solution of `u'' = z u + r` and its derivative at the distance `d` from `z0`, where u, u', u''
+/// are known.
 #[inline]
-pub(super) fn particular<P: Point>(z0: P, d: P) -> [P; 2] {
+pub(super) fn inhomogeneous<P: Point>(z0: P, d: P, [u, u1, u2]: [P; 3]) -> [P; 2] {
     let d2 = d * d;
     let c = d2 * d;
-    let [low, high] = sums(&PARTICULAR, z0 * d2, c);
-    [d2 * (low[0] + c * high[0]), d * (low[1] + c * high[1])]
+    let [mut s, high] = sums(&INHOMOGENEOUS, z0 * d2, c);
+    for i in 0..6 {
+        s[i] = s[i] + c * high[i];
+    }
+    let [g, p, h, g1, p1, h1] = s;
+    [u + (d * (u1 * g) + d2 * (u2 * p) + c * (u * h)), u1 * g1 + d * (u2 * p1) + d2 * (u * h1)]
 }
 
 /// The nearest node to a point: its indices, itself, and the step to the point.
@@ -217,6 +233,9 @@ fn round(x: f64) -> f64 {
     const ROUNDER: f64 = 6_755_399_441_055_744.0; // 1.5 * 2^52
     (x + ROUNDER) - ROUNDER
 }
+
+/// Ai(0) and Ai'(0).
+pub(super) const ORIGIN: [f64; 2] = [0.355_028_053_887_817_24, -0.258_819_403_792_806_8];
 
 /// The node's Ai, Ai', B1, B1'.
 #[inline]
