@@ -45,7 +45,8 @@ def literals(values):
     for v in values:
         for part in (v.real, v.imag):
             assert part == 0 or part.rad() <= abs(part.mid()) * arb(2) ** -70, v
-            out.append(repr(float(part.mid()) + 0.0))
+            text = repr(float(part.mid()) + 0.0)
+            out.append(text.replace(repr(1 / math.pi), "std::f64::consts::FRAC_1_PI"))
     return out
 
 

@@ -25,7 +25,7 @@ pub struct AiryIntegral<T> {
 ///
 /// `to_infinity = pi (Ai Gi' - Ai' Gi)` (DLMF 9.10.1) in a form that does not cancel where Ai decays,
 /// `1 - pi (Ai Hi' - Ai' Hi)` (9.10.2) beyond `arg z = +-2 pi/3`; `from_zero` for `|z| < 1.5` by the
-/// power series (9.4.1, integrated). Overflow, NaN and range as in [`scorer`].
+/// power series (9.4.1, integrated). Overflow, NaN and range as in [`scorer`](super::scorer()).
 ///
 /// Accuracy, relative to the modulus: 1e-15 away from the zeros. Cost: some 0.3 microseconds.
 ///

@@ -235,7 +235,7 @@ fn round(x: f64) -> f64 {
 }
 
 /// Ai(0) and Ai'(0).
-pub(super) const ORIGIN: [f64; 2] = [0.355_028_053_887_817_24, -0.258_819_403_792_806_8];
+pub(super) const ORIGIN: [f64; 2] = [0.355_028_053_887_817_2, -0.258_819_403_792_806_8];
 
 /// The node's Ai, Ai', B1, B1'.
 #[inline]

@@ -87,7 +87,7 @@ fn argument(k: usize, j: f64) -> f64 {
 
 /// `(-1)^k`.
 fn sign(k: usize) -> f64 {
-    if k % 2 == 0 { 1.0 } else { -1.0 }
+    if k.is_multiple_of(2) { 1.0 } else { -1.0 }
 }
 
 fn numbered(k: usize) -> Result<(), Error> {
