@@ -43,6 +43,11 @@ fn all(c: &mut Criterion) {
     run(c, "1024 airy_real -8..8", &line(-8.0, 8.0), airy_real);
     run(c, "1024 airy_real -100..100", &line(-100.0, 100.0), airy_real);
     run(c, "1024 ai_real -100..100", &line(-100.0, 100.0), ai_real);
+    run(c, "1024 scorer |z|<20", &wide, scorer);
+    run(c, "1024 scorer_real -20..20", &line(-20.0, 20.0), scorer_real);
+    run(c, "1024 ai_integral |z|<20", &wide, ai_integral);
+    run(c, "1024 modulus_phase -100..0", &line(-100.0, 0.0), modulus_phase);
+    run(c, "1024 incomplete_airy |x|<20", &wide, |x| incomplete_airy(x, x * 0.2));
 }
 
 criterion_group!(benches, all);

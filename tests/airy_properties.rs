@@ -139,6 +139,49 @@ proptest! {
         prop_assert!((i.from_zero + i.to_infinity - 1.0 / 3.0).norm() <= 2e-15 * size.max(0.3));
     }
 
+    /// Reflection t -> -conj(t): conj I_0(x, a) + I_0(conj x, -conj a) = 2 pi Ai(conj x) (from DLMF 9.5.4),
+    /// and the same with t under the integral: -conj I_1 + I_1 = -2 pi i Ai'.
+    #[test]
+    fn incomplete_reflection(x in disc(60.0), a in disc(9.0), on_saddle in any::<bool>()) {
+        let a = if on_saddle { (-x).sqrt() } else { a };
+        let v = incomplete_airy_extended(x, a).unwrap();
+        let w = incomplete_airy_extended(x.conj(), -a.conj()).unwrap();
+        let whole = airy_extended(x.conj());
+        for (one, two, sum) in [
+            (v.i0.conj(), w.i0, whole.ai * (2.0 * PI)),
+            (-v.i1.conj(), w.i1, whole.ai_prime * Complex64::new(0.0, -2.0 * PI)),
+        ] {
+            let top = [one, two, sum].iter().map(|s| s.exponent).max().unwrap();
+            prop_assert!((one + two + -sum).mantissa_at(top).norm() <= 2e-14, "{x} {a}");
+        }
+    }
+
+    /// I_m(x, a) - I_m(x, b) is the integral from a to b: the derivative by a, by central differences.
+    #[test]
+    fn incomplete_derivative(x in disc(20.0), a in disc(5.0), angle in -PI..PI) {
+        let h = Complex64::from_polar(1e-3 / (1.0 + (a * a + x).norm()), angle);
+        let (v, w) = (incomplete_airy(x, a - h).unwrap(), incomplete_airy(x, a + h).unwrap());
+        let f = |t: Complex64| (Complex64::I * t * (t * t / 3.0 + x)).exp();
+        let step = ((a + h) - (a - h)) / 6.0;
+        let simpson = step * (f(a - h) + 4.0 * f(a) + f(a + h));
+        let size = largest(&[v.i0, w.i0, simpson * 30.0]);
+        prop_assert!((v.i0 - w.i0 - simpson).norm() <= 1e-14 * size);
+        let g = |t: Complex64| t * f(t);
+        let simpson = step * (g(a - h) + 4.0 * g(a) + g(a + h));
+        let size = largest(&[v.i1, w.i1, simpson * 30.0]);
+        prop_assert!((v.i1 - w.i1 - simpson).norm() <= 1e-14 * size);
+    }
+
+    /// Every size of the arguments is answered or refused, and the refusal says why.
+    #[test]
+    fn incomplete_any_size(r in -30.0..8.0f64, s in -30.0..5.5f64, p in -PI..PI, q in -PI..PI) {
+        let (x, a) = (Complex64::from_polar(10f64.powf(r), p), Complex64::from_polar(10f64.powf(s), q));
+        match incomplete_airy_extended(x, a) {
+            Ok(v) => prop_assert!(v.i0.is_finite() && v.i1.is_finite() && !v.i0.is_zero()),
+            Err(e) => prop_assert!(matches!(e, merging_saddles::Error::NoDigits { .. }), "{e}"),
+        }
+    }
+
     /// No input makes any of them panic, and the modulus of what is plain never exceeds what is apart.
     #[test]
     fn any_bits(re in any::<f64>(), im in any::<f64>()) {
@@ -158,6 +201,7 @@ proptest! {
         scorer_real(re);
         ai_integral(z);
         ai_integral_real(re);
+        let _ = incomplete_airy(z, Complex64::new(im, re));
         prop_assert_eq!(modulus_phase(re).is_ok(), re <= 0.0 && re.is_finite());
         if e.ai.is_finite() {
             let plain = e.ai.to_complex();

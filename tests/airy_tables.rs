@@ -264,3 +264,24 @@ fn modulus_and_phase() {
     }
     judge("modulus and phase", errors, 1e-15, 1e-15);
 }
+
+#[test]
+fn incomplete_integrals() {
+    let (mut errors, mut far) = (vec![], vec![]);
+    for row in table("incomplete_airy") {
+        let row = complex(&row);
+        let v = incomplete_airy(row[0], row[1]).expect("finite arguments of moderate size");
+        errors.extend([relative(v.i0, row[2]), relative(v.i1, row[3])]);
+    }
+    for row in fields("incomplete_airy_far") {
+        let number = |i: usize| -> f64 { row[i].parse().unwrap() };
+        let (x, a) = (Complex64::new(number(0), number(1)), Complex64::new(number(2), number(3)));
+        let v = incomplete_airy_extended(x, a).expect("finite arguments of moderate size");
+        for (value, fields) in [(v.i0, &row[4..7]), (v.i1, &row[7..10])] {
+            let (digits, exponent) = exact(fields);
+            far.push(relative(value.mantissa_at(exponent), digits));
+        }
+    }
+    judge("incomplete Airy", errors, 2e-15, 2e-15);
+    judge("incomplete Airy, larger arguments", far, 5e-15, 5e-15);
+}

@@ -13,7 +13,7 @@ use num_complex::Complex64;
 use std::f64::consts::PI;
 
 /// The integral of Ai from two starting points.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct AiryIntegral<T> {
     /// The integral of Ai from 0 to z.
     pub from_zero: T,

@@ -14,6 +14,7 @@
 //! infinity for Bi on the positive real axis, `e^zeta Ai` in full) and NaN for the rest.
 
 mod asymptotic;
+mod incomplete;
 mod integral;
 mod modulus;
 mod nodes;
@@ -22,14 +23,17 @@ mod scaled;
 mod scorer;
 mod scorer_nodes;
 mod single;
+mod slices;
 mod taylor;
 mod zeros;
 
+pub use self::incomplete::{IncompleteAiry, incomplete_airy, incomplete_airy_extended};
 pub use self::integral::{AiryIntegral, ai_integral, ai_integral_real};
 pub use self::modulus::{ModulusPhase, modulus_phase};
 pub use self::scaled::{airy_real_scaled, airy_scaled};
 pub use self::scorer::{Scorer, scorer, scorer_real};
 pub use self::single::{ai, ai_real, bi, bi_real};
+pub use self::slices::*;
 pub use self::zeros::{
     Zero, ai_prime_zero, ai_zero, bi_complex_zero, bi_prime_complex_zero, bi_prime_zero, bi_zero,
 };
@@ -40,7 +44,7 @@ use crate::scaled::ldexp;
 use num_complex::Complex64;
 
 /// The four values of the Airy functions at one point.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Airy<T> {
     /// Ai.
     pub ai: T,
@@ -53,7 +57,7 @@ pub struct Airy<T> {
 }
 
 /// The rotated pair: Ai and Ai' at `z e^(2 pi i/3)` (`plus`) and at `z e^(-2 pi i/3)` (`minus`).
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Rotated<T> {
     /// Ai(z e^(2 pi i/3)).
     pub plus: T,

@@ -13,7 +13,7 @@ use crate::Error;
 use std::f64::consts::{FRAC_PI_4, TAU};
 
 /// Modulus and phase of the Airy functions at one point of the negative axis.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct ModulusPhase {
     /// `M = sqrt(Ai^2 + Bi^2)`.
     pub modulus: f64,

@@ -23,7 +23,7 @@ use num_complex::Complex64;
 use std::f64::consts::FRAC_1_PI;
 
 /// The Scorer functions and their derivatives at one point.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct Scorer<T> {
     /// Gi.
     pub gi: T,
