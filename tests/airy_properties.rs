@@ -106,6 +106,82 @@ proptest! {
         }
     }
 
+    /// Gi + Hi = Bi (DLMF 9.12.11), and the phase functions reproduce the values (9.8.1, 9.8.5).
+    #[test]
+    fn scorer_and_modulus(z in disc(60.0)) {
+        let (s, v) = (scorer(z), airy(z));
+        let size = largest(&[s.gi, s.hi, v.bi]) + largest(&[s.gi_prime, s.hi_prime, v.bi_prime]) / (1.0 + z.norm()).sqrt();
+        prop_assert!((s.gi + s.hi - v.bi).norm() <= 3e-15 * size);
+        let x = -z.norm();
+        let (m, v) = (modulus_phase(x).unwrap(), airy_real(x));
+        let turn = 1e-15 * (3.0 + m.phase);
+        prop_assert!((m.modulus * m.phase.sin() - v.ai).abs() <= turn * m.modulus);
+        prop_assert!((m.modulus * m.phase.cos() - v.bi).abs() <= turn * m.modulus);
+        prop_assert!((m.prime_modulus * m.prime_phase.sin() - v.ai_prime).abs() <= turn * m.prime_modulus);
+        prop_assert!((m.prime_modulus * m.prime_phase.cos() - v.bi_prime).abs() <= turn * m.prime_modulus);
+    }
+
+    /// The equation of Hi, u'' = z u + 1/pi (DLMF 9.12.1), and the integral of Ai: differences over a
+    /// short step against Simpson's rule.
+    #[test]
+    fn scorer_equation(z in disc(40.0), angle in -PI..PI) {
+        let h = Complex64::from_polar(1e-3 / (1.0 + z.norm().sqrt()), angle);
+        let (a, b, c) = (scorer(z - h), scorer(z), scorer(z + h));
+        let step = ((z + h) - (z - h)) / 6.0;
+        let size = largest(&[a.hi_prime, c.hi_prime]) + largest(&[a.hi, c.hi]) * (1.0 + z.norm()).sqrt();
+        let second = |u: Complex64, z: Complex64| z * u + 1.0 / PI;
+        let simpson = step * (second(a.hi, z - h) + 4.0 * second(b.hi, z) + second(c.hi, z + h));
+        prop_assert!((c.hi_prime - a.hi_prime - simpson).norm() <= 5e-15 * size);
+        let (i, j) = (ai_integral(z - h), ai_integral(z + h));
+        let simpson = step * (airy(z - h).ai + 4.0 * airy(z).ai + airy(z + h).ai);
+        let size = largest(&[i.to_infinity, j.to_infinity]);
+        prop_assert!((i.to_infinity - j.to_infinity - simpson).norm() <= 5e-15 * size);
+        prop_assert!((i.from_zero + i.to_infinity - 1.0 / 3.0).norm() <= 2e-15 * size.max(0.3));
+    }
+
+    /// Reflection t -> -conj(t): conj I_0(x, a) + I_0(conj x, -conj a) = 2 pi Ai(conj x) (from DLMF 9.5.4),
+    /// and the same with t under the integral: -conj I_1 + I_1 = -2 pi i Ai'.
+    #[test]
+    fn incomplete_reflection(x in disc(60.0), a in disc(9.0), on_saddle in any::<bool>()) {
+        let a = if on_saddle { (-x).sqrt() } else { a };
+        let v = incomplete_airy_extended(x, a).unwrap();
+        let w = incomplete_airy_extended(x.conj(), -a.conj()).unwrap();
+        let whole = airy_extended(x.conj());
+        for (one, two, sum) in [
+            (v.i0.conj(), w.i0, whole.ai * (2.0 * PI)),
+            (-v.i1.conj(), w.i1, whole.ai_prime * Complex64::new(0.0, -2.0 * PI)),
+        ] {
+            let top = [one, two, sum].iter().map(|s| s.exponent).max().unwrap();
+            prop_assert!((one + two + -sum).mantissa_at(top).norm() <= 2e-14, "{x} {a}");
+        }
+    }
+
+    /// I_m(x, a) - I_m(x, b) is the integral from a to b: the derivative by a, by central differences.
+    #[test]
+    fn incomplete_derivative(x in disc(20.0), a in disc(5.0), angle in -PI..PI) {
+        let h = Complex64::from_polar(1e-3 / (1.0 + (a * a + x).norm()), angle);
+        let (v, w) = (incomplete_airy(x, a - h).unwrap(), incomplete_airy(x, a + h).unwrap());
+        let f = |t: Complex64| (Complex64::I * t * (t * t / 3.0 + x)).exp();
+        let step = ((a + h) - (a - h)) / 6.0;
+        let simpson = step * (f(a - h) + 4.0 * f(a) + f(a + h));
+        let size = largest(&[v.i0, w.i0, simpson * 30.0]);
+        prop_assert!((v.i0 - w.i0 - simpson).norm() <= 1e-14 * size);
+        let g = |t: Complex64| t * f(t);
+        let simpson = step * (g(a - h) + 4.0 * g(a) + g(a + h));
+        let size = largest(&[v.i1, w.i1, simpson * 30.0]);
+        prop_assert!((v.i1 - w.i1 - simpson).norm() <= 1e-14 * size);
+    }
+
+    /// Every size of the arguments is answered or refused, and the refusal says why.
+    #[test]
+    fn incomplete_any_size(r in -30.0..8.0f64, s in -30.0..5.5f64, p in -PI..PI, q in -PI..PI) {
+        let (x, a) = (Complex64::from_polar(10f64.powf(r), p), Complex64::from_polar(10f64.powf(s), q));
+        match incomplete_airy_extended(x, a) {
+            Ok(v) => prop_assert!(v.i0.is_finite() && v.i1.is_finite() && !v.i0.is_zero()),
+            Err(e) => prop_assert!(matches!(e, merging_saddles::Error::NoDigits { .. }), "{e}"),
+        }
+    }
+
     /// No input makes any of them panic, and the modulus of what is plain never exceeds what is apart.
     #[test]
     fn any_bits(re in any::<f64>(), im in any::<f64>()) {
@@ -116,7 +192,17 @@ proptest! {
         rotated(z);
         rotated_extended(z);
         airy_real(re);
+        ai(z);
+        bi(z);
+        ai_real(re);
+        bi_real(re);
         airy_real_scaled(re);
+        scorer(z);
+        scorer_real(re);
+        ai_integral(z);
+        ai_integral_real(re);
+        let _ = incomplete_airy(z, Complex64::new(im, re));
+        prop_assert_eq!(modulus_phase(re).is_ok(), re <= 0.0 && re.is_finite());
         if e.ai.is_finite() {
             let plain = e.ai.to_complex();
             prop_assert!((v.ai - plain).norm() <= 1e-14 * plain.norm() + 1e-300 || !plain.norm().is_finite());
@@ -152,7 +238,7 @@ fn edges() {
 
     for z in [Complex64::new(f64::NAN, 0.0), Complex64::new(1.0, f64::NAN)] {
         let (v, s, r) = (airy(z), airy_scaled(z), rotated(z));
-        for x in [v.ai, v.bi, v.ai_prime, v.bi_prime, s.ai, s.bi, r.plus, r.minus] {
+        for x in [ai(z), bi(z), v.ai, v.bi, v.ai_prime, v.bi_prime, s.ai, s.bi, r.plus, r.minus] {
             assert!(x.re.is_nan() || x.im.is_nan());
         }
         assert!(airy_extended(z).ai.mantissa.re.is_nan());
@@ -163,6 +249,7 @@ fn edges() {
     for x in [200.0, 1e5, 1e12, 1e13, 1e300, f64::INFINITY] {
         let (v, c) = (airy_real(x), airy(x.into()));
         assert_eq!((v.ai, v.ai_prime, v.bi, v.bi_prime), (0.0, 0.0, f64::INFINITY, f64::INFINITY));
+        assert_eq!((ai_real(x), bi_real(x)), (0.0, f64::INFINITY));
         assert_eq!((c.ai.re, c.bi.re, c.bi.im), (0.0, f64::INFINITY, 0.0));
         let s = airy_real_scaled(x);
         let expected = 0.5 / (PI.sqrt() * x.sqrt().sqrt());

@@ -56,15 +56,18 @@ fn natural_four(v: Airy<Complex64>, exact: &[Complex64], r: f64) -> Vec<f64> {
 
 #[test]
 fn complex_argument() {
-    let (mut plain, mut apart) = (vec![], vec![]);
+    let (mut plain, mut apart, mut alone) = (vec![], vec![], vec![]);
     for row in table("airy_complex") {
         let row = complex(&row);
         let z = row[0];
         plain.extend(natural_four(airy(z), &row[1..], z.norm()));
+        alone.push(natural([ai(z), row[2]], [row[1], row[2]], z.norm())[0]);
+        alone.push(natural([bi(z), row[4]], [row[3], row[4]], z.norm())[0]);
         let extended = four(airy_extended(z)).map(Scaled::to_complex);
         let [ai, ai_prime, bi, bi_prime] = extended;
         apart.extend(natural_four(Airy { ai, ai_prime, bi, bi_prime }, &row[1..], z.norm()));
     }
+    judge("complex, alone", alone, 2e-15, 6e-16);
     judge("complex", plain, 2e-15, 6e-16);
     judge("complex, exponent apart", apart, 2e-15, 6e-16);
 }
@@ -119,7 +122,7 @@ fn exponent_apart_and_rotated() {
 
 #[test]
 fn real_argument() {
-    let (mut plain, mut scaled) = (vec![], vec![]);
+    let (mut plain, mut alone, mut scaled) = (vec![], vec![], vec![]);
     for row in table("airy_real") {
         let x = row[0];
         let exact = &row[1..];
@@ -134,12 +137,151 @@ fn real_argument() {
         };
         let v = four(airy_real(x));
         plain.extend((0..4).map(|i| (v[i] - exact[i]).abs() / scales[i]));
+        alone.push((ai_real(x) - exact[0]).abs() / scales[0]);
+        alone.push((bi_real(x) - exact[2]).abs() / scales[2]);
         // The scaled values where the exponential is known without effort.
         if (0.0..1e-12).contains(&x.abs()) {
             let v = four(airy_real_scaled(x));
             scaled.extend((0..4).map(|i| (v[i] - exact[i]).abs() / scales[i]));
         }
     }
+    judge("real, alone", alone, 1e-15, 6e-16);
     judge("real", plain, 1e-15, 6e-16);
     assert!(scaled.iter().all(|e| *e < 1e-15) && scaled.len() >= 4);
+}
+
+#[test]
+fn real_zeros() {
+    let mut errors = vec![];
+    for row in table("airy_zeros") {
+        let k = row[0] as usize;
+        for (i, zero) in
+            [ai_zero(k), ai_prime_zero(k), bi_zero(k), bi_prime_zero(k)].iter().enumerate()
+        {
+            let zero = zero.as_ref().expect("k is at least 1");
+            errors.push((zero.location / row[2 * i + 1] - 1.0).abs());
+            errors.push((zero.value / row[2 * i + 2] - 1.0).abs());
+        }
+    }
+    judge("real zeros", errors, 1e-15, 1e-15);
+    assert!(ai_zero(0).is_err() && bi_complex_zero(0).is_err());
+}
+
+#[test]
+fn complex_zeros() {
+    let mut errors = vec![];
+    for row in table("airy_complex_zeros") {
+        let k = row[0] as usize;
+        let exact = complex(&row[1..]);
+        for (i, zero) in [bi_complex_zero(k), bi_prime_complex_zero(k)].iter().enumerate() {
+            let zero = zero.as_ref().expect("k is at least 1");
+            errors.push((zero.location / exact[2 * i] - 1.0).norm());
+            errors.push((zero.value / exact[2 * i + 1] - 1.0).norm());
+        }
+    }
+    judge("complex zeros", errors, 1e-15, 1e-15);
+}
+
+/// Relative to the modulus.
+fn relative(value: Complex64, exact: Complex64) -> f64 {
+    if exact.norm() == 0.0 { value.norm() } else { (value - exact).norm() / exact.norm() }
+}
+
+#[test]
+fn scorer_functions() {
+    let (mut errors, mut far, mut scale) = (vec![], vec![], vec![]);
+    let rows =
+        table("scorer").into_iter().chain(table("airy_integrals").into_iter().map(|mut r| {
+            r.drain(2..6);
+            r
+        }));
+    for row in rows {
+        let row = complex(&row);
+        let (z, r) = (row[0], row[0].norm());
+        let v = scorer(z);
+        let values = [v.gi, v.gi_prime, v.hi, v.hi_prime];
+        let list = if r <= 25.0 { &mut errors } else { &mut far };
+        list.extend((0..4).map(|i| relative(values[i], row[i + 1])));
+        scale.extend(natural([values[0], values[1]], [row[1], row[2]], r));
+        scale.extend(natural([values[2], values[3]], [row[3], row[4]], r));
+    }
+    // Two of the points lie close to zeros: 2e-14 and 3e-15 there.
+    judge("scorer |z| <= 25, relative", errors, 3e-14, 1e-15);
+    judge("scorer |z| <= 100, relative", far, 1e-15, 1e-15);
+    judge("scorer, natural scale", scale, 2e-15, 1e-15);
+}
+
+#[test]
+fn integrals_of_ai() {
+    let (mut zero, mut infinity) = (vec![], vec![]);
+    for row in table("airy_integrals") {
+        let row = complex(&row);
+        let v = ai_integral(row[0]);
+        zero.push(relative(v.from_zero, row[1]));
+        infinity.push(relative(v.to_infinity, row[2]));
+    }
+    judge("integral of Ai from 0", zero, 1e-15, 1e-15);
+    judge("integral of Ai to infinity", infinity, 1e-15, 1e-15);
+}
+
+/// theta(a_k) = k pi, theta(b_k) = (k - 1/2) pi, phi(a'_k) = (k - 1) pi, phi(b'_k) = (k - 1/2) pi
+/// (DLMF 9.8.3, 9.8.7 with the values at 0), and the moduli from the values there.
+#[test]
+fn modulus_and_phase() {
+    use std::f64::consts::PI;
+    let mut errors = vec![];
+    for row in table("airy_zeros") {
+        let k = row[0];
+        let at = |i: usize| modulus_phase(row[i]).expect("zeros are negative");
+        let (a, a1, b, b1) = (at(1), at(3), at(5), at(7));
+        let phases = [
+            (a.phase, k),
+            (a1.prime_phase, k - 1.0),
+            (b.phase, k - 0.5),
+            (b1.prime_phase, k - 0.5),
+        ];
+        errors.extend(
+            phases.map(|(value, turns)| (value - turns * PI).abs() / (turns * PI).max(1.0)),
+        );
+        // At a zero of one function the other is the modulus; by the Wronskian (DLMF 9.2.7) it is
+        // 1/(pi |value|), value being what the table lists beside the zero.
+        for (modulus, value) in [
+            (a.modulus, row[2]),
+            (a1.prime_modulus, row[4]),
+            (b.modulus, row[6]),
+            (b1.prime_modulus, row[8]),
+        ] {
+            errors.push((modulus * value.abs() * PI - 1.0).abs());
+        }
+        // DLMF 9.8.13.
+        for v in [a, a1, b, b1] {
+            let sine = (v.phase - v.prime_phase).sin();
+            // The phases themselves are rounded: their last place times the slope of the sine.
+            let tolerance =
+                4.0 * f64::EPSILON * (1.0 + v.phase.abs() * v.modulus * v.prime_modulus);
+            assert!((v.modulus * v.prime_modulus * sine * PI - 1.0).abs() <= 4.0 * tolerance);
+        }
+    }
+    judge("modulus and phase", errors, 1e-15, 1e-15);
+}
+
+#[test]
+fn incomplete_integrals() {
+    let (mut errors, mut far) = (vec![], vec![]);
+    for row in table("incomplete_airy") {
+        let row = complex(&row);
+        let v = incomplete_airy(row[0], row[1]).expect("finite arguments of moderate size");
+        errors.extend([relative(v.i0, row[2]), relative(v.i1, row[3])]);
+    }
+    for row in fields("incomplete_airy_far") {
+        let number = |i: usize| -> f64 { row[i].parse().unwrap() };
+        let (x, a) = (Complex64::new(number(0), number(1)), Complex64::new(number(2), number(3)));
+        let v = incomplete_airy_extended(x, a).expect("finite arguments of moderate size");
+        for (value, fields) in [(v.i0, &row[4..7]), (v.i1, &row[7..10])] {
+            let (digits, exponent) = exact(fields);
+            far.push(relative(value.mantissa_at(exponent), digits));
+        }
+    }
+    judge("incomplete Airy", errors, 2e-15, 2e-15);
+    judge("incomplete Airy, larger arguments", far, 5e-15, 5e-15);
 }

@@ -47,6 +47,13 @@ pub(crate) struct Dd {
 }
 
 impl Dd {
+    /// The sum, to about 2^-104 of the larger term.
+    #[inline]
+    pub(crate) fn plus(self, other: Dd) -> Dd {
+        let sum = two_sum(self.hi, other.hi);
+        quick_two_sum(sum.hi, sum.lo + (self.lo + other.lo))
+    }
+
     /// The product, to about 2^-102.
     #[inline]
     pub(crate) fn times(self, other: Dd) -> Dd {

@@ -15,7 +15,7 @@
 //! The phase: `w = sqrt z` has the error `dw = (z - w^2)/(2w)`, found from exact products, and
 //! `zeta = (2/3)(z w + z dw)`; an error of the phase would be one of every value.
 
-use super::taylor::{at_complex, at_real};
+use super::taylor::Point;
 use crate::special::double_double::{Dd, two_product, two_sum};
 use num_complex::Complex64;
 
@@ -42,6 +42,17 @@ const SERIES: [[f64; 4]; LONGEST] = {
     out
 };
 
+/// `u_2k`, `u_(2k+1)` alone.
+const VALUES: [[f64; 2]; LONGEST] = {
+    let mut out = [[0.0; 2]; LONGEST];
+    let mut k = 0;
+    while k < LONGEST {
+        out[k] = [SERIES[k][0], SERIES[k][1]];
+        k += 1;
+    }
+    out
+};
+
 /// Terms that leave an error below 1e-17 at the given `|zeta|`.
 #[inline]
 fn terms(size: f64) -> usize {
@@ -61,6 +72,11 @@ fn terms(size: f64) -> usize {
 
 /// `1/(2 sqrt(pi))`.
 const HALF_RSQRT_PI: f64 = 0.282_094_791_773_878_14;
+
+/// `1/sqrt(pi)`.
+pub(super) const RSQRT_PI: f64 = 0.564_189_583_547_756_3;
+/// `1/sqrt(2 pi)`.
+const RSQRT_TAU: f64 = 0.398_942_280_401_432_7;
 
 /// The square root of a number with `Im z >= 0` well inside the range.
 #[inline]
@@ -132,7 +148,8 @@ pub(super) fn beyond_stokes(z: Complex64) -> bool {
 pub(super) fn factors(zeta: Complex64, w: Complex64) -> [Complex64; 4] {
     let size = zeta.norm_sqr();
     let t = Complex64::new(zeta.re / size, -zeta.im / size);
-    let [u_even, u_odd, v_even, v_odd] = at_complex(&SERIES[..terms(size.sqrt())], t * t);
+    let [u_even, u_odd, v_even, v_odd] =
+        Complex64::polynomials(&SERIES[..terms(size.sqrt())], t * t);
     let (u_odd, v_odd) = (t * u_odd, t * v_odd);
     let root = sqrt(w);
     let scale = root.norm_sqr();
@@ -146,12 +163,25 @@ pub(super) fn factors(zeta: Complex64, w: Complex64) -> [Complex64; 4] {
     ]
 }
 
+/// `g P-` and `2 g P+` alone, zeta in double-double, and whether beyond the Stokes line.
+#[inline]
+pub(super) fn far_values(z: Complex64) -> ([Complex64; 2], (Dd, Dd), bool) {
+    let (re, im, w) = phase(z);
+    let size = re.hi * re.hi + im.hi * im.hi;
+    let t = Complex64::new(re.hi / size, -im.hi / size);
+    let [even, odd] = Complex64::polynomials(&VALUES[..terms(size.sqrt())], t * t);
+    let odd = t * odd;
+    let root = sqrt(w);
+    let g = root.conj() * (HALF_RSQRT_PI / root.norm_sqr());
+    ([g * (even - odd), g * (even + odd) * 2.0], (re, im), beyond_stokes(z))
+}
+
 /// `e^zeta Ai`, `e^zeta Ai'`, `e^-zeta Bi`, `e^-zeta Bi'` for real `x >= RADIUS`, given zeta and
 /// `sqrt x`.
 #[inline]
 pub(super) fn growing(zeta: f64, w: f64) -> [f64; 4] {
     let t = 1.0 / zeta;
-    let [u_even, u_odd, v_even, v_odd] = at_real(&SERIES[..terms(zeta)], t * t);
+    let [u_even, u_odd, v_even, v_odd] = f64::polynomials(&SERIES[..terms(zeta)], t * t);
     let root = w.sqrt();
     let (g, h) = (HALF_RSQRT_PI / root, HALF_RSQRT_PI * root);
     [
@@ -162,15 +192,19 @@ pub(super) fn growing(zeta: f64, w: f64) -> [f64; 4] {
     ]
 }
 
+/// Even and odd parts of the expansions with `u_k` and `v_k` at `1/(i xi)`, the odd ones without `1/i`.
+#[inline]
+pub(super) fn parts(xi: f64) -> [f64; 4] {
+    let t = 1.0 / xi;
+    let [u_even, u_odd, v_even, v_odd] = f64::polynomials(&SERIES[..terms(xi)], -t * t);
+    [u_even, t * u_odd, v_even, t * v_odd]
+}
+
 /// Ai, Ai', Bi, Bi' for `x = -y`, `y >= RADIUS`, given `xi = (2/3) y^(3/2)`, `sqrt y`, and sine and
 /// cosine of xi (DLMF 9.7.9 to 9.7.12; the phase xi - pi/4 is taken apart).
 #[inline]
 pub(super) fn oscillating(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 4] {
-    let t = 1.0 / xi;
-    let [u_even, u_odd, v_even, v_odd] = at_real(&SERIES[..terms(xi)], -t * t);
-    let (u_odd, v_odd) = (t * u_odd, t * v_odd);
-    // 1/sqrt(2 pi)
-    const RSQRT_TAU: f64 = 0.398_942_280_401_432_7;
+    let [u_even, u_odd, v_even, v_odd] = parts(xi);
     let root = w.sqrt();
     let (g, h) = (RSQRT_TAU / root, RSQRT_TAU * root);
     let (sum, difference) = (cos + sin, cos - sin);
@@ -180,4 +214,24 @@ pub(super) fn oscillating(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 4] {
         g * (difference * u_even + sum * u_odd),
         h * (sum * v_even - difference * v_odd),
     ]
+}
+
+/// The first and the third of [`growing`].
+#[inline]
+pub(super) fn growing_values(zeta: f64, w: f64) -> [f64; 2] {
+    let t = 1.0 / zeta;
+    let [even, odd] = f64::polynomials(&VALUES[..terms(zeta)], t * t);
+    let g = HALF_RSQRT_PI / w.sqrt();
+    [g * (even - t * odd), 2.0 * g * (even + t * odd)]
+}
+
+/// The first and the third of [`oscillating`].
+#[inline]
+pub(super) fn oscillating_values(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 2] {
+    let t = 1.0 / xi;
+    let [even, odd] = f64::polynomials(&VALUES[..terms(xi)], -t * t);
+    let odd = t * odd;
+    let g = RSQRT_TAU / w.sqrt();
+    let (sum, difference) = (cos + sin, cos - sin);
+    [g * (sum * even - difference * odd), g * (difference * even + sum * odd)]
 }
