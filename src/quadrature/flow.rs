@@ -157,7 +157,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
 
     fn push(&mut self, e: usize) {
         let (a, b) = self.ends_of(e);
-        let profile = Profile::of(&a, &b);
+        let profile = Profile::of(&a, &b, self.k);
         let rank = if profile.resolved { profile.top + profile.margin } else { f64::INFINITY };
         self.heap.push(Rank(rank, e));
     }
@@ -183,7 +183,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
     /// One move of one edge.
     fn serve(&mut self, e: usize, depth: f64) -> Result<(), Error> {
         let (a, b) = self.ends_of(e);
-        let profile = Profile::of(&a, &b);
+        let profile = Profile::of(&a, &b, self.k);
         let length = (b.z - a.z).norm();
         if !profile.resolved {
             if length <= 1e-13 * (a.z.norm() + b.z.norm()) {
@@ -278,7 +278,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let (old, new) = (self.nodes[node].orbit[at], self.nodes[node].orbit[at + 1]);
         let (a, b) = self.ends_of(e);
         let (a, b, other) = if side == 0 { (new, b, b) } else { (a, new, a) };
-        let after = Profile::of(&a, &b);
+        let after = Profile::of(&a, &b, self.k);
         let gained = self.k * (before.top - after.top);
         let unsure = self.k * (after.margin - before.margin).abs();
         let lowers = gained > if interior { 0.1 + unsure } else { -0.01 };
@@ -345,7 +345,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             let z = site.z + w - site.bend / (site.slope * 2.0) * w * w;
             if let Some(next) = self.sampler.site(z)
                 && next.h.re < site.h.re - 0.5 * length * slope
-                && Profile::of(&site, &next).resolved
+                && Profile::of(&site, &next, self.k).resolved
             {
                 *cap = 2.0 * length;
                 orbit.push(next);

@@ -97,7 +97,7 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
         let mut left_out = 0.0;
         let mut stack = vec![(piece, 0)];
         while let Some(((a, b), level)) = stack.pop() {
-            let profile = Profile::of(&a, &b);
+            let profile = Profile::of(&a, &b, self.k);
             let variation = self.k
                 * (b.z - a.z).norm()
                 * a.slope
@@ -151,8 +151,8 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
         let relative = if peak > 0.0 { (tail / peak).min(1.0) } else { 0.0 };
         let defect = 2.0 * length * tail * relative;
         let grass = grass.iter().map(|c| c.norm_sqr()).sum::<f64>().sqrt() * 0.5;
-        let stated = 0.5 * f64::EPSILON * self.sampler.noise_scale(mid);
-        let noise = 2.0 * f64::EPSILON + self.k * grass.max(stated);
+        let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale(mid);
+        let noise = 4.0 * f64::EPSILON + self.k * (2.0 * grass).max(stated);
         let size = size * length;
         Ok(Panel { from, to, value: value * half, size, defect, noise: noise * size })
     }
