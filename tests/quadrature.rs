@@ -56,7 +56,13 @@ impl Tally {
             "{}: {label}: error {relative:.2e} above its figure {figure:.2e}",
             self.name
         );
-        if ratio > 0.6 || (self.name=="fold, extreme k" ) { println!("HIGH {} {ratio:.2} rel {relative:.2e} size {:.1e} {label}", self.name, exact.ln_norm()); }
+        if ratio > 0.6 || self.name == "loose" && ratio > 0.5 {
+            println!(
+                "HIGH {} {ratio:.2} rel {relative:.2e} size {:.1e} {label}",
+                self.name,
+                exact.ln_norm()
+            );
+        }
         self.relative.push(relative);
         self.ratio.push(ratio);
         self.evaluations.push(evaluations(u) as f64);
@@ -270,6 +276,41 @@ fn error_functions_from_a_finite_end() {
         tally.add(&u, (w * (0.5 * PI.sqrt())).into(), &row.join(","));
     }
     tally.finish(rows.len());
+}
+
+/// Where few digits are asked for, the figure rests on the rule's error, not on rounding.
+#[test]
+fn loose_tolerances_are_met_and_figures_still_cover() {
+    for tolerance in [1e-2, 1e-4, 1e-6, 1e-9] {
+        let mut tally = Tally::new("loose");
+        for row in rows("polynomial_phases.csv") {
+            let coefficients: Vec<C> =
+                (7..row.len()).step_by(2).map(|i| complex(&row, i)).collect();
+            let phase = Polynomial(coefficients);
+            let contour = between_valleys(&phase, number(&row, 1), number(&row, 2));
+            let exact = Scaled::new(complex(&row, 4), row[6].parse().unwrap());
+            let name = row[3].clone();
+            let u = Integral::new(phase, contour)
+                .amplitude(move |z: C| match name.as_str() {
+                    "one" => c(1.0, 0.0),
+                    "cosh" => (z * 0.5).cosh(),
+                    _ => z - 0.25,
+                })
+                .quadrature(number(&row, 0), tolerance)
+                .unwrap();
+            tally.add(&u, exact, &row.join(","));
+        }
+        for row in rows("fold_extremes.csv").iter() {
+            let u = Integral::new(fold(number(row, 1)), fold_contour())
+                .quadrature(number(row, 0), tolerance)
+                .unwrap();
+            let exact = Scaled::new(c(0.0, number(row, 2)), row[3].parse().unwrap());
+            tally.add(&u, exact, &row.join(","));
+        }
+        let rows = tally.ratio.len();
+        assert!(rows > 200);
+        tally.finish(rows);
+    }
 }
 
 #[test]

@@ -146,11 +146,19 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
             }
         }
         let length = half.norm();
-        let tail = tail.iter().map(|c| c.norm()).fold(0.0, f64::max);
-        // Degree 32 is to degree 15 as 15 is to 0, at least: both for geometric decay and faster.
-        let relative = if peak > 0.0 { (tail / peak).min(1.0) } else { 0.0 };
-        let defect = 2.0 * length * tail * relative;
-        let grass = grass.iter().map(|c| c.norm_sqr()).sum::<f64>().sqrt() * 0.5;
+        let low = tail[0].norm().max(tail[1].norm());
+        let high = tail[2].norm().max(tail[3].norm());
+        // Degree 32 is to degree 15 as 15 is to 0, at least, for geometric decay and faster; where
+        // the last degrees fall off faster than that they are extrapolated, with some reserve.
+        let relative = if peak > 0.0 { (high / peak).min(1.0) } else { 0.0 };
+        let falling = if low > 0.0 { (high / low).min(1.0).powi(6) } else { 1.0 };
+        let relative = relative.min(falling.max(relative.powf(1.7)));
+        let defect = 2.0 * length * high * relative;
+        // Noise is flat in the degree: what still falls off is not noise.
+        let early = (grass[0].norm_sqr() + grass[1].norm_sqr()).sqrt();
+        let late = (grass[2].norm_sqr() + grass[3].norm_sqr()).sqrt();
+        let grass =
+            if late < 0.1 * early { late * (late / early).powi(2) } else { late.max(early) };
         let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale(mid);
         let noise = 4.0 * f64::EPSILON + self.k * (2.0 * grass).max(stated);
         let size = size * length;
@@ -162,12 +170,13 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
         let (a, b) = chord;
         let top = if a.h.re >= b.h.re { a } else { b };
         let length = (b.z - a.z).norm();
-        self.level(top) * length.min(2.0 / (self.k * top.slope.norm()))
+        2.0 * self.level(top) * length.min(1.0 / (self.k * top.slope.norm()))
     }
 
     /// A bound on what was left out from a point to infinity.
     pub fn tail(&self, site: &Site) -> f64 {
-        self.level(site) / (self.k * site.slope.norm())
+        // The first term of the expansion at an end point, doubled.
+        2.0 * self.level(site) / (self.k * site.slope.norm())
     }
 
     fn level(&self, site: &Site) -> f64 {
