@@ -189,8 +189,12 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             if length <= 1e-13 * (a.z.norm() + b.z.norm()) {
                 // A jump of the closure between neighbouring numbers.
                 return Err(Error::Undecided {
-                    reason: format!("the phase jumps on the contour, at z = {:.6}", a.z),
-                    remedy: "lead the contour clear of the phase's branch cuts",
+                    reason: format!(
+                        "at z = {:.6} on the contour the phase jumps, or its derivative is not \
+                         that of its value",
+                        a.z
+                    ),
+                    remedy: "lead the contour clear of branch cuts and check the derivative",
                 });
             }
             return self.split(e, 0.5);
@@ -210,14 +214,26 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
                 return self.split(e, 0.5);
             }
             if gain < SETTLED {
-                return self.settle(e, profile.top);
+                // A chord with more turns than decay costs panels: its lower end may go on.
+                let turns = self.k * (b.h.im - a.h.im).abs();
+                if turns <= 5.0 + 2.0 * self.k * (b.h.re - a.h.re).abs() {
+                    return self.settle(e, profile.top);
+                }
+                return match self.slide(e, 1 - higher, &profile, SETTLED / self.k, -0.01)? {
+                    Slide::Blocked => self.split(e, 0.5),
+                    _ => {
+                        self.push(e);
+                        Ok(())
+                    }
+                };
             }
         }
         for side in [higher, 1 - higher] {
             if !interior && side != higher {
                 break;
             }
-            match self.slide(e, side, &profile, interior)? {
+            let least = if interior { 0.1 } else { -0.01 };
+            match self.slide(e, side, &profile, f64::INFINITY, least)? {
                 Slide::Moved | Slide::Refined => {
                     self.push(e);
                     return Ok(());
@@ -262,14 +278,15 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         Ok(())
     }
 
-    /// Slides one end of a chord one step down its orbit if that lowers the edge and sweeps no
-    /// singularity.
+    /// Slides one end of a chord one step down its orbit if that lowers its top by `least` times
+    /// 1/k, leaves its margin below the one given and sweeps no singularity.
     fn slide(
         &mut self,
         e: usize,
         side: usize,
         before: &Profile,
-        interior: bool,
+        margin: f64,
+        least: f64,
     ) -> Result<Slide, Error> {
         let (node, at) = (self.edges[e].nodes[side], self.edges[e].at[side]);
         if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
@@ -281,7 +298,8 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let after = Profile::of(&a, &b, self.k);
         let gained = self.k * (before.top - after.top);
         let unsure = self.k * (after.margin - before.margin).abs();
-        let lowers = gained > if interior { 0.1 + unsure } else { -0.01 };
+        let lowers =
+            after.margin <= margin && gained > if least > 0.0 { least + unsure } else { least };
         if after.resolved && lowers && self.clear(old.z, new.z, other.z) {
             self.edges[e].at[side] += 1;
             return Ok(Slide::Moved);

@@ -18,7 +18,7 @@ use panels::Quadrature;
 use terrain::Sampler;
 
 /// Deepenings of the floor, should the amplitude grow into the valleys.
-const ROUNDS: usize = 8;
+const ROUNDS: usize = 12;
 
 impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// `I(k) = integral over C of g(z) exp(i k f(z)) dz` by quadrature on the contour flowed
@@ -31,6 +31,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         let sampler = Sampler::new(self);
         let mut flow = Flow::new(&sampler, self.contour(), k)?;
         let mut depth = 6.0 - tolerance.ln();
+        let mut last: Option<(f64, f64)> = None;
         for _ in 0..ROUNDS {
             flow.relax(depth)?;
             let flowed = flow.contour(depth)?;
@@ -58,7 +59,14 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 + flowed.tails.iter().map(|s| quadrature.tail(s)).sum::<f64>();
             let goal = (tolerance * sum.value.norm()).max(f64::EPSILON * sum.size);
             if left_out > 0.25 * goal {
-                depth += 2.0 + (left_out / goal).ln().max(0.0);
+                // What is left out falls with the depth, exponentially at a rate of at most 1.
+                let rate = match last {
+                    Some((above, before)) => (before / left_out).ln() / (depth - above),
+                    None => 1.0,
+                };
+                last = Some((depth, left_out));
+                let wanted = (4.0 * left_out / goal).ln() + 1.0;
+                depth += (wanted / rate.clamp(0.01, 1.0)).min(4.0 * depth);
                 continue;
             }
             let reference = reference_factor(k, summit.h);
@@ -75,8 +83,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         Err(Error::NoConvergence {
             what: "the depth to which the integrand was followed",
             limit: ROUNDS,
-            remedy: "the amplitude grows nearly as fast as exp(i k f) decays: put its exponential \
-                     part into the phase",
+            remedy: "it decays too slowly towards the ends: take a larger k, or put a growing \
+                     exponential of the amplitude into the phase",
         })
     }
 }
