@@ -14,26 +14,30 @@
 //! steepest descents: no oscillation along them. Only its cost depends on how well the descent
 //! went; its value does not, since every chord is in the class of the caller's contour.
 
-use super::terrain::{Profile, Sampler, Site};
+use super::terrain::{Flux, Profile, Sampler, Site};
 use crate::Error;
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use num_complex::Complex64;
 use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
-/// Evaluations of the phase after which the descent is given up.
-const EVALUATIONS: usize = 100_000;
+/// Evaluations of the phase after which the descent is given up. Some thousand are the rule; a
+/// contour that has to lean on a branch cut takes some hundred per unit of k.
+const EVALUATIONS: usize = 1_000_000;
 /// Steps of edges, most of which cost no evaluation.
-const MOVES: usize = 1_000_000;
+const MOVES: usize = 4_000_000;
 /// A chord is settled if its top is this near a saddle's height, in units of 1/k.
 const SETTLED: f64 = 0.25;
-/// Loop integrals of the amplitude count as zero below this fraction of perimeter times size.
-const LOOP: f64 = 1e-5;
+/// The loop integral of the amplitude round a triangle counts as zero below this fraction of its
+/// shortest side times the largest modulus: a thin triangle across a branch cut shows, too.
+const LOOP: f64 = 3e-5;
 /// Steps of the tail that runs to infinity.
 const TAIL: usize = 2_000;
 
 struct Node {
     orbit: Vec<Site>,
+    /// The amplitude along the steps of the orbit, as far as it was asked for.
+    flux: Vec<Option<Flux>>,
     /// The longest next step.
     cap: f64,
     /// The orbit cannot be continued.
@@ -53,6 +57,8 @@ struct Edge {
     nodes: [usize; 2],
     /// How far the chord's ends have slid down the two orbits.
     at: [usize; 2],
+    /// The amplitude along the chord, if it was asked for.
+    flux: Option<Flux>,
     state: State,
 }
 
@@ -87,8 +93,8 @@ pub(super) struct Flowed {
     pub pieces: Vec<(Site, Site)>,
     /// Pieces below the floor, left out.
     pub sunk: Vec<(Site, Site)>,
-    /// Points from which the contour runs on to infinity, left out.
-    pub tails: Vec<Site>,
+    /// Points from which the contour runs on to infinity, left out, each with a point farther out.
+    pub tails: Vec<(Site, Site)>,
     /// The floor, in units of `Re h`.
     pub floor: f64,
 }
@@ -127,13 +133,14 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             let site = sampler.site(z).ok_or(Error::NotFinite { what: "phase", at: z })?;
             nodes.push(Node {
                 orbit: vec![site],
+                flux: Vec::new(),
                 cap: 0.5 * size,
                 stalled: false,
                 left: i.checked_sub(1),
                 right: (i < last).then_some(i),
             });
             if i < last {
-                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], state: State::Open });
+                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], flux: None, state: State::Open });
             }
         }
         let ends = [contour.start(), contour.end()];
@@ -265,13 +272,14 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let cap = self.nodes[left].cap.max(self.nodes[right].cap);
         self.nodes.push(Node {
             orbit: vec![site],
+            flux: Vec::new(),
             cap,
             stalled: false,
             left: Some(e),
             right: Some(edge),
         });
-        self.edges[e] = Edge { nodes: [left, node], at: [i, 0], state: State::Open };
-        self.edges.push(Edge { nodes: [node, right], at: [0, j], state: State::Open });
+        self.edges[e] = Edge { nodes: [left, node], at: [i, 0], flux: None, state: State::Open };
+        self.edges.push(Edge { nodes: [node, right], at: [0, j], flux: None, state: State::Open });
         self.nodes[right].left = Some(edge);
         self.push(e);
         self.push(edge);
@@ -300,8 +308,12 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let unsure = self.k * (after.margin - before.margin).abs();
         let lowers =
             after.margin <= margin && gained > if least > 0.0 { least + unsure } else { least };
-        if after.resolved && lowers && self.clear(old.z, new.z, other.z) {
+        if after.resolved
+            && lowers
+            && let Some(flux) = self.clear(e, node, at, other.z)
+        {
             self.edges[e].at[side] += 1;
+            self.edges[e].flux = Some(flux);
             return Ok(Slide::Moved);
         }
         let step = (new.z - old.z).norm();
@@ -311,20 +323,37 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         Ok(Slide::Blocked)
     }
 
-    /// Whether the amplitude is analytic in a triangle, judged by its loop integral.
-    fn clear(&self, a: Complex64, b: Complex64, c: Complex64) -> bool {
-        let mut sum = Complex64::new(0.0, 0.0);
-        let mut scale = 0.0;
-        for (from, to) in [(a, b), (b, c), (c, a)] {
-            match self.sampler.amplitude_along(from, to) {
-                Some((part, size)) => {
-                    sum += part;
-                    scale += size;
-                }
-                None => return false,
-            }
+    /// Whether the amplitude is analytic in the triangle between a step of an orbit and the far
+    /// end of a chord, judged by its loop integral; if so, its integral along the new chord.
+    fn clear(&mut self, e: usize, node: usize, at: usize, far: Complex64) -> Option<Flux> {
+        let (old, new) = (self.nodes[node].orbit[at].z, self.nodes[node].orbit[at + 1].z);
+        // Chords run from the left orbit to the right one.
+        let left = self.edges[e].nodes[0] == node;
+        let chord = |from, to| {
+            if left { self.sampler.flux(from, to) } else { self.sampler.flux(to, from) }
+        };
+        let before = match self.edges[e].flux {
+            Some(flux) => flux,
+            None => chord(old, far)?,
+        };
+        let after = chord(new, far)?;
+        self.edges[e].flux = Some(before);
+        let steps = &mut self.nodes[node].flux;
+        if steps.len() <= at {
+            steps.resize(at + 1, None);
         }
-        sum.norm() <= LOOP * scale
+        let step = match steps[at] {
+            Some(flux) => flux,
+            None => self.sampler.flux(old, new)?,
+        };
+        steps[at] = Some(step);
+        let turned = after.sum - before.sum;
+        let sum = if left { step.sum + turned } else { step.sum - turned };
+        let sides = [(new - old).norm(), (far - old).norm(), (far - new).norm()];
+        let peak = step.peak.max(before.peak).max(after.peak);
+        let shortest = sides.iter().fold(f64::INFINITY, |s, &x| x.min(s));
+        let rounding = 8.0 * f64::EPSILON * sides.iter().sum::<f64>();
+        (sum.norm() <= (LOOP * shortest + rounding) * peak).then_some(after)
     }
 
     /// Halves a step of an orbit.
@@ -333,6 +362,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let z = (orbit[at].z + orbit[at + 1].z) * 0.5;
         let Some(site) = self.sampler.site(z) else { return Ok(Slide::Blocked) };
         self.nodes[node].orbit.insert(at + 1, site);
+        self.nodes[node].flux.truncate(at);
         let Node { left, right, .. } = self.nodes[node];
         for (edge, side) in [(left, 1), (right, 0)] {
             if let Some(e) = edge
@@ -395,7 +425,8 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
                 orbit[0].z,
                 orbit[orbit.len() - 1].z
             ),
-            remedy: "let the contour end inside a valley of |exp(i k f)|, or at a finite point",
+            remedy: "let the contour end inside a valley of |exp(i k f)| clear of branch cuts, or at \
+                     a finite point",
         })
     }
 
@@ -414,7 +445,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         // A path through all nodes, from edge to edge.
         for _ in 0..=self.edges.len() {
             let Some(e) = self.nodes[node].right else { break };
-            let Edge { nodes: [_, next], at: [leave, arrive], state } = self.edges[e];
+            let Edge { nodes: [_, next], at: [leave, arrive], state, .. } = self.edges[e];
             along(&self.nodes[node].orbit, from, leave, &mut out.pieces);
             let chord = self.ends_of(e);
             if state == State::Sunk {
@@ -432,8 +463,8 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         Ok(out)
     }
 
-    /// Where the contour is cut off towards infinity; it is followed twice as deep to see that it
-    /// does run down.
+    /// Where the contour is cut off towards infinity; it is followed as deep again to see how it
+    /// runs down.
     fn end_at_infinity(
         &mut self,
         node: usize,
@@ -442,8 +473,10 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         out: &mut Flowed,
     ) -> Result<usize, Error> {
         let at = self.tail(node, from, self.crest - depth / self.k)?;
-        self.tail(node, at, self.crest - 2.0 * depth / self.k)?;
-        out.tails.push(self.nodes[node].orbit[at]);
+        let level = self.nodes[node].orbit[at].h.re - depth / self.k;
+        let far = self.tail(node, at, level)?;
+        let orbit = &self.nodes[node].orbit;
+        out.tails.push((orbit[at], orbit[far]));
         Ok(at)
     }
 }
