@@ -407,15 +407,13 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
 
     /// Runs the orbit of an end at infinity down below a level; returns the index there.
     fn tail(&mut self, node: usize, from: usize, level: f64) -> Result<usize, Error> {
-        let mut at = from;
-        for _ in 0..TAIL {
+        for at in from..from + TAIL {
             if self.nodes[node].orbit[at].h.re <= level {
                 return Ok(at);
             }
             if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
                 break;
             }
-            at += 1;
         }
         let orbit = &self.nodes[node].orbit;
         Err(Error::Undecided {
