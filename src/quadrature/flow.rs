@@ -14,26 +14,30 @@
 //! steepest descents: no oscillation along them. Only its cost depends on how well the descent
 //! went; its value does not, since every chord is in the class of the caller's contour.
 
-use super::terrain::{Profile, Sampler, Site};
+use super::terrain::{Flux, Profile, Sampler, Site};
 use crate::Error;
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use num_complex::Complex64;
 use std::cmp::Ordering;
 use std::collections::BinaryHeap;
 
-/// Evaluations of the phase after which the descent is given up.
-const EVALUATIONS: usize = 100_000;
+/// Evaluations of the phase after which the descent is given up. Some thousand are the rule; a
+/// contour that has to lean on a branch cut takes some hundred per unit of k.
+const EVALUATIONS: usize = 1_000_000;
 /// Steps of edges, most of which cost no evaluation.
-const MOVES: usize = 1_000_000;
+const MOVES: usize = 4_000_000;
 /// A chord is settled if its top is this near a saddle's height, in units of 1/k.
 const SETTLED: f64 = 0.25;
-/// Loop integrals of the amplitude count as zero below this fraction of perimeter times size.
-const LOOP: f64 = 1e-5;
+/// The loop integral of the amplitude round a triangle counts as zero below this fraction of its
+/// shortest side times the largest modulus: a thin triangle across a branch cut shows, too.
+const LOOP: f64 = 3e-5;
 /// Steps of the tail that runs to infinity.
 const TAIL: usize = 2_000;
 
 struct Node {
     orbit: Vec<Site>,
+    /// The amplitude along the steps of the orbit, as far as it was asked for.
+    flux: Vec<Option<Flux>>,
     /// The longest next step.
     cap: f64,
     /// The orbit cannot be continued.
@@ -53,6 +57,8 @@ struct Edge {
     nodes: [usize; 2],
     /// How far the chord's ends have slid down the two orbits.
     at: [usize; 2],
+    /// The amplitude along the chord, if it was asked for.
+    flux: Option<Flux>,
     state: State,
 }
 
@@ -87,8 +93,8 @@ pub(super) struct Flowed {
     pub pieces: Vec<(Site, Site)>,
     /// Pieces below the floor, left out.
     pub sunk: Vec<(Site, Site)>,
-    /// Points from which the contour runs on to infinity, left out.
-    pub tails: Vec<Site>,
+    /// Points from which the contour runs on to infinity, left out, each with a point farther out.
+    pub tails: Vec<(Site, Site)>,
     /// The floor, in units of `Re h`.
     pub floor: f64,
 }
@@ -127,13 +133,14 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             let site = sampler.site(z).ok_or(Error::NotFinite { what: "phase", at: z })?;
             nodes.push(Node {
                 orbit: vec![site],
+                flux: Vec::new(),
                 cap: 0.5 * size,
                 stalled: false,
                 left: i.checked_sub(1),
                 right: (i < last).then_some(i),
             });
             if i < last {
-                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], state: State::Open });
+                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], flux: None, state: State::Open });
             }
         }
         let ends = [contour.start(), contour.end()];
@@ -157,7 +164,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
 
     fn push(&mut self, e: usize) {
         let (a, b) = self.ends_of(e);
-        let profile = Profile::of(&a, &b);
+        let profile = Profile::of(&a, &b, self.k);
         let rank = if profile.resolved { profile.top + profile.margin } else { f64::INFINITY };
         self.heap.push(Rank(rank, e));
     }
@@ -183,14 +190,18 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
     /// One move of one edge.
     fn serve(&mut self, e: usize, depth: f64) -> Result<(), Error> {
         let (a, b) = self.ends_of(e);
-        let profile = Profile::of(&a, &b);
+        let profile = Profile::of(&a, &b, self.k);
         let length = (b.z - a.z).norm();
         if !profile.resolved {
             if length <= 1e-13 * (a.z.norm() + b.z.norm()) {
                 // A jump of the closure between neighbouring numbers.
                 return Err(Error::Undecided {
-                    reason: format!("the phase jumps on the contour, at z = {:.6}", a.z),
-                    remedy: "lead the contour clear of the phase's branch cuts",
+                    reason: format!(
+                        "at z = {:.6} on the contour the phase jumps, or its derivative is not \
+                         that of its value",
+                        a.z
+                    ),
+                    remedy: "lead the contour clear of branch cuts and check the derivative",
                 });
             }
             return self.split(e, 0.5);
@@ -210,14 +221,26 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
                 return self.split(e, 0.5);
             }
             if gain < SETTLED {
-                return self.settle(e, profile.top);
+                // A chord with more turns than decay costs panels: its lower end may go on.
+                let turns = self.k * (b.h.im - a.h.im).abs();
+                if turns <= 5.0 + 2.0 * self.k * (b.h.re - a.h.re).abs() {
+                    return self.settle(e, profile.top);
+                }
+                return match self.slide(e, 1 - higher, &profile, SETTLED / self.k, -0.01)? {
+                    Slide::Blocked => self.split(e, 0.5),
+                    _ => {
+                        self.push(e);
+                        Ok(())
+                    }
+                };
             }
         }
         for side in [higher, 1 - higher] {
             if !interior && side != higher {
                 break;
             }
-            match self.slide(e, side, &profile, interior)? {
+            let least = if interior { 0.1 } else { -0.01 };
+            match self.slide(e, side, &profile, f64::INFINITY, least)? {
                 Slide::Moved | Slide::Refined => {
                     self.push(e);
                     return Ok(());
@@ -249,27 +272,29 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let cap = self.nodes[left].cap.max(self.nodes[right].cap);
         self.nodes.push(Node {
             orbit: vec![site],
+            flux: Vec::new(),
             cap,
             stalled: false,
             left: Some(e),
             right: Some(edge),
         });
-        self.edges[e] = Edge { nodes: [left, node], at: [i, 0], state: State::Open };
-        self.edges.push(Edge { nodes: [node, right], at: [0, j], state: State::Open });
+        self.edges[e] = Edge { nodes: [left, node], at: [i, 0], flux: None, state: State::Open };
+        self.edges.push(Edge { nodes: [node, right], at: [0, j], flux: None, state: State::Open });
         self.nodes[right].left = Some(edge);
         self.push(e);
         self.push(edge);
         Ok(())
     }
 
-    /// Slides one end of a chord one step down its orbit if that lowers the edge and sweeps no
-    /// singularity.
+    /// Slides one end of a chord one step down its orbit if that lowers its top by `least` times
+    /// 1/k, leaves its margin below the one given and sweeps no singularity.
     fn slide(
         &mut self,
         e: usize,
         side: usize,
         before: &Profile,
-        interior: bool,
+        margin: f64,
+        least: f64,
     ) -> Result<Slide, Error> {
         let (node, at) = (self.edges[e].nodes[side], self.edges[e].at[side]);
         if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
@@ -278,12 +303,17 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let (old, new) = (self.nodes[node].orbit[at], self.nodes[node].orbit[at + 1]);
         let (a, b) = self.ends_of(e);
         let (a, b, other) = if side == 0 { (new, b, b) } else { (a, new, a) };
-        let after = Profile::of(&a, &b);
+        let after = Profile::of(&a, &b, self.k);
         let gained = self.k * (before.top - after.top);
         let unsure = self.k * (after.margin - before.margin).abs();
-        let lowers = gained > if interior { 0.1 + unsure } else { -0.01 };
-        if after.resolved && lowers && self.clear(old.z, new.z, other.z) {
+        let lowers =
+            after.margin <= margin && gained > if least > 0.0 { least + unsure } else { least };
+        if after.resolved
+            && lowers
+            && let Some(flux) = self.clear(e, node, at, other.z)
+        {
             self.edges[e].at[side] += 1;
+            self.edges[e].flux = Some(flux);
             return Ok(Slide::Moved);
         }
         let step = (new.z - old.z).norm();
@@ -293,20 +323,37 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         Ok(Slide::Blocked)
     }
 
-    /// Whether the amplitude is analytic in a triangle, judged by its loop integral.
-    fn clear(&self, a: Complex64, b: Complex64, c: Complex64) -> bool {
-        let mut sum = Complex64::new(0.0, 0.0);
-        let mut scale = 0.0;
-        for (from, to) in [(a, b), (b, c), (c, a)] {
-            match self.sampler.amplitude_along(from, to) {
-                Some((part, size)) => {
-                    sum += part;
-                    scale += size;
-                }
-                None => return false,
-            }
+    /// Whether the amplitude is analytic in the triangle between a step of an orbit and the far
+    /// end of a chord, judged by its loop integral; if so, its integral along the new chord.
+    fn clear(&mut self, e: usize, node: usize, at: usize, far: Complex64) -> Option<Flux> {
+        let (old, new) = (self.nodes[node].orbit[at].z, self.nodes[node].orbit[at + 1].z);
+        // Chords run from the left orbit to the right one.
+        let left = self.edges[e].nodes[0] == node;
+        let chord = |from, to| {
+            if left { self.sampler.flux(from, to) } else { self.sampler.flux(to, from) }
+        };
+        let before = match self.edges[e].flux {
+            Some(flux) => flux,
+            None => chord(old, far)?,
+        };
+        let after = chord(new, far)?;
+        self.edges[e].flux = Some(before);
+        let steps = &mut self.nodes[node].flux;
+        if steps.len() <= at {
+            steps.resize(at + 1, None);
         }
-        sum.norm() <= LOOP * scale
+        let step = match steps[at] {
+            Some(flux) => flux,
+            None => self.sampler.flux(old, new)?,
+        };
+        steps[at] = Some(step);
+        let turned = after.sum - before.sum;
+        let sum = if left { step.sum + turned } else { step.sum - turned };
+        let sides = [(new - old).norm(), (far - old).norm(), (far - new).norm()];
+        let peak = step.peak.max(before.peak).max(after.peak);
+        let shortest = sides.iter().fold(f64::INFINITY, |s, &x| x.min(s));
+        let rounding = 8.0 * f64::EPSILON * sides.iter().sum::<f64>();
+        (sum.norm() <= (LOOP * shortest + rounding) * peak).then_some(after)
     }
 
     /// Halves a step of an orbit.
@@ -315,6 +362,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let z = (orbit[at].z + orbit[at + 1].z) * 0.5;
         let Some(site) = self.sampler.site(z) else { return Ok(Slide::Blocked) };
         self.nodes[node].orbit.insert(at + 1, site);
+        self.nodes[node].flux.truncate(at);
         let Node { left, right, .. } = self.nodes[node];
         for (edge, side) in [(left, 1), (right, 0)] {
             if let Some(e) = edge
@@ -345,7 +393,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             let z = site.z + w - site.bend / (site.slope * 2.0) * w * w;
             if let Some(next) = self.sampler.site(z)
                 && next.h.re < site.h.re - 0.5 * length * slope
-                && Profile::of(&site, &next).resolved
+                && Profile::of(&site, &next, self.k).resolved
             {
                 *cap = 2.0 * length;
                 orbit.push(next);
@@ -359,15 +407,13 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
 
     /// Runs the orbit of an end at infinity down below a level; returns the index there.
     fn tail(&mut self, node: usize, from: usize, level: f64) -> Result<usize, Error> {
-        let mut at = from;
-        for _ in 0..TAIL {
+        for at in from..from + TAIL {
             if self.nodes[node].orbit[at].h.re <= level {
                 return Ok(at);
             }
             if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
                 break;
             }
-            at += 1;
         }
         let orbit = &self.nodes[node].orbit;
         Err(Error::Undecided {
@@ -377,7 +423,8 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
                 orbit[0].z,
                 orbit[orbit.len() - 1].z
             ),
-            remedy: "let the contour end inside a valley of |exp(i k f)|, or at a finite point",
+            remedy: "let the contour end inside a valley of |exp(i k f)| clear of branch cuts, or at \
+                     a finite point",
         })
     }
 
@@ -396,7 +443,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         // A path through all nodes, from edge to edge.
         for _ in 0..=self.edges.len() {
             let Some(e) = self.nodes[node].right else { break };
-            let Edge { nodes: [_, next], at: [leave, arrive], state } = self.edges[e];
+            let Edge { nodes: [_, next], at: [leave, arrive], state, .. } = self.edges[e];
             along(&self.nodes[node].orbit, from, leave, &mut out.pieces);
             let chord = self.ends_of(e);
             if state == State::Sunk {
@@ -414,8 +461,8 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         Ok(out)
     }
 
-    /// Where the contour is cut off towards infinity; it is followed twice as deep to see that it
-    /// does run down.
+    /// Where the contour is cut off towards infinity; it is followed as deep again to see how it
+    /// runs down.
     fn end_at_infinity(
         &mut self,
         node: usize,
@@ -424,8 +471,10 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         out: &mut Flowed,
     ) -> Result<usize, Error> {
         let at = self.tail(node, from, self.crest - depth / self.k)?;
-        self.tail(node, at, self.crest - 2.0 * depth / self.k)?;
-        out.tails.push(self.nodes[node].orbit[at]);
+        let level = self.nodes[node].orbit[at].h.re - depth / self.k;
+        let far = self.tail(node, at, level)?;
+        let orbit = &self.nodes[node].orbit;
+        out.tails.push((orbit[at], orbit[far]));
         Ok(at)
     }
 }
