@@ -6,6 +6,7 @@ mod error;
 mod estimate;
 pub mod guide;
 pub mod integral;
+mod quadrature;
 mod scaled;
 pub mod special;
 

@@ -1,0 +1,440 @@
+//! The contour flowed downhill on `Re(k h)`, `h = i f`, within its homotopy class.
+//!
+//! Method. Every vertex of the contour has an orbit: the path of steepest descent from it, traced
+//! as far as it is needed. Every edge joins two neighbouring orbits by a chord, and is lowered by
+//! letting its chord slide down the two orbits, one step of one orbit at a time. The triangle that
+//! the chord sweeps in such a step must be free of singularities: its sides must be resolved
+//! (`terrain`) and the loop integral of the amplitude must vanish. An edge that can be lowered no
+//! further gets a new vertex at the top of its chord, from which a new orbit starts; it is settled
+//! when its top lies within a fraction of 1/k of a saddle's height (or of a singularity that it
+//! hangs on). The highest edge is always served first, so the first settled edge sets the level
+//! below which nothing needs an evaluation.
+//!
+//! The flowed contour then consists of the settled chords, joined by pieces of orbits, which are
+//! steepest descents: no oscillation along them. Only its cost depends on how well the descent
+//! went; its value does not, since every chord is in the class of the caller's contour.
+
+use super::terrain::{Profile, Sampler, Site};
+use crate::Error;
+use crate::integral::{Amplitude, Contour, Phase, Termination};
+use num_complex::Complex64;
+use std::cmp::Ordering;
+use std::collections::BinaryHeap;
+
+/// Evaluations of the phase after which the descent is given up.
+const EVALUATIONS: usize = 100_000;
+/// Steps of edges, most of which cost no evaluation.
+const MOVES: usize = 1_000_000;
+/// A chord is settled if its top is this near a saddle's height, in units of 1/k.
+const SETTLED: f64 = 0.25;
+/// Loop integrals of the amplitude count as zero below this fraction of perimeter times size.
+const LOOP: f64 = 1e-5;
+/// Steps of the tail that runs to infinity.
+const TAIL: usize = 2_000;
+
+struct Node {
+    orbit: Vec<Site>,
+    /// The longest next step.
+    cap: f64,
+    /// The orbit cannot be continued.
+    stalled: bool,
+    left: Option<usize>,
+    right: Option<usize>,
+}
+
+#[derive(Clone, Copy, PartialEq)]
+enum State {
+    Open,
+    Settled,
+    Sunk,
+}
+
+struct Edge {
+    nodes: [usize; 2],
+    /// How far the chord's ends have slid down the two orbits.
+    at: [usize; 2],
+    state: State,
+}
+
+struct Rank(f64, usize);
+
+impl PartialEq for Rank {
+    fn eq(&self, other: &Self) -> bool {
+        self.cmp(other) == Ordering::Equal
+    }
+}
+impl Eq for Rank {}
+impl PartialOrd for Rank {
+    fn partial_cmp(&self, other: &Self) -> Option<Ordering> {
+        Some(self.cmp(other))
+    }
+}
+impl Ord for Rank {
+    fn cmp(&self, other: &Self) -> Ordering {
+        self.0.total_cmp(&other.0)
+    }
+}
+
+enum Slide {
+    Moved,
+    Refined,
+    Blocked,
+}
+
+/// The flowed contour: straight pieces above the floor, and what was left out.
+pub(super) struct Flowed {
+    /// Pieces in their order and direction.
+    pub pieces: Vec<(Site, Site)>,
+    /// Pieces below the floor, left out.
+    pub sunk: Vec<(Site, Site)>,
+    /// Points from which the contour runs on to infinity, left out.
+    pub tails: Vec<Site>,
+    /// The floor, in units of `Re h`.
+    pub floor: f64,
+}
+
+pub(super) struct Flow<'a, P, A> {
+    sampler: &'a Sampler<'a, P, A>,
+    k: f64,
+    nodes: Vec<Node>,
+    edges: Vec<Edge>,
+    heap: BinaryHeap<Rank>,
+    /// The highest level, `Re h`, that the contour is known to keep.
+    crest: f64,
+    ends: [Termination; 2],
+}
+
+const REMEDY: &str = "give a contour nearer to the saddles and away from singularities, with its \
+                      ends inside their valleys";
+
+fn exhausted() -> Error {
+    Error::NoConvergence { what: "the descent of the contour", limit: EVALUATIONS, remedy: REMEDY }
+}
+
+impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
+    /// Evaluates the vertices; nothing moves yet.
+    pub fn new(
+        sampler: &'a Sampler<'a, P, A>,
+        contour: &Contour,
+        k: f64,
+    ) -> Result<Flow<'a, P, A>, Error> {
+        let points = contour.points();
+        let size = points.iter().map(|z| (z - points[0]).norm()).fold(0.0, f64::max);
+        let last = points.len() - 1;
+        let mut nodes = Vec::with_capacity(4 * points.len());
+        let mut edges = Vec::with_capacity(4 * points.len());
+        for (i, &z) in points.iter().enumerate() {
+            let site = sampler.site(z).ok_or(Error::NotFinite { what: "phase", at: z })?;
+            nodes.push(Node {
+                orbit: vec![site],
+                cap: 0.5 * size,
+                stalled: false,
+                left: i.checked_sub(1),
+                right: (i < last).then_some(i),
+            });
+            if i < last {
+                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], state: State::Open });
+            }
+        }
+        let ends = [contour.start(), contour.end()];
+        let mut crest = f64::NEG_INFINITY;
+        for (end, node) in ends.iter().zip([0, last]) {
+            if *end == Termination::Finite {
+                crest = crest.max(nodes[node].orbit[0].h.re);
+            }
+        }
+        let mut flow = Flow { sampler, k, nodes, edges, heap: BinaryHeap::new(), crest, ends };
+        for e in 0..last {
+            flow.push(e);
+        }
+        Ok(flow)
+    }
+
+    fn ends_of(&self, e: usize) -> (Site, Site) {
+        let Edge { nodes: [a, b], at: [i, j], .. } = self.edges[e];
+        (self.nodes[a].orbit[i], self.nodes[b].orbit[j])
+    }
+
+    fn push(&mut self, e: usize) {
+        let (a, b) = self.ends_of(e);
+        let profile = Profile::of(&a, &b);
+        let rank = if profile.resolved { profile.top + profile.margin } else { f64::INFINITY };
+        self.heap.push(Rank(rank, e));
+    }
+
+    /// Lowers every edge until it is settled or lies `depth/k` below the highest settled one.
+    pub fn relax(&mut self, depth: f64) -> Result<(), Error> {
+        for e in 0..self.edges.len() {
+            if self.edges[e].state == State::Sunk {
+                self.edges[e].state = State::Open;
+                self.push(e);
+            }
+        }
+        for _ in 0..MOVES {
+            let Some(Rank(_, e)) = self.heap.pop() else { return Ok(()) };
+            if self.sampler.count() > EVALUATIONS {
+                return Err(exhausted());
+            }
+            self.serve(e, depth)?;
+        }
+        Err(exhausted())
+    }
+
+    /// One move of one edge.
+    fn serve(&mut self, e: usize, depth: f64) -> Result<(), Error> {
+        let (a, b) = self.ends_of(e);
+        let profile = Profile::of(&a, &b);
+        let length = (b.z - a.z).norm();
+        if !profile.resolved {
+            if length <= 1e-13 * (a.z.norm() + b.z.norm()) {
+                // A jump of the closure between neighbouring numbers.
+                return Err(Error::Undecided {
+                    reason: format!("the phase jumps on the contour, at z = {:.6}", a.z),
+                    remedy: "lead the contour clear of the phase's branch cuts",
+                });
+            }
+            return self.split(e, 0.5);
+        }
+        if self.k * (profile.top + profile.margin - self.crest) < -depth {
+            self.edges[e].state = State::Sunk;
+            return Ok(());
+        }
+        let highest = a.h.re.max(b.h.re);
+        let interior = self.k * (profile.top - highest) > 0.2 * SETTLED
+            || (profile.at > 0.05 && profile.at < 0.95);
+        let higher = usize::from(b.h.re > a.h.re);
+        if !interior {
+            // A saddle's height is reached, or the chord is too long to tell.
+            let gain = self.k * [a, b][higher].gain(&[b, a][higher]);
+            if self.k * profile.margin > SETTLED.max(4.0 * gain) {
+                return self.split(e, 0.5);
+            }
+            if gain < SETTLED {
+                return self.settle(e, profile.top);
+            }
+        }
+        for side in [higher, 1 - higher] {
+            if !interior && side != higher {
+                break;
+            }
+            match self.slide(e, side, &profile, interior)? {
+                Slide::Moved | Slide::Refined => {
+                    self.push(e);
+                    return Ok(());
+                }
+                Slide::Blocked => {}
+            }
+        }
+        // Nothing moves: settled, or to be divided at its top.
+        let variation = self.k * length * a.slope.norm().max(b.slope.norm());
+        if variation < 2.0 * SETTLED {
+            return self.settle(e, profile.top);
+        }
+        self.split(e, if interior { profile.at } else { 0.5 })
+    }
+
+    fn settle(&mut self, e: usize, top: f64) -> Result<(), Error> {
+        self.edges[e].state = State::Settled;
+        self.crest = self.crest.max(top);
+        Ok(())
+    }
+
+    /// Puts a new vertex on the chord.
+    fn split(&mut self, e: usize, t: f64) -> Result<(), Error> {
+        let (a, b) = self.ends_of(e);
+        let z = a.z + (b.z - a.z) * t;
+        let site = self.sampler.site(z).ok_or(Error::NotFinite { what: "phase", at: z })?;
+        let (node, edge) = (self.nodes.len(), self.edges.len());
+        let Edge { nodes: [left, right], at: [i, j], .. } = self.edges[e];
+        let cap = self.nodes[left].cap.max(self.nodes[right].cap);
+        self.nodes.push(Node {
+            orbit: vec![site],
+            cap,
+            stalled: false,
+            left: Some(e),
+            right: Some(edge),
+        });
+        self.edges[e] = Edge { nodes: [left, node], at: [i, 0], state: State::Open };
+        self.edges.push(Edge { nodes: [node, right], at: [0, j], state: State::Open });
+        self.nodes[right].left = Some(edge);
+        self.push(e);
+        self.push(edge);
+        Ok(())
+    }
+
+    /// Slides one end of a chord one step down its orbit if that lowers the edge and sweeps no
+    /// singularity.
+    fn slide(
+        &mut self,
+        e: usize,
+        side: usize,
+        before: &Profile,
+        interior: bool,
+    ) -> Result<Slide, Error> {
+        let (node, at) = (self.edges[e].nodes[side], self.edges[e].at[side]);
+        if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
+            return Ok(Slide::Blocked);
+        }
+        let (old, new) = (self.nodes[node].orbit[at], self.nodes[node].orbit[at + 1]);
+        let (a, b) = self.ends_of(e);
+        let (a, b, other) = if side == 0 { (new, b, b) } else { (a, new, a) };
+        let after = Profile::of(&a, &b);
+        let gained = self.k * (before.top - after.top);
+        let unsure = self.k * (after.margin - before.margin).abs();
+        let lowers = gained > if interior { 0.1 + unsure } else { -0.01 };
+        if after.resolved && lowers && self.clear(old.z, new.z, other.z) {
+            self.edges[e].at[side] += 1;
+            return Ok(Slide::Moved);
+        }
+        let step = (new.z - old.z).norm();
+        if step > (other.z - old.z).norm() && self.k * step * old.slope.norm() > SETTLED {
+            return self.refine(node, at);
+        }
+        Ok(Slide::Blocked)
+    }
+
+    /// Whether the amplitude is analytic in a triangle, judged by its loop integral.
+    fn clear(&self, a: Complex64, b: Complex64, c: Complex64) -> bool {
+        let mut sum = Complex64::new(0.0, 0.0);
+        let mut scale = 0.0;
+        for (from, to) in [(a, b), (b, c), (c, a)] {
+            match self.sampler.amplitude_along(from, to) {
+                Some((part, size)) => {
+                    sum += part;
+                    scale += size;
+                }
+                None => return false,
+            }
+        }
+        sum.norm() <= LOOP * scale
+    }
+
+    /// Halves a step of an orbit.
+    fn refine(&mut self, node: usize, at: usize) -> Result<Slide, Error> {
+        let orbit = &self.nodes[node].orbit;
+        let z = (orbit[at].z + orbit[at + 1].z) * 0.5;
+        let Some(site) = self.sampler.site(z) else { return Ok(Slide::Blocked) };
+        self.nodes[node].orbit.insert(at + 1, site);
+        let Node { left, right, .. } = self.nodes[node];
+        for (edge, side) in [(left, 1), (right, 0)] {
+            if let Some(e) = edge
+                && self.edges[e].at[side] > at
+            {
+                self.edges[e].at[side] += 1;
+            }
+        }
+        Ok(Slide::Refined)
+    }
+
+    /// One more step of steepest descent on an orbit; false if there is no way down.
+    fn descend(&mut self, node: usize) -> bool {
+        let Node { orbit, cap, stalled, .. } = &mut self.nodes[node];
+        let site = orbit[orbit.len() - 1];
+        let slope = site.slope.norm();
+        if *stalled || slope == 0.0 {
+            *stalled = true;
+            return false;
+        }
+        let down = -site.slope.conj() / slope;
+        let mut length = (0.5 * slope / site.bend.norm()).min(*cap);
+        for _ in 0..60 {
+            if length <= 1e-15 * site.z.norm() || self.k * length * slope < 1e-9 {
+                break;
+            }
+            let w = down * length;
+            let z = site.z + w - site.bend / (site.slope * 2.0) * w * w;
+            if let Some(next) = self.sampler.site(z)
+                && next.h.re < site.h.re - 0.5 * length * slope
+                && Profile::of(&site, &next).resolved
+            {
+                *cap = 2.0 * length;
+                orbit.push(next);
+                return true;
+            }
+            length *= 0.5;
+        }
+        *stalled = true;
+        false
+    }
+
+    /// Runs the orbit of an end at infinity down below a level; returns the index there.
+    fn tail(&mut self, node: usize, from: usize, level: f64) -> Result<usize, Error> {
+        let mut at = from;
+        for _ in 0..TAIL {
+            if self.nodes[node].orbit[at].h.re <= level {
+                return Ok(at);
+            }
+            if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
+                break;
+            }
+            at += 1;
+        }
+        let orbit = &self.nodes[node].orbit;
+        Err(Error::Undecided {
+            reason: format!(
+                "the end of the contour at z = {:.6} finds no way down to infinity: its descent \
+                 ends near z = {:.6}",
+                orbit[0].z,
+                orbit[orbit.len() - 1].z
+            ),
+            remedy: "let the contour end inside a valley of |exp(i k f)|, or at a finite point",
+        })
+    }
+
+    /// The flowed contour down to `depth/k` under its highest level.
+    pub fn contour(&mut self, depth: f64) -> Result<Flowed, Error> {
+        let floor = self.crest - depth / self.k;
+        let mut out = Flowed { pieces: Vec::new(), sunk: Vec::new(), tails: Vec::new(), floor };
+        let mut node = 0;
+        let mut from = match self.ends[0] {
+            Termination::Finite => 0,
+            Termination::Downhill => {
+                let at = self.nodes[0].right.map_or(0, |e| self.edges[e].at[0]);
+                self.end_at_infinity(0, at, depth, &mut out)?
+            }
+        };
+        // A path through all nodes, from edge to edge.
+        for _ in 0..=self.edges.len() {
+            let Some(e) = self.nodes[node].right else { break };
+            let Edge { nodes: [_, next], at: [leave, arrive], state } = self.edges[e];
+            along(&self.nodes[node].orbit, from, leave, &mut out.pieces);
+            let chord = self.ends_of(e);
+            if state == State::Sunk {
+                out.sunk.push(chord)
+            } else {
+                out.pieces.push(chord)
+            }
+            (node, from) = (next, arrive);
+        }
+        let to = match self.ends[1] {
+            Termination::Finite => 0,
+            Termination::Downhill => self.end_at_infinity(node, from, depth, &mut out)?,
+        };
+        along(&self.nodes[node].orbit, from, to, &mut out.pieces);
+        Ok(out)
+    }
+
+    /// Where the contour is cut off towards infinity; it is followed twice as deep to see that it
+    /// does run down.
+    fn end_at_infinity(
+        &mut self,
+        node: usize,
+        from: usize,
+        depth: f64,
+        out: &mut Flowed,
+    ) -> Result<usize, Error> {
+        let at = self.tail(node, from, self.crest - depth / self.k)?;
+        self.tail(node, at, self.crest - 2.0 * depth / self.k)?;
+        out.tails.push(self.nodes[node].orbit[at]);
+        Ok(at)
+    }
+}
+
+/// The pieces of an orbit from one index to another, in either direction.
+fn along(orbit: &[Site], from: usize, to: usize, pieces: &mut Vec<(Site, Site)>) {
+    if from <= to {
+        pieces.extend(orbit[from..=to].windows(2).map(|w| (w[0], w[1])));
+    } else {
+        pieces.extend(orbit[to..=from].windows(2).rev().map(|w| (w[1], w[0])));
+    }
+}
