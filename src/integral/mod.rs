@@ -40,6 +40,10 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         &self.contour
     }
 
+    pub(crate) fn amplitude_ref(&self) -> &A {
+        &self.amplitude
+    }
+
     /// The amplitude's value at a point.
     pub fn amplitude_at(&self, z: crate::Complex64) -> crate::Complex64 {
         self.amplitude.value(z)

@@ -1,0 +1,141 @@
+//! The coefficients of a uniform expansion, order by order.
+//!
+//! Method. `G_0(u) = g(z(u)) z'(u)` is divided by `Phi'`: `G_n = p^(n) + Phi' H_n`. Integration by
+//! parts leaves `G_(n+1) = -H_n'/i` (the factor `1/k` of each order is kept out), so that
+//!
+//! `I(k) ~ exp(i k A) sum_n k^(-n) sum_j p_j^(n) C_j`, `C_j = integral of u^j exp(i k Phi) du`.
+//!
+//! At an end point (K = -1, `Phi = u`) the moments `integral_0^(i inf) u^n exp(i k u) du =
+//! n! (i/k)^(n+1)` give `p^(n) = n! i^n g_n` with `C_0 = i/k` (Watson's lemma, DLMF 2.3(ii)).
+//!
+//! The same recursion with a fixed pseudo-random vector of unit modulus on the ring in place of
+//! `G_0` measures how much of the rounding noise each order passes on.
+//!
+//! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
+
+use super::{
+    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, divide, tail, taylor,
+    to_coefficients, to_values,
+};
+use crate::integral::Amplitude;
+use num_complex::Complex64;
+use std::sync::OnceLock;
+
+/// Orders that are computed.
+pub const MAX_ORDERS: usize = 14;
+
+/// The coefficients `p_j^(n)` on one ring, with what their error figure needs.
+#[derive(Clone, Debug)]
+pub struct Orders {
+    saddles: usize,
+    /// `p[n][j]`.
+    p: [[Complex64; MAX_SADDLES]; MAX_ORDERS],
+    /// The same recursion applied to unit noise on the ring, absolute values.
+    noise: [[f64; MAX_SADDLES]; MAX_ORDERS],
+    /// `max |G_0|` on the ring.
+    size: f64,
+    tail: f64,
+}
+
+/// Taylor coefficients of the unit-modulus noise; the same for every ring.
+fn unit_noise() -> &'static Coefficients {
+    static ONCE: OnceLock<Coefficients> = OnceLock::new();
+    ONCE.get_or_init(|| {
+        // Weyl's sequence with the golden ratio: equidistributed angles.
+        let mut values: Values = std::array::from_fn(|s| {
+            let square = (s * s + 7 * s) as f64;
+            Complex64::from_polar(
+                1.0,
+                2.0 * std::f64::consts::PI * (square * 0.618_033_988_749_895).fract(),
+            )
+        });
+        to_coefficients(&mut values);
+        taylor(&values)
+    })
+}
+
+impl Orders {
+    /// All orders on the ring of a normal form. None if the amplitude is not finite on the ring.
+    pub fn new(form: &NormalForm, amplitude: &dyn Amplitude) -> Option<Orders> {
+        let mut values = to_values(&form.map_derivative());
+        let points = to_values(form.map());
+        let mut size = 0.0f64;
+        for (value, &z) in values.iter_mut().zip(&points) {
+            *value *= amplitude.value(z);
+            let norm = value.norm();
+            if !norm.is_finite() {
+                return None;
+            }
+            size = size.max(norm);
+        }
+        to_coefficients(&mut values);
+        let saddles = form.saddles();
+        let mut noise = [[0.0; MAX_SADDLES]; MAX_ORDERS];
+        for (noise, p) in noise.iter_mut().zip(recursion(form, unit_noise())) {
+            *noise = p.map(|p| p.norm());
+        }
+        Some(Orders {
+            saddles,
+            p: recursion(form, &taylor(&values)),
+            noise,
+            size,
+            tail: tail(&values, 0),
+        })
+    }
+
+    /// `p_j^(n)`, `j = 0..=K`, of order `n`.
+    pub fn coefficients(&self, n: usize) -> &[Complex64] {
+        &self.p[n][..self.saddles.max(1)]
+    }
+
+    /// The same for unit noise on the ring.
+    pub(crate) fn noise(&self, n: usize) -> &[f64] {
+        &self.noise[n][..self.saddles.max(1)]
+    }
+
+    /// `max |G_0|` on the ring.
+    pub(crate) fn size(&self) -> f64 {
+        self.size
+    }
+
+    /// How far the coefficients of `G_0` have not decayed; near 1 with a pole inside the ring.
+    pub fn tail(&self) -> f64 {
+        self.tail
+    }
+}
+
+fn recursion(form: &NormalForm, start: &Coefficients) -> [[Complex64; MAX_SADDLES]; MAX_ORDERS] {
+    let saddles = form.saddles();
+    let radius = form.radius();
+    let mut p = [[ZERO; MAX_SADDLES]; MAX_ORDERS];
+    if saddles == 0 {
+        let mut factor = Complex64::new(1.0, 0.0);
+        for (n, p) in p.iter_mut().enumerate() {
+            p[0] = start[n] * factor;
+            factor *= I * ((n + 1) as f64 / radius);
+        }
+        return p;
+    }
+    let divisor = form.derivative();
+    let mut g = *start;
+    let mut length = KEPT;
+    for p in p.iter_mut() {
+        if length <= saddles {
+            break;
+        }
+        divide(&mut g[..length], &divisor[..=saddles]);
+        let mut power = 1.0;
+        for (p, &remainder) in p.iter_mut().zip(&g).take(saddles) {
+            *p = remainder / power;
+            power *= radius;
+        }
+        // The quotient starts at index `saddles`; G_(n+1) = i dH/du.
+        length -= saddles + 1;
+        for n in 0..length {
+            g[n] = g[n + saddles + 1] * I * ((n + 1) as f64 / radius);
+        }
+    }
+    p
+}
+
+const _: () = assert!(MAX_ORDERS <= KEPT && KEPT * 2 == POINTS);

@@ -1,0 +1,246 @@
+//! All saddles of a phase in a rectangle, from closures alone.
+//!
+//! Method. The change of `arg f'` round a rectangle counts the zeros of `f'` inside (argument
+//! principle). A rectangle with one to five of them is tried by simultaneous iteration
+//! (Ehrlich and Aberth's correction to Newton's method), which is accepted when just that many
+//! points settle inside; otherwise it is quartered and counted again.
+//!
+//! Regions. Merged saddles come out as several points within about the root of the rounding error
+//! of their centre: good enough as a start for the ring, which never uses their differences.
+//! Rectangles whose count cannot be made (a branch cut or a pole of `f` on the boundary) are
+//! quartered a few times and then only searched by Newton's method from their centre.
+//!
+//! Source: argument principle, textbook; O. Aberth, Math. Comp. 27 (1973) 339.
+
+use crate::Error;
+use crate::integral::Phase;
+use crate::ring::MAX_SADDLES;
+use num_complex::Complex64;
+
+/// A rectangle in the complex plane.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Region {
+    /// Lower left corner.
+    pub low: Complex64,
+    /// Upper right corner.
+    pub high: Complex64,
+}
+
+impl Region {
+    /// The smallest rectangle round some points, widened on each side by `margin` times its
+    /// larger side.
+    pub fn around(points: &[Complex64], margin: f64) -> Region {
+        let infinity = Complex64::new(f64::INFINITY, f64::INFINITY);
+        let (mut low, mut high) = (infinity, -infinity);
+        for z in points {
+            low = Complex64::new(low.re.min(z.re), low.im.min(z.im));
+            high = Complex64::new(high.re.max(z.re), high.im.max(z.im));
+        }
+        let side = (high.re - low.re).max(high.im - low.im);
+        let pad = Complex64::new(side, side) * margin;
+        Region { low: low - pad, high: high + pad }
+    }
+
+    /// The longer side.
+    pub fn size(&self) -> f64 {
+        (self.high.re - self.low.re).max(self.high.im - self.low.im)
+    }
+
+    fn centre(&self) -> Complex64 {
+        (self.low + self.high) * 0.5
+    }
+
+    fn holds(&self, z: Complex64, slack: f64) -> bool {
+        let slack = slack * self.size();
+        z.re >= self.low.re - slack
+            && z.re <= self.high.re + slack
+            && z.im >= self.low.im - slack
+            && z.im <= self.high.im + slack
+    }
+
+    /// Four parts, cut off-centre so that symmetric phases put no zero on an edge.
+    fn quarters(&self) -> [Region; 4] {
+        let extent = self.high - self.low;
+        let cut = self.low + Complex64::new(extent.re * 0.483_7, extent.im * 0.518_1);
+        let (l, h) = (self.low, self.high);
+        [
+            Region { low: l, high: cut },
+            Region { low: Complex64::new(cut.re, l.im), high: Complex64::new(h.re, cut.im) },
+            Region { low: Complex64::new(l.re, cut.im), high: Complex64::new(cut.re, h.im) },
+            Region { low: cut, high: h },
+        ]
+    }
+}
+
+/// A zero of `f'`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Saddle {
+    /// Its place.
+    pub z: Complex64,
+    /// `f` there.
+    pub value: Complex64,
+}
+
+/// Rectangles that are looked at in one search.
+const RECTANGLES: usize = 3000;
+/// Depth of quartering where the count is clean.
+const DEPTH: u32 = 18;
+/// Depth of quartering where it is not.
+const UNCOUNTED_DEPTH: u32 = 4;
+
+/// All zeros of `f'` in the region, multiple ones repeated.
+///
+/// Poles of `f'` count against its zeros: where the phase may have some, `finest` says how often
+/// the region is quartered before a count of zero is believed (0 for an entire phase).
+///
+/// # Errors
+/// If the saddles can't be told apart within a bounded number of rectangles.
+///
+/// ```
+/// use merging_saddles::{Complex64, saddles::{Region, locate}};
+/// // f = z^3/3 - z has its saddles at +-1 (elementary).
+/// let f = |z: Complex64| (z.powi(3) / 3.0 - z, z * z - 1.0);
+/// let region = Region { low: Complex64::new(-2.1, -1.0), high: Complex64::new(2.0, 1.2) };
+/// let found = locate(&f, region, 0)?;
+/// assert_eq!(found.len(), 2);
+/// assert!(found.iter().all(|s| (s.z * s.z - 1.0).norm() < 1e-12));
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+pub fn locate(phase: &dyn Phase, region: Region, finest: u32) -> Result<Vec<Saddle>, Error> {
+    let mut found: Vec<Complex64> = Vec::new();
+    let mut stack = vec![(region, 0u32)];
+    let mut seen = 0;
+    let total = region.size();
+    while let Some((part, depth)) = stack.pop() {
+        seen += 1;
+        if seen > RECTANGLES {
+            return Err(Error::Undecided {
+                reason: format!(
+                    "more than {RECTANGLES} rectangles were needed to count the saddles"
+                ),
+                remedy: "give a contour that stays closer to where the saddles are",
+            });
+        }
+        let count = winding(phase, &part);
+        match count {
+            Some(0) if depth >= finest => continue,
+            Some(n) if n > 0 && n as usize <= MAX_SADDLES => {
+                if let Some(roots) = simultaneous(phase, &part, n as usize) {
+                    found.extend(&roots[..n as usize]);
+                    continue;
+                }
+                if depth == DEPTH {
+                    found.extend(std::iter::repeat_n(part.centre(), n as usize));
+                    continue;
+                }
+            }
+            None if depth >= UNCOUNTED_DEPTH => {
+                if let Some(roots) = simultaneous(phase, &part, 1) {
+                    let new = |z: &Complex64| (z - roots[0]).norm() > 1e-7 * total;
+                    if found.iter().all(new) {
+                        found.push(roots[0]);
+                    }
+                }
+                continue;
+            }
+            _ if depth == DEPTH => continue,
+            _ => {}
+        }
+        stack.extend(part.quarters().map(|quarter| (quarter, depth + 1)));
+    }
+    Ok(found.into_iter().map(|z| Saddle { z, value: phase.value(z) }).collect())
+}
+
+/// Zeros minus poles of `f'` inside, or None where `arg f'` could not be followed.
+fn winding(phase: &dyn Phase, region: &Region) -> Option<i64> {
+    let (l, h) = (region.low, region.high);
+    let corners = [l, Complex64::new(h.re, l.im), h, Complex64::new(l.re, h.im), l];
+    let mut turn = 0.0;
+    for side in corners.windows(2) {
+        const PIECES: usize = 6;
+        let mut z = side[0];
+        let mut d = slope(phase, z)?;
+        for piece in 1..=PIECES {
+            let next = side[0] + (side[1] - side[0]) * (piece as f64 / PIECES as f64);
+            let d_next = slope(phase, next)?;
+            turn += turning(phase, (z, d), (next, d_next), 12)?;
+            (z, d) = (next, d_next);
+        }
+    }
+    let count = turn / (2.0 * std::f64::consts::PI);
+    ((count - count.round()).abs() < 0.05).then(|| count.round() as i64)
+}
+
+fn slope(phase: &dyn Phase, z: Complex64) -> Option<Complex64> {
+    let (_, d) = phase.value_and_derivative(z);
+    (d.re.is_finite() && d.im.is_finite() && d.norm() > 0.0).then_some(d)
+}
+
+/// The change of `arg f'` along a chord, halved until the midpoint agrees with both ends.
+fn turning(
+    phase: &dyn Phase,
+    from: (Complex64, Complex64),
+    to: (Complex64, Complex64),
+    depth: u32,
+) -> Option<f64> {
+    let middle = (from.0 + to.0) * 0.5;
+    let d = slope(phase, middle)?;
+    let (first, second) = ((d / from.1).arg(), (to.1 / d).arg());
+    if first.abs() < 0.8 && second.abs() < 0.8 {
+        return Some(first + second);
+    }
+    if depth == 0 {
+        return None;
+    }
+    Some(
+        turning(phase, from, (middle, d), depth - 1)? + turning(phase, (middle, d), to, depth - 1)?,
+    )
+}
+
+/// `count` zeros of `f'` inside the region at once; None unless just that many settle there.
+fn simultaneous(
+    phase: &dyn Phase,
+    region: &Region,
+    count: usize,
+) -> Option<[Complex64; MAX_SADDLES]> {
+    let centre = region.centre();
+    let half = (region.high - region.low) * 0.5;
+    let mut z = [centre; MAX_SADDLES];
+    for (j, z) in z.iter_mut().enumerate().take(count) {
+        let turn = Complex64::from_polar(0.45, 0.7 + 6.283 * j as f64 / count as f64);
+        *z += Complex64::new(turn.re * half.re, turn.im * half.im);
+    }
+    let size = region.size();
+    let mut largest = f64::INFINITY;
+    for _ in 0..40 {
+        let mut step = 0.0f64;
+        for j in 0..count {
+            let [_, d, dd] = phase.jet(z[j]);
+            if d.norm() == 0.0 {
+                continue;
+            }
+            let newton = d / dd;
+            let mut repulsion = Complex64::new(0.0, 0.0);
+            for other in (0..count).filter(|&other| other != j && z[other] != z[j]) {
+                repulsion += (z[j] - z[other]).inv();
+            }
+            let mut change = newton / (1.0 - newton * repulsion);
+            if !(change.re.is_finite() && change.im.is_finite()) {
+                return None;
+            }
+            // A long step is a guess; do not let it leave the neighbourhood at once.
+            if change.norm() > size {
+                change *= size / change.norm();
+            }
+            z[j] -= change;
+            step = step.max(change.norm());
+        }
+        let settled = step < 1e-13 * size || (step < 1e-6 * size && step > 0.5 * largest);
+        largest = step;
+        if settled {
+            break;
+        }
+    }
+    let inside = z[..count].iter().all(|&z| region.holds(z, 0.02));
+    (largest < 1e-5 * size && inside).then_some(z)
+}

@@ -1,0 +1,11 @@
+//! Where the saddles are, how they group, and which of them a contour needs.
+
+mod crossings;
+mod locate;
+mod topology;
+mod trace;
+mod tree;
+
+pub use locate::{Region, Saddle, locate};
+pub(crate) use topology::{DROP, Multiplicities, Topology};
+pub(crate) use tree::{Group, Tree};

@@ -1,0 +1,265 @@
+//! Which clusters a contour needs, between which of their valleys, with sign; and a certificate.
+//!
+//! Method. On the ring of a cluster's normal form `Re(i Phi)` has K+2 ridges between K+2 valleys.
+//! Ridge `j` lies between valleys `j` and `j + 1`. From each ridge the steepest ascent is followed
+//! until it is above the whole contour; `m_j` is the number of signed crossings of that line with
+//! the contour. The cluster contributes `sum_j m_j E_j`, `E_j` the canonical integral from valley
+//! `j` to valley `j + 1`. No saddle inside the ring needs a label.
+//!
+//! The phase is turned by a small angle first, which takes real problems off their Stokes lines.
+//! Work goes from the highest cluster downwards; the first that contributes sets a floor, below
+//! which nothing needs an evaluation.
+//!
+//! Certificate. The valleys that the contributions run between, followed down below the floor,
+//! must cancel against each other and against the two ends of the contour. A contributing saddle
+//! that was not found leaves a valley over.
+//!
+//! Source: steepest descent and Picard-Lefschetz theory, e.g. M. V. Berry, C. J. Howls, Proc. R.
+//! Soc. Lond. A 434 (1991) 657, from memory; ridge counting on a ring and the certificate were
+//! worked out for this crate.
+
+use super::Saddle;
+use super::crossings::crossings;
+use super::trace::{Ended, Exponent, trace};
+use crate::integral::{Contour, Phase};
+use crate::ring::{MAX_SADDLES, NormalForm, unit_points};
+use num_complex::Complex64;
+use std::f64::consts::PI;
+
+/// `m_j` for each ridge of a cluster; all equal means no contribution.
+pub(crate) type Multiplicities = [i32; MAX_SADDLES + 1];
+
+/// How far below the highest contribution a cluster may lie and still be evaluated.
+pub(crate) const DROP: f64 = 20.0;
+/// How exactly a traced point keeps the height it was sent to.
+const SLACK: f64 = 0.05 * DROP;
+/// The angle that the exponent is turned by.
+const DELTA: f64 = 0.03;
+
+/// The contour as the topology sees it.
+pub(crate) struct Topology<'a> {
+    h: Exponent<'a>,
+    /// The given path, its points moved by a hair so that none lies on a ridge.
+    path: Vec<Complex64>,
+    /// The descents from both ends and the path, in one line: counted inside rings only.
+    whole: Vec<Complex64>,
+    start: Complex64,
+    end: Complex64,
+    top: f64,
+    bottom: f64,
+    longest: f64,
+}
+
+impl<'a> Topology<'a> {
+    pub fn new(phase: &'a dyn Phase, contour: &Contour, saddles: &[Saddle]) -> Topology<'a> {
+        let h = Exponent::new(phase, DELTA);
+        let points = contour.points();
+        let size = points.windows(2).map(|p| (p[1] - p[0]).norm()).fold(0.0, f64::max);
+        let path: Vec<Complex64> = points
+            .iter()
+            .enumerate()
+            .map(|(n, z)| z + Complex64::from_polar(1e-9 * size, 1.0 + 2.4 * n as f64))
+            .collect();
+        let mut top = f64::NEG_INFINITY;
+        let mut bottom = f64::INFINITY;
+        for side in path.windows(2) {
+            const PIECES: usize = 24;
+            for piece in 0..=PIECES {
+                let height =
+                    h.height(side[0] + (side[1] - side[0]) * (piece as f64 / PIECES as f64));
+                top = top.max(height);
+                bottom = bottom.min(height);
+            }
+        }
+        let longest = size;
+        let deep = saddles.iter().fold(bottom, |m, s| m.min(h.of(s.value).re)) - DROP;
+        let tail = |from: Complex64| {
+            let mut line = vec![from];
+            trace(&h, from, deep, longest, &mut line);
+            line
+        };
+        let first = tail(path[0]);
+        let last = tail(path[path.len() - 1]);
+        let mut whole: Vec<Complex64> = first.iter().rev().copied().collect();
+        whole.extend(&path[1..]);
+        whole.extend(&last[1..]);
+        Topology {
+            h,
+            start: whole[0],
+            end: whole[whole.len() - 1],
+            path,
+            whole,
+            top: top + 0.02 * (top - bottom) + 1e-9,
+            bottom,
+            longest,
+        }
+    }
+
+    /// `Re h` of a phase value, in the turned exponent.
+    pub fn turned_height(&self, value: Complex64) -> f64 {
+        self.h.of(value).re
+    }
+
+    /// The least height on the given path.
+    pub fn bottom(&self) -> f64 {
+        self.bottom
+    }
+
+    /// True if a saddle of this height lies above the whole contour and so can't contribute.
+    pub fn above(&self, height: f64) -> bool {
+        height > self.top
+    }
+
+    /// The multiplicities of one cluster; None if a ridge could not be followed.
+    pub fn multiplicities(&self, form: &NormalForm) -> Option<Multiplicities> {
+        let arcs = self.arcs(form);
+        let mut m = [0; MAX_SADDLES + 1];
+        // Any hub inside the ring will do; a generic one does not lie on the contour.
+        let hub = Complex64::from_polar(0.043, 1.234);
+        for (m, arc) in m.iter_mut().zip(&arcs.ridges).take(form.degree()) {
+            let v = (*arc)?;
+            const PIECES: usize = 6;
+            let spoke: Vec<Complex64> = (0..=PIECES)
+                .map(|piece| form.point(hub + (v - hub) * (piece as f64 / PIECES as f64)))
+                .collect();
+            let start = spoke[PIECES];
+            let mut ridge = vec![start];
+            if self.h.height(start) < self.top
+                && trace(&self.h, start, self.top, self.longest, &mut ridge) == Ended::Stalled
+            {
+                return None;
+            }
+            *m = crossings(&spoke, &self.whole) + crossings(&ridge, &self.path);
+        }
+        Some(m)
+    }
+
+    /// The valleys that a contribution runs between: weight and a point far down in each.
+    /// None if one can't be followed below `floor`.
+    pub fn valleys(
+        &self,
+        form: &NormalForm,
+        m: &Multiplicities,
+        floor: f64,
+    ) -> Option<Vec<(i32, Complex64)>> {
+        let arcs = self.arcs(form);
+        let degree = form.degree();
+        let mut list = Vec::new();
+        for v in 0..degree {
+            let weight = m[(v + degree - 1) % degree] - m[v];
+            if weight == 0 {
+                continue;
+            }
+            let mut point = form.point(arcs.valleys[v]?);
+            if self.h.height(point) > floor {
+                let mut line = vec![point];
+                if trace(&self.h, point, floor, self.longest, &mut line) == Ended::Stalled {
+                    return None;
+                }
+                point = line[line.len() - 1];
+            }
+            list.push((weight, point));
+        }
+        Some(list)
+    }
+
+    /// The certificate: do the valleys and the ends of the contour cancel?
+    pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
+        let mut ends = valleys.to_vec();
+        ends.push((1, self.start));
+        ends.push((-1, self.end));
+        // An end at infinity must really be down there; a finite end that contributes has been
+        // followed down like the others.
+        if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK) {
+            return false;
+        }
+        let mut open = vec![true; ends.len()];
+        for first in 0..ends.len() {
+            if !open[first] {
+                continue;
+            }
+            open[first] = false;
+            let mut pool = vec![first];
+            let mut sum = 0;
+            while let Some(here) = pool.pop() {
+                sum += ends[here].0;
+                for there in 0..ends.len() {
+                    if open[there] && self.joined(ends[here].1, ends[there].1, floor) {
+                        open[there] = false;
+                        pool.push(there);
+                    }
+                }
+            }
+            if sum != 0 {
+                return false;
+            }
+        }
+        true
+    }
+
+    /// Two points below the floor lie in one valley if the chord between them stays below, if not
+    /// at once then after both have gone further down.
+    fn joined(&self, a: Complex64, b: Complex64, floor: f64) -> bool {
+        let (mut a, mut b) = (a, b);
+        for round in 0..3 {
+            const PIECES: usize = 24;
+            let below = |piece: usize| {
+                let z = a + (b - a) * (piece as f64 / PIECES as f64);
+                self.h.height(z) < floor + SLACK
+            };
+            if (1..PIECES).all(below) {
+                return true;
+            }
+            let deeper = floor - DROP * 4f64.powi(round);
+            for z in [&mut a, &mut b] {
+                let mut line = vec![*z];
+                trace(&self.h, *z, deeper, self.longest, &mut line);
+                *z = line[line.len() - 1];
+            }
+        }
+        false
+    }
+
+    /// The highest point of each ridge's arc on the ring, the lowest of each valley's.
+    ///
+    /// With all zeros of `Phi'` inside, `arg(i u Phi')` lifted from infinity is
+    /// `pi/2 + D arg u + sum arg(1 - u_s/u)`, every term of the sum within a quarter turn; ridge `j`
+    /// is where it is near `2 pi (j + 1)`, valley `j` where it is near `2 pi j + pi`.
+    fn arcs(&self, form: &NormalForm) -> Arcs {
+        let degree = form.degree();
+        let saddles = form.saddles_on_disc();
+        let turn = Complex64::from_polar(1.0, DELTA);
+        let mut arcs = Arcs { ridges: [None; MAX_SADDLES + 1], valleys: [None; MAX_SADDLES + 1] };
+        let mut best = [f64::NEG_INFINITY; MAX_SADDLES + 1];
+        let mut least = [f64::INFINITY; MAX_SADDLES + 1];
+        for &v in unit_points() {
+            let mut lift = 0.5 * PI + DELTA + degree as f64 * v.arg();
+            for s in &saddles[..form.saddles()] {
+                lift += (1.0 - s / v).arg();
+            }
+            let slope = (form.radial_slope(v) * turn).re;
+            let height = self.h.height(form.point(v));
+            if slope > 0.0 {
+                let ridge = (lift / (2.0 * PI)).round() as i64 - 1;
+                let j = ridge.rem_euclid(degree as i64) as usize;
+                if height > best[j] {
+                    best[j] = height;
+                    arcs.ridges[j] = Some(v);
+                }
+            } else {
+                let valley = ((lift - PI) / (2.0 * PI)).round() as i64;
+                let j = valley.rem_euclid(degree as i64) as usize;
+                if height < least[j] {
+                    least[j] = height;
+                    arcs.valleys[j] = Some(v);
+                }
+            }
+        }
+        arcs
+    }
+}
+
+struct Arcs {
+    ridges: [Option<Complex64>; MAX_SADDLES + 1],
+    valleys: [Option<Complex64>; MAX_SADDLES + 1],
+}

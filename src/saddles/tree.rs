@@ -1,0 +1,130 @@
+//! Groups of saddles: a tree from single saddles (or merged ones) up to clusters of several.
+//!
+//! Which level of the tree an integral is summed at is decided at each wavenumber by the smallest
+//! error figure; the tree only lists what can be chosen from.
+//!
+//! Method: agglomeration by complete linkage (textbook), bounded by the number of saddles that
+//! has a canonical integral and by the difference of heights beyond which taking saddles together
+//! cannot pay.
+
+use super::Saddle;
+use num_complex::Complex64;
+
+/// Saddles that may be treated together.
+#[derive(Clone, Debug)]
+pub(crate) struct Group {
+    /// Indices into the list of saddles.
+    pub members: Vec<usize>,
+    /// Their mean.
+    pub centre: Complex64,
+    /// The largest distance of a member from the centre.
+    pub radius: f64,
+    /// The distance from the centre to the nearest saddle outside; infinite if there is none.
+    pub gap: f64,
+    /// The two groups that this one joins; none for the finest level.
+    pub parts: Option<(usize, usize)>,
+}
+
+/// Groups, parts before wholes.
+#[derive(Clone, Debug)]
+pub(crate) struct Tree {
+    pub groups: Vec<Group>,
+    /// Groups that are part of no other.
+    pub roots: Vec<usize>,
+}
+
+/// Saddles whose phases differ by less are never told apart: with `k` up to 1e7 their difference
+/// of phase is below one.
+const MERGED: f64 = 1e-7;
+/// Beyond this difference of phase, taking saddles together does not pay for any `k >= 3`.
+const APART: f64 = 20.0;
+
+impl Tree {
+    pub fn new(saddles: &[Saddle], largest: usize) -> Tree {
+        let mut groups: Vec<Group> = Vec::new();
+        let mut open: Vec<usize> = Vec::new();
+        for index in 0..saddles.len() {
+            let merged = |&g: &usize| {
+                groups[g].members.iter().any(|&m| {
+                    let (a, b) = (&saddles[m], &saddles[index]);
+                    // The phase is flat between merged saddles, but may agree by chance between
+                    // distant ones: look halfway too.
+                    (a.value - b.value).norm() < MERGED
+                        && (a.z - b.z).norm() < 0.05 * spread(saddles)
+                })
+            };
+            match open.iter().copied().find(|g| merged(g)) {
+                Some(g) => groups[g].members.push(index),
+                None => {
+                    open.push(groups.len());
+                    groups.push(group(vec![index], None));
+                }
+            }
+        }
+        while let Some((a, b)) = nearest(&groups, &open, saddles, largest) {
+            let mut members = groups[a].members.clone();
+            members.extend(&groups[b].members);
+            open.retain(|&g| g != a && g != b);
+            open.push(groups.len());
+            groups.push(group(members, Some((a, b))));
+        }
+        for group in &mut groups {
+            measure(group, saddles);
+        }
+        Tree { groups, roots: open }
+    }
+}
+
+fn spread(saddles: &[Saddle]) -> f64 {
+    let first = saddles[0].z;
+    saddles.iter().fold(0.0f64, |m, s| m.max((s.z - first).norm())).max(1e-3)
+}
+
+fn group(members: Vec<usize>, parts: Option<(usize, usize)>) -> Group {
+    Group { members, centre: Complex64::new(0.0, 0.0), radius: 0.0, gap: f64::INFINITY, parts }
+}
+
+fn measure(group: &mut Group, saddles: &[Saddle]) {
+    let sum: Complex64 = group.members.iter().map(|&m| saddles[m].z).sum();
+    let centre = sum / group.members.len() as f64;
+    group.centre = centre;
+    for (index, saddle) in saddles.iter().enumerate() {
+        let distance = (saddle.z - centre).norm();
+        if group.members.contains(&index) {
+            group.radius = group.radius.max(distance);
+        } else {
+            group.gap = group.gap.min(distance);
+        }
+    }
+}
+
+/// The closest pair of open groups that may be joined.
+fn nearest(
+    groups: &[Group],
+    open: &[usize],
+    saddles: &[Saddle],
+    largest: usize,
+) -> Option<(usize, usize)> {
+    let mut best = None;
+    let mut least = f64::INFINITY;
+    for (i, &a) in open.iter().enumerate() {
+        for &b in &open[..i] {
+            if groups[a].members.len() + groups[b].members.len() > largest {
+                continue;
+            }
+            let mut distance = 0.0f64;
+            let mut apart = 0.0f64;
+            for &m in &groups[a].members {
+                for &n in &groups[b].members {
+                    distance = distance.max((saddles[m].z - saddles[n].z).norm());
+                    apart = apart.max((saddles[m].value - saddles[n].value).norm());
+                }
+            }
+            if apart < APART && distance < least {
+                least = distance;
+                best = Some((b, a));
+            }
+        }
+    }
+    best
+}
