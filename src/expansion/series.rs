@@ -29,7 +29,7 @@ const LOW: f64 = 6.0;
 /// The first ring is made smaller until its tails are below this.
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
-const FIRST: usize = 24;
+const FIRST: usize = 12;
 /// The smallest ring that is kept, relative to the largest.
 const SMALLEST: f64 = 0.3;
 
@@ -252,16 +252,19 @@ fn first_ring(
         if let Some(ring) = NormalForm::find(phase, saddles, centre, reach)
             .and_then(|form| Ring::new(form, amplitude))
         {
-            let crowded = ring.filling * RATIO > FILLING;
-            let done = crowded || ring.tail() < CLEAN;
-            if ring.filling < FILLING || found.is_none() {
+            let crowded = ring.filling * RATIO * RATIO > FILLING;
+            // Where the noise of the phase sets the tails a smaller ring is no better.
+            let best = found.as_ref().map_or(f64::INFINITY, Ring::tail);
+            let noisy = ring.tail() > 0.3 * best;
+            let done = crowded || noisy || ring.tail() < CLEAN;
+            if !noisy && (ring.filling < FILLING || found.is_none()) {
                 found = Some(ring);
             }
             if done {
                 break;
             }
         }
-        reach /= RATIO;
+        reach /= RATIO * RATIO;
     }
     found
 }

@@ -35,8 +35,10 @@ impl Node {
     }
 }
 
-/// Everything about an integral that does not depend on the wavenumber; see
-/// [`Integral::plan`].
+/// Everything about an integral that does not depend on the wavenumber: the saddles, their
+/// groups with the uniform expansion of each, which of them the contour needs, and the error
+/// figures' ingredients. Made by [`Integral::plan`]; calls of [`Plan::at`] allocate nothing, and a
+/// plan may be shared between threads.
 pub struct Plan {
     /// Parts before wholes.
     nodes: Vec<Node>,
@@ -50,11 +52,39 @@ pub struct Plan {
 }
 
 impl<P: Phase, A: Amplitude> Integral<P, A> {
-    /// Finds the saddles, groups them, decides which contribute, and computes their series.
+    /// Finds the saddles, groups them, decides which contribute, and computes their expansions.
+    ///
+    /// Groups of up to two saddles (a fold, K = 1) have a uniform expansion; single saddles and
+    /// finite end points have their own. Where saddles are close both forms are kept, and each
+    /// wavenumber takes the one with the smaller error figure. Three or more merging saddles, a
+    /// finite end near a saddle, and poles or branch points of `f` or `g` near a saddle are not
+    /// covered: the error figure says so, or the plan is refused.
+    ///
+    /// Cost: about 3,000 evaluations of the phase for one group, more for several; no allocation
+    /// afterwards.
     ///
     /// # Errors
     /// If the contour is malformed, the phase is not finite on it, or it could not be decided
-    /// which saddles contribute.
+    /// which saddles contribute. The yardstick `quadrature` needs no such decision.
+    ///
+    /// # Source
+    /// C. Chester, B. Friedman, F. Ursell, Proc. Camb. Phil. Soc. 53 (1957) 599; DLMF 2.4(v).
+    ///
+    /// ```
+    /// use merging_saddles::{Complex64, Contour, Integral};
+    /// // Stirling: Gamma(k + 1) = k^(k+1) integral_0^inf exp(k (ln z - z)) dz (DLMF 5.9.1).
+    /// let integral = Integral::new(
+    ///     |z: Complex64| {
+    ///         let minus_i = Complex64::new(0.0, -1.0);
+    ///         ((z.ln() - z) * minus_i, (z.inv() - 1.0) * minus_i)
+    ///     },
+    ///     Contour::through([0.3, 1.0, 3.0].map(Complex64::from)),
+    /// );
+    /// let u = integral.plan()?.at(10.0)?;
+    /// let factorial = u.value.re * 10f64.powi(11);
+    /// assert!((factorial - 3628800.0).abs() < 1e-6); // 10!
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn plan(&self) -> Result<Plan, Error> {
         self.contour().check()?;
         for &z in self.contour().points() {
@@ -111,7 +141,7 @@ fn attempt(
         }
     }
 
-    let tree = Tree::new(&saddles, LARGEST_CLUSTER);
+    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }

@@ -142,7 +142,7 @@ impl NormalForm {
                 step = step.max(c.norm());
             }
             let scale = self.map[1].norm();
-            if !(step.is_finite() && step < 10.0 * scale) {
+            if !(step.is_finite() && step < 10.0 * scale && step < 4.0 * last_step) {
                 return false;
             }
             // Settled: at the rounding level, or small and no longer falling.
@@ -250,7 +250,10 @@ impl NormalForm {
             roots[1] = -roots[0];
         } else if count > 2 {
             for (j, root) in roots.iter_mut().take(count).enumerate() {
-                *root = Complex64::from_polar(0.5, 0.4 + 6.3 * j as f64 / count as f64);
+                *root = Complex64::from_polar(
+                    0.5,
+                    0.4 + std::f64::consts::TAU * j as f64 / count as f64,
+                );
             }
             for _ in 0..60 {
                 let mut step = 0.0f64;

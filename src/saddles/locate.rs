@@ -207,7 +207,8 @@ fn simultaneous(
     let half = (region.high - region.low) * 0.5;
     let mut z = [centre; MAX_SADDLES];
     for (j, z) in z.iter_mut().enumerate().take(count) {
-        let turn = Complex64::from_polar(0.45, 0.7 + 6.283 * j as f64 / count as f64);
+        let turn =
+            Complex64::from_polar(0.45, 0.7 + std::f64::consts::TAU * j as f64 / count as f64);
         *z += Complex64::new(turn.re * half.re, turn.im * half.im);
     }
     let size = region.size();

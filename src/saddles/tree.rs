@@ -8,6 +8,7 @@
 //! cannot pay.
 
 use super::Saddle;
+use crate::integral::Phase;
 use num_complex::Complex64;
 
 /// Saddles that may be treated together.
@@ -40,17 +41,16 @@ const MERGED: f64 = 1e-7;
 const APART: f64 = 20.0;
 
 impl Tree {
-    pub fn new(saddles: &[Saddle], largest: usize) -> Tree {
+    pub fn new(phase: &dyn Phase, saddles: &[Saddle], largest: usize) -> Tree {
         let mut groups: Vec<Group> = Vec::new();
         let mut open: Vec<usize> = Vec::new();
         for index in 0..saddles.len() {
             let merged = |&g: &usize| {
                 groups[g].members.iter().any(|&m| {
                     let (a, b) = (&saddles[m], &saddles[index]);
-                    // The phase is flat between merged saddles, but may agree by chance between
-                    // distant ones: look halfway too.
-                    (a.value - b.value).norm() < MERGED
-                        && (a.z - b.z).norm() < 0.05 * spread(saddles)
+                    // Merged saddles have no hill between them; distant ones may agree by chance.
+                    let between = phase.value((a.z + b.z) * 0.5);
+                    (a.value - b.value).norm() < MERGED && (between - a.value).norm() < MERGED
                 })
             };
             match open.iter().copied().find(|g| merged(g)) {
@@ -73,11 +73,6 @@ impl Tree {
         }
         Tree { groups, roots: open }
     }
-}
-
-fn spread(saddles: &[Saddle]) -> f64 {
-    let first = saddles[0].z;
-    saddles.iter().fold(0.0f64, |m, s| m.max((s.z - first).norm())).max(1e-3)
 }
 
 fn group(members: Vec<usize>, parts: Option<(usize, usize)>) -> Group {
