@@ -75,7 +75,7 @@ pub fn real(table: &Table) -> Result<Measured, Fault> {
         .collect();
     let names = ["ai", "aip", "bi", "bip"];
     Ok(names.iter().enumerate().fold(Measured::new(ns), |measured, (index, name)| {
-        measured.quantity(name, errors.iter().map(|e| e[index]))
+        measured.quantity(*name, errors.iter().map(|e| e[index]))
     }))
 }
 

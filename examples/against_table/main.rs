@@ -13,6 +13,7 @@
 mod airy;
 #[path = "../support/arguments.rs"]
 mod arguments;
+mod field;
 mod layer;
 mod measured;
 mod reference;
@@ -44,6 +45,7 @@ const ENTRIES: &[Entry] = &[
     Entry { name: "airy_scaled", measure: airy::scaled },
     Entry { name: "airy_real", measure: airy::real },
     Entry { name: "cutoff_layer", measure: layer::cutoff },
+    Entry { name: "uniform_field", measure: field::uniform },
 ];
 
 fn run(arguments: &Arguments) -> Result<(), Fault> {

@@ -6,7 +6,7 @@ use std::time::{Duration, Instant};
 
 /// The result of one table.
 pub struct Measured {
-    quantities: Vec<(&'static str, Vec<f64>)>,
+    quantities: Vec<(String, Vec<f64>)>,
     notes: Vec<String>,
     ns_per_row: f64,
 }
@@ -17,10 +17,10 @@ impl Measured {
     }
 
     /// Adds the errors of one quantity, one per row.
-    pub fn quantity(mut self, name: &'static str, errors: impl Iterator<Item = f64>) -> Self {
+    pub fn quantity(mut self, name: impl Into<String>, errors: impl Iterator<Item = f64>) -> Self {
         // A NaN is as wrong as can be and must not vanish in a comparison.
         let errors = errors.map(|e| if e.is_nan() { f64::INFINITY } else { e }).collect();
-        self.quantities.push((name, errors));
+        self.quantities.push((name.into(), errors));
         self
     }
 

@@ -86,15 +86,13 @@ impl Table {
         read: impl Fn(&str) -> Option<T>,
     ) -> Result<Vec<T>, Fault> {
         let index = self.column(name)?;
-        self.rows
-            .iter()
-            .map(|(line, row)| {
-                let field = &row[index];
-                read(field).ok_or_else(|| {
-                    self.fault(*line, format!("column '{name}' holds '{field}': give {expected}"))
-                })
+        let read = |(row, (_, record)): (usize, &(usize, csv::StringRecord))| {
+            let field = &record[index];
+            read(field).ok_or_else(|| {
+                self.fault_at_row(row, format!("column '{name}' holds '{field}': give {expected}"))
             })
-            .collect()
+        };
+        self.rows.iter().enumerate().map(read).collect()
     }
 
     /// A fault of a row (counted from 0) that names the file and the row's line.
