@@ -14,8 +14,8 @@
 //! Source: derived here; the cut-off depth is the textbook modal relation (common practice).
 
 use super::layer::bound_extended;
-use super::uniform::{Order, SlopingGuide, UniformField};
-use crate::{Complex64, Error, Scaled};
+use super::uniform::{Order, SlopingGuide, times};
+use crate::{Complex64, Error, Estimate, Scaled};
 use std::f64::consts::{FRAC_PI_4, LOG10_E, PI, TAU};
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
@@ -266,7 +266,7 @@ impl AcousticGuide {
         let incoming = sloping.adiabatic(q * reference_depth_m)?;
         Ok(ModeCutOff {
             sloping,
-            sign: if mode % 2 == 0 { -1.0 } else { 1.0 },
+            sign: if mode.is_multiple_of(2) { -1.0 } else { 1.0 },
             gradient,
             density_ratio: self.density_ratio,
             cutoff_depth_m,
@@ -303,6 +303,11 @@ pub struct ModeCutOff {
 }
 
 impl ModeCutOff {
+    /// With the uniform field to the given order in `eps` (without a call: [`Order::Next`]).
+    pub fn order(self, order: Order) -> Self {
+        ModeCutOff { sloping: self.sloping.order(order), ..self }
+    }
+
     /// Depth of the water in m where the mode is cut off (without loss).
     pub fn cutoff_depth_m(&self) -> f64 {
         self.cutoff_depth_m
@@ -388,23 +393,27 @@ impl ModeCutOff {
         Ok((u * (size * profile) * self.relative(range_m)).to_complex())
     }
 
-    /// The uniform field at a place, to be evaluated: the integral and what it is multiplied with.
+    /// Pressure from the uniform field, relative to the incoming mode's antinode at the reference
+    /// depth; good before, at and after cut-off, at any distance from it.
     ///
-    /// Errors as [`pressure_layer`](Self::pressure_layer), and [`Error::Undecided`] for a bottom lighter than
-    /// the water where the Brewster angle is in the beam.
-    pub fn uniform_field(
-        &self,
-        range_m: f64,
-        depth_m: f64,
-        order: Order,
-    ) -> Result<UniformField, Error> {
+    /// The error figure is that of the integral (relative 1e-9 is asked for). The formula itself is
+    /// good to about `eps^2` in the bottom (0.2 % at `eps = 0.02`, 1 to 4 % at 0.1) and somewhat
+    /// less in the water late after cut-off, beside a constant phase of about `eps/2`: see
+    /// `tests/guide_pde.rs`.
+    ///
+    /// Cost: 0.1 to 0.7 ms at any frequency; 2 ms where the densities differ and `eps` is 0.1.
+    ///
+    /// Errors: as [`pressure_layer`](Self::pressure_layer); [`Error::Undecided`] for a bottom lighter
+    /// than the water where the Brewster angle lies in the beam; what [`crate::Integral::quadrature`]
+    /// refuses.
+    pub fn pressure_uniform(&self, range_m: f64, depth_m: f64) -> Result<Estimate, Error> {
         let water = self.check(range_m, depth_m)?;
-        let guide = self.sloping.order(order);
-        if depth_m >= water {
-            guide.outside(self.q * water, self.q * (depth_m - water))
+        let field = if depth_m >= water {
+            self.sloping.outside(self.q * water, self.q * (depth_m - water))?
         } else {
-            guide.inside(self.q * water, self.q * depth_m)
-        }
+            self.sloping.inside(self.q * water, self.q * depth_m)?
+        };
+        Ok(times(field.quadrature(1e-9)?, self.relative(range_m)))
     }
 
     /// From a field of unit energy, without its carrier, to pressure relative to the incoming mode.

@@ -21,7 +21,7 @@
 //! axis. So the cuts lie on `Im w = pi/2`, `|Re w| > artanh m`, or on the real axis,
 //! `|Re w| > artanh(1/m)`: the principal arctan (artanh) and root of D have just these; beta is
 //! `artanh(m tanh w)` below `Im w = pi/4` and `artanh(coth(w)/m) + i pi/2` above, the same function
-//! there. The amplitude outside has besides an essential singularity at `i pi/2` (`h_n` has a
+//! there, and so on with the period `i pi`. The amplitude outside has besides an essential singularity at `i pi/2` (`h_n` has a
 //! pole), to the right of the contour's left arm.
 //!
 //! Source: derived here.
@@ -46,15 +46,20 @@ impl Dispersion {
         Dispersion { cutoff: (f64::from(mode) - 0.5) * PI, m }
     }
 
-    /// `beta(w)`, continuous along the contour.
+    /// `beta(w)`, continuous along the contour; `beta(w + i pi) = beta(w) + i pi`.
     fn beta(&self, w: Complex64) -> Complex64 {
         if self.m == 1.0 {
-            w
-        } else if w.im < FRAC_PI_4 {
-            (w.tanh() * self.m).atanh()
-        } else {
-            ((w.tanh() * self.m).inv()).atanh() + I * FRAC_PI_2
+            return w;
         }
+        let sheet = I * ((w.im / PI).round() * PI);
+        let below = w - sheet;
+        let slope = below.tanh() * self.m;
+        sheet
+            + if below.im.abs() < FRAC_PI_4 {
+                slope.atanh()
+            } else {
+                slope.inv().atanh() + I * FRAC_PI_2.copysign(below.im)
+            }
     }
 
     /// `S` from `p`.

@@ -29,7 +29,7 @@
 //! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_pde.rs`.
 
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Side};
-use crate::{Complex64, Contour, Error, Integral};
+use crate::{Complex64, Contour, Error, Estimate, Integral, Scaled};
 use std::f64::consts::{FRAC_PI_2, PI};
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
@@ -108,8 +108,8 @@ impl SlopingGuide {
     }
 
     /// Largest neglected part that is accepted for `m > 1`, relative to the mode (without a call:
-    /// 1e-3). There the contour passes the Brewster parameter `p = 1/sqrt(m^2 - 1)`, where the
-    /// expansion in `eps` breaks down; the integrand there is the neglected part.
+    /// 1e-3). There the contour is cut short of the Brewster parameter `p = 1/sqrt(m^2 - 1)`, where
+    /// the expansion in `eps` breaks down; the integrand at its end is the neglected part.
     pub fn tolerance(self, tolerance: f64) -> Self {
         SlopingGuide { tolerance, ..self }
     }
@@ -126,7 +126,7 @@ impl SlopingGuide {
         x: impl Into<Complex64>,
     ) -> Result<UniformField, Error> {
         let x = x.into();
-        let sign = if self.mode % 2 == 0 { -1.0 } else { 1.0 };
+        let sign = if self.mode.is_multiple_of(2) { -1.0 } else { 1.0 };
         self.field(h.into(), Side::Inside { x }, Complex64::new(0.0, 0.0), sign)
     }
 
@@ -163,45 +163,48 @@ impl SlopingGuide {
         let phase =
             ModePhase { dispersion, h, d: self.eps * distance, turn: self.eps.inv() * size };
         let amplitude = ModeAmplitude { dispersion, h, eps, side };
-        let neglected = self.neglected(h)?;
+        let (contour, neglected) = self.contour(h)?;
         let prefactor = -I * (I * 2.0 / (PI * self.eps)).sqrt() * sign;
-        let integral = Integral::new(phase, self.contour()).amplitude(amplitude);
+        let integral = Integral::new(phase, contour).amplitude(amplitude);
         Ok(UniformField { integral, wavenumber: size.recip(), prefactor, neglected })
     }
 
-    /// From the valley on the left, between `i pi/2 - artanh m` and `i pi/2`, to the right.
-    fn contour(&self) -> Contour {
+    /// From the valley on the left, between `i pi/2 - artanh m` and `i pi/2`, to the right; with
+    /// the size of the exponential where it ends (0 at infinity).
+    ///
+    /// For `m > 1` it ends before the Brewster parameter, beyond which the integrand grows again.
+    fn contour(&self, h: Complex64) -> Result<(Contour, f64), Error> {
         let m = self.dispersion.m;
         let gate = if m < 1.0 { (0.5 * m.atanh()).min(0.5) } else { 0.5 };
-        Contour::through([
-            Complex64::new(-1.5, 0.75 * PI),
-            Complex64::new(-gate, FRAC_PI_2),
-            Complex64::new(0.0, 0.0),
-            Complex64::new(1.5, 0.25 * PI),
-        ])
-    }
-
-    /// The integrand at the Brewster parameter, refused where it is not small.
-    fn neglected(&self, h: Complex64) -> Result<f64, Error> {
-        let m = self.dispersion.m;
+        let left = Complex64::new(-1.5, 0.75 * PI);
+        let middle = Complex64::new(-gate, FRAC_PI_2);
+        let zero = Complex64::new(0.0, 0.0);
         if m <= 1.0 {
-            return Ok(0.0);
+            let right = Complex64::new(1.5, 0.25 * PI);
+            return Ok((Contour::through([left, middle, zero, right]), 0.0));
         }
-        // On the real axis the modulus of the exponential does not depend on the place.
-        let w = Complex64::new(m.recip().atanh() * (1.0 - 1e-9), 0.0);
-        let level = (I * self.dispersion.action(w, h) / self.eps).re.exp();
-        if level > self.tolerance {
+        // On the real axis the size of the exponential depends on eps and m alone (without loss).
+        let brewster = m.recip().atanh();
+        let size =
+            |w: f64| (I * self.dispersion.action(Complex64::new(w, 0.0), h) / self.eps).re.exp();
+        let end = (1..=19)
+            .map(|j| 0.05 * f64::from(j) * brewster)
+            .find(|&w| size(w) < 1e-17)
+            .unwrap_or(0.95 * brewster);
+        let neglected = size(end);
+        if neglected.is_nan() || neglected > self.tolerance {
             return Err(Error::Undecided {
                 reason: format!(
-                    "the integrand has the size {level:.1e} at the Brewster parameter p = {:.3}, \
-                     where the expansion breaks down",
-                    (m * m - 1.0).sqrt().recip()
+                    "the integrand has still the size {neglected:.1e} near the Brewster parameter \
+                     p = {:.3}, where the expansion in eps breaks down",
+                    brewster.sinh()
                 ),
                 remedy: "take a smaller eps or a density ratio nearer to 1, or accept it with \
                          `tolerance`",
             });
         }
-        Ok(level)
+        let right = Complex64::new(end, 0.0);
+        Ok((Contour::ending_at([left, middle, zero, right]), neglected))
     }
 
     /// The adiabatic mode where the guide has the width `h`, wider than at cut-off.
@@ -250,7 +253,7 @@ impl SlopingGuide {
                 break;
             }
         }
-        if !converged || !(w.im > 0.0 && w.im < FRAC_PI_2) {
+        if !(converged && w.im > 0.0 && w.im < FRAC_PI_2) {
             return Err(Error::NoConvergence {
                 what: "the bound mode with losses",
                 limit: 30,
@@ -291,8 +294,54 @@ impl UniformField {
         self.prefactor
     }
 
-    /// Size of the integrand at the Brewster parameter, relative to the mode; 0 for `m <= 1`.
+    /// The field by uniform expansions at the saddles: cost flat in `1/eps`.
+    ///
+    /// The error figure is that of the integral (and of what is neglected at the Brewster
+    /// parameter), not of the formula in `eps`.
+    ///
+    /// Errors: as [`Integral::plan`] and [`crate::Plan::at`].
+    pub fn evaluate(&self) -> Result<Estimate, Error> {
+        Ok(self.finish(self.integral.plan()?.at(self.wavenumber)?))
+    }
+
+    /// The field by quadrature along the contour, to a relative `tolerance`: the yardstick.
+    ///
+    /// Errors: as [`Integral::quadrature`].
+    pub fn quadrature(&self, tolerance: f64) -> Result<Estimate, Error> {
+        Ok(self.finish(self.integral.quadrature(self.wavenumber, tolerance)?))
+    }
+
+    /// Multiplies by the prefactor and adds what is neglected to the error.
+    fn finish(&self, integral: Estimate) -> Estimate {
+        let field = times(integral, Scaled::from(self.prefactor));
+        if self.neglected == 0.0 {
+            return field;
+        }
+        let neglected = Complex64::new(self.neglected * self.prefactor.norm(), 0.0);
+        let error = error_of(&field) + Scaled::from(neglected);
+        Estimate::new(field.scaled, error, field.orders, field.form)
+    }
+
+    /// Size of the exponential where the contour is cut short of the Brewster parameter, relative
+    /// to the mode; 0 for `m <= 1`.
     pub fn neglected(&self) -> f64 {
         self.neglected
     }
+}
+
+/// An estimate multiplied by an exact factor.
+pub(super) fn times(estimate: Estimate, factor: Scaled) -> Estimate {
+    let size = Scaled::new(Complex64::new(factor.mantissa.norm(), 0.0), factor.exponent);
+    let error = error_of(&estimate) * size;
+    Estimate::new(estimate.scaled * factor, error, estimate.orders, estimate.form)
+}
+
+/// The error figure with its exponent apart.
+fn error_of(estimate: &Estimate) -> Scaled {
+    let value = estimate.scaled;
+    if value.is_zero() || !estimate.relative_error.is_finite() {
+        return Scaled::from(Complex64::new(estimate.error, 0.0));
+    }
+    let mantissa = estimate.relative_error * value.mantissa.norm();
+    Scaled::new(Complex64::new(mantissa, 0.0), value.exponent)
 }

@@ -4,9 +4,11 @@
 //! as the large parameter, `f` (the phase) and `g` (the amplitude) analytic near the contour.
 
 mod contour;
+mod jet;
 mod phase;
 
 pub use contour::{Contour, Termination};
+pub use jet::{Formula, Jet};
 pub use phase::{Amplitude, Phase, Polynomial, Unit, ValueOnly};
 
 /// An oscillatory integral with everything but its wavenumber.

@@ -5,8 +5,10 @@ use num_complex::Complex64;
 /// A phase `f(z)` of `exp(i k f(z))`, analytic near the contour and the saddles.
 ///
 /// Every closure `Fn(Complex64) -> (Complex64, Complex64)` that returns the value and the
-/// derivative is a phase. [`ValueOnly`] makes one from the value alone, [`Polynomial`] from
-/// coefficients.
+/// derivative is a phase. [`ValueOnly`] makes one from the value alone, [`Formula`] from one
+/// expression that gives all derivatives, [`Polynomial`] from coefficients.
+///
+/// [`Formula`]: super::Formula
 pub trait Phase {
     /// `f(z)` and `f'(z)`.
     fn value_and_derivative(&self, z: Complex64) -> (Complex64, Complex64);
