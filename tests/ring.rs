@@ -1,7 +1,7 @@
 //! The core: division and normal form for clusters of one to four saddles.
 
 use merging_saddles::integral::{Amplitude, Unit};
-use merging_saddles::ring::{NormalForm, Orders, divide};
+use merging_saddles::ring::{NormalForm, Orders, Start, divide};
 use merging_saddles::{Complex64, Phase};
 use proptest::prelude::*;
 
@@ -24,7 +24,7 @@ fn fold_at_coalescence_has_the_published_coefficients() {
     // exp(k (sinh z - z)) over 2 pi i, DLMF 10.9.17, so p_0^(2n) ~ A_n and p_1^(2n+1) ~ B_n up to
     // the factors that Ai = I_0/(..) and Ai' carry; ratios to the leading order remove them.
     let form = NormalForm::find(&fold(0.0), 2, c(0.0, 0.0), 2.0).expect("a form");
-    let orders = Orders::new(&form, &Unit).expect("orders");
+    let orders = Orders::new(&form, &Start::new(&form, &Unit).expect("finite"));
     let p = |n: usize, j: usize| orders.coefficients(n)[j];
     assert!(form.x(1).norm() < 1e-14 && form.level().norm() < 1e-14);
     // C_0 = -2 pi (3k)^(-1/3) Ai, C_1 = 2 pi i (3k)^(-2/3) Ai' (from DLMF 9.5.4), so with
@@ -109,7 +109,7 @@ fn normal_forms_of_one_to_four_saddles_reproduce_the_phase() {
 fn a_pole_of_the_amplitude_inside_the_ring_shows_in_the_tail() {
     let form = NormalForm::find(&fold(0.1), 2, c(0.0, 0.0), 1.5).expect("a form");
     let tail = |pole: Complex64| {
-        Orders::new(&form, &move |z: Complex64| (z - pole).inv()).expect("orders").tail()
+        Start::new(&form, &move |z: Complex64| (z - pole).inv()).expect("finite").tail()
     };
     assert!(tail(c(0.9, 0.2)) > 1e-2);
     assert!(tail(c(0.0, 4.0)) < 1e-6);

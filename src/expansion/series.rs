@@ -8,12 +8,12 @@ use super::canonical::Moments;
 use super::figure::Parts;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
-use crate::ring::{MAX_ORDERS, NormalForm, Orders};
+use crate::ring::{MAX_ORDERS, NormalForm, Orders, Start};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
 
 /// Ratio between neighbouring rings.
-const RATIO: f64 = 1.25;
+const RATIO: f64 = 1.4;
 /// Rings that are tried at most.
 const TRIED: usize = 30;
 /// Mapped saddles must lie within this part of the ring.
@@ -29,28 +29,36 @@ const LOW: f64 = 6.0;
 /// The first ring is made smaller until its tails are below this.
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
-const FIRST: usize = 12;
+const FIRST: usize = 16;
 /// The smallest ring that is kept, relative to the largest.
 const SMALLEST: f64 = 0.3;
 
-struct Ring {
+/// A ring that was tried.
+struct Trial {
     form: NormalForm,
-    orders: Orders,
+    start: Start,
     /// The largest `|u_s|/R`.
     filling: f64,
 }
 
-impl Ring {
-    fn new(form: NormalForm, amplitude: &dyn Amplitude) -> Option<Ring> {
-        let orders = Orders::new(&form, amplitude)?;
+impl Trial {
+    fn new(form: NormalForm, amplitude: &dyn Amplitude) -> Option<Trial> {
+        let start = Start::new(&form, amplitude)?;
         let filling =
             form.saddles_on_disc()[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
-        Some(Ring { form, orders, filling })
+        Some(Trial { form, start, filling })
     }
 
     fn tail(&self) -> f64 {
-        self.orders.tail().max(self.form.tail())
+        self.start.tail().max(self.form.tail())
     }
+}
+
+/// A ring that is kept.
+struct Ring {
+    form: NormalForm,
+    orders: Orders,
+    filling: f64,
 }
 
 /// One cluster or end point, ready for any wavenumber.
@@ -102,27 +110,35 @@ impl Series {
         let low =
             (LOW / height(&first.form)).powf(1.0 / f64::from(degree)).max(first.filling / 0.8);
         let inner = if low < 1.0 { first.form.resized(phase, low)? } else { first.form.clone() };
-        let mut rings = vec![first];
+        let mut trials = vec![first];
         for _ in 0..TRIED {
-            let last = &rings[rings.len() - 1];
+            let last = &trials[trials.len() - 1];
             if height(&last.form) > LARGEST {
                 break;
             }
             let Some(next) =
-                last.form.resized(phase, RATIO).and_then(|form| Ring::new(form, amplitude))
+                last.form.resized(phase, RATIO).and_then(|form| Trial::new(form, amplitude))
             else {
                 break;
             };
             let worse = next.tail() > WORST_TAIL && next.tail() > last.tail();
-            rings.push(next);
             if worse {
-                rings.pop();
                 break;
             }
+            trials.push(next);
         }
-        rings.retain(|ring| ring.filling < FILLING);
-        let largest = rings.last()?.form.radius();
-        rings.retain(|ring| ring.form.radius() >= SMALLEST * largest);
+        let largest = trials.last()?.form.radius();
+        let kept =
+            |ring: &Trial| ring.filling < FILLING && ring.form.radius() >= SMALLEST * largest;
+        let rings: Vec<Ring> = trials
+            .into_iter()
+            .filter(kept)
+            .map(|Trial { form, start, filling }| Ring {
+                orders: Orders::new(&form, &start),
+                form,
+                filling,
+            })
+            .collect();
         let reference = (0..rings.len())
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
         Some(Series {
@@ -242,19 +258,19 @@ fn first_ring(
     centre: Complex64,
     reach: f64,
     least: f64,
-) -> Option<Ring> {
+) -> Option<Trial> {
     let mut reach = reach;
-    let mut found: Option<Ring> = None;
+    let mut found: Option<Trial> = None;
     for _ in 0..FIRST {
         if reach < least {
             break;
         }
         if let Some(ring) = NormalForm::find(phase, saddles, centre, reach)
-            .and_then(|form| Ring::new(form, amplitude))
+            .and_then(|form| Trial::new(form, amplitude))
         {
-            let crowded = ring.filling * RATIO * RATIO > FILLING;
+            let crowded = ring.filling * RATIO > FILLING;
             // Where the noise of the phase sets the tails a smaller ring is no better.
-            let best = found.as_ref().map_or(f64::INFINITY, Ring::tail);
+            let best = found.as_ref().map_or(f64::INFINITY, Trial::tail);
             let noisy = ring.tail() > 0.3 * best;
             let done = crowded || noisy || ring.tail() < CLEAN;
             if !noisy && (ring.filling < FILLING || found.is_none()) {
@@ -264,7 +280,7 @@ fn first_ring(
                 break;
             }
         }
-        reach /= RATIO * RATIO;
+        reach /= RATIO;
     }
     found
 }

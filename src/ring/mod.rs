@@ -21,7 +21,7 @@ mod orders;
 
 pub use division::divide;
 pub use normal_form::NormalForm;
-pub use orders::{MAX_ORDERS, Orders};
+pub use orders::{MAX_ORDERS, Orders, Start};
 
 use num_complex::Complex64;
 use rustfft::{Fft, FftPlanner};

@@ -106,17 +106,18 @@ impl NormalForm {
         let mut last_step = f64::INFINITY;
         for _ in 0..limit {
             let mut residual = to_values(&self.map);
-            let size = self.radius.powi(self.degree as i32);
             let mut largest = 0.0f64;
-            for (r, &v) in residual.iter_mut().zip(unit_points()) {
-                *r = phase.value(*r) - self.unfolded(v, size);
-                largest = largest.max(r.norm());
+            for (r, target) in residual.iter_mut().zip(&to_values(&self.unfolded())) {
+                *r = phase.value(*r) - target;
+                // NaN must not be lost in the maximum.
+                let square = r.norm_sqr();
+                largest = if square > largest || square.is_nan() { square } else { largest };
             }
             self.evaluations += POINTS;
             if !largest.is_finite() {
                 return false;
             }
-            self.residual = largest;
+            self.residual = largest.sqrt();
             to_coefficients(&mut residual);
             // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
             let dividend = &mut residual[..KEPT + saddles];
@@ -139,8 +140,9 @@ impl NormalForm {
             let skip = usize::from(saddles == 0);
             for (z, c) in self.map.iter_mut().zip(&correction).skip(skip) {
                 *z -= c;
-                step = step.max(c.norm());
+                step = step.max(c.norm_sqr());
             }
+            let step = step.sqrt();
             let scale = self.map[1].norm();
             if !(step.is_finite() && step < 10.0 * scale && step < 4.0 * last_step) {
                 return false;
@@ -157,9 +159,12 @@ impl NormalForm {
         false
     }
 
-    /// `A + Phi` at `u = R v`, with `size = R^D`.
-    fn unfolded(&self, v: Complex64, size: f64) -> Complex64 {
-        evaluate(&self.unfolding[..self.saddles().max(1)], v) + v.powi(self.degree as i32) * size
+    /// Coefficients in `v` of `A + Phi`.
+    fn unfolded(&self) -> Coefficients {
+        let mut c = [ZERO; KEPT];
+        c[..MAX_SADDLES].copy_from_slice(&self.unfolding);
+        c[self.degree] += self.radius.powi(self.degree as i32);
+        c
     }
 
     /// Coefficients in `v` of `Phi'(u)`; the first `K + 2` entries are used.

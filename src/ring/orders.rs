@@ -6,7 +6,8 @@
 //! `I(k) ~ exp(i k A) sum_n k^(-n) sum_j p_j^(n) C_j`, `C_j = integral of u^j exp(i k Phi) du`.
 //!
 //! At an end point (K = -1, `Phi = u`) the moments `integral_0^(i inf) u^n exp(i k u) du =
-//! n! (i/k)^(n+1)` give `p^(n) = n! i^n g_n` with `C_0 = i/k` (Watson's lemma, DLMF 2.3(ii)).
+//! n! (i/k)^(n+1)` give `p^(n) = n! i^n g_n` with `C_0 = i/k` (Watson's lemma, DLMF 2.3(ii)); at a
+//! single saddle (K = 0) the recursion gives `p^(n) = (1/2)_n i^n g_2n` at once.
 //!
 //! The same recursion with a fixed pseudo-random vector of unit modulus on the ring in place of
 //! `G_0` measures how much of the rounding noise each order passes on.
@@ -54,33 +55,52 @@ fn unit_noise() -> &'static Coefficients {
     })
 }
 
-impl Orders {
-    /// All orders on the ring of a normal form. None if the amplitude is not finite on the ring.
-    pub fn new(form: &NormalForm, amplitude: &dyn Amplitude) -> Option<Orders> {
+/// `G_0(u) = g(z(u)) z'(u)` on a ring.
+#[derive(Clone, Debug)]
+pub struct Start {
+    coefficients: Coefficients,
+    size: f64,
+    tail: f64,
+}
+
+impl Start {
+    /// Samples the amplitude on the ring of a normal form. None if it is not finite there.
+    pub fn new(form: &NormalForm, amplitude: &dyn Amplitude) -> Option<Start> {
         let mut values = to_values(&form.map_derivative());
         let points = to_values(form.map());
         let mut size = 0.0f64;
         for (value, &z) in values.iter_mut().zip(&points) {
             *value *= amplitude.value(z);
-            let norm = value.norm();
-            if !norm.is_finite() {
+            let square = value.norm_sqr();
+            if !square.is_finite() {
                 return None;
             }
-            size = size.max(norm);
+            size = size.max(square);
         }
         to_coefficients(&mut values);
-        let saddles = form.saddles();
+        Some(Start { coefficients: taylor(&values), size: size.sqrt(), tail: tail(&values, 0) })
+    }
+
+    /// How far the coefficients have not decayed; near 1 with a pole inside the ring.
+    pub fn tail(&self) -> f64 {
+        self.tail
+    }
+}
+
+impl Orders {
+    /// All orders on the ring of a normal form.
+    pub fn new(form: &NormalForm, start: &Start) -> Orders {
         let mut noise = [[0.0; MAX_SADDLES]; MAX_ORDERS];
         for (noise, p) in noise.iter_mut().zip(recursion(form, unit_noise())) {
             *noise = p.map(|p| p.norm());
         }
-        Some(Orders {
-            saddles,
-            p: recursion(form, &taylor(&values)),
+        Orders {
+            saddles: form.saddles(),
+            p: recursion(form, &start.coefficients),
             noise,
-            size,
-            tail: tail(&values, 0),
-        })
+            size: start.size,
+            tail: start.tail,
+        }
     }
 
     /// `p_j^(n)`, `j = 0..=K`, of order `n`.
@@ -98,8 +118,8 @@ impl Orders {
         self.size
     }
 
-    /// How far the coefficients of `G_0` have not decayed; near 1 with a pole inside the ring.
-    pub fn tail(&self) -> f64 {
+    /// The tail of `G_0`.
+    pub(crate) fn tail(&self) -> f64 {
         self.tail
     }
 }
@@ -108,11 +128,17 @@ fn recursion(form: &NormalForm, start: &Coefficients) -> [[Complex64; MAX_SADDLE
     let saddles = form.saddles();
     let radius = form.radius();
     let mut p = [[ZERO; MAX_SADDLES]; MAX_ORDERS];
-    if saddles == 0 {
+    // With one saddle or none the recursion has a closed form: the moments of one power.
+    if saddles < 2 {
         let mut factor = Complex64::new(1.0, 0.0);
         for (n, p) in p.iter_mut().enumerate() {
-            p[0] = start[n] * factor;
-            factor *= I * ((n + 1) as f64 / radius);
+            if saddles == 0 {
+                p[0] = start[n] * factor;
+                factor *= I * ((n + 1) as f64 / radius);
+            } else {
+                p[0] = start[2 * n] * factor;
+                factor *= I * ((n as f64 + 0.5) / (radius * radius));
+            }
         }
         return p;
     }
@@ -129,13 +155,21 @@ fn recursion(form: &NormalForm, start: &Coefficients) -> [[Complex64; MAX_SADDLE
             *p = remainder / power;
             power *= radius;
         }
-        // The quotient starts at index `saddles`; G_(n+1) = i dH/du.
+        // The quotient starts at index `saddles`; G_(n+1) = i dH/du, the i below.
         length -= saddles + 1;
         for n in 0..length {
-            g[n] = g[n + saddles + 1] * I * ((n + 1) as f64 / radius);
+            g[n] = g[n + saddles + 1] * ((n + 1) as f64 / radius);
         }
+    }
+    // The factor i of each order.
+    let mut turn = Complex64::new(1.0, 0.0);
+    for p in &mut p {
+        for p in p.iter_mut() {
+            *p *= turn;
+        }
+        turn *= I;
     }
     p
 }
 
-const _: () = assert!(MAX_ORDERS <= KEPT && KEPT * 2 == POINTS);
+const _: () = assert!(2 * MAX_ORDERS <= KEPT && KEPT * 2 == POINTS);
