@@ -143,3 +143,130 @@ fn reference_values_keep_more_digits_than_a_double() {
         assert_eq!(Reference::parse(text), None, "{text}");
     }
 }
+
+#[test]
+fn the_fold_table_is_measured() {
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/data/uniform_field.csv");
+    let output = text(&against_table("uniform_field", &path).stdout);
+    assert_eq!(figure(&output, "uniform_field orders_chosen ", "rows="), 198.0);
+    let covers = output.lines().filter_map(|line| line.split("figure_covers=").nth(1));
+    assert_eq!(covers.map(|rest| &rest[..6]).collect::<Vec<_>>(), ["1.0000", "1.0000"]);
+    let path = file("weights.csv", "k,a,g_id,re,im\n10,0.1,two,0,1\n");
+    refused(&against_table("uniform_field", &path), &["line 2", "g_id", "two", "cosh3"]);
+    let path = file("negative_k.csv", "k,a,g_id,re,im\n-10,0.1,one,0,1\n");
+    refused(&against_table("uniform_field", &path), &["line 2", "'k'", "-10"]);
+}
+
+/// The shelf program on a small picture, with further arguments.
+fn shelf(output: &Path, arguments: &[&str]) -> Output {
+    let output = output.to_str().expect("a UTF-8 path");
+    let small = ["--columns", "12", "--rows", "10", "--output", output];
+    run("shelf_cutoff", small.into_iter().chain(arguments.iter().copied()))
+}
+
+/// A path for a picture that no earlier run has left behind.
+fn picture(name: &str) -> PathBuf {
+    let path = Path::new(env!("CARGO_TARGET_TMPDIR")).join(name);
+    match std::fs::remove_file(&path) {
+        Err(error) if error.kind() != std::io::ErrorKind::NotFound => panic!("{error}"),
+        _ => path,
+    }
+}
+
+/// No picture and no unfinished one.
+fn nothing_written(path: &Path) {
+    assert!(!path.exists(), "{} was written", path.display());
+    let part = PathBuf::from(format!("{}.part", path.display()));
+    assert!(!part.exists(), "{} was left behind", part.display());
+}
+
+#[test]
+fn the_shelf_is_followed_through_cut_off() {
+    let path = picture("shelf.svg");
+    let output = shelf(&path, &["--point", "4828.4,20"]);
+    assert!(output.status.success(), "{}", text(&output.stderr));
+    let output = text(&output.stdout);
+    // (n - 1/2) pi/sqrt(k_w^2 - k_b^2) for n = 2 and the options' defaults: common practice.
+    let q = 2.0 * std::f64::consts::PI * 100.0 * (1500f64.powi(-2) - 1650f64.powi(-2)).sqrt();
+    let depth = 1.5 * std::f64::consts::PI / q;
+    let row = output.lines().find(|line| line.starts_with("    2 ")).expect("a row for mode 2");
+    let fields: Vec<f64> = row.split_whitespace().filter_map(|x| x.parse().ok()).collect();
+    assert!((fields[2] - depth).abs() < 0.006, "{row}");
+    // [((c_b/c_w)^2 - 1) (rho_b/rho_w) slope]^(1/3) is the sine of the beam's angle: derived.
+    let sine = ((1.1f64 * 1.1 - 1.0) * 1.8 / fields[3]).cbrt();
+    assert!((fields[5] - sine.asin().to_degrees()).abs() < 0.02, "{row}");
+    assert!(output.contains("licensed practice"), "{output}");
+    // Range, depth, level and figure at the saddles (unless refused), level and figure of the
+    // yardstick, their distance (unless refused).
+    let rows: Vec<Vec<f64>> = output
+        .lines()
+        .filter(|line| line.contains(" water ") || line.contains(" bottom "))
+        .map(|line| line.split_whitespace().filter_map(|x| x.parse().ok()).collect())
+        .filter(|row: &Vec<f64>| row.len() == 4 || row.len() == 7)
+        .collect();
+    assert_eq!(rows.len(), 23, "{output}");
+    let yardstick = |row: &[f64]| -> [f64; 2] {
+        if row.len() == 7 { [row[4], row[5]] } else { [row[2], row[3]] }
+    };
+    for row in &rows {
+        assert!(yardstick(row)[1] < 1e-7, "{row:?}");
+        if row.len() == 7 {
+            assert!(row[6] <= row[3], "the figure at the saddles covers: {row:?}");
+        }
+    }
+    assert!(rows.iter().any(|row| row.len() == 7 && row[6] < 1e-6), "{output}");
+    // Trapped before, all but gone from the water after.
+    assert!(yardstick(&rows[0])[0].abs() < 1.0, "{output}");
+    let last = rows.iter().rfind(|row| row[1] < 6.0).expect("a last row in the water");
+    assert!(yardstick(last)[0] < -20.0, "{output}");
+    // The point asked for stands last.
+    assert_eq!(rows[22][..2], [4828.4, 20.0]);
+    let svg = std::fs::read_to_string(&path).expect("the picture");
+    assert!(svg.starts_with("<svg") && svg.trim_end().ends_with("</svg>"));
+    for label in ["range along the track (m)", "depth below the surface (m)", "level (dB)"] {
+        assert!(svg.contains(label), "{label} is not in the picture");
+    }
+}
+
+#[test]
+fn wrong_shelves_are_refused() {
+    let header = "range_m,depth_m";
+    let cases = [
+        ("rising", format!("{header}\n0,50\n100,60\n200,20\n"), vec!["line 3", "60", "rises"]),
+        ("unsorted", format!("{header}\n0,50\n200,40\n100,20\n"), vec!["line 4", "100", "sort"]),
+        ("dry", format!("# sea\n{header}\n0,50\n200,-1\n"), vec!["line 4", "-1", "depth"]),
+        ("single", format!("{header}\n0,50\n"), vec!["line 2", "two"]),
+        ("words", format!("{header}\n0,deep\n100,20\n"), vec!["line 2", "deep"]),
+        ("fields", format!("{header}\n0,50,1\n100,20\n"), vec!["line 2", "3 fields"]),
+        ("title", "range_m,depth\n0,50\n100,20\n".into(), vec!["line 1", "depth_m"]),
+        ("deep", format!("{header}\n0,50\n1000,49\n"), vec!["cut-off", "--frequency-hz"]),
+        ("shallow", format!("{header}\n0,5\n1000,4\n"), vec!["trapped", "--frequency-hz"]),
+    ];
+    for (name, content, words) in cases {
+        let profile = file(&format!("{name}_shelf.csv"), content);
+        let path = picture(&format!("{name}_shelf.svg"));
+        refused(&shelf(&path, &["--profile", profile.to_str().expect("a UTF-8 path")]), &words);
+        nothing_written(&path);
+    }
+    let options: [(&[&str], &[&str]); 9] = [
+        (&["--profile", "no/such.csv"], &["no/such.csv", "give"]),
+        (&["--bottom-speed", "1450"], &["1450", "faster"]),
+        (&["--frequency-hz", "-5"], &["-5", "above zero"]),
+        (&["--frequency-hz", "soft"], &["soft", "--help"]),
+        (&["--frequency-hz", "1e9"], &["modes", "--frequency-hz"]),
+        (&["--attenuation", "-0.1"], &["-0.1", "attenuation"]),
+        (&["--mode", "9"], &["mode 9", "from 2 to 6"]),
+        (&["--point", "5000"], &["5000", "two numbers"]),
+        (&["--louder"], &["--louder", "--help"]),
+    ];
+    for (arguments, words) in options {
+        let path = picture("refused.svg");
+        refused(&shelf(&path, arguments), words);
+        nothing_written(&path);
+    }
+    refused(&run("shelf_cutoff", ["--rows", "1"]), &["--rows", "10"]);
+    let directory = Path::new(env!("CARGO_TARGET_TMPDIR"));
+    refused(&shelf(directory, &[]), &["--output"]);
+    let below_a_file = file("plain.txt", "text").join("picture.svg");
+    refused(&shelf(&below_a_file, &[]), &["--output"]);
+}
