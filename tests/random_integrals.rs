@@ -42,6 +42,7 @@ struct Tally {
     wrong: Vec<String>,
     ratios: Vec<f64>,
     unsure: usize,
+    reasons: Vec<String>,
 }
 
 impl Tally {
@@ -57,7 +58,10 @@ impl Tally {
             return;
         };
         match got {
-            Err(_) => self.refused += 1,
+            Err(reason) => {
+                self.refused += 1;
+                self.reasons.push(format!("{label}: refused, {reason}"));
+            }
             Ok(got) if got.relative_error >= 1.0 => self.hopeless += 1,
             Ok(got) => {
                 self.answered += 1;
@@ -107,7 +111,7 @@ impl Tally {
             at(0.95),
             self.ratios.len()
         );
-        for line in self.uncovered.iter().chain(&self.wrong).take(20) {
+        for line in self.uncovered.iter().chain(&self.wrong).chain(&self.reasons).take(20) {
             println!("  {line}");
         }
     }
@@ -256,4 +260,41 @@ fn entire_phases_with_many_saddles() {
         );
     }
     tally.check("entire phases", 0.9);
+}
+
+#[test]
+fn finite_end_points_on_and_near_saddles() {
+    let mut random = Random(5);
+    let mut tally = Tally::default();
+    for case in 0..400 {
+        let degree = 2 + random.below(2);
+        // f' = lead (z - s_1)..(z - s_n), the second saddle near the first in half of the cases.
+        let saddle = random.disc(1.0);
+        let near = 10f64.powf(random.within(-4.0, 0.3));
+        let other = saddle + Complex64::from_polar(near, 2.0 * PI * random.next());
+        let lead = Complex64::from_polar(1.0, 2.0 * PI * random.next());
+        let zero = Complex64::new(0.0, 0.0);
+        let coefficients = if degree == 2 {
+            vec![zero, -saddle * lead, lead * 0.5]
+        } else {
+            let (sum, product) = (saddle + other, saddle * other);
+            vec![zero, product * lead, -sum * lead * 0.5, lead / 3.0]
+        };
+        let offset = if random.next() < 0.2 { 0.0 } else { 10f64.powf(random.within(-6.0, 0.0)) };
+        let start = saddle + Complex64::from_polar(offset, 2.0 * PI * random.next());
+        let phase = Polynomial(coefficients);
+        let far = valley(phase.0[degree], degree, random.below(degree), 12.0);
+        let contour = if random.next() < 0.5 {
+            Contour::starting_at([start, far])
+        } else {
+            Contour::ending_at([far, start])
+        };
+        let k = 10f64.powf(random.within(0.5, 4.0));
+        let integral = Integral::new(phase, contour).amplitude(amplitude(&mut random));
+        let got = integral.plan().and_then(|plan| plan.at(k));
+        let label =
+            format!("case {case} degree {degree} k {k:.1} offset {offset:.1e} near {near:.1e}");
+        tally.enter(&label, got, integral.quadrature(k, 1e-13));
+    }
+    tally.check("ends near saddles", 0.95);
 }

@@ -9,8 +9,9 @@
 //!   `C_0 = -2 pi (3k)^(-1/3) sum_j m_j w^j Ai(w^j xi)`,
 //!   `C_1 = 2 pi i (3k)^(-2/3) sum_j m_j w^(2j) Ai'(w^j xi)` (DLMF 9.5.4).
 
-use super::super::ring::{MAX_SADDLES, NormalForm, ZERO};
+use super::unfolding::Unfolding;
 use crate::Scaled;
+use crate::ring::{MAX_SADDLES, ZERO};
 use crate::saddles::Multiplicities;
 use crate::special::airy::{airy_extended, rotated_extended};
 use num_complex::Complex64;
@@ -27,16 +28,16 @@ pub(crate) struct Moments {
 }
 
 impl Moments {
-    /// For the cluster of a normal form at one wavenumber.
-    pub fn new(form: &NormalForm, m: &Multiplicities, k: f64) -> Moments {
+    /// For one cluster at one wavenumber.
+    pub fn new(phi: &Unfolding, m: &Multiplicities, k: f64) -> Moments {
         let mut values = [ZERO; MAX_SADDLES];
-        match form.saddles() {
+        match phi.degree() - 1 {
             0 => values[0] = Complex64::new(0.0, 1.0 / k),
             1 => {
                 let weight = f64::from(m[1] - m[0]);
                 values[0] = Complex64::from_polar(weight * (PI / k).sqrt(), PI / 4.0);
             }
-            _ => return fold(form, m, k),
+            _ => return fold(phi, m, k),
         }
         Moments { values, exponent: 0 }
     }
@@ -44,8 +45,8 @@ impl Moments {
 
 /// K = 1. The three Airy functions add up to zero (DLMF 9.2.12), so one of the three may be left
 /// out: the largest, unless its multiplicity is alone in differing.
-fn fold(form: &NormalForm, m: &Multiplicities, k: f64) -> Moments {
-    let xi = form.x(1) * (k * k / 3.0).cbrt();
+fn fold(phi: &Unfolding, m: &Multiplicities, k: f64) -> Moments {
+    let xi = phi.x(1) * (k * k / 3.0).cbrt();
     let plain = airy_extended(xi);
     let rotated = rotated_extended(xi);
     let values = [plain.ai, rotated.plus, rotated.minus];

@@ -11,6 +11,7 @@
 //! The least over `n` is taken: the smallest-term rule. The constants were found by covering
 //! random clusters (see the tests of coverage).
 
+use super::series::Ring;
 use crate::ring::{MAX_ORDERS, POINTS};
 
 /// What the figure is made of, for one ring and one wavenumber.
@@ -36,6 +37,35 @@ pub(crate) struct Parts {
 const EPS: f64 = f64::EPSILON;
 
 impl Parts {
+    /// For a ring whose canonical integrals have the given sizes, at wavenumber `k`.
+    pub fn of_ring(ring: &Ring, sizes: &[f64], k: f64, orders: usize) -> Parts {
+        let mut terms = [0.0; MAX_ORDERS];
+        let mut noise = [0.0; MAX_ORDERS];
+        let mut power = 1.0;
+        for n in 0..MAX_ORDERS {
+            let p = ring.orders.coefficients(n);
+            for ((p, q), c) in p.iter().zip(ring.orders.noise(n)).zip(sizes) {
+                terms[n] += power * p.norm() * c;
+                noise[n] += power * q * c;
+            }
+            power /= k;
+        }
+        let form = &ring.form;
+        let reach = ring.filling * form.radius();
+        let spread: f64 =
+            (1..form.saddles()).map(|m| form.x(m).norm() * reach.powi(m as i32)).sum();
+        Parts {
+            terms,
+            noise,
+            size: ring.start.size(),
+            residual: k * form.residual(),
+            tail: ring.start.tail() + form.tail(),
+            spread: k * spread,
+            filling: if form.saddles() > 1 { ring.filling } else { 0.0 },
+            orders,
+        }
+    }
+
     /// The number of orders with the least figure, and that figure.
     pub fn least(&self) -> (usize, f64) {
         let present = |n: usize| self.terms[n] >= 1000.0 * EPS * self.size * self.noise[n];

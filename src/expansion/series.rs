@@ -6,9 +6,10 @@
 
 use super::canonical::Moments;
 use super::figure::Parts;
+use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
-use crate::ring::{MAX_ORDERS, NormalForm, Orders, Start};
+use crate::ring::{NormalForm, Orders, Start};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
 
@@ -55,10 +56,11 @@ impl Trial {
 }
 
 /// A ring that is kept.
-struct Ring {
-    form: NormalForm,
-    orders: Orders,
-    filling: f64,
+pub(super) struct Ring {
+    pub form: NormalForm,
+    pub start: Start,
+    pub orders: Orders,
+    pub filling: f64,
 }
 
 /// One cluster or end point, ready for any wavenumber.
@@ -84,6 +86,25 @@ pub(crate) struct Contribution {
 impl Contribution {
     pub const NONE: Contribution =
         Contribution { value: Scaled::ZERO, error: Scaled::ZERO, orders: 0 };
+
+    /// What could not be computed.
+    pub const UNKNOWN: Contribution = Contribution {
+        value: Scaled::ZERO,
+        error: Scaled { mantissa: Complex64::new(f64::INFINITY, 0.0), exponent: 0 },
+        orders: 0,
+    };
+
+    /// Whether the error is at the rounding level.
+    pub fn is_sharp(&self) -> bool {
+        self.error.ln_norm() < self.value.ln_norm() - 30.0
+    }
+
+    /// `exp(exponent)` times a value and its error.
+    pub fn new(exponent: Complex64, value: Scaled, error: Scaled, orders: usize) -> Contribution {
+        let factor = Scaled::exp(exponent);
+        let size = Scaled::new(Complex64::new(factor.mantissa.norm(), 0.0), factor.exponent);
+        Contribution { value: factor * value, error: size * error, orders }
+    }
 
     pub fn and(&self, other: &Contribution) -> Contribution {
         Contribution {
@@ -136,6 +157,7 @@ impl Series {
             .map(|Trial { form, start, filling }| Ring {
                 orders: Orders::new(&form, &start),
                 form,
+                start,
                 filling,
             })
             .collect();
@@ -190,12 +212,12 @@ impl Series {
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         let form = &self.rings[self.reference].form;
-        let moments = Moments::new(form, &self.m, k);
+        let moments = Moments::new(&Unfolding::new(form), &self.m, k);
         let count = form.saddles().max(1);
         let sizes = moments.values.map(|c| c.norm());
         let mut best = (0, 0, f64::INFINITY);
         for (index, ring) in self.rings.iter().enumerate() {
-            let (kept, figure) = self.parts(ring, &sizes[..count], k, orders).least();
+            let (kept, figure) = Parts::of_ring(ring, &sizes[..count], k, orders).least();
             if figure < best.2 {
                 best = (index, kept, figure);
             }
@@ -209,43 +231,17 @@ impl Series {
             sum += order * power;
             power /= k;
         }
-        let phase = Scaled::exp(Complex64::new(0.0, k) * self.level());
         let noise = 4.0 * f64::EPSILON * k * self.noise_scale * sum.norm();
-        let size = Scaled::from(Complex64::new(phase.mantissa.norm(), 0.0));
-        let shift = Scaled { exponent: size.exponent + phase.exponent, ..size };
-        Contribution {
-            value: phase * Scaled::new(sum * self.sign, moments.exponent),
-            error: shift * Scaled::new(Complex64::new(figure + noise, 0.0), moments.exponent),
-            orders: kept,
-        }
+        Contribution::new(
+            Complex64::new(0.0, k) * self.level(),
+            Scaled::new(sum * self.sign, moments.exponent),
+            Scaled::new(Complex64::new(figure + noise, 0.0), moments.exponent),
+            kept,
+        )
     }
 
-    fn parts(&self, ring: &Ring, sizes: &[f64], k: f64, orders: usize) -> Parts {
-        let mut terms = [0.0; MAX_ORDERS];
-        let mut noise = [0.0; MAX_ORDERS];
-        let mut power = 1.0;
-        for n in 0..MAX_ORDERS {
-            let p = ring.orders.coefficients(n);
-            for ((p, q), c) in p.iter().zip(ring.orders.noise(n)).zip(sizes) {
-                terms[n] += power * p.norm() * c;
-                noise[n] += power * q * c;
-            }
-            power /= k;
-        }
-        let form = &ring.form;
-        let reach = ring.filling * form.radius();
-        let spread: f64 =
-            (1..form.saddles()).map(|m| form.x(m).norm() * reach.powi(m as i32)).sum();
-        Parts {
-            terms,
-            noise,
-            size: ring.orders.size(),
-            residual: k * form.residual(),
-            tail: ring.orders.tail() + form.tail(),
-            spread: k * spread,
-            filling: if form.saddles() > 1 { ring.filling } else { 0.0 },
-            orders,
-        }
+    pub(super) fn rings(&self) -> &[Ring] {
+        &self.rings
     }
 }
 

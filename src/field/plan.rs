@@ -1,14 +1,15 @@
 //! A plan: every decision about an integral that does not depend on the wavenumber.
 
+use super::build::attempt;
 use crate::estimate::Form;
-use crate::expansion::{Contribution, LARGEST_CLUSTER, Series};
-use crate::integral::{Amplitude, Integral, Phase, Termination};
-use crate::saddles::{DROP, Group, Region, Saddle, Topology, Tree, locate};
+use crate::expansion::{Contribution, NearEnd, Series};
+use crate::integral::{Amplitude, Integral, Phase};
+use crate::saddles::{DROP, Group};
 use crate::{Error, Estimate, Scaled};
 use num_complex::Complex64;
 
 /// The largest number of groups of saddles in a plan.
-const MAX_GROUPS: usize = 64;
+pub(super) const MAX_GROUPS: usize = 64;
 /// Groups with one bit a saddle: a tree of `n` saddles has at most `2 n - 1` groups.
 const _: () = assert!(MAX_GROUPS <= 64);
 
@@ -19,19 +20,45 @@ const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
 const FINEST: u32 = 2;
 
 /// A group of saddles with its series, if it has one that could be followed.
-struct Node {
-    series: Option<Series>,
-    parts: Option<(usize, usize)>,
+pub(super) struct Node {
+    pub series: Option<Series>,
+    pub parts: Option<(usize, usize)>,
     /// Its series is known, or it needs none: too high or too low to matter.
-    settled: bool,
+    pub settled: bool,
     /// Its saddles, one bit for each entry of the plan's list.
     members: u64,
 }
 
 impl Node {
-    fn new(group: &Group) -> Node {
+    pub fn new(group: &Group) -> Node {
         let members = group.members.iter().fold(0, |bits, m| bits | 1u64 << m);
         Node { series: None, parts: group.parts, settled: false, members }
+    }
+}
+
+/// A finite end point: its own series, and what it is in the rings of clusters near it.
+pub(super) struct End {
+    pub at: Complex64,
+    pub sign: f64,
+    pub own: Option<Series>,
+    pub near: Vec<NearEnd>,
+}
+
+impl End {
+    /// The form with the smaller error figure.
+    fn at(&self, nodes: &[Node], k: f64, orders: usize) -> Contribution {
+        let mut best = self.own.as_ref().map(|own| own.at(k, orders));
+        for near in &self.near {
+            // The incomplete integrals cost more: not where the plain series is as good as can be.
+            if best.is_some_and(|b| b.is_sharp()) {
+                break;
+            }
+            let found = nodes[near.node].series.as_ref().and_then(|s| near.at(s, k, orders));
+            if let Some(found) = found.filter(|f| best.is_none_or(|b| below(f.error, b.error))) {
+                best = Some(found);
+            }
+        }
+        best.unwrap_or(Contribution::UNKNOWN)
     }
 }
 
@@ -41,14 +68,14 @@ impl Node {
 /// plan may be shared between threads.
 pub struct Plan {
     /// Parts before wholes.
-    nodes: Vec<Node>,
-    roots: Vec<usize>,
-    ends: Vec<Series>,
+    pub(super) nodes: Vec<Node>,
+    pub(super) roots: Vec<usize>,
+    pub(super) ends: Vec<End>,
     /// `i f` at every saddle, and the size of its leading term without the power of `k`: the lower
     /// term at a Stokes line.
-    saddles: Vec<(Complex64, f64)>,
+    pub(super) saddles: Vec<(Complex64, f64)>,
     /// The greatest `Re(i f)` that contributes; nothing below `top - DROP` was looked at.
-    top: f64,
+    pub(super) top: f64,
 }
 
 impl<P: Phase, A: Amplitude> Integral<P, A> {
@@ -104,175 +131,10 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     }
 }
 
-fn undecided(reason: impl Into<String>) -> Error {
-    Error::Undecided {
-        reason: reason.into(),
-        remedy: "use `quadrature` for this integral, or give a contour closer to the saddles",
-    }
-}
-
-fn attempt(
-    phase: &dyn Phase,
-    amplitude: &dyn Amplitude,
-    contour: &crate::Contour,
-    margin: f64,
-    finest: u32,
-) -> Result<Plan, Error> {
-    let region = Region::around(contour.points(), margin);
-    let saddles = locate(phase, region, finest)?;
-    let size = region.size();
-    let topology = Topology::new(phase, contour, &saddles);
-
-    let mut ends = Vec::new();
-    let mut reach = Reach { top: f64::NEG_INFINITY, lowest: f64::INFINITY };
-    let points = contour.points();
-    for (at, sign, termination) in
-        [(points[0], 1.0, contour.start()), (points[points.len() - 1], -1.0, contour.end())]
-    {
-        if termination == Termination::Finite {
-            let near = saddles.iter().map(|s| (s.z - at).norm()).fold(size, f64::min);
-            let series = Series::new(phase, amplitude, 0, at, (0.3 * near, 1e-6 * size))
-                .ok_or_else(|| {
-                    undecided(format!("the end point {at} is too close to a saddle or singularity"))
-                })?;
-            let f = phase.value(at);
-            reach.include(height(f), topology.turned_height(f));
-            ends.push(series.with_sign(sign));
-        }
-    }
-
-    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER);
-    if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
-        return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
-    }
-    let nodes = resolve(phase, amplitude, &topology, &tree, &saddles, &mut reach, size)?;
-    let top = reach.top;
-    let mut plan = Plan { nodes, roots: tree.roots, ends, saddles: Vec::new(), top };
-    let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
-    certify(&plan, &topology, lowest - DROP)?;
-    for saddle in &saddles {
-        let [_, _, second] = phase.jet(saddle.z);
-        let weight = amplitude.value(saddle.z).norm()
-            * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
-        let h = Complex64::new(0.0, 1.0) * saddle.value;
-        plan.saddles.push((h, if weight.is_finite() { weight } else { 0.0 }));
-    }
-    Ok(plan)
-}
-
-/// `Re(i f)`.
-fn height(f: Complex64) -> f64 {
-    -f.im
-}
-
-/// What has been found to contribute so far.
-struct Reach {
-    /// The greatest `Re(i f)`.
-    top: f64,
-    /// The least height in the topology's turned exponent.
-    lowest: f64,
-}
-
-impl Reach {
-    fn include(&mut self, height: f64, turned: f64) {
-        self.top = self.top.max(height);
-        self.lowest = self.lowest.min(turned);
-    }
-}
-
-/// Series and multiplicities of all groups, from the highest downwards.
-fn resolve(
-    phase: &dyn Phase,
-    amplitude: &dyn Amplitude,
-    topology: &Topology,
-    tree: &Tree,
-    saddles: &[Saddle],
-    reach: &mut Reach,
-    size: f64,
-) -> Result<Vec<Node>, Error> {
-    let highest = |g: &Group| {
-        g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
-    };
-    let lowest = |g: &Group| {
-        let heights = g.members.iter().map(|&m| topology.turned_height(saddles[m].value));
-        heights.fold(f64::INFINITY, f64::min)
-    };
-    let mut nodes: Vec<Node> = tree.groups.iter().map(Node::new).collect();
-    let mut order: Vec<usize> = (0..tree.groups.len()).collect();
-    order.sort_by(|&a, &b| highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a])));
-    for index in order {
-        let group = &tree.groups[index];
-        if topology.above(lowest(group)) || highest(group) < reach.top - DROP {
-            nodes[index].settled = true;
-            continue;
-        }
-        let gap = if group.gap.is_finite() { group.gap } else { size };
-        let Some(series) = Series::new(
-            phase,
-            amplitude,
-            group.members.len(),
-            group.centre,
-            ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius),
-        ) else {
-            continue;
-        };
-        let Some(m) = topology.multiplicities(series.form()) else {
-            continue;
-        };
-        let series = series.with_multiplicities(m);
-        if series.contributes() {
-            reach.include(highest(group), lowest(group));
-        }
-        nodes[index].series = Some(series);
-        nodes[index].settled = true;
-    }
-    // Every root must be decided, as a whole or by its parts.
-    for &root in &tree.roots {
-        if !decided(&nodes, root) {
-            return Err(undecided(format!(
-                "no normal form or no clear ridge for the saddles near {:.4}",
-                tree.groups[root].centre
-            )));
-        }
-    }
-    Ok(nodes)
-}
-
 /// Whether a group is settled as a whole or by its parts.
-fn decided(nodes: &[Node], index: usize) -> bool {
+pub(super) fn decided(nodes: &[Node], index: usize) -> bool {
     let node = &nodes[index];
     node.settled || node.parts.is_some_and(|(a, b)| decided(nodes, a) && decided(nodes, b))
-}
-
-/// The certificate for the finest level that is known, then for each group against its parts.
-fn certify(plan: &Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
-    let valleys = |series: &Series| {
-        if series.contributes() {
-            topology.valleys(series.form(), series.multiplicities(), floor)
-        } else {
-            Some(Vec::new())
-        }
-    };
-    let mut all = Vec::new();
-    let mut missing = false;
-    let mut stack = plan.roots.clone();
-    while let Some(index) = stack.pop() {
-        let node = &plan.nodes[index];
-        match node.parts {
-            Some((a, b)) if decided(&plan.nodes, a) && decided(&plan.nodes, b) => {
-                stack.extend([a, b])
-            }
-            _ => match node.series.as_ref().map(valleys) {
-                Some(Some(list)) => all.extend(list),
-                Some(None) => missing = true,
-                None => {}
-            },
-        }
-    }
-    if missing || !topology.closes(&all, floor) {
-        return Err(undecided("the contributions found do not join the two ends of the contour"));
-    }
-    Ok(())
 }
 
 impl Plan {
@@ -295,7 +157,7 @@ impl Plan {
         }
         let mut total = Contribution::NONE;
         for end in &self.ends {
-            total = total.and(&end.at(k, orders));
+            total = total.and(&end.at(&self.nodes, k, orders));
         }
         let mut best = [Choice::NONE; MAX_GROUPS];
         for (index, node) in self.nodes.iter().enumerate() {

@@ -170,7 +170,7 @@ impl Inv for Jet {
 impl Div for Jet {
     type Output = Jet;
     fn div(self, o: Jet) -> Jet {
-        self * o.inv()
+        Mul::mul(self, o.inv())
     }
 }
 

@@ -15,8 +15,8 @@
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
 
 use super::{
-    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, divide, tail, taylor,
-    to_coefficients, to_values,
+    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, divide, evaluate, tail,
+    taylor, to_coefficients, to_values,
 };
 use crate::integral::Amplitude;
 use num_complex::Complex64;
@@ -33,9 +33,6 @@ pub struct Orders {
     p: [[Complex64; MAX_SADDLES]; MAX_ORDERS],
     /// The same recursion applied to unit noise on the ring, absolute values.
     noise: [[f64; MAX_SADDLES]; MAX_ORDERS],
-    /// `max |G_0|` on the ring.
-    size: f64,
-    tail: f64,
 }
 
 /// Taylor coefficients of the unit-modulus noise; the same for every ring.
@@ -85,6 +82,11 @@ impl Start {
     pub fn tail(&self) -> f64 {
         self.tail
     }
+
+    /// `max |G_0|` on the ring.
+    pub(crate) fn size(&self) -> f64 {
+        self.size
+    }
 }
 
 impl Orders {
@@ -94,13 +96,27 @@ impl Orders {
         for (noise, p) in noise.iter_mut().zip(recursion(form, unit_noise())) {
             *noise = p.map(|p| p.norm());
         }
-        Orders {
-            saddles: form.saddles(),
-            p: recursion(form, &start.coefficients),
-            noise,
-            size: start.size,
-            tail: start.tail,
+        Orders { saddles: form.saddles(), p: recursion(form, &start.coefficients), noise }
+    }
+
+    /// `H_n` at a point `v` of the disc, and the same for unit noise (absolute values): what an end
+    /// point there adds to each order.
+    pub(crate) fn boundary(
+        &self,
+        form: &NormalForm,
+        start: &Start,
+        v: Complex64,
+    ) -> ([Complex64; MAX_ORDERS], [f64; MAX_ORDERS]) {
+        let mut terms = [ZERO; MAX_ORDERS];
+        by_parts(form, &start.coefficients, |n, _, quotient| terms[n] = evaluate(quotient, v));
+        let mut noise = [0.0; MAX_ORDERS];
+        by_parts(form, unit_noise(), |n, _, quotient| noise[n] = evaluate(quotient, v).norm());
+        let mut turn = Complex64::new(1.0, 0.0);
+        for term in &mut terms {
+            *term *= turn;
+            turn *= I;
         }
+        (terms, noise)
     }
 
     /// `p_j^(n)`, `j = 0..=K`, of order `n`.
@@ -111,16 +127,6 @@ impl Orders {
     /// The same for unit noise on the ring.
     pub(crate) fn noise(&self, n: usize) -> &[f64] {
         &self.noise[n][..self.saddles.max(1)]
-    }
-
-    /// `max |G_0|` on the ring.
-    pub(crate) fn size(&self) -> f64 {
-        self.size
-    }
-
-    /// The tail of `G_0`.
-    pub(crate) fn tail(&self) -> f64 {
-        self.tail
     }
 }
 
@@ -142,25 +148,13 @@ fn recursion(form: &NormalForm, start: &Coefficients) -> [[Complex64; MAX_SADDLE
         }
         return p;
     }
-    let divisor = form.derivative();
-    let mut g = *start;
-    let mut length = KEPT;
-    for p in p.iter_mut() {
-        if length <= saddles {
-            break;
-        }
-        divide(&mut g[..length], &divisor[..=saddles]);
+    by_parts(form, start, |n, remainder, _| {
         let mut power = 1.0;
-        for (p, &remainder) in p.iter_mut().zip(&g).take(saddles) {
+        for (p, &remainder) in p[n].iter_mut().zip(remainder) {
             *p = remainder / power;
             power *= radius;
         }
-        // The quotient starts at index `saddles`; G_(n+1) = i dH/du, the i below.
-        length -= saddles + 1;
-        for n in 0..length {
-            g[n] = g[n + saddles + 1] * ((n + 1) as f64 / radius);
-        }
-    }
+    });
     // The factor i of each order.
     let mut turn = Complex64::new(1.0, 0.0);
     for p in &mut p {
@@ -170,6 +164,31 @@ fn recursion(form: &NormalForm, start: &Coefficients) -> [[Complex64; MAX_SADDLE
         turn *= I;
     }
     p
+}
+
+/// Repeated division and differentiation; `take(n, remainder, quotient)` gets each order, without
+/// its factor `i^n`.
+fn by_parts(
+    form: &NormalForm,
+    start: &Coefficients,
+    mut take: impl FnMut(usize, &[Complex64], &[Complex64]),
+) {
+    let saddles = form.saddles();
+    let divisor = form.derivative();
+    let mut g = *start;
+    let mut length = KEPT;
+    for n in 0..MAX_ORDERS {
+        if length <= saddles {
+            break;
+        }
+        divide(&mut g[..length], &divisor[..=saddles]);
+        take(n, &g[..saddles], &g[saddles..length]);
+        // G_(n+1) = i dH/du, the i left out.
+        length -= saddles + 1;
+        for n in 0..length {
+            g[n] = g[n + saddles + 1] * ((n + 1) as f64 / form.radius());
+        }
+    }
 }
 
 const _: () = assert!(2 * MAX_ORDERS <= KEPT && KEPT * 2 == POINTS);

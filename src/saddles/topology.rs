@@ -43,8 +43,7 @@ pub(crate) struct Topology<'a> {
     path: Vec<Complex64>,
     /// The descents from both ends and the path, in one line: counted inside rings only.
     whole: Vec<Complex64>,
-    start: Complex64,
-    end: Complex64,
+    tails: [Vec<Complex64>; 2],
     top: f64,
     bottom: f64,
     longest: f64,
@@ -85,8 +84,7 @@ impl<'a> Topology<'a> {
         whole.extend(&last[1..]);
         Topology {
             h,
-            start: whole[0],
-            end: whole[whole.len() - 1],
+            tails: [first, last],
             path,
             whole,
             top: top + 0.02 * (top - bottom) + 1e-9,
@@ -166,8 +164,9 @@ impl<'a> Topology<'a> {
     /// The certificate: do the valleys and the ends of the contour cancel?
     pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
         let mut ends = valleys.to_vec();
-        ends.push((1, self.start));
-        ends.push((-1, self.end));
+        for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
+            ends.push((weight, tail[tail.len() - 1]));
+        }
         // An end at infinity must really be down there; a finite end that contributes has been
         // followed down like the others.
         if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK) {
@@ -220,11 +219,40 @@ impl<'a> Topology<'a> {
         false
     }
 
+    /// The descents from the start and from the end of the contour, each from its end point on.
+    pub fn tails(&self) -> [&[Complex64]; 2] {
+        [&self.tails[0], &self.tails[1]]
+    }
+
+    /// The valley through which a path, given from a point inside the ring (at `v`) on, leaves it.
+    /// A path that ends inside is judged by its last point.
+    pub fn exit(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<usize> {
+        let saddles = form.saddles_on_disc();
+        let mut v = v;
+        let mut last = *path.first()?;
+        'path: for &next in &path[1..] {
+            const PIECES: usize = 4;
+            for piece in 1..=PIECES {
+                let z = last + (next - last) * (piece as f64 / PIECES as f64);
+                match form.preimage(z, v) {
+                    Some(ahead) => v = ahead,
+                    None => break 'path,
+                }
+                if v.norm() > 1.0 {
+                    break 'path;
+                }
+            }
+            last = next;
+        }
+        let reach = saddles[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
+        if v.norm() < 1.1 * reach {
+            return None;
+        }
+        let valley = ((lift(form, &saddles, v) - PI) / (2.0 * PI)).round() as i64;
+        Some(valley.rem_euclid(form.degree() as i64) as usize)
+    }
+
     /// The highest point of each ridge's arc on the ring, the lowest of each valley's.
-    ///
-    /// With all zeros of `Phi'` inside, `arg(i u Phi')` lifted from infinity is
-    /// `pi/2 + D arg u + sum arg(1 - u_s/u)`, every term of the sum within a quarter turn; ridge `j`
-    /// is where it is near `2 pi (j + 1)`, valley `j` where it is near `2 pi j + pi`.
     fn arcs(&self, form: &NormalForm) -> Arcs {
         let degree = form.degree();
         let saddles = form.saddles_on_disc();
@@ -233,10 +261,7 @@ impl<'a> Topology<'a> {
         let mut best = [f64::NEG_INFINITY; MAX_SADDLES + 1];
         let mut least = [f64::INFINITY; MAX_SADDLES + 1];
         for &v in unit_points() {
-            let mut lift = 0.5 * PI + DELTA + degree as f64 * v.arg();
-            for s in &saddles[..form.saddles()] {
-                lift += (1.0 - s / v).arg();
-            }
+            let lift = lift(form, &saddles, v) + DELTA;
             let slope = (form.radial_slope(v) * turn).re;
             let height = self.h.height(form.point(v));
             if slope > 0.0 {
@@ -257,6 +282,14 @@ impl<'a> Topology<'a> {
         }
         arcs
     }
+}
+
+/// `arg(i u Phi')` at `u = R v`, lifted from infinity: `pi/2 + D arg u + sum arg(1 - u_s/u)`, every
+/// term of the sum within a quarter turn where all zeros of `Phi'` lie nearer the origin. Ridge `j` is
+/// where it is near `2 pi (j + 1)`, valley `j` where it is near `2 pi j + pi`.
+fn lift(form: &NormalForm, saddles: &[Complex64; MAX_SADDLES], v: Complex64) -> f64 {
+    let turns: f64 = saddles[..form.saddles()].iter().map(|s| (1.0 - s / v).arg()).sum();
+    0.5 * PI + form.degree() as f64 * v.arg() + turns
 }
 
 struct Arcs {

@@ -61,9 +61,15 @@ pub(crate) fn trace(
     longest: f64,
     path: &mut Vec<Complex64>,
 ) -> Ended {
-    let [origin, mut slope, mut bend] = h.jet(start);
+    let [mut origin, mut slope, mut bend] = h.jet(start);
     let mut z = start;
     let direction = if goal > origin.re { 1.0 } else { -1.0 };
+    if slope.norm_sqr() < 1e-8 * (1.0 + origin.norm()) * bend.norm() {
+        // On a saddle, to rounding: the path has no direction of its own there.
+        z = leave(h, start, origin.re, direction, longest);
+        path.push(z);
+        [origin, slope, bend] = h.jet(z);
+    }
     let span = (goal - origin.re).abs();
     let mut t = 0.0;
     let mut shrink = 1.0;
@@ -110,4 +116,26 @@ pub(crate) fn trace(
         }
     }
     Ended::Stalled
+}
+
+/// A point a little way off a saddle, where the height changes most in the direction wanted.
+fn leave(h: &Exponent, saddle: Complex64, height: f64, direction: f64, longest: f64) -> Complex64 {
+    const ANGLES: usize = 48;
+    let enough = 1e-6 * (1.0 + height.abs());
+    let mut radius = 1e-7 * longest;
+    let mut best = saddle;
+    for _ in 0..24 {
+        let gain = |z: &Complex64| direction * (h.height(*z) - height);
+        best = (0..ANGLES)
+            .map(|n| {
+                let angle = std::f64::consts::TAU * n as f64 / ANGLES as f64;
+                saddle + Complex64::from_polar(radius, angle)
+            })
+            .fold(best, |best, z| if gain(&z) > gain(&best) { z } else { best });
+        if gain(&best) > enough {
+            break;
+        }
+        radius *= 2.0;
+    }
+    best
 }

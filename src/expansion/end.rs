@@ -1,0 +1,156 @@
+//! A finite end point inside the ring of a cluster.
+//!
+//! The path from the end `e` down into its valley is `T(e)`. Outside all rings it has the end's own
+//! series (`Series` with no saddle). Where the end lies inside the ring of a cluster, at `u_e`,
+//! integration by parts leaves a boundary term,
+//!
+//! `T(e) ~ exp(i k f(e)) sum_n k^(-n) [ sum_j p_j^(n) J_j - H_n(u_e)/(i k) ]`,
+//!
+//! with the incomplete canonical integrals `J_j` from `u_e` to the valley through which the descent
+//! from `e` leaves the ring. It is uniform in the place of the end, on a saddle too. Which of the
+//! two is used is decided at each wavenumber by the error figures.
+//!
+//! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353 (end point near a saddle).
+
+use super::figure::Parts;
+use super::incomplete::incomplete;
+use super::series::{Contribution, Series};
+use super::unfolding::Unfolding;
+use crate::Scaled;
+use crate::integral::Phase;
+use crate::ring::{MAX_ORDERS, NormalForm};
+use crate::saddles::Topology;
+use num_complex::Complex64;
+
+/// An end point must lie within this part of a ring.
+const INSIDE: f64 = 0.9;
+
+/// The boundary terms of one ring.
+struct Boundary {
+    ring: usize,
+    u: Complex64,
+    valley: usize,
+    terms: [Complex64; MAX_ORDERS],
+    noise: [f64; MAX_ORDERS],
+}
+
+/// An end point as seen from the rings of one cluster.
+pub(crate) struct NearEnd {
+    /// The cluster: an index into the plan's nodes.
+    pub node: usize,
+    boundaries: Vec<Boundary>,
+    value: Complex64,
+    noise_scale: f64,
+    sign: f64,
+}
+
+impl NearEnd {
+    /// None if the end lies in no ring of the series. `tail` is the descent from the end.
+    pub fn new(
+        phase: &dyn Phase,
+        series: &Series,
+        node: usize,
+        (e, sign): (Complex64, f64),
+        tail: &[Complex64],
+    ) -> Option<NearEnd> {
+        let mut boundaries = Vec::new();
+        for (index, ring) in series.rings().iter().enumerate() {
+            let Some(v) = ring.form.preimage(e, Complex64::new(0.0, 0.0)) else { continue };
+            if v.norm() > INSIDE {
+                continue;
+            }
+            let Some(valley) = Topology::exit(&ring.form, v, tail) else { continue };
+            let (terms, noise) = ring.orders.boundary(&ring.form, &ring.start, v);
+            boundaries.push(Boundary {
+                ring: index,
+                u: v * ring.form.radius(),
+                valley,
+                terms,
+                noise,
+            });
+        }
+        (!boundaries.is_empty()).then(|| NearEnd {
+            node,
+            boundaries,
+            value: phase.value(e),
+            noise_scale: phase.noise_scale(e),
+            sign,
+        })
+    }
+
+    /// The contribution at wavenumber `k` with at most `orders` orders; None if the descent inside
+    /// the ring did not arrive.
+    pub fn at(&self, series: &Series, k: f64, orders: usize) -> Option<Contribution> {
+        let mut best: Option<(usize, usize, f64, _)> = None;
+        for (index, boundary) in self.boundaries.iter().enumerate() {
+            let ring = &series.rings()[boundary.ring];
+            let Some(moments) =
+                incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k)
+            else {
+                continue;
+            };
+            let mut parts = Parts::of_ring(ring, &moments.map(|c| c.norm()), k, orders);
+            let mut power = 1.0 / k;
+            for n in 0..MAX_ORDERS {
+                parts.terms[n] += power * boundary.terms[n].norm();
+                parts.noise[n] += power * boundary.noise[n];
+                power /= k;
+            }
+            let (kept, figure) = parts.least();
+            if best.as_ref().is_none_or(|b| figure < b.2) {
+                best = Some((index, kept, figure, moments));
+            }
+        }
+        let (index, kept, figure, moments) = best?;
+        let boundary = &self.boundaries[index];
+        let ring = &series.rings()[boundary.ring];
+        let mut sum = Complex64::new(0.0, 0.0);
+        let mut power = 1.0;
+        for n in 0..kept {
+            let p = ring.orders.coefficients(n);
+            let inside: Complex64 = p.iter().zip(&moments).map(|(p, c)| p * c).sum();
+            sum += (inside + boundary.terms[n] * Complex64::new(0.0, 1.0 / k)) * power;
+            power /= k;
+        }
+        let noise = 4.0 * f64::EPSILON * k * self.noise_scale * sum.norm();
+        Some(Contribution::new(
+            Complex64::new(0.0, k) * self.value,
+            Scaled::from(sum * self.sign),
+            Scaled::from(Complex64::new(figure + noise, 0.0)),
+            kept,
+        ))
+    }
+}
+
+impl NormalForm {
+    /// `v` with `z(R v) = z`, by Newton's method on the Taylor map from `start`; None if it leaves
+    /// the neighbourhood of the disc.
+    pub(crate) fn preimage(&self, z: Complex64, start: Complex64) -> Option<Complex64> {
+        let mut v = start;
+        let size = self.map()[1].norm();
+        for _ in 0..40 {
+            let mut value = Complex64::new(0.0, 0.0);
+            let mut slope = Complex64::new(0.0, 0.0);
+            for &c in self.map().iter().rev() {
+                slope = slope * v + value;
+                value = value * v + c;
+            }
+            let mut step = (z - value) / slope;
+            if !(step.re.is_finite() && step.im.is_finite()) {
+                return None;
+            }
+            if step.norm() > 0.3 {
+                step *= 0.3 / step.norm();
+            }
+            v += step;
+            if v.norm() > 1.3 {
+                return None;
+            }
+            if step.norm() < 1e-15 || (z - value).norm() < 1e-16 * size {
+                return Some(v);
+            }
+        }
+        // Rounding may keep the last digit in motion.
+        ((z - self.point(v)).norm() < 1e-13 * (size + z.norm())).then_some(v)
+    }
+}

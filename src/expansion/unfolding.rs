@@ -1,0 +1,54 @@
+//! `Phi(u) = u^(K+2) + x_K u^K + .. + x_1 u` (DLMF 36.2.1).
+
+use crate::ring::{MAX_SADDLES, NormalForm, ZERO};
+use num_complex::Complex64;
+
+/// `Phi` as a polynomial in `u` without constant term: coefficients of `u^0 .. u^D`.
+pub(crate) struct Unfolding {
+    c: [Complex64; MAX_SADDLES + 2],
+    degree: usize,
+}
+
+impl Unfolding {
+    /// Of a normal form.
+    pub fn new(form: &NormalForm) -> Unfolding {
+        let degree = form.degree();
+        let mut c = [ZERO; MAX_SADDLES + 2];
+        for j in 1..form.saddles() {
+            c[j] = form.x(j);
+        }
+        c[degree] += 1.0;
+        Unfolding { c, degree }
+    }
+
+    /// Taylor coefficients of `Phi` about `u`.
+    pub fn about(&self, u: Complex64) -> [Complex64; MAX_SADDLES + 2] {
+        let mut t = self.c;
+        for start in 0..self.degree {
+            for j in (start..self.degree).rev() {
+                t[j] = t[j] + t[j + 1] * u;
+            }
+        }
+        t
+    }
+
+    /// `K + 2`.
+    pub fn degree(&self) -> usize {
+        self.degree
+    }
+
+    /// `x_j`, `1 <= j <= K`.
+    pub fn x(&self, j: usize) -> Complex64 {
+        self.c[j]
+    }
+
+    /// The polynomial with conjugate coefficients: `conj Phi(conj u)`.
+    pub fn conj(&self) -> Unfolding {
+        Unfolding { c: self.c.map(|c| c.conj()), degree: self.degree }
+    }
+
+    /// `Phi(u)`.
+    pub fn value(&self, u: Complex64) -> Complex64 {
+        crate::ring::evaluate(&self.c[..=self.degree], u)
+    }
+}

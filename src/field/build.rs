@@ -1,0 +1,188 @@
+//! How a plan is made: location, grouping, expansions, topology, certificate.
+
+use super::plan::{End, MAX_GROUPS, Node, Plan, decided};
+use crate::Error;
+use crate::expansion::{LARGEST_CLUSTER, NearEnd, Series};
+use crate::integral::{Amplitude, Phase, Termination};
+use crate::saddles::{DROP, Group, Region, Saddle, Topology, Tree, locate};
+use num_complex::Complex64;
+
+fn undecided(reason: impl Into<String>) -> Error {
+    Error::Undecided {
+        reason: reason.into(),
+        remedy: "use `quadrature` for this integral, or give a contour closer to the saddles",
+    }
+}
+
+pub(super) fn attempt(
+    phase: &dyn Phase,
+    amplitude: &dyn Amplitude,
+    contour: &crate::Contour,
+    margin: f64,
+    finest: u32,
+) -> Result<Plan, Error> {
+    let region = Region::around(contour.points(), margin);
+    let saddles = locate(phase, region, finest)?;
+    let size = region.size();
+    let topology = Topology::new(phase, contour, &saddles);
+    let points = contour.points();
+    let tails = topology.tails();
+
+    let mut ends: Vec<End> = Vec::new();
+    let mut reach = Reach { top: f64::NEG_INFINITY, lowest: f64::INFINITY };
+    for (at, sign, termination) in
+        [(points[0], 1.0, contour.start()), (points[points.len() - 1], -1.0, contour.end())]
+    {
+        if termination == Termination::Finite {
+            let near = saddles.iter().map(|s| (s.z - at).norm()).fold(size, f64::min);
+            let own = Series::new(phase, amplitude, 0, at, (0.3 * near, 1e-6 * size));
+            let f = phase.value(at);
+            reach.include(height(f), topology.turned_height(f));
+            ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
+        }
+    }
+
+    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER);
+    if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
+        return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
+    }
+    let nodes = resolve(phase, amplitude, &topology, &tree, &saddles, &ends, &mut reach, size)?;
+    for end in &mut ends {
+        let tail = tails[usize::from(end.sign < 0.0)];
+        for (index, node) in nodes.iter().enumerate() {
+            if let Some(series) = &node.series {
+                end.near.extend(NearEnd::new(phase, series, index, (end.at, end.sign), tail));
+            }
+        }
+        if end.own.is_none() && end.near.is_empty() {
+            return Err(undecided(format!(
+                "the end point {} is too close to a singularity or to several saddles",
+                end.at
+            )));
+        }
+    }
+    let top = reach.top;
+    let mut plan = Plan { nodes, roots: tree.roots, ends, saddles: Vec::new(), top };
+    let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
+    certify(&plan, &topology, lowest - DROP)?;
+    for saddle in &saddles {
+        let [_, _, second] = phase.jet(saddle.z);
+        let weight = amplitude.value(saddle.z).norm()
+            * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
+        let h = Complex64::new(0.0, 1.0) * saddle.value;
+        plan.saddles.push((h, if weight.is_finite() { weight } else { 0.0 }));
+    }
+    Ok(plan)
+}
+
+/// `Re(i f)`.
+fn height(f: Complex64) -> f64 {
+    -f.im
+}
+
+/// What has been found to contribute so far.
+struct Reach {
+    /// The greatest `Re(i f)`.
+    top: f64,
+    /// The least height in the topology's turned exponent.
+    lowest: f64,
+}
+
+impl Reach {
+    fn include(&mut self, height: f64, turned: f64) {
+        self.top = self.top.max(height);
+        self.lowest = self.lowest.min(turned);
+    }
+}
+
+/// Series and multiplicities of all groups, from the highest downwards.
+fn resolve(
+    phase: &dyn Phase,
+    amplitude: &dyn Amplitude,
+    topology: &Topology,
+    tree: &Tree,
+    saddles: &[Saddle],
+    ends: &[End],
+    reach: &mut Reach,
+    size: f64,
+) -> Result<Vec<Node>, Error> {
+    let highest = |g: &Group| {
+        g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
+    };
+    let lowest = |g: &Group| {
+        let heights = g.members.iter().map(|&m| topology.turned_height(saddles[m].value));
+        heights.fold(f64::INFINITY, f64::min)
+    };
+    let mut nodes: Vec<Node> = tree.groups.iter().map(Node::new).collect();
+    let mut order: Vec<usize> = (0..tree.groups.len()).collect();
+    order.sort_by(|&a, &b| highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a])));
+    for index in order {
+        let group = &tree.groups[index];
+        let gap = if group.gap.is_finite() { group.gap } else { size };
+        // An end point near a saddle needs its series, whether the saddle contributes or not.
+        let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
+        if !ended && (topology.above(lowest(group)) || highest(group) < reach.top - DROP) {
+            nodes[index].settled = true;
+            continue;
+        }
+        let Some(series) = Series::new(
+            phase,
+            amplitude,
+            group.members.len(),
+            group.centre,
+            ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius),
+        ) else {
+            continue;
+        };
+        let Some(m) = topology.multiplicities(series.form()) else {
+            continue;
+        };
+        let series = series.with_multiplicities(m);
+        if series.contributes() {
+            reach.include(highest(group), lowest(group));
+        }
+        nodes[index].series = Some(series);
+        nodes[index].settled = true;
+    }
+    // Every root must be decided, as a whole or by its parts.
+    for &root in &tree.roots {
+        if !decided(&nodes, root) {
+            return Err(undecided(format!(
+                "no normal form or no clear ridge for the saddles near {:.4}",
+                tree.groups[root].centre
+            )));
+        }
+    }
+    Ok(nodes)
+}
+
+/// The certificate for the finest level that is known, then for each group against its parts.
+fn certify(plan: &Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
+    let valleys = |series: &Series| {
+        if series.contributes() {
+            topology.valleys(series.form(), series.multiplicities(), floor)
+        } else {
+            Some(Vec::new())
+        }
+    };
+    let mut all = Vec::new();
+    let mut missing = false;
+    let mut stack = plan.roots.clone();
+    while let Some(index) = stack.pop() {
+        let node = &plan.nodes[index];
+        match node.parts {
+            Some((a, b)) if decided(&plan.nodes, a) && decided(&plan.nodes, b) => {
+                stack.extend([a, b])
+            }
+            _ => match node.series.as_ref().map(valleys) {
+                Some(Some(list)) => all.extend(list),
+                Some(None) => missing = true,
+                None => {}
+            },
+        }
+    }
+    if missing || !topology.closes(&all, floor) {
+        return Err(undecided("the contributions found do not join the two ends of the contour"));
+    }
+    Ok(())
+}
