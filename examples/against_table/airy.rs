@@ -27,25 +27,22 @@ fn four_functions(
     function: impl Fn(Complex64) -> Airy<Complex64>,
 ) -> Result<Measured, Fault> {
     let z = table.complex_inputs("z")?;
-    let [ai, ai_prime, bi, bi_prime] = [
+    let exact = [
         table.complex_references(stems[0])?,
         table.complex_references(stems[1])?,
         table.complex_references(stems[2])?,
         table.complex_references(stems[3])?,
     ];
     let (values, ns) = evaluate(&z, |&z| function(z));
-    let mut measured = Measured::new(ns);
-    let pairs: [(_, _, fn(&Airy<Complex64>) -> [Complex64; 2]); 2] =
-        [(&ai, &ai_prime, |v| [v.ai, v.ai_prime]), (&bi, &bi_prime, |v| [v.bi, v.bi_prime])];
-    for ((f, df, pick), names) in pairs.into_iter().zip(stems.chunks(2)) {
-        let errors: Vec<[f64; 2]> = (0..z.len())
-            .map(|row| pair_errors(z[row], f[row], df[row], pick(&values[row])))
-            .collect();
-        measured = measured
-            .quantity(names[0], errors.iter().map(|e| e[0]))
-            .quantity(names[1], errors.iter().map(|e| e[1]));
-    }
-    Ok(measured)
+    let (z, exact, values) = (&z, &exact, &values);
+    let pair = |first: usize, pick: fn(&Airy<Complex64>) -> [Complex64; 2]| {
+        values.iter().enumerate().map(move |(row, value)| {
+            pair_errors(z[row], exact[first][row], exact[first + 1][row], pick(value))
+        })
+    };
+    Ok(Measured::new(ns)
+        .pair([stems[0], stems[1]], pair(0, |v| [v.ai, v.ai_prime]))
+        .pair([stems[2], stems[3]], pair(2, |v| [v.bi, v.bi_prime])))
 }
 
 /// The errors of a function and its derivative on their natural scales.

@@ -24,6 +24,12 @@ impl Measured {
         self
     }
 
+    /// Adds the errors of a function and its derivative.
+    pub fn pair(self, names: [&str; 2], errors: impl Iterator<Item = [f64; 2]>) -> Self {
+        let (f, df): (Vec<f64>, Vec<f64>) = errors.map(|[f, df]| (f, df)).unzip();
+        self.quantity(names[0], f.into_iter()).quantity(names[1], df.into_iter())
+    }
+
     /// Adds a line that is printed as it stands after the table's name.
     pub fn note(mut self, note: String) -> Self {
         self.notes.push(note);
