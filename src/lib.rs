@@ -50,6 +50,7 @@
 //! | [`integral`] | what a caller hands in: phase, amplitude, contour |
 //! | [`saddles`] | where the saddles are |
 //! | [`field`] | the one API: plan once, evaluate at any wavenumber |
+//! | [`guide`] | the application: modes of a slowly varying guide through cut-off |
 //!
 //! [`Integral::plan`] and [`Integral::quadrature`] return the same [`Estimate`].
 #![forbid(unsafe_code)]

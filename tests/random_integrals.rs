@@ -87,9 +87,6 @@ impl Tally {
                 }
                 if difference > 3.0 * doubt {
                     self.ratios.push(figure / difference);
-                    if figure / difference > 3e3 {
-                        println!(figure / size, difference / size, got.form);
-                    }
                 }
             }
         }

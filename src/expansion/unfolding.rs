@@ -14,8 +14,8 @@ impl Unfolding {
     pub fn new(form: &NormalForm) -> Unfolding {
         let degree = form.degree();
         let mut c = [ZERO; MAX_SADDLES + 2];
-        for j in 1..form.saddles() {
-            c[j] = form.x(j);
+        for (j, c) in c.iter_mut().enumerate().take(form.saddles()).skip(1) {
+            *c = form.x(j);
         }
         c[degree] += 1.0;
         Unfolding { c, degree }
@@ -26,7 +26,7 @@ impl Unfolding {
         let mut t = self.c;
         for start in 0..self.degree {
             for j in (start..self.degree).rev() {
-                t[j] = t[j] + t[j + 1] * u;
+                t[j] += t[j + 1] * u;
             }
         }
         t

@@ -4,7 +4,7 @@ use super::plan::{End, MAX_GROUPS, Node, Plan, decided};
 use crate::Error;
 use crate::expansion::{Given, LARGEST_CLUSTER, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
-use crate::saddles::{DROP, Group, Region, Saddle, Topology, Tree, locate};
+use crate::saddles::{Group, Region, Saddle, Topology, Tree, locate};
 use num_complex::Complex64;
 
 fn undecided(reason: impl Into<String>) -> Error {
@@ -20,15 +20,19 @@ pub(super) struct Problem<'a> {
     pub amplitude: &'a dyn Amplitude,
     pub contour: &'a Contour,
     pub poles: &'a [Complex64],
+    /// How far below the highest contribution something may lie and still matter.
+    pub drop: f64,
+    /// The least and the greatest wavenumber.
+    pub wavenumbers: (f64, f64),
 }
 
 /// One attempt: saddles are looked for within `margin` of the contour.
 pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Plan, Error> {
-    let Problem { phase, amplitude, contour, .. } = *problem;
+    let Problem { phase, amplitude, contour, drop, .. } = *problem;
     let region = Region::around(contour.points(), margin);
     let saddles = locate(phase, region, finest)?;
     let size = region.size();
-    let topology = Topology::new(phase, contour, &saddles);
+    let topology = Topology::new(phase, contour, &saddles, drop);
     let points = contour.points();
     let tails = topology.tails();
 
@@ -55,11 +59,11 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
     }
     let given = Given { phase, amplitude, poles: &poles };
 
-    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER);
+    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
-    let nodes = resolve(&given, &topology, &tree, &saddles, &ends, &mut reach, size)?;
+    let nodes = resolve(&given, &topology, &tree, &saddles, &ends, &mut reach, (size, drop))?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
@@ -76,9 +80,10 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
     }
     let top = reach.top;
     let poles = poles.into_iter().map(|(pole, _)| pole).collect();
-    let mut plan = Plan { nodes, roots: tree.roots, ends, poles, saddles: Vec::new(), top };
+    let mut plan =
+        Plan { nodes, roots: tree.roots, ends, poles, saddles: Vec::new(), floor: top - drop };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
-    certify(&plan, &topology, lowest - DROP)?;
+    certify(&plan, &topology, lowest - drop)?;
     for saddle in &saddles {
         let [_, _, second] = phase.jet(saddle.z);
         let weight = amplitude.value(saddle.z).norm()
@@ -139,7 +144,7 @@ fn resolve(
     saddles: &[Saddle],
     ends: &[End],
     reach: &mut Reach,
-    size: f64,
+    (size, drop): (f64, f64),
 ) -> Result<Vec<Node>, Error> {
     let highest = |g: &Group| {
         g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
@@ -156,7 +161,7 @@ fn resolve(
         let gap = if group.gap.is_finite() { group.gap } else { size };
         // An end point near a saddle needs its series, whether the saddle contributes or not.
         let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
-        if !ended && (topology.above(lowest(group)) || highest(group) < reach.top - DROP) {
+        if !ended && (topology.above(lowest(group)) || highest(group) < reach.top - drop) {
             nodes[index].settled = true;
             continue;
         }

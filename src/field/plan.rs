@@ -4,9 +4,10 @@ use super::build::{Problem, attempt};
 use crate::estimate::Form;
 use crate::expansion::{Contribution, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
-use crate::saddles::{DROP, Group};
+use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};
 use num_complex::Complex64;
+use std::ops::{Bound, RangeBounds};
 
 /// The largest number of groups of saddles in a plan.
 pub(super) const MAX_GROUPS: usize = 64;
@@ -14,6 +15,11 @@ pub(super) const MAX_GROUPS: usize = 64;
 const MAX_POLES: usize = 32;
 /// Groups with one bit a saddle: a tree of `n` saddles has at most `2 n - 1` groups.
 const _: () = assert!(MAX_GROUPS <= 64);
+
+/// The least wavenumber of a plan, if the caller names none.
+const LEAST_K: f64 = 2.0;
+/// How many nepers below the highest contribution nothing matters.
+const NEPERS: f64 = 40.0;
 
 /// How wide round the contour saddles are looked for, in units of its size: wider if the
 /// certificate says that a contributing saddle is missing.
@@ -77,8 +83,8 @@ pub struct Plan {
     /// `i f` at every saddle, and the size of its leading term without the power of `k`: the lower
     /// term at a Stokes line.
     pub(super) saddles: Vec<(Complex64, f64)>,
-    /// The greatest `Re(i f)` that contributes; nothing below `top - DROP` was looked at.
-    pub(super) top: f64,
+    /// Nothing with `Re(i f)` below this was looked at.
+    pub(super) floor: f64,
 }
 
 impl<P: Phase, A: Amplitude> Integral<P, A> {
@@ -116,6 +122,32 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn plan(&self) -> Result<Plan, Error> {
+        self.plan_for(LEAST_K..)
+    }
+
+    /// A plan for the wavenumbers of a range ([`Integral::plan`]: from 2 on). A narrow range makes a
+    /// cheaper plan, `k..=k` the cheapest.
+    ///
+    /// Contributions that are 40 nepers or more below the highest at the least `k` are left out: a
+    /// larger one asks less of the phase, which need not be analytic as far down the valleys. Saddles
+    /// are kept together only, or apart only, where the range allows no doubt which is better. Outside
+    /// its range a plan still answers, and its error figure says what may be missing.
+    ///
+    /// # Errors
+    /// As [`Integral::plan`], and if the range's ends are not finite numbers above zero (an open upper
+    /// end is allowed).
+    pub fn plan_for(&self, range: impl RangeBounds<f64>) -> Result<Plan, Error> {
+        let end = |bound: Bound<&f64>, open: f64| match bound {
+            Bound::Included(&k) | Bound::Excluded(&k) => k,
+            Bound::Unbounded => open,
+        };
+        let least = end(range.start_bound(), LEAST_K);
+        let greatest = end(range.end_bound(), f64::INFINITY);
+        Error::require_positive("least wavenumber of the range", least)?;
+        if greatest.is_nan() || greatest < least {
+            let remedy = "give a range whose end is not below its start";
+            return Err(Error::domain("greatest wavenumber of the range", greatest, remedy));
+        }
         self.contour().check()?;
         for &z in self.contour().points() {
             let (f, df) = self.phase().value_and_derivative(z);
@@ -137,6 +169,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             amplitude: self.amplitude_ref(),
             contour: self.contour(),
             poles: self.poles(),
+            drop: NEPERS / least,
+            wavenumbers: (least, greatest),
         };
         let mut last = None;
         for (margin, finest) in MARGINS.into_iter().zip(FINEST..) {
@@ -211,7 +245,7 @@ impl Plan {
             largest = largest.max(best[root].largest);
             self.add_lower(root, &best, k, &mut total);
         }
-        total.error = total.error + Scaled::exp(Complex64::new(k * (self.top - DROP), 0.0));
+        total.error = total.error + Scaled::exp(Complex64::new(k * self.floor, 0.0));
         let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
         finish(total, form, k)
     }

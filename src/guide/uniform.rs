@@ -322,7 +322,9 @@ impl UniformField {
     /// have a third saddle near (at `w = -2 i m/((n - 1/2) pi)` at cut-off): use
     /// [`quadrature`](Self::quadrature) then.
     pub fn evaluate(&self) -> Result<Estimate, Error> {
-        Ok(self.finish(self.integral.plan()?.at(self.wavenumber)?))
+        Ok(self.finish(
+            self.integral.plan_for(self.wavenumber..=self.wavenumber)?.at(self.wavenumber)?,
+        ))
     }
 
     /// The field by quadrature along the contour, to a relative `tolerance`.

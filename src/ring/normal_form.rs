@@ -281,6 +281,12 @@ impl NormalForm {
         roots
     }
 
+    /// `Phi(u)` at `u = R v`.
+    pub(crate) fn unfolding_at(&self, v: Complex64) -> Complex64 {
+        let lower = evaluate(&self.unfolding[1..self.saddles().max(1)], v) * v;
+        lower + v.powi(self.degree as i32) * self.radius.powi(self.degree as i32)
+    }
+
     /// `i u Phi'(u)` at `u = R v`: its real part is the slope of `Re(i Phi)` along the radius.
     pub(crate) fn radial_slope(&self, v: Complex64) -> Complex64 {
         I * v * self.radius * evaluate(&self.derivative()[..self.degree], v)

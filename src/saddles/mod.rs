@@ -7,5 +7,5 @@ mod trace;
 mod tree;
 
 pub use locate::{Region, Saddle, locate};
-pub(crate) use topology::{DROP, Multiplicities, Topology};
+pub(crate) use topology::{Multiplicities, Topology};
 pub(crate) use tree::{Group, Tree};

@@ -29,10 +29,8 @@ use std::f64::consts::PI;
 /// `m_j` for each ridge of a cluster; all equal means no contribution.
 pub(crate) type Multiplicities = [i32; MAX_SADDLES + 1];
 
-/// How far below the highest contribution a cluster may lie and still be evaluated.
-pub(crate) const DROP: f64 = 20.0;
-/// How exactly a traced point keeps the height it was sent to.
-const SLACK: f64 = 0.05 * DROP;
+/// How exactly a traced point keeps the height it was sent to, in units of the drop.
+const SLACK: f64 = 0.05;
 /// The angle that the exponent is turned by.
 const DELTA: f64 = 0.03;
 
@@ -46,11 +44,18 @@ pub(crate) struct Topology<'a> {
     tails: [Vec<Complex64>; 2],
     top: f64,
     bottom: f64,
+    drop: f64,
     longest: f64,
 }
 
 impl<'a> Topology<'a> {
-    pub fn new(phase: &'a dyn Phase, contour: &Contour, saddles: &[Saddle]) -> Topology<'a> {
+    /// `drop`: how far below the highest contribution a cluster may lie and still matter.
+    pub fn new(
+        phase: &'a dyn Phase,
+        contour: &Contour,
+        saddles: &[Saddle],
+        drop: f64,
+    ) -> Topology<'a> {
         let h = Exponent::new(phase, DELTA);
         let points = contour.points();
         let size = points.windows(2).map(|p| (p[1] - p[0]).norm()).fold(0.0, f64::max);
@@ -71,7 +76,7 @@ impl<'a> Topology<'a> {
             }
         }
         let longest = size;
-        let deep = saddles.iter().fold(bottom, |m, s| m.min(h.of(s.value).re)) - DROP;
+        let deep = saddles.iter().fold(bottom, |m, s| m.min(h.of(s.value).re)) - drop;
         let tail = |from: Complex64| {
             let mut line = vec![from];
             trace(&h, from, deep, longest, &mut line);
@@ -89,6 +94,7 @@ impl<'a> Topology<'a> {
             whole,
             top: top + 0.02 * (top - bottom) + 1e-9,
             bottom,
+            drop,
             longest,
         }
     }
@@ -169,7 +175,7 @@ impl<'a> Topology<'a> {
         }
         // An end at infinity must really be down there; a finite end that contributes has been
         // followed down like the others.
-        if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK) {
+        if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK * self.drop) {
             return false;
         }
         let mut open = vec![true; ends.len()];
@@ -204,12 +210,12 @@ impl<'a> Topology<'a> {
             const PIECES: usize = 24;
             let below = |piece: usize| {
                 let z = a + (b - a) * (piece as f64 / PIECES as f64);
-                self.h.height(z) < floor + SLACK
+                self.h.height(z) < floor + SLACK * self.drop
             };
             if (1..PIECES).all(below) {
                 return true;
             }
-            let deeper = floor - DROP * 4f64.powi(round);
+            let deeper = floor - self.drop * 4f64.powi(round);
             for z in [&mut a, &mut b] {
                 let mut line = vec![*z];
                 trace(&self.h, *z, deeper, self.longest, &mut line);
@@ -261,7 +267,7 @@ impl<'a> Topology<'a> {
         for &v in unit_points() {
             let lift = lift(form, &saddles, v) + DELTA;
             let slope = (form.radial_slope(v) * turn).re;
-            let height = self.h.height(form.point(v));
+            let height = (form.unfolding_at(v) * turn * Complex64::new(0.0, 1.0)).re;
             if slope > 0.0 {
                 let ridge = (lift / (2.0 * PI)).round() as i64 - 1;
                 let j = ridge.rem_euclid(degree as i64) as usize;

@@ -34,14 +34,23 @@ pub(crate) struct Tree {
     pub roots: Vec<usize>,
 }
 
-/// Saddles whose phases differ by less are never told apart: with `k` up to 1e7 their difference
-/// of phase is below one.
+/// Saddles whose phases differ by less than this over the greatest wavenumber are not worth telling
+/// apart: each alone would be known to some `e^-6` at best.
+const TOGETHER: f64 = 6.0;
+/// Never told apart below this difference, whatever the wavenumber.
 const MERGED: f64 = 1e-7;
-/// Beyond this difference of phase, taking saddles together does not pay for any `k >= 3`.
-const APART: f64 = 20.0;
+/// Beyond this over the least wavenumber, taking saddles together does not pay.
+const APART: f64 = 60.0;
 
 impl Tree {
-    pub fn new(phase: &dyn Phase, saddles: &[Saddle], largest: usize) -> Tree {
+    /// `largest`: the number of saddles of the largest group; `wavenumbers`: the least and greatest.
+    pub fn new(
+        phase: &dyn Phase,
+        saddles: &[Saddle],
+        largest: usize,
+        (least, greatest): (f64, f64),
+    ) -> Tree {
+        let merged_below = (TOGETHER / greatest).max(MERGED);
         let mut groups: Vec<Group> = Vec::new();
         let mut open: Vec<usize> = Vec::new();
         for index in 0..saddles.len() {
@@ -50,10 +59,12 @@ impl Tree {
                     let (a, b) = (&saddles[m], &saddles[index]);
                     // Merged saddles have no hill between them; distant ones may agree by chance.
                     let between = phase.value((a.z + b.z) * 0.5);
-                    (a.value - b.value).norm() < MERGED && (between - a.value).norm() < MERGED
+                    (a.value - b.value).norm() < merged_below
+                        && (between - a.value).norm() < merged_below
                 })
             };
-            match open.iter().copied().find(|g| merged(g)) {
+            let open_to = |&g: &usize| groups[g].members.len() < largest && merged(&g);
+            match open.iter().copied().find(open_to) {
                 Some(g) => groups[g].members.push(index),
                 None => {
                     open.push(groups.len());
@@ -61,7 +72,7 @@ impl Tree {
                 }
             }
         }
-        while let Some((a, b)) = nearest(&groups, &open, saddles, largest) {
+        while let Some((a, b)) = nearest(&groups, &open, saddles, largest, APART / least) {
             let mut members = groups[a].members.clone();
             members.extend(&groups[b].members);
             open.retain(|&g| g != a && g != b);
@@ -99,6 +110,7 @@ fn nearest(
     open: &[usize],
     saddles: &[Saddle],
     largest: usize,
+    limit: f64,
 ) -> Option<(usize, usize)> {
     let mut best = None;
     let mut least = f64::INFINITY;
@@ -115,7 +127,7 @@ fn nearest(
                     apart = apart.max((saddles[m].value - saddles[n].value).norm());
                 }
             }
-            if apart < APART && distance < least {
+            if apart < limit && distance < least {
                 least = distance;
                 best = Some((b, a));
             }
