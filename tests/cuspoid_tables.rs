@@ -23,7 +23,9 @@ fn judge(what: &str, mut errors: Vec<f64>, max: f64, p99: f64) {
     let at = |q: f64| errors[((errors.len() - 1) as f64 * q).round() as usize];
     let line = format!("{what}: max {:.2e}, p99 {:.2e}, median {:.2e}", at(1.0), at(0.99), at(0.5));
     println!("{line}");
-    if false {assert!(at(1.0) <= max && at(0.99) <= p99, "{line}");}
+    if false {
+        assert!(at(1.0) <= max && at(0.99) <= p99, "{line}");
+    }
 }
 
 /// Complex numbers from pairs; parameters stand as x_K .. x_1 in the tables.
@@ -36,12 +38,13 @@ fn parameters<const K: usize>(listed: &[Complex64]) -> [Complex64; K] {
 }
 
 /// Errors of Psi and the derivatives, the worst of them.
-fn error<const K: usize>(x: &[Complex64; K], value: Cuspoid<Complex64, K>, exact: &[Complex64]) -> f64 {
+fn error<const K: usize>(
+    x: &[Complex64; K],
+    value: Cuspoid<Complex64, K>,
+    exact: &[Complex64],
+) -> f64 {
     let t = 1.0
-        + x.iter()
-            .enumerate()
-            .map(|(m, x)| x.norm().powf(1.0 / (K + 1 - m) as f64))
-            .sum::<f64>();
+        + x.iter().enumerate().map(|(m, x)| x.norm().powf(1.0 / (K + 1 - m) as f64)).sum::<f64>();
     let got: Vec<Complex64> = std::iter::once(value.psi).chain(value.derivatives).collect();
     let scale = |m: usize| t.powi(m as i32);
     let s = (0..=K).map(|m| exact[m].norm() / scale(m)).fold(0.0, f64::max);
@@ -59,7 +62,11 @@ fn descents_real<const K: usize>(name: &str) -> Vec<f64> {
         let x = parameters::<K>(&listed);
         let exact = complex(&row[K..3 * K + 2]);
         let from = (K + 2) / 2;
-        let Ok(v) = cuspoid::between(&x, from, 0) else { println!("FAIL {name} {row:?}"); errors.push(1e9); continue };
+        let Ok(v) = cuspoid::between(&x, from, 0) else {
+            println!("FAIL {name} {row:?}");
+            errors.push(1e9);
+            continue;
+        };
         let e = error(&x, plain(v), &exact);
         if e > 3e-14 {
             println!("{name} {row:?} {e:.2e}");
@@ -76,7 +83,11 @@ fn descents_complex<const K: usize>(name: &str) -> Vec<f64> {
         let x = parameters::<K>(&listed);
         let exact = complex(&row[2 * K..4 * K + 2]);
         let from = (K + 2) / 2;
-        let Ok(v) = cuspoid::between(&x, from, 0) else { println!("FAIL {name} {row:?}"); errors.push(1e9); continue };
+        let Ok(v) = cuspoid::between(&x, from, 0) else {
+            println!("FAIL {name} {row:?}");
+            errors.push(1e9);
+            continue;
+        };
         let e = error(&x, plain(v), &exact);
         if e > 3e-14 {
             println!("{name} {row:?} {e:.2e}");
@@ -92,7 +103,11 @@ fn valleys<const K: usize>(name: &str) -> Vec<f64> {
         let listed = complex(&row[2..2 * K + 2]);
         let x = parameters::<K>(&listed);
         let exact = complex(&row[2 * K + 2..4 * K + 4]);
-        let Ok(v) = cuspoid::between(&x, row[0] as usize, row[1] as usize)else { println!("FAIL {name} {row:?}"); errors.push(1e9); continue };
+        let Ok(v) = cuspoid::between(&x, row[0] as usize, row[1] as usize) else {
+            println!("FAIL {name} {row:?}");
+            errors.push(1e9);
+            continue;
+        };
         errors.push(error(&x, plain(v), &exact));
     }
     errors

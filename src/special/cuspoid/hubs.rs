@@ -6,14 +6,14 @@
 //! the group downhill; else the group takes in its nearest neighbour. All saddles in one group
 //! always have such a circle.
 
-use super::polynomial::{Polynomial, ZERO, shifted, slope, value};
+use super::polynomial::{Polynomial, ZERO, shifted};
 use num_complex::Complex64;
 
 /// Saddles at most.
 pub(super) const SADDLES: usize = 5;
 
 /// A group of saddles.
-#[derive(Clone, Copy)]
+#[derive(Clone, Copy, Debug)]
 pub(super) struct Hub {
     /// A point in its middle; the saddle itself if it is alone.
     pub at: Complex64,
@@ -219,10 +219,4 @@ impl Hub {
     pub fn height(&self) -> f64 {
         self.local[0].re
     }
-}
-
-/// Height of the landscape at `t`.
-#[inline]
-pub(super) fn height<const D: usize>(h: &Polynomial, t: Complex64) -> f64 {
-    value::<D>(h, t).re
 }

@@ -7,7 +7,7 @@
 //! `D Im t^D >= sum m max(0, Re(i x_m t^m))`, `Im t^D > 0`.
 
 use super::hubs::Hub;
-use super::polynomial::{Polynomial, ZERO, shifted, slope};
+use super::polynomial::{Polynomial, ZERO, shifted, slope, value};
 use num_complex::Complex64;
 
 /// Where the integrand is `e^-DEPTH` of what it was at the top, nothing more is added.
@@ -16,8 +16,8 @@ pub(super) const DEPTH: f64 = 42.0;
 pub(super) const VERTICES: usize = 24;
 /// The rule's error follows the exponent a little beyond the piece, where high powers grow most.
 const STRETCH: f64 = 1.2;
-/// Sum of all terms over the first panel.
-const FIRST_PANEL: f64 = 7.0;
+/// The first term of a full step below which a saddle is near.
+const DOORSTEP: f64 = 1.0;
 /// Steps at most, kept or not.
 const STEPS: usize = 250;
 
@@ -47,12 +47,28 @@ fn size(z: Complex64) -> f64 {
     z.norm_sqr().sqrt()
 }
 
+#[inline]
+fn sizes<const D: usize>(local: &Polynomial) -> [f64; 7] {
+    let mut out = [0.0; 7];
+    for m in 1..=D {
+        out[m] = size(local[m]);
+    }
+    out
+}
+
+/// What the terms of a panel may add up to.
+#[inline]
+fn panel(drop: f64) -> f64 {
+    12.0 + 0.6 * drop.max(0.0)
+}
+
 /// The positive `rho` with `sum size_m rho^m = target`, within a few per cent.
 #[inline]
 fn reach<const D: usize>(sizes: &[f64; 7], target: f64) -> f64 {
     // Upper bounds from single terms; Newton's method on the convex sum comes down from there.
+    // (The leading term is 1; degree 4 to 6 has a root below twice the fourth root.)
     let mut rho = (target / sizes[1]).min((target / sizes[2]).sqrt());
-    rho = rho.min(target.sqrt().sqrt() * 2.0);
+    rho = rho.min((target / sizes[3]).cbrt().min(2.0 * target.sqrt().sqrt()));
     for _ in 0..4 {
         let (mut sum, mut growth) = (0.0, 0.0);
         for m in (1..=D).rev() {
@@ -86,6 +102,20 @@ fn falls<const D: usize>(local: &Polynomial, step: Complex64) -> bool {
     heights[0] < 0.0 && heights.windows(2).all(|pair| pair[1] < pair[0])
 }
 
+/// The step of length `rho` to the lowest of a few points around that can be reached falling.
+fn lowest<const D: usize>(local: &Polynomial, rho: f64) -> Option<Complex64> {
+    const ROUND: usize = 16;
+    let mut best = (0.0, None);
+    for k in 0..ROUND {
+        let step = Complex64::from_polar(rho, std::f64::consts::TAU * k as f64 / ROUND as f64);
+        let height = value::<D>(local, step).re - local[0].re;
+        if height < best.0 && falls::<D>(local, step) {
+            best = (height, Some(step));
+        }
+    }
+    best.1
+}
+
 /// The valley in which `t` surely lies.
 #[inline]
 fn valley<const D: usize>(h: &Polynomial, t: Complex64) -> Option<usize> {
@@ -114,16 +144,29 @@ pub(super) fn arm<const D: usize>(
     arm.vertices[0] = ZERO;
     arm.drops[0] = 0.0;
     arm.count = 1;
-    // Out of the group straight, in as many panels as the sum of all terms asks for.
-    let sum = (1..=D).rev().fold(0.0, |sum, m| (sum + size(hub.local[m])) * hub.radius);
-    let pieces = (sum / FIRST_PANEL).ceil().clamp(1.0, 8.0);
+    // Out of the group straight, then downhill.
     let (mut s, mut local, mut drop) = (ZERO, hub.local, 0.0);
-    for k in 1..=pieces as usize {
-        s = direction * (hub.radius * k as f64 / pieces);
+    let mut gone = 0.0;
+    while gone < hub.radius {
+        let sizes = sizes::<D>(&local);
+        let rho = reach::<D>(&sizes, panel(drop)) / STRETCH;
+        // What is left in one or two equal parts rather than a short last one.
+        let left = hub.radius - gone;
+        gone = if rho >= left {
+            hub.radius
+        } else if rho > 0.5 * left {
+            gone + 0.5 * left
+        } else {
+            gone + rho
+        };
+        s = direction * gone;
         local = shifted::<D>(&hub.local, s);
         drop = hub.local[0].re - local[0].re;
-        arm.vertices[k] = s;
-        arm.drops[k] = drop;
+        if arm.count == VERTICES {
+            return None;
+        }
+        arm.vertices[arm.count] = s;
+        arm.drops[arm.count] = drop;
         arm.count += 1;
     }
     for _ in 0..STEPS {
@@ -133,24 +176,30 @@ pub(super) fn arm<const D: usize>(
                 return Some(());
             }
         }
-        let mut sizes = [0.0; 7];
-        for m in 1..=D {
-            sizes[m] = size(local[m]);
-        }
+        let sizes = sizes::<D>(&local);
         if sizes[1] == 0.0 {
             return None;
         }
-        let mut rho = reach::<D>(&sizes, 12.0 + 0.6 * drop.max(0.0)) / STRETCH;
+        let mut rho = reach::<D>(&sizes, panel(drop)) / STRETCH;
         let first = downhill(local[1]);
+        // On another saddle's doorstep steepest descent would stop there: look round instead.
+        let mut turned = if sizes[1] * rho < DOORSTEP { lowest::<D>(&local, rho) } else { None };
         let mut moved = false;
         for _ in 0..40 {
-            let half = slope::<D>(&local, first * (0.5 * rho));
-            let along = if half == ZERO { first } else { downhill(half) };
-            if !falls::<D>(&local, along * rho) {
-                rho *= 0.5;
-                continue;
-            }
-            let next = s + along * rho;
+            let step = match turned.take() {
+                Some(step) => step,
+                None => {
+                    let half = slope::<D>(&local, first * (0.5 * rho));
+                    let along = if half == ZERO { first } else { downhill(half) };
+                    let step = along * rho;
+                    rho *= 0.5;
+                    if !falls::<D>(&local, step) {
+                        continue;
+                    }
+                    step
+                }
+            };
+            let next = s + step;
             let there = shifted::<D>(&hub.local, next);
             let fall = local[0].re - there[0].re;
             if fall > 0.0 {
@@ -159,7 +208,6 @@ pub(super) fn arm<const D: usize>(
                 moved = true;
                 break;
             }
-            rho *= 0.5;
         }
         if !moved {
             return None;
