@@ -8,17 +8,17 @@
 //! - K = 1: with `xi = k^(2/3) 3^(-1/3) x_1`, `w = e^(2 pi i/3)`,
 //!   `C_0 = -2 pi (3k)^(-1/3) sum_j m_j w^j Ai(w^j xi)`,
 //!   `C_1 = 2 pi i (3k)^(-2/3) sum_j m_j w^(2j) Ai'(w^j xi)` (DLMF 9.5.4).
+//! - K = 2, 3, 4: the cuspoid integrals after `u = k^(-1/D) t` (DLMF 36.2.4, 36.6), the weight of
+//!   valley `v` being `m_(v-1) - m_v`.
 
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::ring::{MAX_SADDLES, ZERO};
 use crate::saddles::Multiplicities;
 use crate::special::airy::{airy_extended, rotated_extended};
+use crate::special::cuspoid;
 use num_complex::Complex64;
 use std::f64::consts::PI;
-
-/// The largest cluster, in saddles, that has canonical integrals here.
-pub(crate) const LARGEST_CLUSTER: usize = 2;
 
 /// `C_0 .. C_K` as mantissas with one common exponent.
 #[derive(Clone, Copy, Debug)]
@@ -28,8 +28,9 @@ pub(crate) struct Moments {
 }
 
 impl Moments {
-    /// For one cluster at one wavenumber.
-    pub fn new(phi: &Unfolding, m: &Multiplicities, k: f64) -> Moments {
+    /// For one cluster at one wavenumber; None where the parameters are beyond the range in which
+    /// any digit is right.
+    pub fn new(phi: &Unfolding, m: &Multiplicities, k: f64) -> Option<Moments> {
         let mut values = [ZERO; MAX_SADDLES];
         match phi.degree() - 1 {
             0 => values[0] = Complex64::new(0.0, 1.0 / k),
@@ -37,10 +38,35 @@ impl Moments {
                 let weight = f64::from(m[1] - m[0]);
                 values[0] = Complex64::from_polar(weight * (PI / k).sqrt(), PI / 4.0);
             }
-            _ => return fold(phi, m, k),
+            2 => return Some(fold(phi, m, k)),
+            _ => return cuspoid(phi, m, k),
         }
-        Moments { values, exponent: 0 }
+        Some(Moments { values, exponent: 0 })
     }
+}
+
+/// K = 2, 3, 4.
+fn cuspoid(phi: &Unfolding, m: &Multiplicities, k: f64) -> Option<Moments> {
+    let degree = phi.degree();
+    let unit = k.powf(-1.0 / degree as f64);
+    let mut x = [ZERO; MAX_SADDLES - 1];
+    let mut power = k;
+    for (j, x) in x.iter_mut().enumerate().take(degree - 2) {
+        power *= unit;
+        *x = phi.x(j + 1) * power;
+    }
+    let mut weights = [0; MAX_SADDLES + 1];
+    for (v, weight) in weights.iter_mut().enumerate().take(degree) {
+        *weight = m[(v + degree - 1) % degree] - m[v];
+    }
+    let moments = cuspoid::moments(&x[..degree - 2], &weights[..degree]).ok()?;
+    let mut values = [ZERO; MAX_SADDLES];
+    let mut power = 1.0;
+    for (value, &moment) in values.iter_mut().zip(&moments.mantissas).take(degree - 1) {
+        power *= unit;
+        *value = moment * power;
+    }
+    Some(Moments { values, exponent: moments.exponent })
 }
 
 /// K = 1. The three Airy functions add up to zero (DLMF 9.2.12), so one of the three may be left

@@ -101,7 +101,7 @@ pub(crate) fn incomplete(
             m[v] = 1;
             v = (v + 1) % degree;
         }
-        let between = Moments::new(phi, &m, k);
+        let between = Moments::new(phi, &m, k)?;
         let factor = crate::Scaled::exp(-ik * phi.value(u_e));
         for (sum, &value) in sum.iter_mut().zip(&between.values) {
             *sum += (factor * crate::Scaled::new(value, between.exponent)).to_complex();

@@ -8,7 +8,6 @@ mod pole;
 mod series;
 mod unfolding;
 
-pub(crate) use canonical::LARGEST_CLUSTER;
 pub(crate) use end::NearEnd;
 pub(crate) use pole::Pole;
 pub(crate) use series::{Contribution, Given, Series};

@@ -240,7 +240,7 @@ impl Series {
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         let phi = Unfolding::new(&self.rings[self.reference].form);
-        let moments = Moments::new(&phi, &self.m, k);
+        let Some(moments) = Moments::new(&phi, &self.m, k) else { return Contribution::UNKNOWN };
         let sizes = moments.values.map(|c| c.norm());
         let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
             let residual = ring.form.residual();

@@ -2,8 +2,9 @@
 
 use super::plan::{End, MAX_GROUPS, Node, Plan, decided};
 use crate::Error;
-use crate::expansion::{Given, LARGEST_CLUSTER, NearEnd, Pole, Series};
+use crate::expansion::{Given, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
+use crate::ring::MAX_SADDLES;
 use crate::saddles::{Group, Region, Saddle, Topology, Tree, locate};
 use num_complex::Complex64;
 
@@ -59,7 +60,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
     }
     let given = Given { phase, amplitude, poles: &poles };
 
-    let tree = Tree::new(phase, &saddles, LARGEST_CLUSTER, problem.wavenumbers);
+    let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }

@@ -1,4 +1,5 @@
 //! Functions of numbers: the ground floor, which knows no phases.
 
 pub mod airy;
+pub mod cuspoid;
 pub(crate) mod double_double;
