@@ -63,7 +63,7 @@ pub fn modulus_phase(x: f64) -> Result<ModulusPhase, Error> {
     } else {
         (2.0 / 3.0 * y * y.sqrt(), y.sqrt())
     };
-    let [u_even, u_odd, v_even, v_odd] = asymptotic::parts(xi);
+    let [u_even, u_odd, v_even, v_odd] = asymptotic::parts_turned(xi);
     let root = w.sqrt();
     Ok(ModulusPhase {
         modulus: asymptotic::RSQRT_PI / root * u_even.hypot(u_odd),
