@@ -99,7 +99,7 @@ impl<T> Airy<T> {
 /// The solutions of `u'' = z u` of DLMF 9.2. Overflow gives infinite components, underflow zeros
 /// or subnormal numbers; NaN gives NaN. Beyond `|z| = 1e12` see the module's page.
 ///
-/// Accuracy (natural scale, see the module's page): 2e-15 at most for `|z| <= 100`, 6e-16 for 99 of 100 points. The imaginary
+/// Accuracy (natural scale, see the module's page): 2e-15 at most for `|z| <= 100`, 7e-16 for 99 of 100 points. The imaginary
 /// part of Bi close to the positive real axis, where it is exponentially small beside the real
 /// part, is right on that scale only. Cost: some 0.15 microseconds.
 ///
