@@ -144,7 +144,7 @@ pub fn airy_real(x: f64) -> Airy<f64> {
 
 /// Ai, Ai', Bi, Bi' with the exponent carried apart: nothing over- or underflows for `|z| <= 1e12`.
 ///
-/// Accuracy: 1e-15 on the natural scale for `|z| <= 1e6`, 1e-14 up to 1e12; the real and the imaginary part share
+/// Accuracy: 2e-15 on the natural scale for `|z| <= 1e6`, 1e-14 up to 1e12; the real and the imaginary part share
 /// the exponent. Cost: some 0.2 microseconds. Source: DLMF 9.2, 9.7.
 ///
 /// ```
