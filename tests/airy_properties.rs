@@ -28,7 +28,7 @@ proptest! {
         prop_assert!((one - two - 1.0 / PI).norm() <= 5e-15 * largest(&[one, two]).max(0.3));
     }
 
-    /// DLMF 9.2.12: Ai(z) + w Ai(z w) + w^-1 Ai(z w^-1) = 0 (the table's form with e^(-+2 pi i/3)).
+    /// DLMF 9.2.12: Ai(z) + w Ai(z w) + w^-1 Ai(z w^-1) = 0, w = e^(2 pi i/3).
     #[test]
     fn three_solutions(z in disc(60.0)) {
         let (v, r, w) = (airy(z), rotated(z), omega());
@@ -112,6 +112,12 @@ proptest! {
         let (s, v) = (scorer(z), airy(z));
         let size = largest(&[s.gi, s.hi, v.bi]) + largest(&[s.gi_prime, s.hi_prime, v.bi_prime]) / (1.0 + z.norm()).sqrt();
         prop_assert!((s.gi + s.hi - v.bi).norm() <= 3e-15 * size);
+        let e = scorer_extended(z);
+        for (apart, value) in [(e.gi, s.gi), (e.gi_prime, s.gi_prime), (e.hi, s.hi), (e.hi_prime, s.hi_prime)] {
+            prop_assert!((apart.to_complex() - value).norm() <= 1e-15 * size * (1.0 + z.norm()).sqrt());
+        }
+        let (i, e) = (ai_integral(z), ai_integral_extended(z));
+        prop_assert!((e.to_infinity.to_complex() - i.to_infinity).norm() <= 1e-15 * i.to_infinity.norm());
         let x = -z.norm();
         let (m, v) = (modulus_phase(x).unwrap(), airy_real(x));
         let turn = 1e-15 * (3.0 + m.phase);
@@ -198,6 +204,8 @@ proptest! {
         bi_real(re);
         airy_real_scaled(re);
         scorer(z);
+        scorer_extended(z);
+        ai_integral_extended(z);
         scorer_real(re);
         ai_integral(z);
         ai_integral_real(re);
@@ -212,7 +220,7 @@ proptest! {
 
 #[test]
 fn values_at_the_origin() {
-    // DLMF 9.2.3 to 9.2.6 with Gamma(1/3), Gamma(2/3) from DLMF 5.4 tables (10-digit figures are
+    // DLMF 9.2.3 to 9.2.6 with Gamma(1/3), Gamma(2/3) from 19-digit arithmetic (10-digit figures are
     // not enough here): 2.678938534707747634, 1.354117939426400417.
     let (third, two) = (2.678_938_534_707_747_6, 1.354_117_939_426_400_4);
     let three: f64 = 3.0;

@@ -9,45 +9,45 @@
 //! ```
 //!
 //! and the derivatives with `z^(1/4)/(2 sqrt(pi))`, `v_k` and `-P-`. Even and odd parts are shared
-//! between the signs: real polynomials in `zeta^-2`, as many terms as the size of zeta needs.
+//! between the signs: real polynomials in `zeta^-4` (four or eight side by side), as many terms as the size of zeta needs.
 //! The recessive exponential is below the rounding at the Stokes line for `|zeta| > 17.4`.
 //!
 //! The phase: `w = sqrt z` has the error `dw = (z - w^2)/(2w)`, found from exact products, and
 //! `zeta = (2/3)(z w + z dw)`; an error of the phase would be one of every value.
 
 use super::taylor::Point;
-use crate::special::double_double::{Dd, two_product, two_sum};
+use crate::special::double_double::{Dd, quick_two_sum, two_product, two_sum};
 use num_complex::Complex64;
 
 /// Beyond this distance the phase, of some 10^18, is not known from double-double arithmetic.
 pub(super) const FARTHEST: f64 = 1e12;
 
-/// Terms of the longest expansion, by powers of `zeta^-2`.
-const LONGEST: usize = 14;
+/// Terms of the longest expansion, by powers of `zeta^-4`.
+const LONGEST: usize = 7;
 
-/// `u_2k`, `u_(2k+1)`, `v_2k`, `v_(2k+1)` (DLMF 9.7.2).
-const SERIES: [[f64; 4]; LONGEST] = {
-    let mut out = [[0.0; 4]; LONGEST];
+/// `u_4k .. u_(4k+3)`, then the same of v (DLMF 9.7.2).
+const SERIES: [[f64; 8]; LONGEST] = {
+    let mut out = [[0.0; 8]; LONGEST];
     let (mut u, mut n) = (1.0, 0);
-    while n < 2 * LONGEST {
+    while n < 4 * LONGEST {
         let k = n as f64;
         if n > 0 {
             u *=
                 (6.0 * k - 5.0) * (6.0 * k - 3.0) * (6.0 * k - 1.0) / (216.0 * k * (2.0 * k - 1.0));
         }
-        out[n / 2][n % 2] = u;
-        out[n / 2][2 + n % 2] = if n == 0 { 1.0 } else { (6.0 * k + 1.0) / (1.0 - 6.0 * k) * u };
+        out[n / 4][n % 4] = u;
+        out[n / 4][4 + n % 4] = if n == 0 { 1.0 } else { (6.0 * k + 1.0) / (1.0 - 6.0 * k) * u };
         n += 1;
     }
     out
 };
 
-/// `u_2k`, `u_(2k+1)` alone.
-const VALUES: [[f64; 2]; LONGEST] = {
-    let mut out = [[0.0; 2]; LONGEST];
+/// `u_4k .. u_(4k+3)` alone.
+const VALUES: [[f64; 4]; LONGEST] = {
+    let mut out = [[0.0; 4]; LONGEST];
     let mut k = 0;
     while k < LONGEST {
-        out[k] = [SERIES[k][0], SERIES[k][1]];
+        out[k] = [SERIES[k][0], SERIES[k][1], SERIES[k][2], SERIES[k][3]];
         k += 1;
     }
     out
@@ -56,20 +56,28 @@ const VALUES: [[f64; 2]; LONGEST] = {
 /// Terms that leave an error below 1e-17 at the given `|zeta|`.
 #[inline]
 fn terms(size: f64) -> usize {
-    const FROM: [(f64, usize); 9] = [
-        (1e4, 2),
-        (470.0, 3),
-        (135.0, 4),
-        (68.0, 5),
-        (44.0, 6),
-        (28.0, 8),
-        (22.0, 10),
-        (19.5, 12),
-        (0.0, 14),
-    ];
+    const FROM: [(f64, usize); 6] =
+        [(1e4, 1), (135.0, 2), (44.0, 3), (28.0, 4), (22.0, 5), (19.5, 6)];
     FROM.iter().find(|(from, _)| size >= *from).map_or(LONGEST, |(_, n)| *n)
 }
 
+/// Even and odd parts in `1/zeta` of the expansions with `u_k` and `v_k`, given `t` and `t^2`
+/// (`-t^2` for `zeta = i/t`; the odd parts are then without the factor 1/i).
+#[inline]
+fn parts<P: Point>(t: P, square: P, size: f64) -> [P; 4] {
+    let [u0, u1, u2, u3, v0, v1, v2, v3] = P::polynomials(&SERIES[..terms(size)], square * square);
+    [u0 + square * u2, t * (u1 + square * u3), v0 + square * v2, t * (v1 + square * v3)]
+}
+
+/// The first two of [`parts`].
+#[inline]
+fn parts_of_values<P: Point>(t: P, square: P, size: f64) -> [P; 2] {
+    let [u0, u1, u2, u3] = P::polynomials(&VALUES[..terms(size)], square * square);
+    [u0 + square * u2, t * (u1 + square * u3)]
+}
+
+/// 2/3.
+const TWO_THIRDS: Dd = Dd { hi: 0.666_666_666_666_666_6, lo: 3.700_743_415_417_188e-17 };
 /// `1/(2 sqrt(pi))`.
 const HALF_RSQRT_PI: f64 = 0.282_094_791_773_878_14;
 
@@ -91,7 +99,6 @@ fn sqrt(z: Complex64) -> Complex64 {
 /// `Im z >= 0` and `1e-20 < |z| <= FARTHEST`.
 #[inline]
 pub(super) fn phase(z: Complex64) -> (Dd, Dd, Complex64) {
-    const TWO_THIRDS: Dd = Dd { hi: 0.666_666_666_666_666_6, lo: 3.700_743_415_417_188e-17 };
     let w = sqrt(z);
     let (rr, ii, ri) = (two_product(w.re, w.re), two_product(w.im, w.im), two_product(w.re, w.im));
     let first = two_sum(z.re, -rr.hi);
@@ -114,8 +121,11 @@ pub(super) fn phase(z: Complex64) -> (Dd, Dd, Complex64) {
 /// `xi = (2/3) x^(3/2)` in double-double, and `sqrt x`, for `1e-20 < x <= FARTHEST`.
 #[inline]
 pub(super) fn phase_real(x: f64) -> (Dd, f64) {
-    let (re, _, w) = phase(Complex64::new(x, 0.0));
-    (re, w.re)
+    let w = x.sqrt();
+    let square = two_product(w, w);
+    let lack = (x - square.hi) - square.lo;
+    let product = two_product(x, w);
+    (quick_two_sum(product.hi, product.lo + 0.5 * w * lack).times(TWO_THIRDS), w)
 }
 
 /// The expansion at one point, the exponentials left out.
@@ -143,14 +153,12 @@ pub(super) fn beyond_stokes(z: Complex64) -> bool {
     z.im < -SQRT_3 * z.re
 }
 
-/// See [`Far::factors`]; zeta and `w = sqrt z` are to be finite or infinite, not NaN.
+/// See [`Far::factors`]; `w = sqrt z`.
 #[inline]
-pub(super) fn factors(zeta: Complex64, w: Complex64) -> [Complex64; 4] {
+fn factors(zeta: Complex64, w: Complex64) -> [Complex64; 4] {
     let size = zeta.norm_sqr();
     let t = Complex64::new(zeta.re / size, -zeta.im / size);
-    let [u_even, u_odd, v_even, v_odd] =
-        Complex64::polynomials(&SERIES[..terms(size.sqrt())], t * t);
-    let (u_odd, v_odd) = (t * u_odd, t * v_odd);
+    let [u_even, u_odd, v_even, v_odd] = parts(t, t * t, size.sqrt());
     let root = sqrt(w);
     let scale = root.norm_sqr();
     let g = root.conj() * (HALF_RSQRT_PI / scale);
@@ -169,8 +177,7 @@ pub(super) fn far_values(z: Complex64) -> ([Complex64; 2], (Dd, Dd), bool) {
     let (re, im, w) = phase(z);
     let size = re.hi * re.hi + im.hi * im.hi;
     let t = Complex64::new(re.hi / size, -im.hi / size);
-    let [even, odd] = Complex64::polynomials(&VALUES[..terms(size.sqrt())], t * t);
-    let odd = t * odd;
+    let [even, odd] = parts_of_values(t, t * t, size.sqrt());
     let root = sqrt(w);
     let g = root.conj() * (HALF_RSQRT_PI / root.norm_sqr());
     ([g * (even - odd), g * (even + odd) * 2.0], (re, im), beyond_stokes(z))
@@ -181,30 +188,29 @@ pub(super) fn far_values(z: Complex64) -> ([Complex64; 2], (Dd, Dd), bool) {
 #[inline]
 pub(super) fn growing(zeta: f64, w: f64) -> [f64; 4] {
     let t = 1.0 / zeta;
-    let [u_even, u_odd, v_even, v_odd] = f64::polynomials(&SERIES[..terms(zeta)], t * t);
+    let [u_even, u_odd, v_even, v_odd] = parts(t, t * t, zeta);
     let root = w.sqrt();
     let (g, h) = (HALF_RSQRT_PI / root, HALF_RSQRT_PI * root);
     [
-        g * (u_even - t * u_odd),
-        -h * (v_even - t * v_odd),
-        2.0 * g * (u_even + t * u_odd),
-        2.0 * h * (v_even + t * v_odd),
+        g * (u_even - u_odd),
+        -h * (v_even - v_odd),
+        2.0 * g * (u_even + u_odd),
+        2.0 * h * (v_even + v_odd),
     ]
 }
 
-/// Even and odd parts of the expansions with `u_k` and `v_k` at `1/(i xi)`, the odd ones without `1/i`.
+/// Even and odd parts at `zeta = i xi`, the odd ones without the factor 1/i.
 #[inline]
-pub(super) fn parts(xi: f64) -> [f64; 4] {
+pub(super) fn parts_turned(xi: f64) -> [f64; 4] {
     let t = 1.0 / xi;
-    let [u_even, u_odd, v_even, v_odd] = f64::polynomials(&SERIES[..terms(xi)], -t * t);
-    [u_even, t * u_odd, v_even, t * v_odd]
+    parts(t, -t * t, xi)
 }
 
 /// Ai, Ai', Bi, Bi' for `x = -y`, `y >= RADIUS`, given `xi = (2/3) y^(3/2)`, `sqrt y`, and sine and
 /// cosine of xi (DLMF 9.7.9 to 9.7.12; the phase xi - pi/4 is taken apart).
 #[inline]
 pub(super) fn oscillating(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 4] {
-    let [u_even, u_odd, v_even, v_odd] = parts(xi);
+    let [u_even, u_odd, v_even, v_odd] = parts_turned(xi);
     let root = w.sqrt();
     let (g, h) = (RSQRT_TAU / root, RSQRT_TAU * root);
     let (sum, difference) = (cos + sin, cos - sin);
@@ -220,17 +226,16 @@ pub(super) fn oscillating(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 4] {
 #[inline]
 pub(super) fn growing_values(zeta: f64, w: f64) -> [f64; 2] {
     let t = 1.0 / zeta;
-    let [even, odd] = f64::polynomials(&VALUES[..terms(zeta)], t * t);
+    let [even, odd] = parts_of_values(t, t * t, zeta);
     let g = HALF_RSQRT_PI / w.sqrt();
-    [g * (even - t * odd), 2.0 * g * (even + t * odd)]
+    [g * (even - odd), 2.0 * g * (even + odd)]
 }
 
 /// The first and the third of [`oscillating`].
 #[inline]
 pub(super) fn oscillating_values(xi: f64, w: f64, (sin, cos): (f64, f64)) -> [f64; 2] {
     let t = 1.0 / xi;
-    let [even, odd] = f64::polynomials(&VALUES[..terms(xi)], -t * t);
-    let odd = t * odd;
+    let [even, odd] = parts_of_values(t, -t * t, xi);
     let g = RSQRT_TAU / w.sqrt();
     let (sum, difference) = (cos + sin, cos - sin);
     [g * (sum * even - difference * odd), g * (difference * even + sum * odd)]

@@ -101,8 +101,8 @@ impl Local {
 /// for complex `x` and `a`. Over the whole line `I_0` is `2 pi Ai(x)` (DLMF 9.5.4). Overflow and
 /// underflow go to infinity and zero; [`incomplete_airy_extended`] keeps the exponent apart.
 ///
-/// Accuracy, relative to the modulus: 2e-15 away from zeros, for any size of the arguments.
-/// Cost: some 5 microseconds. Errors: NaN or infinity, and a phase `|a|^3/3 + |x a|` above 1e15.
+/// Accuracy, relative to the modulus: 2e-15 away from zeros (measured for `|x| <= 200`, `|a| <= 18`).
+/// Cost: some 4 microseconds. Errors: NaN or infinity, and a phase `|a|^3/3 + |x a|` above 1e15.
 ///
 /// ```
 /// use merging_saddles::{Complex64, special::airy::{airy_real, incomplete_airy}};

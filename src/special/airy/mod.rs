@@ -1,6 +1,18 @@
 //! Airy functions (DLMF chapter 9): Ai, Bi and their derivatives, for complex and real argument,
 //! plain, scaled, or with the exponent apart.
 //!
+//! | what | functions |
+//! | --- | --- |
+//! | all four | [`airy()`], [`airy_real`], [`airy_scaled`], [`airy_real_scaled`], [`airy_extended`] |
+//! | one alone | [`ai`], [`ai_real`], [`bi`], [`bi_real`] |
+//! | Ai at `z e^(+-2 pi i/3)` | [`rotated`], [`rotated_extended`] |
+//! | zeros | [`ai_zero`], [`ai_prime_zero`], [`bi_zero`], [`bi_prime_zero`], [`bi_complex_zero`], [`bi_prime_complex_zero`] |
+//! | modulus and phase | [`modulus_phase`] |
+//! | Scorer functions | [`scorer`](scorer()), [`scorer_real`], [`scorer_extended`] |
+//! | integrals of Ai | [`ai_integral`], [`ai_integral_real`], [`ai_integral_extended`] |
+//! | incomplete integrals | [`incomplete_airy`], [`incomplete_airy_extended`] |
+//! | over slices | each with `_slice` at its end |
+//!
 //! Method: everything is done in the upper half plane (below by conjugation) with the pair Ai and
 //! `B1 = Bi - i Ai = 2 e^(-i pi/6) Ai(z e^(-2 pi i/3))` (DLMF 9.2.11), whose combinations do not
 //! cancel. Inside `|z| < 8.8` one Taylor step from a lattice of nodes; outside the asymptotic
@@ -28,10 +40,10 @@ mod taylor;
 mod zeros;
 
 pub use self::incomplete::{IncompleteAiry, incomplete_airy, incomplete_airy_extended};
-pub use self::integral::{AiryIntegral, ai_integral, ai_integral_real};
+pub use self::integral::{AiryIntegral, ai_integral, ai_integral_extended, ai_integral_real};
 pub use self::modulus::{ModulusPhase, modulus_phase};
 pub use self::scaled::{airy_real_scaled, airy_scaled};
-pub use self::scorer::{Scorer, scorer, scorer_real};
+pub use self::scorer::{Scorer, scorer, scorer_extended, scorer_real};
 pub use self::single::{ai, ai_real, bi, bi_real};
 pub use self::slices::*;
 pub use self::zeros::{
@@ -87,7 +99,7 @@ impl<T> Airy<T> {
 /// The solutions of `u'' = z u` of DLMF 9.2. Overflow gives infinite components, underflow zeros
 /// or subnormal numbers; NaN gives NaN. Beyond `|z| = 1e12` see the module's page.
 ///
-/// Accuracy (natural scale, see the module's page): 1e-15 at most for `|z| <= 100`. The imaginary
+/// Accuracy (natural scale, see the module's page): 2e-15 at most for `|z| <= 100`, 7e-16 for 99 of 100 points. The imaginary
 /// part of Bi close to the positive real axis, where it is exponentially small beside the real
 /// part, is right on that scale only. Cost: some 0.15 microseconds.
 ///
@@ -132,7 +144,7 @@ pub fn airy_real(x: f64) -> Airy<f64> {
 
 /// Ai, Ai', Bi, Bi' with the exponent carried apart: nothing over- or underflows for `|z| <= 1e12`.
 ///
-/// Accuracy: 1e-15 on the natural scale for `|z| <= 1e6`, 1e-14 up to 1e12; the real and the imaginary part share
+/// Accuracy: 2e-15 on the natural scale for `|z| <= 1e6`, 1e-14 up to 1e12; the real and the imaginary part share
 /// the exponent. Cost: some 0.2 microseconds. Source: DLMF 9.2, 9.7.
 ///
 /// ```

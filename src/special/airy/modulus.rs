@@ -28,7 +28,7 @@ pub struct ModulusPhase {
 /// M, theta, N and phi of DLMF 9.8 for `x <= 0`.
 ///
 /// The phases are continuous, not reduced: `theta(a_k) = k pi`. Accuracy: 1e-15 relative for
-/// `-1e12 <= x`, 2e-15 beyond. Cost: some 0.1 microseconds. Errors: `x > 0`, NaN, infinity.
+/// `-1e12 <= x`, a unit in the last place more beyond (by count of roundings). Cost: some 0.1 microseconds. Errors: `x > 0`, NaN, infinity.
 ///
 /// ```
 /// use merging_saddles::special::airy::modulus_phase;
@@ -63,7 +63,7 @@ pub fn modulus_phase(x: f64) -> Result<ModulusPhase, Error> {
     } else {
         (2.0 / 3.0 * y * y.sqrt(), y.sqrt())
     };
-    let [u_even, u_odd, v_even, v_odd] = asymptotic::parts(xi);
+    let [u_even, u_odd, v_even, v_odd] = asymptotic::parts_turned(xi);
     let root = w.sqrt();
     Ok(ModulusPhase {
         modulus: asymptotic::RSQRT_PI / root * u_even.hypot(u_odd),

@@ -15,10 +15,11 @@
 //! (DLMF 9.12.25, 9.12.27), whose smallest term is below 1e-17. On the real axis the same in real
 //! arithmetic, from nodes of Gi on its positive and of Hi on its negative part.
 
-use super::pair::{Fate, NAN, Value, fate, in_range, pair};
+use super::pair::{Fate, NAN, Value, airy_any, fate, in_range, pair};
 use super::scorer_nodes::{NEGATIVE, NODES, POSITIVE, RADIUS, ROW};
 use super::taylor::{Point, inhomogeneous, nearest};
-use super::{airy_real, asymptotic};
+use super::{Airy, airy_real, asymptotic};
+use crate::Scaled;
 use num_complex::Complex64;
 use std::f64::consts::FRAC_1_PI;
 
@@ -135,42 +136,69 @@ pub(super) fn algebraic_real(x: f64) -> [f64; 2] {
 ///
 /// ```
 /// use merging_saddles::{Complex64, special::airy::scorer};
-/// // Hi(0) = 2/(3^(7/6) Gamma(2/3)) = 2 Gi(0): DLMF 9.12.6, 9.12.7 (Gamma(2/3): DLMF 5.17 table).
+/// // Hi(0) = 2/(3^(7/6) Gamma(2/3)) = 2 Gi(0): DLMF 9.12.6 (Gamma(2/3) from 18-digit arithmetic).
 /// let v = scorer(Complex64::new(0.0, 0.0));
 /// let exact = 2.0 / (3f64.powf(7.0 / 6.0) * 1.354117939426400417);
 /// assert!((v.hi.re - exact).abs() < 2e-16 && (2.0 * v.gi.re - exact).abs() < 2e-16);
 /// ```
 pub fn scorer(z: Complex64) -> Scorer<Complex64> {
+    scorer_any(z)
+}
+
+/// [`scorer`] with the exponents carried apart.
+///
+/// ```
+/// use merging_saddles::{Complex64, special::airy::{airy_extended, scorer_extended}};
+/// // Gi + Hi = Bi (DLMF 9.12.11), here of the size of e^600000: Hi is all of it.
+/// let z = Complex64::new(9000.0, 1000.0);
+/// let (s, v) = (scorer_extended(z), airy_extended(z));
+/// assert_eq!(s.hi.exponent, v.bi.exponent);
+/// assert!((s.hi.mantissa - v.bi.mantissa).norm() < 1e-15);
+/// // Gi = 1/(pi z) (1 + 2/z^3 + ...): DLMF 9.12.25.
+/// assert!((s.gi.to_complex() * z * std::f64::consts::PI - 1.0).norm() < 1e-11);
+/// ```
+pub fn scorer_extended(z: Complex64) -> Scorer<Scaled> {
+    scorer_any(z)
+}
+
+#[inline]
+fn scorer_any<T: Value>(z: Complex64) -> Scorer<T> {
     if z.im.is_sign_negative() {
-        return scorer_above(z.conj()).map(|v| v.conj());
+        return scorer_above(z.conj()).map(T::conjugate);
     }
     scorer_above(z)
 }
 
-fn scorer_above(z: Complex64) -> Scorer<Complex64> {
+fn scorer_above<T: Value>(z: Complex64) -> Scorer<T> {
+    let plain = |v: Complex64| T::assemble(v, 0);
     if z.re.is_nan() || z.im.is_nan() {
-        return Scorer { gi: NAN, gi_prime: NAN, hi: NAN, hi_prime: NAN };
+        return Scorer { gi: NAN, gi_prime: NAN, hi: NAN, hi_prime: NAN }.map(plain);
     }
     if z.im == 0.0 {
-        return scorer_real(z.re).map(Complex64::from);
+        let [v, v_prime] = algebraic_real(z.re).map(Complex64::from);
+        let airy: Airy<T> = airy_any(z);
+        let rest = (airy.bi + plain(-v), airy.bi_prime + plain(-v_prime));
+        let (v, v_prime) = (plain(v), plain(v_prime));
+        return if z.re >= 0.0 {
+            Scorer { gi: v, gi_prime: v_prime, hi: rest.0, hi_prime: rest.1 }
+        } else {
+            Scorer { gi: rest.0, gi_prime: rest.1, hi: v, hi_prime: v_prime }
+        };
     }
     if !in_range(z) {
-        return scorer_beyond(z);
+        return scorer_beyond(z).map(plain);
     }
     let [v, v_prime] = algebraic(z);
     let p = pair(z);
     let beyond = asymptotic::beyond_stokes(z);
     let parts = |a: Complex64, b: Complex64, v: Complex64| {
-        let falling = Complex64::assemble(Complex64::I * a, p.n);
-        let rising = Complex64::assemble(b, -p.n);
+        let falling = T::assemble(Complex64::I * a, p.n);
         if !beyond {
-            (falling - v, rising + v)
-        } else if p.beyond {
-            // Bi = i a 2^n + b 2^-n / 2 in the notation of the pair.
-            (falling + rising * 0.5 - v, v)
-        } else {
-            (falling + rising - v, v)
+            return (falling + plain(-v), T::assemble(b, -p.n) + plain(v));
         }
+        // Bi = i a 2^n + b 2^-n / 2 where the pair is split beyond the Stokes line.
+        let rising = T::assemble(if p.beyond { b * 0.5 } else { b }, -p.n);
+        (falling + rising + plain(-v), plain(v))
     };
     let (gi, hi) = parts(p.a, p.b, v);
     let (gi_prime, hi_prime) = parts(p.a_prime, p.b_prime, v_prime);

@@ -52,8 +52,10 @@ over_slices! {
     bi_slice, bi, Complex64 => Complex64, "", 0.614926627446000736, "Bi(0): DLMF 9.2.5.";
     bi_real_slice, bi_real, f64 => f64, "", 0.614926627446000736, "Bi(0): DLMF 9.2.5.";
     scorer_slice, scorer, Complex64 => Scorer<Complex64>, ".gi", 0.204975542482000245, "Gi(0) = Bi(0)/3: DLMF 9.12.6, 9.2.5.";
-    scorer_real_slice, scorer_real, f64 => Scorer<f64>, ".hi", 0.409951084964000491, "Hi(0) = 2 Bi(0)/3: DLMF 9.12.7, 9.2.5.";
+    scorer_extended_slice, scorer_extended, Complex64 => Scorer<Scaled>, ".hi.to_complex()", 0.409951084964000491, "Hi(0) = 2 Bi(0)/3: DLMF 9.12.6, 9.2.5.";
+    scorer_real_slice, scorer_real, f64 => Scorer<f64>, ".hi", 0.409951084964000491, "Hi(0) = 2 Bi(0)/3: DLMF 9.12.6, 9.2.5.";
     ai_integral_slice, ai_integral, Complex64 => AiryIntegral<Complex64>, ".to_infinity", 0.333333333333333333, "1/3: DLMF 9.10.11.";
+    ai_integral_extended_slice, ai_integral_extended, Complex64 => AiryIntegral<Scaled>, ".to_infinity.to_complex()", 0.333333333333333333, "1/3: DLMF 9.10.11.";
     ai_integral_real_slice, ai_integral_real, f64 => AiryIntegral<f64>, ".to_infinity", 0.333333333333333333, "1/3: DLMF 9.10.11.";
 }
 
