@@ -142,8 +142,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 continue;
             }
             let reference = reference_factor(k, summit.h);
-            let turn = k * f64::EPSILON * summit.h.norm() * sum.value.norm();
-            let error = sum.defect + sum.noise + left_out + turn;
+            let error = sum.defect + sum.noise + left_out;
             let scale = Scaled::exp(Complex64::new(reference.0.re, 0.0));
             return Ok(Estimate::new(
                 Scaled::exp(reference.0) * (sum.value * (1.0 + reference.1)),

@@ -124,9 +124,9 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
     fn panel(&self, from: Complex64, to: Complex64) -> Result<Panel, Error> {
         let missing = |what, at| Error::NotFinite { what, at };
         let panel = rule::panel(from, to, |z| {
-            let h = self.sampler.exponent(z).ok_or_else(|| missing("phase", z))? - self.h0;
+            let h = self.sampler.exponent(z).ok_or_else(|| missing("phase", z))?;
             let g = self.sampler.amplitude(z).ok_or_else(|| missing("amplitude", z))?;
-            Ok([g * (h * self.k).exp(), h])
+            Ok([g * relative_exp(self.k, h, self.h0), h])
         })?;
         let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale((from + to) * 0.5);
         let noise = 4.0 * f64::EPSILON + self.k * (2.0 * panel.grass).max(stated);
@@ -172,6 +172,27 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
     fn decay(&self, site: &Site) -> f64 {
         (self.k * (site.h - self.h0).re).exp()
     }
+}
+
+/// `exp(k (h - h0))` with the rounding of the difference and of the product made good: two
+/// contributions may be far apart in phase.
+fn relative_exp(k: f64, h: Complex64, h0: Complex64) -> Complex64 {
+    let (re, re_rest) = difference(h.re, h0.re);
+    let (im, im_rest) = difference(h.im, h0.im);
+    let product = Complex64::new(k * re, k * im);
+    let mut rest = Complex64::new(k * re_rest, k * im_rest);
+    if product.im.abs() > 1.0 {
+        rest.im += k.mul_add(im, -product.im);
+    }
+    // The rest is below k |h| 2.2e-16.
+    product.exp() * (1.0 + rest * (1.0 + rest * 0.5))
+}
+
+/// `a - b` rounded, and what rounding left (Knuth's two-sum).
+fn difference(a: f64, b: f64) -> (f64, f64) {
+    let d = a - b;
+    let back = d - a;
+    (d, (a - (d - back)) - (b + back))
 }
 
 fn total(panels: &[Panel], left_out: f64) -> Sum {
