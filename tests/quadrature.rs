@@ -555,6 +555,45 @@ fn fresnel_integral_from_a_flat_contour() {
     }
 }
 
+// The end's contribution e^(i k z^2)/(2 i k z) (DLMF 2.3.2) has turned 10^10 times against the
+// saddle's, sqrt(pi/k) e^(i pi/4)/2: no digit of either may be lost.
+#[test]
+fn contributions_far_apart_in_phase() {
+    let (k, end) = (1e3_f64, 1e4_f64);
+    let u = Integral::new(|z: C| (z * z, 2.0 * z), Contour::between([c(0.0, 0.0), c(end, 0.0)]))
+        .quadrature(k, 1e-12)
+        .unwrap();
+    // k end^2 = 10^11 is exact; the next term is smaller by 1/(2 k end^2).
+    let edge = C::from_polar(1.0 / (2.0 * k * end), k * end * end - 0.5 * PI);
+    let exact = C::from_polar(0.5 * (PI / k).sqrt(), 0.25 * PI) + edge;
+    assert!((u.value - exact).norm() < u.error && u.relative_error < 1e-9, "{u:?}");
+}
+
+// DLMF 10.9.1 with all ends on the real axis: Int_0^(2 pi m) e^(i k cos t) dt = 2 pi m J_0(k).
+#[test]
+fn many_saddles_of_equal_height() {
+    let f = |z: C| (z.cos(), -z.sin());
+    let value = |k: f64, turns: f64| {
+        Integral::new(f, Contour::between([c(0.0, 0.0), c(2.0 * PI * turns, 0.0)]))
+            .quadrature(k, 1e-11)
+            .unwrap()
+    };
+    // J_0(1) by its power series, DLMF 10.2.2.
+    let mut term = 1.0;
+    let mut sum = 0.0;
+    for n in 1..20 {
+        sum += term;
+        term *= -0.25 / f64::from(n * n);
+    }
+    let one = value(1.0, 1.0);
+    assert!((one.value - 2.0 * PI * sum).norm() < one.error, "{one:?}");
+    for k in [10.0, 1e4] {
+        let (single, many) = (value(k, 1.0), value(k, 50.0));
+        assert!((many.value - single.value * 50.0).norm() < many.error + 50.0 * single.error);
+        assert!(many.relative_error < 1e-8);
+    }
+}
+
 #[test]
 fn what_cannot_be_answered_is_refused() {
     let line = || Contour::through([c(-3.0, 0.0), c(3.0, 0.0)]);

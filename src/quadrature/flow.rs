@@ -14,7 +14,8 @@
 //! steepest descents: no oscillation along them. Only its cost depends on how well the descent
 //! went; its value does not, since every chord is in the class of the caller's contour.
 
-use super::terrain::{Flux, Profile, Sampler, Site};
+use super::residue::{Flux, Watch};
+use super::terrain::{Profile, Sampler, Site};
 use crate::Error;
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use num_complex::Complex64;
@@ -28,9 +29,6 @@ const EVALUATIONS: usize = 1_000_000;
 const MOVES: usize = 4_000_000;
 /// A chord is settled if its top is this near a saddle's height, in units of 1/k.
 const SETTLED: f64 = 0.25;
-/// The loop integral of the amplitude round a triangle counts as zero below this fraction of its
-/// shortest side times the largest modulus: a thin triangle across a branch cut shows, too.
-const LOOP: f64 = 3e-5;
 /// Steps of the tail that runs to infinity.
 const TAIL: usize = 2_000;
 
@@ -101,6 +99,7 @@ pub(super) struct Flowed {
 
 pub(super) struct Flow<'a, P, A> {
     sampler: &'a Sampler<'a, P, A>,
+    watch: Watch<'a, P, A>,
     k: f64,
     nodes: Vec<Node>,
     edges: Vec<Edge>,
@@ -118,11 +117,13 @@ fn exhausted() -> Error {
 }
 
 impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
-    /// Evaluates the vertices; nothing moves yet.
+    /// Evaluates the vertices; nothing moves yet. A strict flow sees weak singularities of the
+    /// amplitude, too.
     pub fn new(
         sampler: &'a Sampler<'a, P, A>,
         contour: &Contour,
         k: f64,
+        strict: bool,
     ) -> Result<Flow<'a, P, A>, Error> {
         let points = contour.points();
         let size = points.iter().map(|z| (z - points[0]).norm()).fold(0.0, f64::max);
@@ -150,7 +151,9 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
                 crest = crest.max(nodes[node].orbit[0].h.re);
             }
         }
-        let mut flow = Flow { sampler, k, nodes, edges, heap: BinaryHeap::new(), crest, ends };
+        let watch = Watch::new(sampler, strict, points[0], size);
+        let mut flow =
+            Flow { sampler, watch, k, nodes, edges, heap: BinaryHeap::new(), crest, ends };
         for e in 0..last {
             flow.push(e);
         }
@@ -330,7 +333,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         // Chords run from the left orbit to the right one.
         let left = self.edges[e].nodes[0] == node;
         let chord = |from, to| {
-            if left { self.sampler.flux(from, to) } else { self.sampler.flux(to, from) }
+            if left { self.watch.flux(from, to) } else { self.watch.flux(to, from) }
         };
         let before = match self.edges[e].flux {
             Some(flux) => flux,
@@ -344,16 +347,13 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         }
         let step = match steps[at] {
             Some(flux) => flux,
-            None => self.sampler.flux(old, new)?,
+            None => self.watch.flux(old, new)?,
         };
         steps[at] = Some(step);
         let turned = after.sum - before.sum;
         let sum = if left { step.sum + turned } else { step.sum - turned };
         let sides = [(new - old).norm(), (far - old).norm(), (far - new).norm()];
-        let peak = step.peak.max(before.peak).max(after.peak);
-        let shortest = sides.iter().fold(f64::INFINITY, |s, &x| x.min(s));
-        let rounding = 8.0 * f64::EPSILON * sides.iter().sum::<f64>();
-        (sum.norm() <= (LOOP * shortest + rounding) * peak).then_some(after)
+        self.watch.vanishes(sum, sides, [step, before, after]).then_some(after)
     }
 
     /// Halves a step of an orbit.
@@ -426,6 +426,27 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             remedy: "let the contour end inside a valley of |exp(i k f)| clear of branch cuts, or at \
                      a finite point",
         })
+    }
+
+    /// Whether the flowed contour is in the class of the given one, as far as residues of the
+    /// amplitude down to a fraction of its size can tell.
+    pub fn keeps_class(&self, contour: &Contour, fraction: f64) -> bool {
+        let mut image = Vec::with_capacity(4 * self.edges.len());
+        let (mut node, mut from) = (0, 0);
+        for _ in 0..=self.edges.len() {
+            let edge = self.nodes[node].right.map(|e| &self.edges[e]);
+            let orbit = &self.nodes[node].orbit;
+            // The last orbit is followed back up to its own vertex.
+            let to = edge.map_or(0, |e| e.at[0]);
+            if from <= to {
+                image.extend(orbit[from..=to].iter().map(|s| s.z));
+            } else {
+                image.extend(orbit[to..=from].iter().rev().map(|s| s.z));
+            }
+            let Some(edge) = edge else { break };
+            (node, from) = (edge.nodes[1], edge.at[1]);
+        }
+        self.watch.same_class(contour.points(), &image, fraction)
     }
 
     /// The flowed contour down to `depth/k` under its highest level.

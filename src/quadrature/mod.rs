@@ -7,6 +7,7 @@
 
 mod flow;
 mod panels;
+mod residue;
 mod rule;
 mod terrain;
 
@@ -76,7 +77,31 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         self.contour().check()?;
         let tolerance = tolerance.clamp(f64::EPSILON, 0.1);
         let sampler = Sampler::new(self);
-        let mut flow = Flow::new(&sampler, self.contour(), k)?;
+        // Residues that are smaller than this against the amplitude are not looked for.
+        let fraction = (1e-3 * tolerance).clamp(1e-12, 1e-6);
+        for strict in [false, true] {
+            let mut flow = Flow::new(&sampler, self.contour(), k, strict)?;
+            let estimate = self.flowed(&sampler, &mut flow, k, tolerance)?;
+            if flow.keeps_class(self.contour(), fraction) {
+                return Ok(estimate);
+            }
+        }
+        Err(Error::Undecided {
+            reason: "between the contour and the saddles the amplitude is not analytic, in a way \
+                     too weak to be located"
+                .to_owned(),
+            remedy: "lead the contour near the saddles yourself, or ask for fewer digits",
+        })
+    }
+
+    /// The integral on the flowed contour, followed as deep as it takes.
+    fn flowed(
+        &self,
+        sampler: &Sampler<'_, P, A>,
+        flow: &mut Flow<'_, P, A>,
+        k: f64,
+        tolerance: f64,
+    ) -> Result<Estimate, Error> {
         let mut depth = 6.0 - tolerance.ln();
         let mut last: Option<(f64, f64)> = None;
         for _ in 0..ROUNDS {
@@ -99,7 +124,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                     remedy: "take a smaller k, or move a constant out of the phase",
                 });
             }
-            let quadrature = Quadrature { sampler: &sampler, k, h0: summit.h, floor: flowed.floor };
+            let quadrature = Quadrature { sampler, k, h0: summit.h, floor: flowed.floor };
             let sum = quadrature.over(&flowed.pieces, tolerance)?;
             let left_out = sum.left_out
                 + flowed.sunk.iter().map(|c| quadrature.left_out(c)).sum::<f64>()
@@ -117,8 +142,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 continue;
             }
             let reference = reference_factor(k, summit.h);
-            let turn = k * f64::EPSILON * summit.h.norm() * sum.value.norm();
-            let error = sum.defect + sum.noise + left_out + turn;
+            let error = sum.defect + sum.noise + left_out;
             let scale = Scaled::exp(Complex64::new(reference.0.re, 0.0));
             return Ok(Estimate::new(
                 Scaled::exp(reference.0) * (sum.value * (1.0 + reference.1)),

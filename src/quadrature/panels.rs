@@ -5,14 +5,16 @@
 //! panels are halved until the sum is small enough. The last coefficients of the exponent, which
 //! varies little on a panel, measure the rounding noise of the caller's phase.
 
-use super::rule::ROWS;
+use super::rule;
 use super::terrain::{Profile, Sampler, Site};
 use crate::Error;
 use crate::integral::{Amplitude, Phase};
 use num_complex::Complex64;
 
 /// Panels after which the quadrature is given up.
-const PANELS: usize = 4_000;
+const PANELS: usize = 40_000;
+/// Estimated errors of the rule below this multiple of the rounding noise may be noise themselves.
+const NOISE: f64 = 4.0;
 /// The greatest change of `k h` over a new panel.
 const VARIATION: f64 = 10.0;
 
@@ -64,7 +66,7 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
             let worst = panels
                 .iter()
                 .enumerate()
-                .filter(|(_, p)| p.defect > p.noise)
+                .filter(|(_, p)| p.defect > NOISE * p.noise)
                 .max_by(|a, b| a.1.defect.total_cmp(&b.1.defect));
             let Some((i, _)) = worst.filter(|_| sum.defect > 0.25 * goal) else {
                 return Ok(sum);
@@ -81,7 +83,7 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
             let bar = 0.1 * panels[i].defect;
             for j in 0..panels.len() {
                 let Panel { from, to, defect, noise, .. } = panels[j];
-                if defect >= bar && defect > noise {
+                if defect >= bar && defect > NOISE * noise {
                     let mid = (from + to) * 0.5;
                     panels[j] = self.panel(from, mid)?;
                     panels.push(self.panel(mid, to)?);
@@ -120,45 +122,22 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
     }
 
     fn panel(&self, from: Complex64, to: Complex64) -> Result<Panel, Error> {
-        let (mid, half) = ((from + to) * 0.5, (to - from) * 0.5);
-        let (mut value, mut size) = (ZERO, 0.0_f64);
-        let (mut modes, mut grass) = ([ZERO; 6], [ZERO; 6]);
-        for row in &ROWS {
-            for sign in [1.0, -1.0] {
-                let z = mid + half * (sign * row.node);
-                let h =
-                    self.sampler.exponent(z).ok_or(Error::NotFinite { what: "phase", at: z })?
-                        - self.h0;
-                let g = self
-                    .sampler
-                    .amplitude(z)
-                    .ok_or(Error::NotFinite { what: "amplitude", at: z })?;
-                let integrand = g * (h * self.k).exp();
-                value += integrand * row.weight;
-                size += integrand.norm() * row.weight;
-                for (j, &projection) in row.modes.iter().enumerate() {
-                    let projection = if j % 2 == 1 { sign * projection } else { projection };
-                    modes[j] += integrand * projection;
-                    grass[j] += h * projection;
-                }
-            }
-        }
-        let length = half.norm();
-        // From degree 7 to 13 the modes fall by a factor that holds on, or betters, to degree 32
-        // where the rule's error sits: its power 20/6 in theory, 2.5 with reserve.
-        let early = modes[0].norm().max(modes[1].norm());
-        let late = modes[2].norm().max(modes[3].norm());
-        let falling = if late < early { (late / early).powf(2.5) } else { 1.0 };
-        let defect = 4.0 * length * late * falling;
-        // Noise is flat in the degree: what still falls off is not noise.
-        let early = (grass[2].norm_sqr() + grass[3].norm_sqr()).sqrt();
-        let late = (grass[4].norm_sqr() + grass[5].norm_sqr()).sqrt();
-        let grass =
-            if late < 0.1 * early { late * (late / early).powi(2) } else { late.max(early) };
-        let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale(mid);
-        let noise = 4.0 * f64::EPSILON + self.k * (2.0 * grass).max(stated);
-        let size = size * length;
-        Ok(Panel { from, to, value: value * half, size, defect, noise: noise * size })
+        let missing = |what, at| Error::NotFinite { what, at };
+        let panel = rule::panel(from, to, |z| {
+            let h = self.sampler.exponent(z).ok_or_else(|| missing("phase", z))?;
+            let g = self.sampler.amplitude(z).ok_or_else(|| missing("amplitude", z))?;
+            Ok([g * relative_exp(self.k, h, self.h0), h])
+        })?;
+        let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale((from + to) * 0.5);
+        let noise = 4.0 * f64::EPSILON + self.k * (2.0 * panel.grass).max(stated);
+        Ok(Panel {
+            from,
+            to,
+            value: panel.value,
+            size: panel.size,
+            defect: panel.defect,
+            noise: noise * panel.size,
+        })
     }
 
     /// A bound on what was left out along a chord under the floor.
@@ -193,6 +172,27 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
     fn decay(&self, site: &Site) -> f64 {
         (self.k * (site.h - self.h0).re).exp()
     }
+}
+
+/// `exp(k (h - h0))` with the rounding of the difference and of the product made good: two
+/// contributions may be far apart in phase.
+fn relative_exp(k: f64, h: Complex64, h0: Complex64) -> Complex64 {
+    let (re, re_rest) = difference(h.re, h0.re);
+    let (im, im_rest) = difference(h.im, h0.im);
+    let product = Complex64::new(k * re, k * im);
+    let mut rest = Complex64::new(k * re_rest, k * im_rest);
+    if product.im.abs() > 1.0 {
+        rest.im += k.mul_add(im, -product.im);
+    }
+    // The rest is below k |h| 2.2e-16.
+    product.exp() * (1.0 + rest * (1.0 + rest * 0.5))
+}
+
+/// `a - b` rounded, and what rounding left (Knuth's two-sum).
+fn difference(a: f64, b: f64) -> (f64, f64) {
+    let d = a - b;
+    let back = d - a;
+    (d, (a - (d - back)) - (b + back))
 }
 
 fn total(panels: &[Panel], left_out: f64) -> Sum {

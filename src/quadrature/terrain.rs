@@ -3,8 +3,7 @@
 //! A chord is trusted ("resolved") when the change of `h` along it agrees with the Euler-Maclaurin
 //! trapezoidal rule for `h'` with its first correction (DLMF 2.10.1) to 1 %. Between resolved
 //! chords nothing of `h` can hide: a pole, a branch cut or a jump of the caller's closure spoils
-//! the agreement. For the amplitude the loop integral round every swept triangle is formed by
-//! three-point Gauss rules; it must vanish (Cauchy's theorem).
+//! the agreement.
 
 use crate::integral::{Amplitude, Integral, Phase};
 use num_complex::Complex64;
@@ -41,9 +40,6 @@ pub(super) struct Sampler<'a, P, A> {
 fn finite(z: Complex64) -> bool {
     z.re.is_finite() && z.im.is_finite()
 }
-
-/// How far a value of the amplitude may be from the cubic through its neighbours on a chord.
-const SMOOTH: f64 = 0.05;
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
 
@@ -82,30 +78,6 @@ impl<'a, P: Phase, A: Amplitude> Sampler<'a, P, A> {
         self.count.set(self.count.get() + 1);
         self.integral.phase().noise_scale(z)
     }
-
-    /// The integral of the amplitude alone along a chord and the largest modulus met; `None` where
-    /// five values do not describe the amplitude: near a singularity, or across a jump.
-    pub fn flux(&self, from: Complex64, to: Complex64) -> Option<Flux> {
-        // Nodes +-sqrt(3/5) and 0, weights 5/9 and 8/9 (Gauss-Legendre, n = 3; DLMF 3.5.19).
-        const NODE: f64 = 0.774_596_669_241_483_4;
-        let (mid, half) = ((from + to) * 0.5, (to - from) * 0.5);
-        let ends = (self.amplitude(from)?, self.amplitude(to)?);
-        let inner = (self.amplitude(mid - half * NODE)?, self.amplitude(mid + half * NODE)?);
-        let centre = self.amplitude(mid)?;
-        let peak =
-            [ends.0, ends.1, inner.0, inner.1, centre].iter().fold(0.0, |p, g| g.norm().max(p));
-        // The centre by the cubic through the other four.
-        let cubic = (inner.0 + inner.1) * 1.25 - (ends.0 + ends.1) * 0.75;
-        let sum = half * ((inner.0 + inner.1) * (5.0 / 9.0) + centre * (8.0 / 9.0));
-        ((cubic - centre).norm() <= SMOOTH * peak).then_some(Flux { sum, peak })
-    }
-}
-
-/// The integral of the amplitude along a chord, and its largest modulus there.
-#[derive(Clone, Copy, Debug)]
-pub(super) struct Flux {
-    pub sum: Complex64,
-    pub peak: f64,
 }
 
 /// What the height `Re h` does along a straight chord, from data at its two ends.
