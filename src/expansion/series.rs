@@ -10,7 +10,7 @@ use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
-use crate::ring::{NormalForm, Orders, Start};
+use crate::ring::{KEPT, NormalForm, Orders, Start};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
 
@@ -24,10 +24,14 @@ const FILLING: f64 = 0.9;
 const WORST_TAIL: f64 = 1e-5;
 /// No ring is enlarged once `R^(K+2)` is beyond this: for `k >= 1` nothing is gained there, and the
 /// rounding error of `A` grows with it.
-const LARGEST: f64 = 150.0;
+const LARGEST: f64 = 40.0;
 /// The topology looks at the cluster on a ring with `R^(K+2)` no larger than this, if the saddles
 /// allow: the contour's descents must leave it.
 const LOW: f64 = 6.0;
+/// Rings inside the first one.
+const INWARDS: usize = 3;
+/// A larger ring is not tried where the map's tail is bound to be beyond this.
+const HOPELESS: f64 = 1e-2;
 /// The first ring is made smaller until its tails are below this.
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
@@ -151,11 +155,23 @@ impl Series {
         let height = |form: &NormalForm| form.radius().powi(degree);
         let low =
             (LOW / height(&first.form)).powf(1.0 / f64::from(degree)).max(first.filling / 0.8);
-        let inner = if low < 1.0 { first.form.resized(phase, low)? } else { first.form.clone() };
-        let mut trials = vec![first];
+        let inner = if low < 1.0 { first.form.shrunk(low) } else { first.form.clone() };
+        // Inwards the map is known already.
+        let mut trials = Vec::new();
+        let mut factor = 1.0;
+        for _ in 0..INWARDS {
+            factor /= RATIO;
+            if first.filling / factor > FILLING {
+                break;
+            }
+            trials.insert(0, Trial::new(first.form.shrunk(factor), given)?);
+        }
+        trials.push(first);
         for _ in 0..TRIED {
             let last = &trials[trials.len() - 1];
-            if height(&last.form) > LARGEST {
+            // The last Taylor coefficients grow at least like this.
+            let expected = last.form.tail() * RATIO.powi(KEPT as i32 * 3 / 4);
+            if height(&last.form) > LARGEST || expected > HOPELESS {
                 break;
             }
             let Some(next) =

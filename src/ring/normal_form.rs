@@ -86,6 +86,19 @@ impl NormalForm {
 
     /// The same form on a ring `factor` times as large. None if Newton does not settle there.
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<NormalForm> {
+        let mut form = self.rescaled(factor);
+        form.evaluations = 0;
+        form.settle(phase, 7).then_some(form)
+    }
+
+    /// The same form on a smaller ring: nothing new has to be found.
+    pub(crate) fn shrunk(&self, factor: f64) -> NormalForm {
+        let mut form = self.rescaled(factor.min(1.0));
+        form.measure_tail();
+        form
+    }
+
+    fn rescaled(&self, factor: f64) -> NormalForm {
         let mut form = self.clone();
         form.radius *= factor;
         let mut power = 1.0;
@@ -96,8 +109,13 @@ impl NormalForm {
             }
             power *= factor;
         }
-        form.evaluations = 0;
-        form.settle(phase, 7).then_some(form)
+        form
+    }
+
+    fn measure_tail(&mut self) {
+        let mut full = [ZERO; POINTS];
+        full[..KEPT].copy_from_slice(&self.map);
+        self.tail = tail(&full, 1);
     }
 
     /// Newton's method with Weierstrass division, at most `limit` steps.
@@ -149,9 +167,7 @@ impl NormalForm {
             }
             // Settled: at the rounding level, or small and no longer falling.
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
-                let mut full = [ZERO; POINTS];
-                full[..KEPT].copy_from_slice(&self.map);
-                self.tail = tail(&full, 1);
+                self.measure_tail();
                 return true;
             }
             last_step = step;
