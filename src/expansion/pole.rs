@@ -112,6 +112,8 @@ pub(crate) struct MappedPole {
     pub simple: Complex64,
     pub double: Complex64,
     noise: (f64, f64),
+    /// Rounding error of `u`.
+    blur: f64,
     ridge: usize,
 }
 
@@ -137,6 +139,7 @@ impl MappedPole {
             simple: pole.simple,
             double: pole.double / slope,
             noise: (pole.noise.0, pole.noise.1 / slope.norm()),
+            blur: 2.0 * f64::EPSILON * (v.norm() * form.radius() + pole.z.norm() / slope.norm()),
             ridge,
         })
     }
@@ -192,7 +195,7 @@ impl MappedPole {
             * (self.simple.norm() * size
                 + self.double.norm() * (k * slope.norm() * size + size_at_pole));
         // The pole's place in u is known to rounding and to the residual of the form.
-        let shift = 4.0 * f64::EPSILON * self.u.norm() + residual / slope.norm().max(k.powf(-0.5));
+        let shift = 6.0 * self.blur + 2.0 * residual / slope.norm().max(k.powf(-0.5));
         let third = second.norm() * (2.0 / self.u.norm()).min(k * slope.norm()).max(k.sqrt());
         let place = shift * (self.simple.norm() * second.norm() + self.double.norm() * third);
         let measured = self.noise.0 * p.norm() + self.noise.1 * second.norm();

@@ -28,10 +28,8 @@ const LARGEST: f64 = 40.0;
 /// The topology looks at the cluster on a ring with `R^(K+2)` no larger than this, if the saddles
 /// allow: the contour's descents must leave it.
 const LOW: f64 = 6.0;
-/// Rings inside the first one.
-const INWARDS: usize = 3;
-/// A larger ring is not tried where the map's tail is bound to be beyond this.
-const HOPELESS: f64 = 1e-2;
+/// With tails below this nothing singular lies inside a ring.
+const SOUND: f64 = 1e-9;
 /// The first ring is made smaller until its tails are below this.
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
@@ -63,6 +61,16 @@ impl Trial {
         let filling =
             form.saddles_on_disc()[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
         Some(Trial { form, start, filling, split, poles })
+    }
+
+    fn shrunk(&self, factor: f64) -> Trial {
+        Trial {
+            form: self.form.shrunk(factor),
+            start: self.start.shrunk(factor),
+            filling: self.filling / factor,
+            split: self.split,
+            poles: self.poles.clone(),
+        }
     }
 
     fn tail(&self) -> f64 {
@@ -156,22 +164,12 @@ impl Series {
         let low =
             (LOW / height(&first.form)).powf(1.0 / f64::from(degree)).max(first.filling / 0.8);
         let inner = if low < 1.0 { first.form.shrunk(low) } else { first.form.clone() };
-        // Inwards the map is known already.
-        let mut trials = Vec::new();
-        let mut factor = 1.0;
-        for _ in 0..INWARDS {
-            factor /= RATIO;
-            if first.filling / factor > FILLING {
-                break;
-            }
-            trials.insert(0, Trial::new(first.form.shrunk(factor), given)?);
-        }
-        trials.push(first);
+        let mut trials = vec![first];
         for _ in 0..TRIED {
             let last = &trials[trials.len() - 1];
             // The last Taylor coefficients grow at least like this.
             let expected = last.form.tail() * RATIO.powi(KEPT as i32 * 3 / 4);
-            if height(&last.form) > LARGEST || expected > HOPELESS {
+            if height(&last.form) > LARGEST || expected > WORST_TAIL {
                 break;
             }
             let Some(next) =
@@ -187,6 +185,17 @@ impl Series {
             trials.push(next);
         }
         let largest = trials.last()?.form.radius();
+        // Inwards everything is known already, unless something singular lies inside.
+        while trials[0].form.radius() / RATIO >= SMALLEST * largest
+            && trials[0].filling * RATIO < FILLING
+        {
+            let inwards = if trials[0].tail() < SOUND {
+                trials[0].shrunk(1.0 / RATIO)
+            } else {
+                Trial::new(trials[0].form.shrunk(1.0 / RATIO), given)?
+            };
+            trials.insert(0, inwards);
+        }
         let kept = |ring: &Trial| {
             ring.filling < FILLING
                 && ring.form.radius() >= SMALLEST * largest

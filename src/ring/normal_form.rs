@@ -63,6 +63,13 @@ impl NormalForm {
         let mut map = [ZERO; KEPT];
         map[0] = centre;
         map[1] = turn * reach;
+        // One or two terms of the reversion of a_D V^D + a_(D+1) V^(D+1) + .. = R^D v^D, V = v + ..
+        let next = values[degree + 1] / lead * turn;
+        map[2] = -map[1] * next / degree as f64;
+        if saddles == 1 {
+            let after = values[4] / lead * turn * turn;
+            map[3] = map[1] * (next * next * 0.625 - after * 0.5);
+        }
         let mut unfolding = [ZERO; MAX_SADDLES];
         let mut power = Complex64::new(1.0, 0.0);
         for (x, a) in unfolding.iter_mut().zip(&values).take(saddles.max(1)) {

@@ -89,6 +89,17 @@ impl Start {
         Some(Start { coefficients: taylor(&values), size: size.sqrt(), tail: tail(&values, 0) })
     }
 
+    /// The same on a ring smaller by `factor`: nothing new has to be sampled.
+    pub(crate) fn shrunk(&self, factor: f64) -> Start {
+        let mut full = [ZERO; POINTS];
+        let mut power = 1.0;
+        for (scaled, c) in full.iter_mut().zip(&self.coefficients) {
+            *scaled = c * power;
+            power *= factor;
+        }
+        Start { coefficients: taylor(&full), size: self.size, tail: tail(&full, 0) }
+    }
+
     /// How far the coefficients have not decayed; near 1 with a pole inside the ring.
     pub fn tail(&self) -> f64 {
         self.tail
