@@ -94,8 +94,10 @@ pub(crate) fn trace(
         let correction = (target - value) / ahead;
         // The second derivative by the secant: one evaluation a step.
         let secant = (ahead - slope) / step;
-        let good =
-            (correction * secant / ahead).norm() < 0.15 && correction.norm() < 0.3 * w.norm();
+        // The slope may not change much either: a long step can land on another path.
+        let good = (correction * secant / ahead).norm() < 0.15
+            && correction.norm() < 0.3 * w.norm()
+            && (ahead / slope).ln().norm() < 1.0;
         if good {
             z += step + correction;
             t += dt;
