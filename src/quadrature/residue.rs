@@ -18,8 +18,11 @@ const SMOOTH: f64 = 0.05;
 /// Panels of the loop integral over the whole contour.
 const PANELS: usize = 40_000;
 
-/// Relative errors of panels that are put up with: near a pole the rounding of `z` makes noise.
-const NOISE: f64 = 1e-11;
+/// Relative errors of a panel that are put up with: near a pole, at a distance of about the panel's
+/// length, the rounding of `z` makes noise.
+fn noise(from: Complex64, to: Complex64) -> f64 {
+    (64.0 * f64::EPSILON * from.norm().max(to.norm()) / (to - from).norm()).max(1e-11)
+}
 
 /// The integral of the amplitude along a chord, and its largest modulus there.
 #[derive(Clone, Copy, Debug)]
@@ -68,7 +71,7 @@ impl<'a, P: Phase, A: Amplitude> Watch<'a, P, A> {
             let zero = Complex64::new(0.0, 0.0);
             let panel =
                 rule::panel(from, to, |z| self.weighted(z).map(|g| [g, zero]).ok_or(())).ok()?;
-            let good = panel.defect <= NOISE * panel.size;
+            let good = panel.defect <= noise(from, to) * panel.size;
             return good.then_some(Flux {
                 sum: panel.value,
                 peak: panel.peak,
@@ -131,7 +134,7 @@ impl<'a, P: Phase, A: Amplitude> Watch<'a, P, A> {
         let mut total = Total { sum: zero, size: 0.0, error: 0.0 };
         for _ in 0..PANELS {
             let Some((from, to, part)) = stack.pop() else { return Some(total) };
-            if part.defect <= (0.01 * fraction * rough).max(NOISE * part.size) {
+            if part.defect <= (0.01 * fraction * rough).max(noise(from, to) * part.size) {
                 total.sum += part.value;
                 total.size += part.size;
                 total.error += part.defect;
