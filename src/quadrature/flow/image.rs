@@ -47,21 +47,8 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
     /// Whether the flowed contour is in the class of the given one, as far as residues of the
     /// amplitude down to a fraction of its size can tell.
     pub fn keeps_class(&self, contour: &Contour, fraction: f64) -> bool {
-        let mut image = Vec::with_capacity(4 * self.edges.len());
-        let (mut node, mut from) = (0, 0);
-        for _ in 0..=self.edges.len() {
-            let edge = self.nodes[node].right.map(|e| &self.edges[e]);
-            let orbit = &self.nodes[node].orbit;
-            // The last orbit is followed back up to its own vertex.
-            let to = edge.map_or(0, |e| e.at[0]);
-            if from <= to {
-                image.extend(orbit[from..=to].iter().map(|s| s.z));
-            } else {
-                image.extend(orbit[to..=from].iter().rev().map(|s| s.z));
-            }
-            let Some(edge) = edge else { break };
-            (node, from) = (edge.nodes[1], edge.at[1]);
-        }
+        // The first and the last orbit are followed back up to their own vertices.
+        let image = self.way(0, 0, self.last, 0);
         self.watch.same_class(contour.points(), &image, fraction)
     }
 

@@ -15,6 +15,7 @@
 //! went; its value does not, since every chord is in the class of the caller's contour.
 
 mod image;
+mod shortcut;
 
 use super::residue::{Flux, Watch};
 use super::terrain::{Profile, Sampler, Site};
@@ -29,6 +30,8 @@ use std::collections::BinaryHeap;
 const EVALUATIONS: usize = 1_000_000;
 /// Steps of edges, most of which cost no evaluation.
 const MOVES: usize = 4_000_000;
+/// Shortcuts across detours.
+const SHORTCUTS: usize = 32;
 /// A chord is settled if its top is this near a saddle's height, in units of 1/k.
 const SETTLED: f64 = 0.25;
 
@@ -49,6 +52,8 @@ enum State {
     Open,
     Settled,
     Sunk,
+    /// No longer part of the contour.
+    Gone,
 }
 
 struct Edge {
@@ -95,6 +100,8 @@ pub(super) struct Flow<'a, P, A> {
     /// The highest level, `Re h`, that the contour is known to keep.
     crest: f64,
     ends: [Termination; 2],
+    /// The node of the last vertex.
+    last: usize,
 }
 
 const REMEDY: &str = "give a contour nearer to the saddles and away from singularities, with its \
@@ -133,15 +140,19 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             }
         }
         let ends = [contour.start(), contour.end()];
-        let mut crest = f64::NEG_INFINITY;
-        for (end, node) in ends.iter().zip([0, last]) {
-            if *end == Termination::Finite {
-                crest = crest.max(nodes[node].orbit[0].h.re);
-            }
-        }
         let watch = Watch::new(sampler, strict, points[0], size);
-        let mut flow =
-            Flow { sampler, watch, k, nodes, edges, heap: BinaryHeap::new(), crest, ends };
+        let mut flow = Flow {
+            sampler,
+            watch,
+            k,
+            nodes,
+            edges,
+            heap: BinaryHeap::new(),
+            crest: f64::NEG_INFINITY,
+            ends,
+            last,
+        };
+        flow.crest = flow.lowest_crest();
         for e in 0..last {
             flow.push(e);
         }
@@ -160,8 +171,20 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         self.heap.push(Rank(rank, e));
     }
 
-    /// Lowers every edge until it is settled or lies `depth/k` below the highest settled one.
+    /// Flows until every edge is settled or lies `depth/k` below the highest settled one, and no
+    /// ridge is crossed forth and back.
     pub fn relax(&mut self, depth: f64) -> Result<(), Error> {
+        for _ in 0..SHORTCUTS {
+            self.sink(depth)?;
+            if !self.shortcut() {
+                break;
+            }
+        }
+        Ok(())
+    }
+
+    /// Lowers every edge until it is settled or lies `depth/k` below the highest settled one.
+    fn sink(&mut self, depth: f64) -> Result<(), Error> {
         for e in 0..self.edges.len() {
             if self.edges[e].state == State::Sunk {
                 self.edges[e].state = State::Open;
