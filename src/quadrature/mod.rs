@@ -57,8 +57,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// Some 300 to 1000 evaluations of the phase, flat in `k` (20 to 100 microseconds for
     /// elementary functions); up to 10,000 where the contour hangs on a pole, and some hundred per
     /// unit of `k` where it must lean on a branch cut: turn the cuts of the closures away from the
-    /// descent. A contour that crosses the same ridge forth and back keeps both crossings, which
-    /// cancel: the figure says how many digits that takes.
+    /// descent. Detours over a ridge into a valley and back are cut off, as far as they are found; if
+    /// one is left, its crossings cancel and the figure says how many digits that takes.
     ///
     /// A pole of `g` is seen if its residue is above some 1e-3 `tolerance` (and 1e-11) times `g`
     /// times the size of the region that the contour sweeps; weaker ones may be passed unnoticed.

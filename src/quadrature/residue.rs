@@ -116,10 +116,14 @@ impl<'a, P: Phase, A: Amplitude> Watch<'a, P, A> {
         self.equal(there, back, fraction, &|z| self.weighted(z))
     }
 
-    /// The same for amplitude and phase, for a loop that no triangles have filled.
+    /// The same for amplitude and phase, for a loop that no triangles have filled. The weight is
+    /// that of the loop, however small.
     pub fn free(&self, there: &[Complex64], back: &[Complex64], fraction: f64) -> bool {
-        let slope = |z| self.sampler.site(z).map(|s| s.slope * self.weight(z));
-        self.equal(there, back, fraction, &slope) && self.same_class(there, back, fraction)
+        let size = there.iter().map(|z| (z - there[0]).norm()).fold(0.0, f64::max);
+        let local = Watch::new(self.sampler, self.strict, there[0], size);
+        let slope = |z| self.sampler.site(z).map(|s| s.slope * local.weight(z));
+        local.equal(there, back, fraction, &|z| local.weighted(z))
+            && local.equal(there, back, fraction, &slope)
     }
 
     fn equal(

@@ -1,7 +1,7 @@
 //! Detours: a contour that crosses a ridge into a valley and comes back over the same ridge.
 //!
 //! Its two crossings cancel, but no descent undoes them. Where two settled crossings lie at one
-//! saddle with only sunk edges between them, the chord between their outer ends replaces the whole
+//! saddle with only sunk edges between them, a chord between their outer flanks replaces the whole
 //! detour and descends on the near side, provided that the loop holds no singularity of the phase
 //! or the amplitude.
 
@@ -27,32 +27,51 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
             .split(|&e| self.edges[e].state != State::Settled)
             .filter(|run| !run.is_empty())
             .collect();
-        for pair in runs.windows(2) {
-            let (first, last) = (pair[0][0], pair[1][pair[1].len() - 1]);
-            if self.detour(pair[0], pair[1]) {
-                self.cut_off(first, last);
-                return true;
-            }
+        // One run may turn back by itself, two may cancel each other.
+        let singles = runs.iter().map(|run| (*run, *run));
+        let pairs = runs.windows(2).map(|pair| (pair[0], pair[1]));
+        let found = singles.chain(pairs).find_map(|(out, back)| {
+            let at = self.detour(out, back)?;
+            Some((out[0], back[back.len() - 1], at))
+        });
+        if let Some((first, last, at)) = found {
+            self.cut_off(first, last, at);
         }
-        false
+        found.is_some()
     }
 
-    /// Whether the way over two crossings may be replaced by the chord between its ends, with gain.
-    fn detour(&self, out: &[usize], back: &[usize]) -> bool {
-        let (Some(one), Some(two)) = (self.summit(out), self.summit(back)) else { return false };
-        let (from, to) = (self.ends_of(out[0]).0, self.ends_of(back[back.len() - 1]).1);
-        let (across, direct) = (Profile::of(&one, &two, self.k), Profile::of(&from, &to, self.k));
+    /// If the way over two crossings may be replaced by a chord between its flanks, with gain:
+    /// where on the two outer orbits that chord begins and ends.
+    fn detour(&self, out: &[usize], back: &[usize]) -> Option<[usize; 2]> {
+        let (one, two) = (self.summit(out)?, self.summit(back)?);
+        let across = Profile::of(&one, &two, self.k);
         let same_saddle = across.resolved
             && self.k * (one.h.re - two.h.re).abs() < 1.0
             && self.k * (one.h.im - two.h.im).abs() < 2.0;
-        let gain = self.k * (one.h.re.min(two.h.re) - direct.top - direct.margin);
-        if !same_saddle || !direct.resolved || gain < 1.0 {
-            return false;
+        let (first, last) = (&self.edges[out[0]], &self.edges[back[back.len() - 1]]);
+        let (start, end) = (first.nodes[0], last.nodes[1]);
+        if !same_saddle || start == end {
+            return None;
         }
-        let (start, end) = (self.edges[out[0]].nodes[0], self.edges[back[back.len() - 1]].nodes[1]);
-        let way =
-            self.way(start, self.edges[out[0]].at[0], end, self.edges[back[back.len() - 1]].at[1]);
-        start != end && self.watch.free(&way, &[from.z, to.z], FRACTION)
+        let low = one.h.re.min(two.h.re);
+        let before = self.nodes[start].left.map(|e| self.edges[e].at[1]);
+        let after = self.nodes[end].right.map(|e| self.edges[e].at[0]);
+        let at =
+            [self.flank(start, first.at[0], before, low), self.flank(end, last.at[1], after, low)];
+        let (from, to) = (self.nodes[start].orbit[at[0]], self.nodes[end].orbit[at[1]]);
+        let direct = Profile::of(&from, &to, self.k);
+        let gain = self.k * (low - direct.top - direct.margin);
+        let way = || self.way(start, at[0], end, at[1]);
+        (direct.resolved && gain > 1.0 && self.watch.free(&way(), &[from.z, to.z], FRACTION))
+            .then_some(at)
+    }
+
+    /// How far down its orbit a node's flank may be used: to some units of 1/k below a level, as
+    /// long as the contour runs there.
+    fn flank(&self, node: usize, from: usize, to: Option<usize>, level: f64) -> usize {
+        let orbit = &self.nodes[node].orbit;
+        let limit = to.unwrap_or(orbit.len() - 1).max(from);
+        (from..limit).find(|&i| self.k * (level - orbit[i].h.re) > 4.0).unwrap_or(limit)
     }
 
     /// The highest end of a run of edges.
@@ -61,9 +80,8 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
         ends.max_by(|a, b| a.h.re.total_cmp(&b.h.re))
     }
 
-    fn cut_off(&mut self, first: usize, last: usize) {
+    fn cut_off(&mut self, first: usize, last: usize, at: [usize; 2]) {
         let (start, end) = (self.edges[first].nodes[0], self.edges[last].nodes[1]);
-        let at = [self.edges[first].at[0], self.edges[last].at[1]];
         let mut node = start;
         while let Some(e) = self.nodes[node].right.filter(|_| node != end) {
             self.edges[e].state = State::Gone;
