@@ -50,9 +50,9 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// # Accuracy and cost
     ///
     /// Relative error 5e-16 (median), growing to `k` times the rounding error of `f`. The error
-    /// figure was above the error at all of some 5,000 table values (cuspoids between all valleys,
+    /// figure was above the error at all of some 4,800 table values (cuspoids between all valleys,
     /// Airy, Faddeeva and Bessel functions, random polynomial phases; k from 1e-3 to 1e7,
-    /// tolerances from 1e-2 to 1e-13) and at the median 3 to 60 times the error.
+    /// tolerances from 1e-2 to 1e-13) and at the median 3 to 80 times the error.
     ///
     /// Some 300 to 1000 evaluations of the phase, flat in `k` (20 to 100 microseconds for
     /// elementary functions); up to 10,000 where the contour hangs on a pole, and some hundred per
