@@ -197,7 +197,9 @@ impl Series {
             trials.insert(0, inwards);
         }
         let kept = |ring: &Trial| {
+            // A large tail is a singularity inside: no figure could be trusted.
             ring.filling < FILLING
+                && ring.tail() < WORST_TAIL
                 && ring.form.radius() >= SMALLEST * largest
                 && ring.poles.iter().flatten().all(|pole| pole.is_clear_of(&ring.form))
         };

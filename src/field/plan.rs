@@ -34,7 +34,7 @@ pub(super) struct Node {
     /// Its series is known, or it needs none: too high or too low to matter.
     pub settled: bool,
     /// Its saddles, one bit for each entry of the plan's list.
-    members: u64,
+    pub members: u64,
 }
 
 impl Node {
