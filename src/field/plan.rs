@@ -314,12 +314,12 @@ fn below(a: Scaled, b: Scaled) -> bool {
     a.ln_norm() < b.ln_norm()
 }
 
+/// Refuses what has no correct digit: an error as large as all contributions together.
 fn finish(total: Contribution, form: Form, k: f64) -> Result<Estimate, Error> {
-    if !total.value.is_finite() || !total.error.is_finite() {
-        return Err(Error::NoDigits {
-            what: "the expansion",
-            value: Complex64::new(k, 0.0),
-            digits: 0.0,
+    let finite = total.value.is_finite() && total.error.is_finite();
+    if !finite || (!total.size.is_zero() && !below(total.error, total.size)) {
+        return Err(Error::Undecided {
+            reason: format!("at k = {k} the expansion's error figure is as large as its value"),
             remedy: "use `quadrature` at this wavenumber",
         });
     }
