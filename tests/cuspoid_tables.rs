@@ -128,3 +128,18 @@ fn all_valleys() {
     judge("swallowtail, valleys", valleys::<3>("swallowtail_valleys"), 1e-14, 1e-14);
     judge("butterfly, valleys", valleys::<4>("butterfly_valleys"), 1e-14, 1e-14);
 }
+
+#[test]
+fn pearcey_on_the_real_line() {
+    let (mut inside, mut outside) = (vec![], vec![]);
+    for row in table("pearcey_real") {
+        let (x2, x1) = (row[0], row[1]);
+        let exact = complex(&row[2..8]);
+        let v = cuspoid::pearcey(x1, x2).expect("finite parameters");
+        let x = [Complex64::new(x1, 0.0), Complex64::new(x2, 0.0)];
+        let list = if x1.abs() <= 32.0 && x2.abs() <= 16.0 { &mut inside } else { &mut outside };
+        list.push(error(&x, v, &exact));
+    }
+    println!("{}", outside.len());
+    judge("Pearcey, table", inside, 3e-14, 5e-15);
+}

@@ -18,7 +18,10 @@
 
 mod descent;
 mod hubs;
+mod lone;
 mod panel;
+mod pearcey;
+mod pearcey_nodes;
 mod polynomial;
 mod walk;
 
@@ -173,4 +176,12 @@ pub fn between<const K: usize>(
         psi: Scaled::new(m.mantissas[0], m.exponent),
         derivatives: std::array::from_fn(derivative),
     })
+}
+
+/// The Pearcey integral and its derivatives for real parameters.
+pub fn pearcey(x1: f64, x2: f64) -> Result<Cuspoid<Complex64, 2>, Error> {
+    check(&[Complex64::new(x1, 0.0), Complex64::new(x2, 0.0)])?;
+    let m = pearcey::moments(x1, x2)?;
+    let turned = |z: Complex64| Complex64::new(-z.im, z.re);
+    Ok(Cuspoid { psi: m[0], derivatives: [turned(m[1]), turned(m[2])] })
 }
