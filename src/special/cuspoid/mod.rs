@@ -24,11 +24,13 @@ mod pearcey;
 mod pearcey_nodes;
 mod polynomial;
 mod walk;
+mod zeros;
 
 use crate::{Error, Scaled};
 use descent::VALLEYS;
 use num_complex::Complex64;
 use polynomial::{Polynomial, ZERO};
+pub use zeros::{PearceyZero, pearcey_zero_inside, pearcey_zero_near, pearcey_zero_outside};
 
 /// A cuspoid integral and its first derivatives at one point.
 #[derive(Clone, Copy, Debug, PartialEq)]
