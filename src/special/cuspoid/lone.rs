@@ -27,7 +27,10 @@ pub(super) fn is_lone<const D: usize>(local: &Polynomial) -> bool {
 
 /// Moments about the saddle, in units of the integrand there; the line runs in the direction
 /// that makes an acute angle with `along`.
-pub(super) fn moments<const D: usize>(local: &Polynomial, along: Complex64) -> [Complex64; MOMENTS] {
+pub(super) fn moments<const D: usize>(
+    local: &Polynomial,
+    along: Complex64,
+) -> [Complex64; MOMENTS] {
     let mut scale = (-local[2]).sqrt().inv();
     if (scale * along.conj()).re < 0.0 {
         scale = -scale;

@@ -25,11 +25,8 @@ const BELOW: f64 = 42.0;
 pub(super) fn moments(x1: f64, x2: f64) -> Result<[Complex64; 3], Error> {
     // Even in x_1 (DLMF 36.2.19): m_1 changes its sign with it.
     let mirrored = x1.abs();
-    let mut m = if mirrored <= WIDE && x2.abs() <= HIGH {
-        near(mirrored, x2)
-    } else {
-        far(mirrored, x2)?
-    };
+    let mut m =
+        if mirrored <= WIDE && x2.abs() <= HIGH { near(mirrored, x2) } else { far(mirrored, x2)? };
     if x1 < 0.0 {
         m[1] = -m[1];
     }
@@ -111,9 +108,9 @@ fn far(x1: f64, x2: f64) -> Result<[Complex64; 3], Error> {
         let radius = 2.0 * (-third).sqrt();
         let angle = (-half / (third * third.abs().sqrt()).abs()).acos() / 3.0;
         const THIRD: f64 = std::f64::consts::TAU / 3.0;
-        [0.0, THIRD, -THIRD].iter().all(|turn| {
-            add(polished(radius * (angle + turn).cos(), p, q), &mut sum)
-        })
+        [0.0, THIRD, -THIRD]
+            .iter()
+            .all(|turn| add(polished(radius * (angle + turn).cos(), p, q), &mut sum))
     } else {
         let u = -(half + discriminant.sqrt()).cbrt();
         let v = -third / u;

@@ -125,9 +125,8 @@ fn cancelled(x1: f64, x2: f64, first: f64, second: f64, sign: f64) -> (f64, f64)
         let f = |t: f64| ((t * t + x2) * t + x1) * t;
         let a = |t: f64| 1.0 / (12.0 * t * t + 2.0 * x2).abs().sqrt();
         let (a1, a2, a0) = (a(t1), a(t2), a(t0));
-        let beta = |p: f64, q: f64| {
-            ((p * p + a0 * a0 - q * q) / (2.0 * p * a0)).clamp(-1.0, 1.0).acos()
-        };
+        let beta =
+            |p: f64, q: f64| ((p * p + a0 * a0 - q * q) / (2.0 * p * a0)).clamp(-1.0, 1.0).acos();
         let e1 = f(t1) - f(t0) - first - sign * beta(a1, a2);
         let e2 = f(t2) - f(t0) - second + sign * beta(a2, a1);
         // df/dx_m = t^m at a saddle.
