@@ -45,8 +45,9 @@ def main():
     print("//! Moments of the Pearcey integral on a lattice, the start of a Taylor step.")
     print("//!")
     print("//! `NODES[i][j]` holds real and imaginary part of `integral of t^n exp(i f(t)) dt` over the")
-    print("//! real line, n = 0, 1, 2, at `x_2 = i - 16`, `x_1 = 1.5 j`. Recipe:")
-    print("//! tests/data/make_pearcey_nodes.py (trapezoidal rule at 110 digits, two steps agree to 40).")
+    print("//! real line, n = 0, 1, 2, at `x_1 = 1.5 j` and `x_2 = -16, -15.5 .. -8, -7 .. 0, 2, .. 16`.")
+    print("//! Recipe: tests/data/make_pearcey_nodes.py (trapezoidal rule at 110 digits, two steps agree")
+    print("//! to 40).")
     print()
     print("/// Nodes in `x_2`.")
     print("pub(super) const ROWS: usize = 33;")
@@ -55,10 +56,12 @@ def main():
     print()
     print("#[rustfmt::skip]")
     print("pub(super) static NODES: [[[f64; 6]; COLUMNS]; ROWS] = [")
-    for i in range(33):
+    halves = list(range(-32, -16)) + list(range(-16, 0, 2)) + list(range(0, 33, 4))
+    assert len(halves) == 33
+    for i in halves:
         print("    [")
         for j in range(22):
-            x2, x1 = arb(i - 16), arb(3 * j) / 2
+            x2, x1 = arb(i) / 2, arb(3 * j) / 2
             fine = moments(x1, x2, FINE, arb(1) / 64)
             coarse = moments(x1, x2, COARSE, arb(1) / 48)
             assert all(abs(a - b) < 1e-40 for a, b in zip(fine, coarse)), (i, j)

@@ -43,9 +43,20 @@ type Order = [Complex64; 5];
 
 /// From the nearest node; `0 <= x1 <= WIDE`, `|x2| <= HIGH`.
 fn near(x1: f64, x2: f64) -> [Complex64; 3] {
-    let row = ((x2 + HIGH + 0.5) as usize).min(ROWS - 1);
+    // Rows lie closer where the outermost saddle is far out: every 1/2, 1, 2.
+    let (row, n2) = if x2 < -8.0 {
+        let step = (2.0 * (x2 + HIGH) + 0.5).floor();
+        (step as usize, 0.5 * step - HIGH)
+    } else if x2 < 0.0 {
+        let step = (x2 + 8.5).floor();
+        (16 + step as usize, step - 8.0)
+    } else {
+        let step = (0.5 * x2 + 0.5).floor();
+        (24 + step as usize, 2.0 * step)
+    };
+    let row = row.min(ROWS - 1);
     let column = ((x1 * (1.0 / SPACING) + 0.5) as usize).min(COLUMNS - 1);
-    let (n1, n2) = (column as f64 * SPACING, row as f64 - HIGH);
+    let n1 = column as f64 * SPACING;
     let (d1, d2) = (x1 - n1, x2 - n2);
     let node = &NODES[row][column];
     let start = |j: usize| Complex64::new(node[2 * j], node[2 * j + 1]);
