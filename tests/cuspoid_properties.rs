@@ -168,7 +168,11 @@ fn satisfies_equations<const K: usize>(x: &[Complex64; K]) -> Result<(), TestCas
     // Rounding on the circle counts n! times in the n-th derivative.
     let scale = (0..=K).map(|n| m[n].norm() / t.powi(n as i32)).fold(largest, f64::max);
     let here = real_line(x).unwrap().to_complex();
-    prop_assert!((here.psi - m[0]).norm() < 1e-13 * scale, "{x:?} {:e} {scale} {t}", (here.psi - m[0]).norm());
+    prop_assert!(
+        (here.psi - m[0]).norm() < 1e-13 * scale,
+        "{x:?} {:e} {scale} {t}",
+        (here.psi - m[0]).norm()
+    );
     for n in 1..=K {
         let error = here.derivatives[n - 1] - Complex64::new(0.0, 1.0) * m[n];
         prop_assert!(error.norm() < 2e-12 * scale * t.powi(n as i32), "{x:?} {n} {error}");

@@ -1,6 +1,6 @@
 //! How a plan is made: location, grouping, expansions, topology, certificate.
 
-use super::plan::{End, MAX_GROUPS, Node, Plan, decided};
+use super::plan::{End, MAX_GROUPS, Node, Place, Plan, decided};
 use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
@@ -90,7 +90,8 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
         let weight = amplitude.value(saddle.z).norm()
             * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
-        plan.saddles.push((h, if weight.is_finite() { weight } else { 0.0 }));
+        let weight = if weight.is_finite() { weight } else { 0.0 };
+        plan.saddles.push(Place { z: saddle.z, exponent: h, weight });
     }
     Ok(plan)
 }

@@ -189,7 +189,8 @@ pub(super) fn arm<const D: usize>(
         let mut rho = reach::<D>(&sizes, panel(drop)) / STRETCH;
         let first = downhill(local[1]);
         // On another saddle's doorstep steepest descent would stop there: look round instead.
-        let mut turned = if sizes[1] * rho < DOORSTEP * panel(drop) { lowest::<D>(&local, rho) } else { None };
+        let mut turned =
+            if sizes[1] * rho < DOORSTEP * panel(drop) { lowest::<D>(&local, rho) } else { None };
         let mut moved = false;
         for _ in 0..40 {
             let step = match turned.take() {
