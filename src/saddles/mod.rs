@@ -1,11 +1,13 @@
 //! Where the saddles are, how they group, and which of them a contour needs.
 
 mod crossings;
+mod follow;
 mod locate;
 mod topology;
 mod trace;
 mod tree;
 
+pub use follow::follow;
 pub use locate::{Region, Saddle, locate};
 pub(crate) use topology::{Multiplicities, Topology};
 pub(crate) use tree::{Group, Tree};
