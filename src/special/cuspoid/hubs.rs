@@ -193,10 +193,11 @@ fn polished<const D: usize>(h: &Polynomial, start: Complex64, count: usize) -> C
     for _ in 0..2 {
         let local = shifted::<D>(h, t);
         let step = local[count] / (local[count + 1] * (count + 1) as f64);
-        if !(step.norm_sqr() < 1e-2 * t.norm_sqr()) {
+        if step.norm_sqr() < 1e-2 * t.norm_sqr() {
+            t -= step;
+        } else {
             return start;
         }
-        t -= step;
     }
     t
 }
