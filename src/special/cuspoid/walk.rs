@@ -19,7 +19,7 @@ const STRETCH: f64 = 1.1;
 /// The part of a full step's terms that the first one makes up where a saddle is near.
 const DOORSTEP: f64 = 0.08;
 /// Steps at most, kept or not.
-const STEPS: usize = 250;
+pub(super) const STEPS: usize = 250;
 
 /// One arm: vertices relative to the hub, the first one 0.
 #[derive(Clone, Copy)]
