@@ -18,6 +18,7 @@
 
 mod descent;
 mod hubs;
+mod integrate;
 mod lone;
 mod panel;
 mod pearcey;

@@ -11,15 +11,15 @@ use super::polynomial::{Polynomial, ZERO, shifted, slope, value};
 use num_complex::Complex64;
 
 /// Where the integrand is `e^-DEPTH` of what it was at the top, nothing more is added.
-pub(super) const DEPTH: f64 = 42.0;
+pub(super) const DEPTH: f64 = 39.0;
 /// Vertices of an arm that are kept.
 pub(super) const VERTICES: usize = 24;
 /// The rule's error follows the exponent a little beyond the piece, where high powers grow most.
-const STRETCH: f64 = 1.2;
+const STRETCH: f64 = 1.1;
 /// The part of a full step's terms that the first one makes up where a saddle is near.
 const DOORSTEP: f64 = 0.08;
 /// Steps at most, kept or not.
-const STEPS: usize = 250;
+pub(super) const STEPS: usize = 250;
 
 /// One arm: vertices relative to the hub, the first one 0.
 #[derive(Clone, Copy)]
@@ -50,8 +50,8 @@ fn size(z: Complex64) -> f64 {
 #[inline]
 fn sizes<const D: usize>(local: &Polynomial) -> [f64; 7] {
     let mut out = [0.0; 7];
-    for m in 1..=D {
-        out[m] = size(local[m]);
+    for (out, term) in out.iter_mut().zip(local).take(D + 1) {
+        *out = size(*term);
     }
     out
 }
@@ -68,8 +68,8 @@ fn reach<const D: usize>(sizes: &[f64; 7], target: f64) -> f64 {
     // (target/size)^(1/m) for each term alone, with the bits of a number as its logarithm (in
     // error by at most 0.09); the least of them is too far by a factor of at most D^(1/D).
     let mut least = i64::MAX;
-    for m in 1..=D {
-        let ratio = target.to_bits() as i64 - sizes[m].to_bits() as i64;
+    for (m, size) in sizes.iter().enumerate().take(D + 1).skip(1) {
+        let ratio = target.to_bits() as i64 - size.to_bits() as i64;
         least = least.min(ratio / m as i64);
     }
     let one = 1.0f64.to_bits() as i64;
@@ -127,8 +127,8 @@ fn lowest<const D: usize>(local: &Polynomial, rho: f64) -> Option<Complex64> {
 fn valley<const D: usize>(h: &Polynomial, t: Complex64) -> Option<usize> {
     let mut power = t;
     let mut rise = 0.0;
-    for m in 1..D - 1 {
-        rise += (m as f64) * (h[m] * power).re.max(0.0);
+    for (m, c) in h.iter().enumerate().take(D - 1).skip(1) {
+        rise += (m as f64) * (c * power).re.max(0.0);
         power *= t;
     }
     // power = t^(D-1)
@@ -176,11 +176,11 @@ pub(super) fn arm<const D: usize>(
         arm.count += 1;
     }
     for _ in 0..STEPS {
-        if drop > DEPTH {
-            if let Some(v) = valley::<D>(h, hub.at + s) {
-                arm.valley = v;
-                return Some(());
-            }
+        if drop > DEPTH
+            && let Some(v) = valley::<D>(h, hub.at + s)
+        {
+            arm.valley = v;
+            return Some(());
         }
         let sizes = sizes::<D>(&local);
         if sizes[1] == 0.0 {
