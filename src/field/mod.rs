@@ -1,6 +1,7 @@
 //! The one API: plan an integral once, evaluate it at any wavenumber.
 
 mod build;
+mod explain;
 mod plan;
 
 pub use plan::Plan;

@@ -8,13 +8,13 @@
 
 use super::Moments;
 use super::hubs::{Hub, Hubs, SADDLES, hubs};
+use super::lone::{self, is_lone};
 use super::panel::{self, MOMENTS};
 use super::polynomial::{
-    Polynomial, Precise, ZERO, moments_about_zero, precise, shifted, stretched,
+    Polynomial, Precise, ZERO, exponential, moments_about_zero, precise, shifted, stretched,
 };
 use super::walk::{Arm, DEPTH, VERTICES, arm};
 use crate::Error;
-use crate::special::double_double::{exp_both, sin_cos};
 use num_complex::Complex64;
 
 /// Valleys at most.
@@ -172,10 +172,22 @@ fn integrate<const D: usize>(
         }
         let (level, local) = level::<D>(h, hub);
         let mut moments = [ZERO; MOMENTS];
-        for edge in edges.iter().filter(|e| e.hub == index && e.flow != 0) {
-            let along = run::<D>(&local, &edge.arm, depth, pieces);
+        let mut flowing = edges.iter().filter(|e| e.hub == index && e.flow != 0);
+        if let Some(edge) = flowing.clone().next()
+            && hub.arms == 2
+            && pieces == 1
+            && is_lone::<D>(&local)
+        {
+            let along = lone::moments::<D>(&local, edge.arm.vertices[1]);
             for n in 0..D - 1 {
-                moments[n] += along[n] * f64::from(edge.flow);
+                moments[n] = along[n] * f64::from(edge.flow);
+            }
+        } else {
+            for edge in flowing.by_ref() {
+                let along = run::<D>(&local, &edge.arm, depth, pieces);
+                for n in 0..D - 1 {
+                    moments[n] += along[n] * f64::from(edge.flow);
+                }
             }
         }
         moments_about_zero(&mut moments, D - 1, hub.at);
@@ -232,13 +244,6 @@ fn level<const D: usize>(h: &Polynomial, hub: &Hub) -> (Precise, Polynomial) {
     local[0] = ZERO;
     local[1] = slope.round();
     (value, local)
-}
-
-/// `e^w` as a number and an exponent of two.
-fn exponential(w: Precise) -> (Complex64, i64) {
-    let (sin, cos) = sin_cos(w.im);
-    let (up, _, n) = exp_both(w.re);
-    (Complex64::new(up * cos, up * sin), n)
 }
 
 #[cfg(test)]

@@ -16,8 +16,8 @@ pub(super) const DEPTH: f64 = 42.0;
 pub(super) const VERTICES: usize = 24;
 /// The rule's error follows the exponent a little beyond the piece, where high powers grow most.
 const STRETCH: f64 = 1.2;
-/// The first term of a full step below which a saddle is near.
-const DOORSTEP: f64 = 1.0;
+/// The part of a full step's terms that the first one makes up where a saddle is near.
+const DOORSTEP: f64 = 0.08;
 /// Steps at most, kept or not.
 const STEPS: usize = 250;
 
@@ -65,11 +65,17 @@ fn panel(drop: f64) -> f64 {
 /// The positive `rho` with `sum size_m rho^m = target`, within a few per cent.
 #[inline]
 fn reach<const D: usize>(sizes: &[f64; 7], target: f64) -> f64 {
-    // Upper bounds from single terms; Newton's method on the convex sum comes down from there.
-    // (The leading term is 1; degree 4 to 6 has a root below twice the fourth root.)
-    let mut rho = (target / sizes[1]).min((target / sizes[2]).sqrt());
-    rho = rho.min((target / sizes[3]).cbrt().min(2.0 * target.sqrt().sqrt()));
-    for _ in 0..4 {
+    // (target/size)^(1/m) for each term alone, with the bits of a number as its logarithm (in
+    // error by at most 0.09); the least of them is too far by a factor of at most D^(1/D).
+    let mut least = i64::MAX;
+    for m in 1..=D {
+        let ratio = target.to_bits() as i64 - sizes[m].to_bits() as i64;
+        least = least.min(ratio / m as i64);
+    }
+    let one = 1.0f64.to_bits() as i64;
+    let mut rho = 1.1 * f64::from_bits((least + one) as u64);
+    // Newton's method on the convex sum comes down from there.
+    for _ in 0..5 {
         let (mut sum, mut growth) = (0.0, 0.0);
         for m in (1..=D).rev() {
             growth = growth * rho + sum;
@@ -80,7 +86,7 @@ fn reach<const D: usize>(sizes: &[f64; 7], target: f64) -> f64 {
         sum *= rho;
         let step = (sum - target) / growth;
         rho -= step;
-        if step < 0.1 * rho {
+        if step < 0.04 * rho {
             break;
         }
     }
@@ -183,7 +189,8 @@ pub(super) fn arm<const D: usize>(
         let mut rho = reach::<D>(&sizes, panel(drop)) / STRETCH;
         let first = downhill(local[1]);
         // On another saddle's doorstep steepest descent would stop there: look round instead.
-        let mut turned = if sizes[1] * rho < DOORSTEP { lowest::<D>(&local, rho) } else { None };
+        let mut turned =
+            if sizes[1] * rho < DOORSTEP * panel(drop) { lowest::<D>(&local, rho) } else { None };
         let mut moved = false;
         for _ in 0..40 {
             let step = match turned.take() {
