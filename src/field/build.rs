@@ -28,10 +28,10 @@ pub(super) struct Problem<'a> {
 }
 
 /// One attempt: saddles are looked for within `margin` of the contour.
-pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Plan, Error> {
+pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
     let region = Region::around(contour.points(), margin);
-    let saddles = locate(phase, region, finest)?;
+    let saddles = locate(phase, region)?;
     let size = region.size();
     let topology = Topology::new(phase, contour, &saddles, drop);
     let points = contour.points();

@@ -24,8 +24,6 @@ const NEPERS: f64 = 40.0;
 /// How wide round the contour saddles are looked for, in units of its size: wider if the
 /// certificate says that a contributing saddle is missing.
 const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
-/// Quarterings before a count of no saddle is believed: a pole of the phase counts against one.
-const FINEST: u32 = 2;
 
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
@@ -180,8 +178,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             wavenumbers: (least, greatest),
         };
         let mut last = None;
-        for (margin, finest) in MARGINS.into_iter().zip(FINEST..) {
-            match attempt(&problem, margin, finest) {
+        for margin in MARGINS {
+            match attempt(&problem, margin) {
                 Ok(plan) => return Ok(plan),
                 Err(error) => last = Some(error),
             }
