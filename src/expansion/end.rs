@@ -59,7 +59,7 @@ impl NearEnd {
             if ring.split != 0 {
                 continue;
             }
-            let Some(v) = ring.form.preimage(e, Complex64::new(0.0, 0.0)) else { continue };
+            let Some(v) = ring.form.locate(e) else { continue };
             if v.norm() > INSIDE {
                 continue;
             }
@@ -130,6 +130,13 @@ impl NearEnd {
 }
 
 impl NormalForm {
+    /// `v` with `z(R v) = z` from the linear part of the map or from the centre.
+    pub(crate) fn locate(&self, z: Complex64) -> Option<Complex64> {
+        let linear = (z - self.map()[0]) / self.map()[1];
+        let start = if linear.norm() > 1.0 { linear / linear.norm() } else { linear };
+        self.preimage(z, start).or_else(|| self.preimage(z, Complex64::new(0.0, 0.0)))
+    }
+
     /// `v` with `z(R v) = z`, by Newton's method on the Taylor map from `start`; None if it leaves
     /// the neighbourhood of the disc.
     pub(crate) fn preimage(&self, z: Complex64, start: Complex64) -> Option<Complex64> {
