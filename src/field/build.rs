@@ -5,7 +5,7 @@ use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
-use crate::saddles::{Group, Region, Saddle, Topology, Tree, locate};
+use crate::saddles::{Group, Region, Saddle, Topology, Tree, locate_among_poles};
 use num_complex::Complex64;
 
 fn undecided(reason: impl Into<String>) -> Error {
@@ -27,11 +27,22 @@ pub(super) struct Problem<'a> {
     pub wavenumbers: (f64, f64),
 }
 
-/// One attempt: saddles are looked for within `margin` of the contour.
-pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Plan, Error> {
+/// How saddles are looked for.
+#[derive(Clone, Copy)]
+pub(super) struct Search {
+    /// How wide round the contour, in units of its size.
+    pub margin: f64,
+    /// Quarterings before a count of no saddle is believed: a pole of `f'` counts against one.
+    pub finest: u32,
+    /// Quarterings before any count is believed.
+    pub wary: u32,
+}
+
+/// One attempt.
+pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
-    let region = Region::around(contour.points(), margin);
-    let saddles = locate(phase, region, finest)?;
+    let region = Region::around(contour.points(), search.margin);
+    let saddles = locate_among_poles(phase, region, (search.finest, search.wary))?;
     let size = region.size();
     let topology = Topology::new(phase, contour, &saddles, drop);
     let points = contour.points();
@@ -80,6 +91,12 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
         }
     }
     let top = reach.top;
+    if contour.is_closed() && top == f64::NEG_INFINITY {
+        return Err(undecided(
+            "no saddle and no pole that was named contributes: the integral over the closed contour \
+             vanishes, or a singularity inside it was not named",
+        ));
+    }
     let poles = poles.into_iter().map(|(pole, _)| pole).collect();
     let mut plan =
         Plan { nodes, roots: tree.roots, ends, poles, saddles: Vec::new(), floor: top - drop };

@@ -1,6 +1,6 @@
 //! A plan: every decision about an integral that does not depend on the wavenumber.
 
-use super::build::{Problem, attempt};
+use super::build::{Problem, Search, attempt};
 use crate::estimate::Form;
 use crate::expansion::{Contribution, NearEnd, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
@@ -21,11 +21,18 @@ const LEAST_K: f64 = 2.0;
 /// How many nepers below the highest contribution nothing matters.
 const NEPERS: f64 = 40.0;
 
-/// How wide round the contour saddles are looked for, in units of its size: wider if the
-/// certificate says that a contributing saddle is missing.
-const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
-/// Quarterings before a count of no saddle is believed: a pole of the phase counts against one.
-const FINEST: u32 = 2;
+/// How saddles are looked for: farther out if the certificate says that a contributing one is missing.
+const SEARCHES: [Search; 3] = [
+    Search { margin: 0.3, finest: 2, wary: 0 },
+    Search { margin: 1.0, finest: 3, wary: 0 },
+    Search { margin: 3.0, finest: 4, wary: 0 },
+];
+/// The same for a closed contour, which as a rule has a singularity of the phase inside.
+const SEARCHES_INSIDE: [Search; 3] = [
+    Search { margin: 0.3, finest: 2, wary: 0 },
+    Search { margin: 0.3, finest: 4, wary: 4 },
+    Search { margin: 1.0, finest: 5, wary: 5 },
+];
 
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
@@ -173,8 +180,9 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             wavenumbers: (least, greatest),
         };
         let mut last = None;
-        for (margin, finest) in MARGINS.into_iter().zip(FINEST..) {
-            match attempt(&problem, margin, finest) {
+        let searches = if self.contour().is_closed() { SEARCHES_INSIDE } else { SEARCHES };
+        for search in searches {
+            match attempt(&problem, search) {
                 Ok(plan) => return Ok(plan),
                 Err(error) => last = Some(error),
             }

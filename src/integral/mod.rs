@@ -8,10 +8,12 @@ use num_complex::Complex64;
 mod contour;
 mod jet;
 mod phase;
+mod root;
 
 pub use contour::{Contour, Termination};
 pub use jet::{Formula, Jet};
 pub use phase::{Amplitude, Phase, Polynomial, Unit, ValueOnly};
+pub use root::{OverRoot, RootAmplitude, RootPhase};
 
 /// An oscillatory integral with everything but its wavenumber.
 #[derive(Clone, Debug)]

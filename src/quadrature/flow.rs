@@ -127,21 +127,25 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
     ) -> Result<Flow<'a, P, A>, Error> {
         let points = contour.points();
         let size = points.iter().map(|z| (z - points[0]).norm()).fold(0.0, f64::max);
-        let last = points.len() - 1;
+        // The last vertex of a closed contour is its first.
+        let closed = contour.is_closed();
+        let count = points.len() - usize::from(closed);
+        let (last, sides) = (count - 1, points.len() - 1);
         let mut nodes = Vec::with_capacity(4 * points.len());
         let mut edges = Vec::with_capacity(4 * points.len());
-        for (i, &z) in points.iter().enumerate() {
+        for (i, &z) in points[..count].iter().enumerate() {
             let site = sampler.site(z).ok_or(Error::NotFinite { what: "phase", at: z })?;
             nodes.push(Node {
                 orbit: vec![site],
                 flux: Vec::new(),
                 cap: 0.5 * size,
                 stalled: false,
-                left: i.checked_sub(1),
-                right: (i < last).then_some(i),
+                left: if closed { Some((i + last) % count) } else { i.checked_sub(1) },
+                right: (i < sides).then_some(i),
             });
-            if i < last {
-                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], flux: None, state: State::Open });
+            if i < sides {
+                let nodes = [i, (i + 1) % count];
+                edges.push(Edge { nodes, at: [0, 0], flux: None, state: State::Open });
             }
         }
         let ends = [contour.start(), contour.end()];
@@ -154,7 +158,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let watch = Watch::new(sampler, strict, points[0], size);
         let mut flow =
             Flow { sampler, watch, k, nodes, edges, heap: BinaryHeap::new(), crest, ends };
-        for e in 0..last {
+        for e in 0..sides {
             flow.push(e);
         }
         Ok(flow)
@@ -432,7 +436,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
     /// amplitude down to a fraction of its size can tell.
     pub fn keeps_class(&self, contour: &Contour, fraction: f64) -> bool {
         let mut image = Vec::with_capacity(4 * self.edges.len());
-        let (mut node, mut from) = (0, 0);
+        let (mut node, mut from) = (0, self.first_index());
         for _ in 0..=self.edges.len() {
             let edge = self.nodes[node].right.map(|e| &self.edges[e]);
             let orbit = &self.nodes[node].orbit;
@@ -445,8 +449,18 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             }
             let Some(edge) = edge else { break };
             (node, from) = (edge.nodes[1], edge.at[1]);
+            if node == 0 {
+                image.push(self.nodes[0].orbit[from].z);
+                break;
+            }
         }
         self.watch.same_class(contour.points(), &image, fraction)
+    }
+
+    /// Where on the first vertex's orbit the contour begins: its vertex, or the end of the last edge
+    /// of a closed contour.
+    fn first_index(&self) -> usize {
+        self.nodes[0].left.map_or(0, |e| self.edges[e].at[1])
     }
 
     /// The flowed contour down to `depth/k` under its highest level.
@@ -455,7 +469,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         let mut out = Flowed { pieces: Vec::new(), sunk: Vec::new(), tails: Vec::new(), floor };
         let mut node = 0;
         let mut from = match self.ends[0] {
-            Termination::Finite => 0,
+            Termination::Finite | Termination::Closed => self.first_index(),
             Termination::Downhill => {
                 let at = self.nodes[0].right.map_or(0, |e| self.edges[e].at[0]);
                 self.end_at_infinity(0, at, depth, &mut out)?
@@ -473,9 +487,13 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
                 out.pieces.push(chord)
             }
             (node, from) = (next, arrive);
+            if node == 0 {
+                break;
+            }
         }
         let to = match self.ends[1] {
             Termination::Finite => 0,
+            Termination::Closed => from,
             Termination::Downhill => self.end_at_infinity(node, from, depth, &mut out)?,
         };
         along(&self.nodes[node].orbit, from, to, &mut out.pieces);

@@ -107,6 +107,16 @@ const UNCOUNTED_DEPTH: u32 = 4;
 /// # Ok::<(), merging_saddles::Error>(())
 /// ```
 pub fn locate(phase: &dyn Phase, region: Region, finest: u32) -> Result<Vec<Saddle>, Error> {
+    locate_among_poles(phase, region, (finest, 0))
+}
+
+/// The same with quarterings before a count above zero is believed, too: it may be that of more
+/// saddles and a pole of `f'`.
+pub(crate) fn locate_among_poles(
+    phase: &dyn Phase,
+    region: Region,
+    (finest, wary): (u32, u32),
+) -> Result<Vec<Saddle>, Error> {
     let mut found: Vec<Complex64> = Vec::new();
     let mut stack = vec![(region, 0u32)];
     let mut seen = 0;
@@ -124,7 +134,7 @@ pub fn locate(phase: &dyn Phase, region: Region, finest: u32) -> Result<Vec<Sadd
         let count = winding(phase, &part);
         match count {
             Some(0) if depth >= finest => continue,
-            Some(n) if n > 0 && n as usize <= MAX_SADDLES => {
+            Some(n) if n > 0 && n as usize <= MAX_SADDLES && depth >= wary => {
                 if let Some(roots) = simultaneous(phase, &part, n as usize) {
                     found.extend(&roots[..n as usize]);
                     continue;

@@ -6,6 +6,7 @@ mod topology;
 mod trace;
 mod tree;
 
+pub(crate) use locate::locate_among_poles;
 pub use locate::{Region, Saddle, locate};
 pub(crate) use topology::{Multiplicities, Topology};
 pub(crate) use tree::{Group, Tree};

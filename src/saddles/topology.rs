@@ -42,6 +42,8 @@ pub(crate) struct Topology<'a> {
     /// The descents from both ends and the path, in one line: counted inside rings only.
     whole: Vec<Complex64>,
     tails: [Vec<Complex64>; 2],
+    /// The contour has no ends.
+    closed: bool,
     top: f64,
     bottom: f64,
     drop: f64,
@@ -59,11 +61,16 @@ impl<'a> Topology<'a> {
         let h = Exponent::new(phase, DELTA);
         let points = contour.points();
         let size = points.windows(2).map(|p| (p[1] - p[0]).norm()).fold(0.0, f64::max);
-        let path: Vec<Complex64> = points
+        let mut path: Vec<Complex64> = points
             .iter()
             .enumerate()
             .map(|(n, z)| z + Complex64::from_polar(1e-9 * size, 1.0 + 2.4 * n as f64))
             .collect();
+        let closed = contour.is_closed();
+        if closed {
+            let last = path.len() - 1;
+            path[last] = path[0];
+        }
         let mut top = f64::NEG_INFINITY;
         let mut bottom = f64::INFINITY;
         for side in path.windows(2) {
@@ -79,7 +86,9 @@ impl<'a> Topology<'a> {
         let deep = saddles.iter().fold(bottom, |m, s| m.min(h.of(s.value).re)) - drop;
         let tail = |from: Complex64| {
             let mut line = vec![from];
-            trace(&h, from, deep, longest, &mut line);
+            if !closed {
+                trace(&h, from, deep, longest, &mut line);
+            }
             line
         };
         let first = tail(path[0]);
@@ -92,6 +101,7 @@ impl<'a> Topology<'a> {
             tails: [first, last],
             path,
             whole,
+            closed,
             top: top + 0.02 * (top - bottom) + 1e-9,
             bottom,
             drop,
@@ -170,8 +180,10 @@ impl<'a> Topology<'a> {
     /// The certificate: do the valleys and the ends of the contour cancel?
     pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
         let mut ends = valleys.to_vec();
-        for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
-            ends.push((weight, tail[tail.len() - 1]));
+        if !self.closed {
+            for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
+                ends.push((weight, tail[tail.len() - 1]));
+            }
         }
         // An end at infinity must really be down there; a finite end that contributes has been
         // followed down like the others.
@@ -215,7 +227,9 @@ impl<'a> Topology<'a> {
             if (1..PIECES).all(below) {
                 return true;
             }
-            let deeper = floor - self.drop * 4f64.powi(round);
+            // The contour's own range of heights says where valleys open where the drop is small.
+            let scale = self.drop.max(0.5 * (self.top - self.bottom));
+            let deeper = floor - scale * 4f64.powi(round);
             for z in [&mut a, &mut b] {
                 let mut line = vec![*z];
                 trace(&self.h, *z, deeper, self.longest, &mut line);
