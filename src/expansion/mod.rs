@@ -4,6 +4,7 @@ mod canonical;
 mod end;
 mod figure;
 mod incomplete;
+mod parabolic;
 mod pole;
 mod series;
 mod unfolding;

@@ -15,10 +15,12 @@
 //! saddles; N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353 for the integration by parts;
 //! Weierstrass division is textbook material.
 
+mod based;
 mod division;
 mod normal_form;
 mod orders;
 
+pub(crate) use based::{BasedForm, BasedOrders, MAX_DEGREE};
 pub use division::divide;
 pub use normal_form::NormalForm;
 pub use orders::{MAX_ORDERS, Orders, Start};
