@@ -104,6 +104,8 @@ pub(crate) struct Series {
     reference: usize,
     poles: Vec<Option<MappedPole>>,
     m: Multiplicities,
+    /// The same sheet by sheet with the factor of each, where an end of the contour is algebraic.
+    sheets: Vec<(Complex64, Multiplicities)>,
     sign: f64,
     noise_scale: f64,
 }
@@ -221,6 +223,7 @@ impl Series {
             reference,
             poles,
             m: [0; 6],
+            sheets: Vec::new(),
             sign: 1.0,
             noise_scale: phase.noise_scale(centre),
         })
@@ -237,6 +240,12 @@ impl Series {
         self
     }
 
+    /// Sets what the contour makes of it on each sheet, with the factor of the sheet.
+    pub fn with_sheets(mut self, sheets: Vec<(Complex64, Multiplicities)>) -> Self {
+        self.sheets = sheets;
+        self
+    }
+
     /// For an end point: +1 at the start of the contour, -1 at its end.
     pub fn with_sign(mut self, sign: f64) -> Self {
         self.sign = sign;
@@ -250,7 +259,20 @@ impl Series {
     /// Whether the contour needs this cluster; always so for an end point.
     pub fn contributes(&self) -> bool {
         let degree = self.form().degree();
-        degree == 1 || self.m[1..degree].iter().any(|m| *m != self.m[0])
+        let uneven = |m: &Multiplicities| m[1..degree].iter().any(|j| *j != m[0]);
+        degree == 1 || uneven(&self.m) || self.sheets.iter().any(|(_, m)| uneven(m))
+    }
+
+    /// The canonical integrals.
+    fn moments(&self, phi: &Unfolding, k: f64) -> Option<Moments> {
+        let Some(((factor, m), more)) = self.sheets.split_first() else {
+            return Moments::new(phi, &self.m, k);
+        };
+        let mut sum = Moments::new(phi, m, k)?.times(*factor);
+        for (factor, m) in more {
+            sum = sum.plus(&Moments::new(phi, m, k)?.times(*factor));
+        }
+        Some(sum)
     }
 
     pub fn saddles(&self) -> usize {
@@ -265,7 +287,7 @@ impl Series {
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         let phi = Unfolding::new(&self.rings[self.reference].form);
-        let Some(moments) = Moments::new(&phi, &self.m, k) else { return Contribution::UNKNOWN };
+        let Some(moments) = self.moments(&phi, k) else { return Contribution::UNKNOWN };
         let sizes = moments.values.map(|c| c.norm());
         let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
             let residual = ring.form.residual();

@@ -57,7 +57,7 @@ impl Contour {
         Contour::new(points, Termination::Closed, Termination::Closed)
     }
 
-    pub(super) fn new(
+    pub(crate) fn new(
         points: impl IntoIterator<Item = Complex64>,
         start: Termination,
         end: Termination,

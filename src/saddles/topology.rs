@@ -32,22 +32,22 @@ pub(crate) type Multiplicities = [i32; MAX_SADDLES + 1];
 /// How exactly a traced point keeps the height it was sent to, in units of the drop.
 const SLACK: f64 = 0.05;
 /// The angle that the exponent is turned by.
-const DELTA: f64 = 0.03;
+pub(super) const DELTA: f64 = 0.03;
 
 /// The contour as the topology sees it.
 pub(crate) struct Topology<'a> {
-    h: Exponent<'a>,
+    pub(super) h: Exponent<'a>,
     /// The given path, its points moved by a hair so that none lies on a ridge.
-    path: Vec<Complex64>,
+    pub(super) path: Vec<Complex64>,
     /// The descents from both ends and the path, in one line: counted inside rings only.
     whole: Vec<Complex64>,
-    tails: [Vec<Complex64>; 2],
+    pub(super) tails: [Vec<Complex64>; 2],
     /// The contour has no ends.
     closed: bool,
-    top: f64,
+    pub(super) top: f64,
     bottom: f64,
     drop: f64,
-    longest: f64,
+    pub(super) longest: f64,
 }
 
 impl<'a> Topology<'a> {
@@ -268,6 +268,26 @@ impl<'a> Topology<'a> {
         }
         let count = crossings(&path, &self.path);
         Some((path, count))
+    }
+
+    /// The highest point of each ridge's arc, in the plane of `v`.
+    pub fn ridges(&self, form: &NormalForm) -> [Option<Complex64>; MAX_SADDLES + 1] {
+        self.arcs(form).ridges
+    }
+
+    /// Points followed down below a level; None if one stalls.
+    pub fn sunk(&self, points: Vec<(i32, Complex64)>, floor: f64) -> Option<Vec<(i32, Complex64)>> {
+        let mut list = Vec::with_capacity(points.len());
+        for (weight, z) in points {
+            let mut line = vec![z];
+            if self.h.height(z) > floor
+                && trace(&self.h, z, floor, self.longest, &mut line) == Ended::Stalled
+            {
+                return None;
+            }
+            list.push((weight, line[line.len() - 1]));
+        }
+        Some(list)
     }
 
     /// The highest point of each ridge's arc on the ring, the lowest of each valley's.
