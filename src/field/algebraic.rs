@@ -41,28 +41,26 @@ pub(super) fn branches(problem: &Problem) -> Result<Vec<Branch>, Error> {
 /// The series of each algebraic end, alone and with each single saddle near it.
 pub(super) fn algebraic_ends(
     problem: &Problem,
-    sheeting: &Sheeting,
+    sheeting: &mut Sheeting,
     tree: &Tree,
     saddles: &[Saddle],
     size: f64,
 ) -> Result<Vec<AlgebraicEnd>, Error> {
     let mut list = Vec::new();
-    let branches = sheeting.branches();
+    let branches = sheeting.branches().to_vec();
+    let branches = &branches[..];
     for (slot, branch) in branches.iter().enumerate() {
         let distance = |z: Complex64| (z - branch.base).norm();
         let other = branches.iter().map(|b| distance(b.base)).filter(|&d| d > 0.0);
         let clear = other.fold(size, f64::min);
-        let series = |count, reach| {
+        let series = |sheeting: &Sheeting, count, reach| {
             let (phase, amplitude) = (problem.phase, problem.amplitude);
             AlgebraicSeries::new(phase, amplitude, sheeting, (branches, slot), count, reach)
         };
         let nearest = saddles.iter().map(|s| distance(s.z)).fold(clear, f64::min);
-        let own = series(0, (0.3 * nearest, 1e-6 * size));
-        if own.as_ref().is_some_and(|own| !own.is_plain()) {
-            return Err(Error::Unsupported {
-                what: format!("a contour that winds round its own algebraic end {}", branch.base),
-                remedy: "use `quadrature`, or unwind the contour and add the turns by hand",
-            });
+        let own = series(sheeting, 0, (0.3 * nearest, 1e-6 * size));
+        if let Some(unrolled) = own.as_ref().and_then(|own| own.unrolled()) {
+            sheeting.set_copies(slot, unrolled);
         }
         let mut near = Vec::new();
         for (node, group) in tree.groups.iter().enumerate() {
@@ -72,7 +70,7 @@ pub(super) fn algebraic_ends(
             let next = others.map(|(_, s)| distance(s.z)).fold(clear, f64::min);
             if next > APART * here {
                 let reach = ((1.5 * here).max(0.3 * next), 1.2 * here);
-                near.extend(series(1, reach).map(|series| (node, series)));
+                near.extend(series(sheeting, 1, reach).map(|series| (node, series)));
             }
         }
         if own.is_none() && near.is_empty() {

@@ -51,7 +51,7 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
     let points = contour.points();
     let tails = topology.tails();
     let branches = branches(problem)?;
-    let sheeting = topology.sheeting(&branches);
+    let mut sheeting = topology.sheeting(&branches, [points[0], points[points.len() - 1]]);
 
     let mut ends: Vec<End> = Vec::new();
     let mut reach = Reach { top: f64::NEG_INFINITY, lowest: f64::INFINITY };
@@ -87,7 +87,7 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
-    let algebraic = algebraic_ends(problem, &sheeting, &tree, &saddles, size)?;
+    let algebraic = algebraic_ends(problem, &mut sheeting, &tree, &saddles, size)?;
     for (node, series) in algebraic.iter().flat_map(|end| &end.near) {
         if !series.is_plain() {
             let f = saddles[tree.groups[*node].members[0]].value;

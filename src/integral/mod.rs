@@ -64,7 +64,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     ///
     /// The power is continued along the contour, from its principal value where the contour leaves `z_0`;
     /// the amplitude is what is left, analytic at `z_0`. A plan follows it with one saddle near `z_0` at
-    /// most. The contour must not wind round its own end so that it crosses the steepest ascent from it.
+    /// most; the contour may wind round its end.
     ///
     /// ```
     /// use merging_saddles::{Complex64 as C, Contour, Integral};

@@ -165,13 +165,15 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         }
         let constant = match algebraic {
             [true, true] => {
-                // At the start b_1 - z = b_1 - b_0 and z - b_0 = (b_1 - b_0) e^s.
-                let span = (finish - start).arg();
-                let first = (leaving.arg() - begin.im) * (powers[0] - 1.0);
-                let at_end = path[path.len() - 1];
-                // At the end b_1 - z = (b_1 - b_0) e^(-s).
-                let second = (arriving.arg() + at_end.im) * (powers[1] - 1.0);
-                Complex64::from_polar(1.0, first + second + span)
+                // At the start z - b_0 = (b_1 - b_0) e^s: Im s where the contour leaves differs from
+                // that of its next vertex by the turn about the other end. The finish likewise.
+                let (next, last) = (inner[0], inner[inner.len() - 1]);
+                let leaves = begin.im + ((finish - next) / (finish - start)).arg();
+                let arrives =
+                    path[path.len() - 1].im + ((finish - start) / (last - start)).arg();
+                let first = (leaving.arg() - leaves) * (powers[0] - 1.0);
+                let second = (arriving.arg() + arrives) * (powers[1] - 1.0);
+                Complex64::from_polar(1.0, first + second + (finish - start).arg())
             }
             [true, false] => {
                 Complex64::from_polar(1.0, (leaving.arg() - begin.im) * (powers[0] - 1.0))

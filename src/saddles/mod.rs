@@ -9,6 +9,6 @@ mod tree;
 
 pub(crate) use locate::locate_among_poles;
 pub use locate::{Region, Saddle, locate};
-pub(crate) use sheets::{Branch, Sheeting, Sheets, Turns, Unrolled};
+pub(crate) use sheets::{Branch, Sheeting, Sheets, Unrolled};
 pub(crate) use topology::{Multiplicities, Topology};
 pub(crate) use tree::{Group, Tree};

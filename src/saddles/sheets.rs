@@ -77,10 +77,6 @@ impl Line {
         self
     }
 
-    fn last(&self, branch: usize) -> f64 {
-        self.lifts[branch].last().copied().unwrap_or(0.0)
-    }
-
     /// The angle about a branch at a point of piece `i`: from the vertex that is farther away.
     fn lift(&self, branch: &Branch, slot: usize, i: usize, z: Complex64) -> f64 {
         let far = |j: usize| (self.points[j] - branch.base).norm();
@@ -134,11 +130,20 @@ pub(crate) struct Sheeting<'t, 'p> {
     branches: &'t [Branch],
     path: Line,
     tails: [Line; 2],
+    /// The exact ends of the contour.
+    ends: [Complex64; 2],
+    /// The descents that an algebraic end contributes: turns about either branch against the tail,
+    /// and weight. One without turns, unless the contour winds round its end.
+    copies: [Vec<(Turns, i32)>; 2],
 }
 
 impl<'p> Topology<'p> {
     /// The contour's angles about its algebraic ends.
-    pub fn sheeting<'t>(&'t self, branches: &'t [Branch]) -> Sheeting<'t, 'p> {
+    pub fn sheeting<'t>(
+        &'t self,
+        branches: &'t [Branch],
+        ends: [Complex64; 2],
+    ) -> Sheeting<'t, 'p> {
         // Branch by branch, from the end where it begins.
         let mut lifts = [Vec::new(), Vec::new()];
         for (slot, branch) in branches.iter().enumerate() {
@@ -164,14 +169,21 @@ impl<'p> Topology<'p> {
             }
             Line::new(self.tails[end].clone(), branches, first)
         });
-        Sheeting { topology: self, branches, path, tails }
+        let copies = [vec![([0; 2], 1)], vec![([0; 2], 1)]];
+        Sheeting { topology: self, branches, path, tails, ends, copies }
     }
 }
 
 impl Sheeting<'_, '_> {
     /// The lifted angle of the contour's start (0) or finish (1) about a branch.
     pub fn at_end(&self, slot: usize, end: usize) -> f64 {
-        if end == 0 { self.path.lifts[slot][0] } else { self.path.last(slot) }
+        let list = &self.path.lifts[slot];
+        let lift = if end == 0 { list[0] } else { list[list.len() - 1] };
+        if self.branches[slot].end == end {
+            return lift;
+        }
+        // The path's own vertices are moved by a hair.
+        near(self.branches[slot].angle(self.ends[end]), lift)
     }
 
     /// The contour's algebraic ends.
@@ -185,6 +197,22 @@ impl Sheeting<'_, '_> {
             let there = branch.angle(centre) + turn(branch.base, centre, z);
             (self.at_end(slot, end) - there).abs() < PI
         })
+    }
+
+    /// Takes note of how often an algebraic end's descent is needed, and on which sheets.
+    pub fn set_copies(&mut self, slot: usize, unrolled: &Unrolled) {
+        let list = unrolled.weights.iter().map(|&(valley, sheet, weight)| {
+            let mut turns = [sheet; 2];
+            turns[slot] = valley - unrolled.own;
+            (turns, weight)
+        });
+        self.copies[self.branches[slot].end] = list.collect();
+    }
+
+    /// The same as turns about the end, about the other branch, weight.
+    pub fn copies(&self, slot: usize) -> impl Iterator<Item = (i32, i32, i32)> + '_ {
+        let list = &self.copies[self.branches[slot].end];
+        list.iter().map(move |&(turns, weight)| (turns[slot], turns[1 - slot], weight))
     }
 
     /// Multiplicities of a cluster sheet by sheet, the power on its ring being continued from its
@@ -221,8 +249,14 @@ impl Sheeting<'_, '_> {
                 sheets[index].1[j] += sign;
             };
             ridge.crossed_by(&self.path, self.branches, &mut add);
-            spoke.crossed_by(&self.tails[0], self.branches, |sign, turns| add(-sign, turns));
-            spoke.crossed_by(&self.tails[1], self.branches, &mut add);
+            for (end, direction) in [(0, -1), (1, 1)] {
+                spoke.crossed_by(&self.tails[end], self.branches, |sign, turns| {
+                    for (shift, weight) in &self.copies[end] {
+                        let turns = [turns[0] + shift[0], turns[1] + shift[1]];
+                        add(direction * sign * weight, turns);
+                    }
+                });
+            }
         }
         Some(sheets)
     }
@@ -236,8 +270,9 @@ impl Sheeting<'_, '_> {
     }
 
     /// The contour as paths from the algebraic end in the given slot to the valleys of a ring about
-    /// it; a contour that finishes there is looked at backwards. None if it cannot be followed.
-    pub fn unrolled(&self, form: &BasedForm, slot: usize) -> Option<Unrolled> {
+    /// it; a contour that finishes there is looked at backwards. `start` is the angle of `dz/du` at the
+    /// end. None if it cannot be followed.
+    pub fn unrolled(&self, form: &BasedForm, slot: usize, start: f64) -> Option<Unrolled> {
         let branch = &self.branches[slot];
         let degree = form.degree() as i32;
         let arcs = BasedArcs::new(form);
@@ -246,7 +281,6 @@ impl Sheeting<'_, '_> {
         let backwards = branch.end == 1;
         let orient = if backwards { -1 } else { 1 };
         let far_tail = &self.tails[1 - branch.end];
-        let start = branch.angle(branch.base + form.slope());
         let mut weights: Vec<(i32, i32, i32)> = Vec::new();
         let mut first: Option<(f64, i32)> = None;
         let mut crossed: Vec<(i32, Turns, i32)> = Vec::new();
