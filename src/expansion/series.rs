@@ -10,6 +10,7 @@ use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
+use crate::ring::ZERO;
 use crate::ring::{KEPT, NormalForm, Orders, Start};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
@@ -34,6 +35,8 @@ const SOUND: f64 = 1e-9;
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
 const FIRST: usize = 16;
+/// Branch points must lie beyond this part of a ring.
+const CLEAR: f64 = 1.05;
 /// The smallest ring that is kept, relative to the largest.
 const SMALLEST: f64 = 0.3;
 
@@ -50,6 +53,10 @@ struct Trial {
 
 impl Trial {
     fn new(form: NormalForm, given: &Given) -> Option<Trial> {
+        let holds = |&z: &Complex64| form.preimage(z, ZERO).is_some_and(|v| v.norm() < CLEAR);
+        if given.outside.iter().any(holds) {
+            return None;
+        }
         let map = |(pole, ascent): &(Pole, Vec<Complex64>)| MappedPole::new(&form, pole, ascent);
         let poles: Vec<Option<MappedPole>> = given.poles.iter().map(map).collect();
         let split = poles
@@ -93,6 +100,8 @@ pub(crate) struct Given<'a> {
     pub phase: &'a dyn Phase,
     pub amplitude: &'a dyn Amplitude,
     pub poles: &'a [(Pole, Vec<Complex64>)],
+    /// Branch points of the amplitude, which must lie outside all rings.
+    pub outside: &'a [Complex64],
 }
 
 /// One cluster or end point, ready for any wavenumber.

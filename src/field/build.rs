@@ -51,6 +51,7 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
     let points = contour.points();
     let tails = topology.tails();
     let branches = branches(problem)?;
+    let bases: Vec<Complex64> = branches.iter().map(|branch| branch.base).collect();
     let mut sheeting = topology.sheeting(&branches, [points[0], points[points.len() - 1]]);
 
     let mut ends: Vec<End> = Vec::new();
@@ -69,7 +70,7 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
             let end = usize::from(sign < 0.0);
             let lifts = (0..).map(|slot| sheeting.at_end(slot, end));
             let powered = Powered::new(amplitude, at, branches.iter().copied().zip(lifts));
-            let given = Given { phase, amplitude: powered.simplest(), poles: &[] };
+            let given = Given { phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
             let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
             ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
         }
@@ -81,7 +82,7 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
             reach.include(height(pole.value), topology.turned_height(pole.value));
         }
     }
-    let given = Given { phase, amplitude, poles: &poles };
+    let given = Given { phase, amplitude, poles: &poles, outside: &bases };
 
     let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {

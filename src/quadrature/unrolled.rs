@@ -169,8 +169,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 // that of its next vertex by the turn about the other end. The finish likewise.
                 let (next, last) = (inner[0], inner[inner.len() - 1]);
                 let leaves = begin.im + ((finish - next) / (finish - start)).arg();
-                let arrives =
-                    path[path.len() - 1].im + ((finish - start) / (last - start)).arg();
+                let arrives = path[path.len() - 1].im + ((finish - start) / (last - start)).arg();
                 let first = (leaving.arg() - leaves) * (powers[0] - 1.0);
                 let second = (arriving.arg() + arrives) * (powers[1] - 1.0);
                 Complex64::from_polar(1.0, first + second + (finish - start).arg())

@@ -144,10 +144,16 @@ impl<'p> Topology<'p> {
         branches: &'t [Branch],
         ends: [Complex64; 2],
     ) -> Sheeting<'t, 'p> {
+        // The path's vertices are moved by a hair: not those that are a hub of ridges.
+        let mut vertices = self.path.clone();
+        let last = vertices.len() - 1;
+        for branch in branches {
+            vertices[branch.end * last] = branch.base;
+        }
         // Branch by branch, from the end where it begins.
         let mut lifts = [Vec::new(), Vec::new()];
         for (slot, branch) in branches.iter().enumerate() {
-            let mut points = self.path.clone();
+            let mut points = vertices.clone();
             if branch.end == 1 {
                 points.reverse();
             }
@@ -159,7 +165,7 @@ impl<'p> Topology<'p> {
             }
             lifts[slot] = std::mem::take(&mut line.lifts[slot]);
         }
-        let path = Line { points: self.path.clone(), lifts };
+        let path = Line { points: vertices, lifts };
         let tails = [0, 1].map(|end| {
             let mut first = [Some(0.0); 2];
             for (slot, branch) in branches.iter().enumerate() {
@@ -294,7 +300,7 @@ impl Sheeting<'_, '_> {
                 (1..=PIECES).map(|piece| form.point(v * (piece as f64 / PIECES as f64))).collect();
             let begin = near(branch.angle(points[0]), start + angle);
             // Close to the end, but not in it: the contour begins there.
-            points.insert(0, branch.base + (points[0] - branch.base) * 0.01);
+            points.insert(0, branch.base + (points[0] - branch.base) * 1e-9);
             let mut firsts = [Some(0.0); 2];
             firsts[slot] = Some(begin);
             if other < self.branches.len() {
@@ -342,16 +348,14 @@ impl Sheeting<'_, '_> {
         let mut v = Complex64::new(0.0, 0.0);
         let mut angle = 0.0;
         'line: for (i, pair) in line.points.windows(2).enumerate() {
-            const PIECES: usize = 4;
-            for piece in 1..=PIECES {
-                let z = pair[0] + (pair[1] - pair[0]) * (piece as f64 / PIECES as f64);
+            // The first piece may be far longer than the ring.
+            let finest = if i == 0 { -12 } else { -2 };
+            for power in finest..=0 {
+                let z = pair[0] + (pair[1] - pair[0]) * 2f64.powi(power);
                 let Some(ahead) = preimage(form.map(), z, v) else { break 'line };
-                let last = ahead.arg();
-                angle = if i == 0 && piece == 1 {
-                    near(last, line.lifts[slot][1] - start)
-                } else {
-                    near(last, angle)
-                };
+                let first = i == 0 && power == finest;
+                let before = if first { line.lifts[slot][1] - start } else { angle };
+                angle = near(ahead.arg(), before);
                 v = ahead;
                 if v.norm() > 1.0 {
                     break 'line;
