@@ -129,6 +129,11 @@ impl Scaled {
         self.mantissa.norm().ln() + self.exponent as f64 * std::f64::consts::LN_2
     }
 
+    /// The modulus.
+    pub fn norm(self) -> Self {
+        Scaled::new(Complex64::new(self.mantissa.norm(), 0.0), self.exponent)
+    }
+
     /// True for zero.
     pub fn is_zero(self) -> bool {
         self.mantissa.re == 0.0 && self.mantissa.im == 0.0

@@ -64,3 +64,16 @@ fn bad_input_gets_one_clear_error() {
     );
     assert!(matches!(hole.plan(), Err(Error::NotFinite { .. })));
 }
+
+#[test]
+fn a_plan_explains_itself() {
+    let integral = Integral::new(
+        |z: Complex64| (z.powi(4) - z * z * 0.3 + z * 0.1, z.powi(3) * 4.0 - z * 0.6 + 0.1),
+        Contour::through([Complex64::from_polar(2.0, 3.5), Complex64::from_polar(2.0, 0.39)]),
+    )
+    .amplitude(|z: Complex64| (z - c(0.5, 0.6)).inv())
+    .pole(c(0.5, 0.6));
+    let text = integral.plan().expect("a plan").explain();
+    println!("{text}");
+    assert!(text.contains("3 saddles") && text.contains("cusp of [") && text.contains("pole at"));
+}

@@ -3,6 +3,7 @@
 use merging_saddles::integral::Polynomial;
 use merging_saddles::{Complex64 as C, Contour, Error, Estimate, Form, Integral, Scaled};
 use proptest::prelude::*;
+use proptest::test_runner::RngSeed;
 use std::f64::consts::PI;
 
 fn c(re: f64, im: f64) -> C {
@@ -357,8 +358,66 @@ fn any_k(from: f64, to: f64) -> impl Strategy<Value = f64> {
     (from.log10()..to.log10()).prop_map(|l| 10.0_f64.powf(l))
 }
 
+/// The residue theorem (DLMF 1.10.8) for `g = 1 + weight (z - p)^(-order)` and a quartic phase: the
+/// contour above the pole minus the one below it gives -2 pi i times the residue.
+fn residue_agrees(k: f64, x: (f64, f64), p: C, order: i32, weight: f64, clearance: f64) -> bool {
+    let phase = cuspoid(&[c(x.0, 0.0), c(x.1, 0.0)]);
+    let value = |shift: f64| {
+        let (from, to) = (C::from_polar(5.0, 1.125 * PI), C::from_polar(5.0, 0.125 * PI));
+        Integral::new(phase.clone(), Contour::through([from, p + c(0.0, shift), to]))
+            .amplitude(move |z: C| 1.0 + weight * (z - p).powi(-order))
+            .quadrature(k, 1e-10)
+            .unwrap()
+    };
+    let (above, below) = (value(clearance), value(-clearance));
+    let f = ((p * p + x.0) * p + x.1) * p;
+    let first = C::i() * k * ((4.0 * p * p + 2.0 * x.0) * p + x.1);
+    let second = C::i() * k * (12.0 * p * p + 2.0 * x.0);
+    let residue = match order {
+        1 => c(1.0, 0.0),
+        2 => first,
+        _ => (first * first + second) * 0.5,
+    };
+    let jump = Scaled::exp(C::i() * k * f) * (residue * c(0.0, -2.0 * PI * weight));
+    let miss = above.scaled + -below.scaled + -jump;
+    let figure = (above.relative_error.ln() + above.scaled.ln_norm())
+        .max(below.relative_error.ln() + below.scaled.ln_norm());
+    // The jump itself is rounded: k f in double precision.
+    let rounding = jump.ln_norm() + (8.0 * f64::EPSILON * (1.0 + k * 30.0)).ln();
+    let top = figure.max(rounding);
+    miss.ln_norm() < top + (2.0 * (figure - top).exp() + (rounding - top).exp()).ln()
+}
+
+// Poles that no local test sees: found by the loop integral at the end.
+#[test]
+fn weak_poles_are_found() {
+    let mut state = 1_u64;
+    let mut random = |from: f64, to: f64| {
+        // A linear congruence modulo 2^64 (common practice), the upper bits.
+        state =
+            state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        from + (to - from) * (state >> 11) as f64 / (1_u64 << 53) as f64
+    };
+    let mut right = 0;
+    let total = 600;
+    for n in 0..total {
+        let k = 10.0_f64.powf(random(0.0, 4.0));
+        let x = (random(-3.0, 3.0), random(-2.0, 2.0));
+        let p = c(random(-2.0, 2.0), random(-2.0, 2.0));
+        let weight = 10.0_f64.powf(random(-8.0, -4.0));
+        right += i32::from(residue_agrees(k, x, p, 1 + n % 2, weight, random(0.05, 1.0)));
+    }
+    println!("weak poles: {right} of {total}");
+    assert!(1000 * right >= 995 * total, "{right} of {total}");
+}
+
 proptest! {
-    #![proptest_config(ProptestConfig::with_cases(200))]
+    #![proptest_config(ProptestConfig {
+        cases: 200,
+        rng_seed: RngSeed::Fixed(36),
+        failure_persistence: None,
+        ..ProptestConfig::default()
+    })]
 
     // Cauchy's theorem: sinh-like phases with towers of saddles, any way from valley to valley.
     #[test]
@@ -412,7 +471,6 @@ proptest! {
         prop_assert!(closure(&[(1.0, &exponential), (1.0, &square), (-1.0, &whole)]) < 1.0);
     }
 
-    // The residue theorem, DLMF 1.10.8: above the pole minus below it is -2 pi i times the residue.
     #[test]
     fn poles_stay_on_their_side(
         k in any_k(1.0, 1e4),
@@ -422,30 +480,7 @@ proptest! {
         weight in any_k(1e-4, 1.0),
         clearance in 0.05..1.0_f64,
     ) {
-        let phase = cuspoid(&[c(x.0, 0.0), c(x.1, 0.0)]);
-        let value = |shift: f64| {
-            let (from, to) = (C::from_polar(5.0, 1.125 * PI), C::from_polar(5.0, 0.125 * PI));
-            Integral::new(phase.clone(), Contour::through([from, p + c(0.0, shift), to]))
-                .amplitude(move |z: C| 1.0 + weight * (z - p).powi(-order))
-                .quadrature(k, 1e-10)
-                .unwrap()
-        };
-        let (above, below) = (value(clearance), value(-clearance));
-        let f = ((p * p + x.0) * p + x.1) * p;
-        let first = C::i() * k * ((4.0 * p * p + 2.0 * x.0) * p + x.1);
-        let second = C::i() * k * (12.0 * p * p + 2.0 * x.0);
-        let residue = match order {
-            1 => c(1.0, 0.0),
-            2 => first,
-            _ => (first * first + second) * 0.5,
-        };
-        let jump = Scaled::exp(C::i() * k * f) * (residue * c(0.0, -2.0 * PI * weight));
-        let miss = above.scaled + -below.scaled + -jump;
-        let figure = (above.relative_error.ln() + above.scaled.ln_norm())
-            .max(below.relative_error.ln() + below.scaled.ln_norm());
-        // The exact jump itself is rounded: k f in double precision.
-        let rounding = jump.ln_norm() + (8.0 * f64::EPSILON * (1.0 + k * 30.0)).ln();
-        prop_assert!(miss.ln_norm() < (2.0 * figure.exp() + rounding.exp()).ln().max(figure + 0.7));
+        prop_assert!(residue_agrees(k, x, p, order, weight, clearance));
     }
 
     // A square root whose cut is turned away from the contour by two different angles.
@@ -552,6 +587,25 @@ fn fresnel_integral_from_a_flat_contour() {
         let half = C::from_polar(0.5 * (PI / k).sqrt(), 0.25 * PI);
         assert!((piece.value + rest.value - half).norm() < piece.error + rest.error + 1e-16);
         assert!(piece.relative_error < 1e-9);
+    }
+}
+
+// Ai(10^(2/3)) by DLMF 9.5.4 with the third valley visited on the way: the two crossings of the
+// saddle -i are e^13 times the value and cancel.
+#[test]
+fn detours_are_cut_off() {
+    let f = |t: C| (t * t * t / 3.0 + t, t * t + 1.0);
+    let (from, to) = (C::from_polar(2.0, PI * 5.0 / 6.0), C::from_polar(2.0, PI / 6.0));
+    let value = |way: &[C]| {
+        let points = [&[from], way, &[to]].concat();
+        Integral::new(f, Contour::through(points)).quadrature(10.0, 1e-12).unwrap()
+    };
+    let plain = value(&[]);
+    let low = c(0.0, -3.0);
+    for way in [vec![low, c(0.0, 3.0)], vec![low, c(4.0, -3.0), low, c(0.0, 3.0)], vec![low]] {
+        let u = value(&way);
+        assert!(closure(&[(1.0, &u), (-1.0, &plain)]) < 1.0);
+        assert!(u.relative_error < 1e-12, "{way:?}: {u:?}");
     }
 }
 

@@ -1,26 +1,31 @@
 use merging_saddles::*;
-use std::cell::Cell;
-use std::f64::consts::PI;
+type C = Complex64;
 fn c(re: f64, im: f64) -> Complex64 {
     Complex64::new(re, im)
 }
 #[test]
 fn dbg() {
-    let n = Cell::new(0usize);
-    let f = |z: Complex64| {
-        n.set(n.get() + 1);
-        (z * z * z / 3.0 - z * 0.3, z * z - 0.3)
-    };
-    let i = Integral::new(
-        f,
-        Contour::through([
-            Complex64::from_polar(3.0, 5.0 * PI / 6.0),
-            c(0.0, 0.0),
-            Complex64::from_polar(3.0, PI / 6.0),
-        ]),
-    );
-    for _ in 0..200 {
-        std::hint::black_box(i.plan().is_ok());
+    let zeta = 0.5;
+    let mi = c(0.0, -1.0);
+    let f = move |s: C| ((s.ln() + (s * 0.5 - zeta) * s) * mi, (s.inv() + s - zeta) * mi);
+    let it = Integral::new(f, Contour::through([c(1.0, -4.0), c(1.0, 0.0), c(1.0, 4.0)]))
+        .amplitude(|s: C| s.sqrt().inv());
+    match it.plan() {
+        Ok(p) => println!("{}\n{:?}\n{:?}", p.explain(), p.at(10.5), it.quadrature(10.5, 1e-10)),
+        Err(e) => println!("Z {e}"),
     }
-    println!("EV {}", n.get() / 200);
+    let (sin, cos) = 0.45f64.sin_cos();
+    let f = move |w: C| {
+        let (s, h) = (w.sinh(), w.cosh());
+        ((cos - sin * s) * h, (cos - sin * s) * s - sin * h * h)
+    };
+    let q = std::f64::consts::FRAC_PI_4;
+    let it = Integral::new(f, Contour::through([c(-3.0, -q), c(0.0, 0.0), c(3.0, -q)]))
+        .amplitude(|w: C| w.cosh().inv())
+        .pole(c(0.0, 2.0 * q))
+        .pole(c(0.0, -2.0 * q));
+    match it.plan() {
+        Ok(p) => println!("{}\n{:?}\n{:?}", p.explain(), p.at(10.0), it.quadrature(10.0, 1e-10)),
+        Err(e) => println!("Z {e}"),
+    }
 }

@@ -93,14 +93,17 @@ impl NearEnd {
             else {
                 continue;
             };
-            let mut parts = Parts::of_ring(ring, &moments.map(|c| c.norm()), k, orders);
+            let mut parts = Parts::of_ring(ring, &moments.values.map(|c| c.norm()), k, orders);
             let mut power = 1.0 / k;
             for n in 0..MAX_ORDERS {
                 parts.terms[n] += power * boundary.terms[n].norm();
                 parts.noise[n] += power * boundary.noise[n];
                 power /= k;
             }
-            let (kept, figure) = parts.least();
+            let (kept, mut figure) = parts.least();
+            for (p, error) in ring.orders.coefficients(0).iter().zip(&moments.errors) {
+                figure += p.norm() * error;
+            }
             if best.as_ref().is_none_or(|b| figure < b.2) {
                 best = Some((index, kept, figure, moments));
             }
@@ -112,7 +115,7 @@ impl NearEnd {
         let mut power = 1.0;
         for n in 0..kept {
             let p = ring.orders.coefficients(n);
-            let inside: Complex64 = p.iter().zip(&moments).map(|(p, c)| p * c).sum();
+            let inside: Complex64 = p.iter().zip(&moments.values).map(|(p, c)| p * c).sum();
             sum += (inside + boundary.terms[n] * Complex64::new(0.0, 1.0 / k)) * power;
             power /= k;
         }

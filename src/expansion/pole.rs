@@ -173,15 +173,16 @@ impl MappedPole {
         let mut integral = ZERO;
         let mut at_pole = ZERO;
         // Sizes of what the two principal parts are multiplied with.
-        let (mut size, mut size_at_pole) = (0.0, 0.0);
+        let (mut size, mut size_at_pole, mut lost) = (0.0, 0.0, 0.0);
         for (l, c) in c.iter().enumerate().take(count) {
             // q_l(q) = sum_(j > l) d_j q^(j - 1 - l)
             let mut power = Complex64::new(1.0, 0.0);
             for (s, d) in d[l + 1..degree].iter().enumerate() {
-                let term = c * d * conjugate[s].conj();
+                let term = c * d * conjugate.values[s].conj();
                 integral += term;
                 at_pole += c * d * power;
                 size += k * term.norm();
+                lost += k * (c * d).norm() * conjugate.errors[s];
                 size_at_pole += k * (c * d * power).norm();
                 power *= self.u;
             }
@@ -189,11 +190,10 @@ impl MappedPole {
         let p = -ik * integral;
         let slope = d[..degree].iter().rev().fold(ZERO, |sum, d| sum * self.u + d);
         let second = ik * (slope * p + at_pole);
-        // Rounding: the incomplete integrals are good to some 7e-14 at worst; the second order is a
-        // difference where the pole is far.
-        let rounding = ROUNDING
-            * (self.simple.norm() * size
-                + self.double.norm() * (k * slope.norm() * size + size_at_pole));
+        // Rounding; the second order is a difference where the pole is far.
+        lost += 4.0 * f64::EPSILON * size;
+        let rounding = self.simple.norm() * lost
+            + self.double.norm() * (k * slope.norm() * lost + 4.0 * f64::EPSILON * size_at_pole);
         // The pole's place in u is known to rounding and to the residual of the form.
         let shift = 6.0 * self.blur + 2.0 * residual / slope.norm().max(k.powf(-0.5));
         let third = second.norm() * (2.0 / self.u.norm()).min(k * slope.norm()).max(k.sqrt());
@@ -207,7 +207,5 @@ impl MappedPole {
 const CIRCLES: usize = 12;
 /// Poles up to this multiple of the ring's radius are split off.
 const OUTSIDE: f64 = 1.15;
-/// The error of an incomplete integral, relative.
-const ROUNDING: f64 = 1e-13;
 /// No ring may pass a pole closer than this part of its radius.
 const CLOSE: f64 = 0.06;

@@ -123,17 +123,20 @@ pub(crate) struct Series {
 #[derive(Clone, Copy, Debug)]
 pub(crate) struct Contribution {
     pub value: Scaled,
+    /// Its modulus; of a sum, the sum of the moduli.
+    pub size: Scaled,
     pub error: Scaled,
     pub orders: usize,
 }
 
 impl Contribution {
     pub const NONE: Contribution =
-        Contribution { value: Scaled::ZERO, error: Scaled::ZERO, orders: 0 };
+        Contribution { value: Scaled::ZERO, size: Scaled::ZERO, error: Scaled::ZERO, orders: 0 };
 
     /// What could not be computed.
     pub const UNKNOWN: Contribution = Contribution {
         value: Scaled::ZERO,
+        size: Scaled::ZERO,
         error: Scaled { mantissa: Complex64::new(f64::INFINITY, 0.0), exponent: 0 },
         orders: 0,
     };
@@ -146,13 +149,14 @@ impl Contribution {
     /// `exp(exponent)` times a value and its error.
     pub fn new(exponent: Complex64, value: Scaled, error: Scaled, orders: usize) -> Contribution {
         let factor = Scaled::exp(exponent);
-        let size = Scaled::new(Complex64::new(factor.mantissa.norm(), 0.0), factor.exponent);
-        Contribution { value: factor * value, error: size * error, orders }
+        let value = factor * value;
+        Contribution { value, size: value.norm(), error: factor.norm() * error, orders }
     }
 
     pub fn and(&self, other: &Contribution) -> Contribution {
         Contribution {
             value: self.value + other.value,
+            size: self.size + other.size,
             error: self.error + other.error,
             orders: self.orders.max(other.orders),
         }
@@ -208,7 +212,9 @@ impl Series {
             trials.insert(0, inwards);
         }
         let kept = |ring: &Trial| {
+            // A large tail is a singularity inside: no figure could be trusted.
             ring.filling < FILLING
+                && ring.tail() < WORST_TAIL
                 && ring.form.radius() >= SMALLEST * largest
                 && ring.poles.iter().flatten().all(|pole| pole.is_clear_of(&ring.form))
         };

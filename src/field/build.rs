@@ -1,12 +1,12 @@
 //! How a plan is made: location, grouping, expansions, topology, certificate.
 
 use super::algebraic::{algebraic_ends, branches, on_sheets};
-use super::plan::{End, MAX_GROUPS, Node, Plan, decided};
+use super::plan::{End, MAX_GROUPS, Node, Place, Plan, decided};
 use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Powered, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
-use crate::saddles::{Group, Region, Saddle, Sheeting, Topology, Tree, locate_among_poles};
+use crate::saddles::{Group, Region, Saddle, Sheeting, Topology, Tree, locate};
 use num_complex::Complex64;
 
 pub(super) fn undecided(reason: impl Into<String>) -> Error {
@@ -30,22 +30,11 @@ pub(super) struct Problem<'a> {
     pub wavenumbers: (f64, f64),
 }
 
-/// How saddles are looked for.
-#[derive(Clone, Copy)]
-pub(super) struct Search {
-    /// How wide round the contour, in units of its size.
-    pub margin: f64,
-    /// Quarterings before a count of no saddle is believed: a pole of `f'` counts against one.
-    pub finest: u32,
-    /// Quarterings before any count is believed.
-    pub wary: u32,
-}
-
-/// One attempt.
-pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> {
+/// One attempt: saddles are looked for within `margin` of the contour.
+pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
-    let region = Region::around(contour.points(), search.margin);
-    let saddles = locate_among_poles(phase, region, (search.finest, search.wary))?;
+    let region = Region::around(contour.points(), margin);
+    let saddles = locate(phase, region)?;
     let size = region.size();
     let topology = Topology::new(phase, contour, &saddles, drop);
     let points = contour.points();
@@ -145,7 +134,7 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
         floor: top - drop,
     };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
-    certify(&plan, &topology, lowest - drop)?;
+    certify(&mut plan, &topology, lowest - drop)?;
     for saddle in &saddles {
         let [_, _, second] = phase.jet(saddle.z);
         let power: f64 =
@@ -154,7 +143,8 @@ pub(super) fn attempt(problem: &Problem, search: Search) -> Result<Plan, Error> 
             * power
             * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
-        plan.saddles.push((h, if weight.is_finite() { weight } else { 0.0 }));
+        let weight = if weight.is_finite() { weight } else { 0.0 };
+        plan.saddles.push(Place { z: saddle.z, exponent: h, weight });
     }
     Ok(plan)
 }
@@ -275,38 +265,89 @@ fn resolve(
     Ok(nodes)
 }
 
-/// The certificate for the finest level that is known, then for each group against its parts.
-fn certify(plan: &Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
-    let valleys = |series: &Series| {
-        if series.contributes() {
-            topology.valleys(series.form(), series.multiplicities(), floor)
-        } else {
-            Some(Vec::new())
-        }
-    };
+/// The certificate. The finest partition into groups that is known is tried first, then coarser
+/// ones; what is finer than the one that passes is dropped. Then each coarser group must pass in the
+/// place of its parts, or is dropped too.
+fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
     let beside = |index: usize| {
         let mut near = plan.algebraic.iter().flat_map(|end| &end.near);
-        let (_, series) = near.find(|(node, _)| *node == index)?;
-        Some(topology.sunk(series.valleys.clone(), floor))
+        near.find(|(node, _)| *node == index).map(|(_, series)| &series.valleys)
     };
-    let mut all = Vec::new();
-    let mut missing = false;
-    let mut stack = plan.roots.clone();
-    while let Some(index) = stack.pop() {
-        let node = &plan.nodes[index];
-        match node.parts {
-            Some((a, b)) if decided(&plan.nodes, a) && decided(&plan.nodes, b) => {
-                stack.extend([a, b])
+    let valleys: Vec<Option<Valleys>> = plan
+        .nodes
+        .iter()
+        .enumerate()
+        .map(|(index, node)| match &node.series {
+            Some(series) if series.contributes() => {
+                topology.valleys(series.form(), series.multiplicities(), floor)
             }
-            _ => match node.series.as_ref().map(valleys).or_else(|| beside(index)) {
-                Some(Some(list)) => all.extend(list),
-                Some(None) => missing = true,
-                None => {}
+            // Settled without a series: too high or too low to matter.
+            Some(_) => Some(Vec::new()),
+            None => match beside(index) {
+                Some(list) => topology.sunk(list.clone(), floor),
+                None => node.settled.then(Vec::new),
             },
+        })
+        .collect();
+    let closes = |partition: &[usize]| {
+        let mut all = Vec::new();
+        for &index in partition {
+            match &valleys[index] {
+                Some(list) => all.extend(list),
+                None => return false,
+            }
+        }
+        topology.closes(&all, floor)
+    };
+    // With one group taken as a whole, everything else as fine as it is known.
+    let with = |whole: Option<usize>| {
+        let mut partition = Vec::new();
+        let mut stack = plan.roots.clone();
+        while let Some(index) = stack.pop() {
+            let node = &plan.nodes[index];
+            match node.parts.filter(|_| whole != Some(index)) {
+                Some((a, b)) if decided(&plan.nodes, a) && decided(&plan.nodes, b) => {
+                    stack.extend([a, b]);
+                }
+                _ => partition.push(index),
+            }
+        }
+        partition
+    };
+    let wholes = (0..plan.nodes.len()).filter(|&n| plan.nodes[n].parts.is_some());
+    let wholes: Vec<usize> = wholes.filter(|&n| plan.nodes[n].series.is_some()).collect();
+    let mut tries = std::iter::once(None).chain(wholes.iter().copied().map(Some));
+    let Some(passed) = tries.find(|&whole| closes(&with(whole))) else {
+        return Err(undecided("the contributions found do not join the two ends of the contour"));
+    };
+    let mut dropped = Vec::new();
+    if let Some(whole) = passed {
+        let mut stack: Vec<usize> =
+            plan.nodes[whole].parts.into_iter().flat_map(|(a, b)| [a, b]).collect();
+        while let Some(index) = stack.pop() {
+            dropped.push(index);
+            stack.extend(plan.nodes[index].parts.into_iter().flat_map(|(a, b)| [a, b]));
         }
     }
-    if missing || !topology.closes(&all, floor) {
-        return Err(undecided("the contributions found do not join the two ends of the contour"));
+    for &whole in &wholes {
+        // One that holds the group that passed replaces it; one elsewhere stands beside it.
+        let holds = passed.is_none_or(|p| {
+            plan.nodes[whole].members & plan.nodes[p].members == plan.nodes[p].members
+        });
+        if passed != Some(whole)
+            && !dropped.contains(&whole)
+            && holds
+            && !closes(&with(Some(whole)))
+        {
+            dropped.push(whole);
+        }
+    }
+    for index in dropped {
+        plan.nodes[index].series = None;
+        plan.nodes[index].settled = false;
     }
     Ok(())
 }
+
+/// Weights and points far down of the valleys that a group's contribution runs between.
+type Valleys = Vec<(i32, Complex64)>;

@@ -2,6 +2,7 @@
 
 mod algebraic;
 mod build;
+mod explain;
 mod plan;
 
 pub use plan::Plan;

@@ -1,6 +1,6 @@
 //! A plan: every decision about an integral that does not depend on the wavenumber.
 
-use super::build::{Problem, Search, attempt};
+use super::build::{Problem, attempt};
 use crate::estimate::Form;
 use crate::expansion::{AlgebraicSeries, Contribution, NearEnd, Part, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
@@ -21,18 +21,9 @@ const LEAST_K: f64 = 2.0;
 /// How many nepers below the highest contribution nothing matters.
 const NEPERS: f64 = 40.0;
 
-/// How saddles are looked for: farther out if the certificate says that a contributing one is missing.
-const SEARCHES: [Search; 3] = [
-    Search { margin: 0.3, finest: 2, wary: 0 },
-    Search { margin: 1.0, finest: 3, wary: 0 },
-    Search { margin: 3.0, finest: 4, wary: 0 },
-];
-/// The same for a closed contour, which as a rule has a singularity of the phase inside.
-const SEARCHES_INSIDE: [Search; 3] = [
-    Search { margin: 0.3, finest: 2, wary: 0 },
-    Search { margin: 0.3, finest: 4, wary: 4 },
-    Search { margin: 1.0, finest: 5, wary: 5 },
-];
+/// How wide round the contour saddles are looked for, in units of its size: wider if the
+/// certificate says that a contributing saddle is missing.
+const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
 
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
@@ -41,7 +32,7 @@ pub(super) struct Node {
     /// Its series is known, or it needs none: too high or too low to matter.
     pub settled: bool,
     /// Its saddles, one bit for each entry of the plan's list.
-    members: u64,
+    pub members: u64,
 }
 
 impl Node {
@@ -93,6 +84,15 @@ impl AlgebraicEnd {
     }
 }
 
+/// A saddle as the plan remembers it.
+pub(super) struct Place {
+    pub z: Complex64,
+    /// `i f`.
+    pub exponent: Complex64,
+    /// The size of its leading term without the power of `k`: the lower term at a Stokes line.
+    pub weight: f64,
+}
+
 /// Everything about an integral that does not depend on the wavenumber: the saddles, their
 /// groups with the uniform expansion of each, which of them the contour needs, and the error
 /// figures' ingredients. Made by [`Integral::plan`]; calls of [`Plan::at`] allocate nothing, and a
@@ -104,9 +104,7 @@ pub struct Plan {
     pub(super) ends: Vec<End>,
     pub(super) algebraic: Vec<AlgebraicEnd>,
     pub(super) poles: Vec<Pole>,
-    /// `i f` at every saddle, and the size of its leading term without the power of `k`: the lower
-    /// term at a Stokes line.
-    pub(super) saddles: Vec<(Complex64, f64)>,
+    pub(super) saddles: Vec<Place>,
     /// Nothing with `Re(i f)` below this was looked at.
     pub(super) floor: f64,
 }
@@ -114,11 +112,11 @@ pub struct Plan {
 impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// Finds the saddles, groups them, decides which contribute, and computes their expansions.
     ///
-    /// Groups of up to two saddles (a fold, K = 1) have a uniform expansion; single saddles and
-    /// finite end points have their own. Where saddles are close both forms are kept, and each
-    /// wavenumber takes the one with the smaller error figure. Three or more merging saddles, a
-    /// finite end near a saddle, and poles or branch points of `f` or `g` near a saddle are not
-    /// covered: the error figure says so, or the plan is refused.
+    /// Groups of two to five saddles near each other or merged (fold, cusp, swallowtail, butterfly:
+    /// K = 1 to 4) have a uniform expansion; single saddles and finite end points have their own, an
+    /// end point near a group its uniform form, and poles named by [`Integral::pole`] are split off.
+    /// Where saddles are close both forms are kept, and each wavenumber takes the one with the smaller
+    /// error figure. [`Plan::explain`] says what was found.
     ///
     /// Cost: about 3,000 evaluations of the phase for one group, more for several; no allocation
     /// afterwards.
@@ -199,9 +197,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             wavenumbers: (least, greatest),
         };
         let mut last = None;
-        let searches = if self.contour().is_closed() { SEARCHES_INSIDE } else { SEARCHES };
-        for search in searches {
-            match attempt(&problem, search) {
+        for margin in MARGINS {
+            match attempt(&problem, margin) {
                 Ok(plan) => return Ok(plan),
                 Err(error) => last = Some(error),
             }
@@ -316,18 +313,19 @@ impl Plan {
             }
             return;
         }
-        for (other, &(lower, weight)) in self.saddles.iter().enumerate() {
+        for (other, lower) in self.saddles.iter().enumerate() {
             if node.members >> other & 1 == 1 {
                 continue;
             }
-            let near = self.saddles.iter().enumerate().any(|(own, &(upper, _))| {
-                let f = (upper - lower) * k;
+            let near = self.saddles.iter().enumerate().any(|(own, upper)| {
+                let f = (upper.exponent - lower.exponent) * k;
                 node.members >> own & 1 == 1
                     && (1.0..45.0).contains(&f.re)
                     && f.im.abs() < 3.0 * (2.0 * f.re).sqrt()
             });
             if near {
-                let size = Scaled::exp(Complex64::new(k * lower.re, 0.0)) * (weight / k.sqrt());
+                let size = Scaled::exp(Complex64::new(k * lower.exponent.re, 0.0))
+                    * (lower.weight / k.sqrt());
                 total.error = total.error + size;
             }
         }
@@ -362,12 +360,12 @@ fn below(a: Scaled, b: Scaled) -> bool {
     a.ln_norm() < b.ln_norm()
 }
 
+/// Refuses what has no correct digit: an error as large as all contributions together.
 fn finish(total: Contribution, form: Form, k: f64) -> Result<Estimate, Error> {
-    if !total.value.is_finite() || !total.error.is_finite() {
-        return Err(Error::NoDigits {
-            what: "the expansion",
-            value: Complex64::new(k, 0.0),
-            digits: 0.0,
+    let finite = total.value.is_finite() && total.error.is_finite();
+    if !finite || (!total.size.is_zero() && !below(total.error, total.size)) {
+        return Err(Error::Undecided {
+            reason: format!("at k = {k} the expansion's error figure is as large as its value"),
             remedy: "use `quadrature` at this wavenumber",
         });
     }

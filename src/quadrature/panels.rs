@@ -32,6 +32,13 @@ struct Panel {
     noise: f64,
 }
 
+impl Panel {
+    /// Whether halving may help.
+    fn reducible(&self) -> bool {
+        self.defect > NOISE * self.noise
+    }
+}
+
 /// Integral times `exp(-k h0)`, with what is known of its errors.
 pub(super) struct Sum {
     pub value: Complex64,
@@ -63,14 +70,15 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
         loop {
             let sum = total(&panels, left_out);
             let goal = (tolerance * sum.value.norm()).max(f64::EPSILON * sum.size);
-            let worst = panels
-                .iter()
-                .enumerate()
-                .filter(|(_, p)| p.defect > NOISE * p.noise)
-                .max_by(|a, b| a.1.defect.total_cmp(&b.1.defect));
-            let Some((i, _)) = worst.filter(|_| sum.defect > 0.25 * goal) else {
+            // Only what is not noise already can be reduced.
+            let (mut left, mut worst) = (0.0, 0.0_f64);
+            for panel in panels.iter().filter(|p| p.reducible()) {
+                left += panel.defect;
+                worst = worst.max(panel.defect);
+            }
+            if left <= 0.25 * goal {
                 return Ok(sum);
-            };
+            }
             if panels.len() > PANELS {
                 return Err(Error::NoConvergence {
                     what: "the quadrature",
@@ -80,10 +88,9 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
                 });
             }
             // Halve every panel that is nearly as bad, so that totals are formed rarely.
-            let bar = 0.1 * panels[i].defect;
             for j in 0..panels.len() {
-                let Panel { from, to, defect, noise, .. } = panels[j];
-                if defect >= bar && defect > NOISE * noise {
+                let Panel { from, to, defect, .. } = panels[j];
+                if defect >= 0.1 * worst && panels[j].reducible() {
                     let mid = (from + to) * 0.5;
                     panels[j] = self.panel(from, mid)?;
                     panels.push(self.panel(mid, to)?);

@@ -18,8 +18,11 @@ const SMOOTH: f64 = 0.05;
 /// Panels of the loop integral over the whole contour.
 const PANELS: usize = 40_000;
 
-/// Relative errors of panels that are put up with: near a pole the rounding of `z` makes noise.
-const NOISE: f64 = 1e-11;
+/// Relative errors of a panel that are put up with: near a pole, at a distance of about the panel's
+/// length, the rounding of `z` makes noise.
+fn noise(from: Complex64, to: Complex64) -> f64 {
+    (64.0 * f64::EPSILON * from.norm().max(to.norm()) / (to - from).norm()).max(1e-11)
+}
 
 /// The integral of the amplitude along a chord, and its largest modulus there.
 #[derive(Clone, Copy, Debug)]
@@ -56,9 +59,13 @@ impl<'a, P: Phase, A: Amplitude> Watch<'a, P, A> {
             Some(first) if first != g => self.varies.set(true),
             _ => {}
         }
-        let s = (z - self.origin) / self.size;
-        let weighted = g * (((s / 3.0 + 1.0) * s * 0.5 + 1.0) * s + 1.0);
+        let weighted = g * self.weight(z);
         (weighted.re.is_finite() && weighted.im.is_finite()).then_some(weighted)
+    }
+
+    fn weight(&self, z: Complex64) -> Complex64 {
+        let s = (z - self.origin) / self.size;
+        ((s / 3.0 + 1.0) * s * 0.5 + 1.0) * s + 1.0
     }
 
     /// The integral along a chord; `None` where the values on it do not describe the amplitude:
@@ -68,7 +75,7 @@ impl<'a, P: Phase, A: Amplitude> Watch<'a, P, A> {
             let zero = Complex64::new(0.0, 0.0);
             let panel =
                 rule::panel(from, to, |z| self.weighted(z).map(|g| [g, zero]).ok_or(())).ok()?;
-            let good = panel.defect <= NOISE * panel.size;
+            let good = panel.defect <= noise(from, to) * panel.size;
             return good.then_some(Flux {
                 sum: panel.value,
                 peak: panel.peak,
@@ -106,42 +113,33 @@ impl<'a, P: Phase, A: Amplitude> Watch<'a, P, A> {
         if !self.varies.get() {
             return true;
         }
-        match (self.along(there, fraction), self.along(back, fraction)) {
+        self.equal(there, back, fraction, &|z| self.weighted(z))
+    }
+
+    /// The same for amplitude and phase, for a loop that no triangles have filled. The weight is
+    /// that of the loop, however small.
+    pub fn free(&self, there: &[Complex64], back: &[Complex64], fraction: f64) -> bool {
+        let size = there.iter().map(|z| (z - there[0]).norm()).fold(0.0, f64::max);
+        let local = Watch::new(self.sampler, self.strict, there[0], size);
+        let slope = |z| self.sampler.site(z).map(|s| s.slope * local.weight(z));
+        local.equal(there, back, fraction, &|z| local.weighted(z))
+            && local.equal(there, back, fraction, &slope)
+    }
+
+    fn equal(
+        &self,
+        there: &[Complex64],
+        back: &[Complex64],
+        fraction: f64,
+        value: &dyn Fn(Complex64) -> Option<Complex64>,
+    ) -> bool {
+        match (along(there, fraction, value), along(back, fraction, value)) {
             (Some(out), Some(home)) => {
                 let allowed = fraction * out.size.max(home.size) + 3.0 * (out.error + home.error);
                 (out.sum - home.sum).norm() <= allowed
             }
             _ => false,
         }
-    }
-
-    /// The integral along a path.
-    fn along(&self, path: &[Complex64], fraction: f64) -> Option<Total> {
-        let zero = Complex64::new(0.0, 0.0);
-        let panel = |from, to| {
-            rule::panel(from, to, |z| self.weighted(z).map(|g| [g, zero]).ok_or(())).ok()
-        };
-        let mut stack = Vec::with_capacity(path.len());
-        let mut rough = 0.0;
-        for leg in path.windows(2) {
-            let whole = panel(leg[0], leg[1])?;
-            rough += whole.size;
-            stack.push((leg[0], leg[1], whole));
-        }
-        let mut total = Total { sum: zero, size: 0.0, error: 0.0 };
-        for _ in 0..PANELS {
-            let Some((from, to, part)) = stack.pop() else { return Some(total) };
-            if part.defect <= (0.01 * fraction * rough).max(NOISE * part.size) {
-                total.sum += part.value;
-                total.size += part.size;
-                total.error += part.defect;
-            } else {
-                let mid = (from + to) * 0.5;
-                stack.push((mid, to, panel(mid, to)?));
-                stack.push((from, mid, panel(from, mid)?));
-            }
-        }
-        None
     }
 }
 
@@ -150,4 +148,35 @@ struct Total {
     sum: Complex64,
     size: f64,
     error: f64,
+}
+
+/// The integral along a path.
+fn along(
+    path: &[Complex64],
+    fraction: f64,
+    value: &dyn Fn(Complex64) -> Option<Complex64>,
+) -> Option<Total> {
+    let zero = Complex64::new(0.0, 0.0);
+    let panel = |from, to| rule::panel(from, to, |z| value(z).map(|g| [g, zero]).ok_or(())).ok();
+    let mut stack = Vec::with_capacity(path.len());
+    let mut rough = 0.0;
+    for leg in path.windows(2) {
+        let whole = panel(leg[0], leg[1])?;
+        rough += whole.size;
+        stack.push((leg[0], leg[1], whole));
+    }
+    let mut total = Total { sum: zero, size: 0.0, error: 0.0 };
+    for _ in 0..PANELS {
+        let Some((from, to, part)) = stack.pop() else { return Some(total) };
+        if part.defect <= (0.01 * fraction * rough).max(noise(from, to) * part.size) {
+            total.sum += part.value;
+            total.size += part.size;
+            total.error += part.defect;
+        } else {
+            let mid = (from + to) * 0.5;
+            stack.push((mid, to, panel(mid, to)?));
+            stack.push((from, mid, panel(from, mid)?));
+        }
+    }
+    None
 }

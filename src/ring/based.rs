@@ -137,7 +137,7 @@ impl BasedForm {
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
                 let mut full = [ZERO; POINTS];
                 full[..KEPT].copy_from_slice(&self.map);
-                self.tail = tail(&full, 1);
+                self.tail = tail(&full, 1, 0.0);
                 return true;
             }
             last_step = step;
@@ -248,7 +248,7 @@ impl BasedOrders {
             p: by_parts(form, lambda, &taylor(&values)),
             noise: by_parts(form, lambda, unit_noise()),
             size: size.sqrt(),
-            tail: tail(&values, 0),
+            tail: tail(&values, 0, 0.1 * size.sqrt()),
         })
     }
 

@@ -101,10 +101,11 @@ pub(crate) fn evaluate(coefficients: &[Complex64], v: Complex64) -> Complex64 {
 }
 
 /// How far the coefficients have not decayed: the largest of the last quarter of the Taylor half
-/// and of the negative half, over the largest of all from index `from` on.
-pub(crate) fn tail(full: &Values, from: usize) -> f64 {
+/// and of the negative half, over the largest of all from index `from` on (or over `least`, if that
+/// is more).
+pub(crate) fn tail(full: &Values, from: usize, least: f64) -> f64 {
     let largest = |part: &[Complex64]| part.iter().fold(0.0f64, |m, c| m.max(c.norm_sqr()));
-    let all = largest(&full[from..KEPT]);
+    let all = largest(&full[from..KEPT]).max(least * least);
     let rest = largest(&full[KEPT * 3 / 4..]);
     if all > 0.0 && all.is_finite() { (rest / all).sqrt() } else { f64::INFINITY }
 }

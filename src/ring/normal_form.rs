@@ -122,7 +122,7 @@ impl NormalForm {
     fn measure_tail(&mut self) {
         let mut full = [ZERO; POINTS];
         full[..KEPT].copy_from_slice(&self.map);
-        self.tail = tail(&full, 1);
+        self.tail = tail(&full, 1, 0.0);
     }
 
     /// Newton's method with Weierstrass division, at most `limit` steps.

@@ -86,7 +86,10 @@ impl Start {
             *value = whole - part(v * form.radius());
         }
         to_coefficients(&mut values);
-        Some(Start { coefficients: taylor(&values), size: size.sqrt(), tail: tail(&values, 0) })
+        // Where poles have been taken away little may be left: the noise is that of the whole.
+        let size = size.sqrt();
+        let tail = tail(&values, 0, 0.1 * size);
+        Some(Start { coefficients: taylor(&values), size, tail })
     }
 
     /// The same on a ring smaller by `factor`: nothing new has to be sampled.
@@ -97,7 +100,11 @@ impl Start {
             *scaled = c * power;
             power *= factor;
         }
-        Start { coefficients: taylor(&full), size: self.size, tail: tail(&full, 0) }
+        Start {
+            coefficients: taylor(&full),
+            size: self.size,
+            tail: tail(&full, 0, 0.1 * self.size),
+        }
     }
 
     /// How far the coefficients have not decayed; near 1 with a pole inside the ring.

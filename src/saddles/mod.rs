@@ -1,13 +1,14 @@
 //! Where the saddles are, how they group, and which of them a contour needs.
 
 mod crossings;
+mod follow;
 mod locate;
 mod sheets;
 mod topology;
 mod trace;
 mod tree;
 
-pub(crate) use locate::locate_among_poles;
+pub use follow::follow;
 pub use locate::{Region, Saddle, locate};
 pub(crate) use sheets::{Branch, Sheeting, Sheets, Unrolled};
 pub(crate) use topology::{Multiplicities, Topology};

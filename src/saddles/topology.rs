@@ -245,15 +245,15 @@ impl<'a> Topology<'a> {
     }
 
     /// The valley through which a path, given from a point inside the ring (at `v`) on, leaves it.
-    /// A path that ends inside is judged by its last point.
+    /// A path that ends inside is continued in the normal form.
     pub fn leaves_by_valley(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<usize> {
-        let turns = (leaves(form, v, path)? - PI) / (2.0 * PI);
+        let turns = (leaves(form, v, path, -1.0)? - PI) / (2.0 * PI);
         Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize)
     }
 
     /// The same for a path that leaves by a ridge.
     pub fn leaves_by_ridge(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<usize> {
-        let turns = leaves(form, v, path)? / (2.0 * PI) - 1.0;
+        let turns = leaves(form, v, path, 1.0)? / (2.0 * PI) - 1.0;
         Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize)
     }
 
@@ -333,7 +333,7 @@ fn lift(form: &NormalForm, saddles: &[Complex64; MAX_SADDLES], v: Complex64) -> 
 
 /// The lift where a path from `v` inside the ring leaves it (some way out, for a path that starts
 /// close to the ring).
-fn leaves(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<f64> {
+fn leaves(form: &NormalForm, v: Complex64, path: &[Complex64], direction: f64) -> Option<f64> {
     let saddles = form.saddles_on_disc();
     let mut v = v;
     let mut last = *path.first()?;
@@ -354,8 +354,19 @@ fn leaves(form: &NormalForm, v: Complex64, path: &[Complex64]) -> Option<f64> {
         }
         last = next;
     }
-    let reach = saddles[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
-    (v.norm() > 1.1 * reach).then(|| lift(form, &saddles, v))
+    // On by small steps along the gradient of Re(i e^(i delta) Phi), up (+1) or down (-1).
+    let turn = Complex64::from_polar(direction, DELTA);
+    for _ in 0..400 {
+        if v.norm() > 1.0 {
+            break;
+        }
+        let gradient = (form.radial_slope(v) / v * turn).conj();
+        if !(gradient.norm() > 0.0 && gradient.norm().is_finite()) {
+            return None;
+        }
+        v += gradient * (0.02 / gradient.norm());
+    }
+    (v.norm() > 1.0).then(|| lift(form, &saddles, v))
 }
 
 struct Arcs {

@@ -45,10 +45,14 @@ impl<'a> Exponent<'a> {
 pub(crate) enum Ended {
     /// The height asked for was reached.
     Reached,
+    /// It came to a branch cut of the phase as the closure has it.
+    Cut,
     /// The bound on steps, a singularity or another saddle stopped it.
     Stalled,
 }
 
+/// The next step may be longer by this.
+const GROWTH: f64 = 2.5;
 /// Steps of one trace at most.
 const STEPS: usize = 400;
 
@@ -73,6 +77,8 @@ pub(crate) fn trace(
     let span = (goal - origin.re).abs();
     let mut t = 0.0;
     let mut shrink = 1.0;
+    // Where h'' happens to vanish the natural step is no guide: steps grow by a factor at most.
+    let mut reach = 0.1 * longest;
     for _ in 0..STEPS {
         if t >= span {
             return Ended::Reached;
@@ -82,7 +88,7 @@ pub(crate) fn trace(
             return Ended::Stalled;
         }
         let natural = 0.6 * size * size / bend.norm();
-        let dt = (natural * shrink).min(longest * size).min((span - t) * 1.000_001 + 1e-12 * span);
+        let dt = (natural * shrink).min(reach * size).min((span - t) * 1.000_001 + 1e-12 * span);
         let w = slope.inv() * (direction * dt);
         let target = origin + direction * (t + dt);
         let step = w - bend / (slope * 2.0) * w * w;
@@ -90,16 +96,28 @@ pub(crate) fn trace(
         let correction = (target - value) / ahead;
         // The second derivative by the secant: one evaluation a step.
         let secant = (ahead - slope) / step;
-        let good =
-            (correction * secant / ahead).norm() < 0.15 && correction.norm() < 0.3 * w.norm();
+        // The slope may not change much either: a long step can land on another path.
+        let good = (correction * secant / ahead).norm() < 0.15
+            && correction.norm() < 0.3 * w.norm()
+            && (ahead / slope).ln().norm() < 1.0;
         if good {
             z += step + correction;
             t += dt;
+            reach = (GROWTH * w.norm()).min(longest);
             path.push(z);
             slope = ahead + secant * correction;
             bend = secant;
             shrink = 1.0;
         } else {
+            // Where the slope is smooth but the value jumps, the path leaves the sheet that the closure
+            // is on; the contour is on it, and can't be met again.
+            let jump = value - (origin + direction * t) - (slope + ahead) * step * 0.5;
+            if (ahead / slope).ln().norm() < 0.2
+                && jump.norm() > 0.5 * (size * w.norm())
+                && shrink < 0.1
+            {
+                return Ended::Cut;
+            }
             // Put the point exactly on its height and measure anew before a shorter step.
             for _ in 0..2 {
                 let [here, d, dd] = h.jet(z);

@@ -14,6 +14,9 @@
 //! steepest descents: no oscillation along them. Only its cost depends on how well the descent
 //! went; its value does not, since every chord is in the class of the caller's contour.
 
+mod image;
+mod shortcut;
+
 use super::residue::{Flux, Watch};
 use super::terrain::{Profile, Sampler, Site};
 use crate::Error;
@@ -27,10 +30,10 @@ use std::collections::BinaryHeap;
 const EVALUATIONS: usize = 1_000_000;
 /// Steps of edges, most of which cost no evaluation.
 const MOVES: usize = 4_000_000;
+/// Shortcuts across detours.
+const SHORTCUTS: usize = 32;
 /// A chord is settled if its top is this near a saddle's height, in units of 1/k.
 const SETTLED: f64 = 0.25;
-/// Steps of the tail that runs to infinity.
-const TAIL: usize = 2_000;
 
 struct Node {
     orbit: Vec<Site>,
@@ -49,6 +52,8 @@ enum State {
     Open,
     Settled,
     Sunk,
+    /// No longer part of the contour.
+    Gone,
 }
 
 struct Edge {
@@ -85,18 +90,6 @@ enum Slide {
     Blocked,
 }
 
-/// The flowed contour: straight pieces above the floor, and what was left out.
-pub(super) struct Flowed {
-    /// Pieces in their order and direction.
-    pub pieces: Vec<(Site, Site)>,
-    /// Pieces below the floor, left out.
-    pub sunk: Vec<(Site, Site)>,
-    /// Points from which the contour runs on to infinity, left out, each with a point farther out.
-    pub tails: Vec<(Site, Site)>,
-    /// The floor, in units of `Re h`.
-    pub floor: f64,
-}
-
 pub(super) struct Flow<'a, P, A> {
     sampler: &'a Sampler<'a, P, A>,
     watch: Watch<'a, P, A>,
@@ -107,6 +100,8 @@ pub(super) struct Flow<'a, P, A> {
     /// The highest level, `Re h`, that the contour is known to keep.
     crest: f64,
     ends: [Termination; 2],
+    /// The node of the last vertex.
+    last: usize,
 }
 
 const REMEDY: &str = "give a contour nearer to the saddles and away from singularities, with its \
@@ -149,15 +144,19 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             }
         }
         let ends = [contour.start(), contour.end()];
-        let mut crest = f64::NEG_INFINITY;
-        for (end, node) in ends.iter().zip([0, last]) {
-            if *end == Termination::Finite {
-                crest = crest.max(nodes[node].orbit[0].h.re);
-            }
-        }
         let watch = Watch::new(sampler, strict, points[0], size);
-        let mut flow =
-            Flow { sampler, watch, k, nodes, edges, heap: BinaryHeap::new(), crest, ends };
+        let mut flow = Flow {
+            sampler,
+            watch,
+            k,
+            nodes,
+            edges,
+            heap: BinaryHeap::new(),
+            crest: f64::NEG_INFINITY,
+            ends,
+            last,
+        };
+        flow.crest = flow.lowest_crest();
         for e in 0..sides {
             flow.push(e);
         }
@@ -176,8 +175,20 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         self.heap.push(Rank(rank, e));
     }
 
-    /// Lowers every edge until it is settled or lies `depth/k` below the highest settled one.
+    /// Flows until every edge is settled or lies `depth/k` below the highest settled one, and no
+    /// ridge is crossed forth and back.
     pub fn relax(&mut self, depth: f64) -> Result<(), Error> {
+        for _ in 0..SHORTCUTS {
+            self.sink(depth)?;
+            if !self.shortcut() {
+                break;
+            }
+        }
+        Ok(())
+    }
+
+    /// Lowers every edge until it is settled or lies `depth/k` below the highest settled one.
+    fn sink(&mut self, depth: f64) -> Result<(), Error> {
         for e in 0..self.edges.len() {
             if self.edges[e].state == State::Sunk {
                 self.edges[e].state = State::Open;
@@ -407,122 +418,5 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
         }
         *stalled = true;
         false
-    }
-
-    /// Runs the orbit of an end at infinity down below a level; returns the index there.
-    fn tail(&mut self, node: usize, from: usize, level: f64) -> Result<usize, Error> {
-        for at in from..from + TAIL {
-            if self.nodes[node].orbit[at].h.re <= level {
-                return Ok(at);
-            }
-            if at + 1 == self.nodes[node].orbit.len() && !self.descend(node) {
-                break;
-            }
-        }
-        let orbit = &self.nodes[node].orbit;
-        Err(Error::Undecided {
-            reason: format!(
-                "the end of the contour at z = {:.6} finds no way down to infinity: its descent \
-                 ends near z = {:.6}",
-                orbit[0].z,
-                orbit[orbit.len() - 1].z
-            ),
-            remedy: "let the contour end inside a valley of |exp(i k f)| clear of branch cuts, or at \
-                     a finite point",
-        })
-    }
-
-    /// Whether the flowed contour is in the class of the given one, as far as residues of the
-    /// amplitude down to a fraction of its size can tell.
-    pub fn keeps_class(&self, contour: &Contour, fraction: f64) -> bool {
-        let mut image = Vec::with_capacity(4 * self.edges.len());
-        let (mut node, mut from) = (0, self.first_index());
-        for _ in 0..=self.edges.len() {
-            let edge = self.nodes[node].right.map(|e| &self.edges[e]);
-            let orbit = &self.nodes[node].orbit;
-            // The last orbit is followed back up to its own vertex.
-            let to = edge.map_or(0, |e| e.at[0]);
-            if from <= to {
-                image.extend(orbit[from..=to].iter().map(|s| s.z));
-            } else {
-                image.extend(orbit[to..=from].iter().rev().map(|s| s.z));
-            }
-            let Some(edge) = edge else { break };
-            (node, from) = (edge.nodes[1], edge.at[1]);
-            if node == 0 {
-                image.push(self.nodes[0].orbit[from].z);
-                break;
-            }
-        }
-        self.watch.same_class(contour.points(), &image, fraction)
-    }
-
-    /// Where on the first vertex's orbit the contour begins: its vertex, or the end of the last edge
-    /// of a closed contour.
-    fn first_index(&self) -> usize {
-        self.nodes[0].left.map_or(0, |e| self.edges[e].at[1])
-    }
-
-    /// The flowed contour down to `depth/k` under its highest level.
-    pub fn contour(&mut self, depth: f64) -> Result<Flowed, Error> {
-        let floor = self.crest - depth / self.k;
-        let mut out = Flowed { pieces: Vec::new(), sunk: Vec::new(), tails: Vec::new(), floor };
-        let mut node = 0;
-        let mut from = match self.ends[0] {
-            Termination::Finite | Termination::Closed => self.first_index(),
-            Termination::Downhill => {
-                let at = self.nodes[0].right.map_or(0, |e| self.edges[e].at[0]);
-                self.end_at_infinity(0, at, depth, &mut out)?
-            }
-        };
-        // A path through all nodes, from edge to edge.
-        for _ in 0..=self.edges.len() {
-            let Some(e) = self.nodes[node].right else { break };
-            let Edge { nodes: [_, next], at: [leave, arrive], state, .. } = self.edges[e];
-            along(&self.nodes[node].orbit, from, leave, &mut out.pieces);
-            let chord = self.ends_of(e);
-            if state == State::Sunk {
-                out.sunk.push(chord)
-            } else {
-                out.pieces.push(chord)
-            }
-            (node, from) = (next, arrive);
-            if node == 0 {
-                break;
-            }
-        }
-        let to = match self.ends[1] {
-            Termination::Finite => 0,
-            Termination::Closed => from,
-            Termination::Downhill => self.end_at_infinity(node, from, depth, &mut out)?,
-        };
-        along(&self.nodes[node].orbit, from, to, &mut out.pieces);
-        Ok(out)
-    }
-
-    /// Where the contour is cut off towards infinity; it is followed as deep again to see how it
-    /// runs down.
-    fn end_at_infinity(
-        &mut self,
-        node: usize,
-        from: usize,
-        depth: f64,
-        out: &mut Flowed,
-    ) -> Result<usize, Error> {
-        let at = self.tail(node, from, self.crest - depth / self.k)?;
-        let level = self.nodes[node].orbit[at].h.re - depth / self.k;
-        let far = self.tail(node, at, level)?;
-        let orbit = &self.nodes[node].orbit;
-        out.tails.push((orbit[at], orbit[far]));
-        Ok(at)
-    }
-}
-
-/// The pieces of an orbit from one index to another, in either direction.
-fn along(orbit: &[Site], from: usize, to: usize, pieces: &mut Vec<(Site, Site)>) {
-    if from <= to {
-        pieces.extend(orbit[from..=to].windows(2).map(|w| (w[0], w[1])));
-    } else {
-        pieces.extend(orbit[to..=from].windows(2).rev().map(|w| (w[1], w[0])));
     }
 }
