@@ -18,7 +18,7 @@ use super::series::{Contribution, Series};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::Phase;
-use crate::ring::{MAX_ORDERS, NormalForm};
+use crate::ring::{MAX_ORDERS, NormalForm, preimage};
 use crate::saddles::Topology;
 use num_complex::Complex64;
 
@@ -140,31 +140,6 @@ impl NormalForm {
     /// `v` with `z(R v) = z`, by Newton's method on the Taylor map from `start`; None if it leaves
     /// the neighbourhood of the disc.
     pub(crate) fn preimage(&self, z: Complex64, start: Complex64) -> Option<Complex64> {
-        let mut v = start;
-        let size = self.map()[1].norm();
-        for _ in 0..40 {
-            let mut value = Complex64::new(0.0, 0.0);
-            let mut slope = Complex64::new(0.0, 0.0);
-            for &c in self.map().iter().rev() {
-                slope = slope * v + value;
-                value = value * v + c;
-            }
-            let mut step = (z - value) / slope;
-            if !(step.re.is_finite() && step.im.is_finite()) {
-                return None;
-            }
-            if step.norm() > 0.3 {
-                step *= 0.3 / step.norm();
-            }
-            v += step;
-            if v.norm() > 1.3 {
-                return None;
-            }
-            if step.norm() < 1e-15 || (z - value).norm() < 1e-16 * size {
-                return Some(v);
-            }
-        }
-        // Rounding may keep the last digit in motion.
-        ((z - self.point(v)).norm() < 1e-13 * (size + z.norm())).then_some(v)
+        preimage(self.map(), z, start)
     }
 }

@@ -18,7 +18,7 @@ use num_complex::Complex64;
 use std::f64::consts::PI;
 
 /// Positive nodes and weights of the 20-point Gauss-Legendre rule on [-1, 1].
-const RULE: [(f64, f64); 10] = [
+pub(super) const RULE: [(f64, f64); 10] = [
     (0.07652652113349734, 0.15275338713072584),
     (0.22778585114164507, 0.14917298647260374),
     (0.37370608871541955, 0.14209610931838204),

@@ -10,6 +10,7 @@ use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
+use crate::ring::ZERO;
 use crate::ring::{KEPT, NormalForm, Orders, Start};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
@@ -40,6 +41,8 @@ const SOUND: f64 = 1e-9;
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
 const FIRST: usize = 16;
+/// Branch points must lie beyond this part of a ring.
+const CLEAR: f64 = 1.05;
 /// The smallest ring that is kept, relative to the largest.
 const SMALLEST: f64 = 0.2;
 
@@ -56,6 +59,10 @@ struct Trial {
 
 impl Trial {
     fn new(form: NormalForm, given: &Given) -> Option<Trial> {
+        let holds = |&z: &Complex64| form.preimage(z, ZERO).is_some_and(|v| v.norm() < CLEAR);
+        if given.outside.iter().any(holds) {
+            return None;
+        }
         let map = |(pole, ascent): &(Pole, Vec<Complex64>)| MappedPole::new(&form, pole, ascent);
         let poles: Vec<Option<MappedPole>> = given.poles.iter().map(map).collect();
         let split = poles
@@ -99,6 +106,8 @@ pub(crate) struct Given<'a> {
     pub phase: &'a dyn Phase,
     pub amplitude: &'a dyn Amplitude,
     pub poles: &'a [(Pole, Vec<Complex64>)],
+    /// Branch points of the amplitude, which must lie outside all rings.
+    pub outside: &'a [Complex64],
 }
 
 /// One cluster or end point, ready for any wavenumber.
@@ -110,6 +119,8 @@ pub(crate) struct Series {
     reference: usize,
     poles: Vec<Option<MappedPole>>,
     m: Multiplicities,
+    /// The same sheet by sheet with the factor of each, where an end of the contour is algebraic.
+    sheets: Vec<(Complex64, Multiplicities)>,
     sign: f64,
     noise_scale: f64,
 }
@@ -237,6 +248,7 @@ impl Series {
             reference,
             poles,
             m: [0; 6],
+            sheets: Vec::new(),
             sign: 1.0,
             noise_scale: phase.noise_scale(centre),
         })
@@ -253,6 +265,12 @@ impl Series {
         self
     }
 
+    /// Sets what the contour makes of it on each sheet, with the factor of the sheet.
+    pub fn with_sheets(mut self, sheets: Vec<(Complex64, Multiplicities)>) -> Self {
+        self.sheets = sheets;
+        self
+    }
+
     /// For an end point: +1 at the start of the contour, -1 at its end.
     pub fn with_sign(mut self, sign: f64) -> Self {
         self.sign = sign;
@@ -266,7 +284,20 @@ impl Series {
     /// Whether the contour needs this cluster; always so for an end point.
     pub fn contributes(&self) -> bool {
         let degree = self.form().degree();
-        degree == 1 || self.m[1..degree].iter().any(|m| *m != self.m[0])
+        let uneven = |m: &Multiplicities| m[1..degree].iter().any(|j| *j != m[0]);
+        degree == 1 || uneven(&self.m) || self.sheets.iter().any(|(_, m)| uneven(m))
+    }
+
+    /// The canonical integrals.
+    fn moments(&self, phi: &Unfolding, k: f64) -> Option<Moments> {
+        let Some(((factor, m), more)) = self.sheets.split_first() else {
+            return Moments::new(phi, &self.m, k);
+        };
+        let mut sum = Moments::new(phi, m, k)?.times(*factor);
+        for (factor, m) in more {
+            sum = sum.plus(&Moments::new(phi, m, k)?.times(*factor));
+        }
+        Some(sum)
     }
 
     pub fn saddles(&self) -> usize {
@@ -281,7 +312,7 @@ impl Series {
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         let phi = Unfolding::new(&self.rings[self.reference].form);
-        let Some(moments) = Moments::new(&phi, &self.m, k) else { return Contribution::UNKNOWN };
+        let Some(moments) = self.moments(&phi, k) else { return Contribution::UNKNOWN };
         let sizes = moments.values.map(|c| c.norm());
         let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
             let residual = ring.form.residual();
