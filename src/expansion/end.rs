@@ -12,8 +12,10 @@
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353 (end point near a saddle).
 
+use super::end_pole::{ascent_in_ring, with_pole};
 use super::figure::Parts;
 use super::incomplete::incomplete;
+use super::pole::Pole;
 use super::series::{Contribution, Series};
 use super::unfolding::Unfolding;
 use crate::Scaled;
@@ -32,6 +34,8 @@ struct Boundary {
     valley: usize,
     terms: [Complex64; MAX_ORDERS],
     noise: [f64; MAX_ORDERS],
+    /// The poles that are split off, each with its steepest ascent in the plane of `u`.
+    poles: Vec<(usize, Vec<Complex64>)>,
 }
 
 /// An end point as seen from the rings of one cluster.
@@ -52,20 +56,23 @@ impl NearEnd {
         node: usize,
         (e, sign): (Complex64, f64),
         tail: &[Complex64],
+        poles: &[(Pole, Vec<Complex64>)],
     ) -> Option<NearEnd> {
         let mut boundaries = Vec::new();
         for (index, ring) in series.rings().iter().enumerate() {
-            // An end and a pole split off in one ring: not covered.
-            if ring.split != 0 {
-                continue;
-            }
             let Some(v) = ring.form.locate(e) else { continue };
             if v.norm() > INSIDE {
                 continue;
             }
             let Some(valley) = Topology::leaves_by_valley(&ring.form, v, tail) else { continue };
             let (terms, noise) = ring.orders.boundary(&ring.form, &ring.start, v);
+            let split = (0..poles.len()).filter(|n| ring.split >> n & 1 == 1);
+            let ascents = split.filter_map(|n| {
+                let pole = series.poles()[n].as_ref()?;
+                Some((n, ascent_in_ring(&ring.form, pole, &poles[n].1)))
+            });
             boundaries.push(Boundary {
+                poles: ascents.collect(),
                 ring: index,
                 u: v * ring.form.radius(),
                 valley,
@@ -85,7 +92,7 @@ impl NearEnd {
     /// The contribution at wavenumber `k` with at most `orders` orders; None if the descent inside
     /// the ring did not arrive.
     pub fn at(&self, series: &Series, k: f64, orders: usize) -> Option<Contribution> {
-        let mut best: Option<(usize, usize, f64, _)> = None;
+        let mut best: Option<(usize, usize, f64, _, _)> = None;
         for (index, boundary) in self.boundaries.iter().enumerate() {
             let ring = &series.rings()[boundary.ring];
             let Some(moments) =
@@ -104,14 +111,24 @@ impl NearEnd {
             for (p, error) in ring.orders.coefficients(0).iter().zip(&moments.errors) {
                 figure += p.norm() * error;
             }
+            let mut split_off = Complex64::new(0.0, 0.0);
+            for (n, ascent) in &boundary.poles {
+                let phi = Unfolding::new(&ring.form);
+                let at = (boundary.u, boundary.valley);
+                let residual = ring.form.residual();
+                let pole = series.poles()[*n].as_ref();
+                let found = pole.and_then(|pole| with_pole(&phi, at, pole, ascent, k, residual));
+                let (value, error) = found.unwrap_or((split_off, f64::INFINITY));
+                split_off += value;
+                figure += error;
+            }
             if best.as_ref().is_none_or(|b| figure < b.2) {
-                best = Some((index, kept, figure, moments));
+                best = Some((index, kept, figure, moments, split_off));
             }
         }
-        let (index, kept, figure, moments) = best?;
+        let (index, kept, figure, moments, mut sum) = best?;
         let boundary = &self.boundaries[index];
         let ring = &series.rings()[boundary.ring];
-        let mut sum = Complex64::new(0.0, 0.0);
         let mut power = 1.0;
         for n in 0..kept {
             let p = ring.orders.coefficients(n);

@@ -3,6 +3,7 @@
 mod algebraic;
 mod canonical;
 mod end;
+mod end_pole;
 mod figure;
 mod incomplete;
 mod parabolic;

@@ -111,7 +111,7 @@ pub(crate) struct MappedPole {
     pub u: Complex64,
     pub simple: Complex64,
     pub double: Complex64,
-    noise: (f64, f64),
+    pub(super) noise: (f64, f64),
     /// Rounding error of `u`.
     blur: f64,
     ridge: usize,

@@ -349,6 +349,11 @@ impl Series {
         )
     }
 
+    /// The poles that may be split off, where they lie in the plane of `u`.
+    pub(super) fn poles(&self) -> &[Option<MappedPole>] {
+        &self.poles
+    }
+
     pub(super) fn rings(&self) -> &[Ring] {
         &self.rings
     }

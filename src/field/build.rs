@@ -119,7 +119,14 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
                     tree.groups[index].centre,
                 )
             {
-                end.near.extend(NearEnd::new(phase, series, index, (end.at, end.sign), tail));
+                end.near.extend(NearEnd::new(
+                    phase,
+                    series,
+                    index,
+                    (end.at, end.sign),
+                    tail,
+                    &poles,
+                ));
             }
         }
         if end.own.is_none() && end.near.is_empty() {

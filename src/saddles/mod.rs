@@ -8,6 +8,7 @@ mod topology;
 mod trace;
 mod tree;
 
+pub(crate) use crossings::crossings;
 pub use follow::follow;
 pub use locate::{Region, Saddle, locate};
 pub(crate) use sheets::{Branch, Sheeting, Sheets, Unrolled};
