@@ -3,3 +3,4 @@
 pub mod airy;
 pub mod cuspoid;
 pub(crate) mod double_double;
+pub mod faddeeva;
