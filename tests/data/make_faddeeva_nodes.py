@@ -19,7 +19,7 @@ def trapezoidal(first, count):
     for n in range(count):
         t = mp.mpf(first) + mp.mpf(n) / 2
         half = 2 if t == 0 else 1
-        rule.append((t * t, mp.exp(-t * t) / (mp.pi * half)))
+        rule.append((t, mp.exp(-t * t) / (mp.pi * half)))
     return rule
 
 
@@ -31,22 +31,22 @@ def hermite(n):
         t = mp.findroot(lambda t: mp.hermite(n, t), mp.mpf(float(start)))
         weight = mp.mpf(2) ** (n - 1) * mp.factorial(n) * mp.sqrt(mp.pi)
         weight /= (n * mp.hermite(n - 1, t)) ** 2
-        rule.append((t * t, 2 * weight / mp.pi))
+        rule.append((t, 2 * weight / mp.pi))
     return rule
 
 
 def show(name, what, rule):
     print(f"/// {what}")
     print(f"pub(super) static {name}: Rule<{len(rule)}> = Rule::new([")
-    for square, weight in rule:
-        print(f"    [{float(square)!r}, {float(weight)!r}],")
+    for node, weight in rule:
+        print(f"    [{float(node)!r}, {float(weight)!r}],")
     print("]);")
 
 
 print("//! Quadrature rules for `(i/pi) integral of exp(-t^2)/(z - t) dt` (DLMF 7.7.2).")
 print("//!")
-print("//! Written by `tests/data/make_faddeeva_nodes.py` (60 digits, rounded to nearest): squares of the")
-print("//! nodes of a pair and its weight times `2/pi`.")
+print("//! Written by `tests/data/make_faddeeva_nodes.py` (60 digits, rounded to nearest): nodes of a")
+print("//! pair and its weight times `2/pi`.")
 print()
 print("use super::kernel::Rule;")
 print()

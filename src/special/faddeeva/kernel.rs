@@ -32,71 +32,65 @@ pub(super) const FARTHEST: f64 = 1e9;
 
 /// Pairs of nodes `+-t`.
 pub(super) struct Rule<const N: usize> {
+    nodes: [f64; N],
     squares: [f64; N],
     weights: [f64; N],
-    /// `t^2` times the weight.
-    products: [f64; N],
 }
 
 impl<const N: usize> Rule<N> {
-    /// From squares and weights.
+    /// From nodes and weights.
     pub(super) const fn new(pairs: [[f64; 2]; N]) -> Self {
-        let (mut squares, mut weights, mut products) = ([0.0; N], [0.0; N], [0.0; N]);
+        let mut rule = Rule { nodes: [0.0; N], squares: [0.0; N], weights: [0.0; N] };
         let mut k = 0;
         while k < N {
-            [squares[k], weights[k]] = pairs[k];
-            products[k] = pairs[k][0] * pairs[k][1];
+            [rule.nodes[k], rule.weights[k]] = pairs[k];
+            rule.squares[k] = rule.nodes[k] * rule.nodes[k];
             k += 1;
         }
-        Rule { squares, weights, products }
+        rule
     }
 
-    /// `i z sum of weight/(z^2 - t^2)`.
+    /// `i z sum of weight/(z^2 - t^2)`: with `D = |z^2 - t^2|^2`, y times the sum of
+    /// `weight (|z|^2 + t^2)/D` and x times that of `weight (|z|^2 - t^2)/D`.
     #[inline]
     fn sum(&self, x: f64, y: f64) -> Complex64 {
-        let (re, im) = ((x - y) * (x + y), 2.0 * x * y);
-        let square = im * im;
-        let mut inverse = [0.0; N];
+        let (y_square, im) = (y * y, 2.0 * x * y);
+        let (square, im_square) = (x * x + y_square, im * im);
+        let (mut even, mut odd) = ([0.0; N], [0.0; N]);
         for k in 0..N {
-            let d = re - self.squares[k];
-            inverse[k] = 1.0 / (d * d + square);
+            // x^2 - t^2, without loss close to a node.
+            let difference = (x - self.nodes[k]) * (x + self.nodes[k]);
+            let re = difference - y_square;
+            let share = self.weights[k] / (re * re + im_square);
+            even[k] = share * (square + self.squares[k]);
+            odd[k] = share * (difference + y_square);
         }
-        let [p, q] = self.total(&inverse);
-        let p = p * (x * x + y * y);
-        Complex64::new(y * (p + q), x * (p - q))
+        Complex64::new(y * total(&even), x * total(&odd))
     }
 
     /// The same for x = 0, a real number: `y sum of weight/(y^2 + t^2)`.
     #[inline]
     fn sum_imaginary(&self, y: f64) -> f64 {
         let square = y * y;
-        let mut inverse = [0.0; N];
-        for k in 0..N {
-            inverse[k] = 1.0 / (square + self.squares[k]);
-        }
-        y * self.total(&inverse)[0]
+        y * total::<N>(&std::array::from_fn(|k| self.weights[k] / (square + self.squares[k])))
     }
 
     /// The same for y = 0 without the factor i: `x sum of weight/(x^2 - t^2)`.
     #[inline]
     fn sum_real(&self, x: f64) -> f64 {
-        let mut inverse = [0.0; N];
-        for k in 0..N {
-            inverse[k] = 1.0 / (x * x - self.squares[k]);
-        }
-        x * self.total(&inverse)[0]
+        let term = |k: usize| self.weights[k] / ((x - self.nodes[k]) * (x + self.nodes[k]));
+        x * total::<N>(&std::array::from_fn(term))
     }
+}
 
-    /// Sums with both kinds of weights, in two strands each.
-    #[inline]
-    fn total(&self, inverse: &[f64; N]) -> [f64; 2] {
-        let (mut p, mut q) = ([0.0; 2], [0.0; 2]);
-        for k in 0..N {
-            p[k % 2] += self.weights[k] * inverse[k];
-            q[k % 2] += self.products[k] * inverse[k];
-        }
-        [p[0] + p[1], q[0] + q[1]]
+/// The sum, in two strands.
+#[inline]
+fn total<const N: usize>(terms: &[f64; N]) -> f64 {
+    let mut sums = [0.0; 2];
+    for (k, term) in terms.iter().enumerate() {
+        sums[k % 2] += term;
     }
+    sums[0] + sums[1]
 }
 
 /// True where the sum needs a correction.
@@ -182,7 +176,10 @@ fn far(x: f64, y: f64) -> Complex64 {
     let inverse = Complex64::new(u, -v) / ((u * u + v * v) * size);
     let more = inverse * inverse * 0.5;
     // i (u - i v)(1 + more)
-    Complex64::new(factor * (v * (1.0 + more.re) - u * more.im), factor * (u * (1.0 + more.re) + v * more.im))
+    Complex64::new(
+        factor * (v * (1.0 + more.re) - u * more.im),
+        factor * (u * (1.0 + more.re) + v * more.im),
+    )
 }
 
 /// p of the module's page.
@@ -196,7 +193,7 @@ impl Wave {
     /// At the height y above a point with the given distance to the end of a half cell.
     #[inline]
     pub(super) fn at(y: f64, offset: f64) -> Self {
-        let (sin, cos) = sin_cos(Dd { hi: TAU * offset, lo: 0.0 });
+        let (sin, cos) = (TAU * offset).sin_cos();
         let size = (DECAY * y).exp();
         Wave { y, p: Complex64::new(size * cos, size * sin) }
     }

@@ -35,13 +35,13 @@ use num_complex::Complex64;
 use std::f64::consts::FRAC_2_SQRT_PI;
 
 const HALF_ROOT_PI: f64 = 0.886_226_925_452_758;
-/// Maclaurin series serve below this `|z|^2`.
+/// Maclaurin series serve w and erf below this `|z|^2`.
 const SMALL: f64 = 0.25;
 const NAN: Complex64 = Complex64::new(f64::NAN, f64::NAN);
 
 /// Below this height K counts as 1 where the quadrature sum stands alone: `exp(-x^2)` is below 1e-18 there
 /// and seen in Re w at most.
-const STRIP: f64 = 0.01;
+const STRIP: f64 = 0.05;
 
 /// w in the first quadrant.
 #[inline]
@@ -84,7 +84,7 @@ fn anywhere(z: Complex64) -> Split {
     }
     if x * x + y * y < SMALL {
         // exp(-z^2) + (2 i/sqrt(pi)) F(z): DLMF 7.5.1. The sum would lose digits of Im w.
-        let f = dawson_series(z) * FRAC_2_SQRT_PI;
+        let f = z * polynomial(&DAWSON[..14], z * z) * FRAC_2_SQRT_PI;
         let (e, exponent) = exponential(x, y);
         let mantissa = Complex64::new(e.re, e.im.copysign(-(z.re * z.im)));
         return Split { mantissa, exponent, rest: Complex64::new(-f.im, f.re) };
@@ -135,8 +135,9 @@ pub fn w_extended(z: Complex64) -> Scaled {
 /// Dawson's integral in the first quadrant: `(i sqrt(pi)/2)(exp(-z^2) (1 - K) - S)`.
 #[inline]
 fn dawson_first(x: f64, y: f64) -> Split {
-    if x * x + y * y < SMALL {
-        return Split::moderate(dawson_series(Complex64::new(x, y)));
+    if x * x + y * y < 1.0 {
+        let z = Complex64::new(x, y);
+        return Split::moderate(z * polynomial(&DAWSON, z * z));
     }
     let (sum, offset) = sum(x, y);
     let (e, exponent) = exponential(x, y);
@@ -151,25 +152,20 @@ fn dawson_first(x: f64, y: f64) -> Split {
     Split { mantissa: turn(mantissa), exponent, rest: turn(-sum) }
 }
 
-/// `(-2)^n/(2n+1)!!`
-const DAWSON: [f64; 14] = {
-    let mut out = [1.0; 14];
+/// Maclaurin series of Dawson's integral, `(-2)^n/(2n+1)!!`; all for `|z| < 1`, 14 for `|z| < 1/2`.
+const DAWSON: [f64; 20] = {
+    let mut out = [1.0; 20];
     let mut n = 1;
-    while n < 14 {
+    while n < 20 {
         out[n] = out[n - 1] * -2.0 / (2 * n + 1) as f64;
         n += 1;
     }
     out
 };
 
-/// Maclaurin series, for `|z| <= 1/2`.
-fn dawson_series(z: Complex64) -> Complex64 {
-    z * polynomial(&DAWSON, z * z)
-}
-
 /// A polynomial with real coefficients at a complex point (three-term form; common practice).
 #[inline]
-fn polynomial<const N: usize>(coefficients: &[f64; N], at: Complex64) -> Complex64 {
+fn polynomial(coefficients: &[f64], at: Complex64) -> Complex64 {
     let (twice, square) = (2.0 * at.re, at.norm_sqr());
     let (mut b1, mut b2) = (0.0, 0.0);
     for a in coefficients[1..].iter().rev() {

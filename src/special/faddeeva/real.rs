@@ -6,7 +6,7 @@ use super::{DAWSON, HALF_ROOT_PI};
 use crate::scaled::ldexp;
 use crate::special::double_double::{exp_both, two_product};
 
-fn series<const N: usize>(coefficients: &[f64; N], x: f64) -> f64 {
+fn series(coefficients: &[f64], x: f64) -> f64 {
     x * coefficients.iter().rev().fold(0.0, |sum, a| sum * (x * x) + a)
 }
 
@@ -101,7 +101,7 @@ pub fn erfc_scaled_real(x: f64) -> f64 {
 /// ```
 pub fn dawson_real(x: f64) -> f64 {
     let size = x.abs();
-    if size < 0.5 || x.is_nan() {
+    if size < 1.0 || x.is_nan() {
         return series(&DAWSON, x);
     }
     let (sum, offset) = sum_real(size);

@@ -67,6 +67,7 @@ impl Neg for Split {
 #[inline]
 pub(super) fn odd(z: Complex64, first: impl Fn(f64, f64) -> Split) -> Split {
     let value = first(z.re.abs(), z.im.abs());
-    let value = if z.re.is_sign_negative() != z.im.is_sign_negative() { value.conj() } else { value };
+    let value =
+        if z.re.is_sign_negative() != z.im.is_sign_negative() { value.conj() } else { value };
     if z.re.is_sign_negative() { -value } else { value }
 }
