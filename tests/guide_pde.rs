@@ -159,6 +159,7 @@ fn a_sea_in_physical_units() {
         bottom_speed_m_per_s: 1680.0,
         water_density_kg_per_m3: 1000.0,
         bottom_density_kg_per_m3: 1850.0,
+        water_attenuation_db_per_wavelength: 0.0,
         bottom_attenuation_db_per_wavelength: 0.0,
     };
     let guide = AcousticGuide::new(sea).unwrap();

@@ -22,6 +22,7 @@
 //!     bottom_speed_m_per_s: 1700.0,
 //!     water_density_kg_per_m3: 1000.0,
 //!     bottom_density_kg_per_m3: 1900.0,
+//!     water_attenuation_db_per_wavelength: 0.0,
 //!     bottom_attenuation_db_per_wavelength: 0.5,
 //! })?;
 //! let cut_off = guide.upslope(1, (1f64 / 40.0).atan(), 40.0)?;
@@ -41,10 +42,21 @@
 //! shear and are not uniform. Local rules and licensed practice decide.
 
 mod acoustic;
+mod beam;
+mod curve;
 mod dispersion;
 pub mod layer;
+mod passage;
+mod profile;
+mod slab;
 mod uniform;
+mod well;
 
 pub use acoustic::{AcousticGuide, CutOffPlace, ModeCutOff, TwoLayer, level_db};
+pub use beam::{Beam, Footprint};
 pub use dispersion::{ModeAmplitude, ModePhase};
+pub use passage::Passage;
+pub use profile::Profile;
+pub use slab::{Polarization, Slab, SlabGuide};
 pub use uniform::{Adiabatic, Order, SlopingGuide, UniformField};
+pub use well::QuantumWell;
