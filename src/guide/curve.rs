@@ -8,10 +8,10 @@
 //! J(w) = integral from 0 to w of 2 sinh w cosh w G(h_c - h_n(w)) dw,   G(u) = c_2 u^2 + c_3 u^3 + ..
 //! ```
 //!
-//! is not. Two regions: within half the distance of the nearest singularity (`pi/2`, where the width
-//! has a pole; for `m > 1` the Brewster point) its Taylor series, from values on a circle; beyond,
-//! Gauss-Legendre panels from there on (DLMF 3.5(v)), led round the pole on the side of the
-//! contour.
+//! is not. It is tabulated once per profile: Taylor series about the points of a grid of step 0.4, from
+//! values on circles that stay clear of the pole of the width at `i pi/2`, of the branch cuts and of the
+//! Brewster point (`m > 1`). Where no circle fits, and outside the grid, Gauss-Legendre panels (DLMF
+//! 3.5(v)) lead from 0 to the point, round the pole on the side of the contour.
 //!
 //! Source: derived here.
 
@@ -19,8 +19,16 @@ use super::dispersion::Dispersion;
 use crate::Complex64;
 use std::f64::consts::{FRAC_PI_2, TAU};
 
-const TERMS: usize = 56;
-const CIRCLE: u32 = 192;
+/// The grid: step, lower left corner, columns and rows.
+const STEP: f64 = 0.4;
+const CORNER: Complex64 = Complex64::new(-2.4, -0.8);
+const COLUMNS: usize = 13;
+const ROWS: usize = 9;
+/// Terms of a series, and places on its circle.
+const TERMS: usize = 36;
+const CIRCLE: usize = 64;
+/// The least distance from everything singular; half a diagonal of the grid is 0.283.
+const CLEAR: f64 = 0.65;
 
 /// Nodes and weights of the 6-point Gauss-Legendre rule on (-1, 1), positive half (DLMF 3.5(v)).
 const GAUSS: [(f64, f64); 3] = [
@@ -35,43 +43,42 @@ pub(super) struct Curve {
     dispersion: Dispersion,
     /// `c_2, c_3, ..`
     higher: Vec<Complex64>,
-    /// The series of `J` is used within this radius.
-    radius: f64,
-    /// Taylor coefficients of `J`, in powers of `w/radius`, from the zeroth on.
-    series: Vec<Complex64>,
+    /// Taylor coefficients of `J` in powers of `(w - centre)/STEP`, one list for each point of the grid.
+    patches: Vec<Option<Vec<Complex64>>>,
     /// Where the contour crosses the line `Im w = pi/2`.
     gate: Complex64,
 }
 
 impl Curve {
     pub(super) fn new(dispersion: Dispersion, higher: Vec<Complex64>) -> Curve {
-        let m = dispersion.m;
-        let nearest = if m > 1.0 { m.recip().atanh() } else { FRAC_PI_2 };
         let gate = Complex64::new(-dispersion.gate(), FRAC_PI_2);
-        let radius = 0.5 * nearest;
-        let mut curve = Curve { dispersion, higher, radius, series: Vec::new(), gate };
-        // Coefficients of J' by the trapezoidal rule on a circle, integrated term by term.
-        let circle = 1.6 * radius;
-        let values: Vec<Complex64> = (0..CIRCLE)
-            .map(|j| {
-                let turn = Complex64::from_polar(circle, TAU * f64::from(j) / f64::from(CIRCLE));
-                curve.rate(turn)
-            })
+        let mut curve = Curve { dispersion, higher, patches: Vec::new(), gate };
+        let turns: Vec<Complex64> = (0..CIRCLE)
+            .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
             .collect();
-        let mut series = vec![Complex64::new(0.0, 0.0)];
-        for n in 0..TERMS as u32 {
-            let sum: Complex64 = (0..CIRCLE)
-                .zip(&values)
-                .map(|(j, v)| {
-                    let angle = -TAU * f64::from(j * n % CIRCLE) / f64::from(CIRCLE);
-                    v * Complex64::from_polar(1.0, angle)
-                })
-                .sum();
-            let order = f64::from(n + 1);
-            series.push(sum * (radius / order * 1.6f64.powi(-(n as i32)) / f64::from(CIRCLE)));
-        }
-        curve.series = series;
+        let cells = (0..ROWS).flat_map(|row| (0..COLUMNS).map(move |column| (column, row)));
+        curve.patches = cells.map(|cell| curve.patch(centre(cell), &turns)).collect();
         curve
+    }
+
+    /// The series about a point: coefficients of `J'` by the trapezoidal rule on a circle, integrated term
+    /// by term.
+    fn patch(&self, centre: Complex64, turns: &[Complex64]) -> Option<Vec<Complex64>> {
+        let clear = self.dispersion.clearance(centre);
+        if clear < CLEAR {
+            return None;
+        }
+        let circle = 0.6 * clear.min(1.6);
+        let values: Vec<Complex64> = turns.iter().map(|t| self.rate(centre + t * circle)).collect();
+        let mut series = vec![self.led(centre)];
+        let mut scale = STEP / CIRCLE as f64;
+        for n in 0..TERMS {
+            let sum: Complex64 =
+                values.iter().enumerate().map(|(j, v)| v * turns[j * n % CIRCLE].conj()).sum();
+            series.push(sum * (scale / (n + 1) as f64));
+            scale *= STEP / circle;
+        }
+        Some(series)
     }
 
     /// `G(u)` and `G'(u)`.
@@ -99,21 +106,27 @@ impl Curve {
 
     /// `J(w)`.
     pub(super) fn phase(&self, w: Complex64) -> Complex64 {
-        let size = w.norm();
-        if size <= self.radius {
-            return self.summed(w);
+        let place = (w - CORNER) / STEP;
+        let (column, row) = (place.re.round(), place.im.round());
+        if (0.0..COLUMNS as f64).contains(&column) && (0.0..ROWS as f64).contains(&row) {
+            let cell = (column as usize, row as usize);
+            if let Some(series) = &self.patches[cell.1 * COLUMNS + cell.0] {
+                let offset = (w - centre(cell)) / STEP;
+                let start = Complex64::new(0.0, 0.0);
+                return series.iter().rev().fold(start, |sum, c| sum * offset + c);
+            }
         }
-        if w.im <= FRAC_PI_2 {
-            let edge = w * (self.radius / size);
-            return self.summed(edge) + self.along(edge, w);
-        }
-        let edge = self.gate * (self.radius / self.gate.norm());
-        self.summed(edge) + self.along(edge, self.gate) + self.along(self.gate, w)
+        self.led(w)
     }
 
-    fn summed(&self, w: Complex64) -> Complex64 {
-        let w = w / self.radius;
-        self.series.iter().rev().fold(Complex64::new(0.0, 0.0), |sum, c| sum * w + c)
+    /// `J(w)` from panels.
+    fn led(&self, w: Complex64) -> Complex64 {
+        let zero = Complex64::new(0.0, 0.0);
+        if w.im <= FRAC_PI_2 {
+            self.along(zero, w)
+        } else {
+            self.along(zero, self.gate) + self.along(self.gate, w)
+        }
     }
 
     /// The integral of `rate` along a straight line.
@@ -133,6 +146,10 @@ impl Curve {
     }
 }
 
+fn centre((column, row): (usize, usize)) -> Complex64 {
+    CORNER + Complex64::new(STEP * column as f64, STEP * row as f64)
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -142,16 +159,16 @@ mod tests {
         let c = Complex64::new;
         for (n, m) in [(1, 1.0), (2, 0.55), (1, 0.9), (1, 1.3)] {
             let curve = Curve::new(Dispersion::new(n, m), vec![c(0.25, 0.01), c(-0.1, 0.0)]);
-            let edge = 0.999 * curve.radius;
             let points = [
                 c(0.1, 0.2),
                 c(-0.3, 0.3),
-                c(0.0, edge),
-                c(0.0, edge * 1.003),
+                c(0.0, 1.0),
+                c(0.0, 1.2),
                 c(-0.3, 1.0),
                 c(-1.4, 1.5),
                 c(-1.4, 1.65),
                 c(-1.8, 2.3),
+                c(-2.9, 2.4),
                 c(if m > 1.0 { 0.7 * m.recip().atanh() } else { 1.4 }, 0.1),
             ];
             for w in points {
@@ -160,6 +177,9 @@ mod tests {
                 let rate = curve.rate(w);
                 let error = (slope - rate).norm() / (1.0 + rate.norm());
                 assert!(error < 1e-6, "n {n} m {m} w {w}: {slope} {rate}");
+                // The table against the panels.
+                let error = (curve.phase(w) - curve.led(w)).norm() / (1.0 + rate.norm());
+                assert!(error < 1e-9, "n {n} m {m} w {w}: {error:e}");
             }
         }
     }

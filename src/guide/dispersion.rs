@@ -97,6 +97,25 @@ impl Dispersion {
             }
     }
 
+    /// Distance from the pole of the width and from the branch cuts.
+    pub(super) fn clearance(&self, w: Complex64) -> f64 {
+        // All of it repeats with the period i pi.
+        let folded = (w.im - PI * (w.im / PI).round()).abs();
+        let above = FRAC_PI_2 - folded;
+        let pole = above.hypot(w.re);
+        let beyond = |gap: f64| gap.max(0.0);
+        if self.m == 1.0 {
+            pole
+        } else if self.m > 1.0 {
+            let brewster = self.m.recip().atanh();
+            pole.min(folded.hypot(beyond(brewster - w.re.abs())))
+        } else if self.passes_left() {
+            above.hypot(beyond(-self.m.atanh() - w.re))
+        } else {
+            pole.min(above.hypot(beyond(self.m.atanh() - w.re.abs())))
+        }
+    }
+
     /// Whether the contour passes to the left of `i pi/2 - artanh m`.
     pub(super) fn passes_left(&self) -> bool {
         self.m < PASSES_LEFT

@@ -440,7 +440,8 @@ impl SlopingGuide {
             let width = self.dispersion.width(w);
             let step = (width - h) / (self.dispersion.width_slope(w, width) * w.cosh());
             w -= step;
-            if step.norm() <= 1e-14 * w.norm() {
+            // No better than the rounding of the width.
+            if step.norm() <= 1e-14 * (w.norm() + h.norm()) {
                 converged = true;
                 break;
             }
