@@ -15,8 +15,12 @@
 
 #[path = "../support/arguments.rs"]
 mod arguments;
+#[path = "../support/cells.rs"]
+mod cells;
 #[path = "../support/colours.rs"]
 mod colours;
+#[path = "../support/output.rs"]
+mod output;
 #[path = "../support/picture.rs"]
 mod picture;
 mod profile;

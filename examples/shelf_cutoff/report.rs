@@ -1,13 +1,13 @@
 //! The whole job: tables on the standard output, the picture into its file.
 
+use crate::cells::{centres, levels};
+use crate::output::{prepare, write_whole};
 use crate::picture::Picture;
 use crate::scene::{BEFORE, Followed, Level, Scene};
 use crate::table::Fault;
 use crate::{Arguments, OWN_TRACK};
-use indicatif::{ProgressBar, ProgressStyle};
 use merging_saddles::Error;
 use std::path::Path;
-use std::sync::Mutex;
 
 /// The quietest level of the picture, in dB.
 const FLOOR_DB: f64 = -40.0;
@@ -170,13 +170,11 @@ fn picture(arguments: &Arguments, followed: &Followed) -> (Picture, usize) {
     let Followed { mode, place, run, window_m: [from, to], beam_start_m, .. } = followed;
     let bed = |s: f64| run.depth_m(s);
     let bottom = (1.4 * followed.beam_depth_m(*to)).max(2.0 * bed(*from));
-    let centres = |from: f64, to: f64, count: u16| -> Vec<f64> {
-        let step = (to - from) / f64::from(count);
-        (0..count).map(|j| from + step * (f64::from(j) + 0.5)).collect()
-    };
     let ranges = centres(*from, *to, arguments.columns);
     let depths = centres(0.0, bottom, arguments.rows);
-    let level_db = levels(followed, &ranges, &depths);
+    let level_db = levels(&ranges, &depths, |range_m, depth_m| {
+        followed.level(range_m, depth_m).map_or(f64::NAN, |level| level.db)
+    });
     let refused = level_db.iter().filter(|level| level.is_nan()).count();
     let line = |first: f64, depth: &dyn Fn(f64) -> f64| -> Vec<(f64, f64)> {
         (0..=100)
@@ -211,63 +209,4 @@ fn picture(arguments: &Arguments, followed: &Followed) -> (Picture, usize) {
         floor_db: FLOOR_DB,
     };
     (picture, refused)
-}
-
-/// Levels of all cells, column by column, on all processors; NaN where there is no value.
-fn levels(followed: &Followed, ranges: &[f64], depths: &[f64]) -> Vec<f64> {
-    let bar = ProgressBar::new(ranges.len() as u64).with_message("picture");
-    if let Ok(style) =
-        ProgressStyle::with_template("{msg} [{bar:40}] {pos}/{len} columns, {eta} left")
-    {
-        bar.set_style(style);
-    }
-    let cell = |range_m: f64, depth_m: f64| {
-        followed.level(range_m, depth_m).map_or(f64::NAN, |level| level.db)
-    };
-    let mut levels = vec![f64::NAN; ranges.len() * depths.len()];
-    let columns = Mutex::new(levels.chunks_mut(depths.len()).zip(ranges));
-    let work = || {
-        // A poisoned lock means that another worker panicked; the scope hands its panic on.
-        while let Some((column, &range_m)) = columns.lock().ok().and_then(|mut left| left.next()) {
-            for (level, &depth_m) in column.iter_mut().zip(depths) {
-                *level = cell(range_m, depth_m);
-            }
-            bar.inc(1);
-        }
-    };
-    std::thread::scope(|scope| {
-        for _ in 0..std::thread::available_parallelism().map_or(1, usize::from) {
-            scope.spawn(work);
-        }
-    });
-    bar.finish_and_clear();
-    levels
-}
-
-/// Checks that the picture can be written before any work is done.
-fn prepare(path: &Path) -> Result<(), Fault> {
-    let refuse = |reason: String| {
-        Fault(format!("{}: {reason}: give --output a path that can be written", path.display()))
-    };
-    if path.is_dir() || path.file_name().is_none() {
-        return Err(refuse("not the name of a file".into()));
-    }
-    match path.parent() {
-        Some(directory) if !directory.as_os_str().is_empty() => {
-            std::fs::create_dir_all(directory).map_err(|error| refuse(error.to_string()))
-        }
-        _ => Ok(()),
-    }
-}
-
-/// Writes under another name first, so that no half picture is ever found under this one.
-fn write_whole(path: &Path, text: &str) -> Result<(), Fault> {
-    let mut name = path.file_name().unwrap_or_default().to_os_string();
-    name.push(".part");
-    let part = path.with_file_name(name);
-    std::fs::write(&part, text).and_then(|()| std::fs::rename(&part, path)).map_err(|error| {
-        // The unfinished file may not even exist.
-        let _ = std::fs::remove_file(&part);
-        Fault(format!("{}: {error}: give --output a path that can be written", path.display()))
-    })
 }
