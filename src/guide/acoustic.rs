@@ -149,7 +149,7 @@ impl AcousticGuide {
     }
 
     /// The two media for the core.
-    fn media(&self) -> Media {
+    pub(super) fn media(&self) -> Media {
         let k = self.bottom_wavenumber();
         let water = Complex64::new(self.k_water, self.k_water * self.water_loss);
         let q = (water * water - k * k).sqrt();

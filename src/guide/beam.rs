@@ -70,7 +70,7 @@ impl Passage {
     /// Errors: [`Error::Domain`] for an angle that is not between 0 and pi/2, or beyond the Brewster condition
     /// (as [`radiation_per_wavenumber`](Self::radiation_per_wavenumber)).
     pub fn radiation_per_rad(&self, angle_rad: f64) -> Result<f64, Error> {
-        if !(angle_rad >= 0.0 && angle_rad < std::f64::consts::FRAC_PI_2) {
+        if !(0.0..std::f64::consts::FRAC_PI_2).contains(&angle_rad) {
             let remedy = "give an angle from the axis of range, from 0 to below pi/2";
             return Err(Error::domain("angle_rad", angle_rad, remedy));
         }

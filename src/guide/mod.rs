@@ -42,21 +42,30 @@
 //! shear and are not uniform. Local rules and licensed practice decide.
 
 mod acoustic;
+mod adiabatic;
 mod beam;
+mod contour;
 mod curve;
 mod dispersion;
 pub mod layer;
 mod passage;
 mod profile;
+mod revival;
+mod sensitivity;
 mod slab;
+mod source;
 mod uniform;
 mod well;
 
 pub use acoustic::{AcousticGuide, CutOffPlace, ModeCutOff, TwoLayer, level_db};
+pub use adiabatic::Adiabatic;
 pub use beam::{Beam, Footprint};
 pub use dispersion::{ModeAmplitude, ModePhase};
-pub use passage::Passage;
+pub use passage::{Passage, Station};
 pub use profile::Profile;
+pub use revival::revival;
+pub use sensitivity::{Sensitivities, sensitivities};
 pub use slab::{Polarization, Slab, SlabGuide};
-pub use uniform::{Adiabatic, Order, SlopingGuide, UniformField};
+pub use source::SourceField;
+pub use uniform::{Order, SlopingGuide, UniformField};
 pub use well::QuantumWell;

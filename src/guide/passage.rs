@@ -9,6 +9,7 @@
 //!
 //! Source: derived here.
 
+use super::adiabatic::Adiabatic;
 use super::layer::bound_extended;
 use super::profile::Profile;
 use super::uniform::{Order, Place, SlopingGuide, UniformField, times};
@@ -155,6 +156,41 @@ impl Passage {
         let (antinode, exponent) = passage.bound_mode(reference)?;
         passage.incoming_antinode = antinode;
         passage.incoming_exponent = exponent;
+        Ok(passage)
+    }
+
+    /// A mode that stays trapped as far as the profile goes: adiabatic everywhere.
+    pub(super) fn trapped(
+        media: Media,
+        mode: ModeNumber,
+        profile: Profile,
+        reference: f64,
+    ) -> Result<Self, Error> {
+        let ModeNumber { n, even } = mode;
+        let guide = SlopingGuide::new(n, media.m, Complex64::new(1e-3, 0.0))?;
+        let guide = if even { guide.even()? } else { guide };
+        let cutoff_width = guide.cutoff_width() / media.q_real;
+        let [_, to] = profile.ranges();
+        let mut passage = Passage {
+            guide,
+            media,
+            profile,
+            even,
+            cutoff_width,
+            cutoff_range: f64::INFINITY,
+            slope: 0.0,
+            centre: Complex64::from(to),
+            turned_slope: Complex64::new(0.0, 0.0),
+            fitted_from: f64::INFINITY,
+            fit_departure: 0.0,
+            fit: Vec::new(),
+            fitted_widths: [cutoff_width; 2],
+            reference,
+            incoming_exponent: Complex64::new(0.0, 0.0),
+            incoming_antinode: Complex64::new(1.0, 0.0),
+            height: f64::INFINITY,
+        };
+        passage.incoming_antinode = passage.bound_shape(reference)?.antinode;
         Ok(passage)
     }
 
@@ -308,12 +344,36 @@ impl Passage {
     /// ([`SlopingGuide::mismatch`]), plus the phase that the fit of the profile leaves.
     ///
     /// Relative to the field at the boundary, as an amplitude; the constant phase of about `eps/2` at the
-    /// start is not in it. `tests/guide_pde.rs` compares it with true errors.
+    /// start is not in it. [`station`](Self::station) makes an error figure of it.
     ///
     /// Cost: four quadratures. Errors: as [`field`](Self::field).
     pub fn departure(&self, range: f64) -> Result<f64, Error> {
         self.uniform(range, 0.0)?;
         Ok(2.0 * self.guide.mismatch_at(self.place(range))? + self.fit_departure)
+    }
+
+    /// A range at which fields are wanted with the whole error figure, that of the formula included.
+    ///
+    /// Cost: nine quadratures, then one for each field. Errors: as [`field`](Self::field).
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// let well = QuantumWell.along(1, Profile::plane(3.5, 0.01)?, 0.0)?;
+    /// let wall = well.cutoff_width();
+    /// let at_release = well.station(well.cutoff_range())?;
+    /// let (inside, outside) = (at_release.field(wall * (1.0 - 1e-9))?, at_release.field(wall)?);
+    /// // Two formulas for one value (psi is continuous): they agree within their figures.
+    /// let apart = (inside.value - outside.value).norm();
+    /// assert!(apart <= inside.error + outside.error && outside.relative_error < 0.02);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
+    pub fn station(&self, range: f64) -> Result<Station<'_>, Error> {
+        let departure = self.departure(range)?;
+        let at_boundary = self.field(range, self.profile.width(range))?.value.norm();
+        // What the beam carries away from its birth.
+        let h = self.media.q * self.cutoff_width;
+        let birth = 2.0 * self.guide.mismatch(h)? + self.fit_departure;
+        Ok(Station { passage: self, range, absolute: departure * at_boundary, relative: birth })
     }
 
     /// The boundary-layer form at a point, for a quick look: one pair of Airy functions. Good within a few
@@ -355,22 +415,51 @@ impl Passage {
             let mode = self.guide.adiabatic_at(self.place(range))?;
             return Ok((mode.antinode, mode.exponent));
         }
-        let from = self.guide.adiabatic_at(self.place(self.fitted_from))?;
         // i q^2 gamma^2/(2 k) over the range, by Simpson's rule on the profile itself.
         let media = &self.media;
         let rate = |s: f64| -> Result<Complex64, Error> {
-            let mode = self.guide.adiabatic(media.q * self.profile.width(s))?;
-            Ok(I * (media.q * mode.gamma).powi(2) / (media.k * 2.0))
+            Ok(I * (media.q * self.bound_shape(s)?.gamma).powi(2) / (media.k * 2.0))
+        };
+        // Up to the fit, or from the reference on where nothing is fitted.
+        let (to, known) = if self.fitted_from.is_finite() {
+            let mode = self.guide.adiabatic_at(self.place(self.fitted_from))?;
+            (self.fitted_from, mode.exponent)
+        } else {
+            (self.reference, Complex64::new(0.0, 0.0))
         };
         const STEPS: u32 = 100;
-        let step = (self.fitted_from - range) / f64::from(STEPS);
-        let mut sum = rate(range)? + rate(self.fitted_from)?;
+        let step = (to - range) / f64::from(STEPS);
+        let mut sum = rate(range)? + rate(to)?;
         for j in 1..STEPS {
             let weight = if j % 2 == 1 { 4.0 } else { 2.0 };
             sum += rate(range + step * f64::from(j))? * weight;
         }
-        let here = self.guide.adiabatic(media.q * self.profile.width(range))?;
-        Ok((here.antinode, from.exponent - sum * (step / 3.0)))
+        Ok((self.bound_shape(range)?.antinode, known - sum * (step / 3.0)))
+    }
+
+    /// The bound mode's shape at a range.
+    pub(super) fn bound_shape(&self, range: f64) -> Result<Adiabatic, Error> {
+        self.guide.adiabatic(self.media.q * self.profile.width(range))
+    }
+
+    /// The field at a point by the form that holds there: adiabatic before the fitted part of the profile,
+    /// uniform from there on.
+    ///
+    /// Errors: as [`adiabatic`](Self::adiabatic) and [`field`](Self::field).
+    pub fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
+        if range < self.fitted_from {
+            self.adiabatic(range, x)
+        } else {
+            Ok(self.field(range, x)?.value)
+        }
+    }
+
+    /// Levels in dB re the incoming mode along a line of receivers `(range, x)`, each by the form that holds
+    /// there ([`value`](Self::value)).
+    ///
+    /// Errors: each receiver has its own.
+    pub fn levels_db(&self, receivers: &[(f64, f64)]) -> Vec<Result<f64, Error>> {
+        receivers.iter().map(|&(s, x)| self.value(s, x).map(super::level_db)).collect()
     }
 
     /// The adiabatic mode at a point, relative to the incoming one: for ranges well before cut-off.
@@ -380,7 +469,7 @@ impl Passage {
         let inside = self.check(range, x)?;
         let width = self.profile.width(range);
         let (antinode, exponent) = self.bound_mode(range)?;
-        let mode = self.guide.adiabatic(self.media.q * width)?;
+        let mode = self.bound_shape(range)?;
         let across = |x: f64| {
             let angle = mode.kappa * self.media.q * x;
             if self.even { angle.cos() } else { angle.sin() }
@@ -399,6 +488,30 @@ impl Passage {
         let carrier = I * self.media.carrier * (range - self.reference);
         Scaled::exp(carrier - self.incoming_exponent)
             * (self.incoming_antinode.inv() * self.guide.sign())
+    }
+}
+
+/// A range of a [`Passage`] where the error of the formula itself has been measured.
+#[derive(Clone, Copy, Debug)]
+pub struct Station<'a> {
+    passage: &'a Passage,
+    range: f64,
+    /// Error that the field has near the boundary, and what the beam has of its own.
+    absolute: f64,
+    relative: f64,
+}
+
+impl Station<'_> {
+    /// The uniform field at the position `x`, with an error figure for the integral, for the order in
+    /// `eps` that is left out and for the fit of the profile; all but a constant phase of about `eps/2`.
+    ///
+    /// Errors: as [`Passage::field`].
+    pub fn field(&self, x: f64) -> Result<Estimate, Error> {
+        let field = self.passage.field(self.range, x)?;
+        let own = field.value.norm() * self.relative;
+        let error = field.error + self.absolute + own;
+        let error = Scaled::from(Complex64::from(error));
+        Ok(Estimate::new(field.scaled, error, field.orders, field.form))
     }
 }
 

@@ -4,7 +4,7 @@
 //! is fitted as a polynomial of the width lost, `s(U) = a_0 + a_1 U + .. + a_6 U^6`,
 //! `U = D_c - D`, by least squares at 64 places of the caller's profile (Chebyshev nodes in range, DLMF
 //! 18.3). The lowest degree (1 to 6) is taken that leaves less than 0.001 of a transition length. The window reaches
-//! three transition heights of width to both sides, as far as the profile goes and falls, but not
+//! three transition heights of width to both sides, as far as the profile goes and falls at 0.3 to 3.3 times its rate at cut-off, but not
 //! beyond 0.6 of the width at cut-off. Fields keep the profile itself in everything that needs no
 //! continuation.
 //!
@@ -260,18 +260,23 @@ impl Profile {
         Ok(LocalFit { coefficients, residual, from, widths: [width - below, width + above] })
     }
 
-    /// How far from `centre` the profile goes on falling, up to `reach` of width.
+    /// How far from `centre` the profile goes on falling at a similar rate, up to `reach` of width.
     fn edge(&self, centre: f64, width: f64, reach: f64, side: f64) -> f64 {
         const STEPS: u32 = 400;
         let end = if side < 0.0 { self.from } else { self.to };
+        let fall = self.fall(centre);
         let mut last = (centre, 0.0);
         for j in 1..=STEPS {
             // Finer near the centre, where little width may be lost in a step.
             let share = f64::from(j) / f64::from(STEPS);
             let s = centre + (end - centre) * share * share;
             let lost = side * (width - self.width(s));
-            if lost.is_nan() || lost <= last.1 || lost > reach {
-                return if lost > reach { self.within(last.0, s, width, reach) } else { last.0 };
+            let steepness = self.fall(s) / fall;
+            if lost.is_nan() || lost <= last.1 || !(0.3..3.3).contains(&steepness) {
+                return last.0;
+            }
+            if lost > reach {
+                return self.within(last.0, s, width, reach);
             }
             last = (s, lost);
         }
@@ -337,9 +342,11 @@ fn least_squares(places: &[(f64, f64)], degree: usize) -> Option<Vec<f64>> {
     // Gauss elimination; the matrix is positive definite.
     for i in 0..n {
         for below in i + 1..n {
-            let ratio = rows[below][i] / rows[i][i];
-            for j in i..=n {
-                rows[below][j] -= ratio * rows[i][j];
+            let (upper, lower) = rows.split_at_mut(below);
+            let (pivot, row) = (&upper[i], &mut lower[0]);
+            let ratio = row[i] / pivot[i];
+            for (entry, above) in row.iter_mut().zip(pivot) {
+                *entry -= ratio * above;
             }
         }
     }

@@ -41,9 +41,9 @@
 
 use super::curve::Curve;
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Side};
-use crate::integral::{Amplitude, Phase};
-use crate::{Complex64, Contour, Error, Estimate, Integral, Scaled};
-use std::f64::consts::{FRAC_PI_2, PI};
+use crate::integral::Amplitude;
+use crate::{Complex64, Error, Estimate, Integral, Scaled};
+use std::f64::consts::PI;
 use std::sync::Arc;
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
@@ -61,13 +61,13 @@ pub enum Order {
 /// One mode of a guide whose width falls, with unit slope at cut-off, in scaled units.
 #[derive(Clone, Debug, PartialEq)]
 pub struct SlopingGuide {
-    dispersion: Dispersion,
+    pub(super) dispersion: Dispersion,
     mode: u32,
     even: bool,
-    eps: Complex64,
+    pub(super) eps: Complex64,
     order: Order,
-    tolerance: f64,
-    curve: Option<Arc<Curve>>,
+    pub(super) tolerance: f64,
+    pub(super) curve: Option<Arc<Curve>>,
 }
 
 /// A place along the guide: its width and its range, counted from cut-off.
@@ -75,20 +75,6 @@ pub struct SlopingGuide {
 pub(super) struct Place {
     pub h: Complex64,
     pub r: Complex64,
-}
-
-/// The incoming mode while it is still bound, to leading order in `eps` (adiabatic).
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Adiabatic {
-    /// `kappa`: inside the mode is `antinode * sin(kappa x)`.
-    pub kappa: Complex64,
-    /// `gamma`: outside it decays like `exp(-gamma (x - h))`.
-    pub gamma: Complex64,
-    /// Amplitude of the sine for unit energy, without the phase.
-    pub antinode: Complex64,
-    /// Logarithm of the factor that the mode carries relative to cut-off: an imaginary phase, and
-    /// with losses the decay up to cut-off.
-    pub exponent: Complex64,
 }
 
 impl SlopingGuide {
@@ -316,74 +302,6 @@ impl SlopingGuide {
         Ok(UniformField { integral, wavenumber, prefactor, neglected })
     }
 
-    /// From the valley on the left to the right, with the size of the exponential where it ends (0
-    /// at infinity).
-    ///
-    /// For `m > 1` it ends before the Brewster parameter, beyond which the integrand grows again; on a curved
-    /// profile both ends are finite, since the fit says nothing about far valleys.
-    fn contour(&self, phase: &ModePhase, k: f64) -> Result<(Contour, f64), Error> {
-        let m = self.dispersion.m;
-        let gate = self.dispersion.gate();
-        let left = Complex64::new(-1.5f64.max(gate + 0.5), 0.75 * PI);
-        let middle = Complex64::new(-gate, FRAC_PI_2);
-        // Near the saddles but on none of them: a contour that is flowed downhill would rest there.
-        let near = Complex64::new(0.1, 0.3);
-        let right = Complex64::new(1.5, 0.25 * PI);
-        if m <= 1.0 && self.curve.is_none() {
-            return Ok((Contour::through([left, middle, near, right]), 0.0));
-        }
-        // Inside and at the boundary; farther out the exponential of the distance turns only.
-        let inside = ModePhase { d: Complex64::new(0.0, 0.0), ..phase.clone() };
-        let brewster = if m > 1.0 { m.recip().atanh() } else { f64::INFINITY };
-        let reach = (0.95 * brewster).min(2.2);
-        let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.0, 0.3, 0.6] };
-        let (right, right_size) = lowest(&inside, k, Complex64::new(0.0, 0.0), angles, |_| reach);
-        let mut neglected = right_size;
-        let contour = if self.curve.is_none() {
-            Contour::ending_at([left, middle, near, right])
-        } else {
-            // From the bound mode's saddle, below all that is singular on the line Im w = pi/2.
-            let omega = self.bound_angle(phase.h.re);
-            let length = |angle: f64| ((1.5 - omega) / angle.sin()).min(2.2);
-            let angles = [1.85, 2.1, 2.35, 2.6];
-            let (left, left_size) = lowest(&inside, k, I * omega, &angles, length);
-            neglected += left_size;
-            Contour::between([left, near, right])
-        };
-        if neglected.is_nan() || neglected > self.tolerance {
-            let reason = if m > 1.0 {
-                format!(
-                    "the integrand has still the size {neglected:.1e} near the Brewster parameter \
-                     p = {:.3}, where the expansion in eps breaks down",
-                    brewster.sinh()
-                )
-            } else {
-                format!(
-                    "with eps = {:.3} the integrand keeps the size {neglected:.1e} as far as the fit of \
-                     the profile can be continued",
-                    self.eps.norm()
-                )
-            };
-            return Err(Error::Undecided {
-                reason,
-                remedy: "take a smaller eps, a density ratio nearer to 1 or a straighter profile, or \
-                         accept it with `tolerance`",
-            });
-        }
-        Ok((contour, neglected))
-    }
-
-    /// `omega` of the bound mode `p = i sin(omega)` at the width `h` (without losses), 0 beyond cut-off:
-    /// by bisection, as `h_n(i omega)` rises from the cut-off to infinity.
-    fn bound_angle(&self, h: f64) -> f64 {
-        let (mut low, mut high) = (0.0, FRAC_PI_2);
-        for _ in 0..60 {
-            let omega = 0.5 * (low + high);
-            if self.dispersion.width(I * omega).re < h { low = omega } else { high = omega }
-        }
-        0.5 * (low + high)
-    }
-
     /// The amplitude per scaled momentum `p = sinh w` of the radiation and its exponent, phases of
     /// free propagation apart.
     pub(super) fn spectrum(&self, w: Complex64) -> (Complex64, Complex64) {
@@ -414,6 +332,11 @@ impl SlopingGuide {
         (self.place(width).r.re, position.re)
     }
 
+    /// Whether it is an odd mode of a straight profile.
+    pub(super) fn is_plain(&self) -> bool {
+        !self.even && self.curve.is_none()
+    }
+
     /// Density inside over outside.
     pub fn density_ratio(&self) -> f64 {
         self.dispersion.m
@@ -422,69 +345,6 @@ impl SlopingGuide {
     /// The small parameter.
     pub fn eps(&self) -> Complex64 {
         self.eps
-    }
-
-    /// The adiabatic mode where the guide has the width `h`, wider than at cut-off.
-    ///
-    /// Errors: [`Error::Domain`] at and beyond cut-off, [`Error::NoConvergence`] where losses are so
-    /// large that the mode cannot be followed from the loss-free one.
-    ///
-    /// ```
-    /// use merging_saddles::guide::SlopingGuide;
-    /// let mode = SlopingGuide::new(1, 0.55, 0.05)?.adiabatic(3.0)?;
-    /// // kappa cot(kappa h) = -m gamma, kappa^2 + gamma^2 = 1 (textbook modal relation).
-    /// let (k, g) = (mode.kappa.re, mode.gamma.re);
-    /// assert!((k / (3.0 * k).tan() + 0.55 * g).abs() < 1e-13);
-    /// assert!((k * k + g * g - 1.0).abs() < 1e-15);
-    /// // Unit energy: integral of psi^2, weight 1 inside and m outside.
-    /// let inside = 1.5 - (6.0 * k).sin() / (4.0 * k);
-    /// let outside = 0.55 * (3.0 * k).sin().powi(2) / (2.0 * g);
-    /// assert!((mode.antinode.re.powi(2) * (inside + outside) - 1.0).abs() < 1e-13);
-    /// # Ok::<(), merging_saddles::Error>(())
-    /// ```
-    pub fn adiabatic(&self, h: impl Into<Complex64>) -> Result<Adiabatic, Error> {
-        self.adiabatic_at(self.place(h.into()))
-    }
-
-    pub(super) fn adiabatic_at(&self, place: Place) -> Result<Adiabatic, Error> {
-        let Place { h, r } = place;
-        let Dispersion { cutoff, m } = self.dispersion;
-        if !(h.re > cutoff && h.norm().is_finite()) {
-            return Err(Error::Domain {
-                what: "width h",
-                value: h,
-                remedy: "the bound mode exists above the cut-off width only",
-            });
-        }
-        // Newton from the loss-free mode to the complex width, and for the last digits.
-        let mut w = I * self.bound_angle(h.re);
-        let mut converged = false;
-        for _ in 0..30 {
-            let width = self.dispersion.width(w);
-            let step = (width - h) / (self.dispersion.width_slope(w, width) * w.cosh());
-            w -= step;
-            // No better than the rounding of the width.
-            if step.norm() <= 1e-14 * (w.norm() + h.norm()) {
-                converged = true;
-                break;
-            }
-        }
-        if !(converged && w.im > 0.0 && w.im < FRAC_PI_2) {
-            return Err(Error::NoConvergence {
-                what: "the bound mode with losses",
-                limit: 30,
-                remedy: "reduce the losses, or go farther from cut-off",
-            });
-        }
-        let (p, kappa) = (w.sinh(), w.cosh());
-        let gamma = -I * p;
-        let antinode = (gamma * 2.0 / (m / self.dispersion.density(p) + gamma * h)).sqrt();
-        let mut action = self.dispersion.action(w, h);
-        if let Some(curve) = &self.curve {
-            action += curve.phase(w) - p * p * (r - (cutoff - h));
-        }
-        let exponent = I * action / self.eps;
-        Ok(Adiabatic { kappa, gamma, antinode, exponent })
     }
 }
 
@@ -566,33 +426,6 @@ impl UniformField {
     pub fn neglected(&self) -> f64 {
         self.neglected
     }
-}
-
-/// The end of a contour: on rays from a point, the first place where the exponential is below 1e-17, or the
-/// lowest there is; with its size.
-fn lowest(
-    phase: &ModePhase,
-    k: f64,
-    from: Complex64,
-    angles: &[f64],
-    length: impl Fn(f64) -> f64,
-) -> (Complex64, f64) {
-    const STEPS: u32 = 30;
-    let mut best = (from, f64::INFINITY);
-    for &angle in angles {
-        let step = Complex64::from_polar(length(angle) / f64::from(STEPS), angle);
-        for j in 1..=STEPS {
-            let w = from + step * f64::from(j);
-            let size = (I * k * phase.value(w)).re.exp();
-            if size < best.1 {
-                best = (w, size);
-            }
-            if size < 1e-17 {
-                return best;
-            }
-        }
-    }
-    best
 }
 
 /// An estimate multiplied by an exact factor.

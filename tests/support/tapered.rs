@@ -30,6 +30,20 @@ pub struct Taper {
     pub profile: Rc<dyn Fn(f64) -> (f64, f64)>,
 }
 
+/// Width and slope of a guide that is flat before `r = -1 - length` and has unit slope from `r = -1` on,
+/// with cut-off at `r = 0`: an abrupt start leaves some 0.5 % of the other modes.
+#[allow(dead_code)] // not every test starts slowly
+pub fn slow_start(cut: f64, length: f64, r: f64) -> (f64, f64) {
+    if r >= -1.0 {
+        return (cut - r, -1.0);
+    }
+    // The slope goes as sin^2.
+    let rate = 0.5 * PI / length;
+    let angle = rate * (r + 1.0 + length).max(0.0);
+    let lost = (0.5 * angle - 0.25 * (2.0 * angle).sin()) / rate;
+    (cut + 1.0 + 0.5 * length - lost, -angle.sin().powi(2))
+}
+
 /// Resolution of one run.
 #[derive(Clone, Copy)]
 struct Mesh {
@@ -67,8 +81,25 @@ pub struct Snapshot {
 }
 
 impl Taper {
+    /// A mode of a guide without losses that starts on a flat, `length` before unit slope; cut off at
+    /// `r = 0`.
+    #[allow(dead_code)]
+    pub fn slow(mode: u32, even: bool, m: f64, eps: f64, length: f64) -> Taper {
+        let cut = (f64::from(mode) - if even { 1.0 } else { 0.5 }) * PI;
+        Taper {
+            mode,
+            even,
+            m,
+            eps: C::from(eps),
+            well: C::from(1.0),
+            from: -1.0 - length,
+            profile: Rc::new(move |r| slow_start(cut, length, r)),
+        }
+    }
+
     /// Mode `n` (zero at `x = 0`) of a guide without losses that falls with unit slope from the width
     /// `start`; its ranges are minus the widths.
+    #[allow(dead_code)]
     pub fn straight(mode: u32, m: f64, eps: f64, start: f64) -> Taper {
         Taper {
             mode,
@@ -137,6 +168,7 @@ impl Taper {
     }
 
     /// The largest value of the mode inside at the start.
+    #[allow(dead_code)]
     pub fn antinode(&self) -> f64 {
         self.adiabatic()[2].re
     }
