@@ -8,6 +8,7 @@
 #[path = "support/compare.rs"]
 mod compare;
 #[path = "support/tapered.rs"]
+#[allow(dead_code)] // shared by several tests
 mod tapered;
 
 use compare::{error, pairs, turn};

@@ -13,7 +13,11 @@ fn nodes(s: &Snapshot, reach: f64) -> [Vec<usize>; 2] {
 }
 
 /// The formula and the solution at those nodes.
-pub fn pairs(s: &Snapshot, reach: f64, field: impl Fn(f64, f64, bool) -> C) -> [Vec<(C, C)>; 2] {
+pub fn pairs(
+    s: &Snapshot,
+    reach: f64,
+    mut field: impl FnMut(f64, f64, bool) -> C,
+) -> [Vec<(C, C)>; 2] {
     let [inside, outside] = nodes(s, reach);
     [(inside, true), (outside, false)].map(|(which, within)| {
         which.iter().map(|&i| (field(s.h, s.x[i], within), s.psi[i])).collect()

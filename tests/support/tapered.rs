@@ -32,7 +32,6 @@ pub struct Taper {
 
 /// Width and slope of a guide that is flat before `r = -1 - length` and has unit slope from `r = -1` on,
 /// with cut-off at `r = 0`: an abrupt start leaves some 0.5 % of the other modes.
-#[allow(dead_code)] // not every test starts slowly
 pub fn slow_start(cut: f64, length: f64, r: f64) -> (f64, f64) {
     if r >= -1.0 {
         return (cut - r, -1.0);
@@ -83,7 +82,6 @@ pub struct Snapshot {
 impl Taper {
     /// A mode of a guide without losses that starts on a flat, `length` before unit slope; cut off at
     /// `r = 0`.
-    #[allow(dead_code)]
     pub fn slow(mode: u32, even: bool, m: f64, eps: f64, length: f64) -> Taper {
         let cut = (f64::from(mode) - if even { 1.0 } else { 0.5 }) * PI;
         Taper {
@@ -99,7 +97,6 @@ impl Taper {
 
     /// Mode `n` (zero at `x = 0`) of a guide without losses that falls with unit slope from the width
     /// `start`; its ranges are minus the widths.
-    #[allow(dead_code)]
     pub fn straight(mode: u32, m: f64, eps: f64, start: f64) -> Taper {
         Taper {
             mode,
@@ -168,7 +165,6 @@ impl Taper {
     }
 
     /// The largest value of the mode inside at the start.
-    #[allow(dead_code)]
     pub fn antinode(&self) -> f64 {
         self.adiabatic()[2].re
     }
