@@ -105,6 +105,12 @@ fn three_modes_of_the_wedge() {
                 level(&side[0]),
                 level(&side[1])
             );
+            // eps = 0.19: some per cent in mode 1, more in the higher ones, which couple to each other. The
+            // figure says so.
+            assert!(inside < figure && outside < figure);
+            assert!(inside < [0.04, 0.09, 0.16][mode as usize - 1]);
+            assert!(outside < [0.03, 0.07, 0.13][mode as usize - 1]);
+            assert!(level(&side[1]).abs() < 0.4 && level(&side[0]).abs() < 1.5);
         }
     }
 }
@@ -115,11 +121,11 @@ fn the_beam_leaves_at_the_formula_s_angle() {
     let sea = TwoLayer { bottom_attenuation_db_per_wavelength: 0.0, ..WEDGE };
     for slope in [0.5f64, 1.5, 3.0] {
         let gradient = slope.to_radians().tan();
-        let (taper, run, q) = reference(sea, 3, gradient, 2.0);
+        let (taper, run, q) = reference(sea, 2, gradient, 2.0);
         let kb = AcousticGuide::new(sea).unwrap().bottom_wavenumber().re;
         let scale = (taper.m * taper.m * run.eps()).cbrt();
         let length = (taper.m / run.eps()).cbrt();
-        let last = 8.0 * scale;
+        let last = 6.0 * scale;
         let shot = &taper.run(&[last], 60.0 * length, 1.0)[0];
         // Energy per angle: the spectrum of the field outside, k_b sin(angle) = q p.
         let density = |angle: f64| {
@@ -140,6 +146,8 @@ fn the_beam_leaves_at_the_formula_s_angle() {
             beam.axis_rad.to_degrees(),
             small.to_degrees()
         );
-        assert!((beam.axis_rad - seen).to_degrees().abs() < 2.0);
+        for angle in [beam.axis_rad, small] {
+            assert!((angle - seen).to_degrees().abs() < 2.0);
+        }
     }
 }
