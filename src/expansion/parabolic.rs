@@ -163,6 +163,7 @@ mod tests {
     /// `lambda`, `zeta`, `F_lambda`, `F_(lambda+1)` from `Gamma(mu) exp(zeta^2/4) U(mu - 1/2, zeta)` (mpmath, 40 digits).
     #[rustfmt::skip]
     #[allow(clippy::excessive_precision, clippy::approx_constant, clippy::unreadable_literal)]
+    #[allow(clippy::type_complexity)]
     const TABLE: [(f64, f64, f64, (f64, f64), (f64, f64)); 33] = [
         (0.3333333333333333, 0.0, 0.0, (3.1239892304477412, 0.0), (1.0747641207672394, 0.0)),
         (0.3333333333333333, 0.5, 0.0, (2.692197003057732, 0.0), (0.6927688913779385, 0.0)),

@@ -98,17 +98,17 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
     let beside = |node: usize| algebraic.iter().any(|end| end.near.iter().any(|n| n.0 == node));
-    let nodes = resolve(
-        &given,
-        &sheeting,
-        &topology,
-        &tree,
-        &saddles,
-        &ends,
-        &beside,
-        &mut reach,
-        (size, drop),
-    )?;
+    let scene = Scene {
+        given: &given,
+        sheeting: &sheeting,
+        topology: &topology,
+        tree: &tree,
+        saddles: &saddles,
+        ends: &ends,
+        size,
+        drop,
+    };
+    let nodes = resolve(&scene, &beside, &mut reach)?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
@@ -211,18 +211,26 @@ impl Reach {
     }
 }
 
-/// Series and multiplicities of all groups, from the highest downwards.
+/// What has been found before the groups are resolved.
+struct Scene<'a> {
+    given: &'a Given<'a>,
+    sheeting: &'a Sheeting<'a, 'a>,
+    topology: &'a Topology<'a>,
+    tree: &'a Tree,
+    saddles: &'a [Saddle],
+    ends: &'a [End],
+    size: f64,
+    drop: f64,
+}
+
+/// Series and multiplicities of all groups, from the highest downwards. `beside`: groups that an
+/// algebraic end settles.
 fn resolve(
-    given: &Given,
-    sheeting: &Sheeting,
-    topology: &Topology,
-    tree: &Tree,
-    saddles: &[Saddle],
-    ends: &[End],
+    scene: &Scene,
     beside: &dyn Fn(usize) -> bool,
     reach: &mut Reach,
-    (size, drop): (f64, f64),
 ) -> Result<Vec<Node>, Error> {
+    let &Scene { given, sheeting, topology, tree, saddles, ends, size, drop } = scene;
     let highest = |g: &Group| {
         g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
     };
