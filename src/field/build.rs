@@ -161,7 +161,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             branches.iter().map(|b| (saddle.z - b.base).norm().powf(b.lambda - 1.0)).product();
         let weight = amplitude.value(saddle.z).norm()
             * power
-            * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
+            * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
         let weight = if weight.is_finite() { weight } else { 0.0 };
         plan.saddles.push(Place { z: saddle.z, exponent: h, weight });

@@ -102,7 +102,7 @@ impl<'a> Topology<'a> {
             path,
             whole,
             closed,
-            top: top + 0.02 * (top - bottom) + 1e-9,
+            top: top + 0.02 * (top - bottom) + 1e-12 * top.abs(),
             bottom,
             drop,
             longest,
