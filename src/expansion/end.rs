@@ -60,7 +60,7 @@ impl NearEnd {
     ) -> Option<NearEnd> {
         let mut boundaries = Vec::new();
         for (index, ring) in series.rings().iter().enumerate() {
-            let Some(v) = ring.form.preimage(e, Complex64::new(0.0, 0.0)) else { continue };
+            let Some(v) = ring.form.locate(e) else { continue };
             if v.norm() > INSIDE {
                 continue;
             }
@@ -147,8 +147,15 @@ impl NearEnd {
 }
 
 impl NormalForm {
-    /// `v` with `z(R v) = z`, by Newton's method from `start`; None if it leaves the neighbourhood of
-    /// the disc.
+    /// `v` with `z(R v) = z` from the linear part of the map or from the centre.
+    pub(crate) fn locate(&self, z: Complex64) -> Option<Complex64> {
+        let linear = (z - self.map()[0]) / self.map()[1];
+        let start = if linear.norm() > 1.0 { linear / linear.norm() } else { linear };
+        self.preimage(z, start).or_else(|| self.preimage(z, Complex64::new(0.0, 0.0)))
+    }
+
+    /// `v` with `z(R v) = z`, by Newton's method on the Taylor map from `start`; None if it leaves
+    /// the neighbourhood of the disc.
     pub(crate) fn preimage(&self, z: Complex64, start: Complex64) -> Option<Complex64> {
         preimage(self.map(), z, start)
     }

@@ -26,9 +26,15 @@ const WORST_TAIL: f64 = 1e-5;
 /// No ring is enlarged once `R^(K+2)` is beyond this: for `k >= 1` nothing is gained there, and the
 /// rounding error of `A` grows with it.
 const LARGEST: f64 = 40.0;
+/// Mapped saddles within this part of the ring leave room enough.
+const ROOMY: f64 = 0.5;
+/// The first ring has `R^(K+2)` no larger than this.
+const INNERMOST: f64 = 2.0;
 /// The topology looks at the cluster on a ring with `R^(K+2)` no larger than this, if the saddles
 /// allow: the contour's descents must leave it.
 const LOW: f64 = 6.0;
+/// Rings are added at this ratio inside and outside a pole: there it can be split off.
+const BY_POLE: f64 = 1.1;
 /// With tails below this nothing singular lies inside a ring.
 const SOUND: f64 = 1e-9;
 /// The first ring is made smaller until its tails are below this.
@@ -38,7 +44,7 @@ const FIRST: usize = 16;
 /// Branch points must lie beyond this part of a ring.
 const CLEAR: f64 = 1.05;
 /// The smallest ring that is kept, relative to the largest.
-const SMALLEST: f64 = 0.3;
+const SMALLEST: f64 = 0.2;
 
 /// A ring that was tried.
 struct Trial {
@@ -184,7 +190,8 @@ impl Series {
             let last = &trials[trials.len() - 1];
             // The last Taylor coefficients grow at least like this.
             let expected = last.form.tail() * RATIO.powi(KEPT as i32 * 3 / 4);
-            if height(&last.form) > LARGEST || expected > WORST_TAIL {
+            let enough = height(&last.form) > LARGEST && last.filling < ROOMY;
+            if enough || expected > WORST_TAIL {
                 break;
             }
             let Some(next) =
@@ -210,6 +217,9 @@ impl Series {
                 Trial::new(trials[0].form.shrunk(1.0 / RATIO), given)?
             };
             trials.insert(0, inwards);
+        }
+        for index in 0..given.poles.len() {
+            add_rings_by_pole(given, &mut trials, index);
         }
         let kept = |ring: &Trial| {
             // A large tail is a singularity inside: no figure could be trusted.
@@ -349,6 +359,26 @@ impl Series {
     }
 }
 
+/// A ring close inside and one close outside the circle of a pole: on both it can be split off.
+fn add_rings_by_pole(given: &Given, trials: &mut Vec<Trial>, index: usize) {
+    let pole = &given.poles[index].0;
+    let Some(largest) = trials.last() else { return };
+    let Some(v) = largest.form.locate(pole.z) else { return };
+    let place = v.norm() * largest.form.radius();
+    for radius in [place / BY_POLE, place * BY_POLE] {
+        let near = |ring: &Trial| (ring.form.radius() / radius - 1.0).abs() < 0.02;
+        let Some(at) = trials.iter().position(|ring| ring.form.radius() > radius) else { continue };
+        let outer = &trials[at];
+        let factor = radius / outer.form.radius();
+        if trials.iter().any(near) || outer.filling > FILLING * factor {
+            continue;
+        }
+        if let Some(ring) = Trial::new(outer.form.shrunk(factor), given) {
+            trials.insert(at, ring);
+        }
+    }
+}
+
 /// The first ring: smaller while there is no form or the tails are not negligible, larger while
 /// the mapped saddles do not fit.
 fn first_ring(
@@ -367,6 +397,14 @@ fn first_ring(
         if let Some(ring) = NormalForm::find(given.phase, saddles, centre, reach)
             .and_then(|form| Trial::new(form, given))
         {
+            // A large wavenumber needs a small ring: the noise of the phase grows with its size.
+            let excess = (ring.form.radius().powi(ring.form.degree() as i32) / INNERMOST)
+                .powf(1.0 / ring.form.degree() as f64)
+                .min(ROOMY / ring.filling.max(1e-3));
+            if excess > 1.01 && reach / excess > least {
+                reach /= excess;
+                continue;
+            }
             let crowded = ring.filling * RATIO > FILLING;
             // Where the noise of the phase sets the tails a smaller ring is no better.
             let best = found.as_ref().map_or(f64::INFINITY, Trial::tail);

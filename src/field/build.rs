@@ -33,11 +33,24 @@ pub(super) struct Problem<'a> {
 /// One attempt: saddles are looked for within `margin` of the contour.
 pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
-    let region = Region::around(contour.points(), margin);
+    let points = contour.points();
+    let mut reached = points.to_vec();
+    // The saddle that an end point needs may lie beyond it, at about Newton's distance.
+    for (end, &z) in [(contour.start(), &points[0]), (contour.end(), &points[points.len() - 1])] {
+        if end == Termination::Finite {
+            let [_, slope, bend] = phase.jet(z);
+            let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
+            let far = (2.5 * slope.norm() / bend.norm()).min(4.0 * longest);
+            if far.is_finite() {
+                let corner = Complex64::new(far, far);
+                reached.extend([z - corner, z + corner]);
+            }
+        }
+    }
+    let region = Region::around(&reached, margin);
     let saddles = locate(phase, region)?;
     let size = region.size();
     let topology = Topology::new(phase, contour, &saddles, drop);
-    let points = contour.points();
     let tails = topology.tails();
     let branches = branches(problem)?;
     let bases: Vec<Complex64> = branches.iter().map(|branch| branch.base).collect();

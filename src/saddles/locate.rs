@@ -201,8 +201,11 @@ fn turning(
 ) -> Option<f64> {
     let middle = (from.0 + to.0) * 0.5;
     let d = slope(phase, middle)?;
-    let (first, second) = ((d / from.1).arg(), (to.1 / d).arg());
-    if first.abs() < 0.8 && second.abs() < 0.8 {
+    let (first, second) = ((d / from.1).ln(), (to.1 / d).ln());
+    // The size may not change too much either: exp turns by whole turns over one chord.
+    let calm = first.re.abs() < 3.0 && second.re.abs() < 3.0;
+    let (first, second) = (first.im, second.im);
+    if first.abs() < 0.8 && second.abs() < 0.8 && (calm || depth < 8) {
         return Some(first + second);
     }
     if depth == 0 {
@@ -258,6 +261,6 @@ fn simultaneous(
             break;
         }
     }
-    let inside = z[..count].iter().all(|&z| region.holds(z, 0.02));
+    let inside = z[..count].iter().all(|&z| region.holds(z, 1e-6));
     (largest < 1e-5 * size && inside).then_some(z)
 }

@@ -218,7 +218,7 @@ impl<'a> Topology<'a> {
     /// at once then after both have gone further down.
     fn joined(&self, a: Complex64, b: Complex64, floor: f64) -> bool {
         let (mut a, mut b) = (a, b);
-        for round in 0..3 {
+        for round in 0..5 {
             const PIECES: usize = 24;
             let below = |piece: usize| {
                 let z = a + (b - a) * (piece as f64 / PIECES as f64);
@@ -227,9 +227,12 @@ impl<'a> Topology<'a> {
             if (1..PIECES).all(below) {
                 return true;
             }
-            // The contour's own range of heights says where valleys open where the drop is small.
-            let scale = self.drop.max(0.5 * (self.top - self.bottom));
-            let deeper = floor - scale * 4f64.powi(round);
+            // At last the contour's own range of heights says where valleys open.
+            let deeper = if round < 3 {
+                floor - self.drop * 4f64.powi(round)
+            } else {
+                floor - (self.top - self.bottom) * 4f64.powi(round - 3)
+            };
             for z in [&mut a, &mut b] {
                 let mut line = vec![*z];
                 trace(&self.h, *z, deeper, self.longest, &mut line);

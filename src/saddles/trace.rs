@@ -122,10 +122,11 @@ pub(crate) fn trace(
             for _ in 0..2 {
                 let [here, d, dd] = h.jet(z);
                 let polish = (origin + direction * t - here) / d;
+                (slope, bend) = (d, dd);
                 if (polish * dd / d).norm() < 0.3 {
                     z += polish;
+                    slope += dd * polish;
                 }
-                (slope, bend) = (d + dd * polish, dd);
             }
             shrink *= 0.4;
             if shrink < 1e-8 {
