@@ -35,11 +35,17 @@ fn against(name: &str, function: fn(f64, f64, f64) -> Result<Umbilic, merging_sa
     let mut errors = vec![];
     for row in table(name) {
         let v = function(row[0], row[1], row[2]);
-        let Ok(v) = v else { println!("FAIL {row:?} {v:?}"); errors.push(1e9); continue };
+        let Ok(v) = v else {
+            println!("FAIL {row:?} {v:?}");
+            errors.push(1e9);
+            continue;
+        };
         let exact: Vec<C> = row[3..].chunks(2).map(|p| C::new(p[0], p[1])).collect();
         let error = |(v, e): (C, &C)| (v - e).norm() / e.norm().max(0.1);
         let e = four(&v).into_iter().zip(&exact).map(error).fold(0.0, f64::max);
-        if e > 1e-12 { println!("{row:?} {v:?} {e:e}"); }
+        if e > 1e-12 {
+            println!("{row:?} {v:?} {e:e}");
+        }
         errors.push(e);
     }
     judge(name, errors, 1e-13, 1e-13);

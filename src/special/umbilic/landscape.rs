@@ -56,12 +56,7 @@ impl Landscape {
         let r = q.exp();
         let ir = Complex64::new(-r.im, r.re);
         let [c1, c2, c3] = self.outer;
-        let terms = [
-            ir * c1,
-            ir * r * c2,
-            ir * r * r * c3,
-            Complex64::new(0.0, self.inner) / r,
-        ];
+        let terms = [ir * c1, ir * r * c2, ir * r * r * c3, Complex64::new(0.0, self.inner) / r];
         let surplus = (self.weight.ln() - q.re).max(0.0);
         Site { q, h: terms[0] + terms[1] + terms[2] + terms[3] + q * 0.5, terms, surplus }
     }
@@ -71,8 +66,13 @@ impl Landscape {
     pub(super) fn saddles(&self) -> ([Complex64; 4], usize) {
         let [c1, c2, c3] = self.outer;
         let real = |x: f64| Complex64::new(x, 0.0);
-        let all =
-            [real(-self.inner), Complex64::new(0.0, -0.5), real(c1), real(2.0 * c2), real(3.0 * c3)];
+        let all = [
+            real(-self.inner),
+            Complex64::new(0.0, -0.5),
+            real(c1),
+            real(2.0 * c2),
+            real(3.0 * c3),
+        ];
         let coefficients = if self.inner == 0.0 { &all[1..] } else { &all[..] };
         let (mut roots, count) = roots(coefficients);
         for r in &mut roots[..count] {

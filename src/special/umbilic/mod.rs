@@ -141,14 +141,9 @@ pub fn hyperbolic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     // s = a + b, t = a - b, a = r + z/6; the integral over b is Gaussian for Im r > 0.
     let (sum, difference) = (x + y, x - y);
     let inner = -difference * difference / 24.0;
-    let (inner, weight) =
-        if inner > -NEGLIGIBLE { (0.0, 0.0) } else { (inner, difference / 12.0) };
+    let (inner, weight) = if inner > -NEGLIGIBLE { (0.0, 0.0) } else { (inner, difference / 12.0) };
     evaluate(&Form {
-        land: Landscape {
-            outer: [0.5 * z * z + sum, 2.0 * z, 2.0],
-            inner,
-            weight: weight.abs(),
-        },
+        land: Landscape { outer: [0.5 * z * z + sum, 2.0 * z, 2.0], inner, weight: weight.abs() },
         valleys: [1, 0],
         factor: 2.0 * (PI / 6.0).sqrt(),
         phase: z * (z * z / 27.0 + sum / 6.0) + FRAC_PI_4,
