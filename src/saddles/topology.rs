@@ -177,6 +177,16 @@ impl<'a> Topology<'a> {
         Some(list)
     }
 
+    /// An end of the contour whose descent stops above a level: where, and how far down it came.
+    pub fn stuck_end(&self, floor: f64) -> Option<(Complex64, f64)> {
+        if self.closed {
+            return None;
+        }
+        let lowest = self.tails.iter().map(|tail| tail[tail.len() - 1]);
+        let heights = lowest.map(|z| (z, self.h.height(z)));
+        heights.into_iter().find(|(_, height)| *height > floor + SLACK * self.drop)
+    }
+
     /// The certificate: do the valleys and the ends of the contour cancel?
     pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
         let mut ends = valleys.to_vec();
