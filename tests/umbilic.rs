@@ -2,9 +2,9 @@
 //!
 //! The measure: an error of Psi against max(|Psi|, 0.1), one of a derivative against the same of its own.
 
-use merging_saddles::{Complex64 as C, Error};
 use merging_saddles::special::airy::{airy, airy_real};
 use merging_saddles::special::umbilic::{Umbilic, elliptic, hyperbolic};
+use merging_saddles::{Complex64 as C, Error};
 use proptest::prelude::*;
 use std::f64::consts::PI;
 

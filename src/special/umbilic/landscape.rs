@@ -56,12 +56,7 @@ impl Landscape {
         let r = q.exp();
         let ir = Complex64::new(-r.im, r.re);
         let [c1, c2, c3] = self.outer;
-        let terms = [
-            ir * c1,
-            ir * r * c2,
-            ir * r * r * c3,
-            Complex64::new(0.0, self.inner) / r,
-        ];
+        let terms = [ir * c1, ir * r * c2, ir * r * r * c3, Complex64::new(0.0, self.inner) / r];
         let surplus = (self.weight.ln() - q.re).max(0.0);
         Site { q, h: terms[0] + terms[1] + terms[2] + terms[3] + q * 0.5, terms, surplus }
     }
@@ -71,8 +66,13 @@ impl Landscape {
     pub(super) fn saddles(&self) -> ([Complex64; 4], usize) {
         let [c1, c2, c3] = self.outer;
         let real = |x: f64| Complex64::new(x, 0.0);
-        let all =
-            [real(-self.inner), Complex64::new(0.0, -0.5), real(c1), real(2.0 * c2), real(3.0 * c3)];
+        let all = [
+            real(-self.inner),
+            Complex64::new(0.0, -0.5),
+            real(c1),
+            real(2.0 * c2),
+            real(3.0 * c3),
+        ];
         let coefficients = if self.inner == 0.0 { &all[1..] } else { &all[..] };
         let (mut roots, count) = roots(coefficients);
         for r in &mut roots[..count] {
@@ -129,7 +129,7 @@ impl Site {
     }
 
     /// The radius at which the moduli of the Taylor terms add up to `spread`, or a little less; at
-    /// most 8.
+    /// most 4.
     pub(super) fn reach(&self, spread: f64) -> f64 {
         let moduli = self.taylor().map(modulus);
         let sizes = self.terms.map(modulus);
@@ -144,7 +144,7 @@ impl Site {
             let [one, two, three] = [tail(rho), tail(2.0 * rho), tail(3.0 * rho)];
             head + (sizes[0] + sizes[3]) * one + sizes[1] * two + sizes[2] * three
         };
-        let mut rho = (spread / moduli[0]).min((spread / moduli[1]).sqrt()).min(8.0);
+        let mut rho = (spread / moduli[0]).min((spread / moduli[1]).sqrt()).min(4.0);
         for _ in 0..30 {
             let ratio = sum(rho) / spread;
             if ratio <= 1.02 {

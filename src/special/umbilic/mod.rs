@@ -173,18 +173,10 @@ pub fn hyperbolic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     let mean = real([z / 6.0, 1.0, 0.0, 0.0]);
     let rate = |sign: f64| std::array::from_fn(|k| mean[k] + split[k] * sign);
     evaluate(&Form {
-        land: Landscape {
-            outer: [0.5 * z * z + sum, 2.0 * z, 2.0],
-            inner,
-            weight: weight.abs(),
-        },
+        land: Landscape { outer: [0.5 * z * z + sum, 2.0 * z, 2.0], inner, weight: weight.abs() },
         valleys: [1, 0],
         factor: 2.0 * (PI / 6.0).sqrt(),
         phase: z * (z * z / 27.0 + sum / 6.0) + FRAC_PI_4,
-        rates: [
-            rate(1.0),
-            rate(-1.0),
-            real([z * z / 9.0 + sum / 6.0, z, 2.0, 0.0]),
-        ],
+        rates: [rate(1.0), rate(-1.0), real([z * z / 9.0 + sum / 6.0, z, 2.0, 0.0])],
     })
 }

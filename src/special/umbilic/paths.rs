@@ -154,12 +154,7 @@ pub(super) fn between(land: &Landscape, from: i32, to: i32) -> Option<(Moments, 
     SPREADS.iter().find_map(|spread| descents(land, from, to, *spread))
 }
 
-fn descents(
-    land: &Landscape,
-    from: i32,
-    to: i32,
-    spread: f64,
-) -> Option<(Moments, Complex64)> {
+fn descents(land: &Landscape, from: i32, to: i32, spread: f64) -> Option<(Moments, Complex64)> {
     let (saddles, count) = land.saddles();
     let mut hubs: [Site; 4] = std::array::from_fn(|k| land.site(saddles[k]));
     let hubs = &mut hubs[..count];
