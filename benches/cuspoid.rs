@@ -36,15 +36,21 @@ fn run<T: Copy, U>(c: &mut Criterion, name: &str, points: &[T], f: impl Fn(T) ->
 }
 
 fn all(c: &mut Criterion) {
-    run(c, "1024 between Pearcey complex", &points([12.0, 8.0], 0.5), |x| {
-        cuspoid::between(&x, 2, 0)
-    });
-    run(c, "1024 between swallowtail", &points([10.0, 8.0, 6.0], 0.0), |x| {
-        cuspoid::between(&x, 2, 0)
-    });
-    run(c, "1024 between butterfly", &points([10.0, 8.0, 6.0, 5.0], 0.0), |x| {
-        cuspoid::between(&x, 3, 0)
-    });
+    let real = |half: [f64; 2]| -> Vec<(f64, f64)> {
+        points(half, 0.0).iter().map(|p| (p[0].re, p[1].re)).collect()
+    };
+    let far = real([300.0, 60.0]).into_iter().filter(|p| p.0.abs() > 32.0 || p.1.abs() > 16.0);
+    let far: Vec<_> = far.collect();
+    run(c, "1024 pearcey |x1|<32, |x2|<16", &real([32.0, 16.0]), |(a, b)| cuspoid::pearcey(a, b));
+    let name = format!("{} pearcey |x1|<300, |x2|<60", far.len());
+    run(c, &name, &far, |(a, b)| cuspoid::pearcey(a, b));
+    let complex = points([12.0, 8.0], 0.5);
+    run(c, "1024 complex Pearcey", &complex, |x| cuspoid::real_line(&x));
+    let tail = points([10.0, 8.0, 6.0], 0.0);
+    run(c, "1024 swallowtail", &tail, |x| cuspoid::swallowtail(x[0].re, x[1].re, x[2].re));
+    let wing = points([10.0, 8.0, 6.0, 5.0], 0.0);
+    run(c, "1024 butterfly", &wing, |x| cuspoid::butterfly(x[0].re, x[1].re, x[2].re, x[3].re));
+    run(c, "1024 butterfly, five rays", &wing, |x| cuspoid::moments(&x, &[2, -1, 1, -3, 0, 1]));
 }
 
 criterion_group!(benches, all);

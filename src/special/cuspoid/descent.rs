@@ -7,32 +7,30 @@
 //! where needs no decision on a Stokes line, only the digits depend on staying low.
 
 use super::Moments;
-use super::hubs::{Hub, Hubs, SADDLES, hubs};
-use super::panel::{self, MOMENTS};
-use super::polynomial::{
-    Polynomial, Precise, ZERO, moments_about_zero, precise, shifted, stretched,
-};
-use super::walk::{Arm, DEPTH, VERTICES, arm};
+use super::hubs::{Hub, SADDLES, hubs};
+use super::integrate::integrate;
+use super::polynomial::Polynomial;
+use super::walk::{self, Arm, STEPS};
 use crate::Error;
-use crate::special::double_double::{exp_both, sin_cos};
-use num_complex::Complex64;
 
 /// Valleys at most.
 pub(super) const VALLEYS: usize = 6;
 /// Edges of the forest at most: one less than its nodes.
 const EDGES: usize = VALLEYS + SADDLES - 1;
 
-struct Edge {
-    hub: usize,
-    arm: Arm,
+/// One arm of a hub.
+pub(super) struct Edge {
+    pub hub: usize,
+    pub arm: Arm,
     /// How many times the arm is run down.
-    flow: i32,
+    pub flow: i32,
     known: bool,
 }
 
-struct Forest {
-    edges: [Edge; EDGES],
-    count: usize,
+/// Hubs and valleys, joined.
+pub(super) struct Forest {
+    pub edges: [Edge; EDGES],
+    pub count: usize,
     /// Component of each valley.
     component: [usize; VALLEYS],
 }
@@ -121,129 +119,51 @@ fn sum_in_pieces<const D: usize>(
     weights: &[i32; VALLEYS],
     pieces: usize,
 ) -> Result<Moments, Error> {
-    let stuck = Error::NoConvergence {
+    // Another grouping of the saddles where the first one leaves valleys apart (seen twice in
+    // 800,000).
+    for lead in [1.0, 1.5, 0.7, 2.5] {
+        let Some(mut hubs) = hubs::<D>(h, lead) else { continue };
+        let list = &mut hubs.list[..hubs.count];
+        list.sort_unstable_by(|a, b| a.height().total_cmp(&b.height()));
+        if let Some(mut forest) = grow::<D>(h, list, weights) {
+            forest.solve(weights);
+            return Ok(integrate::<D>(h, &hubs, &forest, pieces));
+        }
+    }
+    Err(Error::NoConvergence {
         what: "the descent from the saddles of a cuspoid integral",
-        limit: 250,
-        remedy: "report the parameters: every finite set should be reached",
-    };
-    let Some(mut hubs) = hubs::<D>(h) else { return Err(stuck) };
-    let list = &mut hubs.list[..hubs.count];
-    list.sort_unstable_by(|a, b| a.height().total_cmp(&b.height()));
+        limit: STEPS,
+        remedy: "report the parameters: every finite set should be reached; \
+                 a change in the last digit may help",
+    })
+}
+
+/// Joins the valleys over the hubs, the lowest first; None if they stay apart.
+fn grow<const D: usize>(h: &Polynomial, hubs: &[Hub], weights: &[i32; VALLEYS]) -> Option<Forest> {
     let mut forest = Forest {
         edges: std::array::from_fn(|_| Edge { hub: 0, arm: Arm::BLANK, flow: 0, known: false }),
         count: 0,
         component: std::array::from_fn(|v| v),
     };
-    for (index, hub) in list.iter().enumerate() {
+    let mut arms = [Arm::BLANK; VALLEYS];
+    for (index, hub) in hubs.iter().enumerate() {
         if forest.carries::<D>(weights) {
             break;
         }
         let directions = hub.directions();
-        let mut arms = [Arm::BLANK; VALLEYS];
-        for (k, direction) in directions.iter().enumerate().take(hub.arms) {
-            arm::<D>(h, hub, *direction, &mut arms[k]).ok_or_else(|| stuck.clone())?;
+        for (arm, direction) in arms.iter_mut().zip(directions).take(hub.arms) {
+            walk::arm::<D>(h, hub, direction, arm)?;
         }
         forest.join::<D>(index, &arms[..hub.arms]);
     }
-    if !forest.carries::<D>(weights) {
-        return Err(stuck);
-    }
-    forest.solve(weights);
-    Ok(integrate::<D>(h, &hubs, &forest, pieces))
-}
-
-fn integrate<const D: usize>(
-    h: &Polynomial,
-    hubs: &Hubs,
-    forest: &Forest,
-    pieces: usize,
-) -> Moments {
-    let edges = &forest.edges[..forest.count];
-    let top = edges
-        .iter()
-        .filter(|e| e.flow != 0)
-        .fold(f64::NEG_INFINITY, |top, e| top.max(hubs.list[e.hub].height()));
-    let mut total = Moments { mantissas: [ZERO; MOMENTS], exponent: 0 };
-    let mut first = true;
-    for (index, hub) in hubs.list[..hubs.count].iter().enumerate().rev() {
-        let depth = DEPTH - (top - hub.height());
-        if depth <= 0.0 || !edges.iter().any(|e| e.hub == index && e.flow != 0) {
-            continue;
-        }
-        let (level, local) = level::<D>(h, hub);
-        let mut moments = [ZERO; MOMENTS];
-        for edge in edges.iter().filter(|e| e.hub == index && e.flow != 0) {
-            let along = run::<D>(&local, &edge.arm, depth, pieces);
-            for n in 0..D - 1 {
-                moments[n] += along[n] * f64::from(edge.flow);
-            }
-        }
-        moments_about_zero(&mut moments, D - 1, hub.at);
-        let (factor, exponent) = exponential(level);
-        if first {
-            total.exponent = exponent;
-            first = false;
-        }
-        let factor = factor * crate::scaled::pow2((exponent - total.exponent).clamp(-2000, 1000));
-        for n in 0..D - 1 {
-            total.mantissas[n] += moments[n] * factor;
-        }
-    }
-    total
-}
-
-/// Moments about the hub, in units of `e^(h(hub))`, down one arm.
-fn run<const D: usize>(
-    local: &Polynomial,
-    arm: &Arm,
-    depth: f64,
-    pieces: usize,
-) -> [Complex64; MOMENTS] {
-    let mut total = [ZERO; MOMENTS];
-    for k in 1..arm.count.min(VERTICES) {
-        if arm.drops[k - 1] > depth {
-            break;
-        }
-        let (from, to) = (arm.vertices[k - 1], arm.vertices[k]);
-        let half = (to - from) * (0.5 / pieces as f64);
-        for piece in 0..pieces {
-            let middle = from + half * (2 * piece + 1) as f64;
-            let p = stretched::<D>(&shifted::<D>(local, middle), half);
-            let mut moments = panel::moments::<D>(&p);
-            let mut power = half;
-            for m in &mut moments[..D - 1] {
-                *m *= power;
-                power *= half;
-            }
-            moments_about_zero(&mut moments, D - 1, middle);
-            for n in 0..D - 1 {
-                total[n] += moments[n];
-            }
-        }
-    }
-    total
-}
-
-/// The exponent at the hub and, relative to it, round it. In double-double where plain numbers
-/// would leave an error in the phase.
-fn level<const D: usize>(h: &Polynomial, hub: &Hub) -> (Precise, Polynomial) {
-    let (value, slope) = precise::<D>(h, hub.at);
-    let mut local = hub.local;
-    local[0] = ZERO;
-    local[1] = slope.round();
-    (value, local)
-}
-
-/// `e^w` as a number and an exponent of two.
-fn exponential(w: Precise) -> (Complex64, i64) {
-    let (sin, cos) = sin_cos(w.im);
-    let (up, _, n) = exp_both(w.re);
-    (Complex64::new(up * cos, up * sin), n)
+    forest.carries::<D>(weights).then_some(forest)
 }
 
 #[cfg(test)]
 mod tests {
+    use super::super::polynomial::ZERO;
     use super::*;
+    use num_complex::Complex64;
 
     /// A number in 0..1 and the next state (Weyl sequence with a mixer; common practice).
     fn random(state: &mut u64) -> f64 {
@@ -254,62 +174,84 @@ mod tests {
         ((z ^ (z >> 31)) >> 11) as f64 / (1u64 << 53) as f64
     }
 
+    fn complex(real: bool, size: f64, state: &mut u64) -> Complex64 {
+        let z = Complex64::from_polar(size, std::f64::consts::TAU * random(state));
+        if real { Complex64::new(z.re, 0.0) } else { z }
+    }
+
+    /// Parameters at random, some of them zero; `size` is that of the outermost saddle.
+    fn scattered<const D: usize>(h: &mut Polynomial, size: f64, real: bool, state: &mut u64) {
+        for (m, c) in h.iter_mut().enumerate().take(D - 1).skip(1) {
+            let part = random(state);
+            let r = if part < 0.15 { 0.0 } else { size.powi((D - m) as i32) * part.sqrt() };
+            *c = Complex64::new(0.0, 1.0) * complex(real, r, state);
+        }
+    }
+
+    /// Parameters of saddles at random, of which some coincide or nearly so.
+    fn from_saddles<const D: usize>(h: &mut Polynomial, size: f64, real: bool, state: &mut u64) {
+        let mut saddles = [ZERO; SADDLES];
+        for j in 0..D - 1 {
+            let near = random(state);
+            saddles[j] = if j > 0 && near < 0.5 {
+                let gap = if near < 0.1 { 0.0 } else { size * 10f64.powf(-20.0 * (near - 0.1)) };
+                saddles[j - 1] + complex(real, gap, state)
+            } else {
+                complex(real, size * random(state).sqrt(), state)
+            };
+        }
+        let mean = saddles[..D - 1].iter().sum::<Complex64>() / (D - 1) as f64;
+        // f' = D prod (t - t_s)
+        let mut slope = [ZERO; 7];
+        slope[0] = Complex64::new(0.0, D as f64);
+        for (j, saddle) in saddles[..D - 1].iter().enumerate() {
+            for m in (0..=j + 1).rev() {
+                let lower = if m > 0 { slope[m - 1] } else { ZERO };
+                slope[m] = lower - slope[m] * (saddle - mean);
+            }
+        }
+        for m in 1..D - 1 {
+            h[m] = slope[m - 1] / m as f64;
+        }
+    }
+
     /// Largest difference between panels whole and in three pieces, on the cuspoid scale.
     fn worst<const D: usize>(count: usize, seed: u64) -> f64 {
         let mut state = seed;
         let mut worst = 0.0f64;
-        let mut fails = 0;
         for n in 0..count {
             let mut h = [ZERO; 7];
             h[D] = Complex64::new(0.0, 1.0);
-            // Sizes of the outermost saddle from 0.03 to 30; a third real, some parameters zero.
             let size = 10f64.powf(3.0 * random(&mut state) - 1.5);
-            let mut t = 1.0;
-            for m in 1..D - 1 {
-                let x = if random(&mut state) < 0.15 {
-                    ZERO
-                } else {
-                    let r = size.powi((D - m) as i32) * random(&mut state).sqrt();
-                    let turn = random(&mut state);
-                    let angle = if n % 3 == 0 { (2.0 * turn).floor() * 0.5 } else { turn };
-                    Complex64::from_polar(r, std::f64::consts::TAU * angle)
-                };
-                let x = if n % 3 == 0 { Complex64::new(x.re, 0.0) } else { x };
-                h[m] = Complex64::new(-x.im, x.re);
-                t += x.norm().powf(1.0 / (D - m) as f64);
+            if n % 2 == 0 {
+                scattered::<D>(&mut h, size, n % 4 == 0, &mut state);
+            } else {
+                from_saddles::<D>(&mut h, size, n % 4 == 1, &mut state);
             }
+            let part = |m: usize| h[m].norm().powf(1.0 / (D - m) as f64);
+            let t = 1.0 + (1..D - 1).map(part).sum::<f64>();
             let from = (random(&mut state) * D as f64) as usize;
             let to = (from + 1 + (random(&mut state) * (D - 1) as f64) as usize) % D;
             let mut weights = [0; VALLEYS];
             (weights[from], weights[to]) = (-1, 1);
-            let Ok(coarse) = sum::<D>(&h, &weights) else {
-                fails += 1;
-                if fails < 3 {
-                    println!("FAIL {D} {from} {to} {h:?}");
-                }
-                continue;
-            };
-            let fine = sum_in_pieces::<D>(&h, &weights, 3).unwrap();
+            let coarse = sum::<D>(&h, &weights).expect("every finite set is reached");
+            let fine = sum_in_pieces::<D>(&h, &weights, 3).expect("every finite set is reached");
             assert_eq!(coarse.exponent, fine.exponent);
-            let scale =
-                (0..D - 1).map(|n| fine.mantissas[n].norm() / t.powi(n as i32)).fold(0.0, f64::max);
+            let scale = |n: usize| t.powi(n as i32);
+            let size = (0..D - 1).map(|n| fine.mantissas[n].norm() / scale(n)).fold(0.0, f64::max);
             for n in 0..D - 1 {
-                let error = (coarse.mantissas[n] - fine.mantissas[n]).norm();
-                let error = error / (scale * t.powi(n as i32));
-                if error > 3e-14 && error > worst {
-                    println!("{D} {error:.2e} {from} {to} {h:?}");
-                }
+                let error = (coarse.mantissas[n] - fine.mantissas[n]).norm() / (size * scale(n));
                 worst = worst.max(error);
             }
         }
-        println!("{D}: fails {fails}");
         worst
     }
 
+    /// More points of the same kind were tried with the same bound.
     #[test]
     fn panels_are_fine_enough() {
-        let n = std::env::var("N").map(|s| s.parse().unwrap()).unwrap_or(3000);
-        let found = [worst::<3>(n, 1), worst::<4>(n, 2), worst::<5>(n, 3), worst::<6>(n, 4)];
+        let found =
+            [worst::<3>(3000, 1), worst::<4>(3000, 2), worst::<5>(3000, 3), worst::<6>(3000, 4)];
         println!("{found:?}");
         assert!(found.iter().all(|e| *e < 5e-14), "{found:?}");
     }

@@ -93,22 +93,21 @@ fn saddles<const D: usize>(h: &Polynomial) -> [Complex64; SADDLES] {
             roots[j] -= step;
             moved = moved.max(step.norm_sqr());
         }
-        if moved < 1e-18 {
+        if moved < 1e-8 {
             break;
         }
     }
     roots.map(|r| r * unit)
 }
 
-/// A group of `count` saddles round `at`, if arms can leave it; `last` if it has all saddles.
-fn hub<const D: usize>(h: &Polynomial, at: Complex64, count: usize) -> Option<Hub> {
+/// A group of `count` saddles round `at`, if arms can leave it.
+fn hub<const D: usize>(h: &Polynomial, at: Complex64, count: usize, ahead: f64) -> Option<Hub> {
     let local = shifted::<D>(h, at);
     let arms = count + 1;
     let size = |m: usize| local[m].re.abs().max(local[m].im.abs());
     // From the circle on which the leading term is HIGH, or its neighbours take over, inwards.
     const HIGH: f64 = 5.0;
     const LOW: f64 = 0.05;
-    const LEAD: f64 = 1.0;
     let lead = size(arms);
     if lead == 0.0 {
         return None;
@@ -128,7 +127,7 @@ fn hub<const D: usize>(h: &Polynomial, at: Complex64, count: usize) -> Option<Hu
                 others += size(m) * power;
             }
         }
-        if leading > LEAD * others {
+        if leading > ahead * others {
             return Some(Hub { at, local, arms, radius });
         }
         if !last && leading < LOW {
@@ -139,12 +138,13 @@ fn hub<const D: usize>(h: &Polynomial, at: Complex64, count: usize) -> Option<Hu
     None
 }
 
-/// All hubs; None if no grouping works (not finite).
-pub(super) fn hubs<const D: usize>(h: &Polynomial) -> Option<Hubs> {
+/// All hubs, the leading term of each `ahead` times the others together where its arms begin; None
+/// if no grouping works.
+pub(super) fn hubs<const D: usize>(h: &Polynomial, ahead: f64) -> Option<Hubs> {
     let n = D - 1;
     let blank = Hub { at: ZERO, local: [ZERO; 7], arms: 0, radius: 0.0 };
     // Small parameters: one group without looking for saddles.
-    if let Some(hub) = hub::<D>(h, ZERO, n)
+    if let Some(hub) = hub::<D>(h, ZERO, n, ahead)
         && hub.radius.powi(D as i32) < SMALL
     {
         let mut list = [blank; SADDLES];
@@ -163,7 +163,7 @@ pub(super) fn hubs<const D: usize>(h: &Polynomial) -> Option<Hubs> {
             return Some(Hubs { list, count });
         };
         let at = if members[j] == n { ZERO } else { polished::<D>(h, centre[j], members[j]) };
-        if let Some(hub) = hub::<D>(h, at, members[j]) {
+        if let Some(hub) = hub::<D>(h, at, members[j], ahead) {
             list[j] = hub;
             ready[j] = true;
             continue;
@@ -193,10 +193,11 @@ fn polished<const D: usize>(h: &Polynomial, start: Complex64, count: usize) -> C
     for _ in 0..2 {
         let local = shifted::<D>(h, t);
         let step = local[count] / (local[count + 1] * (count + 1) as f64);
-        if !(step.norm_sqr() < 1e-2 * t.norm_sqr()) {
+        if step.norm_sqr() < 1e-2 * t.norm_sqr() {
+            t -= step;
+        } else {
             return start;
         }
-        t -= step;
     }
     t
 }

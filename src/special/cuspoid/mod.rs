@@ -8,6 +8,10 @@
 //!
 //! Parameters are listed as `[x_1, .., x_K]`.
 //!
+//! Method: any two valleys by descents from the saddles (`descent`, `hubs`, `walk`), saddles far from
+//! the others by one trapezoidal rule (`lone`), the Pearcey integral on the real line from a table
+//! by one Taylor step or from its lone saddles (`pearcey`). Phases are carried in double-double.
+//!
 //! Accuracy is counted on the cuspoid scale: with `T = 1 + sum_m |x_m|^(1/(K+2-m))` and
 //! `S = max(|Psi|, |dPsi/dx_m|/T^m)`, an error of Psi against S, one of `dPsi/dx_m` against
 //! `S T^m`. That is the relative error away from zeros, and stays meaningful on them.
@@ -18,14 +22,20 @@
 
 mod descent;
 mod hubs;
+mod integrate;
+mod lone;
 mod panel;
+mod pearcey;
+mod pearcey_nodes;
 mod polynomial;
 mod walk;
+mod zeros;
 
 use crate::{Error, Scaled};
 use descent::VALLEYS;
 use num_complex::Complex64;
 use polynomial::{Polynomial, ZERO};
+pub use zeros::{PearceyZero, pearcey_zero_inside, pearcey_zero_near, pearcey_zero_outside};
 
 /// A cuspoid integral and its first derivatives at one point.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -50,15 +60,17 @@ const FARTHEST: f64 = 1e16;
 
 /// Refuses what is not finite and what leaves no digit.
 fn check(x: &[Complex64]) -> Result<(), Error> {
-    let degree = x.len() + 2;
-    for (m, x) in x.iter().enumerate().map(|(m, x)| (m + 1, x)) {
+    for (m, x) in x.iter().enumerate() {
         if !(x.re.is_finite() && x.im.is_finite()) {
             return Err(Error::Domain {
-                what: ["x_1", "x_2", "x_3", "x_4"][m - 1],
+                what: ["x_1", "x_2", "x_3", "x_4"][m],
                 value: *x,
                 remedy: "pass finite parameters",
             });
         }
+    }
+    let degree = x.len() + 2;
+    for (m, x) in x.iter().enumerate().map(|(m, x)| (m + 1, x)) {
         let size = x.re.abs().max(x.im.abs());
         // Below 256 in size no parameter makes a phase of more than 256^6 = 2.8e14.
         if size > 256.0 {
@@ -85,8 +97,9 @@ fn check(x: &[Complex64]) -> Result<(), Error> {
 /// accurate as its own paths allow: valleys whose weight can be joined low are not reached over a
 /// high saddle.
 ///
-/// Accuracy: about 1e-15 on the cuspoid scale, worst seen 1e-13. Cost: 7 to 20 us. No allocation.
-/// Method and regions: descents from the saddles, Gauss-Legendre panels.
+/// Accuracy on the cuspoid scale: 3e-15 in the tables, median 2e-16; the worst of 1.2 million random
+/// sums, with saddles that coincide or nearly so among them, 6e-14. Cost: 5 to 15 us. No allocation.
+/// The mantissas are not brought to any standard size.
 ///
 /// # Errors
 /// [`Error::Unsupported`] for no or more than four parameters, [`Error::Domain`] for parameters
@@ -138,7 +151,7 @@ pub fn moments(x: &[Complex64], weights: &[i32]) -> Result<Moments, Error> {
 /// `Psi_K` from infinity in valley `from` to infinity in valley `to`, with all first derivatives,
 /// for K = 1 to 4 and parameters `x = [x_1, .., x_K]`.
 ///
-/// Accuracy: about 1e-15 on the cuspoid scale, worst seen 1e-13. Cost: 7 to 20 us. No allocation.
+/// Accuracy as [`moments`]. Cost: about 6 us for K = 2, 8 us for K = 3, 11 us for K = 4.
 ///
 /// # Errors
 /// As [`moments`]; [`Error::Domain`] also for a valley that does not exist. Twice the same valley
@@ -173,4 +186,114 @@ pub fn between<const K: usize>(
         psi: Scaled::new(m.mantissas[0], m.exponent),
         derivatives: std::array::from_fn(derivative),
     })
+}
+
+impl<const K: usize> Cuspoid<Scaled, K> {
+    /// Plain numbers: infinity or zero where they do not fit.
+    pub fn to_complex(self) -> Cuspoid<Complex64, K> {
+        Cuspoid {
+            psi: self.psi.to_complex(),
+            derivatives: self.derivatives.map(Scaled::to_complex),
+        }
+    }
+}
+
+/// `Psi_K(x)` along the real line (DLMF 36.2.4) for complex parameters `x = [x_1, .., x_K]`, with all
+/// first derivatives: [`between`] from valley `floor((K+2)/2)` to valley 0.
+///
+/// # Errors
+/// As [`between`].
+///
+/// ```
+/// use merging_saddles::{Complex64, special::cuspoid};
+/// // Psi_1(0) = 2 pi 3^(-1/3) Ai(0) = 1.54669 (DLMF 36.2.13, 36.2.16).
+/// let v = cuspoid::real_line(&[Complex64::new(0.0, 0.0)])?.to_complex();
+/// assert!((v.psi.re - 1.54669).abs() < 5e-6 && v.psi.im.abs() < 1e-15);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+pub fn real_line<const K: usize>(x: &[Complex64; K]) -> Result<Cuspoid<Scaled, K>, Error> {
+    between(x, (K + 2) / 2, 0)
+}
+
+/// The Pearcey integral `Psi_2(x_1, x_2) = integral of exp(i (t^4 + x_2 t^2 + x_1 t)) dt` (DLMF
+/// 36.2.14) for real parameters, with its first derivatives; `derivatives` holds `dPsi/dx_1`,
+/// `dPsi/dx_2`.
+///
+/// Accuracy on the cuspoid scale: 7e-15 for `|x_2| <= 16`, `|x_1| <= 32` (99 of 100 below 2e-15),
+/// 1e-15 outside, on the caustic as elsewhere, and no worse for parameters of 1e6. Cost: 0.2 us
+/// inside that box; outside 0.6 us in the median, up to 10 us near the caustic.
+///
+/// # Errors
+/// [`Error::Domain`] for parameters that are not finite, [`Error::NoDigits`] beyond the range.
+///
+/// ```
+/// use merging_saddles::special::cuspoid::pearcey;
+/// // Psi_2(0, 0) = 1.67481 + 0.69373 i (DLMF 36.2.16).
+/// let v = pearcey(0.0, 0.0)?;
+/// assert!((v.psi.re - 1.67481).abs() < 5e-6 && (v.psi.im - 0.69373).abs() < 5e-6);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+pub fn pearcey(x1: f64, x2: f64) -> Result<Cuspoid<Complex64, 2>, Error> {
+    check(&[Complex64::new(x1, 0.0), Complex64::new(x2, 0.0)])?;
+    let m = pearcey::moments(x1, x2)?;
+    let turned = |z: Complex64| Complex64::new(-z.im, z.re);
+    Ok(Cuspoid { psi: m[0], derivatives: [turned(m[1]), turned(m[2])] })
+}
+
+/// [`pearcey`] at every `points[i] = (x_1, x_2)`, written to `out[i]`.
+///
+/// # Errors
+/// As [`pearcey`], at the first point that is refused; [`Error::Domain`] if the slices differ in
+/// length.
+pub fn pearcey_at(points: &[(f64, f64)], out: &mut [Cuspoid<Complex64, 2>]) -> Result<(), Error> {
+    if points.len() != out.len() {
+        return Err(Error::domain(
+            "length of the output",
+            out.len() as f64,
+            "pass as many places as points",
+        ));
+    }
+    for (&(x1, x2), place) in points.iter().zip(out) {
+        *place = pearcey(x1, x2)?;
+    }
+    Ok(())
+}
+
+/// The swallowtail integral `Psi_3(x_1, x_2, x_3) = integral of
+/// exp(i (t^5 + x_3 t^3 + x_2 t^2 + x_1 t)) dt` (DLMF 36.2.4) for real parameters, with its first
+/// derivatives; complex parameters: [`real_line`].
+///
+/// Accuracy: 2e-15 on the cuspoid scale. Cost: about 8 us.
+///
+/// # Errors
+/// [`Error::Domain`] for parameters that are not finite, [`Error::NoDigits`] beyond the range.
+///
+/// ```
+/// use merging_saddles::special::cuspoid::swallowtail;
+/// // Psi_3(0, 0, 0) = 1.74646 (DLMF 36.2.16).
+/// assert!((swallowtail(0.0, 0.0, 0.0)?.psi.re - 1.74646).abs() < 5e-6);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+pub fn swallowtail(x1: f64, x2: f64, x3: f64) -> Result<Cuspoid<Complex64, 3>, Error> {
+    real_line(&[x1, x2, x3].map(|x| Complex64::new(x, 0.0))).map(Cuspoid::to_complex)
+}
+
+/// The butterfly integral `Psi_4(x_1, .., x_4) = integral of
+/// exp(i (t^6 + x_4 t^4 + x_3 t^3 + x_2 t^2 + x_1 t)) dt` (DLMF 36.2.4) for real parameters, with its
+/// first derivatives; complex parameters: [`real_line`].
+///
+/// Accuracy: 3e-15 on the cuspoid scale. Cost: about 11 us.
+///
+/// # Errors
+/// [`Error::Domain`] for parameters that are not finite, [`Error::NoDigits`] beyond the range.
+///
+/// ```
+/// use merging_saddles::special::cuspoid::butterfly;
+/// // Psi_4(0, 0, 0, 0) = 1.79222 + 0.48022 i (DLMF 36.2.16).
+/// let v = butterfly(0.0, 0.0, 0.0, 0.0)?;
+/// assert!((v.psi.re - 1.79222).abs() < 5e-6 && (v.psi.im - 0.48022).abs() < 5e-6);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+pub fn butterfly(x1: f64, x2: f64, x3: f64, x4: f64) -> Result<Cuspoid<Complex64, 4>, Error> {
+    real_line(&[x1, x2, x3, x4].map(|x| Complex64::new(x, 0.0))).map(Cuspoid::to_complex)
 }

@@ -9,7 +9,7 @@ use num_complex::Complex64;
 use std::f64::consts::{FRAC_2_PI, LOG2_E};
 
 /// Positive nodes: zeros of P_20, refined by Newton steps at 40 digits.
-const NODES: [f64; HALF] = [
+const NODES: [f64; 10] = [
     0.9931285991850949,
     0.9639719272779138,
     0.912234428251326,
@@ -22,7 +22,7 @@ const NODES: [f64; HALF] = [
     0.07652652113349734,
 ];
 /// Weights `2/((1 - x^2) P_20'(x)^2)`.
-const WEIGHTS: [f64; HALF] = [
+const WEIGHTS: [f64; 10] = [
     0.017614007139152118,
     0.04060142980038694,
     0.06267204833410907,
@@ -34,68 +34,95 @@ const WEIGHTS: [f64; HALF] = [
     0.14917298647260374,
     0.15275338713072584,
 ];
-const HALF: usize = 10;
-const ALL: usize = 2 * HALF;
 /// Moments that are returned at most.
 pub(super) const MOMENTS: usize = TERMS - 2;
 
-/// Weight times node to the power n.
-const WEIGHTED: [[f64; HALF]; MOMENTS] = {
-    let mut table = [WEIGHTS; MOMENTS];
-    let mut n = 1;
-    while n < MOMENTS {
+/// A rule that is symmetric about 0, with `2 H` nodes.
+struct Rule<const H: usize> {
+    nodes: [f64; H],
+    squares: [f64; H],
+    /// Weight times node to the power n.
+    weighted: [[f64; H]; MOMENTS],
+}
+
+impl<const H: usize> Rule<H> {
+    const fn new(nodes: [f64; H], weights: [f64; H]) -> Self {
+        let mut squares = nodes;
+        let mut weighted = [weights; MOMENTS];
         let mut k = 0;
-        while k < HALF {
-            table[n][k] = table[n - 1][k] * NODES[k];
+        while k < H {
+            squares[k] *= nodes[k];
+            let mut n = 1;
+            while n < MOMENTS {
+                weighted[n][k] = weighted[n - 1][k] * nodes[k];
+                n += 1;
+            }
             k += 1;
         }
-        n += 1;
+        Rule { nodes, squares, weighted }
     }
-    table
-};
-const SQUARES: [f64; HALF] = {
-    let mut table = NODES;
-    let mut k = 0;
-    while k < HALF {
-        table[k] *= NODES[k];
-        k += 1;
+
+    /// `sum of w x^n e^(p(x))`, n = 0 .. D-2.
+    #[inline(always)]
+    fn moments<const D: usize>(&self, p: &Polynomial) -> [Complex64; MOMENTS] {
+        let mut re = [[0.0; H]; 2];
+        let mut im = [[0.0; H]; 2];
+        for k in 0..H {
+            let q = self.squares[k];
+            let (mut even, mut odd) = ([0.0; 2], [0.0; 2]);
+            for m in (0..=D).rev() {
+                let part = if m % 2 == 0 { &mut even } else { &mut odd };
+                part[0] = part[0] * q + p[m].re;
+                part[1] = part[1] * q + p[m].im;
+            }
+            let x = self.nodes[k];
+            re[0][k] = even[0] + x * odd[0];
+            re[1][k] = even[0] - x * odd[0];
+            im[0][k] = even[1] + x * odd[1];
+            im[1][k] = even[1] - x * odd[1];
+        }
+        for side in 0..2 {
+            exponentials(&mut re[side], &mut im[side]);
+        }
+        let mut sums = [Complex64::new(0.0, 0.0); MOMENTS];
+        for (n, sum) in sums.iter_mut().enumerate().take(D - 1) {
+            let sign = if n % 2 == 0 { 1.0 } else { -1.0 };
+            for k in 0..H {
+                let w = self.weighted[n][k];
+                sum.re += w * (re[0][k] + sign * re[1][k]);
+                sum.im += w * (im[0][k] + sign * im[1][k]);
+            }
+        }
+        sums
     }
-    table
-};
+}
+
+static GAUSS: Rule<10> = Rule::new(NODES, WEIGHTS);
 
 /// `integral of x^n e^(p(x)) dx` over `-1 <= x <= 1` for n = 0 .. D-2, `p` of degree `D`.
 pub(super) fn moments<const D: usize>(p: &Polynomial) -> [Complex64; MOMENTS] {
-    let mut re = [0.0; ALL];
-    let mut im = [0.0; ALL];
-    for k in 0..HALF {
-        let q = SQUARES[k];
-        let (mut even, mut odd) = ([0.0; 2], [0.0; 2]);
-        for m in (0..=D).rev() {
-            let part = if m % 2 == 0 { &mut even } else { &mut odd };
-            part[0] = part[0] * q + p[m].re;
-            part[1] = part[1] * q + p[m].im;
-        }
-        re[k] = even[0] + NODES[k] * odd[0];
-        re[k + HALF] = even[0] - NODES[k] * odd[0];
-        im[k] = even[1] + NODES[k] * odd[1];
-        im[k + HALF] = even[1] - NODES[k] * odd[1];
+    GAUSS.moments::<D>(p)
+}
+
+/// The trapezoidal rule with nodes at `(k + 1/2) step`.
+const fn trapezoid<const H: usize>(step: f64) -> Rule<H> {
+    let mut nodes = [0.0; H];
+    let mut k = 0;
+    while k < H {
+        nodes[k] = step * (k as f64 + 0.5);
+        k += 1;
     }
-    exponentials(&mut re, &mut im);
-    let mut sums = [Complex64::new(0.0, 0.0); MOMENTS];
-    for (n, sum) in sums.iter_mut().enumerate().take(D - 1) {
-        for k in 0..HALF {
-            let w = WEIGHTED[n][k];
-            let (a, b, c, d) = (re[k], re[k + HALF], im[k], im[k + HALF]);
-            if n % 2 == 0 {
-                sum.re += w * (a + b);
-                sum.im += w * (c + d);
-            } else {
-                sum.re += w * (a - b);
-                sum.im += w * (c - d);
-            }
-        }
-    }
-    sums
+    Rule::new(nodes, [step; H])
+}
+
+/// For `e^(-x^2 + ..)`; what is left is `e^-(pi/step)^2` and what the other terms make of it.
+static SHORT: Rule<20> = trapezoid(0.38);
+static LONG: Rule<32> = trapezoid(0.29);
+
+/// `integral of x^n e^(p(x)) dx` over the whole line for `p = -x^2 + ..` whose other terms stay
+/// small (very small: `short`) as far as `e^(-x^2)` counts.
+pub(super) fn bell<const D: usize>(p: &Polynomial, short: bool) -> [Complex64; MOMENTS] {
+    if short { SHORT.moments::<D>(p) } else { LONG.moments::<D>(p) }
 }
 
 /// `1.5 * 2^52`: added and subtracted, it rounds to an integer, which then stands in the low bits.
@@ -118,8 +145,9 @@ const INVERSE: [f64; 18] = {
 
 /// Replaces the real and imaginary parts of numbers `w` by those of `e^w`; underflow gives
 /// something below 1e-304, and imaginary parts are to stay below 1e6.
-fn exponentials(re: &mut [f64; ALL], im: &mut [f64; ALL]) {
-    for k in 0..ALL {
+#[inline(always)]
+fn exponentials<const N: usize>(re: &mut [f64; N], im: &mut [f64; N]) {
+    for k in 0..N {
         let x = re[k].clamp(-700.0, 700.0);
         let shifted = x * LOG2_E + ROUNDER;
         let n = shifted - ROUNDER;
@@ -160,15 +188,15 @@ mod tests {
     fn exponentials_agree_with_the_library() {
         let mut worst = 0.0f64;
         for i in 0..500 {
-            let mut re = [0.0; ALL];
-            let mut im = [0.0; ALL];
-            for k in 0..ALL {
+            let mut re = [0.0; 20];
+            let mut im = [0.0; 20];
+            for k in 0..20 {
                 re[k] = -60.0 + 0.0061 * (20 * i + k) as f64;
                 im[k] = 40.0 * ((20 * i + k) as f64).sin();
             }
             let (x, y) = (re, im);
             exponentials(&mut re, &mut im);
-            for k in 0..ALL {
+            for k in 0..20 {
                 let exact = Complex64::new(x[k], y[k]).exp();
                 let error = (Complex64::new(re[k], im[k]) - exact).norm();
                 worst = worst.max(error / exact.norm());

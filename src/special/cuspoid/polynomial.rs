@@ -1,7 +1,7 @@
 //! Complex polynomials of the degree of the phase: Taylor shift, values, moments, and the value
 //! and slope at a point in double-double.
 
-use crate::special::double_double::{Dd, quick_two_sum, two_product, two_sum};
+use crate::special::double_double::{Dd, exp_both, quick_two_sum, sin_cos, two_product, two_sum};
 use num_complex::Complex64;
 
 /// Coefficients of the largest polynomial (degree 6).
@@ -110,4 +110,11 @@ pub(super) fn precise<const D: usize>(p: &Polynomial, t: Complex64) -> (Precise,
         value = value.times_plus(t, Precise::from(p[m]));
     }
     (value, slope)
+}
+
+/// `e^w` as a number and an exponent of two.
+pub(super) fn exponential(w: Precise) -> (Complex64, i64) {
+    let (sin, cos) = sin_cos(w.im);
+    let (up, _, n) = exp_both(w.re);
+    (Complex64::new(up * cos, up * sin), n)
 }

@@ -11,15 +11,15 @@ use super::polynomial::{Polynomial, ZERO, shifted, slope, value};
 use num_complex::Complex64;
 
 /// Where the integrand is `e^-DEPTH` of what it was at the top, nothing more is added.
-pub(super) const DEPTH: f64 = 42.0;
+pub(super) const DEPTH: f64 = 39.0;
 /// Vertices of an arm that are kept.
 pub(super) const VERTICES: usize = 24;
 /// The rule's error follows the exponent a little beyond the piece, where high powers grow most.
-const STRETCH: f64 = 1.2;
-/// The first term of a full step below which a saddle is near.
-const DOORSTEP: f64 = 1.0;
+const STRETCH: f64 = 1.1;
+/// The part of a full step's terms that the first one makes up where a saddle is near.
+const DOORSTEP: f64 = 0.08;
 /// Steps at most, kept or not.
-const STEPS: usize = 250;
+pub(super) const STEPS: usize = 250;
 
 /// One arm: vertices relative to the hub, the first one 0.
 #[derive(Clone, Copy)]
@@ -50,8 +50,8 @@ fn size(z: Complex64) -> f64 {
 #[inline]
 fn sizes<const D: usize>(local: &Polynomial) -> [f64; 7] {
     let mut out = [0.0; 7];
-    for m in 1..=D {
-        out[m] = size(local[m]);
+    for (out, term) in out.iter_mut().zip(local).take(D + 1) {
+        *out = size(*term);
     }
     out
 }
@@ -65,11 +65,17 @@ fn panel(drop: f64) -> f64 {
 /// The positive `rho` with `sum size_m rho^m = target`, within a few per cent.
 #[inline]
 fn reach<const D: usize>(sizes: &[f64; 7], target: f64) -> f64 {
-    // Upper bounds from single terms; Newton's method on the convex sum comes down from there.
-    // (The leading term is 1; degree 4 to 6 has a root below twice the fourth root.)
-    let mut rho = (target / sizes[1]).min((target / sizes[2]).sqrt());
-    rho = rho.min((target / sizes[3]).cbrt().min(2.0 * target.sqrt().sqrt()));
-    for _ in 0..4 {
+    // (target/size)^(1/m) for each term alone, with the bits of a number as its logarithm (in
+    // error by at most 0.09); the least of them is too far by a factor of at most D^(1/D).
+    let mut least = i64::MAX;
+    for (m, size) in sizes.iter().enumerate().take(D + 1).skip(1) {
+        let ratio = target.to_bits() as i64 - size.to_bits() as i64;
+        least = least.min(ratio / m as i64);
+    }
+    let one = 1.0f64.to_bits() as i64;
+    let mut rho = 1.1 * f64::from_bits((least + one) as u64);
+    // Newton's method on the convex sum comes down from there.
+    for _ in 0..5 {
         let (mut sum, mut growth) = (0.0, 0.0);
         for m in (1..=D).rev() {
             growth = growth * rho + sum;
@@ -80,7 +86,7 @@ fn reach<const D: usize>(sizes: &[f64; 7], target: f64) -> f64 {
         sum *= rho;
         let step = (sum - target) / growth;
         rho -= step;
-        if step < 0.1 * rho {
+        if step < 0.04 * rho {
             break;
         }
     }
@@ -121,8 +127,8 @@ fn lowest<const D: usize>(local: &Polynomial, rho: f64) -> Option<Complex64> {
 fn valley<const D: usize>(h: &Polynomial, t: Complex64) -> Option<usize> {
     let mut power = t;
     let mut rise = 0.0;
-    for m in 1..D - 1 {
-        rise += (m as f64) * (h[m] * power).re.max(0.0);
+    for (m, c) in h.iter().enumerate().take(D - 1).skip(1) {
+        rise += (m as f64) * (c * power).re.max(0.0);
         power *= t;
     }
     // power = t^(D-1)
@@ -170,11 +176,11 @@ pub(super) fn arm<const D: usize>(
         arm.count += 1;
     }
     for _ in 0..STEPS {
-        if drop > DEPTH {
-            if let Some(v) = valley::<D>(h, hub.at + s) {
-                arm.valley = v;
-                return Some(());
-            }
+        if drop > DEPTH
+            && let Some(v) = valley::<D>(h, hub.at + s)
+        {
+            arm.valley = v;
+            return Some(());
         }
         let sizes = sizes::<D>(&local);
         if sizes[1] == 0.0 {
@@ -183,7 +189,8 @@ pub(super) fn arm<const D: usize>(
         let mut rho = reach::<D>(&sizes, panel(drop)) / STRETCH;
         let first = downhill(local[1]);
         // On another saddle's doorstep steepest descent would stop there: look round instead.
-        let mut turned = if sizes[1] * rho < DOORSTEP { lowest::<D>(&local, rho) } else { None };
+        let mut turned =
+            if sizes[1] * rho < DOORSTEP * panel(drop) { lowest::<D>(&local, rho) } else { None };
         let mut moved = false;
         for _ in 0..40 {
             let step = match turned.take() {
