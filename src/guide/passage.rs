@@ -377,7 +377,8 @@ impl Passage {
     }
 
     /// The boundary-layer form at a point, for a quick look: one pair of Airy functions. Good within a few
-    /// [`layer_range`](Self::layer_range) of cut-off, to some `eps^(1/3)`.
+    /// [`layer_range`](Self::layer_range) of cut-off, to some `n eps^(1/3)` for mode `n`: 5 dB off for mode 3 at
+    /// `eps = 0.09`, 1 % at `eps = 1e-7`.
     ///
     /// Errors: [`Error::Domain`] for a place off the profile; [`Error::NoDigits`] hopelessly far from
     /// cut-off.
