@@ -9,7 +9,7 @@ use crate::{Complex64, Error, Estimate, Scaled};
 
 impl Passage {
     /// How well the formula holds at a range: twice the mismatch of the two conditions at the boundary
-    /// ([`SlopingGuide::mismatch`]), plus the phase that the fit of the profile leaves.
+    /// ([`SlopingGuide::mismatch`](super::SlopingGuide::mismatch)), plus the phase that the fit of the profile leaves.
     ///
     /// Relative to the field at the boundary, as an amplitude; the constant phase of about `eps/2` at the
     /// start is not in it. [`station`](Self::station) makes an error figure of it.
