@@ -2,6 +2,7 @@
 
 use crate::Scaled;
 use num_complex::Complex64;
+use std::ops::{Add, Neg, Sub};
 
 /// How a value was obtained.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -21,6 +22,27 @@ pub enum Form {
         /// Evaluations of the integrand.
         evaluations: usize,
     },
+    /// A sum of values of which some come from expansions and some from quadrature.
+    Mixed,
+}
+
+impl Form {
+    /// Of a sum.
+    fn and(self, other: Form) -> Form {
+        match (self, other) {
+            (
+                Form::Saddles { clusters: a, largest: m },
+                Form::Saddles { clusters: b, largest: n },
+            ) => Form::Saddles { clusters: a + b, largest: m.max(n) },
+            (saddles @ Form::Saddles { .. }, Form::EndPoints)
+            | (Form::EndPoints, saddles @ Form::Saddles { .. }) => saddles,
+            (Form::EndPoints, Form::EndPoints) => Form::EndPoints,
+            (Form::Quadrature { evaluations: a }, Form::Quadrature { evaluations: b }) => {
+                Form::Quadrature { evaluations: a + b }
+            }
+            _ => Form::Mixed,
+        }
+    }
 }
 
 /// A value with its error figure.
@@ -61,5 +83,58 @@ impl Estimate {
             orders,
             form,
         }
+    }
+
+    /// The error with its exponent apart.
+    fn scaled_error(&self) -> Scaled {
+        if self.scaled.is_zero() {
+            return Scaled::from(Complex64::new(self.error, 0.0));
+        }
+        let size = self.scaled.mantissa.norm() * self.relative_error;
+        Scaled::new(Complex64::new(size, 0.0), self.scaled.exponent)
+    }
+}
+
+/// An integral over a contour of several pieces is the sum of the integrals over the pieces: the
+/// values are added, and so are the error figures.
+///
+/// ```
+/// use merging_saddles::{Complex64 as C, Contour, Integral};
+/// use std::f64::consts::PI;
+/// // Bi(0) = 3^(-1/6)/Gamma(2/3) = 0.61492662744600073515 (DLMF 9.2.5) from Airy's integral over
+/// // two pieces, Bi(z) = (1/2 pi) (from inf e^(-i pi/3) to -inf, plus from inf e^(i pi/3) to -inf) of
+/// // exp(t^3/3 - z t) dt (DLMF 9.5.5).
+/// let piece = |angle: f64| {
+///     let points = [C::from_polar(2.0, angle), C::new(0.0, 0.0), C::new(-2.0, 0.0)];
+///     Integral::new(|t: C| (t * t * t * C::new(0.0, -1.0 / 3.0), t * t * C::new(0.0, -1.0)),
+///         Contour::through(points)).quadrature(1.0, 1e-13)
+/// };
+/// let bi = piece(-PI / 3.0)? + piece(PI / 3.0)?;
+/// assert!((bi.value / (2.0 * PI) + 0.614926627446000735).norm() < 1e-14);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+impl Add for Estimate {
+    type Output = Estimate;
+    fn add(self, other: Estimate) -> Estimate {
+        Estimate::new(
+            self.scaled + other.scaled,
+            self.scaled_error() + other.scaled_error(),
+            self.orders.max(other.orders),
+            self.form.and(other.form),
+        )
+    }
+}
+
+impl Neg for Estimate {
+    type Output = Estimate;
+    fn neg(self) -> Estimate {
+        Estimate { value: -self.value, scaled: -self.scaled, ..self }
+    }
+}
+
+impl Sub for Estimate {
+    type Output = Estimate;
+    fn sub(self, other: Estimate) -> Estimate {
+        self + -other
     }
 }

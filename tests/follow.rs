@@ -16,7 +16,7 @@ fn a_turn_round_the_coalescence_exchanges_two_saddles() {
         move |z: Complex64| ((z.sinh() - z) - z * a, z.cosh() - 1.0 - a)
     };
     let region = Region { low: c(-2.0, -2.1), high: c(2.2, 2.0) };
-    let start = locate(&family(0.0), region, 0).expect("saddles");
+    let start = locate(&family(0.0), region).expect("saddles");
     assert_eq!(start.len(), 2);
     let turns: Vec<f64> = (0..=40).map(|n| f64::from(n) / 20.0).collect();
     let paths = follow(family, &turns, &start).expect("followed");
@@ -39,7 +39,7 @@ fn a_close_encounter_does_not_swap_labels() {
         move |z: Complex64| (z * z * z / 3.0 - z * (x * x + d * d), z * z - (x * x + d * d))
     };
     let region = Region { low: c(-3.0, -1.0), high: c(3.1, 1.1) };
-    let start = locate(&family(-2.0), region, 0).expect("saddles");
+    let start = locate(&family(-2.0), region).expect("saddles");
     let paths = follow(family, &[-2.0, -0.5, 0.5, 2.0], &start).expect("followed");
     for (before, after) in start.iter().zip(&paths[3]) {
         // sqrt(x^2 + d^2) never vanishes: each returns to where it came from.

@@ -1,6 +1,6 @@
 //! The two-layer sea: figures of the trade, refusals, losses, and the two formulas side by side.
 
-use merging_saddles::guide::{AcousticGuide, ModeCutOff, Order, TwoLayer, level_db};
+use merging_saddles::guide::{AcousticGuide, ModeCutOff, Order, Profile, TwoLayer, level_db};
 use merging_saddles::{Complex64 as C, Error};
 use std::f64::consts::{PI, TAU};
 
@@ -11,6 +11,7 @@ const SEA: TwoLayer = TwoLayer {
     bottom_speed_m_per_s: 1650.0,
     water_density_kg_per_m3: 1000.0,
     bottom_density_kg_per_m3: 1800.0,
+    water_attenuation_db_per_wavelength: 0.0,
     bottom_attenuation_db_per_wavelength: 0.0,
 };
 
@@ -54,15 +55,18 @@ fn modes_are_counted_and_cut_off_in_turn() {
         assert_eq!(guide.mode_count(depth * (1.0 + 1e-9)).unwrap(), mode);
     }
     // A curved profile, first place only.
-    let profile = |s: f64| 60.0 - 40.0 * (s / 1000.0).sin();
-    let place = guide.cutoff_range_m(2, profile, 0.0, 3000.0).unwrap();
+    let profile = Profile::from_fn(0.0, 3000.0, |s| {
+        (60.0 - 40.0 * (s / 1000.0).sin(), -0.04 * (s / 1000.0).cos())
+    })
+    .unwrap();
+    let place = guide.cutoff_place(2, &profile).unwrap();
     let range = 1000.0 * ((60.0 - guide.cutoff_depth_m(2).unwrap()) / 40.0).asin();
     assert!((place.range_m - range).abs() < 1e-6);
     assert!((place.slope_rad.tan() - 0.04 * (range / 1000.0).cos()).abs() < 1e-6);
-    let never = guide.cutoff_range_m(1, profile, 0.0, 3000.0).unwrap_err().to_string();
-    assert!(never.contains("stays trapped up to range 3000 m"), "{never}");
-    let before = guide.cutoff_range_m(4, profile, 0.0, 3000.0).unwrap_err().to_string();
-    assert!(before.contains("cut off already at range 0 m"), "{before}");
+    let never = guide.cutoff_place(1, &profile).unwrap_err().to_string();
+    assert!(never.contains("stays wider") && never.contains("3000"), "{never}");
+    let before = guide.cutoff_place(4, &profile).unwrap_err().to_string();
+    assert!(before.contains("at range 0 already"), "{before}");
 }
 
 #[test]

@@ -5,45 +5,20 @@
 //! phase at the start (about `eps/2`). Errors are relative L2 norms over the inside and over the
 //! outside up to ten layer lengths, at `t = (h_c - h)/(m^2 eps)^(1/3)`.
 
+#[path = "support/compare.rs"]
+mod compare;
 #[path = "support/tapered.rs"]
+#[allow(dead_code)] // shared by several tests
 mod tapered;
 
+use compare::{error, pairs, turn};
 use merging_saddles::Complex64 as C;
 use merging_saddles::guide::{AcousticGuide, Order, SlopingGuide, TwoLayer};
 use std::f64::consts::PI;
-use tapered::{Snapshot, Taper};
+use tapered::Taper;
 
 /// Times of the layer at which the fields are compared; the phase is taken at the middle one.
 const TIMES: [f64; 5] = [-2.0, -1.0, 0.0, 1.0, 2.0];
-
-/// Indices of some 30 nodes inside and 60 outside, both with the boundary.
-fn nodes(s: &Snapshot, reach: f64) -> [Vec<usize>; 2] {
-    let spacing = s.x[s.inside + 1] - s.x[s.inside];
-    let last = s.inside + (reach / spacing) as usize;
-    assert!(last < s.end, "the comparison stays before the absorbing layer");
-    let inside = (0..=s.inside).step_by(s.inside / 30).collect();
-    [inside, (s.inside..=last).step_by(((last - s.inside) / 60).max(1)).collect()]
-}
-
-/// The formula and the solution at those nodes.
-fn pairs(s: &Snapshot, reach: f64, field: impl Fn(f64, f64, bool) -> C) -> [Vec<(C, C)>; 2] {
-    let [inside, outside] = nodes(s, reach);
-    [(inside, true), (outside, false)].map(|(which, within)| {
-        which.iter().map(|&i| (field(s.h, s.x[i], within), s.psi[i])).collect()
-    })
-}
-
-/// `e^(i phi)` that turns the formula into the solution best.
-fn phase(sides: &[Vec<(C, C)>; 2]) -> C {
-    let overlap: C = sides.iter().flatten().map(|(a, b)| a.conj() * b).sum();
-    overlap / overlap.norm()
-}
-
-/// Relative L2 error with the phase taken out.
-fn error(side: &[(C, C)], turn: C) -> f64 {
-    let difference: f64 = side.iter().map(|(a, b)| (a * turn - b).norm_sqr()).sum();
-    (difference / side.iter().map(|(_, b)| b.norm_sqr()).sum::<f64>()).sqrt()
-}
 
 /// Errors inside and outside at every time, and the phase (with the known phase of the mode at
 /// the start taken off), for the leading and the next order.
@@ -51,8 +26,9 @@ fn errors(mode: u32, m: f64, eps: f64) -> [([[f64; 2]; 5], f64); 2] {
     let cut = (f64::from(mode) - 0.5) * PI;
     let widths = TIMES.map(|t| cut - t * (m * m * eps).cbrt());
     let length = (m / eps).cbrt();
-    let taper = Taper { mode, m, eps, start: cut + 2.0 };
-    let shots = taper.run(&widths, 25.0 * length, 1.0);
+    let start = cut + 2.0;
+    let taper = Taper::straight(mode, m, eps, start);
+    let shots = taper.run(&widths.map(|h| -h), 25.0 * length, 1.0);
     [Order::Leading, Order::Next].map(|order| {
         let guide = SlopingGuide::new(mode, m, eps).unwrap().order(order);
         let field = |h: f64, x: f64, within: bool| {
@@ -61,8 +37,8 @@ fn errors(mode: u32, m: f64, eps: f64) -> [([[f64; 2]; 5], f64); 2] {
             field.unwrap().quadrature(1e-8).unwrap().value
         };
         let sides: Vec<_> = shots.iter().map(|s| pairs(s, 10.0 * length, field)).collect();
-        let turn = phase(&sides[2]);
-        let known = guide.adiabatic(taper.start).unwrap().exponent.exp();
+        let turn = turn(&sides[2]);
+        let known = guide.adiabatic(start).unwrap().exponent.exp();
         // The formula counts its sign from the boundary, the solution from the surface.
         let sign = if mode.is_multiple_of(2) { -1.0 } else { 1.0 };
         let mut table = [[0.0; 2]; 5];
@@ -78,11 +54,11 @@ fn errors(mode: u32, m: f64, eps: f64) -> [([[f64; 2]; 5], f64); 2] {
 fn the_solution_itself_has_converged() {
     // Half the step and half the mesh: fourth order after extrapolation.
     let (eps, m) = (0.01f64, 1.0);
-    let taper = Taper { mode: 1, m, eps, start: 0.5 * PI + 2.0 };
+    let taper = Taper::straight(1, m, eps, 0.5 * PI + 2.0);
     let widths = TIMES.map(|t| 0.5 * PI - t * eps.cbrt());
     let length = eps.cbrt().recip();
-    let coarse = taper.run(&widths, 25.0 * length, 1.0);
-    let fine = taper.run(&widths, 25.0 * length, 2.0);
+    let coarse = taper.run(&widths.map(|h| -h), 25.0 * length, 1.0);
+    let fine = taper.run(&widths.map(|h| -h), 25.0 * length, 2.0);
     for (a, b) in coarse.iter().zip(&fine) {
         let both: Vec<_> = (0..a.end).map(|i| (a.psi[i], b.psi[2 * i])).collect();
         for side in [&both[..a.inside], &both[a.inside..]] {
@@ -159,6 +135,7 @@ fn a_sea_in_physical_units() {
         bottom_speed_m_per_s: 1680.0,
         water_density_kg_per_m3: 1000.0,
         bottom_density_kg_per_m3: 1850.0,
+        water_attenuation_db_per_wavelength: 0.0,
         bottom_attenuation_db_per_wavelength: 0.0,
     };
     let guide = AcousticGuide::new(sea).unwrap();
@@ -170,8 +147,8 @@ fn a_sea_in_physical_units() {
     assert!((cut_off.eps() / eps - 1.0).abs() < 1e-12);
     let widths = TIMES.map(|t| 0.5 * PI - t * (m * m * eps).cbrt());
     let length = (m / eps).cbrt();
-    let taper = Taper { mode: 1, m, eps, start };
-    let shots = taper.run(&widths, 25.0 * length, 1.0);
+    let taper = Taper::straight(1, m, eps, start);
+    let shots = taper.run(&widths.map(|h| -h), 25.0 * length, 1.0);
     let antinode = taper.antinode();
     for shot in &shots {
         let range_m = (cut_off.cutoff_depth_m() - shot.h / q) / gradient;

@@ -75,7 +75,10 @@ impl Tally {
             self.faults.push(format!("k {k} {label}: error {error:.1e}, figure {figure:.1e}"));
         }
         if std::env::var("SHOW").is_ok_and(|x| figure > x.parse().unwrap()) {
-            println!("  k {k} {label}: error {error:.1e}, figure {figure:.1e} {:?} orders {}", got.form, got.orders);
+            println!(
+                "  k {k} {label}: error {error:.1e}, figure {figure:.1e} {:?} orders {}",
+                got.form, got.orders
+            );
         }
         self.measured.push((k, error, figure));
     }
@@ -208,7 +211,10 @@ fn hermite_functions_near_their_turning_point() {
         let label = format!("zeta {zeta}");
         tally.enter(&integral, row.k, -I, (row.value, row.scale), &label);
     }
-    tally.check("Hermite", |k| if k < 50.0 { 1e-9 } else { f64::max(1e-12, 4.0 * k * f64::EPSILON) });
+    tally.check(
+        "Hermite",
+        |k| if k < 50.0 { 1e-9 } else { f64::max(1e-12, 4.0 * k * f64::EPSILON) },
+    );
 }
 
 #[test]
@@ -291,7 +297,9 @@ fn half_plane_diffraction_through_the_shadow_boundary() {
         let factor = C::from_polar(0.25 / PI.sqrt(), FRAC_PI_4);
         tally.enter(&integral, row.k, factor, (row.value, row.scale), &format!("p {p}"));
     }
-    tally.check("half-plane", |k| if k < 50.0 { 1e-9 } else { f64::max(1e-12, 4.0 * k * f64::EPSILON) });
+    tally.check("half-plane", |k| {
+        if k < 50.0 { 1e-9 } else { f64::max(1e-12, 4.0 * k * f64::EPSILON) }
+    });
 }
 
 #[test]
@@ -339,7 +347,10 @@ fn cusp_with_six_orders_at_k_5() {
         let (x2, x1) = (row.p.re, row.q.re);
         let got = cusp(x2, x1).plan().and_then(|plan| plan.at_orders(5.0, 6)).expect("a value");
         let error = (got.value - row.value).norm() / row.scale;
-        println!("cusp ({x2}, {x1}): {error:.1e}, figure {:.1e} {:?}", got.relative_error, got.form);
+        println!(
+            "cusp ({x2}, {x1}): {error:.1e}, figure {:.1e} {:?}",
+            got.relative_error, got.form
+        );
         if !(error <= 1e-11 && error <= got.relative_error) {
             faults.push(format!("({x2}, {x1}): {error:.1e}, figure {:.1e}", got.relative_error));
         }
@@ -370,7 +381,8 @@ fn from_three_merged_saddles_to_three_isolated_ones() {
         for n in 0..=300 {
             let s = (f64::from(n) / 300.0).powi(3);
             let integral = cusp(-8.0 * s, 1.5 * s);
-            let got = integral.plan().and_then(|plan| plan.at(k)).unwrap_or_else(|e| panic!("{n}: {e}"));
+            let got =
+                integral.plan().and_then(|plan| plan.at(k)).unwrap_or_else(|e| panic!("{n}: {e}"));
             let exact = integral.quadrature(k, 1e-14).expect("the yardstick");
             let error = (got.value - exact.value).norm();
             let bound = got.error + exact.error;
@@ -488,8 +500,10 @@ fn canonical_integrals_from_their_own_integrals() {
             let reach = 2.0 * size / k.powf(1.0 / degree as f64);
             let end = C::from_polar(reach, FRAC_PI_2 / degree as f64);
             let start = if unfolding % 2 == 0 { -end } else { -end.conj() };
-            let integral =
-                Integral::new(Polynomial(coefficients), Contour::through([start, c(0.0, 0.0), end]));
+            let integral = Integral::new(
+                Polynomial(coefficients),
+                Contour::through([start, c(0.0, 0.0), end]),
+            );
             let factor = c(k.powf(1.0 / degree as f64), 0.0);
             tally.enter(&integral, k, factor, (psi, psi.norm().max(0.1)), &format!("{x:?}"));
         }

@@ -7,15 +7,21 @@
 //! Reads a depth profile, finds where each mode of the two-layer sea (water over a faster fluid
 //! bottom) reaches its cut-off, and follows one of them: the level in the water and in the bottom,
 //! each with its error figure and with the value of the yardstick quadrature beside it, and a
-//! picture. Without arguments it works on the invented track `examples/data/quillfin_shelf.csv`.
+//! picture. The bed need not be plane: the track is fitted round the cut-off. Without arguments it works on the invented track `examples/data/quillfin_shelf.csv`.
 //!
-//! Levels are those of one mode in two dimensions over a bed of constant slope; there is no
+//! Levels are those of one mode in two dimensions over a smooth bed; there is no
 //! spreading, no roughness and no shear in the bottom. They are no basis for a decision about
 //! exposure or safety at sea: local rules and licensed practice come first.
 
 #[path = "../support/arguments.rs"]
 mod arguments;
+#[path = "../support/cells.rs"]
+mod cells;
+#[path = "../support/colours.rs"]
 mod colours;
+#[path = "../support/output.rs"]
+mod output;
+#[path = "../support/picture.rs"]
 mod picture;
 mod profile;
 mod report;
@@ -51,6 +57,9 @@ pub struct Arguments {
     /// Density of the bottom in kg/m^3
     #[arg(long, value_name = "KG_PER_M3", default_value_t = 1800.0)]
     bottom_density: f64,
+    /// Attenuation of the water in dB per wavelength
+    #[arg(long, value_name = "DB", default_value_t = 0.0)]
+    water_attenuation: f64,
     /// Attenuation of the bottom in dB per wavelength
     #[arg(long, value_name = "DB", default_value_t = 0.0)]
     attenuation: f64,

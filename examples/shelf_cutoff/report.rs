@@ -1,13 +1,13 @@
 //! The whole job: tables on the standard output, the picture into its file.
 
+use crate::cells::{centres, levels};
+use crate::output::{prepare, write_whole};
 use crate::picture::Picture;
 use crate::scene::{BEFORE, Followed, Level, Scene};
 use crate::table::Fault;
 use crate::{Arguments, OWN_TRACK};
-use indicatif::{ProgressBar, ProgressStyle};
 use merging_saddles::Error;
 use std::path::Path;
-use std::sync::Mutex;
 
 /// The quietest level of the picture, in dB.
 const FLOOR_DB: f64 = -40.0;
@@ -16,8 +16,8 @@ const FLOOR_DB: f64 = -40.0;
 const NONE: &str = "-";
 
 const CAUTION: &str = "\
-Caution: one mode, two dimensions, two fluid layers, a bed of constant slope; no spreading,
-roughness or shear. These levels alone are no basis for decisions on the exposure of divers,
+Caution: one mode, two dimensions, two fluid layers, a smooth bed; no spreading, roughness or
+shear. These levels alone are no basis for decisions on the exposure of divers,
 swimmers or animals: local rules and licensed practice decide.";
 
 pub fn run(arguments: &Arguments) -> Result<(), Fault> {
@@ -25,9 +25,9 @@ pub fn run(arguments: &Arguments) -> Result<(), Fault> {
     let followed = scene.followed(arguments.mode)?;
     prepare(&arguments.output)?;
     print_modes(arguments, &scene);
-    print_followed(&scene, &followed);
+    print_followed(&followed);
     print_levels(arguments, &followed);
-    let (picture, refused) = picture(arguments, &scene, &followed);
+    let (picture, refused) = picture(arguments, &followed);
     let svg = picture.svg().map_err(|error| Fault(format!("the picture: {error}")))?;
     write_whole(&arguments.output, &svg)?;
     println!("\npicture: {}", arguments.output.display());
@@ -39,12 +39,15 @@ pub fn run(arguments: &Arguments) -> Result<(), Fault> {
 }
 
 fn print_modes(arguments: &Arguments, scene: &Scene) {
-    let [from, to] = scene.profile.ranges_m();
-    let [deep, shallow] = scene.profile.depths_m();
+    let [from, to] = scene.profile.ranges();
+    let [deep, shallow] = [scene.profile.width(from), scene.profile.width(to)];
     let track = arguments.profile.as_deref().unwrap_or(Path::new(OWN_TRACK));
     println!("track {}", track.display());
     println!("  {from} to {to} m, depth {deep} to {shallow} m");
-    println!("water {} m/s, {} kg/m^3", arguments.water_speed, arguments.water_density);
+    println!(
+        "water {} m/s, {} kg/m^3, {} dB per wavelength",
+        arguments.water_speed, arguments.water_density, arguments.water_attenuation
+    );
     println!(
         "bottom {} m/s, {} kg/m^3, {} dB per wavelength",
         arguments.bottom_speed, arguments.bottom_density, arguments.attenuation
@@ -76,26 +79,33 @@ fn print_modes(arguments: &Arguments, scene: &Scene) {
     }
 }
 
-fn print_followed(scene: &Scene, followed: &Followed) {
+fn print_followed(followed: &Followed) {
     let Followed { mode, place, run, beam_start_m, .. } = followed;
     println!("\nMode {mode} through its cut-off at {:.1} m", place.range_m);
     println!(
-        "The bed is taken as plane, with the slope at cut-off (1 in {:.1}); within the picture the\n\
-         profile departs from that plane by up to {:.2} m.",
-        1.0 / place.slope_rad.tan(),
-        scene.departure_m(followed)
+        "The bed falls 1 in {:.1} there on the smoothed track; the smoothing moves it by up to {:.3} of\n\
+         the transition length.",
+        1.0 / run.passage().slope(),
+        run.passage().fit_departure()
     );
+    println!("The beam's axis leaves the bed at {beam_start_m:.0} m.");
+    match run.passage().beam() {
+        Ok(beam) => println!(
+            "Beam: axis {:.2} degrees from the surface, half its power between {:.2} and {:.2} degrees.",
+            beam.axis_rad.to_degrees(),
+            beam.half_power_rad[0].to_degrees(),
+            beam.half_power_rad[1].to_degrees()
+        ),
+        Err(error) => println!("Beam: {error}"),
+    }
     println!(
-        "The beam's axis leaves the bed {beam_start_m:.0} m after cut-off, where the water resonates \
-         at its angle.\n\
-         0 dB is the incoming mode's largest pressure in the water {:.0} m before cut-off.",
+        "0 dB is the incoming mode's largest pressure in the water {:.0} m before cut-off.",
         BEFORE * run.layer_range_m()
     );
     println!(
         "Levels are those of the uniform field: an integral, evaluated by expansions at its saddles\n\
-         and by the yardstick quadrature, each with its error figure. The formula itself, an expansion\n\
-         in eps, departs from the wave equation by one to four per cent (0.1 to 0.4 dB) at eps = 0.1\n\
-         and by less below."
+         and by the yardstick quadrature, each with its error figure. How far the formula itself, an\n\
+         expansion in eps, is from the wave equation at the bed stands in the last column."
     );
 }
 
@@ -103,7 +113,7 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
     let Followed { mode, place, run, window_m: [from, to], beam_start_m, .. } = followed;
     println!(
         "\n                              at the saddles            yardstick\n\
-         range (m)  depth (m)  where    level (dB)   figure  level (dB)   figure   apart (dB)"
+         range (m)  depth (m)  where    level (dB)   figure  level (dB)   figure   apart (dB)  formula"
     );
     let mut refusals = Vec::new();
     let mut points = 0;
@@ -111,12 +121,12 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
         let yardstick = followed.level(range_m, depth_m);
         let saddles = followed.level_at_saddles(range_m, depth_m);
         println!(
-            "{:9.1} {depth_m:10.2}  {:6} {} {} {:>12}",
-            place.range_m + range_m,
+            "{range_m:9.1} {depth_m:10.2}  {:6} {} {} {:>12} {:>8}",
             if depth_m < run.depth_m(range_m) { "water" } else { "bottom" },
             columns(&saddles),
             columns(&yardstick),
-            saddles.as_ref().map_or(NONE.into(), |u| format!("{:.0e}", u.apart_db))
+            saddles.as_ref().map_or(NONE.into(), |u| format!("{:.0e}", u.apart_db)),
+            followed.formula_db(range_m).map_or(NONE.into(), |db| format!("{db:.2}dB"))
         );
         points += 1;
         refusals.extend(saddles.err());
@@ -124,14 +134,15 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
     };
     // The fraction of the depth where the mode's first antinode lies at cut-off.
     let antinode = 1.0 / (2.0 * f64::from(*mode) - 1.0);
-    let before = (0..5).map(|j| from * (1.0 - f64::from(j) / 5.0));
-    for range_m in before.chain((0..=7).map(|j| to * f64::from(j) / 7.0)) {
+    let cut = place.range_m;
+    let before = (0..5).map(|j| from + (cut - from) * f64::from(j) / 5.0);
+    for range_m in before.chain((0..=7).map(|j| cut + (to - cut) * f64::from(j) / 7.0)) {
         row(range_m, antinode * run.depth_m(range_m));
     }
     // Above the beam's axis, on it and below it.
     for j in 1..=3 {
         let range_m = beam_start_m + (to - beam_start_m) * f64::from(j) / 3.0;
-        let height = followed.beam_height_m(range_m);
+        let height = followed.beam_depth_m(range_m) - run.depth_m(range_m);
         for share in [0.5, 1.0, 1.5] {
             // There is no beam yet where the track ends early.
             if height > 0.0 {
@@ -140,7 +151,7 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
         }
     }
     for &(range_m, depth_m) in &arguments.point {
-        row(range_m - place.range_m, depth_m);
+        row(range_m, depth_m);
     }
     if let Some(error) = refusals.first() {
         println!("- at {} of {points} points: {error}", refusals.len());
@@ -155,22 +166,20 @@ fn columns(level: &Result<Level, Error>) -> String {
 }
 
 /// The picture, and how many cells have no value.
-fn picture(arguments: &Arguments, scene: &Scene, followed: &Followed) -> (Picture, usize) {
+fn picture(arguments: &Arguments, followed: &Followed) -> (Picture, usize) {
     let Followed { mode, place, run, window_m: [from, to], beam_start_m, .. } = followed;
     let bed = |s: f64| run.depth_m(s);
-    let bottom = (bed(*to) + 1.4 * followed.beam_height_m(*to)).max(2.0 * bed(*from));
-    let centres = |from: f64, to: f64, count: u16| -> Vec<f64> {
-        let step = (to - from) / f64::from(count);
-        (0..count).map(|j| from + step * (f64::from(j) + 0.5)).collect()
-    };
+    let bottom = (1.4 * followed.beam_depth_m(*to)).max(2.0 * bed(*from));
     let ranges = centres(*from, *to, arguments.columns);
     let depths = centres(0.0, bottom, arguments.rows);
-    let level_db = levels(followed, &ranges, &depths);
+    let level_db = levels(&ranges, &depths, |range_m, depth_m| {
+        followed.level(range_m, depth_m).map_or(f64::NAN, |level| level.db)
+    });
     let refused = level_db.iter().filter(|level| level.is_nan()).count();
     let line = |first: f64, depth: &dyn Fn(f64) -> f64| -> Vec<(f64, f64)> {
         (0..=100)
             .map(|j| first + (to - first) * f64::from(j) / 100.0)
-            .map(|s| (place.range_m + s, depth(s)))
+            .map(|s| (s, depth(s)))
             .collect()
     };
     let picture = Picture {
@@ -186,73 +195,18 @@ fn picture(arguments: &Arguments, scene: &Scene, followed: &Followed) -> (Pictur
             arguments.attenuation,
             1.0 / place.slope_rad.tan()
         ),
-        bed: line(*from, &|s| scene.profile.depth_at(place.range_m + s)),
-        model_bed: line(*from, &bed),
-        beam: line(*beam_start_m, &|s| bed(s) + followed.beam_height_m(s)),
+        axes: ["range along the track (m)", "depth below the surface (m)"],
+        bed: line(*from, &bed),
+        bed_name: "sea bed",
+        model_bed: run.passage().fitted_profile(),
+        beam: line(*beam_start_m, &|s| followed.beam_depth_m(s)),
         cutoff: (place.range_m, run.cutoff_depth_m()),
-        range_m: ranges.iter().map(|s| place.range_m + s).collect(),
-        depth_m: depths,
+        cutoff_name: format!("cut-off, {:.0} m", place.range_m),
+        downwards: true,
+        range: ranges,
+        across: depths,
         level_db,
         floor_db: FLOOR_DB,
     };
     (picture, refused)
-}
-
-/// Levels of all cells, column by column, on all processors; NaN where there is no value.
-fn levels(followed: &Followed, ranges: &[f64], depths: &[f64]) -> Vec<f64> {
-    let bar = ProgressBar::new(ranges.len() as u64).with_message("picture");
-    if let Ok(style) =
-        ProgressStyle::with_template("{msg} [{bar:40}] {pos}/{len} columns, {eta} left")
-    {
-        bar.set_style(style);
-    }
-    let cell = |range_m: f64, depth_m: f64| {
-        followed.level(range_m, depth_m).map_or(f64::NAN, |level| level.db)
-    };
-    let mut levels = vec![f64::NAN; ranges.len() * depths.len()];
-    let columns = Mutex::new(levels.chunks_mut(depths.len()).zip(ranges));
-    let work = || {
-        // A poisoned lock means that another worker panicked; the scope hands its panic on.
-        while let Some((column, &range_m)) = columns.lock().ok().and_then(|mut left| left.next()) {
-            for (level, &depth_m) in column.iter_mut().zip(depths) {
-                *level = cell(range_m, depth_m);
-            }
-            bar.inc(1);
-        }
-    };
-    std::thread::scope(|scope| {
-        for _ in 0..std::thread::available_parallelism().map_or(1, usize::from) {
-            scope.spawn(work);
-        }
-    });
-    bar.finish_and_clear();
-    levels
-}
-
-/// Checks that the picture can be written before any work is done.
-fn prepare(path: &Path) -> Result<(), Fault> {
-    let refuse = |reason: String| {
-        Fault(format!("{}: {reason}: give --output a path that can be written", path.display()))
-    };
-    if path.is_dir() || path.file_name().is_none() {
-        return Err(refuse("not the name of a file".into()));
-    }
-    match path.parent() {
-        Some(directory) if !directory.as_os_str().is_empty() => {
-            std::fs::create_dir_all(directory).map_err(|error| refuse(error.to_string()))
-        }
-        _ => Ok(()),
-    }
-}
-
-/// Writes under another name first, so that no half picture is ever found under this one.
-fn write_whole(path: &Path, text: &str) -> Result<(), Fault> {
-    let mut name = path.file_name().unwrap_or_default().to_os_string();
-    name.push(".part");
-    let part = path.with_file_name(name);
-    std::fs::write(&part, text).and_then(|()| std::fs::rename(&part, path)).map_err(|error| {
-        // The unfinished file may not even exist.
-        let _ = std::fs::remove_file(&part);
-        Fault(format!("{}: {error}: give --output a path that can be written", path.display()))
-    })
 }

@@ -1,12 +1,10 @@
 //! The sea, the track and the modes that reach their cut-off on it.
 
-use crate::profile::Profile;
+use crate::profile;
 use crate::table::Fault;
 use crate::{Arguments, OWN_TRACK};
-use merging_saddles::guide::{
-    AcousticGuide, CutOffPlace, ModeCutOff, SlopingGuide, TwoLayer, level_db,
-};
-use merging_saddles::{Complex64, Error};
+use merging_saddles::Error;
+use merging_saddles::guide::{AcousticGuide, CutOffPlace, ModeCutOff, Profile, TwoLayer, level_db};
 use std::f64::consts::LN_10;
 use std::path::Path;
 
@@ -19,7 +17,6 @@ const MOST_MODES: u32 = 1000;
 
 /// A track in a two-layer sea.
 pub struct Scene {
-    guide: AcousticGuide,
     pub profile: Profile,
     /// Modes cut off on the track, the highest (the first to go) first; a mode at whose cut-off the
     /// bed is flat or too steep comes with the reason.
@@ -36,14 +33,16 @@ impl Scene {
             bottom_speed_m_per_s: arguments.bottom_speed,
             water_density_kg_per_m3: arguments.water_density,
             bottom_density_kg_per_m3: arguments.bottom_density,
+            water_attenuation_db_per_wavelength: arguments.water_attenuation,
             bottom_attenuation_db_per_wavelength: arguments.attenuation,
         })
         .map_err(|error| Fault(error.to_string()))?;
         let profile = match &arguments.profile {
-            Some(path) => Profile::read(path)?,
-            None => Profile::read(&Path::new(env!("CARGO_MANIFEST_DIR")).join(OWN_TRACK))?,
+            Some(path) => profile::read(path)?,
+            None => profile::read(&Path::new(env!("CARGO_MANIFEST_DIR")).join(OWN_TRACK))?,
         };
-        let [deep, shallow] = profile.depths_m();
+        let [from, to] = profile.ranges();
+        let [deep, shallow] = [profile.width(from), profile.width(to)];
         let fault = |error: Error| Fault(error.to_string());
         let trapped_at_start = guide.mode_count(deep).map_err(fault)?;
         let trapped_at_end = guide.mode_count(shallow).map_err(fault)?;
@@ -57,16 +56,15 @@ impl Scene {
                  part off the profile"
             )));
         }
-        let [from, to] = profile.ranges_m();
         let modes = (trapped_at_end + 1..=trapped_at_start)
             .rev()
             .map(|mode| {
-                let place = guide.cutoff_range_m(mode, |s| profile.depth_at(s), from, to)?;
-                Ok((mode, place, run(&guide, mode, place)))
+                let place = guide.cutoff_place(mode, &profile)?;
+                Ok((mode, place, run(&guide, mode, &profile, place)))
             })
             .collect::<Result<_, _>>()
             .map_err(fault)?;
-        Ok(Scene { guide, profile, modes, trapped_at_end })
+        Ok(Scene { profile, modes, trapped_at_end })
     }
 
     /// The mode to follow: the one asked for, or the lowest that is cut off.
@@ -82,55 +80,32 @@ impl Scene {
         let run = run.as_ref().map_err(|error| {
             Fault(format!("mode {mode}, cut off at {:.1} m: {error}", place.range_m))
         })?;
-        let (water, bottom) = (self.guide.water_wavenumber(), self.guide.bottom_wavenumber());
-        let q = (water * water - bottom * bottom).sqrt();
-        let eps = bottom * 2.0 * place.slope_rad.tan() / q;
-        let scaled = SlopingGuide::new(mode, self.guide.density_ratio(), eps)
-            .map_err(|error| Fault(error.to_string()))?;
+        // At a strong contrast there may be no beam below a right angle: the leading order then.
+        let axis_rad = match run.passage().beam() {
+            Ok(beam) => beam.axis_rad,
+            Err(_) => run.take_off_angle_small_rad().min(1.5),
+        };
+        let (beam_start_m, _) = run.passage().ray_start(axis_rad);
         Ok(Followed {
-            scaled,
-            q,
             mode,
             place: *place,
-            run: *run,
-            window_m: self.window_m(*place, run),
-            beam_start_m: self.beam_start_m(*place, run),
+            run: run.clone(),
+            window_m: self.window_m(*place, run, beam_start_m),
+            beam_start_m,
+            axis_rad,
         })
     }
 
     /// The ranges of the picture: on the track and before the shore.
-    fn window_m(&self, place: CutOffPlace, run: &ModeCutOff) -> [f64; 2] {
-        let [from, to] = self.profile.ranges_m().map(|range| range - place.range_m);
-        let shore = run.cutoff_depth_m() / place.slope_rad.tan();
+    fn window_m(&self, place: CutOffPlace, run: &ModeCutOff, beam_start_m: f64) -> [f64; 2] {
+        let [from, to] = self.profile.ranges();
         let length = run.layer_range_m();
-        let after = (BEFORE * length + self.beam_start_m(place, run)).max(AFTER * length);
-        [from.max(-BEFORE * length), to.min(after).min(0.97 * shore)]
-    }
-
-    /// Energy of the scaled momentum p leaves where the width is Re h_n(p) = h_c/sqrt(1 + p^2): the
-    /// stationary point of the uniform field's phase. The beam's axis has p = 2^(-1/3)/(q L_z).
-    fn beam_start_m(&self, place: CutOffPlace, run: &ModeCutOff) -> f64 {
-        let water = self.guide.water_wavenumber();
-        let bottom = self.guide.bottom_wavenumber().re;
-        let square = (run.take_off_angle_small_rad() * bottom).powi(2)
-            / ((water - bottom) * (water + bottom));
-        run.cutoff_depth_m() * (1.0 - 1.0 / (1.0 + square).sqrt()) / place.slope_rad.tan()
-    }
-
-    /// The largest distance between the profile and the plane bed within the picture.
-    pub fn departure_m(&self, followed: &Followed) -> f64 {
-        let [from, to] = followed.window_m;
-        (0..=200)
-            .map(|j| from + (to - from) * f64::from(j) / 200.0)
-            .map(|s| {
-                let profile = self.profile.depth_at(followed.place.range_m + s);
-                (profile - followed.run.depth_m(s)).abs()
-            })
-            .fold(0.0, f64::max)
+        let after = (BEFORE * length + beam_start_m).max(place.range_m + AFTER * length);
+        [from.max(place.range_m - BEFORE * length), to.min(after)]
     }
 }
 
-/// The mode that is followed; its ranges are counted from cut-off.
+/// The mode that is followed.
 pub struct Followed {
     pub mode: u32,
     pub place: CutOffPlace,
@@ -139,9 +114,8 @@ pub struct Followed {
     pub window_m: [f64; 2],
     /// Where the beam's axis leaves the bed.
     pub beam_start_m: f64,
-    /// The same mode in scaled lengths, `q` metres to one.
-    scaled: SlopingGuide,
-    q: Complex64,
+    /// Its angle from the surface.
+    pub axis_rad: f64,
 }
 
 /// A level and its error figure, and how far the yardstick is from it.
@@ -157,41 +131,53 @@ fn decibels(relative: f64) -> f64 {
 }
 
 impl Followed {
-    /// Depth of the beam's axis below the bed, 0 before it leaves.
-    pub fn beam_height_m(&self, range_m: f64) -> f64 {
-        self.run.take_off_angle_small_rad() * (range_m - self.beam_start_m).max(0.0)
+    /// Depth of the beam's axis where it is on its way. In the one-way equation, which the picture shows, the
+    /// axis falls by the sine of its angle.
+    pub fn beam_depth_m(&self, range_m: f64) -> f64 {
+        let (start_m, depth_m) = self.run.passage().ray_start(self.axis_rad);
+        depth_m + self.axis_rad.sin() * (range_m - start_m)
     }
 
-    /// The level by the yardstick.
+    /// The level by the yardstick, or of the adiabatic mode before the fitted part of the track.
     pub fn level(&self, range_m: f64, depth_m: f64) -> Result<Level, Error> {
-        let p = self.run.pressure_uniform(range_m, depth_m)?;
+        let passage = self.run.passage();
+        if range_m < passage.fitted_from() {
+            let p = passage.adiabatic(range_m, depth_m)?;
+            return Ok(Level { db: level_db(p), figure_db: 0.0, apart_db: 0.0 });
+        }
+        let p = passage.field(range_m, depth_m)?;
         Ok(Level { db: level_db(p.value), figure_db: decibels(p.relative_error), apart_db: 0.0 })
     }
 
     /// The level by expansions at the saddles.
     pub fn level_at_saddles(&self, range_m: f64, depth_m: f64) -> Result<Level, Error> {
-        let level = self.level(range_m, depth_m)?;
-        let water = self.run.depth_m(range_m);
-        let field = if depth_m < water {
-            self.scaled.inside(self.q * water, self.q * depth_m)?
-        } else {
-            self.scaled.outside(self.q * water, self.q * (depth_m - water))?
-        };
-        let (u, yardstick) = (field.evaluate()?, field.quadrature(1e-9)?);
-        let ratio = u.value / yardstick.value;
+        let passage = self.run.passage();
+        let yardstick = passage.field(range_m, depth_m)?;
+        let u = passage.field_at_saddles(range_m, depth_m)?;
         Ok(Level {
-            db: level.db + level_db(ratio),
+            db: level_db(u.value),
             figure_db: decibels(u.relative_error),
-            apart_db: decibels((ratio - 1.0).norm()),
+            apart_db: decibels((u.value / yardstick.value - 1.0).norm()),
         })
+    }
+
+    /// How far the formula itself is from the wave equation, in dB of the level at the bed.
+    pub fn formula_db(&self, range_m: f64) -> Result<f64, Error> {
+        self.run.passage().departure(range_m).map(decibels)
     }
 }
 
-/// A mode on the slope at its cut-off, known in the water five transition lengths before.
-fn run(guide: &AcousticGuide, mode: u32, place: CutOffPlace) -> Result<ModeCutOff, Error> {
-    let anywhere = guide.upslope(mode, place.slope_rad, 2.0 * guide.cutoff_depth_m(mode)?)?;
-    let reference_depth_m = anywhere.depth_m(-BEFORE * anywhere.layer_range_m());
-    guide.upslope(mode, place.slope_rad, reference_depth_m)
+/// A mode on the track at its cut-off, known in the water five transition lengths before.
+fn run(
+    guide: &AcousticGuide,
+    mode: u32,
+    profile: &Profile,
+    place: CutOffPlace,
+) -> Result<ModeCutOff, Error> {
+    let [from, _] = profile.ranges();
+    let near = guide.along(mode, profile.clone(), from)?;
+    let reference_m = (place.range_m - BEFORE * near.layer_range_m()).max(from);
+    guide.along(mode, profile.clone(), reference_m)
 }
 
 /// Why no mode is lost, and what to change.

@@ -15,6 +15,7 @@ use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::ring::{MAX_SADDLES, ZERO};
 use crate::saddles::Multiplicities;
+use crate::scaled::ldexp;
 use crate::special::airy::{airy_extended, rotated_extended};
 use crate::special::cuspoid;
 use num_complex::Complex64;
@@ -42,6 +43,28 @@ impl Moments {
             _ => return cuspoid(phi, m, k),
         }
         Some(Moments { values, exponent: 0 })
+    }
+
+    /// All times a factor.
+    pub fn times(mut self, factor: Complex64) -> Moments {
+        for value in &mut self.values {
+            *value *= factor;
+        }
+        self
+    }
+
+    /// Sum, at the larger exponent of the two.
+    pub fn plus(&self, other: &Moments) -> Moments {
+        let is_zero = |m: &Moments| m.values.iter().all(|v| *v == ZERO);
+        if is_zero(self) || is_zero(other) {
+            return if is_zero(self) { *other } else { *self };
+        }
+        let exponent = self.exponent.max(other.exponent);
+        let at = |m: &Moments, j: usize| {
+            let shift = m.exponent - exponent;
+            Complex64::new(ldexp(m.values[j].re, shift), ldexp(m.values[j].im, shift))
+        };
+        Moments { values: std::array::from_fn(|j| at(self, j) + at(other, j)), exponent }
     }
 }
 

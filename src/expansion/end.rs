@@ -12,13 +12,15 @@
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353 (end point near a saddle).
 
+use super::end_pole::{ascent_in_ring, with_pole};
 use super::figure::Parts;
 use super::incomplete::incomplete;
+use super::pole::Pole;
 use super::series::{Contribution, Series};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::Phase;
-use crate::ring::{MAX_ORDERS, NormalForm};
+use crate::ring::{MAX_ORDERS, NormalForm, preimage};
 use crate::saddles::Topology;
 use num_complex::Complex64;
 
@@ -32,6 +34,8 @@ struct Boundary {
     valley: usize,
     terms: [Complex64; MAX_ORDERS],
     noise: [f64; MAX_ORDERS],
+    /// The poles that are split off, each with its steepest ascent in the plane of `u`.
+    poles: Vec<(usize, Vec<Complex64>)>,
 }
 
 /// An end point as seen from the rings of one cluster.
@@ -52,20 +56,23 @@ impl NearEnd {
         node: usize,
         (e, sign): (Complex64, f64),
         tail: &[Complex64],
+        poles: &[(Pole, Vec<Complex64>)],
     ) -> Option<NearEnd> {
         let mut boundaries = Vec::new();
         for (index, ring) in series.rings().iter().enumerate() {
-            // An end and a pole split off in one ring: not covered.
-            if ring.split != 0 {
-                continue;
-            }
-            let Some(v) = ring.form.preimage(e, Complex64::new(0.0, 0.0)) else { continue };
+            let Some(v) = ring.form.locate(e) else { continue };
             if v.norm() > INSIDE {
                 continue;
             }
             let Some(valley) = Topology::leaves_by_valley(&ring.form, v, tail) else { continue };
             let (terms, noise) = ring.orders.boundary(&ring.form, &ring.start, v);
+            let split = (0..poles.len()).filter(|n| ring.split >> n & 1 == 1);
+            let ascents = split.filter_map(|n| {
+                let pole = series.poles()[n].as_ref()?;
+                Some((n, ascent_in_ring(&ring.form, pole, &poles[n].1)))
+            });
             boundaries.push(Boundary {
+                poles: ascents.collect(),
                 ring: index,
                 u: v * ring.form.radius(),
                 valley,
@@ -85,7 +92,7 @@ impl NearEnd {
     /// The contribution at wavenumber `k` with at most `orders` orders; None if the descent inside
     /// the ring did not arrive.
     pub fn at(&self, series: &Series, k: f64, orders: usize) -> Option<Contribution> {
-        let mut best: Option<(usize, usize, f64, _)> = None;
+        let mut best: Option<(usize, usize, f64, _, _)> = None;
         for (index, boundary) in self.boundaries.iter().enumerate() {
             let ring = &series.rings()[boundary.ring];
             let Some(moments) =
@@ -104,14 +111,24 @@ impl NearEnd {
             for (p, error) in ring.orders.coefficients(0).iter().zip(&moments.errors) {
                 figure += p.norm() * error;
             }
+            let mut split_off = Complex64::new(0.0, 0.0);
+            for (n, ascent) in &boundary.poles {
+                let phi = Unfolding::new(&ring.form);
+                let at = (boundary.u, boundary.valley);
+                let residual = ring.form.residual();
+                let pole = series.poles()[*n].as_ref();
+                let found = pole.and_then(|pole| with_pole(&phi, at, pole, ascent, k, residual));
+                let (value, error) = found.unwrap_or((split_off, f64::INFINITY));
+                split_off += value;
+                figure += error;
+            }
             if best.as_ref().is_none_or(|b| figure < b.2) {
-                best = Some((index, kept, figure, moments));
+                best = Some((index, kept, figure, moments, split_off));
             }
         }
-        let (index, kept, figure, moments) = best?;
+        let (index, kept, figure, moments, mut sum) = best?;
         let boundary = &self.boundaries[index];
         let ring = &series.rings()[boundary.ring];
-        let mut sum = Complex64::new(0.0, 0.0);
         let mut power = 1.0;
         for n in 0..kept {
             let p = ring.orders.coefficients(n);
@@ -130,34 +147,16 @@ impl NearEnd {
 }
 
 impl NormalForm {
+    /// `v` with `z(R v) = z` from the linear part of the map or from the centre.
+    pub(crate) fn locate(&self, z: Complex64) -> Option<Complex64> {
+        let linear = (z - self.map()[0]) / self.map()[1];
+        let start = if linear.norm() > 1.0 { linear / linear.norm() } else { linear };
+        self.preimage(z, start).or_else(|| self.preimage(z, Complex64::new(0.0, 0.0)))
+    }
+
     /// `v` with `z(R v) = z`, by Newton's method on the Taylor map from `start`; None if it leaves
     /// the neighbourhood of the disc.
     pub(crate) fn preimage(&self, z: Complex64, start: Complex64) -> Option<Complex64> {
-        let mut v = start;
-        let size = self.map()[1].norm();
-        for _ in 0..40 {
-            let mut value = Complex64::new(0.0, 0.0);
-            let mut slope = Complex64::new(0.0, 0.0);
-            for &c in self.map().iter().rev() {
-                slope = slope * v + value;
-                value = value * v + c;
-            }
-            let mut step = (z - value) / slope;
-            if !(step.re.is_finite() && step.im.is_finite()) {
-                return None;
-            }
-            if step.norm() > 0.3 {
-                step *= 0.3 / step.norm();
-            }
-            v += step;
-            if v.norm() > 1.3 {
-                return None;
-            }
-            if step.norm() < 1e-15 || (z - value).norm() < 1e-16 * size {
-                return Some(v);
-            }
-        }
-        // Rounding may keep the last digit in motion.
-        ((z - self.point(v)).norm() < 1e-13 * (size + z.norm())).then_some(v)
+        preimage(self.map(), z, start)
     }
 }

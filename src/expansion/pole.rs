@@ -111,7 +111,7 @@ pub(crate) struct MappedPole {
     pub u: Complex64,
     pub simple: Complex64,
     pub double: Complex64,
-    noise: (f64, f64),
+    pub(super) noise: (f64, f64),
     /// Rounding error of `u`.
     blur: f64,
     ridge: usize,
@@ -120,7 +120,7 @@ pub(crate) struct MappedPole {
 impl MappedPole {
     /// None if the pole lies too far outside the ring. `ascent` is its steepest ascent.
     pub fn new(form: &NormalForm, pole: &Pole, ascent: &[Complex64]) -> Option<MappedPole> {
-        let v = form.preimage(pole.z, ZERO)?;
+        let v = form.locate(pole.z)?;
         if v.norm() > OUTSIDE {
             return None;
         }

@@ -10,6 +10,7 @@ use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
+use crate::ring::ZERO;
 use crate::ring::{KEPT, NormalForm, Orders, Start};
 use crate::saddles::Multiplicities;
 use num_complex::Complex64;
@@ -25,17 +26,25 @@ const WORST_TAIL: f64 = 1e-5;
 /// No ring is enlarged once `R^(K+2)` is beyond this: for `k >= 1` nothing is gained there, and the
 /// rounding error of `A` grows with it.
 const LARGEST: f64 = 40.0;
+/// Mapped saddles within this part of the ring leave room enough.
+const ROOMY: f64 = 0.5;
+/// The first ring has `R^(K+2)` no larger than this.
+const INNERMOST: f64 = 2.0;
 /// The topology looks at the cluster on a ring with `R^(K+2)` no larger than this, if the saddles
 /// allow: the contour's descents must leave it.
 const LOW: f64 = 6.0;
+/// Rings are added at this ratio inside and outside a pole: there it can be split off.
+const BY_POLE: f64 = 1.1;
 /// With tails below this nothing singular lies inside a ring.
 const SOUND: f64 = 1e-9;
 /// The first ring is made smaller until its tails are below this.
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
 const FIRST: usize = 16;
+/// Branch points must lie beyond this part of a ring.
+const CLEAR: f64 = 1.05;
 /// The smallest ring that is kept, relative to the largest.
-const SMALLEST: f64 = 0.3;
+const SMALLEST: f64 = 0.2;
 
 /// A ring that was tried.
 struct Trial {
@@ -50,6 +59,10 @@ struct Trial {
 
 impl Trial {
     fn new(form: NormalForm, given: &Given) -> Option<Trial> {
+        let holds = |&z: &Complex64| form.preimage(z, ZERO).is_some_and(|v| v.norm() < CLEAR);
+        if given.outside.iter().any(holds) {
+            return None;
+        }
         let map = |(pole, ascent): &(Pole, Vec<Complex64>)| MappedPole::new(&form, pole, ascent);
         let poles: Vec<Option<MappedPole>> = given.poles.iter().map(map).collect();
         let split = poles
@@ -93,6 +106,8 @@ pub(crate) struct Given<'a> {
     pub phase: &'a dyn Phase,
     pub amplitude: &'a dyn Amplitude,
     pub poles: &'a [(Pole, Vec<Complex64>)],
+    /// Branch points of the amplitude, which must lie outside all rings.
+    pub outside: &'a [Complex64],
 }
 
 /// One cluster or end point, ready for any wavenumber.
@@ -104,6 +119,8 @@ pub(crate) struct Series {
     reference: usize,
     poles: Vec<Option<MappedPole>>,
     m: Multiplicities,
+    /// The same sheet by sheet with the factor of each, where an end of the contour is algebraic.
+    sheets: Vec<(Complex64, Multiplicities)>,
     sign: f64,
     noise_scale: f64,
 }
@@ -173,7 +190,8 @@ impl Series {
             let last = &trials[trials.len() - 1];
             // The last Taylor coefficients grow at least like this.
             let expected = last.form.tail() * RATIO.powi(KEPT as i32 * 3 / 4);
-            if height(&last.form) > LARGEST || expected > WORST_TAIL {
+            let enough = height(&last.form) > LARGEST && last.filling < ROOMY;
+            if enough || expected > WORST_TAIL {
                 break;
             }
             let Some(next) =
@@ -199,6 +217,9 @@ impl Series {
                 Trial::new(trials[0].form.shrunk(1.0 / RATIO), given)?
             };
             trials.insert(0, inwards);
+        }
+        for index in 0..given.poles.len() {
+            add_rings_by_pole(given, &mut trials, index);
         }
         let kept = |ring: &Trial| {
             // A large tail is a singularity inside: no figure could be trusted.
@@ -227,6 +248,7 @@ impl Series {
             reference,
             poles,
             m: [0; 6],
+            sheets: Vec::new(),
             sign: 1.0,
             noise_scale: phase.noise_scale(centre),
         })
@@ -243,6 +265,12 @@ impl Series {
         self
     }
 
+    /// Sets what the contour makes of it on each sheet, with the factor of the sheet.
+    pub fn with_sheets(mut self, sheets: Vec<(Complex64, Multiplicities)>) -> Self {
+        self.sheets = sheets;
+        self
+    }
+
     /// For an end point: +1 at the start of the contour, -1 at its end.
     pub fn with_sign(mut self, sign: f64) -> Self {
         self.sign = sign;
@@ -256,7 +284,20 @@ impl Series {
     /// Whether the contour needs this cluster; always so for an end point.
     pub fn contributes(&self) -> bool {
         let degree = self.form().degree();
-        degree == 1 || self.m[1..degree].iter().any(|m| *m != self.m[0])
+        let uneven = |m: &Multiplicities| m[1..degree].iter().any(|j| *j != m[0]);
+        degree == 1 || uneven(&self.m) || self.sheets.iter().any(|(_, m)| uneven(m))
+    }
+
+    /// The canonical integrals.
+    fn moments(&self, phi: &Unfolding, k: f64) -> Option<Moments> {
+        let Some(((factor, m), more)) = self.sheets.split_first() else {
+            return Moments::new(phi, &self.m, k);
+        };
+        let mut sum = Moments::new(phi, m, k)?.times(*factor);
+        for (factor, m) in more {
+            sum = sum.plus(&Moments::new(phi, m, k)?.times(*factor));
+        }
+        Some(sum)
     }
 
     pub fn saddles(&self) -> usize {
@@ -271,7 +312,7 @@ impl Series {
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         let phi = Unfolding::new(&self.rings[self.reference].form);
-        let Some(moments) = Moments::new(&phi, &self.m, k) else { return Contribution::UNKNOWN };
+        let Some(moments) = self.moments(&phi, k) else { return Contribution::UNKNOWN };
         let sizes = moments.values.map(|c| c.norm());
         let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
             let residual = ring.form.residual();
@@ -308,8 +349,33 @@ impl Series {
         )
     }
 
+    /// The poles that may be split off, where they lie in the plane of `u`.
+    pub(super) fn poles(&self) -> &[Option<MappedPole>] {
+        &self.poles
+    }
+
     pub(super) fn rings(&self) -> &[Ring] {
         &self.rings
+    }
+}
+
+/// A ring close inside and one close outside the circle of a pole: on both it can be split off.
+fn add_rings_by_pole(given: &Given, trials: &mut Vec<Trial>, index: usize) {
+    let pole = &given.poles[index].0;
+    let Some(largest) = trials.last() else { return };
+    let Some(v) = largest.form.locate(pole.z) else { return };
+    let place = v.norm() * largest.form.radius();
+    for radius in [place / BY_POLE, place * BY_POLE] {
+        let near = |ring: &Trial| (ring.form.radius() / radius - 1.0).abs() < 0.02;
+        let Some(at) = trials.iter().position(|ring| ring.form.radius() > radius) else { continue };
+        let outer = &trials[at];
+        let factor = radius / outer.form.radius();
+        if trials.iter().any(near) || outer.filling > FILLING * factor {
+            continue;
+        }
+        if let Some(ring) = Trial::new(outer.form.shrunk(factor), given) {
+            trials.insert(at, ring);
+        }
     }
 }
 
@@ -331,6 +397,14 @@ fn first_ring(
         if let Some(ring) = NormalForm::find(given.phase, saddles, centre, reach)
             .and_then(|form| Trial::new(form, given))
         {
+            // A large wavenumber needs a small ring: the noise of the phase grows with its size.
+            let excess = (ring.form.radius().powi(ring.form.degree() as i32) / INNERMOST)
+                .powf(1.0 / ring.form.degree() as f64)
+                .min(ROOMY / ring.filling.max(1e-3));
+            if excess > 1.01 && reach / excess > least {
+                reach /= excess;
+                continue;
+            }
             let crowded = ring.filling * RATIO > FILLING;
             // Where the noise of the phase sets the tails a smaller ring is no better.
             let best = found.as_ref().map_or(f64::INFINITY, Trial::tail);

@@ -1,14 +1,15 @@
 //! How a plan is made: location, grouping, expansions, topology, certificate.
 
+use super::algebraic::{algebraic_ends, branches, on_sheets};
 use super::plan::{End, MAX_GROUPS, Node, Place, Plan, decided};
 use crate::Error;
-use crate::expansion::{Given, NearEnd, Pole, Series};
+use crate::expansion::{Given, NearEnd, Pole, Powered, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
-use crate::saddles::{Group, Region, Saddle, Topology, Tree, locate};
+use crate::saddles::{Group, Region, Saddle, Sheeting, Topology, Tree, locate};
 use num_complex::Complex64;
 
-fn undecided(reason: impl Into<String>) -> Error {
+pub(super) fn undecided(reason: impl Into<String>) -> Error {
     Error::Undecided {
         reason: reason.into(),
         remedy: "use `quadrature` for this integral, or give a contour closer to the saddles",
@@ -21,6 +22,8 @@ pub(super) struct Problem<'a> {
     pub amplitude: &'a dyn Amplitude,
     pub contour: &'a Contour,
     pub poles: &'a [Complex64],
+    /// Exponents `lambda` at the two ends.
+    pub powers: [f64; 2],
     /// How far below the highest contribution something may lie and still matter.
     pub drop: f64,
     /// The least and the greatest wavenumber.
@@ -28,14 +31,30 @@ pub(super) struct Problem<'a> {
 }
 
 /// One attempt: saddles are looked for within `margin` of the contour.
-pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Plan, Error> {
+pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
-    let region = Region::around(contour.points(), margin);
-    let saddles = locate(phase, region, finest)?;
+    let points = contour.points();
+    let mut reached = points.to_vec();
+    // The saddle that an end point needs may lie beyond it, at about Newton's distance.
+    for (end, &z) in [(contour.start(), &points[0]), (contour.end(), &points[points.len() - 1])] {
+        if end == Termination::Finite {
+            let [_, slope, bend] = phase.jet(z);
+            let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
+            let far = (2.5 * slope.norm() / bend.norm()).min(4.0 * longest);
+            if far.is_finite() {
+                let corner = Complex64::new(far, far);
+                reached.extend([z - corner, z + corner]);
+            }
+        }
+    }
+    let region = Region::around(&reached, margin);
+    let saddles = locate(phase, region)?;
     let size = region.size();
     let topology = Topology::new(phase, contour, &saddles, drop);
-    let points = contour.points();
     let tails = topology.tails();
+    let branches = branches(problem)?;
+    let bases: Vec<Complex64> = branches.iter().map(|branch| branch.base).collect();
+    let mut sheeting = topology.sheeting(&branches, [points[0], points[points.len() - 1]]);
 
     let mut ends: Vec<End> = Vec::new();
     let mut reach = Reach { top: f64::NEG_INFINITY, lowest: f64::INFINITY };
@@ -43,11 +62,18 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
         [(points[0], 1.0, contour.start()), (points[points.len() - 1], -1.0, contour.end())]
     {
         if termination == Termination::Finite {
-            let near = saddles.iter().map(|s| (s.z - at).norm()).fold(size, f64::min);
-            let given = Given { phase, amplitude, poles: &[] };
-            let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
             let f = phase.value(at);
             reach.include(height(f), topology.turned_height(f));
+            if branches.iter().any(|branch| branch.base == at) {
+                continue;
+            }
+            let near = saddles.iter().map(|s| (s.z - at).norm()).fold(size, f64::min);
+            let near = branches.iter().map(|b| (b.base - at).norm()).fold(near, f64::min);
+            let end = usize::from(sign < 0.0);
+            let lifts = (0..).map(|slot| sheeting.at_end(slot, end));
+            let powered = Powered::new(amplitude, at, branches.iter().copied().zip(lifts));
+            let given = Given { phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
+            let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
             ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
         }
     }
@@ -58,18 +84,49 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
             reach.include(height(pole.value), topology.turned_height(pole.value));
         }
     }
-    let given = Given { phase, amplitude, poles: &poles };
+    let given = Given { phase, amplitude, poles: &poles, outside: &bases };
 
     let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
-    let nodes = resolve(&given, &topology, &tree, &saddles, &ends, &mut reach, (size, drop))?;
+    let algebraic = algebraic_ends(problem, &mut sheeting, &tree, &saddles, size)?;
+    for (node, series) in algebraic.iter().flat_map(|end| &end.near) {
+        if !series.is_plain() {
+            let f = saddles[tree.groups[*node].members[0]].value;
+            reach.include(height(f), topology.turned_height(f));
+        }
+    }
+    let beside = |node: usize| algebraic.iter().any(|end| end.near.iter().any(|n| n.0 == node));
+    let nodes = resolve(
+        &given,
+        &sheeting,
+        &topology,
+        &tree,
+        &saddles,
+        &ends,
+        &beside,
+        &mut reach,
+        (size, drop),
+    )?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
-            if let Some(series) = &node.series {
-                end.near.extend(NearEnd::new(phase, series, index, (end.at, end.sign), tail));
+            if let Some(series) = &node.series
+                && sheeting.same_sheet(
+                    usize::from(end.sign < 0.0),
+                    end.at,
+                    tree.groups[index].centre,
+                )
+            {
+                end.near.extend(NearEnd::new(
+                    phase,
+                    series,
+                    index,
+                    (end.at, end.sign),
+                    tail,
+                    &poles,
+                ));
             }
         }
         if end.own.is_none() && end.near.is_empty() {
@@ -80,14 +137,30 @@ pub(super) fn attempt(problem: &Problem, margin: f64, finest: u32) -> Result<Pla
         }
     }
     let top = reach.top;
+    if contour.is_closed() && top == f64::NEG_INFINITY {
+        return Err(undecided(
+            "no saddle and no pole that was named contributes: the integral over the closed contour \
+             vanishes, or a singularity inside it was not named",
+        ));
+    }
     let poles = poles.into_iter().map(|(pole, _)| pole).collect();
-    let mut plan =
-        Plan { nodes, roots: tree.roots, ends, poles, saddles: Vec::new(), floor: top - drop };
+    let mut plan = Plan {
+        nodes,
+        roots: tree.roots,
+        ends,
+        algebraic,
+        poles,
+        saddles: Vec::new(),
+        floor: top - drop,
+    };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
     certify(&mut plan, &topology, lowest - drop)?;
     for saddle in &saddles {
         let [_, _, second] = phase.jet(saddle.z);
+        let power: f64 =
+            branches.iter().map(|b| (saddle.z - b.base).norm().powf(b.lambda - 1.0)).product();
         let weight = amplitude.value(saddle.z).norm()
+            * power
             * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
         let weight = if weight.is_finite() { weight } else { 0.0 };
@@ -141,10 +214,12 @@ impl Reach {
 /// Series and multiplicities of all groups, from the highest downwards.
 fn resolve(
     given: &Given,
+    sheeting: &Sheeting,
     topology: &Topology,
     tree: &Tree,
     saddles: &[Saddle],
     ends: &[End],
+    beside: &dyn Fn(usize) -> bool,
     reach: &mut Reach,
     (size, drop): (f64, f64),
 ) -> Result<Vec<Node>, Error> {
@@ -163,6 +238,13 @@ fn resolve(
         let gap = if group.gap.is_finite() { group.gap } else { size };
         // An end point near a saddle needs its series, whether the saddle contributes or not.
         let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
+        nodes[index].settled = beside(index);
+        // No ring may hold an algebraic end.
+        let branches = sheeting.branches();
+        let gap = branches.iter().map(|b| (b.base - group.centre).norm()).fold(gap, f64::min);
+        let lifts = branches.iter().map(|b| (*b, b.angle(group.centre)));
+        let powered = Powered::new(given.amplitude, group.centre, lifts);
+        let given = &Given { amplitude: powered.simplest(), ..*given };
         if !ended && (topology.above(lowest(group)) || highest(group) < reach.top - drop) {
             nodes[index].settled = true;
             continue;
@@ -175,10 +257,16 @@ fn resolve(
         ) else {
             continue;
         };
-        let Some(m) = topology.multiplicities(series.form()) else {
+        let series = if branches.is_empty() {
+            topology.multiplicities(series.form()).map(|m| series.with_multiplicities(m))
+        } else {
+            sheeting
+                .multiplicities(series.form(), group.centre)
+                .map(|s| on_sheets(series, branches, &s))
+        };
+        let Some(series) = series else {
             continue;
         };
-        let series = series.with_multiplicities(m);
         if series.contributes() {
             reach.include(highest(group), lowest(group));
         }
@@ -201,16 +289,24 @@ fn resolve(
 /// ones; what is finer than the one that passes is dropped. Then each coarser group must pass in the
 /// place of its parts, or is dropped too.
 fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error> {
+    let beside = |index: usize| {
+        let mut near = plan.algebraic.iter().flat_map(|end| &end.near);
+        near.find(|(node, _)| *node == index).map(|(_, series)| &series.valleys)
+    };
     let valleys: Vec<Option<Valleys>> = plan
         .nodes
         .iter()
-        .map(|node| match &node.series {
+        .enumerate()
+        .map(|(index, node)| match &node.series {
             Some(series) if series.contributes() => {
                 topology.valleys(series.form(), series.multiplicities(), floor)
             }
             // Settled without a series: too high or too low to matter.
             Some(_) => Some(Vec::new()),
-            None => node.settled.then(Vec::new),
+            None => match beside(index) {
+                Some(list) => topology.sunk(list.clone(), floor),
+                None => node.settled.then(Vec::new),
+            },
         })
         .collect();
     let closes = |partition: &[usize]| {

@@ -1,5 +1,6 @@
 //! The one API: plan an integral once, evaluate it at any wavenumber.
 
+mod algebraic;
 mod build;
 mod explain;
 mod plan;

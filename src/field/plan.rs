@@ -2,7 +2,7 @@
 
 use super::build::{Problem, attempt};
 use crate::estimate::Form;
-use crate::expansion::{Contribution, NearEnd, Pole, Series};
+use crate::expansion::{AlgebraicSeries, Contribution, NearEnd, Part, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};
@@ -24,8 +24,6 @@ const NEPERS: f64 = 40.0;
 /// How wide round the contour saddles are looked for, in units of its size: wider if the
 /// certificate says that a contributing saddle is missing.
 const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
-/// Quarterings before a count of no saddle is believed: a pole of the phase counts against one.
-const FINEST: u32 = 2;
 
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
@@ -70,6 +68,22 @@ impl End {
     }
 }
 
+/// An algebraic end point: alone, and with a saddle near it (an index of its node).
+pub(super) struct AlgebraicEnd {
+    pub own: Option<AlgebraicSeries>,
+    pub near: Vec<(usize, AlgebraicSeries)>,
+}
+
+impl AlgebraicEnd {
+    /// The form with the smaller error figure.
+    fn at(&self, k: f64, orders: usize) -> Contribution {
+        let near = self.near.iter().map(|(_, series)| series);
+        let all = self.own.iter().chain(near).map(|series| series.at(Part::End, k, orders));
+        all.reduce(|a, b| if below(b.error, a.error) { b } else { a })
+            .unwrap_or(Contribution::UNKNOWN)
+    }
+}
+
 /// A saddle as the plan remembers it.
 pub(super) struct Place {
     pub z: Complex64,
@@ -88,6 +102,7 @@ pub struct Plan {
     pub(super) nodes: Vec<Node>,
     pub(super) roots: Vec<usize>,
     pub(super) ends: Vec<End>,
+    pub(super) algebraic: Vec<AlgebraicEnd>,
     pub(super) poles: Vec<Pole>,
     pub(super) saddles: Vec<Place>,
     /// Nothing with `Re(i f)` below this was looked at.
@@ -156,6 +171,7 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             return Err(Error::domain("greatest wavenumber of the range", greatest, remedy));
         }
         self.contour().check()?;
+        self.check_powers()?;
         for &z in self.contour().points() {
             let (f, df) = self.phase().value_and_derivative(z);
             if !(f.re.is_finite() && f.im.is_finite() && df.re.is_finite() && df.im.is_finite()) {
@@ -176,12 +192,13 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             amplitude: self.amplitude_ref(),
             contour: self.contour(),
             poles: self.poles(),
+            powers: self.powers(),
             drop: NEPERS / least,
             wavenumbers: (least, greatest),
         };
         let mut last = None;
-        for (margin, finest) in MARGINS.into_iter().zip(FINEST..) {
-            match attempt(&problem, margin, finest) {
+        for margin in MARGINS {
+            match attempt(&problem, margin) {
                 Ok(plan) => return Ok(plan),
                 Err(error) => last = Some(error),
             }
@@ -218,6 +235,9 @@ impl Plan {
         for end in &self.ends {
             total = total.and(&end.at(&self.nodes, k, orders));
         }
+        for end in &self.algebraic {
+            total = total.and(&end.at(k, orders));
+        }
         for pole in self.poles.iter().filter(|pole| pole.crossings != 0) {
             total = total.and(&pole.at(k));
         }
@@ -226,7 +246,7 @@ impl Plan {
             let parts =
                 node.parts.filter(|&(a, b)| decided(&self.nodes, a) && decided(&self.nodes, b));
             let parts = parts.map(|(a, b)| best[a].and(&best[b]));
-            let whole = node.series.as_ref().map(|series| {
+            let own = node.series.as_ref().map(|series| {
                 if !series.contributes() {
                     return Choice::NONE;
                 }
@@ -237,6 +257,11 @@ impl Plan {
                     as_whole: true,
                 }
             });
+            let whole = self
+                .beside_an_end(index, k, orders)
+                .into_iter()
+                .chain(own)
+                .reduce(|a, b| if below(b.part.error, a.part.error) { b } else { a });
             best[index] = match (whole, parts) {
                 (Some(whole), Some(parts)) if below(parts.part.error, whole.part.error) => parts,
                 (Some(whole), _) => whole,
@@ -255,6 +280,19 @@ impl Plan {
         total.error = total.error + Scaled::exp(Complex64::new(k * self.floor, 0.0));
         let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
         finish(total, form, k)
+    }
+
+    /// What a single saddle adds, by the rings about an algebraic end near it.
+    fn beside_an_end(&self, node: usize, k: f64, orders: usize) -> Option<Choice> {
+        let ends = self.algebraic.iter().flat_map(|end| &end.near);
+        let found = ends.filter(|(index, _)| *index == node).map(|(_, series)| {
+            if series.is_plain() {
+                return Choice::NONE;
+            }
+            let part = series.at(Part::Saddle, k, orders);
+            Choice { part, clusters: 1, largest: 1, as_whole: true }
+        });
+        found.reduce(|a, b| if below(b.part.error, a.part.error) { b } else { a })
     }
 
     /// Adds to the error what lies on the far side of a Stokes line close by: there the term of a

@@ -7,18 +7,17 @@
 //! With `q^2 = k_w^2 - k_b^2` and `g` the depth lost per metre of range, the scaled guide of
 //! [`SlopingGuide`] has `x = q z`, `r = q g s`, `eps = 2 k_b g/q`, `m = rho_w/rho_b` and
 //! `psi = p exp(-i k_b s)`; the layer at cut-off has `L_z = (2 k_b Gamma)^(-1/3)`,
-//! `L_s = 2 k_b L_z^2`, `Gamma = q^2 g/m`. Attenuation in the bottom makes `k_b`, and with it every
+//! `L_s = 2 k_b L_z^2`, `Gamma = q^2 g/m`. Attenuation makes `k_b` and `q`, and with them every
 //! length and the place of cut-off, complex; the lengths returned here are those without loss, the
 //! fields have it all.
 //!
 //! Source: derived here; the cut-off depth is the textbook modal relation (common practice).
 
-use super::layer::bound_extended;
-use super::uniform::{Order, SlopingGuide, times};
-use crate::{Complex64, Error, Estimate, Scaled};
+use super::passage::{Media, ModeNumber, Passage};
+use super::profile::Profile;
+use super::uniform::Order;
+use crate::{Complex64, Error, Estimate};
 use std::f64::consts::{FRAC_PI_4, LOG10_E, PI, TAU};
-
-const I: Complex64 = Complex64::new(0.0, 1.0);
 
 /// What is known of the sea and its bottom.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -33,6 +32,8 @@ pub struct TwoLayer {
     pub water_density_kg_per_m3: f64,
     /// Density of the bottom in kg/m^3.
     pub bottom_density_kg_per_m3: f64,
+    /// Attenuation in the water in dB per wavelength; 0 for none.
+    pub water_attenuation_db_per_wavelength: f64,
     /// Attenuation in the bottom in dB per wavelength; 0 for none.
     pub bottom_attenuation_db_per_wavelength: f64,
 }
@@ -42,6 +43,7 @@ pub struct TwoLayer {
 pub struct AcousticGuide {
     k_water: f64,
     k_bottom: f64,
+    water_loss: f64,
     loss: f64,
     density_ratio: f64,
 }
@@ -70,6 +72,7 @@ impl AcousticGuide {
     ///     bottom_speed_m_per_s: 1650.0,
     ///     water_density_kg_per_m3: 1000.0,
     ///     bottom_density_kg_per_m3: 1800.0,
+    ///     water_attenuation_db_per_wavelength: 0.0,
     ///     bottom_attenuation_db_per_wavelength: 0.0,
     /// };
     /// let guide = AcousticGuide::new(sea)?;
@@ -100,21 +103,27 @@ impl AcousticGuide {
                  water_speed_m_per_s",
             ));
         }
-        let attenuation = sea.bottom_attenuation_db_per_wavelength;
-        if !(0.0..=5.0).contains(&attenuation) {
-            return Err(Error::domain(
-                "bottom_attenuation_db_per_wavelength",
-                attenuation,
-                "give 0 to 5 dB per wavelength in the bottom (0.1 to 1 for sediments); dB per \
-                 metre is to be multiplied by the wavelength",
-            ));
+        for (what, attenuation) in [
+            ("water_attenuation_db_per_wavelength", sea.water_attenuation_db_per_wavelength),
+            ("bottom_attenuation_db_per_wavelength", sea.bottom_attenuation_db_per_wavelength),
+        ] {
+            if !(0.0..=5.0).contains(&attenuation) {
+                return Err(Error::domain(
+                    what,
+                    attenuation,
+                    "give 0 to 5 dB per wavelength (0.1 to 1 for sediments); dB per metre is to be \
+                     multiplied by the wavelength",
+                ));
+            }
         }
         let omega = TAU * sea.frequency_hz;
+        // A field exp(-k loss x) loses the attenuation in dB over x = 2 pi/k.
+        let loss = |attenuation: f64| attenuation / (40.0 * PI * LOG10_E);
         Ok(AcousticGuide {
             k_water: omega / sea.water_speed_m_per_s,
             k_bottom: omega / sea.bottom_speed_m_per_s,
-            // A field exp(-k_b loss x) loses `attenuation` dB over x = 2 pi/k_b.
-            loss: attenuation / (40.0 * PI * LOG10_E),
+            water_loss: loss(sea.water_attenuation_db_per_wavelength),
+            loss: loss(sea.bottom_attenuation_db_per_wavelength),
             density_ratio: sea.water_density_kg_per_m3 / sea.bottom_density_kg_per_m3,
         })
     }
@@ -134,11 +143,17 @@ impl AcousticGuide {
         self.density_ratio
     }
 
-    /// `sqrt(k_w^2 - k_b^2)` without and with loss, in rad/m.
-    fn q(&self) -> (f64, Complex64) {
-        let real = ((self.k_water - self.k_bottom) * (self.k_water + self.k_bottom)).sqrt();
+    /// `sqrt(k_w^2 - k_b^2)` without loss, in rad/m.
+    fn q(&self) -> f64 {
+        ((self.k_water - self.k_bottom) * (self.k_water + self.k_bottom)).sqrt()
+    }
+
+    /// The two media for the core.
+    pub(super) fn media(&self) -> Media {
         let k = self.bottom_wavenumber();
-        (real, (self.k_water * self.k_water - k * k).sqrt())
+        let water = Complex64::new(self.k_water, self.k_water * self.water_loss);
+        let q = (water * water - k * k).sqrt();
+        Media { k, q, k_real: self.k_bottom, q_real: self.q(), m: self.density_ratio, carrier: k }
     }
 
     /// Depth in m below which mode `n = 1, 2, ..` is no longer trapped (without loss):
@@ -149,7 +164,7 @@ impl AcousticGuide {
         if mode == 0 {
             return Err(Error::domain("mode", 0.0, "modes are counted from 1"));
         }
-        Ok((f64::from(mode) - 0.5) * PI / self.q().0)
+        Ok((f64::from(mode) - 0.5) * PI / self.q())
     }
 
     /// How many modes water of this depth traps.
@@ -158,85 +173,77 @@ impl AcousticGuide {
     pub fn mode_count(&self, depth_m: f64) -> Result<u32, Error> {
         Error::require_positive("depth_m", depth_m)?;
         // Saturates for depths that no sea has.
-        Ok((depth_m * self.q().0 / PI + 0.5).floor() as u32)
+        Ok((depth_m * self.q() / PI + 0.5).floor() as u32)
     }
 
-    /// The first place between two ranges where a depth profile falls to the cut-off depth of a
-    /// mode; `depth_m` gives the depth in m at a range in m.
+    /// Where on a track a mode is cut off: the first range at which the depth falls to its cut-off depth.
     ///
-    /// The profile is sampled at 2000 equal steps, so a shoal narrower than that may be missed.
-    ///
-    /// Errors: [`Error::Domain`] for mode 0, ranges that are not finite and rising, and a depth
-    /// that is not finite; [`Error::Undecided`] where the mode is already cut off at the first range, or
-    /// never is.
+    /// Errors: [`Error::Domain`] for mode 0 and depths that are not finite; [`Error::Undecided`] where the
+    /// mode is already cut off at the first range, or never is.
     ///
     /// ```
-    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// use merging_saddles::guide::{AcousticGuide, Profile, TwoLayer};
     /// # let guide = AcousticGuide::new(TwoLayer {
     /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
     /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
     /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
-    /// let place = guide.cutoff_range_m(2, |s| 80.0 - 0.03 * s, 0.0, 2000.0)?;
+    /// let place = guide.cutoff_place(2, &Profile::plane(80.0, 0.03)?)?;
     /// // On a plane bed (depth - cut-off depth)/slope, by definition.
     /// assert!((place.range_m - (80.0 - guide.cutoff_depth_m(2)?) / 0.03).abs() < 1e-6);
     /// assert!((place.slope_rad - 0.03f64.atan()).abs() < 1e-8);
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
-    pub fn cutoff_range_m(
-        &self,
-        mode: u32,
-        depth_m: impl Fn(f64) -> f64,
-        from_m: f64,
-        to_m: f64,
-    ) -> Result<CutOffPlace, Error> {
-        let target = self.cutoff_depth_m(mode)?;
-        Error::require_finite("from_m", from_m)?;
-        Error::require_finite("to_m", to_m)?;
-        if from_m >= to_m {
-            return Err(Error::domain("to_m", to_m, "give a range beyond from_m"));
-        }
-        let excess = |s: f64| -> Result<f64, Error> {
-            let depth = depth_m(s);
-            Error::require_finite("depth_m", depth)?;
-            Ok(depth - target)
-        };
-        if excess(from_m)? <= 0.0 {
-            return Err(Error::Undecided {
-                reason: format!("mode {mode} is cut off already at range {from_m} m"),
-                remedy: "begin where the water is deeper, or take a lower mode",
-            });
-        }
-        const STEPS: u32 = 2000;
-        let step = (to_m - from_m) / f64::from(STEPS);
-        let mut low = from_m;
-        for j in 1..=STEPS {
-            let mut high = if j == STEPS { to_m } else { from_m + step * f64::from(j) };
-            if excess(high)? > 0.0 {
-                low = high;
-                continue;
-            }
-            for _ in 0..60 {
-                let middle = 0.5 * (low + high);
-                if excess(middle)? > 0.0 { low = middle } else { high = middle }
-            }
-            let range_m = 0.5 * (low + high);
-            let h = 1e-3 * step;
-            let fall = (excess(range_m - h)? - excess(range_m + h)?) / (2.0 * h);
-            return Ok(CutOffPlace { range_m, slope_rad: fall.atan() });
-        }
-        Err(Error::Undecided {
-            reason: format!("mode {mode} stays trapped up to range {to_m} m"),
-            remedy: "look farther upslope, or take a higher mode",
-        })
+    pub fn cutoff_place(&self, mode: u32, profile: &Profile) -> Result<CutOffPlace, Error> {
+        let range_m = profile.first_range_of_width(self.cutoff_depth_m(mode)?)?;
+        Ok(CutOffPlace { range_m, slope_rad: profile.fall(range_m).atan() })
     }
 
-    /// A mode going upslope through its cut-off on a bed of constant slope.
+    /// Every mode that is cut off on a track, highest first, with the place.
+    ///
+    /// Errors: [`Error::Domain`] for depths that are not finite, and for more than 10,000 modes.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, Profile, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let track = Profile::from_samples(&[0.0, 2000.0, 3000.0], &[70.0, 40.0, 12.0])?;
+    /// let modes: Vec<u32> = guide.cutoffs(&track)?.iter().map(|(mode, _)| *mode).collect();
+    /// // Cut-off depths 9.0, 27.0, 45.0, 63.0 m: (n - 1/2) pi/q, textbook modal relation.
+    /// assert_eq!(modes, [4, 3, 2]);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
+    pub fn cutoffs(&self, profile: &Profile) -> Result<Vec<(u32, CutOffPlace)>, Error> {
+        let [from, to] = profile.ranges();
+        let from = if from.is_finite() { from } else { 0.0 };
+        let deep = self.mode_count(profile.width(from))?;
+        let end = profile.width(to);
+        let shallow = if end > 0.0 { self.mode_count(end)? } else { 0 };
+        if deep.saturating_sub(shallow) > 10_000 {
+            let remedy = "cut the deep part off the profile or take a lower frequency";
+            return Err(Error::domain(
+                "number of modes cut off",
+                f64::from(deep - shallow),
+                remedy,
+            ));
+        }
+        (shallow + 1..=deep)
+            .rev()
+            .map(|mode| Ok((mode, self.cutoff_place(mode, profile)?)))
+            .collect()
+    }
+
+    /// A mode going upslope through its cut-off on a bed of constant slope; ranges are counted from
+    /// cut-off.
     ///
     /// `reference_depth_m` is the depth of water, before cut-off, where the incoming mode is known:
     /// every pressure is relative to its largest pressure (antinode) in the water there.
     ///
-    /// Errors ([`Error::Domain`]): mode 0; a slope that is not between 0 and pi/4, or so steep that
-    /// `eps` exceeds 1; a reference depth that does not trap the mode.
+    /// Errors ([`Error::Domain`]): mode 0; a slope that is not between 0 and pi/4; a reference depth
+    /// that does not trap the mode. [`Error::Undecided`]: so steep that `eps` exceeds 1.
     pub fn upslope(
         &self,
         mode: u32,
@@ -260,81 +267,100 @@ impl AcousticGuide {
             ));
         }
         let gradient = slope_rad.tan();
-        let (q_real, q) = self.q();
-        let k_bottom = self.bottom_wavenumber();
-        let sloping = SlopingGuide::new(mode, self.density_ratio, k_bottom * 2.0 * gradient / q)?;
-        let incoming = sloping.adiabatic(q * reference_depth_m)?;
-        Ok(ModeCutOff {
-            sloping,
-            sign: if mode.is_multiple_of(2) { -1.0 } else { 1.0 },
-            gradient,
-            density_ratio: self.density_ratio,
-            cutoff_depth_m,
-            reference_depth_m,
-            k_bottom,
-            q,
-            eps: 2.0 * self.k_bottom * gradient / q_real,
-            incoming_exponent: incoming.exponent,
-            incoming_antinode: incoming.antinode,
-            layer_height_m: (2.0 * self.k_bottom * q_real * q_real * gradient / self.density_ratio)
-                .powf(-1.0 / 3.0),
-        })
+        let profile = Profile::plane(cutoff_depth_m, gradient)?;
+        self.along(mode, profile, (cutoff_depth_m - reference_depth_m) / gradient)
+    }
+
+    /// A mode going through its cut-off along a track of the caller's own; ranges are those of the
+    /// profile, widths its depths in m.
+    ///
+    /// Every pressure is relative to the mode's largest pressure in the water at `reference_range_m`,
+    /// before cut-off. How the profile is smoothed round the cut-off: see [`Profile`] and
+    /// [`Passage::fit_departure`].
+    ///
+    /// Errors: [`Error::Domain`] for mode 0 and a reference range that is not on the profile and before
+    /// cut-off; [`Error::Undecided`] where the mode is not cut off on the profile, or this narrows or bends too fast
+    /// there (the message says how fast, with `eps`).
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, Profile, TwoLayer, level_db};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let (ranges, depths) = ([0.0, 600.0, 1200.0, 1800.0, 2400.0], [60.0, 48.0, 35.0, 21.0, 6.0]);
+    /// let run = guide.along(2, Profile::from_samples(&ranges, &depths)?, 0.0)?;
+    /// // Cut off in 27.0 m (textbook modal relation, 1.5 pi/q).
+    /// assert!((run.depth_m(run.cutoff_range_m()) - 27.0).abs() < 0.1);
+    /// let level = level_db(run.pressure_uniform(1800.0, 10.0)?.value);
+    /// assert!(level < -5.0); // the water is left
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
+    pub fn along(
+        &self,
+        mode: u32,
+        profile: Profile,
+        reference_range_m: f64,
+    ) -> Result<ModeCutOff, Error> {
+        self.cutoff_depth_m(mode)?;
+        let number = ModeNumber { n: mode, even: false };
+        let passage = Passage::new(self.media(), number, profile, reference_range_m)?;
+        Ok(ModeCutOff { passage })
     }
 }
 
-/// A mode that goes upslope through its cut-off on a bed of constant slope.
+/// A mode that goes upslope through its cut-off.
 ///
-/// Ranges are counted in m from the (loss-free) cut-off, negative before it, and depths in m from
-/// the surface.
-#[derive(Clone, Copy, Debug, PartialEq)]
+/// Ranges in m are those of the profile ([`AcousticGuide::along`]) or counted from the (loss-free)
+/// cut-off ([`AcousticGuide::upslope`]), depths in m from the surface. What is not particular to sound is
+/// at the [`passage`](Self::passage), in metres too.
+#[derive(Clone, Debug)]
 pub struct ModeCutOff {
-    sloping: SlopingGuide,
-    sign: f64,
-    gradient: f64,
-    density_ratio: f64,
-    cutoff_depth_m: f64,
-    reference_depth_m: f64,
-    k_bottom: Complex64,
-    q: Complex64,
-    eps: f64,
-    incoming_exponent: Complex64,
-    incoming_antinode: Complex64,
-    layer_height_m: f64,
+    passage: Passage,
 }
 
 impl ModeCutOff {
     /// With the uniform field to the given order in `eps` (without a call: [`Order::Next`]).
     pub fn order(self, order: Order) -> Self {
-        ModeCutOff { sloping: self.sloping.order(order), ..self }
+        ModeCutOff { passage: self.passage.order(order) }
+    }
+
+    /// The mode's passage through cut-off: beam, energy, levels; all lengths in m.
+    pub fn passage(&self) -> &Passage {
+        &self.passage
     }
 
     /// Depth of the water in m where the mode is cut off (without loss).
     pub fn cutoff_depth_m(&self) -> f64 {
-        self.cutoff_depth_m
+        self.passage.cutoff_width()
+    }
+
+    /// Range in m of the cut-off (without loss), on the smoothed profile.
+    pub fn cutoff_range_m(&self) -> f64 {
+        self.passage.cutoff_range()
     }
 
     /// `L_z`: height in m over which the field at cut-off reaches into the bottom.
     pub fn layer_height_m(&self) -> f64 {
-        self.layer_height_m
+        self.passage.layer_height()
     }
 
     /// `L_s`: range in m over which the mode turns into a beam.
     pub fn layer_range_m(&self) -> f64 {
-        2.0 * self.k_bottom.re * self.layer_height_m * self.layer_height_m
+        self.passage.layer_range()
     }
 
     /// The small parameter `eps = 2 k_b g/sqrt(k_w^2 - k_b^2)`, the same at every frequency and for
     /// every mode; [`pressure_uniform`](Self::pressure_uniform) is good to a per cent or so up to 0.1.
     pub fn eps(&self) -> f64 {
-        self.eps
+        self.passage.eps()
     }
 
     /// Angle in rad between the beam's axis and the bed, from the small-angle formula
     /// `[((c_b/c_w)^2 - 1) (rho_b/rho_w) g]^(1/3)`: no frequency and no mode number in it.
     pub fn take_off_angle_small_rad(&self) -> f64 {
-        let k = self.k_bottom.re;
-        // The radiated momentum density 4 p^2 exp(-(4/3) p^3) peaks at p = 2^(-1/3).
-        0.5f64.cbrt() / (self.layer_height_m * k)
+        self.passage.take_off_angle_small_rad()
     }
 
     /// The same angle with the exact relation `k_b sin(theta) = p/L_z`.
@@ -342,105 +368,43 @@ impl ModeCutOff {
     /// Errors: [`Error::Domain`] where no such angle exists; the one-way equation has long failed
     /// there.
     pub fn take_off_angle_rad(&self) -> Result<f64, Error> {
-        let sine = self.take_off_angle_small_rad();
-        if sine > 1.0 {
-            return Err(Error::domain(
-                "sine of the take-off angle",
-                sine,
-                "take a gentler slope or a weaker contrast",
-            ));
-        }
-        Ok(sine.asin())
+        self.passage.take_off_angle_rad()
     }
 
-    /// Depth of the water in m at a range from cut-off in m (zero or less beyond the shore).
+    /// Depth of the water in m at a range in m.
     pub fn depth_m(&self, range_m: f64) -> f64 {
-        self.cutoff_depth_m - self.gradient * range_m
+        self.passage.profile().width(range_m)
     }
 
     /// The layer's coordinates `(t, y)` of a place, complex with losses; `y` is counted into the
     /// bottom.
     pub fn layer_coordinates(&self, range_m: f64, depth_m: f64) -> (Complex64, Complex64) {
-        let gamma = self.q * self.q * (self.gradient / self.density_ratio);
-        let height = (self.k_bottom * 2.0 * gamma).powf(-1.0 / 3.0);
-        let along = self.k_bottom * 2.0 * height * height;
-        let water = self.depth_m(range_m);
-        let t = (self.sloping.cutoff_width() / self.q - water) / (along * self.gradient);
-        (t, (depth_m - water) / height)
+        self.passage.layer_coordinates(range_m, depth_m)
     }
 
     /// Pressure from the boundary-layer formula, relative to the incoming mode's antinode at the
-    /// reference depth; good within a few [`layer_range_m`](Self::layer_range_m) of cut-off, to
+    /// reference; good within a few [`layer_range_m`](Self::layer_range_m) of cut-off, to
     /// some `eps^(1/3)`. With losses `t` of
     /// [`layer_coordinates`](Self::layer_coordinates) has an imaginary part, the larger the gentler
     /// the slope: beyond 1 or so only [`pressure_uniform`](Self::pressure_uniform) is right.
     ///
     /// Cheap: one pair of Airy functions, in closed form.
     ///
-    /// Errors: [`Error::Domain`] for figures that are not finite, a place above the surface or
-    /// beyond the shore; [`Error::NoDigits`] hopelessly far from cut-off.
+    /// Errors: as [`Passage::field_in_layer`].
     pub fn pressure_layer(&self, range_m: f64, depth_m: f64) -> Result<Complex64, Error> {
-        let water = self.check(range_m, depth_m)?;
-        let in_bottom = depth_m >= water;
-        let (t, y) = self.layer_coordinates(range_m, if in_bottom { depth_m } else { water });
-        let u = bound_extended(t, y)?.u;
-        let eps = self.q.inv() * self.k_bottom * (2.0 * self.gradient);
-        let size =
-            (-I * FRAC_PI_4).exp() * eps.powf(1.0 / 6.0) * self.density_ratio.powf(-2.0 / 3.0);
-        let profile = if in_bottom {
-            1.0
-        } else {
-            self.sign * (self.sloping.cutoff_width() * depth_m / water).sin()
-        };
-        Ok((u * (size * profile) * self.relative(range_m)).to_complex())
+        self.passage.field_in_layer(range_m, depth_m)
     }
 
-    /// Pressure from the uniform field, relative to the incoming mode's antinode at the reference
-    /// depth; good before, at and after cut-off, at any distance from it.
+    /// Pressure from the uniform field, relative to the incoming mode's antinode at the reference;
+    /// good before, at and after cut-off, at any distance from it.
     ///
-    /// The error figure is that of the integral (relative 1e-9 is asked for). The formula itself is
-    /// good to about `eps^2` in the bottom (0.2 % at `eps = 0.02`, 1 to 4 % at 0.1) and somewhat
-    /// less in the water late after cut-off, beside a constant phase of about `eps/2`: see
-    /// `tests/guide_pde.rs`.
+    /// The error figure is that of the integral; the formula itself is good to about `eps^2` in the
+    /// bottom (0.2 % at `eps = 0.02`, 1 to 4 % at 0.1) and somewhat less in the water late after cut-off,
+    /// beside a constant phase of about `eps/2`: [`Passage::departure`] measures it.
     ///
-    /// Cost: 0.1 to 0.7 ms at any frequency; 2 ms where the densities differ and `eps` is 0.1.
-    ///
-    /// Errors: as [`pressure_layer`](Self::pressure_layer); [`Error::Undecided`] for a bottom lighter
-    /// than the water where the Brewster angle lies in the beam; what [`crate::Integral::quadrature`]
-    /// refuses.
+    /// Cost and errors: as [`Passage::field`].
     pub fn pressure_uniform(&self, range_m: f64, depth_m: f64) -> Result<Estimate, Error> {
-        let water = self.check(range_m, depth_m)?;
-        let field = if depth_m >= water {
-            self.sloping.outside(self.q * water, self.q * (depth_m - water))?
-        } else {
-            self.sloping.inside(self.q * water, self.q * depth_m)?
-        };
-        Ok(times(field.quadrature(1e-9)?, self.relative(range_m)))
-    }
-
-    /// From a field of unit energy, without its carrier, to pressure relative to the incoming mode.
-    fn relative(&self, range_m: f64) -> Scaled {
-        let from_reference = (self.reference_depth_m - self.depth_m(range_m)) / self.gradient;
-        Scaled::exp(I * self.k_bottom * from_reference - self.incoming_exponent)
-            * (self.incoming_antinode.inv() * self.sign)
-    }
-
-    /// Refuses places without a field; returns the depth of the water.
-    fn check(&self, range_m: f64, depth_m: f64) -> Result<f64, Error> {
-        Error::require_finite("range_m", range_m)?;
-        Error::require_finite("depth_m", depth_m)?;
-        if depth_m < 0.0 {
-            return Err(Error::domain(
-                "depth_m",
-                depth_m,
-                "count depths downwards from the surface",
-            ));
-        }
-        let water = self.depth_m(range_m);
-        if water <= 0.0 {
-            return Err(Error::domain("range_m", range_m, "stay before the shore"));
-        }
-        Ok(water)
+        self.passage.field(range_m, depth_m)
     }
 }
 

@@ -33,11 +33,15 @@
 //!   `artanh(m tanh w)` below `Im w = pi/4` and `artanh(coth(w)/m) + i pi/2` above, the same
 //!   function there, and so on with the period `i pi`.
 //!
+//! Modes that are even in `x` have `(n - 1) pi` in place of `(n - 1/2) pi` and a cosine for the sine.
+//!
 //! Source: derived here.
 
+use super::curve::Curve;
 use crate::Complex64;
 use crate::integral::{Amplitude, Phase};
 use std::f64::consts::{FRAC_PI_2, FRAC_PI_4, PI};
+use std::sync::Arc;
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
 
@@ -47,7 +51,7 @@ const PASSES_LEFT: f64 = 0.7;
 /// Mode number and density ratio.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) struct Dispersion {
-    /// `(n - 1/2) pi`, the width at cut-off.
+    /// `(n - 1/2) pi`, or `(n - 1) pi` for a mode that is even in `x`: the width at cut-off.
     pub cutoff: f64,
     /// Density inside over density outside.
     pub m: f64,
@@ -56,6 +60,22 @@ pub(super) struct Dispersion {
 impl Dispersion {
     pub(super) fn new(mode: u32, m: f64) -> Self {
         Dispersion { cutoff: (f64::from(mode) - 0.5) * PI, m }
+    }
+
+    /// The same for modes that are even in `x`.
+    pub(super) fn even(mode: u32, m: f64) -> Self {
+        Dispersion { cutoff: (f64::from(mode) - 1.0) * PI, m }
+    }
+
+    /// How far to the left of `i pi/2` the contour crosses the line `Im w = pi/2`.
+    pub(super) fn gate(&self) -> f64 {
+        if self.passes_left() {
+            self.m.atanh() + 0.35
+        } else if self.m < 1.0 {
+            (0.5 * self.m.atanh()).min(0.5)
+        } else {
+            0.5
+        }
     }
 
     /// `beta(w)`, continuous along the contour; `beta(w + i pi) = beta(w) + i pi`.
@@ -75,6 +95,25 @@ impl Dispersion {
             } else {
                 slope.inv().atanh() + I * FRAC_PI_2.copysign(below.im)
             }
+    }
+
+    /// Distance from the pole of the width and from the branch cuts.
+    pub(super) fn clearance(&self, w: Complex64) -> f64 {
+        // All of it repeats with the period i pi.
+        let folded = (w.im - PI * (w.im / PI).round()).abs();
+        let above = FRAC_PI_2 - folded;
+        let pole = above.hypot(w.re);
+        let beyond = |gap: f64| gap.max(0.0);
+        if self.m == 1.0 {
+            pole
+        } else if self.m > 1.0 {
+            let brewster = self.m.recip().atanh();
+            pole.min(folded.hypot(beyond(brewster - w.re.abs())))
+        } else if self.passes_left() {
+            above.hypot(beyond(-self.m.atanh() - w.re))
+        } else {
+            pole.min(above.hypot(beyond(self.m.atanh() - w.re.abs())))
+        }
     }
 
     /// Whether the contour passes to the left of `i pi/2 - artanh m`.
@@ -157,7 +196,7 @@ fn moment(w: Complex64) -> Complex64 {
 }
 
 /// The phase of the uniform field, `f = turn (phi(p) - p^2 r + p d)` as a function of `w`.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct ModePhase {
     pub(super) dispersion: Dispersion,
     /// Width of the guide at this range.
@@ -166,29 +205,45 @@ pub struct ModePhase {
     pub(super) d: Complex64,
     /// `|eps|/eps`, so that the wavenumber `1/|eps|` is real.
     pub(super) turn: Complex64,
+    /// The bend of the profile, if it has one.
+    pub(super) curve: Option<Arc<Curve>>,
+    /// Range less `h_c - h`: zero on a straight profile.
+    pub(super) lag: Complex64,
 }
 
 impl Phase for ModePhase {
     fn value_and_derivative(&self, w: Complex64) -> (Complex64, Complex64) {
         let (p, kappa) = (w.sinh(), w.cosh());
-        let value = self.dispersion.action(w, self.h) + p * self.d;
-        (value * self.turn, self.slope(p, kappa, self.dispersion.beta(w)) * self.turn)
+        let slope = self.slope(w, p, kappa, self.dispersion.beta(w));
+        (self.value(w), slope * self.turn)
     }
 
     fn value(&self, w: Complex64) -> Complex64 {
-        (self.dispersion.action(w, self.h) + w.sinh() * self.d) * self.turn
+        let p = w.sinh();
+        let mut value = self.dispersion.action(w, self.h) + p * self.d;
+        if let Some(curve) = &self.curve {
+            value += curve.phase(w) - p * p * self.lag;
+        }
+        value * self.turn
     }
 
     fn jet(&self, w: Complex64) -> [Complex64; 3] {
         let (p, kappa) = (w.sinh(), w.cosh());
         let beta = self.dispersion.beta(w);
         let Dispersion { cutoff, m } = self.dispersion;
-        let value = self.dispersion.action(w, self.h) + p * self.d;
         let excess = self.h * kappa - cutoff + I * beta;
-        let second = kappa * excess * 2.0
+        let mut second = kappa * excess * 2.0
             + p * 2.0 * (self.h * p + I * m / self.dispersion.density(p))
             + p * self.d;
-        [value, self.slope(p, kappa, beta), second].map(|x| x * self.turn)
+        if let Some(curve) = &self.curve {
+            let width = self.dispersion.width(w);
+            let (g, slope) = curve.excess(cutoff - width);
+            let turning = self.dispersion.width_slope(w, width) * kappa;
+            second += (p * p + kappa * kappa) * (g - self.lag) * 2.0;
+            second -= p * kappa * slope * turning * 2.0;
+        }
+        let slope = self.slope(w, p, kappa, beta);
+        [self.value(w), slope * self.turn, second * self.turn]
     }
 
     fn noise_scale(&self, w: Complex64) -> f64 {
@@ -202,19 +257,26 @@ impl Phase for ModePhase {
             2.0 * (w.cosh() * self.dispersion.beta(w)).norm()
                 + 2.0 * m * self.dispersion.s(w).norm()
         };
-        even + odd + (p * self.d).norm()
+        let bend =
+            self.curve.as_ref().map_or(0.0, |c| c.phase(w).norm() + (p * p * self.lag).norm());
+        even + odd + (p * self.d).norm() + bend
     }
 }
 
 impl ModePhase {
     /// `df/dw` without the turn.
-    fn slope(&self, p: Complex64, kappa: Complex64, beta: Complex64) -> Complex64 {
-        p * 2.0 * (self.h * kappa - self.dispersion.cutoff + I * beta) + kappa * self.d
+    fn slope(&self, w: Complex64, p: Complex64, kappa: Complex64, beta: Complex64) -> Complex64 {
+        let straight = p * 2.0 * (self.h * kappa - self.dispersion.cutoff + I * beta);
+        let bend = match &self.curve {
+            Some(curve) => curve.rate(w) - p * kappa * self.lag * 2.0,
+            None => Complex64::new(0.0, 0.0),
+        };
+        straight + bend + kappa * self.d
     }
 }
 
 /// The amplitude of the uniform field with respect to `dw`, inside or outside.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct ModeAmplitude {
     pub(super) dispersion: Dispersion,
     /// Width of the guide at this range.
@@ -223,13 +285,26 @@ pub struct ModeAmplitude {
     pub(super) eps: Complex64,
     /// Where the field is wanted.
     pub(super) side: Side,
+    /// The bend of the profile, if it has one.
+    pub(super) curve: Option<Arc<Curve>>,
 }
 
 /// Inside at `x`, or outside (at the distance that the phase holds).
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) enum Side {
-    Inside { x: Complex64 },
+    /// `sin(kappa x)`, or `cos(kappa x)` for a mode that is even in `x`.
+    Inside {
+        x: Complex64,
+        even: bool,
+    },
+    /// The derivative of that with respect to `x`.
+    InsideSlope {
+        x: Complex64,
+        even: bool,
+    },
     Outside,
+    /// The derivative with respect to the distance.
+    OutsideSlope,
 }
 
 impl Amplitude for ModeAmplitude {
@@ -237,17 +312,34 @@ impl Amplitude for ModeAmplitude {
         let (p, kappa) = (w.sinh(), w.cosh());
         let m = self.dispersion.m;
         let d = self.dispersion.density(p);
+        let bent = self.curve.is_some() || matches!(self.side, Side::Outside | Side::OutsideSlope);
+        let width = if bent { self.dispersion.width(w) } else { self.h };
+        // The local slope over that at cut-off is 1/flatness.
+        let (root, eps) = match &self.curve {
+            Some(curve) => {
+                let flatness = curve.flatness(self.dispersion.cutoff - width);
+                (flatness.sqrt(), self.eps / flatness)
+            }
+            None => (Complex64::new(1.0, 0.0), self.eps),
+        };
+        // p D^(-1/2) sin(kappa x)/sin(kappa h_n) dp, sin(kappa h_n) = kappa/sqrt(D) up to sign.
+        let inside = || (p + eps * m / (d * 12.0)) * root;
         match self.side {
-            // p D^(-1/2) sin(kappa x)/sin(kappa h_n) dp, sin(kappa h_n) = kappa/sqrt(D) up to sign.
-            Side::Inside { x } => (p + self.eps * m / (d * 12.0)) * (kappa * x).sin(),
-            Side::Outside => {
-                let width = self.dispersion.width(w);
+            Side::Inside { x, even: false } => inside() * (kappa * x).sin(),
+            Side::Inside { x, even: true } => inside() * (kappa * x).cos(),
+            Side::InsideSlope { x, even: false } => inside() * (kappa * x).cos() * kappa,
+            Side::InsideSlope { x, even: true } => -inside() * (kappa * x).sin() * kappa,
+            Side::Outside | Side::OutsideSlope => {
                 let mut factor = p;
                 if self.eps != Complex64::new(0.0, 0.0) {
                     let bend = self.dispersion.width_slope(w, width) * I * 0.25;
-                    factor += self.eps * ((6.0 - 5.0 * m) / (d * 12.0) + bend);
+                    factor += eps * ((6.0 - 5.0 * m) / (d * 12.0) + bend);
                 }
-                factor * (I * p * (self.h - width)).exp() * kappa / self.dispersion.root_density(w)
+                if self.side == Side::OutsideSlope {
+                    factor *= I * p;
+                }
+                factor * root * (I * p * (self.h - width)).exp() * kappa
+                    / self.dispersion.root_density(w)
             }
         }
     }
@@ -262,8 +354,10 @@ mod tests {
     fn jump(dispersion: Dispersion, points: &[Complex64]) -> f64 {
         let one = Complex64::new(1.0, 0.0);
         let h = one * dispersion.cutoff;
-        let phase = ModePhase { dispersion, h, d: one * 0.1, turn: one };
-        let amplitude = ModeAmplitude { dispersion, h, eps: one * 0.1, side: Side::Outside };
+        let lag = Complex64::new(0.0, 0.0);
+        let phase = ModePhase { dispersion, h, d: one * 0.1, turn: one, curve: None, lag };
+        let eps = one * 0.1;
+        let amplitude = ModeAmplitude { dispersion, h, eps, side: Side::Outside, curve: None };
         let mut worst = 0.0f64;
         for ends in points.windows(2) {
             let at = |j: i32| ends[0] + (ends[1] - ends[0]) * (f64::from(j) / 4000.0);
@@ -284,13 +378,7 @@ mod tests {
     fn no_branch_is_crossed_on_the_contour() {
         let c = Complex64::new;
         for m in [0.3f64, 0.55, 0.69, 0.71, 0.9, 1.0, 1.3] {
-            let gate = if m < PASSES_LEFT {
-                m.atanh() + 0.35
-            } else if m < 1.0 {
-                0.5 * m.atanh()
-            } else {
-                0.5
-            };
+            let gate = Dispersion::new(1, m).gate();
             let right = if m > 1.0 { c(0.9 * m.recip().atanh(), 0.0) } else { c(1.5, 0.7) };
             let contour = [c(-1.9, 2.356), c(-gate, FRAC_PI_2), c(0.1, 0.3), right];
             for n in [1, 3] {
@@ -306,7 +394,11 @@ mod tests {
             let h = Complex64::new(1.4, -0.02);
             let turn = Complex64::from_polar(1.0, -0.03);
             let d = Complex64::new(0.3, 0.01);
-            let phase = ModePhase { dispersion: Dispersion::new(2, m), h, d, turn };
+            let dispersion = Dispersion::new(2, m);
+            let higher = vec![Complex64::new(0.2, 0.01), Complex64::new(-0.05, 0.0)];
+            let curve = Some(Arc::new(Curve::new(dispersion, higher)));
+            let lag = Complex64::new(0.1, 0.02);
+            let phase = ModePhase { dispersion, h, d, turn, curve, lag };
             for w in
                 [Complex64::new(0.1, 0.2), Complex64::new(-0.7, 1.2), Complex64::new(-1.6, 2.2)]
             {

@@ -22,6 +22,7 @@
 //!     bottom_speed_m_per_s: 1700.0,
 //!     water_density_kg_per_m3: 1000.0,
 //!     bottom_density_kg_per_m3: 1900.0,
+//!     water_attenuation_db_per_wavelength: 0.0,
 //!     bottom_attenuation_db_per_wavelength: 0.5,
 //! })?;
 //! let cut_off = guide.upslope(1, (1f64 / 40.0).atan(), 40.0)?;
@@ -41,10 +42,30 @@
 //! shear and are not uniform. Local rules and licensed practice decide.
 
 mod acoustic;
+mod adiabatic;
+mod beam;
+mod contour;
+mod curve;
 mod dispersion;
 pub mod layer;
+mod passage;
+mod profile;
+mod revival;
+mod sensitivity;
+mod slab;
+mod source;
 mod uniform;
+mod well;
 
 pub use acoustic::{AcousticGuide, CutOffPlace, ModeCutOff, TwoLayer, level_db};
+pub use adiabatic::Adiabatic;
+pub use beam::{Beam, Footprint};
 pub use dispersion::{ModeAmplitude, ModePhase};
-pub use uniform::{Adiabatic, Order, SlopingGuide, UniformField};
+pub use passage::{Passage, Station};
+pub use profile::Profile;
+pub use revival::revival;
+pub use sensitivity::{Sensitivities, sensitivities};
+pub use slab::{Polarization, Slab, SlabGuide};
+pub use source::SourceField;
+pub use uniform::{Order, SlopingGuide, UniformField};
+pub use well::QuantumWell;

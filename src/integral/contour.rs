@@ -1,4 +1,4 @@
-//! Contours: a path of points whose ends are finite or run on downhill to infinity.
+//! Contours: a path of points, closed or with ends that are finite or run on downhill to infinity.
 
 use crate::Error;
 use num_complex::Complex64;
@@ -12,6 +12,8 @@ pub enum Termination {
     Downhill,
     /// The contour ends at the point: a finite end point.
     Finite,
+    /// The contour comes back to where it began: no end at all.
+    Closed,
 }
 
 /// A path of straight pieces in the complex plane.
@@ -47,7 +49,15 @@ impl Contour {
         Contour::new(points, Termination::Downhill, Termination::Finite)
     }
 
-    fn new(
+    /// Round through the points and back to the first: a closed contour, counterclockwise if the
+    /// points are given so. The integrand has to come back to its value, too.
+    pub fn closed(points: impl IntoIterator<Item = Complex64>) -> Self {
+        let mut points: Vec<Complex64> = points.into_iter().collect();
+        points.extend(points.first().copied());
+        Contour::new(points, Termination::Closed, Termination::Closed)
+    }
+
+    pub(crate) fn new(
         points: impl IntoIterator<Item = Complex64>,
         start: Termination,
         end: Termination,
@@ -57,7 +67,7 @@ impl Contour {
         Contour { points, start, end }
     }
 
-    /// The points, without repeated neighbours.
+    /// The points, without repeated neighbours; a closed contour ends with its first point.
     pub fn points(&self) -> &[Complex64] {
         &self.points
     }
@@ -72,7 +82,12 @@ impl Contour {
         self.end
     }
 
-    /// Refuses fewer than two points and coordinates that are not finite.
+    /// Whether it comes back to where it began.
+    pub fn is_closed(&self) -> bool {
+        self.start == Termination::Closed
+    }
+
+    /// Refuses fewer than two points (closed: three) and coordinates that are not finite.
     pub(crate) fn check(&self) -> Result<(), Error> {
         if let Some(&z) = self.points.iter().find(|z| !z.re.is_finite() || !z.im.is_finite()) {
             return Err(Error::Domain {
@@ -81,6 +96,13 @@ impl Contour {
                 remedy: "give finite points; an end at infinity is written as a point in its \
                          valley from which the contour runs on downhill",
             });
+        }
+        if self.is_closed() && self.points.len() < 4 {
+            return Err(Error::domain(
+                "number of distinct points of a closed contour",
+                self.points.len().saturating_sub(1) as f64,
+                "give three or more",
+            ));
         }
         if self.points.len() < 2 {
             return Err(Error::domain(

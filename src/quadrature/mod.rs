@@ -11,6 +11,7 @@ mod panels;
 mod residue;
 mod rule;
 mod terrain;
+mod unrolled;
 
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::{Error, Estimate, Form, Scaled};
@@ -82,7 +83,16 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         Error::require_positive("k", k)?;
         Error::require_positive("tolerance", tolerance)?;
         self.contour().check()?;
+        self.check_powers()?;
         let tolerance = tolerance.clamp(f64::EPSILON, 0.1);
+        if self.is_algebraic() {
+            return self.unrolled(k).on_flowed_contour(k, tolerance);
+        }
+        self.on_flowed_contour(k, tolerance)
+    }
+
+    /// The integral of an integrand without algebraic ends.
+    fn on_flowed_contour(&self, k: f64, tolerance: f64) -> Result<Estimate, Error> {
         let sampler = Sampler::new(self);
         // Residues that are smaller than this against the amplitude are not looked for.
         let fraction = (1e-3 * tolerance).clamp(1e-12, 1e-6);

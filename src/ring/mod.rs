@@ -15,10 +15,12 @@
 //! saddles; N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353 for the integration by parts;
 //! Weierstrass division is textbook material.
 
+mod based;
 mod division;
 mod normal_form;
 mod orders;
 
+pub(crate) use based::{BasedForm, BasedOrders, MAX_DEGREE};
 pub use division::divide;
 pub use normal_form::NormalForm;
 pub use orders::{MAX_ORDERS, Orders, Start};
@@ -106,4 +108,34 @@ pub(crate) fn tail(full: &Values, from: usize, least: f64) -> f64 {
     let all = largest(&full[from..KEPT]).max(least * least);
     let rest = largest(&full[KEPT * 3 / 4..]);
     if all > 0.0 && all.is_finite() { (rest / all).sqrt() } else { f64::INFINITY }
+}
+
+/// `v` with `z(v) = z` for a map given by its coefficients, by Newton's method from `start`; None if it
+/// leaves the neighbourhood of the disc.
+pub(crate) fn preimage(map: &Coefficients, z: Complex64, start: Complex64) -> Option<Complex64> {
+    let mut v = start;
+    let size = map[1].norm();
+    for _ in 0..40 {
+        let (mut value, mut slope) = (ZERO, ZERO);
+        for &c in map.iter().rev() {
+            slope = slope * v + value;
+            value = value * v + c;
+        }
+        let mut step = (z - value) / slope;
+        if !(step.re.is_finite() && step.im.is_finite()) {
+            return None;
+        }
+        if step.norm() > 0.3 {
+            step *= 0.3 / step.norm();
+        }
+        v += step;
+        if v.norm() > 1.3 {
+            return None;
+        }
+        if step.norm() < 1e-15 || (z - value).norm() < 1e-16 * size {
+            return Some(v);
+        }
+    }
+    // Rounding may keep the last digit in motion.
+    ((z - evaluate(map, v)).norm() < 1e-13 * (size + z.norm())).then_some(v)
 }

@@ -36,7 +36,7 @@ pub struct Orders {
 }
 
 /// Taylor coefficients of the unit-modulus noise; the same for every ring.
-fn unit_noise() -> &'static Coefficients {
+pub(super) fn unit_noise() -> &'static Coefficients {
     static ONCE: OnceLock<Coefficients> = OnceLock::new();
     ONCE.get_or_init(|| {
         // Weyl's sequence with the golden ratio: equidistributed angles.

@@ -10,10 +10,21 @@ fn cross(a: Complex64, b: Complex64) -> f64 {
 /// crossings from left to right.
 pub(crate) fn crossings(ridge: &[Complex64], path: &[Complex64]) -> i32 {
     let mut count = 0;
-    for r in ridge.windows(2) {
+    each_crossing(ridge, path, |sign, _, _| count += sign);
+    count
+}
+
+/// Calls `take` with the sign of each crossing and the pieces of the ridge and of the path on which it
+/// lies.
+pub(crate) fn each_crossing(
+    ridge: &[Complex64],
+    path: &[Complex64],
+    mut take: impl FnMut(i32, usize, usize),
+) {
+    for (i, r) in ridge.windows(2).enumerate() {
         let (low_re, high_re) = (r[0].re.min(r[1].re), r[0].re.max(r[1].re));
         let (low_im, high_im) = (r[0].im.min(r[1].im), r[0].im.max(r[1].im));
-        for p in path.windows(2) {
+        for (j, p) in path.windows(2).enumerate() {
             if p[0].re.max(p[1].re) < low_re
                 || p[0].re.min(p[1].re) > high_re
                 || p[0].im.max(p[1].im) < low_im
@@ -32,11 +43,10 @@ pub(crate) fn crossings(ridge: &[Complex64], path: &[Complex64]) -> i32 {
             let start_left = cross(step, r[0] - p[0]) >= 0.0;
             let end_left = cross(step, r[1] - p[0]) >= 0.0;
             if start_left != end_left {
-                count += if to_left { 1 } else { -1 };
+                take(if to_left { 1 } else { -1 }, i, j);
             }
         }
     }
-    count
 }
 
 #[cfg(test)]

@@ -30,7 +30,7 @@ const HALVINGS: u32 = 24;
 /// // f = z^3/3 - x z: saddles at +-sqrt x (elementary), followed past each other's distance.
 /// let family = |x: f64| move |z: Complex64| (z * z * z / 3.0 - z * x, z * z - x);
 /// let region = Region { low: Complex64::new(-3.1, -1.0), high: Complex64::new(3.0, 1.1) };
-/// let start = locate(&family(4.0), region, 0)?;
+/// let start = locate(&family(4.0), region)?;
 /// let paths = follow(family, &[4.0, 1.0, 0.25], &start)?;
 /// for (path, saddle) in paths[2].iter().zip(&start) {
 ///     assert!((path.z - saddle.z * 0.25).norm() < 1e-12); // +-0.5 from +-2

@@ -7,8 +7,10 @@
 //!
 //! Regions. Merged saddles come out as several points within about the root of the rounding error
 //! of their centre: good enough as a start for the ring, which never uses their differences.
-//! Rectangles whose count cannot be made (a branch cut or a pole of `f` on the boundary) are
-//! quartered a few times and then only searched by Newton's method from their centre.
+//! Poles of `f'` count against its zeros; a count is believed where the mean of `f'` over the circle
+//! round the rectangle is its value at the centre. Rectangles that cannot be counted (a branch cut
+//! or a pole of `f`) are quartered a few times and then only searched by Newton's method from their
+//! centre.
 //!
 //! Source: argument principle, textbook; O. Aberth, Math. Comp. 27 (1973) 339.
 
@@ -85,13 +87,10 @@ pub struct Saddle {
 const RECTANGLES: usize = 3000;
 /// Depth of quartering where the count is clean.
 const DEPTH: u32 = 18;
-/// Depth of quartering where it is not.
-const UNCOUNTED_DEPTH: u32 = 4;
+/// Depth of quartering where it is not, or where `f'` may have a pole.
+const POLE_DEPTH: u32 = 5;
 
 /// All zeros of `f'` in the region, multiple ones repeated.
-///
-/// Poles of `f'` count against its zeros: where the phase may have some, `finest` says how often
-/// the region is quartered before a count of zero is believed (0 for an entire phase).
 ///
 /// # Errors
 /// If the saddles can't be told apart within a bounded number of rectangles.
@@ -101,12 +100,12 @@ const UNCOUNTED_DEPTH: u32 = 4;
 /// // f = z^3/3 - z has its saddles at +-1 (elementary).
 /// let f = |z: Complex64| (z.powi(3) / 3.0 - z, z * z - 1.0);
 /// let region = Region { low: Complex64::new(-2.1, -1.0), high: Complex64::new(2.0, 1.2) };
-/// let found = locate(&f, region, 0)?;
+/// let found = locate(&f, region)?;
 /// assert_eq!(found.len(), 2);
 /// assert!(found.iter().all(|s| (s.z * s.z - 1.0).norm() < 1e-12));
 /// # Ok::<(), merging_saddles::Error>(())
 /// ```
-pub fn locate(phase: &dyn Phase, region: Region, finest: u32) -> Result<Vec<Saddle>, Error> {
+pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
     let mut found: Vec<Complex64> = Vec::new();
     let mut stack = vec![(region, 0u32)];
     let mut seen = 0;
@@ -121,9 +120,10 @@ pub fn locate(phase: &dyn Phase, region: Region, finest: u32) -> Result<Vec<Sadd
                 remedy: "give a contour that stays closer to where the saddles are",
             });
         }
-        let count = winding(phase, &part);
+        // Poles of f' count against its zeros: believe a count where there is none.
+        let count = winding(phase, &part).filter(|_| depth >= POLE_DEPTH || regular(phase, &part));
         match count {
-            Some(0) if depth >= finest => continue,
+            Some(0) => continue,
             Some(n) if n > 0 && n as usize <= MAX_SADDLES => {
                 if let Some(roots) = simultaneous(phase, &part, n as usize) {
                     found.extend(&roots[..n as usize]);
@@ -134,7 +134,7 @@ pub fn locate(phase: &dyn Phase, region: Region, finest: u32) -> Result<Vec<Sadd
                     continue;
                 }
             }
-            None if depth >= UNCOUNTED_DEPTH => {
+            None if depth >= POLE_DEPTH => {
                 if let Some(roots) = simultaneous(phase, &part, 1) {
                     let new = |z: &Complex64| (z - roots[0]).norm() > 1e-7 * total;
                     if found.iter().all(new) {
@@ -171,6 +171,22 @@ fn winding(phase: &dyn Phase, region: &Region) -> Option<i64> {
     ((count - count.round()).abs() < 0.05).then(|| count.round() as i64)
 }
 
+/// Whether `f'` looks analytic in the circle round a rectangle: its mean there is the value at the
+/// centre (a pole inside spoils that, one close outside may).
+fn regular(phase: &dyn Phase, region: &Region) -> bool {
+    const POINTS: usize = 64;
+    let centre = region.centre();
+    let radius = 0.51 * (region.high - region.low).norm();
+    let (mut mean, mut size) = (Complex64::new(0.0, 0.0), 0.0f64);
+    for n in 0..POINTS {
+        let turn = Complex64::from_polar(radius, std::f64::consts::TAU * n as f64 / POINTS as f64);
+        let Some(d) = slope(phase, centre + turn) else { return false };
+        mean += d / POINTS as f64;
+        size = size.max(d.norm());
+    }
+    slope(phase, centre).is_some_and(|d| (mean - d).norm() < 1e-9 * size)
+}
+
 fn slope(phase: &dyn Phase, z: Complex64) -> Option<Complex64> {
     let (_, d) = phase.value_and_derivative(z);
     (d.re.is_finite() && d.im.is_finite() && d.norm() > 0.0).then_some(d)
@@ -185,8 +201,11 @@ fn turning(
 ) -> Option<f64> {
     let middle = (from.0 + to.0) * 0.5;
     let d = slope(phase, middle)?;
-    let (first, second) = ((d / from.1).arg(), (to.1 / d).arg());
-    if first.abs() < 0.8 && second.abs() < 0.8 {
+    let (first, second) = ((d / from.1).ln(), (to.1 / d).ln());
+    // The size may not change too much either: exp turns by whole turns over one chord.
+    let calm = first.re.abs() < 3.0 && second.re.abs() < 3.0;
+    let (first, second) = (first.im, second.im);
+    if first.abs() < 0.8 && second.abs() < 0.8 && (calm || depth < 8) {
         return Some(first + second);
     }
     if depth == 0 {
@@ -242,6 +261,6 @@ fn simultaneous(
             break;
         }
     }
-    let inside = z[..count].iter().all(|&z| region.holds(z, 0.02));
+    let inside = z[..count].iter().all(|&z| region.holds(z, 1e-6));
     (largest < 1e-5 * size && inside).then_some(z)
 }

@@ -3,11 +3,14 @@
 mod crossings;
 mod follow;
 mod locate;
+mod sheets;
 mod topology;
 mod trace;
 mod tree;
 
+pub(crate) use crossings::crossings;
 pub use follow::follow;
 pub use locate::{Region, Saddle, locate};
+pub(crate) use sheets::{Branch, Sheeting, Sheets, Unrolled};
 pub(crate) use topology::{Multiplicities, Topology};
 pub(crate) use tree::{Group, Tree};

@@ -32,20 +32,22 @@ pub(crate) type Multiplicities = [i32; MAX_SADDLES + 1];
 /// How exactly a traced point keeps the height it was sent to, in units of the drop.
 const SLACK: f64 = 0.05;
 /// The angle that the exponent is turned by.
-const DELTA: f64 = 0.03;
+pub(super) const DELTA: f64 = 0.03;
 
 /// The contour as the topology sees it.
 pub(crate) struct Topology<'a> {
-    h: Exponent<'a>,
+    pub(super) h: Exponent<'a>,
     /// The given path, its points moved by a hair so that none lies on a ridge.
-    path: Vec<Complex64>,
+    pub(super) path: Vec<Complex64>,
     /// The descents from both ends and the path, in one line: counted inside rings only.
     whole: Vec<Complex64>,
-    tails: [Vec<Complex64>; 2],
-    top: f64,
+    pub(super) tails: [Vec<Complex64>; 2],
+    /// The contour has no ends.
+    closed: bool,
+    pub(super) top: f64,
     bottom: f64,
     drop: f64,
-    longest: f64,
+    pub(super) longest: f64,
 }
 
 impl<'a> Topology<'a> {
@@ -59,11 +61,16 @@ impl<'a> Topology<'a> {
         let h = Exponent::new(phase, DELTA);
         let points = contour.points();
         let size = points.windows(2).map(|p| (p[1] - p[0]).norm()).fold(0.0, f64::max);
-        let path: Vec<Complex64> = points
+        let mut path: Vec<Complex64> = points
             .iter()
             .enumerate()
             .map(|(n, z)| z + Complex64::from_polar(1e-9 * size, 1.0 + 2.4 * n as f64))
             .collect();
+        let closed = contour.is_closed();
+        if closed {
+            let last = path.len() - 1;
+            path[last] = path[0];
+        }
         let mut top = f64::NEG_INFINITY;
         let mut bottom = f64::INFINITY;
         for side in path.windows(2) {
@@ -79,7 +86,9 @@ impl<'a> Topology<'a> {
         let deep = saddles.iter().fold(bottom, |m, s| m.min(h.of(s.value).re)) - drop;
         let tail = |from: Complex64| {
             let mut line = vec![from];
-            trace(&h, from, deep, longest, &mut line);
+            if !closed {
+                trace(&h, from, deep, longest, &mut line);
+            }
             line
         };
         let first = tail(path[0]);
@@ -92,6 +101,7 @@ impl<'a> Topology<'a> {
             tails: [first, last],
             path,
             whole,
+            closed,
             top: top + 0.02 * (top - bottom) + 1e-9,
             bottom,
             drop,
@@ -170,8 +180,10 @@ impl<'a> Topology<'a> {
     /// The certificate: do the valleys and the ends of the contour cancel?
     pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
         let mut ends = valleys.to_vec();
-        for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
-            ends.push((weight, tail[tail.len() - 1]));
+        if !self.closed {
+            for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
+                ends.push((weight, tail[tail.len() - 1]));
+            }
         }
         // An end at infinity must really be down there; a finite end that contributes has been
         // followed down like the others.
@@ -206,7 +218,7 @@ impl<'a> Topology<'a> {
     /// at once then after both have gone further down.
     fn joined(&self, a: Complex64, b: Complex64, floor: f64) -> bool {
         let (mut a, mut b) = (a, b);
-        for round in 0..3 {
+        for round in 0..5 {
             const PIECES: usize = 24;
             let below = |piece: usize| {
                 let z = a + (b - a) * (piece as f64 / PIECES as f64);
@@ -215,7 +227,12 @@ impl<'a> Topology<'a> {
             if (1..PIECES).all(below) {
                 return true;
             }
-            let deeper = floor - self.drop * 4f64.powi(round);
+            // At last the contour's own range of heights says where valleys open.
+            let deeper = if round < 3 {
+                floor - self.drop * 4f64.powi(round)
+            } else {
+                floor - (self.top - self.bottom) * 4f64.powi(round - 3)
+            };
             for z in [&mut a, &mut b] {
                 let mut line = vec![*z];
                 trace(&self.h, *z, deeper, self.longest, &mut line);
@@ -254,6 +271,26 @@ impl<'a> Topology<'a> {
         }
         let count = crossings(&path, &self.path);
         Some((path, count))
+    }
+
+    /// The highest point of each ridge's arc, in the plane of `v`.
+    pub fn ridges(&self, form: &NormalForm) -> [Option<Complex64>; MAX_SADDLES + 1] {
+        self.arcs(form).ridges
+    }
+
+    /// Points followed down below a level; None if one stalls.
+    pub fn sunk(&self, points: Vec<(i32, Complex64)>, floor: f64) -> Option<Vec<(i32, Complex64)>> {
+        let mut list = Vec::with_capacity(points.len());
+        for (weight, z) in points {
+            let mut line = vec![z];
+            if self.h.height(z) > floor
+                && trace(&self.h, z, floor, self.longest, &mut line) == Ended::Stalled
+            {
+                return None;
+            }
+            list.push((weight, line[line.len() - 1]));
+        }
+        Some(list)
     }
 
     /// The highest point of each ridge's arc on the ring, the lowest of each valley's.

@@ -45,6 +45,8 @@ impl<'a> Exponent<'a> {
 pub(crate) enum Ended {
     /// The height asked for was reached.
     Reached,
+    /// It came to a branch cut of the phase as the closure has it.
+    Cut,
     /// The bound on steps, a singularity or another saddle stopped it.
     Stalled,
 }
@@ -107,14 +109,24 @@ pub(crate) fn trace(
             bend = secant;
             shrink = 1.0;
         } else {
+            // Where the slope is smooth but the value jumps, the path leaves the sheet that the closure
+            // is on; the contour is on it, and can't be met again.
+            let jump = value - (origin + direction * t) - (slope + ahead) * step * 0.5;
+            if (ahead / slope).ln().norm() < 0.2
+                && jump.norm() > 0.5 * (size * w.norm())
+                && shrink < 0.1
+            {
+                return Ended::Cut;
+            }
             // Put the point exactly on its height and measure anew before a shorter step.
             for _ in 0..2 {
                 let [here, d, dd] = h.jet(z);
                 let polish = (origin + direction * t - here) / d;
+                (slope, bend) = (d, dd);
                 if (polish * dd / d).norm() < 0.3 {
                     z += polish;
+                    slope += dd * polish;
                 }
-                (slope, bend) = (d + dd * polish, dd);
             }
             shrink *= 0.4;
             if shrink < 1e-8 {

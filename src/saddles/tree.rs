@@ -57,10 +57,13 @@ impl Tree {
             let merged = |&g: &usize| {
                 groups[g].members.iter().any(|&m| {
                     let (a, b) = (&saddles[m], &saddles[index]);
-                    // Merged saddles have no hill between them; distant ones may agree by chance.
-                    let between = phase.value((a.z + b.z) * 0.5);
-                    (a.value - b.value).norm() < merged_below
-                        && (between - a.value).norm() < merged_below
+                    // Merged saddles have no hill between them; distant ones may agree by chance,
+                    // and halfway too where the phase is periodic.
+                    let near = |f: Complex64| (f - a.value).norm() < merged_below;
+                    near(b.value)
+                        && [0.29, 0.5, 0.77]
+                            .iter()
+                            .all(|part| near(phase.value(a.z + (b.z - a.z) * part)))
                 })
             };
             let open_to = |&g: &usize| groups[g].members.len() < largest && merged(&g);

@@ -3,3 +3,5 @@
 pub mod airy;
 pub mod cuspoid;
 pub(crate) mod double_double;
+pub mod faddeeva;
+pub mod umbilic;

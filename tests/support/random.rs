@@ -317,7 +317,8 @@ fn unnamed_poles(random: &mut Random) -> Case {
     // on the far side of both valleys' ridge lines.
     let distance = random.within(0.7, 4.0);
     let (a, b) = (random.within(-0.3, 0.3), random.within(0.2, 1.0));
-    let p = Poly::new(vec![c(0.0, 0.0), c(0.0, 0.0), c(0.5, 0.0), c(a, 0.0) * 0.2, c(b, 0.0) * 0.25]);
+    let p =
+        Poly::new(vec![c(0.0, 0.0), c(0.0, 0.0), c(0.5, 0.0), c(a, 0.0) * 0.2, c(b, 0.0) * 0.25]);
     let contour = Contour::through([p.valley(2), c(0.0, 0.0), p.valley(0)]);
     let weight = random.disc(1.0);
     let smooth = amplitude(random);

@@ -1,8 +1,9 @@
 //! A reference for the tapered guide: Crank-Nicolson in range, linear elements across, on a mesh
 //! that moves with the boundary.
 //!
-//! `i eps psi_r = -psi_xx - psi` inside `0 < x < h`, `i eps psi_r = -psi_xx` outside, weight 1
-//! inside and `m` outside, `h` falling with unit slope. On a mesh with velocity `v` the weak form is
+//! `i eps psi_r = -psi_xx - v psi` inside `0 < x < h(r)`, `i eps psi_r = -psi_xx` outside, weight 1
+//! inside and `m` outside, `psi = 0` or `psi_x = 0` at `x = 0`; `eps` and `v` (1 without) are complex
+//! with losses. On a mesh with velocity `v` the weak form is
 //! `i eps [M u_r + (1/2) M_r u - C u] = (K + V) u` with `C_ij = (1/2) int w v (N_j' N_i - N_j N_i')`: the
 //! condition at the sloping boundary that keeps the energy is built in. The midpoint rule keeps
 //! the norm. Errors are of second order in step and mesh together, so two runs at half of both are extrapolated
@@ -10,16 +11,36 @@
 
 use merging_saddles::Complex64 as C;
 use std::f64::consts::PI;
+use std::rc::Rc;
 
 const I: C = C::new(0.0, 1.0);
 
-#[derive(Clone, Copy)]
+#[derive(Clone)]
 pub struct Taper {
     pub mode: u32,
+    /// Whether the mode is even in `x`.
+    pub even: bool,
     pub m: f64,
-    pub eps: f64,
-    /// Width at the start, deeper than at cut-off.
-    pub start: f64,
+    pub eps: C,
+    /// Depth of the well inside.
+    pub well: C,
+    /// Range at the start, where the guide is wider than at cut-off.
+    pub from: f64,
+    /// Width and its derivative against range.
+    pub profile: Rc<dyn Fn(f64) -> (f64, f64)>,
+}
+
+/// Width and slope of a guide that is flat before `r = -1 - length` and has unit slope from `r = -1` on,
+/// with cut-off at `r = 0`: an abrupt start leaves some 0.5 % of the other modes.
+pub fn slow_start(cut: f64, length: f64, r: f64) -> (f64, f64) {
+    if r >= -1.0 {
+        return (cut - r, -1.0);
+    }
+    // The slope goes as sin^2.
+    let rate = 0.5 * PI / length;
+    let angle = rate * (r + 1.0 + length).max(0.0);
+    let lost = (0.5 * angle - 0.25 * (2.0 * angle).sin()) / rate;
+    (cut + 1.0 + 0.5 * length - lost, -angle.sin().powi(2))
 }
 
 /// Resolution of one run.
@@ -46,8 +67,9 @@ impl Mesh {
     }
 }
 
-/// The field where the guide has one of the widths asked for.
+/// The field at one of the ranges asked for.
 pub struct Snapshot {
+    pub r: f64,
     pub h: f64,
     /// Nodes `x` from 0 over `h` outwards, with the values; `inside` is the index of the boundary.
     pub x: Vec<f64>,
@@ -58,19 +80,48 @@ pub struct Snapshot {
 }
 
 impl Taper {
-    /// The fields at the given widths, in falling order. `fineness` divides step and mesh; `reach` is
+    /// A mode of a guide without losses that starts on a flat, `length` before unit slope; cut off at
+    /// `r = 0`.
+    pub fn slow(mode: u32, even: bool, m: f64, eps: f64, length: f64) -> Taper {
+        let cut = (f64::from(mode) - if even { 1.0 } else { 0.5 }) * PI;
+        Taper {
+            mode,
+            even,
+            m,
+            eps: C::from(eps),
+            well: C::from(1.0),
+            from: -1.0 - length,
+            profile: Rc::new(move |r| slow_start(cut, length, r)),
+        }
+    }
+
+    /// Mode `n` (zero at `x = 0`) of a guide without losses that falls with unit slope from the width
+    /// `start`; its ranges are minus the widths.
+    pub fn straight(mode: u32, m: f64, eps: f64, start: f64) -> Taper {
+        Taper {
+            mode,
+            even: false,
+            m,
+            eps: C::from(eps),
+            well: C::from(1.0),
+            from: -start,
+            profile: Rc::new(|r| (-r, -1.0)),
+        }
+    }
+
+    /// The fields at the given ranges, in rising order. `fineness` divides step and mesh; `reach` is
     /// how far out the field is kept.
-    pub fn run(&self, widths: &[f64], reach: f64, fineness: f64) -> Vec<Snapshot> {
+    pub fn run(&self, ranges: &[f64], reach: f64, fineness: f64) -> Vec<Snapshot> {
         let spacing = 0.08 / fineness;
         let mesh = Mesh {
-            inside: (60.0 * fineness) as usize,
+            inside: (60.0 * fineness * f64::from(self.mode).sqrt()) as usize,
             spacing,
             outside: (1.8 * reach / spacing) as usize,
             step: 0.06 / fineness,
             absorb: reach,
         };
-        let coarse = self.single(widths, mesh);
-        let fine = self.single(widths, mesh.refined());
+        let coarse = self.single(ranges, mesh);
+        let fine = self.single(ranges, mesh.refined());
         coarse
             .into_iter()
             .zip(fine)
@@ -83,35 +134,48 @@ impl Taper {
             .collect()
     }
 
-    /// The adiabatic mode of unit energy at the start, `kappa cot(kappa h) = -m gamma`,
-    /// `kappa^2 + gamma^2 = 1`: kappa and the amplitude of its sine.
-    fn adiabatic(&self) -> (f64, f64) {
-        let (n, m, h) = (f64::from(self.mode), self.m, self.start);
-        let (mut low, mut high) = ((n - 0.5) * PI / h, 1f64.min(n * PI / h));
+    /// The adiabatic mode of unit energy at the start, `kappa^2 + gamma^2 = v`: kappa, gamma and the
+    /// amplitude of its sine or cosine.
+    fn adiabatic(&self) -> [C; 3] {
+        let (m, h) = (self.m, (self.profile)(self.from).0);
+        let n = f64::from(self.mode) - if self.even { 0.5 } else { 0.0 };
+        // kappa h lies between the cut-off value and the next multiple of pi/2 (bisection without
+        // losses, then Newton).
+        let condition = |k: C| {
+            let g = (self.well - k * k).sqrt();
+            let (sin, cos) = ((k * h).sin(), (k * h).cos());
+            if self.even { k * sin - g * cos * m } else { k * cos + g * sin * m }
+        };
+        let (mut low, mut high) = ((n - 0.5) * PI / h, (1.0 - 1e-12f64).min(n * PI / h));
+        let below = condition(C::from(low)).re;
         for _ in 0..60 {
             let k = 0.5 * (low + high);
-            let g = (1.0 - k * k).max(0.0).sqrt();
-            if k / (k * h).tan() + m * g > 0.0 { low = k } else { high = k }
+            if condition(C::from(k)).re * below > 0.0 { low = k } else { high = k }
         }
-        let k = 0.5 * (low + high);
-        let edge = (k * h).sin();
-        let outside = m * edge * edge / (2.0 * (1.0 - k * k).sqrt());
-        (k, (0.5 * h - (2.0 * k * h).sin() / (4.0 * k) + outside).sqrt().recip())
+        let mut k = C::from(0.5 * (low + high));
+        for _ in 0..20 {
+            let slope = (condition(k + 1e-6) - condition(k - 1e-6)) / 2e-6;
+            k -= condition(k) / slope;
+        }
+        let g = (self.well - k * k).sqrt();
+        let edge = if self.even { (k * h).cos() } else { (k * h).sin() };
+        let bend = (k * h * 2.0).sin() / (k * 4.0);
+        let inside = if self.even { bend + 0.5 * h } else { -bend + 0.5 * h };
+        [k, g, (inside + edge * edge * m / (g * 2.0)).sqrt().inv()]
     }
 
     /// The largest value of the mode inside at the start.
     pub fn antinode(&self) -> f64 {
-        self.adiabatic().1
+        self.adiabatic()[2].re
     }
 
-    fn at_start(&self, x: f64) -> C {
-        let (k, size) = self.adiabatic();
-        let h = self.start;
-        let g = (1.0 - k * k).sqrt();
-        C::from(size * if x < h { (k * x).sin() } else { (k * h).sin() * (-g * (x - h)).exp() })
+    fn at_start(&self, [k, g, size]: [C; 3], x: f64) -> C {
+        let h = (self.profile)(self.from).0;
+        let wave = |x: f64| if self.even { (k * x).cos() } else { (k * x).sin() };
+        size * if x < h { wave(x) } else { wave(h) * (-g * (x - h)).exp() }
     }
 
-    fn single(&self, widths: &[f64], mesh: Mesh) -> Vec<Snapshot> {
+    fn single(&self, ranges: &[f64], mesh: Mesh) -> Vec<Snapshot> {
         let nodes = mesh.inside + mesh.outside;
         let place = |h: f64, i: usize| {
             if i <= mesh.inside {
@@ -120,32 +184,46 @@ impl Taper {
                 h + (i - mesh.inside) as f64 * mesh.spacing
             }
         };
-        let mut h = self.start;
-        let mut u: Vec<C> = (0..=nodes).map(|i| self.at_start(place(h, i))).collect();
-        (u[0], u[nodes]) = (C::from(0.0), C::from(0.0));
+        // The first row that is solved for.
+        let first = usize::from(!self.even);
+        let (mode, start) = (self.adiabatic(), (self.profile)(self.from).0);
+        let mut u: Vec<C> = (0..=nodes).map(|i| self.at_start(mode, place(start, i))).collect();
+        if !self.even {
+            u[0] = C::from(0.0);
+        }
+        u[nodes] = C::from(0.0);
         let mut out = Vec::new();
         let mut system = System::new(nodes);
-        for &target in widths {
-            let steps = ((h - target) / (mesh.step * self.eps)).ceil().max(1.0);
-            let dr = (h - target) / steps;
-            let first = h;
-            system.clear(0, nodes);
-            for e in mesh.inside..nodes {
-                self.element(mesh, e, first, dr, &mut system);
-            }
-            system.eliminate(mesh.inside + 1, nodes);
-            let boundary = system.rows[mesh.inside];
+        let mut r = self.from;
+        for &target in ranges {
+            let steps = ((target - r) / (mesh.step * self.eps.norm())).ceil().max(1.0);
+            let dr = (target - r) / steps;
+            let mut fall = f64::NAN;
+            let mut boundary = system.rows[mesh.inside];
             for s in 0..steps as usize {
+                let (h, slope) = (self.profile)(r + dr * (s as f64 + 0.5));
+                // The outside is the same as long as the slope is.
+                if slope != fall {
+                    fall = slope;
+                    system.clear(mesh.inside, nodes);
+                    for e in mesh.inside..nodes {
+                        self.element(mesh, e, (h, slope), dr, &mut system);
+                    }
+                    system.eliminate(mesh.inside + 1, nodes);
+                    boundary = system.rows[mesh.inside];
+                }
                 system.clear(0, mesh.inside);
                 system.rows[mesh.inside] = boundary;
                 for e in 0..mesh.inside {
-                    self.element(mesh, e, first - dr * (s as f64 + 0.5), dr, &mut system);
+                    self.element(mesh, e, (h, slope), dr, &mut system);
                 }
-                system.eliminate(1, mesh.inside + 1);
-                system.step(&mut u);
+                system.eliminate(first, mesh.inside + 1);
+                system.step(&mut u, first);
             }
-            h = target;
+            r = target;
+            let h = (self.profile)(r).0;
             out.push(Snapshot {
+                r,
                 h,
                 x: (0..=nodes).map(|i| place(h, i)).collect(),
                 psi: u.clone(),
@@ -157,16 +235,16 @@ impl Taper {
     }
 
     /// Adds one element to the two sides of a step, `i eps M/dr +- (1/2) [i eps (M_r/2 - C) - (K + V)]`.
-    fn element(&self, mesh: Mesh, e: usize, h: f64, dr: f64, system: &mut System) {
+    fn element(&self, mesh: Mesh, e: usize, (h, slope): (f64, f64), dr: f64, system: &mut System) {
         let ie = I * self.eps;
         let within = e < mesh.inside;
         let (j, w) = if within { (h / mesh.inside as f64, 1.0) } else { (mesh.spacing, self.m) };
         // Mesh velocity at the ends of the element, and the rate of its length.
-        let speed = |i: usize| -(i.min(mesh.inside) as f64) / mesh.inside as f64;
+        let speed = |i: usize| slope * i.min(mesh.inside) as f64 / mesh.inside as f64;
         let (v0, v1) = (speed(e), speed(e + 1));
         // Potential: the well inside, absorption far out.
         let potential = if within {
-            C::from(-1.0)
+            -self.well
         } else {
             let far = (e - mesh.inside) as f64 * mesh.spacing - mesh.absorb;
             let depth = (far / (0.8 * mesh.absorb)).max(0.0);
@@ -229,18 +307,22 @@ impl System {
         }
     }
 
-    fn step(&mut self, u: &mut [C]) {
+    fn step(&mut self, u: &mut [C], first: usize) {
         let last = u.len() - 1;
-        for i in (1..last).rev() {
+        for i in (first..last).rev() {
             let [d, above, below] = self.rows[i].right;
-            let mut value = d * u[i] + above * u[i + 1] + below * u[i - 1];
+            let mut value = d * u[i] + above * u[i + 1];
+            if i > 0 {
+                value += below * u[i - 1];
+            }
             if i + 1 < last {
                 value -= self.rows[i].left[1] * self.pivots[i + 1] * self.work[i + 1];
             }
             self.work[i] = value;
         }
-        for i in 1..last {
-            u[i] = (self.work[i] - self.rows[i].left[2] * u[i - 1]) * self.pivots[i];
+        for i in first..last {
+            let before = if i > 0 { self.rows[i].left[2] * u[i - 1] } else { C::from(0.0) };
+            u[i] = (self.work[i] - before) * self.pivots[i];
         }
     }
 }

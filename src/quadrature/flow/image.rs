@@ -48,8 +48,31 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
     /// amplitude down to a fraction of its size can tell.
     pub fn keeps_class(&self, contour: &Contour, fraction: f64) -> bool {
         // The first and the last orbit are followed back up to their own vertices.
-        let image = self.way(0, 0, self.last, 0);
+        let image = if contour.is_closed() {
+            let first = self.first_index();
+            let mut image = Vec::new();
+            if let Some(e) = self.nodes[0].right {
+                let Edge { nodes: [_, next], at: [leave, arrive], .. } = self.edges[e];
+                let orbit = &self.nodes[0].orbit;
+                let mut out: Vec<_> =
+                    orbit[first.min(leave)..=first.max(leave)].iter().map(|s| s.z).collect();
+                if first > leave {
+                    out.reverse();
+                }
+                image = out;
+                image.extend(self.way(next, arrive, 0, first));
+            }
+            image
+        } else {
+            self.way(0, 0, self.last, 0)
+        };
         self.watch.same_class(contour.points(), &image, fraction)
+    }
+
+    /// Where on the first vertex's orbit the contour begins: its vertex, or the end of the last edge
+    /// of a closed contour.
+    fn first_index(&self) -> usize {
+        self.nodes[0].left.map_or(0, |e| self.edges[e].at[1])
     }
 
     /// The flowed contour down to `depth/k` under its highest level.
@@ -58,7 +81,7 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
         let mut out = Flowed { pieces: Vec::new(), sunk: Vec::new(), tails: Vec::new(), floor };
         let mut node = 0;
         let mut from = match self.ends[0] {
-            Termination::Finite => 0,
+            Termination::Finite | Termination::Closed => self.first_index(),
             Termination::Downhill => {
                 let at = self.nodes[0].right.map_or(0, |e| self.edges[e].at[0]);
                 self.end_at_infinity(0, at, depth, &mut out)?
@@ -76,9 +99,13 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
                 out.pieces.push(chord)
             }
             (node, from) = (next, arrive);
+            if node == 0 {
+                break;
+            }
         }
         let to = match self.ends[1] {
             Termination::Finite => 0,
+            Termination::Closed => from,
             Termination::Downhill => self.end_at_infinity(node, from, depth, &mut out)?,
         };
         along(&self.nodes[node].orbit, from, to, &mut out.pieces);

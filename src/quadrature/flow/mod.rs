@@ -122,21 +122,25 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
     ) -> Result<Flow<'a, P, A>, Error> {
         let points = contour.points();
         let size = points.iter().map(|z| (z - points[0]).norm()).fold(0.0, f64::max);
-        let last = points.len() - 1;
+        // The last vertex of a closed contour is its first.
+        let closed = contour.is_closed();
+        let count = points.len() - usize::from(closed);
+        let (last, sides) = (count - 1, points.len() - 1);
         let mut nodes = Vec::with_capacity(4 * points.len());
         let mut edges = Vec::with_capacity(4 * points.len());
-        for (i, &z) in points.iter().enumerate() {
+        for (i, &z) in points[..count].iter().enumerate() {
             let site = sampler.site(z).ok_or(Error::NotFinite { what: "phase", at: z })?;
             nodes.push(Node {
                 orbit: vec![site],
                 flux: Vec::new(),
                 cap: 0.5 * size,
                 stalled: false,
-                left: i.checked_sub(1),
-                right: (i < last).then_some(i),
+                left: if closed { Some((i + last) % count) } else { i.checked_sub(1) },
+                right: (i < sides).then_some(i),
             });
-            if i < last {
-                edges.push(Edge { nodes: [i, i + 1], at: [0, 0], flux: None, state: State::Open });
+            if i < sides {
+                let nodes = [i, (i + 1) % count];
+                edges.push(Edge { nodes, at: [0, 0], flux: None, state: State::Open });
             }
         }
         let ends = [contour.start(), contour.end()];
@@ -153,7 +157,7 @@ impl<'a, P: Phase, A: Amplitude> Flow<'a, P, A> {
             last,
         };
         flow.crest = flow.lowest_crest();
-        for e in 0..last {
+        for e in 0..sides {
             flow.push(e);
         }
         Ok(flow)

@@ -21,6 +21,10 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
         while let Some(e) = self.nodes[node].right.filter(|_| chain.len() <= self.edges.len()) {
             chain.push(e);
             node = self.edges[e].nodes[1];
+            if node == 0 {
+                // Once round a closed contour.
+                break;
+            }
         }
         // Crossings: runs of settled edges.
         let runs: Vec<&[usize]> = chain

@@ -145,12 +145,12 @@ fn grow<const D: usize>(h: &Polynomial, hubs: &[Hub], weights: &[i32; VALLEYS]) 
         count: 0,
         component: std::array::from_fn(|v| v),
     };
+    let mut arms = [Arm::BLANK; VALLEYS];
     for (index, hub) in hubs.iter().enumerate() {
         if forest.carries::<D>(weights) {
             break;
         }
         let directions = hub.directions();
-        let mut arms = [Arm::BLANK; VALLEYS];
         for (arm, direction) in arms.iter_mut().zip(directions).take(hub.arms) {
             walk::arm::<D>(h, hub, direction, arm)?;
         }

@@ -93,7 +93,7 @@ fn saddles<const D: usize>(h: &Polynomial) -> [Complex64; SADDLES] {
             roots[j] -= step;
             moved = moved.max(step.norm_sqr());
         }
-        if moved < 1e-18 {
+        if moved < 1e-8 {
             break;
         }
     }

@@ -8,6 +8,10 @@
 //!
 //! Parameters are listed as `[x_1, .., x_K]`.
 //!
+//! Method: any two valleys by descents from the saddles (`descent`, `hubs`, `walk`), saddles far from
+//! the others by one trapezoidal rule (`lone`), the Pearcey integral on the real line from a table
+//! by one Taylor step or from its lone saddles (`pearcey`). Phases are carried in double-double.
+//!
 //! Accuracy is counted on the cuspoid scale: with `T = 1 + sum_m |x_m|^(1/(K+2-m))` and
 //! `S = max(|Psi|, |dPsi/dx_m|/T^m)`, an error of Psi against S, one of `dPsi/dx_m` against
 //! `S T^m`. That is the relative error away from zeros, and stays meaningful on them.
@@ -93,8 +97,9 @@ fn check(x: &[Complex64]) -> Result<(), Error> {
 /// accurate as its own paths allow: valleys whose weight can be joined low are not reached over a
 /// high saddle.
 ///
-/// Accuracy: about 1e-15 on the cuspoid scale, worst seen 1e-13. Cost: 7 to 20 us. No allocation.
-/// Method and regions: descents from the saddles, Gauss-Legendre panels.
+/// Accuracy on the cuspoid scale: 3e-15 in the tables, median 2e-16; the worst of 1.2 million random
+/// sums, with saddles that coincide or nearly so among them, 6e-14. Cost: 5 to 15 us. No allocation.
+/// The mantissas are not brought to any standard size.
 ///
 /// # Errors
 /// [`Error::Unsupported`] for no or more than four parameters, [`Error::Domain`] for parameters
@@ -146,7 +151,7 @@ pub fn moments(x: &[Complex64], weights: &[i32]) -> Result<Moments, Error> {
 /// `Psi_K` from infinity in valley `from` to infinity in valley `to`, with all first derivatives,
 /// for K = 1 to 4 and parameters `x = [x_1, .., x_K]`.
 ///
-/// Accuracy: about 1e-15 on the cuspoid scale, worst seen 1e-13. Cost: 7 to 20 us. No allocation.
+/// Accuracy as [`moments`]. Cost: about 6 us for K = 2, 8 us for K = 3, 11 us for K = 4.
 ///
 /// # Errors
 /// As [`moments`]; [`Error::Domain`] also for a valley that does not exist. Twice the same valley
@@ -214,9 +219,9 @@ pub fn real_line<const K: usize>(x: &[Complex64; K]) -> Result<Cuspoid<Scaled, K
 /// 36.2.14) for real parameters, with its first derivatives; `derivatives` holds `dPsi/dx_1`,
 /// `dPsi/dx_2`.
 ///
-/// Accuracy on the cuspoid scale: see the table in the module's tests; at most 3e-14 for
-/// `|x_2| <= 60`, `|x_1| <= 300`, and no worse beyond. Cost: 0.2 us for `|x_2| <= 16`,
-/// `|x_1| <= 32`; outside 0.4 to 1.5 us, near the caustic 5 us.
+/// Accuracy on the cuspoid scale: 7e-15 for `|x_2| <= 16`, `|x_1| <= 32` (99 of 100 below 2e-15),
+/// 1e-15 outside, on the caustic as elsewhere, and no worse for parameters of 1e6. Cost: 0.2 us
+/// inside that box; outside 0.6 us in the median, up to 10 us near the caustic.
 ///
 /// # Errors
 /// [`Error::Domain`] for parameters that are not finite, [`Error::NoDigits`] beyond the range.
@@ -258,7 +263,7 @@ pub fn pearcey_at(points: &[(f64, f64)], out: &mut [Cuspoid<Complex64, 2>]) -> R
 /// exp(i (t^5 + x_3 t^3 + x_2 t^2 + x_1 t)) dt` (DLMF 36.2.4) for real parameters, with its first
 /// derivatives; complex parameters: [`real_line`].
 ///
-/// Accuracy: 2e-15 on the cuspoid scale. Cost: about 9 us.
+/// Accuracy: 2e-15 on the cuspoid scale. Cost: about 8 us.
 ///
 /// # Errors
 /// [`Error::Domain`] for parameters that are not finite, [`Error::NoDigits`] beyond the range.
@@ -277,7 +282,7 @@ pub fn swallowtail(x1: f64, x2: f64, x3: f64) -> Result<Cuspoid<Complex64, 3>, E
 /// exp(i (t^6 + x_4 t^4 + x_3 t^3 + x_2 t^2 + x_1 t)) dt` (DLMF 36.2.4) for real parameters, with its
 /// first derivatives; complex parameters: [`real_line`].
 ///
-/// Accuracy: 1e-14 on the cuspoid scale. Cost: about 12 us.
+/// Accuracy: 3e-15 on the cuspoid scale. Cost: about 11 us.
 ///
 /// # Errors
 /// [`Error::Domain`] for parameters that are not finite, [`Error::NoDigits`] beyond the range.

@@ -104,22 +104,25 @@ pub(super) fn moments<const D: usize>(p: &Polynomial) -> [Complex64; MOMENTS] {
     GAUSS.moments::<D>(p)
 }
 
-/// Step of the trapezoidal rule for `e^(-x^2 + ..)`; what is left is `e^-(pi/step)^2`.
-const STEP: f64 = 0.38;
-static TRAPEZOID: Rule<20> = {
-    let mut nodes = [0.0; 20];
+/// The trapezoidal rule with nodes at `(k + 1/2) step`.
+const fn trapezoid<const H: usize>(step: f64) -> Rule<H> {
+    let mut nodes = [0.0; H];
     let mut k = 0;
-    while k < 20 {
-        nodes[k] = STEP * (k as f64 + 0.5);
+    while k < H {
+        nodes[k] = step * (k as f64 + 0.5);
         k += 1;
     }
-    Rule::new(nodes, [STEP; 20])
-};
+    Rule::new(nodes, [step; H])
+}
+
+/// For `e^(-x^2 + ..)`; what is left is `e^-(pi/step)^2` and what the other terms make of it.
+static SHORT: Rule<20> = trapezoid(0.38);
+static LONG: Rule<32> = trapezoid(0.29);
 
 /// `integral of x^n e^(p(x)) dx` over the whole line for `p = -x^2 + ..` whose other terms stay
-/// small as far as `e^(-x^2)` counts.
-pub(super) fn bell<const D: usize>(p: &Polynomial) -> [Complex64; MOMENTS] {
-    TRAPEZOID.moments::<D>(p)
+/// small (very small: `short`) as far as `e^(-x^2)` counts.
+pub(super) fn bell<const D: usize>(p: &Polynomial, short: bool) -> [Complex64; MOMENTS] {
+    if short { SHORT.moments::<D>(p) } else { LONG.moments::<D>(p) }
 }
 
 /// `1.5 * 2^52`: added and subtracted, it rounds to an integer, which then stands in the low bits.

@@ -1,8 +1,8 @@
 //! The Pearcey integral on the real line.
 //!
 //! Near, `|x_2| <= 16` and `|x_1| <= 32`: one Taylor step from the nearest node of a table, in the
-//! distance along the straight line to the point. Its coefficients follow from those of the
-//! differential equations DLMF 36.10.6 and 36.10.8 (integration by parts).
+//! distance along the straight line to the point. Its coefficients follow by integration by parts,
+//! as the differential equations of DLMF 36.10 do.
 //! Far: every saddle on its own where it is lone and the others are far below; else descents.
 
 use super::lone::{self, is_lone};
@@ -23,7 +23,7 @@ const BELOW: f64 = 42.0;
 /// Moments 0, 1, 2 over the real line for finite parameters within range.
 #[inline]
 pub(super) fn moments(x1: f64, x2: f64) -> Result<[Complex64; 3], Error> {
-    // Even in x_1 (DLMF 36.2.19): m_1 changes its sign with it.
+    // Even in x_1 (DLMF 36.2(iii)): m_1 changes its sign with it.
     let mirrored = x1.abs();
     let mut m =
         if mirrored <= WIDE && x2.abs() <= HIGH { near(mirrored, x2) } else { far(mirrored, x2)? };

@@ -20,8 +20,8 @@ const STEPS: usize = 40;
 
 /// The zero to which Newton's method leads from `(x1, x2)`.
 ///
-/// Accuracy: 1e-14 of the larger coordinate near the origin; 12 digits for coordinates to 100.
-/// Cost: about five evaluations.
+/// Accuracy: 2e-14 of the distance from the origin (zeros with `x2 > -11`, `x1 < 16`). Cost: about
+/// five evaluations.
 ///
 /// # Errors
 /// [`Error::NoConvergence`] if no zero is reached in 40 steps of at most one quarter (there are none

@@ -1,4 +1,4 @@
-//! The picture: level over range and depth, with the bed, the cut-off and the beam.
+//! The picture: level over range and position across, with the boundary, the cut-off and the beam.
 
 use crate::colours::colour;
 use plotters::coord::Shift;
@@ -6,25 +6,32 @@ use plotters::element::DashedPathElement;
 use plotters::prelude::*;
 use std::error::Error;
 
-/// What is drawn. Ranges and depths in metres, levels in dB.
+/// What is drawn; levels in dB.
 pub struct Picture {
     pub title: String,
     pub subtitle: String,
     /// Centres of the cells, equally spaced.
-    pub range_m: Vec<f64>,
-    pub depth_m: Vec<f64>,
+    pub range: Vec<f64>,
+    pub across: Vec<f64>,
     /// Level of each cell, one column of depths after the other; NaN where there is none.
     pub level_db: Vec<f64>,
     /// Quietest level of the scale; the loudest is 0.
     pub floor_db: f64,
-    /// The bed of the profile.
+    /// Names of the axes with their units.
+    pub axes: [&'static str; 2],
+    /// The boundary of the guide, and its name.
     pub bed: Vec<(f64, f64)>,
-    /// The bed of the model, of constant slope.
+    pub bed_name: &'static str,
+    /// The fit of it that the field is computed with.
     pub model_bed: Vec<(f64, f64)>,
     /// The beam's axis.
     pub beam: Vec<(f64, f64)>,
     /// Cut-off.
     pub cutoff: (f64, f64),
+    /// How that is written.
+    pub cutoff_name: String,
+    /// Whether positions are counted downwards.
+    pub downwards: bool,
 }
 
 type Area<'a> = DrawingArea<SVGBackend<'a>, Shift>;
@@ -58,20 +65,23 @@ impl Picture {
     }
 
     fn draw_map(&self, area: &Area) -> Result<(), Box<dyn Error>> {
-        let (half_range, half_depth) = (spacing(&self.range_m) / 2.0, spacing(&self.depth_m) / 2.0);
-        let ranges = self.range_m[0] - half_range..last(&self.range_m) + half_range;
-        let bottom = last(&self.depth_m) + half_depth;
+        let (half_range, half_depth) = (spacing(&self.range) / 2.0, spacing(&self.across) / 2.0);
+        let ranges = self.range[0] - half_range..last(&self.range) + half_range;
+        let bottom = last(&self.across) + half_depth;
         let mut chart = ChartBuilder::on(area)
             .margin(12)
             .x_label_area_size(52)
             .y_label_area_size(64)
-            .build_cartesian_2d(ranges.clone(), bottom..0.0)?;
+            .build_cartesian_2d(
+                ranges.clone(),
+                if self.downwards { bottom..0.0 } else { 0.0..bottom },
+            )?;
         chart.draw_series(self.cells(half_range, half_depth))?;
         chart
             .configure_mesh()
             .disable_mesh()
-            .x_desc("range along the track (m)")
-            .y_desc("depth below the surface (m)")
+            .x_desc(self.axes[0])
+            .y_desc(self.axes[1])
             .x_label_formatter(&|range| whole(*range))
             .y_label_formatter(&|depth| whole(*depth))
             .label_style(font(15))
@@ -82,8 +92,8 @@ impl Picture {
         // A pale edge keeps the lines visible on every colour; the model's bed lies inside the
         // profile's where they agree.
         let lines = [
-            (&self.bed, INK, 5u32, 2, 0, "sea bed (profile)"),
-            (&self.model_bed, MODEL, 2, 0, 7, "bed of constant slope (model)"),
+            (&self.bed, INK, 5u32, 2, 0, self.bed_name),
+            (&self.model_bed, MODEL, 2, 0, 7, "fit round the cut-off"),
             (&self.beam, MARK, 2, 2, 9, "axis of the beam"),
         ];
         for (points, ink, width, edge, dash, name) in lines {
@@ -105,11 +115,15 @@ impl Picture {
         chart.draw_series([PathElement::new([(range, 0.0), (range, bottom)], mark)])?;
         chart
             .draw_series([Circle::new((range, depth), 5, MARK.filled())])?
-            .label(format!("cut-off, {range:.0} m"))
+            .label(self.cutoff_name.clone())
             .legend(|(x, y)| Circle::new((x + 13, y), 5, MARK.filled()));
         chart
             .configure_series_labels()
-            .position(SeriesLabelPosition::LowerLeft)
+            .position(if self.downwards {
+                SeriesLabelPosition::LowerLeft
+            } else {
+                SeriesLabelPosition::UpperLeft
+            })
             .background_style(WHITE.mix(0.9))
             .border_style(INK)
             .label_font(font(15))
@@ -121,9 +135,9 @@ impl Picture {
     /// The cells, equal neighbours of a column joined; each reaches a little into the next, which
     /// is painted over it, so that no seam shows.
     fn cells(&self, half_range: f64, half_depth: f64) -> Vec<Rectangle<(f64, f64)>> {
-        let rows = self.depth_m.len();
+        let rows = self.across.len();
         let mut cells = Vec::new();
-        for (column, &range) in self.level_db.chunks(rows).zip(&self.range_m) {
+        for (column, &range) in self.level_db.chunks(rows).zip(&self.range) {
             // No step where there is no value.
             let step = |row: usize| {
                 let level = column[row];
@@ -136,11 +150,10 @@ impl Picture {
                 }
                 let ink =
                     step(first).map_or(GAP, |step| colour(1.0 - step * STEP_DB / self.floor_db));
-                let top = (range - half_range, self.depth_m[first] - half_depth);
+                let top = (range - half_range, self.across[first] - half_depth);
                 let end = (
-                    (range + 1.5 * half_range).min(last(&self.range_m) + half_range),
-                    (self.depth_m[row - 1] + 1.5 * half_depth)
-                        .min(last(&self.depth_m) + half_depth),
+                    (range + 1.5 * half_range).min(last(&self.range) + half_range),
+                    (self.across[row - 1] + 1.5 * half_depth).min(last(&self.across) + half_depth),
                 );
                 cells.push(Rectangle::new([top, end], ink.filled()));
                 first = row;

@@ -1,0 +1,538 @@
+//! One mode of a guide that narrows along a profile, through its cut-off: what the three physics share.
+//!
+//! A guide is described by the wavenumber `k` of the medium outside, the transverse wavenumber
+//! `q = sqrt(k_in^2 - k^2)` at cut-off and the density ratio `m`; its width `D(s)` is the profile. The
+//! scaled guide of [`SlopingGuide`] has `x = q z`, `r = q g (s - s_c)`, `eps = 2 k g/q`, with the
+//! slope `g` at the cut-off range `s_c`; `psi = field * exp(-i k s)`. With losses `q` and `k`
+//! are complex, and with them `s_c` and `g`: the fit of the profile is re-expanded about the complex
+//! cut-off width. The lengths returned are those without losses, the fields have it all.
+//!
+//! Source: derived here.
+
+use super::adiabatic::Adiabatic;
+use super::layer::bound_extended;
+use super::profile::Profile;
+use super::uniform::{Order, Place, SlopingGuide, UniformField, times};
+use crate::{Complex64, Error, Estimate, Scaled};
+use std::f64::consts::FRAC_PI_4;
+
+const I: Complex64 = Complex64::new(0.0, 1.0);
+
+/// The two media of a guide.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Media {
+    /// Wavenumber outside.
+    pub k: Complex64,
+    /// `sqrt(k_in^2 - k^2)`.
+    pub q: Complex64,
+    /// Both without losses.
+    pub k_real: f64,
+    pub q_real: f64,
+    /// Density inside over outside.
+    pub m: f64,
+    /// Wavenumber of the carrier: `k`, or zero where ranges are times.
+    pub carrier: Complex64,
+}
+
+/// The number of a mode within its half of the modes.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct ModeNumber {
+    pub n: u32,
+    pub even: bool,
+}
+
+/// One mode that goes through its cut-off along a profile.
+///
+/// Made by the guides of the three physics, whose unit of length it keeps: metres for
+/// [`AcousticGuide`](super::AcousticGuide), nanometres for [`SlabGuide`](super::SlabGuide), scaled lengths for
+/// [`QuantumWell`](super::QuantumWell). Ranges are those of the profile; positions `x` across are counted
+/// from the surface, or from the middle of a symmetric guide. Values are relative to the incoming
+/// mode's largest value inside at the reference range.
+#[derive(Clone, Debug)]
+pub struct Passage {
+    guide: SlopingGuide,
+    media: Media,
+    profile: Profile,
+    even: bool,
+    cutoff_width: f64,
+    cutoff_range: f64,
+    slope: f64,
+    /// Cut-off range and slope with losses.
+    centre: Complex64,
+    turned_slope: Complex64,
+    /// Where the fit begins, and its departure in transition lengths.
+    fitted_from: f64,
+    fit_departure: f64,
+    fit: Vec<f64>,
+    fitted_widths: [f64; 2],
+    reference: f64,
+    incoming_exponent: Complex64,
+    incoming_antinode: Complex64,
+    height: f64,
+}
+
+impl Passage {
+    pub(super) fn new(
+        media: Media,
+        mode: ModeNumber,
+        profile: Profile,
+        reference: f64,
+    ) -> Result<Self, Error> {
+        let ModeNumber { n, even } = mode;
+        let scaled = |eps: Complex64| -> Result<SlopingGuide, Error> {
+            let guide = SlopingGuide::new(n, media.m, eps)?;
+            if even { guide.even() } else { Ok(guide) }
+        };
+        // A small eps to learn the cut-off width.
+        let cutoff = scaled(Complex64::new(1e-3, 0.0))?.cutoff_width();
+        let cutoff_width = cutoff / media.q_real;
+        let crossing = profile.first_range_of_width(cutoff_width)?;
+        let first_slope = profile.fall(crossing);
+        let first_eps = 2.0 * media.k_real * first_slope / media.q_real;
+        if !(first_slope > 0.0 && first_eps <= 1.0) {
+            return Err(too_fast(first_eps, first_slope));
+        }
+        let step = (media.m * media.m * first_eps).cbrt();
+        // In range: eps (m/eps)^(2/3)/(q g).
+        let length = step / (media.q_real * first_slope);
+        let fit = profile.fit(cutoff_width, 3.0 * step / media.q_real, 1e-3 * length)?;
+        let real = expand(&fit.coefficients, Complex64::new(0.0, 0.0));
+        let slope = real[1].re.recip();
+        let eps = 2.0 * media.k_real * slope / media.q_real;
+        if !(slope > 0.0 && eps <= 1.0) {
+            return Err(too_fast(eps, slope));
+        }
+        // About the complex width at cut-off.
+        let shifted = expand(&fit.coefficients, cutoff_width - media.q.inv() * cutoff);
+        let turned_slope = shifted[1].inv();
+        let mut guide = scaled(media.k * 2.0 * turned_slope / media.q)?;
+        let higher: Vec<Complex64> = (2..shifted.len())
+            .map(|j| shifted[j] * turned_slope * media.q.powi(1 - j as i32))
+            .collect();
+        if !higher.is_empty() {
+            let bend: f64 = (0..)
+                .zip(&higher)
+                .map(|(j, c)| f64::from(j + 2) * c.norm() * step.powi(j + 1))
+                .sum();
+            if bend > 0.9 {
+                return Err(Error::Undecided {
+                    reason: format!(
+                        "at the cut-off (range {crossing}) the slope changes by {:.0} % within one \
+                         transition length, at eps = {eps:.3}: the profile bends too fast",
+                        100.0 * bend
+                    ),
+                    remedy: "smooth the profile, or go to a shorter wavelength, where the transition is \
+                             shorter",
+                });
+            }
+            guide = guide.curved(&higher)?;
+        }
+        let mut passage = Passage {
+            guide,
+            media,
+            profile,
+            even,
+            cutoff_width,
+            cutoff_range: fit.coefficients[0],
+            slope,
+            centre: shifted[0],
+            turned_slope,
+            fitted_from: fit.from,
+            fit_departure: fit.residual / length,
+            fit: fit.coefficients.clone(),
+            fitted_widths: fit.widths,
+            reference,
+            incoming_exponent: Complex64::new(0.0, 0.0),
+            incoming_antinode: Complex64::new(1.0, 0.0),
+            height: (2.0 * media.k_real * media.q_real * media.q_real * slope / media.m)
+                .powf(-1.0 / 3.0),
+        };
+        let [from, _] = passage.profile.ranges();
+        if !(reference.is_finite() && reference >= from && reference < passage.cutoff_range) {
+            let remedy =
+                "give a range on the profile, before cut-off, where the mode is still trapped";
+            return Err(Error::domain("reference range", reference, remedy));
+        }
+        let (antinode, exponent) = passage.bound_mode(reference)?;
+        passage.incoming_antinode = antinode;
+        passage.incoming_exponent = exponent;
+        Ok(passage)
+    }
+
+    /// A mode that stays trapped as far as the profile goes: adiabatic everywhere.
+    pub(super) fn trapped(
+        media: Media,
+        mode: ModeNumber,
+        profile: Profile,
+        reference: f64,
+    ) -> Result<Self, Error> {
+        let ModeNumber { n, even } = mode;
+        let guide = SlopingGuide::new(n, media.m, Complex64::new(1e-3, 0.0))?;
+        let guide = if even { guide.even()? } else { guide };
+        let cutoff_width = guide.cutoff_width() / media.q_real;
+        let [_, to] = profile.ranges();
+        let mut passage = Passage {
+            guide,
+            media,
+            profile,
+            even,
+            cutoff_width,
+            cutoff_range: f64::INFINITY,
+            slope: 0.0,
+            centre: Complex64::from(to),
+            turned_slope: Complex64::new(0.0, 0.0),
+            fitted_from: f64::INFINITY,
+            fit_departure: 0.0,
+            fit: Vec::new(),
+            fitted_widths: [cutoff_width; 2],
+            reference,
+            incoming_exponent: Complex64::new(0.0, 0.0),
+            incoming_antinode: Complex64::new(1.0, 0.0),
+            height: f64::INFINITY,
+        };
+        passage.incoming_antinode = passage.bound_shape(reference)?.antinode;
+        Ok(passage)
+    }
+
+    /// With the uniform field to the given order in `eps` (without a call: [`Order::Next`]).
+    pub fn order(self, order: Order) -> Self {
+        Passage { guide: self.guide.order(order), ..self }
+    }
+
+    /// With another limit for what may be neglected at the Brewster parameter of a guide with `m > 1`:
+    /// see [`SlopingGuide::tolerance`].
+    pub fn tolerance(self, tolerance: f64) -> Self {
+        Passage { guide: self.guide.tolerance(tolerance), ..self }
+    }
+
+    /// The profile.
+    pub fn profile(&self) -> &Profile {
+        &self.profile
+    }
+
+    /// Width of the guide where the mode is cut off (without losses).
+    pub fn cutoff_width(&self) -> f64 {
+        self.cutoff_width
+    }
+
+    /// Range of the cut-off on the smoothed profile (without losses).
+    pub fn cutoff_range(&self) -> f64 {
+        self.cutoff_range
+    }
+
+    /// Width lost per unit of range at cut-off.
+    pub fn slope(&self) -> f64 {
+        self.slope
+    }
+
+    /// The small parameter `eps = 2 k g/q` at cut-off.
+    pub fn eps(&self) -> f64 {
+        2.0 * self.media.k_real * self.slope / self.media.q_real
+    }
+
+    /// `L_z`: how far the field reaches outside at cut-off.
+    pub fn layer_height(&self) -> f64 {
+        self.height
+    }
+
+    /// `L_s`: the transition length, the range over which the mode turns into a beam.
+    pub fn layer_range(&self) -> f64 {
+        2.0 * self.media.k_real * self.height * self.height
+    }
+
+    /// Largest departure of the local fit from the profile, in transition lengths; it turns the phase of
+    /// the field by about as many radians.
+    pub fn fit_departure(&self) -> f64 {
+        self.fit_departure
+    }
+
+    /// The profile as the field has it round the cut-off, `(range, width)`: 41 points of the local fit. Empty
+    /// where the profile is straight and is not fitted.
+    pub fn fitted_profile(&self) -> Vec<(f64, f64)> {
+        let [low, high] = self.fitted_widths;
+        let at = |width: f64| {
+            let u = self.cutoff_width - width;
+            self.fit.iter().rev().fold(0.0, |sum, c| sum * u + c)
+        };
+        let widths = (0..=40).map(|j| high + (low - high) * f64::from(j) / 40.0);
+        let curved = self.fit.len() > 2;
+        widths.filter(|_| curved).map(|width| (at(width), width)).collect()
+    }
+
+    /// First range of the fit; before it [`adiabatic`](Self::adiabatic) is right.
+    pub fn fitted_from(&self) -> f64 {
+        self.fitted_from
+    }
+
+    pub(super) fn media(&self) -> &Media {
+        &self.media
+    }
+
+    pub(super) fn incoming_antinode(&self) -> Complex64 {
+        self.incoming_antinode
+    }
+
+    pub(super) fn guide(&self) -> &SlopingGuide {
+        &self.guide
+    }
+
+    /// Refuses places without a field; says whether `x` lies inside.
+    fn check(&self, range: f64, x: f64) -> Result<bool, Error> {
+        Error::require_finite("range", range)?;
+        if !(x >= 0.0 && x.is_finite()) {
+            let remedy = "count positions from the surface or the middle, in a finite number that is not \
+                          negative";
+            return Err(Error::domain("position", x, remedy));
+        }
+        let [from, to] = self.profile.ranges();
+        let width = self.profile.width(range);
+        if !(range >= from && range <= to && width > 0.0) {
+            let remedy = "stay on the profile and before the guide's tip";
+            return Err(Error::domain("range", range, remedy));
+        }
+        Ok(x < width)
+    }
+
+    /// The place in scaled units.
+    pub(super) fn place(&self, range: f64) -> Place {
+        let h = self.media.q * self.profile.width(range);
+        Place { h, r: self.media.q * self.turned_slope * (range - self.centre) }
+    }
+
+    /// The integral of the uniform field at one point.
+    pub(super) fn uniform(&self, range: f64, x: f64) -> Result<UniformField, Error> {
+        let inside = self.check(range, x)?;
+        if range < self.fitted_from {
+            return Err(Error::domain(
+                "range",
+                range,
+                "before the fitted part of the profile the mode is adiabatic: ask for that",
+            ));
+        }
+        let place = self.place(range);
+        if inside {
+            self.guide.inside_at(place, self.media.q * x)
+        } else {
+            let distance = x - self.profile.width(range);
+            self.guide.outside_at(place, self.media.q * distance)
+        }
+    }
+
+    /// The uniform field at a point by quadrature, relative to the incoming mode: right before, at and
+    /// after cut-off, inside and outside.
+    ///
+    /// The error figure is that of the integral (relative 1e-9 is asked for); what the formula leaves
+    /// out is [`departure`](Self::departure), and a constant phase of about `eps/2`.
+    ///
+    /// Cost: 0.1 to 0.7 ms on a straight profile, a few times that on a curved one, at any wavelength.
+    ///
+    /// Errors: [`Error::Domain`] for a place off the profile, before
+    /// [`fitted_from`](Self::fitted_from) or beyond the tip; [`Error::Undecided`] where the Brewster angle lies in the
+    /// beam (`m > 1`); what [`crate::Integral::quadrature`] refuses.
+    pub fn field(&self, range: f64, x: f64) -> Result<Estimate, Error> {
+        Ok(times(self.uniform(range, x)?.quadrature(1e-9)?, self.relative(range)))
+    }
+
+    /// The same by expansions at the merging saddles: the crate's own plan, made for the one wavenumber.
+    ///
+    /// Errors: as [`field`](Self::field), and where the plan could not be made.
+    pub fn field_at_saddles(&self, range: f64, x: f64) -> Result<Estimate, Error> {
+        Ok(times(self.uniform(range, x)?.evaluate()?, self.relative(range)))
+    }
+
+    /// How well the formula holds at a range: twice the mismatch of the two conditions at the boundary
+    /// ([`SlopingGuide::mismatch`]), plus the phase that the fit of the profile leaves.
+    ///
+    /// Relative to the field at the boundary, as an amplitude; the constant phase of about `eps/2` at the
+    /// start is not in it. [`station`](Self::station) makes an error figure of it.
+    ///
+    /// Cost: four quadratures. Errors: as [`field`](Self::field).
+    pub fn departure(&self, range: f64) -> Result<f64, Error> {
+        self.uniform(range, 0.0)?;
+        Ok(2.0 * self.guide.mismatch_at(self.place(range))? + self.fit_departure)
+    }
+
+    /// A range at which fields are wanted with the whole error figure, that of the formula included.
+    ///
+    /// Cost: nine quadratures, then one for each field. Errors: as [`field`](Self::field).
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// let well = QuantumWell.along(1, Profile::plane(3.5, 0.01)?, 0.0)?;
+    /// let wall = well.cutoff_width();
+    /// let at_release = well.station(well.cutoff_range())?;
+    /// let (inside, outside) = (at_release.field(wall * (1.0 - 1e-9))?, at_release.field(wall)?);
+    /// // Two formulas for one value (psi is continuous): they agree within their figures.
+    /// let apart = (inside.value - outside.value).norm();
+    /// assert!(apart <= inside.error + outside.error && outside.relative_error < 0.02);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
+    pub fn station(&self, range: f64) -> Result<Station<'_>, Error> {
+        let departure = self.departure(range)?;
+        let at_boundary = self.field(range, self.profile.width(range))?.value.norm();
+        // What the beam carries away from its birth.
+        let h = self.media.q * self.cutoff_width;
+        let birth = 2.0 * self.guide.mismatch(h)? + self.fit_departure;
+        Ok(Station { passage: self, range, absolute: departure * at_boundary, relative: birth })
+    }
+
+    /// The boundary-layer form at a point, for a quick look: one pair of Airy functions. Good within a few
+    /// [`layer_range`](Self::layer_range) of cut-off, to some `eps^(1/3)`.
+    ///
+    /// Errors: [`Error::Domain`] for a place off the profile; [`Error::NoDigits`] hopelessly far from
+    /// cut-off.
+    pub fn field_in_layer(&self, range: f64, x: f64) -> Result<Complex64, Error> {
+        let inside = self.check(range, x)?;
+        let width = self.profile.width(range);
+        let (t, y) = self.layer_coordinates(range, if inside { width } else { x });
+        let u = bound_extended(t, y)?.u;
+        let eps = self.media.k * 2.0 * self.turned_slope / self.media.q;
+        let size = (-I * FRAC_PI_4).exp() * eps.powf(1.0 / 6.0) * self.media.m.powf(-2.0 / 3.0);
+        let profile = if inside {
+            self.guide.sign() * self.wave(self.guide.cutoff_width() * x / width)
+        } else {
+            1.0
+        };
+        Ok((u * (size * profile) * self.relative(range)).to_complex())
+    }
+
+    fn wave(&self, phase: f64) -> f64 {
+        if self.even { phase.cos() } else { phase.sin() }
+    }
+
+    /// The layer's coordinates `(t, y)` of a place, complex with losses; `y` is counted outwards.
+    pub fn layer_coordinates(&self, range: f64, x: f64) -> (Complex64, Complex64) {
+        let Media { k, q, m, .. } = self.media;
+        let height = (k * 2.0 * q * q * self.turned_slope / m).powf(-1.0 / 3.0);
+        let along = k * 2.0 * height * height;
+        ((range - self.centre) / along, (x - self.profile.width(range)) / height)
+    }
+
+    /// Amplitude of the sine for unit energy, and the logarithm of the factor carried, of the bound
+    /// mode at a range before cut-off.
+    fn bound_mode(&self, range: f64) -> Result<(Complex64, Complex64), Error> {
+        if range >= self.fitted_from {
+            let mode = self.guide.adiabatic_at(self.place(range))?;
+            return Ok((mode.antinode, mode.exponent));
+        }
+        // i q^2 gamma^2/(2 k) over the range, by Simpson's rule on the profile itself.
+        let media = &self.media;
+        let rate = |s: f64| -> Result<Complex64, Error> {
+            Ok(I * (media.q * self.bound_shape(s)?.gamma).powi(2) / (media.k * 2.0))
+        };
+        // Up to the fit, or from the reference on where nothing is fitted.
+        let (to, known) = if self.fitted_from.is_finite() {
+            let mode = self.guide.adiabatic_at(self.place(self.fitted_from))?;
+            (self.fitted_from, mode.exponent)
+        } else {
+            (self.reference, Complex64::new(0.0, 0.0))
+        };
+        const STEPS: u32 = 100;
+        let step = (to - range) / f64::from(STEPS);
+        let mut sum = rate(range)? + rate(to)?;
+        for j in 1..STEPS {
+            let weight = if j % 2 == 1 { 4.0 } else { 2.0 };
+            sum += rate(range + step * f64::from(j))? * weight;
+        }
+        Ok((self.bound_shape(range)?.antinode, known - sum * (step / 3.0)))
+    }
+
+    /// The bound mode's shape at a range.
+    pub(super) fn bound_shape(&self, range: f64) -> Result<Adiabatic, Error> {
+        self.guide.adiabatic(self.media.q * self.profile.width(range))
+    }
+
+    /// The field at a point by the form that holds there: adiabatic before the fitted part of the profile,
+    /// uniform from there on.
+    ///
+    /// Errors: as [`adiabatic`](Self::adiabatic) and [`field`](Self::field).
+    pub fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
+        if range < self.fitted_from {
+            self.adiabatic(range, x)
+        } else {
+            Ok(self.field(range, x)?.value)
+        }
+    }
+
+    /// Levels in dB re the incoming mode along a line of receivers `(range, x)`, each by the form that holds
+    /// there ([`value`](Self::value)).
+    ///
+    /// Errors: each receiver has its own.
+    pub fn levels_db(&self, receivers: &[(f64, f64)]) -> Vec<Result<f64, Error>> {
+        receivers.iter().map(|&(s, x)| self.value(s, x).map(super::level_db)).collect()
+    }
+
+    /// The adiabatic mode at a point, relative to the incoming one: for ranges well before cut-off.
+    ///
+    /// Errors: [`Error::Domain`] off the profile or where the guide is no wider than at cut-off.
+    pub fn adiabatic(&self, range: f64, x: f64) -> Result<Complex64, Error> {
+        let inside = self.check(range, x)?;
+        let width = self.profile.width(range);
+        let (antinode, exponent) = self.bound_mode(range)?;
+        let mode = self.bound_shape(range)?;
+        let across = |x: f64| {
+            let angle = mode.kappa * self.media.q * x;
+            if self.even { angle.cos() } else { angle.sin() }
+        };
+        let shape = if inside {
+            across(x)
+        } else {
+            across(width) * (-mode.gamma * self.media.q * (x - width)).exp()
+        };
+        let size = antinode * shape * self.guide.sign();
+        Ok((Scaled::exp(exponent) * size * self.relative(range)).to_complex())
+    }
+
+    /// From a field of unit energy, without its carrier, to one relative to the incoming mode.
+    fn relative(&self, range: f64) -> Scaled {
+        let carrier = I * self.media.carrier * (range - self.reference);
+        Scaled::exp(carrier - self.incoming_exponent)
+            * (self.incoming_antinode.inv() * self.guide.sign())
+    }
+}
+
+/// A range of a [`Passage`] where the error of the formula itself has been measured.
+#[derive(Clone, Copy, Debug)]
+pub struct Station<'a> {
+    passage: &'a Passage,
+    range: f64,
+    /// Error that the field has near the boundary, and what the beam has of its own.
+    absolute: f64,
+    relative: f64,
+}
+
+impl Station<'_> {
+    /// The uniform field at the position `x`, with an error figure for the integral, for the order in
+    /// `eps` that is left out and for the fit of the profile; all but a constant phase of about `eps/2`.
+    ///
+    /// Errors: as [`Passage::field`].
+    pub fn field(&self, x: f64) -> Result<Estimate, Error> {
+        let field = self.passage.field(self.range, x)?;
+        let own = field.value.norm() * self.relative;
+        let error = field.error + self.absolute + own;
+        let error = Scaled::from(Complex64::from(error));
+        Ok(Estimate::new(field.scaled, error, field.orders, field.form))
+    }
+}
+
+/// Taylor coefficients of a polynomial about `u`.
+fn expand(coefficients: &[f64], u: Complex64) -> Vec<Complex64> {
+    let mut out: Vec<Complex64> = coefficients.iter().map(|&c| Complex64::from(c)).collect();
+    for low in 0..out.len() {
+        for j in (low..out.len() - 1).rev() {
+            let above = out[j + 1];
+            out[j] += above * u;
+        }
+    }
+    out
+}
+
+fn too_fast(eps: f64, slope: f64) -> Error {
+    Error::Undecided {
+        reason: format!(
+            "at cut-off the guide narrows by {slope} per unit of range, eps = {eps:.3}, and the \
+             formulas need 0 < eps <= 1"
+        ),
+        remedy: "take a gentler slope that falls, or a stronger contrast of the media",
+    }
+}
