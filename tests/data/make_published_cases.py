@@ -21,8 +21,14 @@ def add(case, k, p, q, value, scale=None):
                           exact(q.imag), num(value.real), num(value.imag), num(scale)]))
 
 
-# Bessel functions of order k (1 + a) and argument k e^(i t), t in q.
+# Bessel functions of order k (1 + a) and argument k e^(i t), t in q. Hankel functions that are exponentially small
+# come from a difference: 50 digits and what that may lose.
 def bessel(k, a, t):
+    with mp.workdps(50 + int(min(k, 1000))):
+        bessel_precisely(k, a, t)
+
+
+def bessel_precisely(k, a, t):
     nu, x = mpf(k) * (1 + mpc(a)), mpf(k) * mp.exp(1j * mpf(t))
     width = max(abs(mp.sqrt(1 - (nu / x) ** 2)), mpf(k) ** (mpf(-1) / 3))
     j = mp.besselj(nu, x, maxprec=10**6)
