@@ -33,6 +33,8 @@ const FIRST: usize = 16;
 const FILLING: f64 = 0.9;
 const WORST_TAIL: f64 = 1e-5;
 const CLEAN: f64 = 1e-12;
+/// Tails below this may be set by rounding.
+const ROUGH: f64 = 1e-7;
 const LARGEST: f64 = 150.0;
 const SMALLEST: f64 = 0.3;
 /// The error of the moments, relative to their parts.
@@ -186,9 +188,10 @@ impl AlgebraicSeries {
                 BasedForm::find(phase, saddles, branch.base, reach).and_then(&mut ring)
             {
                 let best = first.as_ref().map_or(f64::INFINITY, tail);
-                let noisy = tail(&found) > 0.3 * best;
+                // Where rounding sets the tails a smaller ring is no better; beside a cut it is.
+                let noisy = tail(&found) > 0.3 * best && best < ROUGH;
                 let done = found.filling * RATIO > FILLING || noisy || tail(&found) < CLEAN;
-                if !noisy && (found.filling < FILLING || first.is_none()) {
+                if !noisy && tail(&found) < best && (found.filling < FILLING || first.is_none()) {
                     first = Some(found);
                 }
                 if done {
@@ -197,7 +200,7 @@ impl AlgebraicSeries {
             }
             reach /= RATIO;
         }
-        let mut trials = vec![first?];
+        let mut trials = vec![first.filter(|ring| tail(ring) < WORST_TAIL)?];
         for _ in 0..TRIED {
             let last = &trials[trials.len() - 1];
             if last.form.radius().powi(saddles as i32 + 1) > LARGEST {

@@ -137,10 +137,10 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
     let top = reach.top;
-    if contour.is_closed() && top == f64::NEG_INFINITY {
+    if top == f64::NEG_INFINITY {
         return Err(undecided(
-            "no saddle and no pole that was named contributes: the integral over the closed contour \
-             vanishes, or a singularity inside it was not named",
+            "no saddle and no pole that was named contributes: the integral vanishes, both ends of the \
+             contour running into one valley or it being closed, or a singularity was not named",
         ));
     }
     let poles = poles.into_iter().map(|(pole, _)| pole).collect();
