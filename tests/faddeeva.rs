@@ -171,7 +171,8 @@ proptest! {
         // DLMF 7.4.1 to 7.4.6.
         let f = fresnel(z);
         let g = fresnel(z * C::I);
-        let same = |a: C, b: C| a == b || !(a.norm() < 1e300) && !(b.norm() < 1e300);
+        let huge = |a: C| a.norm().is_nan() || a.norm() >= 1e300;
+        let same = |a: C, b: C| a == b || huge(a) && huge(b);
         prop_assert!(same(erf(-z), -erf(z)) && same(erf(z.conj()), erf(z).conj()));
         prop_assert!(same(w(-z.conj()), w(z).conj()));
         prop_assert!(same(dawson(-z), -dawson(z)) && same(dawson(z.conj()), dawson(z).conj()));
@@ -185,7 +186,9 @@ proptest! {
     #[test]
     fn relations(z in points()) {
         let (e, scale) = ((-z * z).exp(), 1.0 + z.norm_sqr());
-        let close = |a: C, b: C, size: f64| (a - b).norm() < 3e-15 * size * scale || !(size < 1e300);
+        let close = |a: C, b: C, size: f64| {
+            (a - b).norm() < 3e-15 * size * scale || size.is_nan() || size >= 1e300
+        };
         // erfc z = exp(-z^2) w(i z): DLMF 7.2.3; Dawson's integral: DLMF 7.5.1.
         let turned = w(C::I * z);
         if (1e-290..1e290).contains(&e.norm()) {

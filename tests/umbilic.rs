@@ -43,7 +43,7 @@ fn against(name: &str, function: fn(f64, f64, f64) -> Result<Umbilic, Error>) {
         let e = four(&v).into_iter().zip(&exact).map(error).fold(0.0, f64::max);
         errors.push(e);
     }
-    judge(name, errors, 1e-12, 5e-13);
+    judge(name, errors, 2e-13, 1e-13);
 }
 
 #[test]
@@ -58,8 +58,8 @@ fn far_against_the_table() {
         errors[kind].push(e);
     }
     let [e, h] = errors;
-    judge("elliptic, far", e, 5e-12, 5e-12);
-    judge("hyperbolic, far", h, 5e-12, 5e-12);
+    judge("elliptic, far", e, 2e-13, 2e-13);
+    judge("hyperbolic, far", h, 2e-13, 2e-13);
 }
 
 #[test]
@@ -172,9 +172,11 @@ proptest! {
     fn airy_at_z_0([x, y, _] in parameters()) {
         let scale = 12f64.cbrt().recip();
         let (u, v) = (airy(C::new(x, y) * scale), airy(C::new(x, -y) * scale));
-        let exact = 2.0 * PI * PI * (2f64 / 3.0).powf(2.0 / 3.0) * (u.ai * v.bi).re;
+        let product = u.ai * v.bi * (2.0 * PI * PI * (2f64 / 3.0).powf(2.0 / 3.0));
         let psi = elliptic(x, y, 0.0).expect("a value").psi;
-        prop_assert!(close(psi, exact.into(), exact.abs()), "{psi} {exact}");
+        // The real part may be small beside the product, of which it has the rounding.
+        let size = product.re.abs() + 1e-4 * product.norm();
+        prop_assert!(close(psi, product.re.into(), size), "{psi} {product}");
         let scale = 3f64.cbrt().recip();
         let exact = 4.0 * PI * PI * scale * scale * airy_real(x * scale).ai * airy_real(y * scale).ai;
         let psi = hyperbolic(x, y, 0.0).expect("a value").psi;
@@ -185,7 +187,7 @@ proptest! {
 proptest! {
     #![proptest_config(ProptestConfig::with_cases(60))]
 
-    /// Differential equations DLMF 36.10.13 to 36.10.17, from the derivatives that come with the values.
+    /// Differential equations of DLMF 36.10, from the derivatives that come with the values.
     #[test]
     fn differential_equations([x, y, z] in parameters()) {
         let p = [x, y, z];

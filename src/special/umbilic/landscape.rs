@@ -129,7 +129,7 @@ impl Site {
     }
 
     /// The radius at which the moduli of the Taylor terms add up to `spread`, or a little less; at
-    /// most 4.
+    /// most 8.
     pub(super) fn reach(&self, spread: f64) -> f64 {
         let moduli = self.taylor().map(modulus);
         let sizes = self.terms.map(modulus);
@@ -144,7 +144,7 @@ impl Site {
             let [one, two, three] = [tail(rho), tail(2.0 * rho), tail(3.0 * rho)];
             head + (sizes[0] + sizes[3]) * one + sizes[1] * two + sizes[2] * three
         };
-        let mut rho = (spread / moduli[0]).min((spread / moduli[1]).sqrt()).min(4.0);
+        let mut rho = (spread / moduli[0]).min((spread / moduli[1]).sqrt()).min(8.0);
         for _ in 0..30 {
             let ratio = sum(rho) / spread;
             if ratio <= 1.02 {

@@ -106,7 +106,8 @@ fn inner(coefficient: f64, weight: f64) -> (f64, f64) {
 
 /// The elliptic umbilic integral `Psi^(E)(x, y, z)` with its first derivatives.
 ///
-/// Accuracy: 1e-13 (as counted on the module's page) for parameters up to 10. Cost: 10 to 30 us.
+/// Accuracy (as counted on the module's page) for parameters up to 16: 2e-13 at 999 of 1000 points,
+/// worst seen 1e-12. Cost: about 25 us, up to 45.
 /// Source: DLMF 36.2.2, 36.2.5, 36.2.6.
 ///
 /// # Errors
@@ -114,7 +115,7 @@ fn inner(coefficient: f64, weight: f64) -> (f64, f64) {
 ///
 /// ```
 /// use merging_saddles::special::umbilic::elliptic;
-/// // Psi^(E)(0) = pi^(1/2) 3^(-1/2) Gamma(1/6) ... = 3.28868: DLMF 36.2.17.
+/// // Psi^(E)(0) = (1/3) sqrt(pi) Gamma(1/6) = 3.28868: DLMF 36.2.17.
 /// let v = elliptic(0.0, 0.0, 0.0)?;
 /// assert!((v.psi.re - 3.28868).abs() < 1e-5 && v.psi.im.abs() < 1e-13);
 /// # Ok::<(), merging_saddles::Error>(())
@@ -124,7 +125,7 @@ pub fn elliptic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     // s = r + z/3; the integral over t is Gaussian for Im r < 0.
     let (inner, weight) = inner(y * y / 12.0, y / 6.0);
     let by_y = if weight == 0.0 {
-        // Psi_yy = Psi_xx + (2 i z Psi_x - x Psi)/3: DLMF 36.10.15.
+        // Psi_yy = Psi_xx + (2 i z Psi_x - x Psi)/3: DLMF 36.10.
         [(z * z + x) / 3.0, 4.0 / 3.0 * z, 1.0, 0.0].map(|c| Complex64::new(0.0, y * c))
     } else {
         real([0.0, 0.0, 0.0, weight])
@@ -144,7 +145,8 @@ pub fn elliptic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
 
 /// The hyperbolic umbilic integral `Psi^(H)(x, y, z)` with its first derivatives.
 ///
-/// Accuracy: 1e-13 (as counted on the module's page) for parameters up to 10. Cost: 10 to 30 us.
+/// Accuracy (as counted on the module's page) for parameters up to 16: 6e-14 at 999 of 1000 points,
+/// worst seen 3e-13. Cost: about 15 us, up to 40.
 /// Source: DLMF 36.2.3, 36.2.5, 36.2.8.
 ///
 /// # Errors
@@ -164,7 +166,7 @@ pub fn hyperbolic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     let (inner, weight) = inner(-difference * difference / 24.0, difference / 12.0);
     // Half of Psi_x - Psi_y, over i.
     let split = if weight == 0.0 {
-        // Sum of DLMF 36.10.16 and 36.10.17.
+        // Sum of the two equations without Psi_xy, DLMF 36.10.
         [sum / 6.0 + z * z / 12.0, 2.0 / 3.0 * z, 1.0, 0.0]
             .map(|c| Complex64::new(0.0, -difference * c))
     } else {
