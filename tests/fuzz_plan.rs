@@ -105,7 +105,10 @@ fn nonsense_phases() {
         ("constant", Box::new(|_| (c(1.0, 2.0), c(0.0, 0.0)))),
         ("zero", Box::new(|_| (c(0.0, 0.0), c(0.0, 0.0)))),
         ("linear", Box::new(|z| (z, c(1.0, 0.0)))),
-        ("NaN on a half-plane", Box::new(move |z| if z.re > 0.3 { (nan, nan) } else { (z * z, z * 2.0) })),
+        (
+            "NaN on a half-plane",
+            Box::new(move |z| if z.re > 0.3 { (nan, nan) } else { (z * z, z * 2.0) }),
+        ),
         ("NaN everywhere", Box::new(move |_| (nan, nan))),
         ("infinite", Box::new(|z| (z * f64::INFINITY, c(f64::INFINITY, 0.0)))),
         ("not analytic", Box::new(|z| (c(z.norm_sqr(), 0.0), z.conj()))),
@@ -309,7 +312,8 @@ fn units_do_not_matter() {
 fn contours_of_one_class_give_one_value() {
     // f = z^3/3 - z (Airy's phase): a straight way, detours, a loop, through both saddles, there and
     // back again.
-    let phase = || AnyPhase::Polynomial(Polynomial([0.0, -1.0, 0.0, 1.0 / 3.0].map(C::from).to_vec()));
+    let phase =
+        || AnyPhase::Polynomial(Polynomial([0.0, -1.0, 0.0, 1.0 / 3.0].map(C::from).to_vec()));
     let (from, to) = (C::from_polar(4.0, 5.0 * PI / 6.0), C::from_polar(4.0, PI / 6.0));
     let ways: [Vec<C>; 5] = [
         vec![from, to],
