@@ -128,6 +128,7 @@ fn report(leak: &Passage, polarization: Polarization) -> Result<(), Error> {
         leak.cutoff_width()
     );
     println!("eps {:.4}, transition over {:.1} um", leak.eps(), length / 1e3);
+    println!("the fit of the profile departs by {:.1e} of that", leak.fit_departure());
     let beam = leak.beam()?;
     let [low, high] = beam.half_power_rad.map(f64::to_degrees);
     println!(

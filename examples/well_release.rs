@@ -98,6 +98,7 @@ fn report(well: &Passage) -> Result<(), Error> {
     let (release, length) = (well.cutoff_range(), well.layer_range());
     println!("released at the time {release:.1}, at a half width of {:.4}", well.cutoff_width());
     println!("eps {:.4}, over a time of {length:.1}", well.eps());
+    println!("the fit of the profile departs by {:.1e} of that", well.fit_departure());
     // The momentum of greatest density, by steps of 0.5 % of the layer's scale.
     let scale = well.layer_height().recip();
     let mut peak = (0.0, 0.0);

@@ -240,3 +240,33 @@ fn zero_of_slope(phase: &Polynomial, random: &mut Random) -> Complex64 {
     }
     z
 }
+
+#[test]
+fn a_phase_that_is_bounded_at_infinity_is_refused_or_mapped() {
+    // f = i tanh z levels off at both ends: no descent leads to where the integrand vanishes.
+    let tanh = Integral::new(
+        |z: Complex64| (z.tanh() * c(0.0, 1.0), z.cosh().powi(-2) * c(0.0, 1.0)),
+        Contour::through([c(-2.0, 0.0), c(2.0, 0.0)]),
+    );
+    match tanh.plan() {
+        Err(error @ Error::Undecided { .. }) => {
+            println!("{error}");
+            assert!(error.to_string().contains("bounded"), "{error}");
+        }
+        other => panic!("{:?}", other.map(|plan| plan.at(9.0))),
+    }
+    assert!(tanh.quadrature(9.0, 1e-9).is_err());
+    // With g = 1/cosh(z) and t = tanh z it is integral_-1^1 (1 - t^2)^(-1/2) e^(-k t) dt = pi I_0(k) (DLMF
+    // 10.32.2); e^(-9) I_0(9) by mpmath.
+    let mapped = Integral::new(
+        |t: Complex64| (t * c(0.0, 1.0), c(0.0, 1.0)),
+        Contour::between([c(-1.0, 0.0), c(1.0, 0.0)]),
+    )
+    .power_at_start(0.5)
+    .power_at_end(0.5);
+    let exact = PI * 0.13495952458172303 * 9f64.exp();
+    let got = mapped.plan().and_then(|plan| plan.at(9.0)).expect("a value");
+    assert!((got.value - exact).norm() <= got.error && got.relative_error < 1e-5);
+    let yardstick = mapped.quadrature(9.0, 1e-13).expect("a yardstick");
+    assert!((yardstick.value - exact).norm() < 1e-12 * exact);
+}

@@ -59,6 +59,10 @@ fn random_ends_and_poles_near_saddles() {
         // Never on the end.
         let pole = start + close(-2.0);
         let far = valley(phase.0[degree], degree, random.below(degree), 12.0);
+        // Nor on the contour as given: there quadrature loses digits that its figure does not show.
+        if ((pole - start) / (far - start)).im.abs() * (far - start).norm() < 1e-3 {
+            continue;
+        }
         let contour = if random.next() < 0.5 {
             Contour::starting_at([start, far])
         } else {
@@ -81,5 +85,5 @@ fn random_ends_and_poles_near_saddles() {
         );
         tally.enter(&label, got, integral.quadrature(k, 1e-12));
     }
-    tally.check("ends and poles", 0.9);
+    tally.check("ends and poles", 0.97);
 }

@@ -32,7 +32,7 @@ fn revival_and_scaling_laws() {
         let scale = eps.cbrt();
         let taper = Taper::slow(2, false, 1.0, eps, 3.0);
         let ranges = [0.0, 0.5 * PI, PI, PI + scale];
-        let shots = taper.run(&ranges, 15.0 / scale, 0.6);
+        let shots = taper.run(&ranges, 25.0 / scale, 0.8);
         // At the boundary: at cut-off, half way, and inside at the lower cut-off.
         let edge = |s: &Snapshot| s.psi[s.inside].norm();
         let seen = [edge(&shots[0]), inside(&shots[1]), inside(&shots[2]), inside(&shots[3])];

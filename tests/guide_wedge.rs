@@ -5,6 +5,7 @@
 //! ratio 1.5, 0.5 dB per wavelength in the bottom, 200 m deep, 1 in 20.
 
 #[path = "support/compare.rs"]
+#[allow(dead_code)] // shared by several tests
 mod compare;
 #[path = "support/tapered.rs"]
 #[allow(dead_code)] // shared by several tests

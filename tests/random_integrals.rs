@@ -5,6 +5,8 @@
 //! end points, also on saddles; amplitudes 1, entire, with simple and double poles; wavenumbers
 //! from 3 to 1e4. A plain run takes some 2,500, `cargo test --release --test random_integrals --
 //! --ignored --nocapture` ten thousand others.
+// `!(a <= b)` is meant: NaN must fail.
+#![allow(clippy::neg_cmp_op_on_partial_ord)]
 
 #[path = "support/random.rs"]
 #[allow(dead_code)]

@@ -13,10 +13,12 @@
 mod airy;
 #[path = "../support/arguments.rs"]
 mod arguments;
+mod cuspoid;
 mod field;
 mod layer;
 mod measured;
 mod reference;
+mod relative;
 #[path = "../support/table.rs"]
 mod table;
 
@@ -44,6 +46,21 @@ const ENTRIES: &[Entry] = &[
     Entry { name: "airy_complex", measure: airy::complex },
     Entry { name: "airy_scaled", measure: airy::scaled },
     Entry { name: "airy_real", measure: airy::real },
+    Entry { name: "airy_zeros", measure: relative::zeros },
+    Entry { name: "scorer", measure: relative::scorers },
+    Entry { name: "incomplete_airy", measure: relative::incomplete },
+    Entry { name: "faddeeva", measure: relative::faddeeva },
+    Entry { name: "pearcey_real", measure: cuspoid::pearcey_real },
+    Entry { name: "pearcey_complex", measure: cuspoid::real_line::<2> },
+    Entry { name: "pearcey_valleys", measure: cuspoid::valleys::<2> },
+    Entry { name: "pearcey_zeros", measure: cuspoid::zeros },
+    Entry { name: "swallowtail", measure: cuspoid::real_line::<3> },
+    Entry { name: "swallowtail_complex", measure: cuspoid::real_line::<3> },
+    Entry { name: "swallowtail_valleys", measure: cuspoid::valleys::<3> },
+    Entry { name: "butterfly", measure: cuspoid::real_line::<4> },
+    Entry { name: "butterfly_valleys", measure: cuspoid::valleys::<4> },
+    Entry { name: "elliptic_umbilic", measure: relative::elliptic_umbilic },
+    Entry { name: "hyperbolic_umbilic", measure: relative::hyperbolic_umbilic },
     Entry { name: "cutoff_layer", measure: layer::cutoff },
     Entry { name: "uniform_field", measure: field::uniform },
 ];

@@ -104,8 +104,8 @@ fn print_followed(followed: &Followed) {
     );
     println!(
         "Levels are those of the uniform field: an integral, evaluated by expansions at its saddles\n\
-         and by the yardstick quadrature, each with its error figure. How far the formula itself, an\n\
-         expansion in eps, is from the wave equation at the bed stands in the last column."
+         and by the yardstick quadrature, each with its error figure. The whole figure, in the last column,\n\
+         covers what the formula, an expansion in eps, and the smoothing of the track leave out."
     );
 }
 
@@ -113,7 +113,7 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
     let Followed { mode, place, run, window_m: [from, to], beam_start_m, .. } = followed;
     println!(
         "\n                              at the saddles            yardstick\n\
-         range (m)  depth (m)  where    level (dB)   figure  level (dB)   figure   apart (dB)  formula"
+         range (m)  depth (m)  where    level (dB)   figure  level (dB)   figure   apart (dB)    whole"
     );
     let mut refusals = Vec::new();
     let mut points = 0;
@@ -126,7 +126,9 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
             columns(&saddles),
             columns(&yardstick),
             saddles.as_ref().map_or(NONE.into(), |u| format!("{:.0e}", u.apart_db)),
-            followed.formula_db(range_m).map_or(NONE.into(), |db| format!("{db:.2}dB"))
+            followed
+                .whole_figure_db(range_m, depth_m)
+                .map_or(NONE.into(), |db| format!("{db:.2}dB"))
         );
         points += 1;
         refusals.extend(saddles.err());

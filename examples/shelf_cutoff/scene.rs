@@ -143,7 +143,9 @@ impl Followed {
         let passage = self.run.passage();
         if range_m < passage.fitted_from() {
             let p = passage.adiabatic(range_m, depth_m)?;
-            return Ok(Level { db: level_db(p), figure_db: 0.0, apart_db: 0.0 });
+            // What the adiabatic form leaves out is of order eps.
+            let figure_db = decibels(self.run.eps());
+            return Ok(Level { db: level_db(p), figure_db, apart_db: 0.0 });
         }
         let p = passage.field(range_m, depth_m)?;
         Ok(Level { db: level_db(p.value), figure_db: decibels(p.relative_error), apart_db: 0.0 })
@@ -161,9 +163,10 @@ impl Followed {
         })
     }
 
-    /// How far the formula itself is from the wave equation, in dB of the level at the bed.
-    pub fn formula_db(&self, range_m: f64) -> Result<f64, Error> {
-        self.run.passage().departure(range_m).map(decibels)
+    /// The whole error figure of the level in dB, that of the formula and of the smoothing included.
+    pub fn whole_figure_db(&self, range_m: f64, depth_m: f64) -> Result<f64, Error> {
+        let station = self.run.passage().station(range_m)?;
+        Ok(decibels(station.field(depth_m)?.relative_error))
     }
 }
 

@@ -98,17 +98,17 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
     let beside = |node: usize| algebraic.iter().any(|end| end.near.iter().any(|n| n.0 == node));
-    let nodes = resolve(
-        &given,
-        &sheeting,
-        &topology,
-        &tree,
-        &saddles,
-        &ends,
-        &beside,
-        &mut reach,
-        (size, drop),
-    )?;
+    let scene = Scene {
+        sheeting: &sheeting,
+        topology: &topology,
+        tree: &tree,
+        saddles: &saddles,
+        ends: &ends,
+        beside: &beside,
+        size,
+        drop,
+    };
+    let nodes = resolve(&given, &scene, &mut reach)?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
@@ -161,7 +161,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             branches.iter().map(|b| (saddle.z - b.base).norm().powf(b.lambda - 1.0)).product();
         let weight = amplitude.value(saddle.z).norm()
             * power
-            * (2.0 * std::f64::consts::PI / second.norm().max(1e-3)).sqrt();
+            * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
         let weight = if weight.is_finite() { weight } else { 0.0 };
         plan.saddles.push(Place { z: saddle.z, exponent: h, weight });
@@ -211,18 +211,22 @@ impl Reach {
     }
 }
 
+/// What is known before the groups are looked at.
+struct Scene<'a> {
+    sheeting: &'a Sheeting<'a, 'a>,
+    topology: &'a Topology<'a>,
+    tree: &'a Tree,
+    saddles: &'a [Saddle],
+    ends: &'a [End],
+    /// Whether a node's saddle is treated together with an algebraic end.
+    beside: &'a dyn Fn(usize) -> bool,
+    size: f64,
+    drop: f64,
+}
+
 /// Series and multiplicities of all groups, from the highest downwards.
-fn resolve(
-    given: &Given,
-    sheeting: &Sheeting,
-    topology: &Topology,
-    tree: &Tree,
-    saddles: &[Saddle],
-    ends: &[End],
-    beside: &dyn Fn(usize) -> bool,
-    reach: &mut Reach,
-    (size, drop): (f64, f64),
-) -> Result<Vec<Node>, Error> {
+fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>, Error> {
+    let Scene { sheeting, topology, tree, saddles, ends, beside, size, drop } = *scene;
     let highest = |g: &Group| {
         g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
     };
@@ -338,7 +342,19 @@ fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error
     let wholes: Vec<usize> = wholes.filter(|&n| plan.nodes[n].series.is_some()).collect();
     let mut tries = std::iter::once(None).chain(wholes.iter().copied().map(Some));
     let Some(passed) = tries.find(|&whole| closes(&with(whole))) else {
-        return Err(undecided("the contributions found do not join the two ends of the contour"));
+        return Err(match topology.stuck_end(floor) {
+            Some((z, height)) => Error::Undecided {
+                reason: format!(
+                    "the steepest descent from an end of the contour stops near z = {z:.4} at \
+                     Re(i f) = {height:.4}: the phase tends to a bounded value there, or has a \
+                     singularity or a cut in the way"
+                ),
+                remedy: "end the contour in a valley where Im f grows without bound; if f is bounded at \
+                         infinity, map infinity to a finite point first and give that as a finite end, \
+                         with `power_at_start` or `power_at_end` for an algebraic amplitude",
+            },
+            None => undecided("the contributions found do not join the two ends of the contour"),
+        });
     };
     let mut dropped = Vec::new();
     if let Some(whole) = passed {

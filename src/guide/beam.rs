@@ -8,9 +8,11 @@
 //! ```
 //!
 //! whose integral is 1 without losses; for `eps -> 0` it is that of the layer,
-//! `4 P^2 exp(-(4/3) P^3)`, `P = p (m/eps)^(1/3)`. A wave of momentum `p` runs at the angle `theta` with `k sin(theta) = q p` kept exactly (the one-way equation itself has the tangent there).
+//! `4 P^2 exp(-(4/3) P^3)`, `P = p (m/eps)^(1/3)`. A wave of momentum `p` runs at the angle `theta` with
+//! `k sin(theta) = q p` kept exactly (the one-way equation itself has the tangent there).
 //! Angles are from the axis of range (the surface, the middle of the guide), not from the boundary that
-//! slopes against it; to leading order there is no difference. The ray starts where the phase is stationary: at the range `Re T(p)`, `Re[h_n + p h_n']` from the middle.
+//! slopes against it; to leading order there is no difference. The ray starts where the phase is
+//! stationary: at the range `Re T(p)`, `Re[h_n + p h_n']` from the middle.
 
 use super::passage::{Media, Passage};
 use crate::{Complex64, Error};

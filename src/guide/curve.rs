@@ -18,6 +18,7 @@
 use super::dispersion::Dispersion;
 use crate::Complex64;
 use std::f64::consts::{FRAC_PI_2, TAU};
+use std::fmt;
 
 /// The grid: step, lower left corner, columns and rows.
 const STEP: f64 = 0.4;
@@ -38,7 +39,7 @@ const GAUSS: [(f64, f64); 3] = [
 ];
 
 /// A curved profile for one mode.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, PartialEq)]
 pub(super) struct Curve {
     dispersion: Dispersion,
     /// `c_2, c_3, ..`
@@ -47,6 +48,13 @@ pub(super) struct Curve {
     patches: Vec<Option<Vec<Complex64>>>,
     /// Where the contour crosses the line `Im w = pi/2`.
     gate: Complex64,
+}
+
+impl fmt::Debug for Curve {
+    /// Without the table.
+    fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(out, "Curve({:?}, {:?})", self.dispersion, self.higher)
+    }
 }
 
 impl Curve {

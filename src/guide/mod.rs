@@ -7,11 +7,15 @@
 //! Three floors:
 //!
 //! - [`layer`]: the transition functions at cut-off, in closed form by Airy functions. Cheap, and
-//!   right to some `eps^(1/3)` near cut-off.
-//! - [`SlopingGuide`]: the uniform field in scaled units at constant slope, before, at and after
-//!   cut-off, inside and outside, for any mode and density ratio.
-//! - [`AcousticGuide`]: both in physical units, for sound in water over a sloping bottom: cut-off depths and
-//!   ranges, the beam's take-off angle, pressures and levels.
+//!   right to some `eps^(1/3)` near cut-off. [`revival`]: what a released mode does at the cut-offs of lower ones.
+//! - [`SlopingGuide`]: the uniform field in scaled units, before, at and after cut-off, inside and outside, for
+//!   any mode, parity and density ratio, on straight and curved profiles.
+//! - Three physics on one core, each in its own units, along a [`Profile`] of the caller's own:
+//!   [`AcousticGuide`] (sound in water over a sloping bottom, metres), [`SlabGuide`] (light in a tapered slab, TE and TM,
+//!   nanometres), [`QuantumWell`] (states of a narrowing well, scaled). Each gives a [`Passage`]: the field
+//!   everywhere, its error figure, the [`Beam`] and its [`Footprint`], the energy left inside, levels along a line of
+//!   receivers. For sound there are besides [`ModeCutOff`] (the same with metres in the names),
+//!   [`AcousticGuide::source`] (modes added with their phases) and [`sensitivities`].
 //!
 //! ```
 //! use merging_saddles::guide::{AcousticGuide, TwoLayer, level_db};
@@ -35,11 +39,39 @@
 //! # Ok::<(), merging_saddles::Error>(())
 //! ```
 //!
+//! # How good the formulas are
+//!
+//! Relative L2 errors inside / outside against a solution of the one-way equation, at the layer's time
+//! `t = 0` and `t = 2`, one constant phase taken out (`tests/guide_pde.rs`, `tests/guide_profiles.rs`; even and
+//! higher modes start from a flat guide, so that no other mode is excited; the tests run some rows at
+//! `eps = 0.02` to be quick):
+//!
+//! | mode | m | profile | eps | order | t = 0 | t = 2 |
+//! | --- | --- | --- | --- | --- | --- | --- |
+//! | 1 | 1 | straight | 0.01 | leading | 6.5e-3 / 1.5e-2 | 3.2e-2 / 2.6e-2 |
+//! | 1 | 1 | straight | 0.01 | next | 1.7e-5 / 1.5e-4 | 1.0e-3 / 1.6e-4 |
+//! | 1 | 1 | straight | 0.1 | next | 1.7e-3 / 1.4e-2 | 1.9e-2 / 8.0e-3 |
+//! | 2 even | 1 | straight | 0.01 | next | 1.0e-4 / 1.0e-4 | 1.0e-3 / 2.1e-4 |
+//! | 2 even | 0.55 | straight | 0.01 | next | 1.2e-4 / 1.1e-4 | 2.4e-4 / 1.7e-4 |
+//! | 2 | 1 | straight | 0.01 | next | 4.0e-4 / 1.3e-4 | 1.2e-3 / 3.8e-4 |
+//! | 2 | 0.55 | straight | 0.01 | next | 4.2e-4 / 1.1e-4 | 5.5e-4 / 3.5e-4 |
+//! | 3 | 1.5 | straight | 0.02 | next | 2.1e-4 / 1.6e-3 | 5.3e-3 / 1.7e-3 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | leading | 7.5e-3 / 1.6e-2 | 4.0e-2 / 2.7e-2 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | next | 1.8e-3 / 1.5e-3 | 1.2e-2 / 2.1e-3 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | next | 5.7e-4 / 5.4e-4 | 8.7e-3 / 2.1e-3 |
+//!
+//! The benchmark wedge (25 Hz, 1500 over 1700 m/s, density ratio 1.5, 0.5 dB per wavelength, 200 m deep, 1 in 20;
+//! `eps = 0.19`) in `tests/guide_wedge.rs`: outside 1 to 3 % in mode 1, 4 to 6 % in mode 2, 5 to 12 % in mode 3; inside 2 to 3, 6
+//! to 8 and 13 to 15 %, since modes couple at such a slope. Levels of the beam are within 0.4 dB, those in the water
+//! within 1.4 dB. [`Passage::departure`] says 5 to 44 %, and covers. [`Passage::station`] makes an error figure of it
+//! that covered every one of 1010 points of four runs (`eps` 0.02 and 0.1, straight and curved), 12 to 18 times the error
+//! at the median.
+//!
 //! # Caution
 //!
-//! Levels from an idealised two-layer model with a plane bed are no basis alone for decisions on the exposure of
-//! divers, swimmers or marine animals, nor for navigation: real water is layered and rough, real bottoms carry
-//! shear and are not uniform. Local rules and licensed practice decide.
+//! Levels from an idealised two-layer model are no basis alone for decisions on the exposure of divers, swimmers or
+//! marine animals, on laser safety, or for navigation: real water is layered and rough, real bottoms carry shear and
+//! are not uniform, real chips are three-dimensional and have rough edges. Local rules and licensed practice decide.
 
 mod acoustic;
 mod adiabatic;
@@ -54,6 +86,7 @@ mod revival;
 mod sensitivity;
 mod slab;
 mod source;
+mod station;
 mod uniform;
 mod well;
 
@@ -61,11 +94,12 @@ pub use acoustic::{AcousticGuide, CutOffPlace, ModeCutOff, TwoLayer, level_db};
 pub use adiabatic::Adiabatic;
 pub use beam::{Beam, Footprint};
 pub use dispersion::{ModeAmplitude, ModePhase};
-pub use passage::{Passage, Station};
+pub use passage::Passage;
 pub use profile::Profile;
 pub use revival::revival;
 pub use sensitivity::{Sensitivities, sensitivities};
 pub use slab::{Polarization, Slab, SlabGuide};
 pub use source::SourceField;
+pub use station::Station;
 pub use uniform::{Order, SlopingGuide, UniformField};
 pub use well::QuantumWell;

@@ -340,44 +340,9 @@ impl Passage {
         Ok(times(self.uniform(range, x)?.evaluate()?, self.relative(range)))
     }
 
-    /// How well the formula holds at a range: twice the mismatch of the two conditions at the boundary
-    /// ([`SlopingGuide::mismatch`]), plus the phase that the fit of the profile leaves.
-    ///
-    /// Relative to the field at the boundary, as an amplitude; the constant phase of about `eps/2` at the
-    /// start is not in it. [`station`](Self::station) makes an error figure of it.
-    ///
-    /// Cost: four quadratures. Errors: as [`field`](Self::field).
-    pub fn departure(&self, range: f64) -> Result<f64, Error> {
-        self.uniform(range, 0.0)?;
-        Ok(2.0 * self.guide.mismatch_at(self.place(range))? + self.fit_departure)
-    }
-
-    /// A range at which fields are wanted with the whole error figure, that of the formula included.
-    ///
-    /// Cost: nine quadratures, then one for each field. Errors: as [`field`](Self::field).
-    ///
-    /// ```
-    /// use merging_saddles::guide::{Profile, QuantumWell};
-    /// let well = QuantumWell.along(1, Profile::plane(3.5, 0.01)?, 0.0)?;
-    /// let wall = well.cutoff_width();
-    /// let at_release = well.station(well.cutoff_range())?;
-    /// let (inside, outside) = (at_release.field(wall * (1.0 - 1e-9))?, at_release.field(wall)?);
-    /// // Two formulas for one value (psi is continuous): they agree within their figures.
-    /// let apart = (inside.value - outside.value).norm();
-    /// assert!(apart <= inside.error + outside.error && outside.relative_error < 0.02);
-    /// # Ok::<(), merging_saddles::Error>(())
-    /// ```
-    pub fn station(&self, range: f64) -> Result<Station<'_>, Error> {
-        let departure = self.departure(range)?;
-        let at_boundary = self.field(range, self.profile.width(range))?.value.norm();
-        // What the beam carries away from its birth.
-        let h = self.media.q * self.cutoff_width;
-        let birth = 2.0 * self.guide.mismatch(h)? + self.fit_departure;
-        Ok(Station { passage: self, range, absolute: departure * at_boundary, relative: birth })
-    }
-
     /// The boundary-layer form at a point, for a quick look: one pair of Airy functions. Good within a few
-    /// [`layer_range`](Self::layer_range) of cut-off, to some `eps^(1/3)`.
+    /// [`layer_range`](Self::layer_range) of cut-off, to some `n eps^(1/3)` for mode `n`: 5 dB off for mode 3 at
+    /// `eps = 0.09`, 1 % at `eps = 1e-7`.
     ///
     /// Errors: [`Error::Domain`] for a place off the profile; [`Error::NoDigits`] hopelessly far from
     /// cut-off.
@@ -488,30 +453,6 @@ impl Passage {
         let carrier = I * self.media.carrier * (range - self.reference);
         Scaled::exp(carrier - self.incoming_exponent)
             * (self.incoming_antinode.inv() * self.guide.sign())
-    }
-}
-
-/// A range of a [`Passage`] where the error of the formula itself has been measured.
-#[derive(Clone, Copy, Debug)]
-pub struct Station<'a> {
-    passage: &'a Passage,
-    range: f64,
-    /// Error that the field has near the boundary, and what the beam has of its own.
-    absolute: f64,
-    relative: f64,
-}
-
-impl Station<'_> {
-    /// The uniform field at the position `x`, with an error figure for the integral, for the order in
-    /// `eps` that is left out and for the fit of the profile; all but a constant phase of about `eps/2`.
-    ///
-    /// Errors: as [`Passage::field`].
-    pub fn field(&self, x: f64) -> Result<Estimate, Error> {
-        let field = self.passage.field(self.range, x)?;
-        let own = field.value.norm() * self.relative;
-        let error = field.error + self.absolute + own;
-        let error = Scaled::from(Complex64::from(error));
-        Ok(Estimate::new(field.scaled, error, field.orders, field.form))
     }
 }
 

@@ -37,7 +37,12 @@
 //! its own `eps` only. For single points quadrature is the cheaper way (0.1 ms against 4 ms for a plan), at
 //! any `eps`.
 //!
-//! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_pde.rs`.
+//! On a curved profile the phase is `integral of 2 p T(h_n(p)) dp` (see `curve.rs`), the amplitude gains
+//! `(-h'(T(p)))^(-1/2)`, and `eps` in the next order the local slope. Modes even in `x` have `(n - 1) pi` for
+//! `(n - 1/2) pi` and the cosine.
+//!
+//! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_pde.rs` and
+//! `tests/guide_profiles.rs`.
 
 use super::curve::Curve;
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Side};
@@ -380,9 +385,9 @@ impl UniformField {
     /// parameter), not of the formula in `eps`. Cost: a plan, some 4 ms.
     ///
     /// Errors: as [`Integral::plan`] and [`crate::Plan::at`]. Refused often for `m > 1`, where the
-    /// descent from the saddles runs into the Brewster point, and imprecise for higher modes, which
-    /// have a third saddle near (at `w = -2 i m/((n - 1/2) pi)` at cut-off): use
-    /// [`quadrature`](Self::quadrature) then.
+    /// descent from the saddles runs into the Brewster point, and on curved profiles late after cut-off: use
+    /// [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i m/((n - 1/2) pi)`
+    /// at cut-off); the three are treated together.
     pub fn evaluate(&self) -> Result<Estimate, Error> {
         Ok(self.finish(
             self.integral.plan_for(self.wavenumber..=self.wavenumber)?.at(self.wavenumber)?,

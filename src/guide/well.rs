@@ -40,7 +40,7 @@ impl QuantumWell {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     ///
-    /// Errors: as [`SlabGuide::along`].
+    /// Errors: as [`SlabGuide::along`](super::SlabGuide::along).
     pub fn along(
         &self,
         index: u32,

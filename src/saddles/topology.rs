@@ -102,7 +102,7 @@ impl<'a> Topology<'a> {
             path,
             whole,
             closed,
-            top: top + 0.02 * (top - bottom) + 1e-9,
+            top: top + 0.02 * (top - bottom) + 1e-12 * top.abs(),
             bottom,
             drop,
             longest,
@@ -175,6 +175,16 @@ impl<'a> Topology<'a> {
             list.push((weight, point));
         }
         Some(list)
+    }
+
+    /// An end of the contour whose descent stops above a level: where, and how far down it came.
+    pub fn stuck_end(&self, floor: f64) -> Option<(Complex64, f64)> {
+        if self.closed {
+            return None;
+        }
+        let lowest = self.tails.iter().map(|tail| tail[tail.len() - 1]);
+        let heights = lowest.map(|z| (z, self.h.height(z)));
+        heights.into_iter().find(|(_, height)| *height > floor + SLACK * self.drop)
     }
 
     /// The certificate: do the valleys and the ends of the contour cancel?

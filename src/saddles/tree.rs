@@ -37,8 +37,8 @@ pub(crate) struct Tree {
 /// Saddles whose phases differ by less than this over the greatest wavenumber are not worth telling
 /// apart: each alone would be known to some `e^-6` at best.
 const TOGETHER: f64 = 6.0;
-/// Never told apart below this difference, whatever the wavenumber.
-const MERGED: f64 = 1e-7;
+/// Without a greatest wavenumber: this many times the least.
+const SPAN: f64 = 3e7;
 /// Beyond this over the least wavenumber, taking saddles together does not pay.
 const APART: f64 = 60.0;
 
@@ -50,7 +50,7 @@ impl Tree {
         largest: usize,
         (least, greatest): (f64, f64),
     ) -> Tree {
-        let merged_below = (TOGETHER / greatest).max(MERGED);
+        let merged_below = TOGETHER / greatest.min(SPAN * least);
         let mut groups: Vec<Group> = Vec::new();
         let mut open: Vec<usize> = Vec::new();
         for index in 0..saddles.len() {

@@ -56,12 +56,7 @@ impl Landscape {
         let r = q.exp();
         let ir = Complex64::new(-r.im, r.re);
         let [c1, c2, c3] = self.outer;
-        let terms = [
-            ir * c1,
-            ir * r * c2,
-            ir * r * r * c3,
-            Complex64::new(0.0, self.inner) / r,
-        ];
+        let terms = [ir * c1, ir * r * c2, ir * r * r * c3, Complex64::new(0.0, self.inner) / r];
         let surplus = (self.weight.ln() - q.re).max(0.0);
         Site { q, h: terms[0] + terms[1] + terms[2] + terms[3] + q * 0.5, terms, surplus }
     }
@@ -71,8 +66,13 @@ impl Landscape {
     pub(super) fn saddles(&self) -> ([Complex64; 4], usize) {
         let [c1, c2, c3] = self.outer;
         let real = |x: f64| Complex64::new(x, 0.0);
-        let all =
-            [real(-self.inner), Complex64::new(0.0, -0.5), real(c1), real(2.0 * c2), real(3.0 * c3)];
+        let all = [
+            real(-self.inner),
+            Complex64::new(0.0, -0.5),
+            real(c1),
+            real(2.0 * c2),
+            real(3.0 * c3),
+        ];
         let coefficients = if self.inner == 0.0 { &all[1..] } else { &all[..] };
         let (mut roots, count) = roots(coefficients);
         for r in &mut roots[..count] {
@@ -84,11 +84,11 @@ impl Landscape {
     /// The valley that surely lies straight ahead.
     pub(super) fn valley(&self, site: &Site) -> Option<Valley> {
         let [t1, t2, t3, inner] = site.terms;
-        if -3.0 * 0.98 * t3.re >= 2.0 * t2.norm() + t1.norm() + inner.norm() + 0.5 {
+        if -3.0 * 0.98 * t3.re >= 2.0 * modulus(t2) + modulus(t1) + modulus(inner) + 0.5 {
             let n = ((site.q.im - FRAC_PI_6) * 3.0 / TAU).round();
             return Some(Valley::Outer(n as i32));
         }
-        let outer = 3.0 * t3.norm() + 2.0 * t2.norm() + t1.norm();
+        let outer = 3.0 * modulus(t3) + 2.0 * modulus(t2) + modulus(t1);
         if inner.re <= 0.0 && 0.5 - 0.98 * inner.re >= 1.02 * outer {
             let m = ((site.q.im + FRAC_PI_2.copysign(self.inner)) / TAU).round();
             return Some(Valley::Inner(if self.inner == 0.0 { 0 } else { m as i32 }));
@@ -128,34 +128,44 @@ impl Site {
         t1 + t2 * 2.0 + t3 * 3.0 - inner + 0.5
     }
 
-    /// The radius at which the moduli of the Taylor terms add up to `spread`; at most 8.
+    /// The radius at which the moduli of the Taylor terms add up to `spread`, or a little less; at
+    /// most 4.
     pub(super) fn reach(&self, spread: f64) -> f64 {
-        let moduli = self.taylor().map(|c| c.norm());
-        let sizes = self.terms.map(|t| t.norm());
-        // sum over m > 8 of x^m/m! < x^9/9! e^x
+        let moduli = self.taylor().map(modulus);
+        let sizes = self.terms.map(modulus);
+        // sum over m > 8 of x^m/m!
+        let tail = |x: f64| {
+            let x3 = x * x * x;
+            let factor = if x < 7.0 { 10.0 / (10.0 - x) } else { x.exp() };
+            x3 * x3 * x3 / 362_880.0 * factor
+        };
         let sum = |rho: f64| {
             let head = moduli.iter().rev().fold(0.0, |sum, c| (sum + c) * rho);
-            let tail = |size: f64, j: f64| {
-                let x = j.abs() * rho;
-                size * x.powi(9) / 362_880.0 * x.exp()
-            };
-            head + sizes.iter().zip(POWERS).map(|(size, j)| tail(*size, j)).sum::<f64>()
+            let [one, two, three] = [tail(rho), tail(2.0 * rho), tail(3.0 * rho)];
+            head + (sizes[0] + sizes[3]) * one + sizes[1] * two + sizes[2] * three
         };
-        let mut high = 8.0f64;
-        for (m, c) in moduli.iter().enumerate() {
-            high = high.min((spread / c).powf(1.0 / (m + 1) as f64));
-        }
-        let mut rho = high;
-        // The sum rises at least linearly: dividing by its excess goes too low at most once.
-        for _ in 0..12 {
+        let mut rho = (spread / moduli[0]).min((spread / moduli[1]).sqrt()).min(4.0);
+        for _ in 0..30 {
             let ratio = sum(rho) / spread;
             if ratio <= 1.02 {
                 break;
             }
-            rho *= if ratio > 2.0 { 0.7 } else { 1.0 - 0.4 * (ratio - 1.0) };
+            rho *= if ratio > 10.0 {
+                0.6
+            } else if ratio > 2.0 {
+                0.8
+            } else {
+                1.0 - 0.3 * (ratio - 1.0)
+            };
         }
         rho
     }
+}
+
+/// `|z|` where no square leaves the range.
+#[inline]
+fn modulus(z: Complex64) -> f64 {
+    z.norm_sqr().sqrt()
 }
 
 /// All roots of a polynomial of degree up to 4 at once (Aberth's iteration), lowest coefficient first.

@@ -59,7 +59,7 @@ struct Form {
     factor: f64,
     phase: f64,
     /// Coefficients of 1, r, r^2, 1/r in the derivatives of the phase by x, y, z.
-    rates: [[f64; 4]; 3],
+    rates: [[Complex64; 4]; 3],
 }
 
 fn evaluate(form: &Form) -> Result<Umbilic, Error> {
@@ -71,8 +71,8 @@ fn evaluate(form: &Form) -> Result<Umbilic, Error> {
             remedy: "report the parameters: every finite set should be reached",
         })?;
     let level = Complex64::new(reference.re, reference.im + form.phase).exp() * form.factor;
-    let derivative = |rate: &[f64; 4]| {
-        let sum: Complex64 = rate.iter().zip(&moments).map(|(c, m)| m * *c).sum();
+    let derivative = |rate: &[Complex64; 4]| {
+        let sum: Complex64 = rate.iter().zip(&moments).map(|(c, m)| m * c).sum();
         Complex64::I * sum * level
     };
     Ok(Umbilic {
@@ -85,8 +85,24 @@ fn evaluate(form: &Form) -> Result<Umbilic, Error> {
     })
 }
 
-/// Below this the coefficient of 1/r counts as zero; so do the derivatives that hang on it.
+/// Below this the coefficient of 1/r counts as zero.
 const NEGLIGIBLE: f64 = 1e-280;
+/// Below this the derivative that hangs on 1/r comes from the differential equations, as
+/// `y Psi_yy`: the integral over 1/r is then the difference of large ones.
+const SMALL: f64 = 1e-11;
+
+fn real(rate: [f64; 4]) -> [Complex64; 4] {
+    rate.map(Complex64::from)
+}
+
+/// The coefficient of 1/r, and the weight w of the integrand w/r.
+fn inner(coefficient: f64, weight: f64) -> (f64, f64) {
+    match coefficient.abs() {
+        c if c < NEGLIGIBLE => (0.0, 0.0),
+        c if c < SMALL => (coefficient, 0.0),
+        _ => (coefficient, weight),
+    }
+}
 
 /// The elliptic umbilic integral `Psi^(E)(x, y, z)` with its first derivatives.
 ///
@@ -106,17 +122,22 @@ const NEGLIGIBLE: f64 = 1e-280;
 pub fn elliptic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     check(x, y, z)?;
     // s = r + z/3; the integral over t is Gaussian for Im r < 0.
-    let inner = y * y / 12.0;
-    let (inner, weight) = if inner < NEGLIGIBLE { (0.0, 0.0) } else { (inner, y / 6.0) };
+    let (inner, weight) = inner(y * y / 12.0, y / 6.0);
+    let by_y = if weight == 0.0 {
+        // Psi_yy = Psi_xx + (2 i z Psi_x - x Psi)/3: DLMF 36.10.15.
+        [(z * z + x) / 3.0, 4.0 / 3.0 * z, 1.0, 0.0].map(|c| Complex64::new(0.0, y * c))
+    } else {
+        real([0.0, 0.0, 0.0, weight])
+    };
     evaluate(&Form {
         land: Landscape { outer: [z * z + x, 2.0 * z, 1.0], inner, weight: weight.abs() },
         valleys: [-2, 0],
         factor: (PI / 3.0).sqrt(),
         phase: z * (4.0 / 27.0 * z * z + x / 3.0) - FRAC_PI_4,
         rates: [
-            [z / 3.0, 1.0, 0.0, 0.0],
-            [0.0, 0.0, 0.0, weight],
-            [4.0 / 9.0 * z * z + x / 3.0, 2.0 * z, 2.0, 0.0],
+            real([z / 3.0, 1.0, 0.0, 0.0]),
+            by_y,
+            real([4.0 / 9.0 * z * z + x / 3.0, 2.0 * z, 2.0, 0.0]),
         ],
     })
 }
@@ -140,22 +161,22 @@ pub fn hyperbolic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     check(x, y, z)?;
     // s = a + b, t = a - b, a = r + z/6; the integral over b is Gaussian for Im r > 0.
     let (sum, difference) = (x + y, x - y);
-    let inner = -difference * difference / 24.0;
-    let (inner, weight) =
-        if inner > -NEGLIGIBLE { (0.0, 0.0) } else { (inner, difference / 12.0) };
+    let (inner, weight) = inner(-difference * difference / 24.0, difference / 12.0);
+    // Half of Psi_x - Psi_y, over i.
+    let split = if weight == 0.0 {
+        // Sum of DLMF 36.10.16 and 36.10.17.
+        [sum / 6.0 + z * z / 12.0, 2.0 / 3.0 * z, 1.0, 0.0]
+            .map(|c| Complex64::new(0.0, -difference * c))
+    } else {
+        real([0.0, 0.0, 0.0, -weight])
+    };
+    let mean = real([z / 6.0, 1.0, 0.0, 0.0]);
+    let rate = |sign: f64| std::array::from_fn(|k| mean[k] + split[k] * sign);
     evaluate(&Form {
-        land: Landscape {
-            outer: [0.5 * z * z + sum, 2.0 * z, 2.0],
-            inner,
-            weight: weight.abs(),
-        },
+        land: Landscape { outer: [0.5 * z * z + sum, 2.0 * z, 2.0], inner, weight: weight.abs() },
         valleys: [1, 0],
         factor: 2.0 * (PI / 6.0).sqrt(),
         phase: z * (z * z / 27.0 + sum / 6.0) + FRAC_PI_4,
-        rates: [
-            [z / 6.0, 1.0, 0.0, -weight],
-            [z / 6.0, 1.0, 0.0, weight],
-            [z * z / 9.0 + sum / 6.0, z, 2.0, 0.0],
-        ],
+        rates: [rate(1.0), rate(-1.0), real([z * z / 9.0 + sum / 6.0, z, 2.0, 0.0])],
     })
 }

@@ -13,8 +13,9 @@ use num_complex::Complex64;
 
 /// Drop at which the integrand has vanished.
 const DEPTH: f64 = 42.0;
-/// Change of H along the first panel of an arm; later ones grow with the drop.
-const SPREAD: f64 = 10.0;
+/// Change of H along the first panel of an arm, later ones growing with the drop; the smaller ones
+/// are for descents that fail with the larger.
+const SPREADS: [f64; 3] = [6.5, 5.0, 3.7];
 const STEPS: usize = 80;
 const ARMS: usize = 6;
 /// Directions looked at on a circle.
@@ -78,7 +79,13 @@ fn minima(land: &Landscape, site: &Site, radius: f64, out: &mut [Complex64; ARMS
 }
 
 /// Descends from a hub in a direction.
-fn descend(land: &Landscape, hub: &Site, radius: f64, direction: Complex64) -> Option<Arm> {
+fn descend(
+    land: &Landscape,
+    hub: &Site,
+    radius: f64,
+    direction: Complex64,
+    spread: f64,
+) -> Option<Arm> {
     let mut arm = Arm {
         vertices: [Complex64::ZERO; STEPS],
         drops: [0.0; STEPS],
@@ -98,7 +105,7 @@ fn descend(land: &Landscape, hub: &Site, radius: f64, direction: Complex64) -> O
             arm.valley = valley;
             return Some(arm);
         }
-        site = step(land, &site, SPREAD + 0.6 * (hub.height() - site.height()).max(0.0))?;
+        site = step(land, &site, spread + 0.6 * (hub.height() - site.height()).max(0.0))?;
     }
     None
 }
@@ -107,7 +114,7 @@ fn descend(land: &Landscape, hub: &Site, radius: f64, direction: Complex64) -> O
 fn step(land: &Landscape, site: &Site, spread: f64) -> Option<Site> {
     let mut radius = site.reach(spread);
     let slope = site.slope();
-    let down = |slope: Complex64| -slope.conj() / slope.norm();
+    let down = |slope: Complex64| -slope.conj() / slope.norm_sqr().sqrt();
     for _ in 0..8 {
         let middle = land.site(site.q + down(slope) * (0.5 * radius));
         let next = land.site(site.q + down(middle.slope()) * radius);
@@ -144,6 +151,10 @@ fn integrate(land: &Landscape, arm: &Arm, reference: Complex64, depth: f64) -> M
 
 /// The moments between two outer valleys, in units of `e^reference`, and the reference.
 pub(super) fn between(land: &Landscape, from: i32, to: i32) -> Option<(Moments, Complex64)> {
+    SPREADS.iter().find_map(|spread| descents(land, from, to, *spread))
+}
+
+fn descents(land: &Landscape, from: i32, to: i32, spread: f64) -> Option<(Moments, Complex64)> {
     let (saddles, count) = land.saddles();
     let mut hubs: [Site; 4] = std::array::from_fn(|k| land.site(saddles[k]));
     let hubs = &mut hubs[..count];
@@ -157,11 +168,11 @@ pub(super) fn between(land: &Landscape, from: i32, to: i32) -> Option<(Moments, 
         if component[from] == component[to] {
             break;
         }
-        let radius = hub.reach(SPREAD);
+        let radius = hub.reach(spread);
         let mut directions = [Complex64::ZERO; ARMS];
         let found = minima(land, hub, radius, &mut directions);
         for (arm, direction) in arms[index].iter_mut().zip(&directions[..found]) {
-            *arm = descend(land, hub, radius, *direction);
+            *arm = descend(land, hub, radius, *direction, spread);
         }
         for (copy, shift) in SHIFTS.iter().enumerate() {
             let mut first: Option<usize> = None;
