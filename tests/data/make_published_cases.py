@@ -22,9 +22,9 @@ def add(case, k, p, q, value, scale=None):
 
 
 # Bessel functions of order k (1 + a) and argument k e^(i t), t in q. Hankel functions that are exponentially small
-# come from a difference: 50 digits and what that may lose.
+# come from a difference: 50 digits and what that may lose (for k beyond 200 left out where it loses more than 25).
 def bessel(k, a, t):
-    with mp.workdps(50 + int(min(k, 1000))):
+    with mp.workdps(50 + int(k / 2) if k <= 200 else 50):
         bessel_precisely(k, a, t)
 
 
@@ -35,8 +35,10 @@ def bessel_precisely(k, a, t):
     # The natural scale: that of the oscillation near a zero.
     scale = max(abs(j), abs((mp.besselj(nu - 1, x, maxprec=10**6) - nu / x * j)) / width)
     add("bessel_j", k, a, t, j, scale)
-    add("hankel_1", k, a, t, mp.hankel1(nu, x, maxprec=10**6))
-    add("hankel_2", k, a, t, mp.hankel2(nu, x, maxprec=10**6))
+    for case, h in [("hankel_1", mp.hankel1), ("hankel_2", mp.hankel2)]:
+        value = h(nu, x, maxprec=10**6)
+        if k <= 200 or abs(value) > mpf(10) ** -25 * abs(j):
+            add(case, k, a, t, value)
 
 
 A = [-0.5, -0.1, -1e-2, -1e-3, -1e-6, 0.0, 1e-9, 1e-4, 1e-2, 0.1, 0.5, 0.2 + 0.1j, -0.3 - 0.2j, 1e-3j,
