@@ -195,7 +195,7 @@ impl MappedPole {
         let rounding = self.simple.norm() * lost
             + self.double.norm() * (k * slope.norm() * lost + 4.0 * f64::EPSILON * size_at_pole);
         // The pole's place in u is known to rounding and to the residual of the form.
-        let shift = 6.0 * self.blur + 2.0 * residual / slope.norm().max(k.powf(-0.5));
+        let shift = 60.0 * self.blur + 12.0 * residual / slope.norm().max(k.powf(-0.5));
         let third = second.norm() * (2.0 / self.u.norm()).min(k * slope.norm()).max(k.sqrt());
         let place = shift * (self.simple.norm() * second.norm() + self.double.norm() * third);
         let measured = self.noise.0 * p.norm() + self.noise.1 * second.norm();

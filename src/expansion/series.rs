@@ -23,16 +23,16 @@ const TRIED: usize = 30;
 const FILLING: f64 = 0.9;
 /// Tails beyond which a ring is of no use.
 const WORST_TAIL: f64 = 1e-5;
-/// No ring is enlarged once `R^(K+2)` is beyond this: for `k >= 1` nothing is gained there, and the
-/// rounding error of `A` grows with it.
-const LARGEST: f64 = 40.0;
+/// No ring is enlarged once `k R^(K+2)` is beyond this at the least wavenumber: nothing is gained there,
+/// and the rounding error of `A` grows with it.
+const LARGEST: f64 = 80.0;
 /// Mapped saddles within this part of the ring leave room enough.
 const ROOMY: f64 = 0.5;
-/// The first ring has `R^(K+2)` no larger than this.
-const INNERMOST: f64 = 2.0;
-/// The topology looks at the cluster on a ring with `R^(K+2)` no larger than this, if the saddles
+/// The first ring has `k R^(K+2)` no larger than this at the least wavenumber.
+const INNERMOST: f64 = 4.0;
+/// The topology looks at the cluster on a ring with `k R^(K+2)` no larger than this, if the saddles
 /// allow: the contour's descents must leave it.
-const LOW: f64 = 6.0;
+const LOW: f64 = 12.0;
 /// Rings are added at this ratio inside and outside a pole: there it can be split off.
 const BY_POLE: f64 = 1.1;
 /// With tails below this nothing singular lies inside a ring.
@@ -103,6 +103,8 @@ pub(super) struct Ring {
 
 /// What a caller gave, as the series need it: the poles each with its steepest ascent.
 pub(crate) struct Given<'a> {
+    /// The least wavenumber: the scale that the heights of rings are measured on.
+    pub least: f64,
     pub phase: &'a dyn Phase,
     pub amplitude: &'a dyn Amplitude,
     pub poles: &'a [(Pole, Vec<Complex64>)],
@@ -182,15 +184,16 @@ impl Series {
         let first = first_ring(given, saddles, centre, reach, least)?;
         let degree = first.form.degree() as i32;
         let height = |form: &NormalForm| form.radius().powi(degree);
-        let low =
-            (LOW / height(&first.form)).powf(1.0 / f64::from(degree)).max(first.filling / 0.8);
+        let low = (LOW / given.least / height(&first.form))
+            .powf(1.0 / f64::from(degree))
+            .max(first.filling / 0.8);
         let inner = if low < 1.0 { first.form.shrunk(low) } else { first.form.clone() };
         let mut trials = vec![first];
         for _ in 0..TRIED {
             let last = &trials[trials.len() - 1];
             // The last Taylor coefficients grow at least like this.
             let expected = last.form.tail() * RATIO.powi(KEPT as i32 * 3 / 4);
-            let enough = height(&last.form) > LARGEST && last.filling < ROOMY;
+            let enough = height(&last.form) * given.least > LARGEST && last.filling < ROOMY;
             if enough || expected > WORST_TAIL {
                 break;
             }
@@ -398,7 +401,8 @@ fn first_ring(
             .and_then(|form| Trial::new(form, given))
         {
             // A large wavenumber needs a small ring: the noise of the phase grows with its size.
-            let excess = (ring.form.radius().powi(ring.form.degree() as i32) / INNERMOST)
+            let excess = (ring.form.radius().powi(ring.form.degree() as i32) * given.least
+                / INNERMOST)
                 .powf(1.0 / ring.form.degree() as f64)
                 .min(ROOMY / ring.filling.max(1e-3));
             if excess > 1.01 && reach / excess > least {

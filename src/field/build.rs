@@ -12,7 +12,8 @@ use num_complex::Complex64;
 pub(super) fn undecided(reason: impl Into<String>) -> Error {
     Error::Undecided {
         reason: reason.into(),
-        remedy: "use `quadrature` for this integral, or give a contour closer to the saddles",
+        remedy: "use `quadrature` for this integral, `plan_for` a narrower range of wavenumbers, or give a \
+                 contour closer to the saddles",
     }
 }
 
@@ -33,6 +34,7 @@ pub(super) struct Problem<'a> {
 /// One attempt: saddles are looked for within `margin` of the contour.
 pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
+    let least = problem.wavenumbers.0;
     let points = contour.points();
     let mut reached = points.to_vec();
     // The saddle that an end point needs may lie beyond it, at about Newton's distance.
@@ -72,7 +74,8 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             let end = usize::from(sign < 0.0);
             let lifts = (0..).map(|slot| sheeting.at_end(slot, end));
             let powered = Powered::new(amplitude, at, branches.iter().copied().zip(lifts));
-            let given = Given { phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
+            let given =
+                Given { least, phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
             let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
             ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
         }
@@ -84,7 +87,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             reach.include(height(pole.value), topology.turned_height(pole.value));
         }
     }
-    let given = Given { phase, amplitude, poles: &poles, outside: &bases };
+    let given = Given { least, phase, amplitude, poles: &poles, outside: &bases };
 
     let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {

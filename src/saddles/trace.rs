@@ -68,9 +68,11 @@ pub(crate) fn trace(
     let [mut origin, mut slope, mut bend] = h.jet(start);
     let mut z = start;
     let direction = if goal > origin.re { 1.0 } else { -1.0 };
-    if slope.norm_sqr() < 1e-8 * (1.0 + origin.norm()) * bend.norm() {
+    // The heights to be covered are the scale, whatever the unit of the phase.
+    let scale = (goal - origin.re).abs().max(1e-12 * origin.norm());
+    if slope.norm_sqr() < 1e-9 * scale * bend.norm() {
         // On a saddle, to rounding: the path has no direction of its own there.
-        z = leave(h, start, origin.re, direction, longest);
+        z = leave(h, start, (origin.re, 1e-7 * scale), direction, longest);
         path.push(z);
         [origin, slope, bend] = h.jet(z);
     }
@@ -138,9 +140,14 @@ pub(crate) fn trace(
 }
 
 /// A point a little way off a saddle, where the height changes most in the direction wanted.
-fn leave(h: &Exponent, saddle: Complex64, height: f64, direction: f64, longest: f64) -> Complex64 {
+fn leave(
+    h: &Exponent,
+    saddle: Complex64,
+    (height, enough): (f64, f64),
+    direction: f64,
+    longest: f64,
+) -> Complex64 {
     const ANGLES: usize = 48;
-    let enough = 1e-6 * (1.0 + height.abs());
     let mut radius = 1e-7 * longest;
     let mut best = saddle;
     for _ in 0..24 {
