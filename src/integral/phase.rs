@@ -19,7 +19,8 @@ pub trait Phase {
     }
 
     /// `f(z)`, `f'(z)` and `f''(z)`. The second derivative steers step lengths only; without an
-    /// override it is a difference of `f'` good to some eight digits.
+    /// override it is a difference of `f'` over `1e-7 (1 + |z|)`, good to some eight digits where lengths
+    /// are of order 1; for lengths below some 1e-4 measure `z` in other units or give a `Formula`.
     fn jet(&self, z: Complex64) -> [Complex64; 3] {
         let (f, df) = self.value_and_derivative(z);
         let step = 1e-7 * (1.0 + z.norm());
