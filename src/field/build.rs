@@ -280,13 +280,14 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
         nodes[index].series = Some(series);
         nodes[index].settled = true;
     }
-    // Every root must be decided, as a whole or by its parts.
+    // Saddles that have no expansion, alone or with others, are left out: the certificate decides
+    // whether they matter.
     for &root in &tree.roots {
         if !decided(&nodes, root) {
-            return Err(undecided(format!(
-                "no normal form or no clear ridge for the saddles near {:.4}",
-                tree.groups[root].centre
-            )));
+            let members = nodes[root].members;
+            for node in &mut nodes {
+                node.settled |= node.parts.is_none() && node.members & members != 0;
+            }
         }
     }
     Ok(nodes)
