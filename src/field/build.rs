@@ -17,6 +17,9 @@ pub(super) fn undecided(reason: impl Into<String>) -> Error {
     }
 }
 
+/// The neighbourhood of the contour, in units of its size.
+const HOME: f64 = 0.3;
+
 /// An integral without its types.
 pub(super) struct Problem<'a> {
     pub phase: &'a dyn Phase,
@@ -108,6 +111,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         saddles: &saddles,
         ends: &ends,
         beside: &beside,
+        home: Region::around(points, HOME),
         size,
         drop,
     };
@@ -223,13 +227,15 @@ struct Scene<'a> {
     ends: &'a [End],
     /// Whether a node's saddle is treated together with an algebraic end.
     beside: &'a dyn Fn(usize) -> bool,
+    /// The neighbourhood of the contour.
+    home: Region,
     size: f64,
     drop: f64,
 }
 
 /// Series and multiplicities of all groups, from the highest downwards.
 fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>, Error> {
-    let Scene { sheeting, topology, tree, saddles, ends, beside, size, drop } = *scene;
+    let Scene { sheeting, topology, tree, saddles, ends, beside, home, size, drop } = *scene;
     let highest = |g: &Group| {
         g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
     };
@@ -280,10 +286,17 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
         nodes[index].series = Some(series);
         nodes[index].settled = true;
     }
-    // Saddles that have no expansion, alone or with others, are left out: the certificate decides
-    // whether they matter.
+    // Saddles without an expansion, alone or with others, are refused near the contour. Far from it they
+    // are left out, and the certificate decides whether they matter.
     for &root in &tree.roots {
         if !decided(&nodes, root) {
+            let group = &tree.groups[root];
+            if group.members.iter().any(|&m| home.holds(saddles[m].z, 0.0)) {
+                return Err(undecided(format!(
+                    "no normal form or no clear ridge for the saddles near {:.4}",
+                    group.centre
+                )));
+            }
             let members = nodes[root].members;
             for node in &mut nodes {
                 node.settled |= node.parts.is_none() && node.members & members != 0;

@@ -52,7 +52,7 @@ impl Region {
         (self.low + self.high) * 0.5
     }
 
-    fn holds(&self, z: Complex64, slack: f64) -> bool {
+    pub(crate) fn holds(&self, z: Complex64, slack: f64) -> bool {
         let slack = slack * self.size();
         z.re >= self.low.re - slack
             && z.re <= self.high.re + slack

@@ -68,11 +68,11 @@ pub(crate) fn trace(
     let [mut origin, mut slope, mut bend] = h.jet(start);
     let mut z = start;
     let direction = if goal > origin.re { 1.0 } else { -1.0 };
-    // The heights to be covered are the scale, whatever the unit of the phase.
-    let scale = (goal - origin.re).abs().max(1e-12 * origin.norm());
-    if slope.norm_sqr() < 1e-9 * scale * bend.norm() {
+    // Rounding of the heights themselves and of their range is the scale, whatever the unit.
+    let rounding = 1e-12 * origin.norm() + 1e-13 * (goal - origin.re).abs();
+    if slope.norm_sqr() < rounding * bend.norm() {
         // On a saddle, to rounding: the path has no direction of its own there.
-        z = leave(h, start, (origin.re, 1e-7 * scale), direction, longest);
+        z = leave(h, start, (origin.re, 1e4 * rounding), direction, longest);
         path.push(z);
         [origin, slope, bend] = h.jet(z);
     }
