@@ -4,4 +4,5 @@ pub mod airy;
 pub mod cuspoid;
 pub(crate) mod double_double;
 pub mod faddeeva;
+mod panels;
 pub mod umbilic;
