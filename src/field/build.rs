@@ -6,7 +6,7 @@ use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Powered, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
-use crate::saddles::{Group, Region, Saddle, Sheeting, Topology, Tree, locate};
+use crate::saddles::{Certificate, Group, Region, Saddle, Sheeting, Topology, Tree, locate};
 use num_complex::Complex64;
 
 pub(super) fn undecided(reason: impl Into<String>) -> Error {
@@ -330,7 +330,8 @@ fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error
             },
         })
         .collect();
-    let closes = |partition: &[usize]| {
+    let mut certificate = Certificate::new(topology, floor);
+    let mut closes = |partition: &[usize]| {
         let mut all = Vec::new();
         for &index in partition {
             match &valleys[index] {
@@ -338,7 +339,7 @@ fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error
                 None => return false,
             }
         }
-        topology.closes(&all, floor)
+        certificate.closes(&all)
     };
     // With one group taken as a whole, everything else as fine as it is known.
     let with = |whole: Option<usize>| {

@@ -1,5 +1,6 @@
 //! Where the saddles are, how they group, and which of them a contour needs.
 
+mod certificate;
 mod crossings;
 mod follow;
 mod locate;
@@ -8,6 +9,7 @@ mod topology;
 mod trace;
 mod tree;
 
+pub(crate) use certificate::Certificate;
 pub(crate) use crossings::crossings;
 pub use follow::follow;
 pub use locate::{Region, Saddle, locate};

@@ -1,4 +1,4 @@
-//! Which clusters a contour needs, between which of their valleys, with sign; and a certificate.
+//! Which clusters a contour needs, between which of their valleys, with sign.
 //!
 //! Method. On the ring of a cluster's normal form `Re(i Phi)` has K+2 ridges between K+2 valleys.
 //! Ridge `j` lies between valleys `j` and `j + 1`. From each ridge the steepest ascent is followed
@@ -10,13 +10,11 @@
 //! Work goes from the highest cluster downwards; the first that contributes sets a floor, below
 //! which nothing needs an evaluation.
 //!
-//! Certificate. The valleys that the contributions run between, followed down below the floor,
-//! must cancel against each other and against the two ends of the contour. A contributing saddle
-//! that was not found leaves a valley over.
+//! A contributing saddle that was not found leaves a valley over: see `certificate`.
 //!
 //! Source: steepest descent and Picard-Lefschetz theory, e.g. M. V. Berry, C. J. Howls, Proc. R.
-//! Soc. Lond. A 434 (1991) 657, from memory; ridge counting on a ring and the certificate were
-//! worked out for this crate.
+//! Soc. Lond. A 434 (1991) 657, from memory; ridge counting on a ring was worked out for
+//! this crate.
 
 use super::Saddle;
 use super::crossings::crossings;
@@ -30,7 +28,7 @@ use std::f64::consts::PI;
 pub(crate) type Multiplicities = [i32; MAX_SADDLES + 1];
 
 /// How exactly a traced point keeps the height it was sent to, in units of the drop.
-const SLACK: f64 = 0.05;
+pub(super) const SLACK: f64 = 0.05;
 /// The angle that the exponent is turned by.
 pub(super) const DELTA: f64 = 0.03;
 
@@ -43,10 +41,10 @@ pub(crate) struct Topology<'a> {
     whole: Vec<Complex64>,
     pub(super) tails: [Vec<Complex64>; 2],
     /// The contour has no ends.
-    closed: bool,
+    pub(super) closed: bool,
     pub(super) top: f64,
-    bottom: f64,
-    drop: f64,
+    pub(super) bottom: f64,
+    pub(super) drop: f64,
     pub(super) longest: f64,
 }
 
@@ -185,71 +183,6 @@ impl<'a> Topology<'a> {
         let lowest = self.tails.iter().map(|tail| tail[tail.len() - 1]);
         let heights = lowest.map(|z| (z, self.h.height(z)));
         heights.into_iter().find(|(_, height)| *height > floor + SLACK * self.drop)
-    }
-
-    /// The certificate: do the valleys and the ends of the contour cancel?
-    pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
-        let mut ends = valleys.to_vec();
-        if !self.closed {
-            for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
-                ends.push((weight, tail[tail.len() - 1]));
-            }
-        }
-        // An end at infinity must really be down there; a finite end that contributes has been
-        // followed down like the others.
-        if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK * self.drop) {
-            return false;
-        }
-        let mut open = vec![true; ends.len()];
-        for first in 0..ends.len() {
-            if !open[first] {
-                continue;
-            }
-            open[first] = false;
-            let mut pool = vec![first];
-            let mut sum = 0;
-            while let Some(here) = pool.pop() {
-                sum += ends[here].0;
-                for there in 0..ends.len() {
-                    if open[there] && self.joined(ends[here].1, ends[there].1, floor) {
-                        open[there] = false;
-                        pool.push(there);
-                    }
-                }
-            }
-            if sum != 0 {
-                return false;
-            }
-        }
-        true
-    }
-
-    /// Two points below the floor lie in one valley if the chord between them stays below, if not
-    /// at once then after both have gone further down.
-    fn joined(&self, a: Complex64, b: Complex64, floor: f64) -> bool {
-        let (mut a, mut b) = (a, b);
-        for round in 0..5 {
-            const PIECES: usize = 24;
-            let below = |piece: usize| {
-                let z = a + (b - a) * (piece as f64 / PIECES as f64);
-                self.h.height(z) < floor + SLACK * self.drop
-            };
-            if (1..PIECES).all(below) {
-                return true;
-            }
-            // At last the contour's own range of heights says where valleys open.
-            let deeper = if round < 3 {
-                floor - self.drop * 4f64.powi(round)
-            } else {
-                floor - (self.top - self.bottom) * 4f64.powi(round - 3)
-            };
-            for z in [&mut a, &mut b] {
-                let mut line = vec![*z];
-                trace(&self.h, *z, deeper, self.longest, &mut line);
-                *z = line[line.len() - 1];
-            }
-        }
-        false
     }
 
     /// The descents from the start and from the end of the contour, each from its end point on.
