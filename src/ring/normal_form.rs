@@ -306,12 +306,28 @@ impl NormalForm {
 
     /// `Phi(u)` at `u = R v`.
     pub(crate) fn unfolding_at(&self, v: Complex64) -> Complex64 {
-        let lower = evaluate(&self.unfolding[1..self.saddles().max(1)], v) * v;
-        lower + v.powi(self.degree as i32) * self.radius.powi(self.degree as i32)
+        // The power of v without a call: this is asked for all round the ring.
+        let mut lead = Complex64::new(1.0, 0.0);
+        for _ in 0..self.degree {
+            lead *= v * self.radius;
+        }
+        evaluate(&self.unfolding[1..self.saddles().max(1)], v) * v + lead
     }
 
     /// `i u Phi'(u)` at `u = R v`: its real part is the slope of `Re(i Phi)` along the radius.
     pub(crate) fn radial_slope(&self, v: Complex64) -> Complex64 {
-        I * v * self.radius * evaluate(&self.derivative()[..self.degree], v)
+        // Phi' R = sum j x_j R^j v^(j - 1), without powers.
+        let mut sum = Complex64::new(self.degree as f64, 0.0);
+        for _ in 0..self.degree {
+            sum *= self.radius;
+        }
+        // There is no term in u^(K+1).
+        if self.degree > 1 {
+            sum *= v;
+        }
+        for j in (1..self.saddles()).rev() {
+            sum = sum * v + self.unfolding[j] * j as f64;
+        }
+        I * v * sum
     }
 }

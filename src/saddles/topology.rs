@@ -238,32 +238,47 @@ impl<'a> Topology<'a> {
 
     /// The highest point of each ridge's arc on the ring, the lowest of each valley's.
     fn arcs(&self, form: &NormalForm) -> Arcs {
-        let degree = form.degree();
+        let degree = form.degree() as i64;
         let saddles = form.saddles_on_disc();
         let turn = Complex64::from_polar(1.0, DELTA);
         let mut arcs = Arcs { ridges: [None; MAX_SADDLES + 1], valleys: [None; MAX_SADDLES + 1] };
         let mut best = [f64::NEG_INFINITY; MAX_SADDLES + 1];
         let mut least = [f64::INFINITY; MAX_SADDLES + 1];
-        // Every second point: ten or more on each arc.
-        for &v in unit_points().iter().step_by(2) {
-            let lift = lift(form, &saddles, v) + DELTA;
-            let slope = (form.radial_slope(v) * turn).re;
-            let height = (form.unfolding_at(v) * turn * Complex64::new(0.0, 1.0)).re;
-            if slope > 0.0 {
-                let ridge = (lift / (2.0 * PI)).round() as i64 - 1;
-                let j = ridge.rem_euclid(degree as i64) as usize;
+        // The number of an arc, by its lift, is the same on all of it: asked for at its extreme only.
+        let mut close = |climbs: bool, height: f64, v: Complex64| {
+            let turns = (lift(form, &saddles, v) + DELTA) / (2.0 * PI);
+            if climbs {
+                let j = (turns.round() as i64 - 1).rem_euclid(degree) as usize;
                 if height > best[j] {
-                    best[j] = height;
-                    arcs.ridges[j] = Some(v);
+                    (best[j], arcs.ridges[j]) = (height, Some(v));
                 }
             } else {
-                let valley = ((lift - PI) / (2.0 * PI)).round() as i64;
-                let j = valley.rem_euclid(degree as i64) as usize;
+                let j = ((turns - 0.5).round() as i64).rem_euclid(degree) as usize;
                 if height < least[j] {
-                    least[j] = height;
-                    arcs.valleys[j] = Some(v);
+                    (least[j], arcs.valleys[j]) = (height, Some(v));
                 }
             }
+        };
+        let mut arc: Option<(bool, f64, Complex64)> = None;
+        // Every second point: ten or more on each arc.
+        for &v in unit_points().iter().step_by(2) {
+            let climbs = (form.radial_slope(v) * turn).re > 0.0;
+            let height = -(form.unfolding_at(v) * turn).im;
+            arc = match arc {
+                Some((up, extreme, at)) if up == climbs => {
+                    let further = if up { height > extreme } else { height < extreme };
+                    Some(if further { (up, height, v) } else { (up, extreme, at) })
+                }
+                other => {
+                    if let Some((up, extreme, at)) = other {
+                        close(up, extreme, at);
+                    }
+                    Some((climbs, height, v))
+                }
+            };
+        }
+        if let Some((up, extreme, at)) = arc {
+            close(up, extreme, at);
         }
         arcs
     }
