@@ -34,6 +34,8 @@ pub const POINTS: usize = 128;
 /// Taylor coefficients kept; the other half of the transform holds the negative powers, which
 /// vanish for a function that is analytic inside.
 pub const KEPT: usize = POINTS / 2;
+/// Points of a first rough look at a ring.
+const COARSE: usize = 32;
 /// The largest number of saddles in one cluster.
 pub const MAX_SADDLES: usize = 5;
 
@@ -45,9 +47,15 @@ pub type Coefficients = [Complex64; KEPT];
 pub(crate) const ZERO: Complex64 = Complex64::new(0.0, 0.0);
 pub(crate) const I: Complex64 = Complex64::new(0.0, 1.0);
 
-struct Transforms {
+/// The transforms of one length.
+struct Pair {
     forward: Arc<dyn Fft<f64>>,
     inverse: Arc<dyn Fft<f64>>,
+}
+
+struct Transforms {
+    full: Pair,
+    coarse: Pair,
     /// `exp(2 pi i s/POINTS)`.
     roots: Values,
 }
@@ -56,9 +64,13 @@ fn transforms() -> &'static Transforms {
     static ONCE: OnceLock<Transforms> = OnceLock::new();
     ONCE.get_or_init(|| {
         let mut planner = FftPlanner::new();
+        let mut pair = |length| Pair {
+            forward: planner.plan_fft_forward(length),
+            inverse: planner.plan_fft_inverse(length),
+        };
         Transforms {
-            forward: planner.plan_fft_forward(POINTS),
-            inverse: planner.plan_fft_inverse(POINTS),
+            full: pair(POINTS),
+            coarse: pair(COARSE),
             roots: std::array::from_fn(|s| {
                 Complex64::from_polar(1.0, 2.0 * std::f64::consts::PI * s as f64 / POINTS as f64)
             }),
@@ -66,27 +78,38 @@ fn transforms() -> &'static Transforms {
     })
 }
 
+/// The transforms of length `N`, [`POINTS`] or [`COARSE`].
+fn pair<const N: usize>() -> &'static Pair {
+    const { assert!(N == POINTS || N == COARSE) };
+    if N == POINTS { &transforms().full } else { &transforms().coarse }
+}
+
 /// The points of the unit circle that a ring is sampled at.
 pub fn unit_points() -> &'static Values {
     &transforms().roots
 }
 
-/// From values on the ring to coefficients: index `n < KEPT` belongs to `v^n`, index
-/// `POINTS - n` to `v^(-n)`.
-pub fn to_coefficients(values: &mut Values) {
-    let mut scratch = [ZERO; POINTS];
-    transforms().forward.process_with_scratch(values, &mut scratch);
+/// From values on the ring to coefficients: index `n < N/2` belongs to `v^n`, index `N - n` to
+/// `v^(-n)`.
+pub fn to_coefficients<const N: usize>(values: &mut [Complex64; N]) {
+    let mut scratch = [ZERO; N];
+    pair::<N>().forward.process_with_scratch(values, &mut scratch);
     for c in values.iter_mut() {
-        *c /= POINTS as f64;
+        *c *= 1.0 / N as f64;
     }
 }
 
 /// From Taylor coefficients to values on the ring.
 pub fn to_values(coefficients: &Coefficients) -> Values {
-    let mut values = [ZERO; POINTS];
-    values[..KEPT].copy_from_slice(coefficients);
-    let mut scratch = [ZERO; POINTS];
-    transforms().inverse.process_with_scratch(&mut values, &mut scratch);
+    values_of::<POINTS>(coefficients)
+}
+
+/// The same on `N` points, by the first `N/2` coefficients.
+fn values_of<const N: usize>(coefficients: &Coefficients) -> [Complex64; N] {
+    let mut values = [ZERO; N];
+    values[..N / 2].copy_from_slice(&coefficients[..N / 2]);
+    let mut scratch = [ZERO; N];
+    pair::<N>().inverse.process_with_scratch(&mut values, &mut scratch);
     values
 }
 

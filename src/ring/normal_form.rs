@@ -7,15 +7,15 @@
 //! K = -1 (no saddle, `Phi = u`) serves finite end points: there `z(0)` and `A` stay fixed.
 //!
 //! Regions. All zeros of `Phi'` must lie inside the ring, all other saddles and singularities
-//! outside `z(ring)`. A first small ring is enlarged step by step: the Taylor coefficients of
-//! the smaller one start Newton on the larger.
+//! outside `z(ring)`. The first steps are taken on a quarter of the points. A first small ring is
+//! enlarged step by step: the Taylor coefficients of the smaller one start Newton on the larger.
 //!
 //! Source: the existence of the form is N. Levinson's theorem (Duke Math. J. 28 (1961) 345, from
 //! memory); for K = 1 C. Chester, B. Friedman, F. Ursell (1957).
 
 use super::{
-    Coefficients, I, KEPT, MAX_SADDLES, POINTS, Values, ZERO, divide, evaluate, tail,
-    to_coefficients, to_values, unit_points,
+    COARSE, Coefficients, I, KEPT, MAX_SADDLES, POINTS, ZERO, divide, evaluate, tail,
+    to_coefficients, unit_points, values_of,
 };
 use crate::integral::Phase;
 use num_complex::Complex64;
@@ -35,6 +35,12 @@ pub struct NormalForm {
 
 /// How small the last Newton step must be, relative to the first-order coefficient of the map.
 const SETTLED: f64 = 3e-15;
+/// Steps on a quarter of the points end below this: those points know no better.
+const ROUGH: f64 = 1e-3;
+/// Steps of Newton's method that fall by less than this ...
+const SLOW: f64 = 0.4;
+/// ... so many times one after the other while large do not lead to a form that is of use.
+const PATIENCE: usize = 3;
 
 impl NormalForm {
     /// A form with `saddles = K + 1` saddles (0 for an end point) around `centre`, whose ring has
@@ -49,8 +55,9 @@ impl NormalForm {
             return None;
         }
         let degree = saddles + 1;
-        let mut values: Values =
-            std::array::from_fn(|s| phase.value(centre + unit_points()[s] * reach));
+        let mut values: [Complex64; COARSE] = std::array::from_fn(|s| {
+            phase.value(centre + unit_points()[s * (POINTS / COARSE)] * reach)
+        });
         to_coefficients(&mut values);
         // In v: f = sum a_n v^n with z = centre + reach v. Let v -> c v so that a_D c^D = R^D with
         // R = |a_D|^(1/D), which leaves |c| = 1: the ring keeps its mean radius.
@@ -86,8 +93,9 @@ impl NormalForm {
             map,
             residual: f64::INFINITY,
             tail: f64::INFINITY,
-            evaluations: POINTS,
+            evaluations: COARSE,
         };
+        form.sketch(phase);
         form.settle(phase, 14).then_some(form)
     }
 
@@ -95,6 +103,13 @@ impl NormalForm {
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<NormalForm> {
         let mut form = self.rescaled(factor);
         form.evaluations = 0;
+        // What is rounding on this ring would be more than that on a larger one.
+        let noise = 0.5 * f64::EPSILON * self.map[0].norm().max(self.map[1].norm());
+        for (new, old) in form.map.iter_mut().zip(&self.map).skip(2) {
+            if old.norm_sqr() < noise * noise {
+                *new = ZERO;
+            }
+        }
         form.settle(phase, 7).then_some(form)
     }
 
@@ -125,69 +140,113 @@ impl NormalForm {
         self.tail = tail(&full, 1, 0.0);
     }
 
+    /// Newton's first steps on a quarter of the points, as far as they lead; nothing changes where they
+    /// lead nowhere.
+    fn sketch(&mut self, phase: &dyn Phase) {
+        let before = self.clone();
+        let mut last_step = f64::INFINITY;
+        for _ in 0..3 {
+            let step = match self.residuals::<COARSE>(phase) {
+                Some(residuals) => self.correct(residuals) / self.map[1].norm(),
+                None => f64::INFINITY,
+            };
+            if !(step < 0.3 && step < 0.5 * last_step) {
+                *self = before;
+                break;
+            }
+            if step < ROUGH {
+                break;
+            }
+            last_step = step;
+        }
+    }
+
     /// Newton's method with Weierstrass division, at most `limit` steps.
     fn settle(&mut self, phase: &dyn Phase, limit: usize) -> bool {
-        let saddles = self.saddles();
         let mut last_step = f64::INFINITY;
+        let mut expected = f64::INFINITY;
+        let mut slow = 0;
         for _ in 0..limit {
-            let mut residual = to_values(&self.map);
-            let mut largest = 0.0f64;
-            for (r, target) in residual.iter_mut().zip(&to_values(&self.unfolded())) {
-                *r = phase.value(*r) - target;
-                // NaN must not be lost in the maximum.
-                let square = r.norm_sqr();
-                largest = if square > largest || square.is_nan() { square } else { largest };
+            let Some(residuals) = self.residuals::<POINTS>(phase) else { return false };
+            let mut scale = self.map[1].norm();
+            // Rounding alone is left to be corrected: the residual had to be measured, no more.
+            if expected < SETTLED * scale {
+                self.measure_tail();
+                return true;
             }
-            self.evaluations += POINTS;
-            if !largest.is_finite() {
-                return false;
-            }
-            self.residual = largest.sqrt();
-            to_coefficients(&mut residual);
-            // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
-            let dividend = &mut residual[..KEPT + saddles];
-            if saddles == 0 {
-                // The end point stays where it is.
-                dividend[0] = ZERO;
-            }
-            divide(dividend, &self.derivative()[..self.degree]);
-            for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles) {
-                *x += p;
-            }
-            let quotient: Coefficients = std::array::from_fn(|n| dividend[n + saddles]);
-            let mut correction = to_values(&quotient);
-            let slope = to_values(&self.map_derivative());
-            for (c, s) in correction.iter_mut().zip(&slope) {
-                *c *= s;
-            }
-            to_coefficients(&mut correction);
-            let mut step = 0.0f64;
-            let skip = usize::from(saddles == 0);
-            for (z, c) in self.map.iter_mut().zip(&correction).skip(skip) {
-                *z -= c;
-                step = step.max(c.norm_sqr());
-            }
-            let step = step.sqrt();
-            let scale = self.map[1].norm();
+            let step = self.correct(residuals);
             if !(step.is_finite() && step < 10.0 * scale && step < 4.0 * last_step) {
                 return false;
             }
+            scale = self.map[1].norm();
             // Settled: at the rounding level, or small and no longer falling.
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
                 self.measure_tail();
                 return true;
+            }
+            // The next step falls by this ratio at least, by its square where all goes well.
+            let ratio = step / last_step.min(0.1 * scale);
+            expected = if ratio < 1e-3 { step * ratio } else { f64::INFINITY };
+            slow = if step > SLOW * last_step && step > ROUGH * scale { slow + 1 } else { 0 };
+            if slow == PATIENCE {
+                return false;
             }
             last_step = step;
         }
         false
     }
 
-    /// Coefficients in `v` of `A + Phi`.
-    fn unfolded(&self) -> Coefficients {
-        let mut c = [ZERO; KEPT];
-        c[..MAX_SADDLES].copy_from_slice(&self.unfolding);
-        c[self.degree] += self.radius.powi(self.degree as i32);
-        c
+    /// `f(z(u)) - A - Phi(u)` on `N` points; None where it is not finite.
+    fn residuals<const N: usize>(&mut self, phase: &dyn Phase) -> Option<[Complex64; N]> {
+        let mut values = values_of::<N>(&self.map);
+        let roots = unit_points();
+        let lead = self.radius.powi(self.degree as i32);
+        let mut largest = 0.0f64;
+        for (s, value) in values.iter_mut().enumerate() {
+            let power = |j: usize| roots[s * j * (POINTS / N) % POINTS];
+            let mut target = self.unfolding[0] + power(self.degree) * lead;
+            for (j, x) in self.unfolding.iter().enumerate().take(self.saddles()).skip(1) {
+                target += x * power(j);
+            }
+            *value = phase.value(*value) - target;
+            // NaN must not be lost in the maximum.
+            let square = value.norm_sqr();
+            largest = if square > largest || square.is_nan() { square } else { largest };
+        }
+        self.evaluations += N;
+        self.residual = largest.sqrt();
+        largest.is_finite().then_some(values)
+    }
+
+    /// One step of Newton's method; returns its size.
+    fn correct<const N: usize>(&mut self, mut residuals: [Complex64; N]) -> f64 {
+        let saddles = self.saddles();
+        let kept = N / 2;
+        to_coefficients(&mut residuals);
+        // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
+        let dividend = &mut residuals[..kept + saddles];
+        if saddles == 0 {
+            // The end point stays where it is.
+            dividend[0] = ZERO;
+        }
+        divide(dividend, &self.derivative()[..self.degree]);
+        for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles) {
+            *x += p;
+        }
+        let mut quotient = [ZERO; KEPT];
+        quotient[..kept].copy_from_slice(&dividend[saddles..]);
+        let mut correction = values_of::<N>(&quotient);
+        for (c, s) in correction.iter_mut().zip(&values_of::<N>(&self.map_derivative())) {
+            *c *= s;
+        }
+        to_coefficients(&mut correction);
+        let mut step = 0.0f64;
+        let skip = usize::from(saddles == 0);
+        for (z, c) in self.map[..kept].iter_mut().zip(&correction).skip(skip) {
+            *z -= c;
+            step = step.max(c.norm_sqr());
+        }
+        step.sqrt()
     }
 
     /// Coefficients in `v` of `Phi'(u)`; the first `K + 2` entries are used.
