@@ -71,11 +71,25 @@ fn transforms() -> &'static Transforms {
         Transforms {
             full: pair(POINTS),
             coarse: pair(COARSE),
-            roots: std::array::from_fn(|s| {
-                Complex64::from_polar(1.0, 2.0 * std::f64::consts::PI * s as f64 / POINTS as f64)
-            }),
+            roots: std::array::from_fn(root),
         }
     })
+}
+
+/// `exp(2 pi i s/POINTS)` by the symmetries of the circle: the rounding of larger angles would turn
+/// all points one way, and shift the mean of a phase over the ring.
+fn root(s: usize) -> Complex64 {
+    const QUARTER: usize = POINTS / 4;
+    let within = s % QUARTER;
+    let angle = |n: usize| std::f64::consts::FRAC_PI_2 * n as f64 / QUARTER as f64;
+    let z = if 2 * within <= QUARTER {
+        let (sin, cos) = angle(within).sin_cos();
+        Complex64::new(cos, sin)
+    } else {
+        let (sin, cos) = angle(QUARTER - within).sin_cos();
+        Complex64::new(sin, cos)
+    };
+    (0..s / QUARTER).fold(z, |z, _| z * I)
 }
 
 /// The transforms of length `N`, [`POINTS`] or [`COARSE`].
