@@ -35,6 +35,8 @@ pub(super) const RULE: [(f64, f64); 10] = [
 pub(super) const STEPS: usize = 60;
 /// Relative error of the rule and of the sums, for K up to 1 and beyond: somewhat above the worst seen.
 const ROUNDING: [f64; 2] = [1.5e-13, 1e-12];
+/// A step whose exponent falls by less than this part of its Taylor terms is cut in two.
+const STRAIGHT: f64 = 0.7;
 /// Where the integrand is below rounding.
 pub(super) const FLOOR: f64 = 42.0;
 
@@ -69,17 +71,24 @@ pub(crate) fn incomplete(
         }
         let taylor = phi.about(u).map(|t| t * ik);
         let step = descent(&taylor[1..=degree], 10.0 + 0.6 * drop)?;
-        let middle = step * 0.5;
         let along =
             |s: Complex64| taylor[1..=degree].iter().rev().fold(ZERO, |sum, &t| (sum + t) * s);
-        for (node, weight) in RULE {
-            for s in [middle * (1.0 - node), middle * (1.0 + node)] {
-                let mut term = (exponent + along(s)).exp() * middle * weight;
-                for (sum, size) in sum.iter_mut().zip(&mut sizes).take(count) {
-                    *sum += term;
-                    // The descent cancels little, but the powers of u may.
-                    *size += term.re.abs() + term.im.abs();
-                    term *= u + s;
+        // Where the exponent turns as much as it falls one panel is not enough: beside a saddle of high
+        // order the descent bends away from the chord.
+        let size = taylor[1..=degree].iter().rev().fold(0.0, |s, t| (s + t.norm()) * step.norm());
+        let panels = if -along(step).re < STRAIGHT * size { 2 } else { 1 };
+        let half = step * (0.5 / panels as f64);
+        for panel in 0..panels {
+            let middle = half * (2 * panel + 1) as f64;
+            for (node, weight) in RULE {
+                for s in [middle - half * node, middle + half * node] {
+                    let mut term = (exponent + along(s)).exp() * half * weight;
+                    for (sum, size) in sum.iter_mut().zip(&mut sizes).take(count) {
+                        *sum += term;
+                        // The descent cancels little, but the powers of u may.
+                        *size += term.re.abs() + term.im.abs();
+                        term *= u + s;
+                    }
                 }
             }
         }
