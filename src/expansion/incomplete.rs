@@ -33,10 +33,10 @@ pub(super) const RULE: [(f64, f64); 10] = [
 
 /// Steps of one descent at most.
 pub(super) const STEPS: usize = 60;
-/// Relative error of the rule and of the sums, for K up to 1 and beyond: somewhat above the worst seen.
-const ROUNDING: [f64; 2] = [1.5e-13, 1e-12];
-/// A step whose exponent falls by less than this part of its Taylor terms is cut in two.
-const STRAIGHT: f64 = 0.7;
+/// Relative error of the rule and of the sums, for K up to 1, 2 and beyond: somewhat above the worst seen.
+const ROUNDING: [f64; 3] = [1.5e-13, 3e-13, 2e-12];
+/// A step whose exponent falls by less than these parts of its Taylor terms is cut in two or three.
+const STRAIGHT: [f64; 2] = [0.9, 0.7];
 /// Where the integrand is below rounding.
 pub(super) const FLOOR: f64 = 42.0;
 
@@ -76,7 +76,8 @@ pub(crate) fn incomplete(
         // Where the exponent turns as much as it falls one panel is not enough: beside a saddle of high
         // order the descent bends away from the chord.
         let size = taylor[1..=degree].iter().rev().fold(0.0, |s, t| (s + t.norm()) * step.norm());
-        let panels = if -along(step).re < STRAIGHT * size { 2 } else { 1 };
+        let fall = -along(step).re / size;
+        let panels = 1 + STRAIGHT.iter().filter(|part| fall < **part).count();
         let half = step * (0.5 / panels as f64);
         for panel in 0..panels {
             let middle = half * (2 * panel + 1) as f64;
@@ -110,7 +111,7 @@ pub(crate) fn incomplete(
     }
     Some(Incomplete {
         values: sum,
-        errors: sizes.map(|size| ROUNDING[usize::from(degree > 3)] * size),
+        errors: sizes.map(|size| ROUNDING[degree.clamp(3, 5) - 3] * size),
     })
 }
 
