@@ -36,8 +36,8 @@ const WORST_TAIL: f64 = 1e-5;
 const CLEAN: f64 = 1e-12;
 /// Tails below this may be set by rounding.
 const ROUGH: f64 = 1e-7;
-const LARGEST: f64 = 150.0;
-const SMALLEST: f64 = 0.3;
+const LARGEST: f64 = 40.0;
+const SMALLEST: f64 = 0.15;
 /// The error of the moments, relative to their parts.
 const ROUNDING: f64 = 8e-15;
 
