@@ -257,3 +257,66 @@ fn a_phase_that_is_bounded_at_infinity_is_mapped() {
     let yardstick = mapped.quadrature(9.0, 1e-13).expect("a yardstick");
     assert!((yardstick.value - exact).norm() < 1e-12 * exact);
 }
+
+/// An end near two saddles, merged or not, of phases of degree 3 to 5.
+fn ends_near_two_saddles(seed: u64, cases: usize) -> Tally {
+    let mut random = Random(seed);
+    let mut tally = Tally::default();
+    for case in 0..cases {
+        let others = random.below(3);
+        let apart = 10f64.powf(random.within(-5.0, 0.0));
+        let centre = random.disc(0.5);
+        let mut saddles =
+            vec![centre, centre + Complex64::from_polar(apart, 2.0 * PI * random.next())];
+        for _ in 0..others {
+            let far = random.within(1.5, 3.0);
+            saddles.push(centre + Complex64::from_polar(far, 2.0 * PI * random.next()));
+        }
+        let phase = from_saddles(Complex64::from_polar(1.0, 2.0 * PI * random.next()), &saddles);
+        let degree = saddles.len() + 1;
+        let offset = 10f64.powf(random.within(-5.0, 0.3));
+        let offset = if random.below(10) == 0 { 0.0 } else { offset };
+        let end = centre + Complex64::from_polar(offset, 2.0 * PI * random.next());
+        let far = valley(phase.0[degree], degree, random.below(degree), 12.0);
+        let around = end + Complex64::from_polar(random.within(0.3, 1.0), 2.0 * PI * random.next());
+        let mut points = if random.next() < 0.3 { vec![end, around, far] } else { vec![end, far] };
+        let lambda = exponent(&mut random);
+        let at_start = random.next() < 0.5;
+        if !at_start {
+            points.reverse();
+        }
+        let k = 10f64.powf(random.within(0.5, 4.0));
+        let g = amplitude(&mut random);
+        let integral = if at_start {
+            Integral::new(phase, Contour::starting_at(points)).amplitude(g).power_at_start(lambda)
+        } else {
+            Integral::new(phase, Contour::ending_at(points)).amplitude(g).power_at_end(lambda)
+        };
+        let got = integral.plan().and_then(|plan| plan.at(k));
+        let label = format!(
+            "case {case} degree {degree} k {k:.1} apart {apart:.1e} offset {offset:.1e} l {lambda:.2}"
+        );
+        tally.enter(&label, got, integral.quadrature(k, 1e-13));
+    }
+    tally
+}
+
+#[test]
+fn random_algebraic_ends_near_two_saddles() {
+    ends_near_two_saddles(33, 400).check("algebraic ends near two saddles", 0.95);
+}
+
+/// A phase with the given zeros of its derivative.
+fn from_saddles(lead: Complex64, saddles: &[Complex64]) -> Polynomial {
+    let mut slope = vec![lead];
+    for s in saddles {
+        let mut next = vec![c(0.0, 0.0); slope.len() + 1];
+        for (j, a) in slope.iter().enumerate() {
+            next[j + 1] += a;
+            next[j] -= a * s;
+        }
+        slope = next;
+    }
+    let terms = slope.iter().enumerate().map(|(j, a)| a / (j + 1) as f64);
+    Polynomial(std::iter::once(c(0.0, 0.0)).chain(terms).collect())
+}

@@ -7,15 +7,16 @@
 //!
 //! - No saddle near: `Gamma(lambda) (i/k)^lambda`, the valley at the angle `pi/2 + 2 pi V` (Watson's
 //!   lemma, DLMF 2.3(ii)).
-//! - One saddle: parabolic cylinder functions (`parabolic`), the valleys at `pi/4 + pi V`.
+//! - One saddle: parabolic cylinder functions, the valleys at `pi/4 + pi V`; two: the same with a cubic
+//!   phase, the valleys at `pi/6 + 2 pi V/3`; both in `end_moments`.
 //!
-//! The sum is split in two: the end's own descent, and the rest, which is what the saddle adds; each is
-//! taken where its error figure is smaller, here or from the saddle's own series.
+//! The sum is split in two: the end's own descent, and the rest, which is what the saddles add; each is
+//! taken where its error figure is smaller, here or from the saddles' own series.
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
 
+use super::end_moments::{EndMoments, Paths as Ways};
 use super::figure::Parts;
-use super::parabolic::{gamma, parabolic};
 use super::series::Contribution;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
@@ -35,10 +36,10 @@ const WORST_TAIL: f64 = 1e-5;
 const CLEAN: f64 = 1e-12;
 /// Tails below this may be set by rounding.
 const ROUGH: f64 = 1e-7;
-const LARGEST: f64 = 150.0;
-const SMALLEST: f64 = 0.3;
+const LARGEST: f64 = 40.0;
+const SMALLEST: f64 = 0.15;
 /// The error of the moments, relative to their parts.
-const ROUNDING: f64 = 3e-14;
+const ROUNDING: f64 = 8e-15;
 
 /// An amplitude with the powers of algebraic ends, each continued from a point off its end.
 pub(crate) struct Powered<'a> {
@@ -104,12 +105,13 @@ type Paths = Vec<(i32, Complex64)>;
 /// An algebraic end on rings about it.
 pub(crate) struct AlgebraicSeries {
     lambda: f64,
-    gamma: f64,
+    /// `Gamma(lambda) i^lambda`, where no saddle is near.
+    gamma: Complex64,
     rings: Vec<Ring>,
     reference: usize,
     /// The end's own descent.
     own: Paths,
-    /// What the saddle adds.
+    /// What the saddles add.
     rest: Paths,
     /// The same as whole weights with points of the ring, for the certificate.
     pub valleys: Vec<(i32, Complex64)>,
@@ -145,12 +147,12 @@ fn collected(list: &[(i32, i32, i32)]) -> Vec<(i32, i32, i32)> {
 pub(crate) enum Part {
     /// The descent from the end.
     End,
-    /// What the saddle near the end adds.
-    Saddle,
+    /// What the saddles near the end add.
+    Saddles,
 }
 
 impl AlgebraicSeries {
-    /// With `saddles` (0 or 1) near the end, the first ring at about `reach` from it but not below
+    /// With `saddles` (0 to 2) near the end, the first ring at about `reach` from it but not below
     /// `least`. None if there is no normal form, or the contour cannot be followed.
     pub fn new(
         phase: &dyn Phase,
@@ -174,7 +176,7 @@ impl AlgebraicSeries {
             let logarithm = Complex64::new(form.slope().norm().ln(), angle);
             let power = branch.constant * (logarithm * (branch.lambda - 1.0)).exp();
             let orders = BasedOrders::new(&form, &smooth, branch.lambda, power)?;
-            let filling = form.saddle().map_or(0.0, |s| s.norm());
+            let filling = form.filling();
             Some(Ring { form, orders, filling })
         };
         let tail = |ring: &Ring| ring.orders.tail.max(ring.form.tail());
@@ -223,7 +225,7 @@ impl AlgebraicSeries {
         let sign = if branch.end == 0 { 1.0 } else { -1.0 };
         let mut series = AlgebraicSeries {
             lambda: branch.lambda,
-            gamma: gamma(branch.lambda)?,
+            gamma: Ways::new(&[], branch.lambda, 1.0)?.toward(0)?.values[0],
             rings,
             reference,
             own: Vec::new(),
@@ -261,12 +263,17 @@ impl AlgebraicSeries {
         self.unrolled.as_ref()
     }
 
+    /// How many saddles are near.
+    pub fn saddles(&self) -> usize {
+        self.rings[self.reference].form.degree() - 1
+    }
+
     /// Whether the contour is the end's own descent and no more.
     pub fn is_plain(&self) -> bool {
         self.rest.is_empty()
     }
 
-    /// `integral of u^(lambda - 1 + j) exp(i k Phi)` over the paths, `j = 0, 1`, and the sizes of what
+    /// `integral of u^(lambda - 1 + j) exp(i k Phi)` over the paths, `j = 0 .. D - 1`, and the sizes of what
     /// they are summed from.
     fn moments(&self, paths: &Paths, k: f64) -> Option<[(Complex64, f64); MAX_DEGREE]> {
         let form = &self.rings[self.reference].form;
@@ -274,32 +281,26 @@ impl AlgebraicSeries {
         let mut sums = [(ZERO, 0.0); MAX_DEGREE];
         if degree == 1 {
             for &(valley, weight) in paths {
-                let angle = 0.5 * PI + 2.0 * PI * f64::from(valley);
-                let value = weight
-                    * Complex64::from_polar(self.gamma * k.powf(-self.lambda), angle * self.lambda);
+                let turn = Complex64::from_polar(1.0, 2.0 * PI * self.lambda * f64::from(valley));
+                let value = weight * self.gamma * turn * k.powf(-self.lambda);
                 sums[0].0 += value;
                 sums[0].1 += value.norm();
             }
             return Some(sums);
         }
-        // u = e^(i theta) s/sqrt(2 k).
-        let unit = (2.0 * k).sqrt().recip();
+        let x = form.x();
+        let ways = Ways::new(&x[..degree - 1], self.lambda, k)?;
         for &(valley, weight) in paths {
-            let theta = 0.25 * PI + PI * f64::from(valley);
-            let turn = Complex64::from_polar(1.0, theta);
-            let zeta = Complex64::new(0.0, -k * unit) * form.x1() * turn;
-            let values = parabolic(self.lambda, zeta)?;
-            for (j, (sum, value)) in sums.iter_mut().zip(values).enumerate() {
-                let mu = self.lambda + j as f64;
-                let value = weight * value * Complex64::from_polar(unit.powf(mu), theta * mu);
-                sum.0 += value;
-                sum.1 += value.norm();
+            let EndMoments { values, sizes } = ways.toward(valley)?;
+            for ((sum, value), size) in sums.iter_mut().zip(values).zip(sizes) {
+                sum.0 += weight * value;
+                sum.1 += weight.norm() * size;
             }
         }
         Some(sums)
     }
 
-    /// A part of the contribution at wavenumber `k` with at most `orders` orders; unknown where the
+    /// A part of the contribution at wavenumber `k` with at most `orders` orders; unknown where a
     /// saddle is too far away.
     pub fn at(&self, part: Part, k: f64, orders: usize) -> Contribution {
         let paths = if part == Part::End { &self.own } else { &self.rest };
@@ -348,13 +349,15 @@ fn parts(ring: &Ring, moments: &[(Complex64, f64); MAX_DEGREE], k: f64, orders: 
         power /= k;
     }
     let form = &ring.form;
+    let reach = ring.filling * form.radius();
+    let spread: f64 = form.x().iter().zip(1..).map(|(x, j)| x.norm() * reach.powi(j)).sum();
     Parts {
         terms,
         noise,
         size: ring.orders.size,
         residual: k * form.residual(),
         tail: ring.orders.tail + form.tail(),
-        spread: k * form.x1().norm() * ring.filling * form.radius(),
+        spread: k * spread,
         filling: ring.filling,
         orders,
     }

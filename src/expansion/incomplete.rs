@@ -33,8 +33,10 @@ pub(super) const RULE: [(f64, f64); 10] = [
 
 /// Steps of one descent at most.
 pub(super) const STEPS: usize = 60;
-/// Relative error of the rule and of the sums, for K up to 1 and beyond: somewhat above the worst seen.
-const ROUNDING: [f64; 2] = [1.5e-13, 1e-12];
+/// Relative error of the rule and of the sums, for K up to 1, 2 and beyond: somewhat above the worst seen.
+const ROUNDING: [f64; 3] = [1.5e-13, 3e-13, 2e-12];
+/// A step whose exponent falls by less than these parts of its Taylor terms is cut in two or three.
+const STRAIGHT: [f64; 2] = [0.9, 0.7];
 /// Where the integrand is below rounding.
 pub(super) const FLOOR: f64 = 42.0;
 
@@ -69,17 +71,21 @@ pub(crate) fn incomplete(
         }
         let taylor = phi.about(u).map(|t| t * ik);
         let step = descent(&taylor[1..=degree], 10.0 + 0.6 * drop)?;
-        let middle = step * 0.5;
         let along =
             |s: Complex64| taylor[1..=degree].iter().rev().fold(ZERO, |sum, &t| (sum + t) * s);
-        for (node, weight) in RULE {
-            for s in [middle * (1.0 - node), middle * (1.0 + node)] {
-                let mut term = (exponent + along(s)).exp() * middle * weight;
-                for (sum, size) in sum.iter_mut().zip(&mut sizes).take(count) {
-                    *sum += term;
-                    // The descent cancels little, but the powers of u may.
-                    *size += term.re.abs() + term.im.abs();
-                    term *= u + s;
+        let panels = panels(&taylor[1..=degree], step);
+        let half = step * (0.5 / panels as f64);
+        for panel in 0..panels {
+            let middle = half * (2 * panel + 1) as f64;
+            for (node, weight) in RULE {
+                for s in [middle - half * node, middle + half * node] {
+                    let mut term = (exponent + along(s)).exp() * half * weight;
+                    for (sum, size) in sum.iter_mut().zip(&mut sizes).take(count) {
+                        *sum += term;
+                        // The descent cancels little, but the powers of u may.
+                        *size += term.re.abs() + term.im.abs();
+                        term *= u + s;
+                    }
                 }
             }
         }
@@ -101,7 +107,7 @@ pub(crate) fn incomplete(
     }
     Some(Incomplete {
         values: sum,
-        errors: sizes.map(|size| ROUNDING[usize::from(degree > 3)] * size),
+        errors: sizes.map(|size| ROUNDING[degree.clamp(3, 5) - 3] * size),
     })
 }
 
@@ -141,30 +147,7 @@ pub(super) fn valley_of(phi: &Unfolding, u: Complex64, k: f64) -> Option<usize> 
 /// A step down: as long as the Taylor terms (of `i k Phi`, from the first on) sum to `budget`, in the
 /// direction that descends most.
 pub(super) fn descent(taylor: &[Complex64], budget: f64) -> Option<Complex64> {
-    let total = |rho: f64| taylor.iter().rev().fold(0.0, |sum, t| (sum + t.norm()) * rho);
-    // The largest rho with total(rho) <= budget, by bisection on a bracket from single terms.
-    let mut high = f64::INFINITY;
-    for (n, t) in taylor.iter().enumerate() {
-        if t.norm() > 0.0 {
-            high = high.min((budget / t.norm()).powf(1.0 / (n + 1) as f64));
-        }
-    }
-    if !high.is_finite() {
-        return None;
-    }
-    let mut low = 0.0;
-    for _ in 0..30 {
-        let middle = 0.5 * (low + high);
-        if total(middle) > budget {
-            high = middle
-        } else {
-            low = middle
-        }
-        if high - low < 0.02 * high {
-            break;
-        }
-    }
-    let mut rho = low.max(0.25 * high);
+    let mut rho = reach(taylor, budget)?;
     let along = |s: Complex64| taylor.iter().rev().fold(ZERO, |sum, &t| (sum + t) * s).re;
     let slope = taylor[0];
     let curve = taylor.get(1).copied().unwrap_or(ZERO);
@@ -189,4 +172,40 @@ pub(super) fn descent(taylor: &[Complex64], budget: f64) -> Option<Complex64> {
         rho *= 0.5;
     }
     None
+}
+
+/// The largest length for which the Taylor terms (from the first on) sum to `budget`.
+pub(super) fn reach(taylor: &[Complex64], budget: f64) -> Option<f64> {
+    let total = |rho: f64| taylor.iter().rev().fold(0.0, |sum, t| (sum + t.norm()) * rho);
+    // The largest rho with total(rho) <= budget, by bisection on a bracket from single terms.
+    let mut high = f64::INFINITY;
+    for (n, t) in taylor.iter().enumerate() {
+        if t.norm() > 0.0 {
+            high = high.min((budget / t.norm()).powf(1.0 / (n + 1) as f64));
+        }
+    }
+    if !high.is_finite() {
+        return None;
+    }
+    let mut low = 0.0;
+    for _ in 0..30 {
+        let middle = 0.5 * (low + high);
+        if total(middle) > budget {
+            high = middle
+        } else {
+            low = middle
+        }
+        if high - low < 0.02 * high {
+            break;
+        }
+    }
+    Some(low.max(0.25 * high))
+}
+
+/// Panels over a step: beside a saddle of high order the descent bends away from the chord, where the
+/// exponent turns as much as it falls.
+pub(super) fn panels(taylor: &[Complex64], step: Complex64) -> usize {
+    let fall = -taylor.iter().rev().fold(ZERO, |sum, &t| (sum + t) * step).re;
+    let size = taylor.iter().rev().fold(0.0, |sum, t| (sum + t.norm()) * step.norm());
+    1 + STRAIGHT.iter().filter(|part| fall < **part * size).count()
 }

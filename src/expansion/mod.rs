@@ -3,10 +3,10 @@
 mod algebraic;
 mod canonical;
 mod end;
+mod end_moments;
 mod end_pole;
 mod figure;
 mod incomplete;
-mod parabolic;
 mod pole;
 mod series;
 mod unfolding;

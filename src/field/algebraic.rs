@@ -8,9 +8,11 @@ use crate::saddles::{Branch, Saddle, Sheeting, Sheets, Tree};
 use num_complex::Complex64;
 use std::f64::consts::PI;
 
-/// A saddle is taken together with an end if no other is nearer to the end than this many times its
+/// Saddles are taken together with an end if no other is nearer to the end than this many times their
 /// distance.
 const APART: f64 = 1.3;
+/// Saddles that may be taken together with an end.
+const MOST: usize = 2;
 
 /// The algebraic ends.
 pub(super) fn branches(problem: &Problem) -> Result<Vec<Branch>, Error> {
@@ -38,7 +40,7 @@ pub(super) fn branches(problem: &Problem) -> Result<Vec<Branch>, Error> {
     Ok(list)
 }
 
-/// The series of each algebraic end, alone and with each single saddle near it.
+/// The series of each algebraic end, alone and with each saddle or pair of saddles near it.
 pub(super) fn algebraic_ends(
     problem: &Problem,
     sheeting: &mut Sheeting,
@@ -64,13 +66,18 @@ pub(super) fn algebraic_ends(
         }
         let mut near = Vec::new();
         for (node, group) in tree.groups.iter().enumerate() {
-            let [member] = group.members[..] else { continue };
-            let here = distance(saddles[member].z);
-            let others = saddles.iter().enumerate().filter(|(n, _)| *n != member);
-            let next = others.map(|(_, s)| distance(s.z)).fold(clear, f64::min);
+            if group.members.len() > MOST {
+                continue;
+            }
+            let inside = |n: &usize| group.members.contains(n);
+            let members = group.members.iter().map(|&n| distance(saddles[n].z));
+            let here = members.fold(0.0, f64::max);
+            let others = (0..saddles.len()).filter(|n| !inside(n));
+            let next = others.map(|n| distance(saddles[n].z)).fold(clear, f64::min);
             if next > APART * here {
                 let reach = ((1.5 * here).max(0.3 * next), 1.2 * here);
-                near.extend(series(sheeting, 1, reach).map(|series| (node, series)));
+                let count = group.members.len();
+                near.extend(series(sheeting, count, reach).map(|series| (node, series)));
             }
         }
         if own.is_none() && near.is_empty() {

@@ -99,11 +99,16 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let algebraic = algebraic_ends(problem, &mut sheeting, &tree, &saddles, size)?;
     for (node, series) in algebraic.iter().flat_map(|end| &end.near) {
         if !series.is_plain() {
-            let f = saddles[tree.groups[*node].members[0]].value;
-            reach.include(height(f), topology.turned_height(f));
+            for &member in &tree.groups[*node].members {
+                let f = saddles[member].value;
+                reach.include(height(f), topology.turned_height(f));
+            }
         }
     }
-    let beside = |node: usize| algebraic.iter().any(|end| end.near.iter().any(|n| n.0 == node));
+    let beside = |node: usize| {
+        let mut near = algebraic.iter().flat_map(|end| &end.near);
+        near.find(|n| n.0 == node).map(|(_, series)| !series.is_plain())
+    };
     let scene = Scene {
         sheeting: &sheeting,
         topology: &topology,
@@ -225,8 +230,8 @@ struct Scene<'a> {
     tree: &'a Tree,
     saddles: &'a [Saddle],
     ends: &'a [End],
-    /// Whether a node's saddle is treated together with an algebraic end.
-    beside: &'a dyn Fn(usize) -> bool,
+    /// For a node treated together with an algebraic end: whether it contributes there.
+    beside: &'a dyn Fn(usize) -> Option<bool>,
     /// The neighbourhood of the contour.
     home: Region,
     size: f64,
@@ -251,7 +256,8 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
         let gap = if group.gap.is_finite() { group.gap } else { size };
         // An end point near a saddle needs its series, whether the saddle contributes or not.
         let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
-        nodes[index].settled = beside(index);
+        let together = beside(index);
+        nodes[index].settled = together.is_some();
         // No ring may hold an algebraic end.
         let branches = sheeting.branches();
         let gap = branches.iter().map(|b| (b.base - group.centre).norm()).fold(gap, f64::min);
@@ -277,7 +283,9 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
                 .multiplicities(series.form(), group.centre)
                 .map(|s| on_sheets(series, branches, &s))
         };
-        let Some(series) = series else {
+        // Close to an algebraic end the ring about the end sees more than a small one beside it.
+        let agrees = |series: &Series| together.is_none_or(|t| t == series.contributes());
+        let Some(series) = series.filter(agrees) else {
             continue;
         };
         if series.contributes() {

@@ -68,7 +68,7 @@ impl End {
     }
 }
 
-/// An algebraic end point: alone, and with a saddle near it (an index of its node).
+/// An algebraic end point: alone, and with one or two saddles near it (an index of their node).
 pub(super) struct AlgebraicEnd {
     pub own: Option<AlgebraicSeries>,
     pub near: Vec<(usize, AlgebraicSeries)>,
@@ -282,15 +282,15 @@ impl Plan {
         finish(total, form, k)
     }
 
-    /// What a single saddle adds, by the rings about an algebraic end near it.
+    /// What a group adds, by the rings about an algebraic end near it.
     fn beside_an_end(&self, node: usize, k: f64, orders: usize) -> Option<Choice> {
         let ends = self.algebraic.iter().flat_map(|end| &end.near);
         let found = ends.filter(|(index, _)| *index == node).map(|(_, series)| {
             if series.is_plain() {
                 return Choice::NONE;
             }
-            let part = series.at(Part::Saddle, k, orders);
-            Choice { part, clusters: 1, largest: 1, as_whole: true }
+            let part = series.at(Part::Saddles, k, orders);
+            Choice { part, clusters: 1, largest: series.saddles(), as_whole: true }
         });
         found.reduce(|a, b| if below(b.part.error, a.part.error) { b } else { a })
     }

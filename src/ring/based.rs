@@ -20,8 +20,8 @@ use super::{
 use crate::integral::{Amplitude, Phase};
 use num_complex::Complex64;
 
-/// The largest `D`: one saddle near the end.
-pub(crate) const MAX_DEGREE: usize = 2;
+/// The largest `D`: two saddles near the end.
+pub(crate) const MAX_DEGREE: usize = 3;
 
 /// A phase in normal form about an end point, on one ring.
 #[derive(Clone, Debug)]
@@ -165,14 +165,32 @@ impl BasedForm {
         self.level
     }
 
-    /// `x_1` (one saddle; zero without).
-    pub fn x1(&self) -> Complex64 {
-        if self.degree > 1 { self.x[1] / self.radius } else { ZERO }
+    /// `x_1 .. x_K1`.
+    pub fn x(&self) -> [Complex64; MAX_DEGREE - 1] {
+        let x = |j: usize| self.x[j] / self.radius.powi(j as i32);
+        std::array::from_fn(|n| if n + 1 < self.degree { x(n + 1) } else { ZERO })
     }
 
-    /// The saddle in the plane of `v`; None without.
-    pub fn saddle(&self) -> Option<Complex64> {
-        (self.degree > 1).then(|| -self.x[1] / (self.x[2] * 2.0))
+    /// The saddles in the plane of `v`, as many as there are.
+    pub fn saddles(&self) -> impl Iterator<Item = Complex64> {
+        let [_, a, b, c] = self.divisor();
+        let mut list = [ZERO; MAX_DEGREE - 1];
+        if self.degree == 2 {
+            list[0] = -a / b;
+        } else if self.degree == 3 {
+            // a + b v + c v^2 without cancellation.
+            let root = (b * b - a * c * 4.0).sqrt();
+            let q = if (b + root).norm() > (b - root).norm() { b + root } else { b - root };
+            if q != ZERO {
+                list = [q / (c * -2.0), a * -2.0 / q];
+            }
+        }
+        list.into_iter().take(self.degree - 1)
+    }
+
+    /// The largest `|v|` of a saddle.
+    pub fn filling(&self) -> f64 {
+        self.saddles().fold(0.0, |m, s| m.max(s.norm()))
     }
 
     /// `z(R v)`.
@@ -308,7 +326,7 @@ mod tests {
                 let f = phase(form.point(v)).0 - form.level();
                 assert!((f - form.unfolding(v).0).norm() < 1e-14, "{saddles}");
             }
-            if let Some(saddle) = form.saddle() {
+            for saddle in form.saddles() {
                 assert!(phase(form.point(saddle)).1.norm() < 1e-13);
             }
         }

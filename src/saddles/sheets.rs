@@ -362,12 +362,10 @@ impl Sheeting<'_, '_> {
                 }
             }
         }
-        let saddle = form.saddle();
-        if v.norm() <= 1.1 * saddle.map_or(0.0, |s| s.norm()) {
+        if v.norm() <= 1.1 * form.filling() {
             return None;
         }
-        let lift =
-            0.5 * PI + form.degree() as f64 * angle + saddle.map_or(0.0, |s| (1.0 - s / v).arg());
+        let lift = lift(form, v, angle);
         Some(((lift - PI) / (2.0 * PI)).round() as i32)
     }
 }
@@ -375,6 +373,12 @@ impl Sheeting<'_, '_> {
 /// The angle nearest to another, up to whole turns.
 fn near(angle: f64, other: f64) -> f64 {
     angle + 2.0 * PI * ((other - angle) / (2.0 * PI)).round()
+}
+
+/// `arg(i u Phi')` at `u = R v` beyond the saddles, with the given angle of `v`.
+fn lift(form: &BasedForm, v: Complex64, angle: f64) -> f64 {
+    let turns: f64 = form.saddles().map(|s| (1.0 - s / v).arg()).sum();
+    0.5 * PI + form.degree() as f64 * angle + turns
 }
 
 /// Ridges and valleys of a ring about an end point.
@@ -391,10 +395,7 @@ impl BasedArcs {
         let mut best = [f64::NEG_INFINITY; MAX_DEGREE];
         let mut least = [f64::INFINITY; MAX_DEGREE];
         for &v in unit_points() {
-            let lift = 0.5 * PI
-                + degree as f64 * v.arg()
-                + form.saddle().map_or(0.0, |s| (1.0 - s / v).arg())
-                + DELTA;
+            let lift = lift(form, v, v.arg()) + DELTA;
             let (phi, slope) = form.unfolding(v);
             let (height, slope) = ((phi * i).re, (slope * i).re);
             if slope > 0.0 {
