@@ -2,8 +2,8 @@
 
 use merging_saddles::special::airy::airy;
 use merging_saddles::special::cuspoid::{
-    Cuspoid, between, butterfly, moments, pearcey, pearcey_at, pearcey_zero_inside,
-    pearcey_zero_near, pearcey_zero_outside, real_line, swallowtail,
+    Cuspoid, between, butterfly, moments, pearcey, pearcey_zero_inside, pearcey_zero_near,
+    pearcey_zero_outside, real_line, swallowtail,
 };
 use merging_saddles::{Complex64, Error, Scaled};
 use proptest::prelude::*;
@@ -375,11 +375,6 @@ fn refusals_name_the_value() {
     assert!(text(between(&[ZERO; 9], 8, 0).map(|_| ())).contains("valley = 8"));
     assert!(text(pearcey_zero_inside(0, 0).map(|_| ())).contains("row"));
     assert!(text(pearcey_zero_inside(3, 3).map(|_| ())).contains("place = 3"));
-    let blank = pearcey(0.0, 0.0).unwrap();
-    assert!(text(pearcey_at(&[(0.0, 0.0)], &mut [blank; 2])).contains("length"));
-    let mut out = [blank; 2];
-    pearcey_at(&[(1.0, 2.0), (3.0, -4.0)], &mut out).unwrap();
-    assert_eq!(out[1], pearcey(3.0, -4.0).unwrap());
 }
 
 /// Row m inside the cusp has m zeros, all different; those outside follow the caustic.

@@ -68,28 +68,41 @@ impl Dd {
     }
 }
 
-/// A constant as the sum of three doubles, for argument reduction.
+/// A constant for argument reduction.
 pub(crate) struct Period {
+    /// As the sum of three doubles.
     parts: [f64; 3],
+    /// The same, the first two with 30 bits each: small multiples of them are exact.
+    short: [f64; 3],
     inverse: f64,
 }
 
 /// pi/2.
 pub(crate) const HALF_PI: Period = Period {
     parts: [std::f64::consts::FRAC_PI_2, 6.123233995736766e-17, -1.4973849048591698e-33],
+    short: [1.570796325802803, 9.920935791635221e-10, 5.170182981794105e-19],
     inverse: std::f64::consts::FRAC_2_PI,
 };
 
 /// ln 2.
 pub(crate) const LN_2: Period = Period {
     parts: [std::f64::consts::LN_2, 2.3190468138462996e-17, 5.707708438416212e-34],
+    short: [0.6931471796706319, 8.893134232496047e-10, 6.390629507645039e-19],
     inverse: std::f64::consts::LOG2_E,
 };
+
+/// Added and subtracted, it rounds to an integer.
+const ROUNDER: f64 = 6_755_399_441_055_744.0; // 1.5 * 2^52
+/// Below this the quotient by a period has at most 22 bits.
+const SHORT: f64 = 2e6;
 
 impl Period {
     /// `x = n * period + r` with `|r|` at most a hair above half the period; for `|x| < 2^62`.
     #[inline]
     pub(crate) fn reduce(&self, x: Dd) -> (i64, Dd) {
+        if x.hi.abs() < SHORT {
+            return self.reduce_short(x);
+        }
         let (n, r) = self.reduce_once(x);
         if x.hi.abs() < 1e8 {
             return (n, r);
@@ -99,9 +112,18 @@ impl Period {
         (n + more, r)
     }
 
+    /// For `|x| < SHORT` (Cody and Waite's reduction; common practice).
+    #[inline]
+    fn reduce_short(&self, x: Dd) -> (i64, Dd) {
+        let n = (x.hi * self.inverse + ROUNDER) - ROUNDER;
+        // Exact, since the two are close to each other or n is zero.
+        let top = x.hi - n * self.short[0];
+        let sum = two_sum(top, -(n * self.short[1]));
+        (n as i64, quick_two_sum(sum.hi, sum.lo + (x.lo - n * self.short[2])))
+    }
+
     #[inline]
     fn reduce_once(&self, x: Dd) -> (i64, Dd) {
-        const ROUNDER: f64 = 6_755_399_441_055_744.0; // 1.5 * 2^52
         let quotient = x.hi * self.inverse;
         let n =
             if quotient.abs() < 1e15 { (quotient + ROUNDER) - ROUNDER } else { quotient.round() };
@@ -194,14 +216,18 @@ mod tests {
 
     #[test]
     fn sine_and_cosine_keep_the_low_word() {
-        // sin(2^60), cos(2^60) and e^1000 / 2^1443 from 150-digit arithmetic (mpmath).
+        // sin(2^60), cos(2^60), sin(10^6), cos(10^6) and e^1000 / 2^1443 from 150-digit arithmetic (mpmath).
         let (s, c) = sin_cos(Dd { hi: 1_152_921_504_606_846_976.0, lo: 0.0 });
         assert!((s - SIN_2_60).abs() < 3e-16 && (c - COS_2_60).abs() < 3e-16, "{s} {c}");
+        let (s, c) = sin_cos(Dd { hi: 1e6, lo: 0.0 });
+        assert!((s - SIN_1E6).abs() < 1.2e-16 && (c - COS_1E6).abs() < 1.2e-16, "{s} {c}");
         let (up, down, n) = exp_both(Dd { hi: 1000.0, lo: 0.0 });
         assert_eq!(n, 1443);
         assert!((up - EXP_1000).abs() < 3e-16 * up && (up * down - 1.0).abs() < 5e-16);
     }
     const SIN_2_60: f64 = -0.8306492176372546;
     const COS_2_60: f64 = -0.5567960822766417;
+    const SIN_1E6: f64 = -0.34999350217129294;
+    const COS_1E6: f64 = 0.9367521275331447;
     const EXP_1000: f64 = 0.809465158140234;
 }

@@ -5,4 +5,5 @@ pub mod cuspoid;
 pub(crate) mod double_double;
 pub mod faddeeva;
 mod panels;
+mod slices;
 pub mod umbilic;

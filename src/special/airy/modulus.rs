@@ -27,8 +27,12 @@ pub struct ModulusPhase {
 
 /// M, theta, N and phi of DLMF 9.8 for `x <= 0`.
 ///
-/// The phases are continuous, not reduced: `theta(a_k) = k pi`. Accuracy: 1e-15 relative for
-/// `-1e12 <= x`, a unit in the last place more beyond (by count of roundings). Cost: some 0.1 microseconds. Errors: `x > 0`, NaN, infinity.
+/// The phases are continuous, not reduced: `theta(a_k) = k pi`; below -1e205 they overflow to
+/// infinity. Accuracy: 1e-15 relative for `-1e12 <= x`, a unit in the last place more beyond (by count
+/// of roundings). Cost: some 0.1 microseconds. Source: DLMF 9.8.
+///
+/// # Errors
+/// [`Error::Domain`] for `x > 0`, NaN and infinity.
 ///
 /// ```
 /// use merging_saddles::special::airy::modulus_phase;

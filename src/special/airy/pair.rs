@@ -6,7 +6,7 @@ use super::asymptotic::{self, FARTHEST, Far};
 use super::nodes::RADIUS;
 use super::{Airy, Rotated, taylor};
 use crate::Scaled;
-use crate::scaled::ldexp;
+use crate::scaled::{ldexp, pow2};
 use crate::special::double_double::{exp_both, sin_cos};
 use num_complex::Complex64;
 use std::ops::Add;
@@ -21,6 +21,8 @@ pub(super) const SIN_60: f64 = 0.866_025_403_784_438_6;
 pub(super) trait Value: Copy + Add<Output = Self> {
     /// `mantissa * 2^exponent`.
     fn assemble(mantissa: Complex64, exponent: i64) -> Self;
+    /// `a * 2^n + b * 2^-n`, for mantissas within 1e-5 and 1e5.
+    fn mixed(a: Complex64, b: Complex64, n: i64) -> Self;
     fn conjugate(self) -> Self;
 }
 
@@ -28,6 +30,13 @@ impl Value for Complex64 {
     #[inline]
     fn assemble(mantissa: Complex64, exponent: i64) -> Self {
         Complex64::new(ldexp(mantissa.re, exponent), ldexp(mantissa.im, exponent))
+    }
+    #[inline]
+    fn mixed(a: Complex64, b: Complex64, n: i64) -> Self {
+        if n.abs() < 1000 {
+            return a * pow2(n) + b * pow2(-n);
+        }
+        Self::assemble(a, n) + Self::assemble(b, -n)
     }
     #[inline]
     fn conjugate(self) -> Self {
@@ -39,6 +48,12 @@ impl Value for Scaled {
     #[inline]
     fn assemble(mantissa: Complex64, exponent: i64) -> Self {
         Scaled::new(mantissa, exponent)
+    }
+    #[inline]
+    fn mixed(a: Complex64, b: Complex64, n: i64) -> Self {
+        // In units of the larger power.
+        let less = pow2(-2 * n.abs());
+        Scaled::new(if n > 0 { a + b * less } else { a * less + b }, n.abs())
     }
     #[inline]
     fn conjugate(self) -> Self {
@@ -83,13 +98,11 @@ impl Pair {
     #[inline]
     pub(super) fn airy<T: Value>(&self) -> Airy<T> {
         let combine = |a: Complex64, b: Complex64| {
-            let falling = T::assemble(a, self.n);
-            let turned = T::assemble(I * a, self.n);
             if self.beyond {
                 let half = b * 0.5;
-                (falling + T::assemble(I * half, -self.n), turned + T::assemble(half, -self.n))
+                (T::mixed(a, I * half, self.n), T::mixed(I * a, half, self.n))
             } else {
-                (falling, turned + T::assemble(b, -self.n))
+                (T::assemble(a, self.n), T::mixed(I * a, b, self.n))
             }
         };
         let (ai, bi) = combine(self.a, self.b);
@@ -107,13 +120,14 @@ impl Pair {
         let b = HALF_E30 * self.b;
         // e^(5 pi i/6) B1'/2
         let b_prime = Complex64::new(-HALF_E30.re, HALF_E30.im) * self.b_prime;
-        let (mut plus, mut plus_prime) =
-            (T::assemble(E60 * self.a, self.n), T::assemble(E60.conj() * self.a_prime, self.n));
-        if !self.beyond {
-            plus = plus + T::assemble(HALF_E30.conj() * self.b, -self.n);
+        let (a, a_prime) = (E60 * self.a, E60.conj() * self.a_prime);
+        let (plus, plus_prime) = if self.beyond {
+            (T::assemble(a, self.n), T::assemble(a_prime, self.n))
+        } else {
             let turned = Complex64::new(-HALF_E30.re, -HALF_E30.im) * self.b_prime;
-            plus_prime = plus_prime + T::assemble(turned, -self.n);
-        }
+            let plus = T::mixed(a, HALF_E30.conj() * self.b, self.n);
+            (plus, T::mixed(a_prime, turned, self.n))
+        };
         Rotated {
             plus,
             plus_prime,

@@ -1,45 +1,9 @@
 //! The same functions over slices: one call for many points, nothing allocated.
 
 use super::*;
-use crate::Error;
+use crate::special::slices::over_slices;
 
-/// Refuses slices of different lengths.
-fn same_length(points: usize, out: usize) -> Result<(), Error> {
-    if points == out {
-        return Ok(());
-    }
-    Err(Error::domain("length of the output", out as f64, "make all slices equally long"))
-}
-
-/// `$name(points, out)` from `$function(point)`; the example evaluates `$field` at 0.
-macro_rules! over_slices {
-    ($($name:ident, $function:ident, $point:ty => $value:ty, $field:literal, $exact:literal, $source:literal;)*) => {$(
-        #[doc = concat!("[`", stringify!($function), "`] at each of `points`, into `out`.")]
-        ///
-        /// Accuracy and cost per point as there. Error: the lengths differ.
-        ///
-        /// ```
-        #[doc = concat!("use merging_saddles::{Complex64, special::airy::{", stringify!($function), ", ", stringify!($name), "}};")]
-        #[doc = concat!("let points: [", stringify!($point), "; 2] = [0.0.into(), 1.0.into()];")]
-        #[doc = concat!("let mut out = [", stringify!($function), "(points[1]); 2];")]
-        #[doc = concat!(stringify!($name), "(&points, &mut out)?;")]
-        #[doc = concat!("// ", $source)]
-        #[doc = concat!("let value: Complex64 = out[0]", $field, ".into();")]
-        #[doc = concat!("assert!((value - ", stringify!($exact), ").norm() < 2e-16);")]
-        #[doc = concat!("assert!(", stringify!($name), "(&points, &mut out[..1]).is_err());")]
-        /// # Ok::<(), merging_saddles::Error>(())
-        /// ```
-        pub fn $name(points: &[$point], out: &mut [$value]) -> Result<(), Error> {
-            same_length(points.len(), out.len())?;
-            for (point, value) in points.iter().zip(out) {
-                *value = $function(*point);
-            }
-            Ok(())
-        }
-    )*};
-}
-
-over_slices! {
+over_slices! { "airy", infallible;
     airy_slice, airy, Complex64 => Airy<Complex64>, ".ai", 0.355028053887817239, "Ai(0): DLMF 9.2.3.";
     airy_real_slice, airy_real, f64 => Airy<f64>, ".bi", 0.614926627446000736, "Bi(0): DLMF 9.2.5.";
     airy_scaled_slice, airy_scaled, Complex64 => Airy<Complex64>, ".bi_prime", 0.448288357353826359, "Bi'(0): DLMF 9.2.6.";
@@ -59,77 +23,14 @@ over_slices! {
     ai_integral_real_slice, ai_integral_real, f64 => AiryIntegral<f64>, ".to_infinity", 0.333333333333333333, "1/3: DLMF 9.10.11.";
 }
 
-/// [`modulus_phase`] at each of `points`, into `out`.
-///
-/// Accuracy and cost per point as there. Errors: the lengths differ, or those of the first point that
-/// is refused; `out` is then filled up to that point.
-///
-/// ```
-/// use merging_saddles::special::airy::{ModulusPhase, modulus_phase_slice};
-/// let mut out = [ModulusPhase::default(); 2];
-/// // theta(a_1) = pi at the first zero of Ai, DLMF table 9.9.1; theta(0) = pi/6, DLMF 9.2.3, 9.2.5.
-/// modulus_phase_slice(&[-2.338107410459767, 0.0], &mut out)?;
-/// assert!((out[0].phase - std::f64::consts::PI).abs() < 1e-15);
-/// assert!((out[1].phase - std::f64::consts::FRAC_PI_6).abs() < 1e-15);
-/// # Ok::<(), merging_saddles::Error>(())
-/// ```
-pub fn modulus_phase_slice(points: &[f64], out: &mut [ModulusPhase]) -> Result<(), Error> {
-    same_length(points.len(), out.len())?;
-    for (point, value) in points.iter().zip(out) {
-        *value = modulus_phase(*point)?;
-    }
-    Ok(())
-}
-
-/// [`incomplete_airy`] for each pair of `x` and `a`, into `out`.
-///
-/// Accuracy and cost per point as there. Errors: the lengths differ, or those of the first pair that
-/// is refused; `out` is then filled up to that pair.
-///
-/// ```
-/// use merging_saddles::{Complex64, special::airy::{IncompleteAiry, incomplete_airy_slice}};
-/// let mut out = [IncompleteAiry::default()];
-/// incomplete_airy_slice(&[Complex64::ZERO], &[Complex64::ZERO], &mut out)?;
-/// // The real part is pi Ai(0): DLMF 9.5.1, 9.2.3.
-/// assert!((out[0].i0.re - std::f64::consts::PI * 0.355028053887817239).abs() < 1e-15);
-/// # Ok::<(), merging_saddles::Error>(())
-/// ```
-pub fn incomplete_airy_slice(
-    x: &[Complex64],
-    a: &[Complex64],
-    out: &mut [IncompleteAiry<Complex64>],
-) -> Result<(), Error> {
-    same_length(x.len(), out.len())?;
-    same_length(a.len(), out.len())?;
-    for ((x, a), value) in x.iter().zip(a).zip(out) {
-        *value = incomplete_airy(*x, *a)?;
-    }
-    Ok(())
-}
-
-/// [`incomplete_airy_extended`] for each pair of `x` and `a`, into `out`.
-///
-/// Accuracy, cost and errors as in [`incomplete_airy_slice`].
-///
-/// ```
-/// use merging_saddles::{Complex64, special::airy::*};
-/// let zero = [Complex64::ZERO];
-/// let mut out = [incomplete_airy_extended(Complex64::ONE, Complex64::ONE)?];
-/// incomplete_airy_extended_slice(&zero, &zero, &mut out)?;
-/// // The real part is pi Ai(0): DLMF 9.5.1, 9.2.3.
-/// let exact = std::f64::consts::PI * 0.355028053887817239;
-/// assert!((out[0].i0.to_complex().re - exact).abs() < 1e-15);
-/// # Ok::<(), merging_saddles::Error>(())
-/// ```
-pub fn incomplete_airy_extended_slice(
-    x: &[Complex64],
-    a: &[Complex64],
-    out: &mut [IncompleteAiry<Scaled>],
-) -> Result<(), Error> {
-    same_length(x.len(), out.len())?;
-    same_length(a.len(), out.len())?;
-    for ((x, a), value) in x.iter().zip(a).zip(out) {
-        *value = incomplete_airy_extended(*x, *a)?;
-    }
-    Ok(())
+over_slices! { "airy";
+    ai_zero_slice, ai_zero, usize => Zero<f64>, |k| ai_zero(k), "[1, 2]", ".location", -2.338107410459767, 1e-15, "a_1: DLMF table 9.9.1, further digits from mpmath.";
+    ai_prime_zero_slice, ai_prime_zero, usize => Zero<f64>, |k| ai_prime_zero(k), "[1, 2]", ".location", -1.018792971647471, 1e-15, "a'_1: DLMF table 9.9.1, further digits from mpmath.";
+    bi_zero_slice, bi_zero, usize => Zero<f64>, |k| bi_zero(k), "[1, 2]", ".location", -1.173713222709128, 1e-15, "b_1: DLMF table 9.9.2, further digits from mpmath.";
+    bi_prime_zero_slice, bi_prime_zero, usize => Zero<f64>, |k| bi_prime_zero(k), "[1, 2]", ".location", -2.294439682614123, 1e-15, "b'_1: DLMF table 9.9.2, further digits from mpmath.";
+    bi_complex_zero_slice, bi_complex_zero, usize => Zero<Complex64>, |k| bi_complex_zero(k), "[1, 2]", ".location.norm()", 2.354, 1e-3, "|beta_1|: DLMF table 9.9.3.";
+    bi_prime_complex_zero_slice, bi_prime_complex_zero, usize => Zero<Complex64>, |k| bi_prime_complex_zero(k), "[1, 2]", ".location.norm()", 1.121, 1e-3, "|beta'_1|: DLMF table 9.9.4.";
+    modulus_phase_slice, modulus_phase, f64 => ModulusPhase, |x| modulus_phase(x), "[0.0, -1.0]", ".phase", 0.5235987755982989, 2e-16, "theta(0) = pi/6, as tan theta = Ai/Bi: DLMF 9.2.3, 9.2.5.";
+    incomplete_airy_slice, incomplete_airy, [Complex64; 2] => IncompleteAiry<Complex64>, |[x, a]| incomplete_airy(x, a), "[[Complex64::ZERO; 2], [Complex64::ONE; 2]]", ".i0.re", 1.115353525912248, 1e-15, "The real part is pi Ai(0): DLMF 9.5.1, 9.2.3.";
+    incomplete_airy_extended_slice, incomplete_airy_extended, [Complex64; 2] => IncompleteAiry<Scaled>, |[x, a]| incomplete_airy_extended(x, a), "[[Complex64::ZERO; 2], [Complex64::ONE; 2]]", ".i0.to_complex().re", 1.115353525912248, 1e-15, "The real part is pi Ai(0): DLMF 9.5.1, 9.2.3.";
 }

@@ -28,6 +28,7 @@ mod panel;
 mod pearcey;
 mod pearcey_nodes;
 mod polynomial;
+mod slices;
 mod walk;
 mod zeros;
 
@@ -35,6 +36,7 @@ use crate::{Error, Scaled};
 use descent::VALLEYS;
 use num_complex::Complex64;
 use polynomial::{Polynomial, ZERO};
+pub use slices::*;
 pub use zeros::{PearceyZero, pearcey_zero_inside, pearcey_zero_near, pearcey_zero_outside};
 
 /// A cuspoid integral and its first derivatives at one point.
@@ -238,25 +240,6 @@ pub fn pearcey(x1: f64, x2: f64) -> Result<Cuspoid<Complex64, 2>, Error> {
     let m = pearcey::moments(x1, x2)?;
     let turned = |z: Complex64| Complex64::new(-z.im, z.re);
     Ok(Cuspoid { psi: m[0], derivatives: [turned(m[1]), turned(m[2])] })
-}
-
-/// [`pearcey`] at every `points[i] = (x_1, x_2)`, written to `out[i]`.
-///
-/// # Errors
-/// As [`pearcey`], at the first point that is refused; [`Error::Domain`] if the slices differ in
-/// length.
-pub fn pearcey_at(points: &[(f64, f64)], out: &mut [Cuspoid<Complex64, 2>]) -> Result<(), Error> {
-    if points.len() != out.len() {
-        return Err(Error::domain(
-            "length of the output",
-            out.len() as f64,
-            "pass as many places as points",
-        ));
-    }
-    for (&(x1, x2), place) in points.iter().zip(out) {
-        *place = pearcey(x1, x2)?;
-    }
-    Ok(())
 }
 
 /// The swallowtail integral `Psi_3(x_1, x_2, x_3) = integral of

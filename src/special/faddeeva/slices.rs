@@ -1,40 +1,9 @@
 //! The same functions over slices: one call for many points, nothing allocated.
 
 use super::*;
-use crate::Error;
+use crate::special::slices::over_slices;
 
-/// `$name(points, out)` from `$function(point)`; the example evaluates `$field` at 0.
-macro_rules! over_slices {
-    ($($name:ident, $function:ident, $point:ty => $value:ty, $field:literal, $exact:literal, $source:literal;)*) => {$(
-        #[doc = concat!("[`", stringify!($function), "`] at each of `points`, into `out`.")]
-        ///
-        /// Accuracy and cost per point as there. Error: the lengths differ.
-        ///
-        /// ```
-        #[doc = concat!("use merging_saddles::{Complex64, special::faddeeva::{", stringify!($function), ", ", stringify!($name), "}};")]
-        #[doc = concat!("let points: [", stringify!($point), "; 2] = [0.0.into(), 1.0.into()];")]
-        #[doc = concat!("let mut out = [", stringify!($function), "(points[1]); 2];")]
-        #[doc = concat!(stringify!($name), "(&points, &mut out)?;")]
-        #[doc = concat!("// ", $source)]
-        #[doc = concat!("let value: Complex64 = out[0]", $field, ".into();")]
-        #[doc = concat!("assert!((value - ", stringify!($exact), ").norm() < 2e-16);")]
-        #[doc = concat!("assert!(", stringify!($name), "(&points, &mut out[..1]).is_err());")]
-        /// # Ok::<(), merging_saddles::Error>(())
-        /// ```
-        pub fn $name(points: &[$point], out: &mut [$value]) -> Result<(), Error> {
-            if points.len() != out.len() {
-                let length = out.len() as f64;
-                return Err(Error::domain("length of the output", length, "make all slices equally long"));
-            }
-            for (point, value) in points.iter().zip(out) {
-                *value = $function(*point);
-            }
-            Ok(())
-        }
-    )*};
-}
-
-over_slices! {
+over_slices! { "faddeeva", infallible;
     w_slice, w, Complex64 => Complex64, "", 1.0, "w(0) = 1: DLMF 7.2.3.";
     w_extended_slice, w_extended, Complex64 => Scaled, ".to_complex()", 1.0, "w(0) = 1: DLMF 7.2.3.";
     erf_slice, erf, Complex64 => Complex64, "", 0.0, "erf 0 = 0: DLMF 7.2.1.";

@@ -17,6 +17,9 @@
 mod landscape;
 mod panel;
 mod paths;
+mod slices;
+
+pub use slices::*;
 
 use crate::Error;
 use landscape::Landscape;
