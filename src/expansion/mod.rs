@@ -4,6 +4,7 @@ mod algebraic;
 mod canonical;
 mod end;
 mod end_pole;
+mod far_pole;
 mod figure;
 mod incomplete;
 mod parabolic;

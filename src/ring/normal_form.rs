@@ -36,6 +36,9 @@ pub struct NormalForm {
 /// How small the last Newton step must be, relative to the first-order coefficient of the map.
 const SETTLED: f64 = 3e-15;
 
+/// Last coefficients of the map below this, relative to its first-order one, may be rounding alone.
+const ROUNDING: f64 = 1e-15;
+
 impl NormalForm {
     /// A form with `saddles = K + 1` saddles (0 for an end point) around `centre`, whose ring has
     /// the mean radius `reach` in the `z` plane. None if Newton does not settle.
@@ -94,6 +97,14 @@ impl NormalForm {
     /// The same form on a ring `factor` times as large. None if Newton does not settle there.
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<NormalForm> {
         let mut form = self.rescaled(factor);
+        // What is left of the last coefficients is rounding, and would grow the most.
+        let noise = ROUNDING * self.map[1].norm();
+        for (new, old) in form.map.iter_mut().zip(&self.map).rev() {
+            if old.norm() > noise {
+                break;
+            }
+            *new = ZERO;
+        }
         form.evaluations = 0;
         form.settle(phase, 7).then_some(form)
     }
@@ -310,8 +321,13 @@ impl NormalForm {
         lower + v.powi(self.degree as i32) * self.radius.powi(self.degree as i32)
     }
 
+    /// `Phi'(u)` at `u = R v`.
+    pub(crate) fn slope(&self, v: Complex64) -> Complex64 {
+        evaluate(&self.derivative()[..self.degree], v)
+    }
+
     /// `i u Phi'(u)` at `u = R v`: its real part is the slope of `Re(i Phi)` along the radius.
     pub(crate) fn radial_slope(&self, v: Complex64) -> Complex64 {
-        I * v * self.radius * evaluate(&self.derivative()[..self.degree], v)
+        I * v * self.radius * self.slope(v)
     }
 }

@@ -270,6 +270,25 @@ impl<'a> Topology<'a> {
         Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize)
     }
 
+    /// The ridge that the steepest ascent of `Re(i Phi)` from `v`, outside the ring, climbs.
+    pub fn climbs_to(form: &NormalForm, v: Complex64) -> Option<usize> {
+        let goal = 1.5 * v.norm().max(1.0);
+        let turn = Complex64::from_polar(1.0, DELTA);
+        let mut v = v;
+        for _ in 0..1000 {
+            if v.norm() > goal {
+                let turns = lift(form, &form.saddles_on_disc(), v) / (2.0 * PI) - 1.0;
+                return Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize);
+            }
+            let gradient = (form.radial_slope(v) / v * turn).conj();
+            if !(gradient.norm() > 0.0 && gradient.norm().is_finite()) {
+                return None;
+            }
+            v += gradient * (0.02 / gradient.norm());
+        }
+        None
+    }
+
     /// The steepest ascent from a point until it is above the contour, and how often the contour
     /// crosses it from right to left. None if it can't be followed.
     pub fn ascent(&self, z: Complex64) -> Option<(Vec<Complex64>, i32)> {
