@@ -45,8 +45,7 @@ pub(super) fn far_pole(
         noise: (pole.noise.0, pole.noise.1 / stretch.norm()),
         blur: 2.0
             * f64::EPSILON
-            * (v.norm() * form.radius()
-                + (pole.noise_scale + form.level().norm()) / slope.norm()),
+            * (v.norm() * form.radius() + (pole.noise_scale + form.level().norm()) / slope.norm()),
         ridge: Topology::climbs_to(form, carried(phase, form, v, ascent)?)?,
     })
 }

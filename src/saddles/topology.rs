@@ -12,7 +12,7 @@
 //!
 //! Certificate. The valleys that the contributions run between, followed down below the floor,
 //! must cancel against each other and against the two ends of the contour. A contributing saddle
-//! that was not found leaves a valley over.
+//! that was not found leaves a valley over. Valleys that a saddle below the floor joins are one.
 //!
 //! Source: steepest descent and Picard-Lefschetz theory, e.g. M. V. Berry, C. J. Howls, Proc. R.
 //! Soc. Lond. A 434 (1991) 657, from memory; ridge counting on a ring and the certificate were
@@ -44,6 +44,7 @@ pub(crate) struct Topology<'a> {
     pub(super) tails: [Vec<Complex64>; 2],
     /// The contour has no ends.
     closed: bool,
+    saddles: Vec<Complex64>,
     pub(super) top: f64,
     bottom: f64,
     drop: f64,
@@ -102,6 +103,7 @@ impl<'a> Topology<'a> {
             path,
             whole,
             closed,
+            saddles: saddles.iter().map(|s| s.z).collect(),
             top: top + 0.02 * (top - bottom) + 1e-12 * top.abs(),
             bottom,
             drop,
@@ -200,56 +202,26 @@ impl<'a> Topology<'a> {
         if ends.iter().any(|(_, z)| self.h.height(*z) > floor + SLACK * self.drop) {
             return false;
         }
-        let mut open = vec![true; ends.len()];
-        for first in 0..ends.len() {
-            if !open[first] {
-                continue;
-            }
-            open[first] = false;
-            let mut pool = vec![first];
-            let mut sum = 0;
-            while let Some(here) = pool.pop() {
-                sum += ends[here].0;
-                for there in 0..ends.len() {
-                    if open[there] && self.joined(ends[here].1, ends[there].1, floor) {
-                        open[there] = false;
-                        pool.push(there);
-                    }
-                }
-            }
-            if sum != 0 {
-                return false;
-            }
-        }
-        true
+        let plain = Sinks { topology: self, floor, points: ends, passes: 0, lines: Vec::new() };
+        let mut with_passes = plain.clone();
+        with_passes.points.extend(self.passes(floor));
+        with_passes.passes = with_passes.points.len() - plain.points.len();
+        plain.cancel() || (with_passes.passes > 0 && with_passes.cancel())
     }
 
-    /// Two points below the floor lie in one valley if the chord between them stays below, if not
-    /// at once then after both have gone further down.
-    fn joined(&self, a: Complex64, b: Complex64, floor: f64) -> bool {
-        let (mut a, mut b) = (a, b);
-        for round in 0..5 {
-            const PIECES: usize = 24;
-            let below = |piece: usize| {
-                let z = a + (b - a) * (piece as f64 / PIECES as f64);
-                self.h.height(z) < floor + SLACK * self.drop
-            };
-            if (1..PIECES).all(below) {
-                return true;
-            }
-            // At last the contour's own range of heights says where valleys open.
-            let deeper = if round < 3 {
-                floor - self.drop * 4f64.powi(round)
-            } else {
-                floor - (self.top - self.bottom) * 4f64.powi(round - 3)
-            };
-            for z in [&mut a, &mut b] {
-                let mut line = vec![*z];
-                trace(&self.h, *z, deeper, self.longest, &mut line);
-                *z = line[line.len() - 1];
+    /// Saddles below the floor join the valleys on their two sides: points on either side, two by two.
+    fn passes(&self, floor: f64) -> Vec<(i32, Complex64)> {
+        let mut list = Vec::new();
+        for &z in &self.saddles {
+            let [h, _, bend] = self.h.jet(z);
+            // A little way down: h = h_s + h'' dz^2/2.
+            let step = (2.0 * SLACK * self.drop / bend.norm()).sqrt().min(0.01 * self.longest);
+            let direction = Complex64::from_polar(step, 0.5 * (PI - bend.arg()));
+            if h.re < floor && direction.re.is_finite() && direction.im.is_finite() {
+                list.extend([(0, z + direction), (0, z - direction)]);
             }
         }
-        false
+        list
     }
 
     /// The descents from the start and from the end of the contour, each from its end point on.
@@ -351,6 +323,16 @@ impl<'a> Topology<'a> {
                 }
             }
         }
+        // To where i u Phi' is real: for a single saddle the steepest paths through it, whose sides of other
+        // saddles matter.
+        for (list, sign) in [(&mut arcs.ridges, 1.0), (&mut arcs.valleys, -1.0)] {
+            for v in list.iter_mut().flatten() {
+                for _ in 0..4 {
+                    let off = (form.radial_slope(*v) * turn * sign).arg().clamp(-0.5, 0.5);
+                    *v *= Complex64::from_polar(1.0, -off / degree as f64);
+                }
+            }
+        }
         arcs
     }
 }
@@ -400,6 +382,93 @@ fn leaves(form: &NormalForm, v: Complex64, path: &[Complex64], direction: f64) -
     }
     (v.norm() > 1.0).then(|| lift(form, &saddles, v))
 }
+
+/// Points below a floor with weights.
+#[derive(Clone)]
+struct Sinks<'t, 'p> {
+    topology: &'t Topology<'p>,
+    floor: f64,
+    points: Vec<(i32, Complex64)>,
+    /// The last points are this many, and joined two by two.
+    passes: usize,
+    /// Each point's descent: where it is at the levels of the rounds, as far as that was asked for.
+    lines: Vec<Vec<Complex64>>,
+}
+
+impl Sinks<'_, '_> {
+    /// Whether the weights cancel in each valley.
+    fn cancel(mut self) -> bool {
+        self.lines = self.points.iter().map(|&(_, z)| vec![z]).collect();
+        let all = self.points.len();
+        let first_pass = all - self.passes;
+        let mut open = vec![true; all];
+        for first in 0..first_pass {
+            if !open[first] {
+                continue;
+            }
+            open[first] = false;
+            let mut pool = vec![first];
+            let mut sum = 0;
+            while let Some(here) = pool.pop() {
+                sum += self.points[here].0;
+                for there in 0..all {
+                    if open[there] && self.joined(here, there) {
+                        open[there] = false;
+                        pool.push(there);
+                        let across = first_pass + ((there.max(first_pass) - first_pass) ^ 1);
+                        if there >= first_pass && open[across] {
+                            open[across] = false;
+                            pool.push(across);
+                        }
+                    }
+                }
+            }
+            if sum != 0 {
+                return false;
+            }
+        }
+        true
+    }
+
+    /// Two points below the floor lie in one valley if the chord between them stays below, if not
+    /// at once then after both have gone further down.
+    fn joined(&mut self, a: usize, b: usize) -> bool {
+        let level = self.floor + SLACK * self.topology.drop;
+        (0..ROUNDS).any(|round| {
+            let (a, b) = (self.down(a, round), self.down(b, round));
+            const PIECES: usize = 24;
+            let below = |piece: usize| {
+                let z = a + (b - a) * (piece as f64 / PIECES as f64);
+                self.topology.h.height(z) < level
+            };
+            (1..PIECES).all(below)
+        })
+    }
+
+    /// A point after its descent to the level of a round.
+    fn down(&mut self, point: usize, round: usize) -> Complex64 {
+        let topology = self.topology;
+        while self.lines[point].len() <= round {
+            let done = self.lines[point].len() as i32 - 1;
+            // At last the contour's own range of heights says where valleys open.
+            let level = if done < 3 {
+                self.floor - topology.drop * 4f64.powi(done)
+            } else {
+                self.floor - (topology.top - topology.bottom) * 4f64.powi(done - 3)
+            };
+            let z = self.lines[point][done as usize];
+            let mut line = vec![z];
+            if topology.h.height(z) > level {
+                trace(&topology.h, z, level, topology.longest, &mut line);
+            }
+            self.lines[point].push(line[line.len() - 1]);
+        }
+        self.lines[point][round]
+    }
+}
+
+/// Levels at which points are compared.
+const ROUNDS: usize = 5;
 
 struct Arcs {
     ridges: [Option<Complex64>; MAX_SADDLES + 1],
