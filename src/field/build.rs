@@ -338,7 +338,7 @@ fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error
                 None => return false,
             }
         }
-        topology.closes(&all, floor)
+        topology.closes(&all, floor, plan.floor)
     };
     // With one group taken as a whole, everything else as fine as it is known.
     let with = |whole: Option<usize>| {

@@ -12,7 +12,7 @@
 //!
 //! Certificate. The valleys that the contributions run between, followed down below the floor,
 //! must cancel against each other and against the two ends of the contour. A contributing saddle
-//! that was not found leaves a valley over. Valleys that a saddle below the floor joins are one.
+//! that was not found leaves a valley over. Valleys that a saddle too low to matter joins are one.
 //!
 //! Source: steepest descent and Picard-Lefschetz theory, e.g. M. V. Berry, C. J. Howls, Proc. R.
 //! Soc. Lond. A 434 (1991) 657, from memory; ridge counting on a ring and the certificate were
@@ -44,7 +44,7 @@ pub(crate) struct Topology<'a> {
     pub(super) tails: [Vec<Complex64>; 2],
     /// The contour has no ends.
     closed: bool,
-    saddles: Vec<Complex64>,
+    saddles: Vec<Saddle>,
     pub(super) top: f64,
     bottom: f64,
     drop: f64,
@@ -103,7 +103,7 @@ impl<'a> Topology<'a> {
             path,
             whole,
             closed,
-            saddles: saddles.iter().map(|s| s.z).collect(),
+            saddles: saddles.to_vec(),
             top: top + 0.02 * (top - bottom) + 1e-12 * top.abs(),
             bottom,
             drop,
@@ -189,8 +189,9 @@ impl<'a> Topology<'a> {
         heights.into_iter().find(|(_, height)| *height > floor + SLACK * self.drop)
     }
 
-    /// The certificate: do the valleys and the ends of the contour cancel?
-    pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64) -> bool {
+    /// The certificate: do the valleys and the ends of the contour cancel? Saddles with `Re(i f)` below
+    /// `seen` contribute nothing that matters.
+    pub fn closes(&self, valleys: &[(i32, Complex64)], floor: f64, seen: f64) -> bool {
         let mut ends = valleys.to_vec();
         if !self.closed {
             for (weight, tail) in [1, -1].into_iter().zip(&self.tails) {
@@ -204,21 +205,22 @@ impl<'a> Topology<'a> {
         }
         let plain = Sinks { topology: self, floor, points: ends, passes: 0, lines: Vec::new() };
         let mut with_passes = plain.clone();
-        with_passes.points.extend(self.passes(floor));
+        with_passes.points.extend(self.passes(floor, seen));
         with_passes.passes = with_passes.points.len() - plain.points.len();
         plain.cancel() || (with_passes.passes > 0 && with_passes.cancel())
     }
 
-    /// Saddles below the floor join the valleys on their two sides: points on either side, two by two.
-    fn passes(&self, floor: f64) -> Vec<(i32, Complex64)> {
+    /// Saddles too low to matter join the valleys on their two sides: points on either side, two by two.
+    fn passes(&self, floor: f64, seen: f64) -> Vec<(i32, Complex64)> {
         let mut list = Vec::new();
-        for &z in &self.saddles {
-            let [h, _, bend] = self.h.jet(z);
+        for saddle in self.saddles.iter().filter(|saddle| -saddle.value.im < seen) {
+            let [h, _, bend] = self.h.jet(saddle.z);
             // A little way down: h = h_s + h'' dz^2/2.
             let step = (2.0 * SLACK * self.drop / bend.norm()).sqrt().min(0.01 * self.longest);
             let direction = Complex64::from_polar(step, 0.5 * (PI - bend.arg()));
-            if h.re < floor && direction.re.is_finite() && direction.im.is_finite() {
-                list.extend([(0, z + direction), (0, z - direction)]);
+            if h.re.is_finite() && direction.re.is_finite() && direction.im.is_finite() {
+                let sides = vec![(0, saddle.z + direction), (0, saddle.z - direction)];
+                list.extend(self.sunk(sides, floor).into_iter().flatten());
             }
         }
         list
