@@ -60,6 +60,10 @@ impl NearEnd {
     ) -> Option<NearEnd> {
         let mut boundaries = Vec::new();
         for (index, ring) in series.rings().iter().enumerate() {
+            // Whether the descent passes a pole outside a ring on one side or the other is not known there.
+            if ring.beyond > 0.0 {
+                continue;
+            }
             let Some(v) = ring.form.locate(e) else { continue };
             if v.norm() > INSIDE {
                 continue;

@@ -5,6 +5,7 @@ mod canonical;
 mod end;
 mod end_moments;
 mod end_pole;
+mod far_pole;
 mod figure;
 mod incomplete;
 mod pole;

@@ -113,8 +113,8 @@ pub(crate) struct MappedPole {
     pub double: Complex64,
     pub(super) noise: (f64, f64),
     /// Rounding error of `u`.
-    blur: f64,
-    ridge: usize,
+    pub(super) blur: f64,
+    pub(super) ridge: usize,
 }
 
 impl MappedPole {

@@ -5,6 +5,7 @@
 //! are kept and the one with the least error figure is taken at each wavenumber.
 
 use super::canonical::Moments;
+use super::far_pole::far_pole;
 use super::figure::Parts;
 use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
@@ -41,8 +42,14 @@ const SOUND: f64 = 1e-9;
 const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
 const FIRST: usize = 16;
+/// The last first rings that are tried, relative to the least one.
+const TIGHT: [f64; 3] = [1.0, 0.92, 0.86];
 /// Branch points must lie beyond this part of a ring.
 const CLEAR: f64 = 1.05;
+/// Rings on which poles outside them are split off, too.
+const FAR_RINGS: usize = 3;
+/// In nepers: what is this far from a cluster leaves no trace in its series.
+const UNSEEN: f64 = 45.0;
 /// The smallest ring that is kept, relative to the largest.
 const SMALLEST: f64 = 0.2;
 
@@ -55,6 +62,9 @@ struct Trial {
     /// Poles that are split off, one bit each.
     split: u32,
     poles: Vec<Option<MappedPole>>,
+    /// How far `f` at a pole outside the ring that is split off, too, is from `f` at the cluster; zero
+    /// without one.
+    beyond: f64,
 }
 
 impl Trial {
@@ -69,11 +79,20 @@ impl Trial {
             .iter()
             .enumerate()
             .fold(0, |bits, (n, pole)| bits | u32::from(pole.is_some()) << n);
+        Trial::with_poles(form, given, split, poles)
+    }
+
+    fn with_poles(
+        form: NormalForm,
+        given: &Given,
+        split: u32,
+        poles: Vec<Option<MappedPole>>,
+    ) -> Option<Trial> {
         let part = |u| poles.iter().flatten().map(|pole| pole.part(u)).sum();
         let start = Start::without(&form, given.amplitude, part)?;
         let filling =
             form.saddles_on_disc()[..form.saddles()].iter().fold(0.0f64, |m, s| m.max(s.norm()));
-        Some(Trial { form, start, filling, split, poles })
+        Some(Trial { form, start, filling, split, poles, beyond: 0.0 })
     }
 
     fn shrunk(&self, factor: f64) -> Trial {
@@ -83,7 +102,15 @@ impl Trial {
             filling: self.filling / factor,
             split: self.split,
             poles: self.poles.clone(),
+            beyond: self.beyond,
         }
+    }
+
+    /// The largest `|Phi|` at a saddle.
+    fn saddle_heights(&self) -> f64 {
+        let saddles = self.form.saddles_on_disc();
+        let heights = saddles[..self.form.saddles()].iter().map(|&v| self.form.unfolding_at(v));
+        heights.fold(0.0, |most, height| most.max(height.norm()))
     }
 
     fn tail(&self) -> f64 {
@@ -99,6 +126,8 @@ pub(super) struct Ring {
     pub filling: f64,
     /// Poles that are split off, one bit each.
     pub split: u32,
+    /// As in a trial.
+    pub beyond: f64,
 }
 
 /// What a caller gave, as the series need it: the poles each with its steepest ascent.
@@ -224,6 +253,7 @@ impl Series {
         for index in 0..given.poles.len() {
             add_rings_by_pole(given, &mut trials, index);
         }
+        add_rings_without_far_poles(given, &mut trials);
         let kept = |ring: &Trial| {
             // A large tail is a singularity inside: no figure could be trusted.
             ring.filling < FILLING
@@ -235,12 +265,12 @@ impl Series {
         let rings: Vec<Ring> = trials
             .into_iter()
             .filter(kept)
-            .map(|Trial { form, start, filling, split, poles: mapped }| {
+            .map(|Trial { form, start, filling, split, poles: mapped, beyond }| {
                 // The place of a pole is the same on every ring, best known well inside.
                 for (pole, mapped) in poles.iter_mut().zip(mapped) {
                     *pole = mapped.or(pole.take());
                 }
-                Ring { orders: Orders::new(&form, &start), form, start, filling, split }
+                Ring { orders: Orders::new(&form, &start), form, start, filling, split, beyond }
             })
             .collect();
         let reference = (0..rings.len())
@@ -323,7 +353,14 @@ impl Series {
         };
         let mut best = (0, 0, f64::INFINITY, Complex64::new(0.0, 0.0));
         for (index, ring) in self.rings.iter().enumerate() {
+            // Far poles are the last rings; no use where they are too far to be seen.
+            if ring.beyond * k > UNSEEN {
+                continue;
+            }
             let (kept, mut figure) = Parts::of_ring(ring, &sizes, k, orders).least();
+            if figure >= best.2 {
+                continue;
+            }
             let mut split_off = Complex64::new(0.0, 0.0);
             for n in (0..self.poles.len()).filter(|n| ring.split >> n & 1 == 1) {
                 let (value, error) = pole(n, ring).unwrap_or((split_off, f64::INFINITY));
@@ -382,6 +419,42 @@ fn add_rings_by_pole(given: &Given, trials: &mut Vec<Trial>, index: usize) {
     }
 }
 
+/// The largest rings once more without the poles outside them that a series at the least wavenumber would
+/// notice.
+fn add_rings_without_far_poles(given: &Given, trials: &mut Vec<Trial>) {
+    let Some(largest) = trials.last() else { return };
+    let mut beyond = f64::INFINITY;
+    let mut poles = vec![None; given.poles.len()];
+    for trial in trials.iter() {
+        for (pole, mapped) in poles.iter_mut().zip(&trial.poles) {
+            *pole = mapped.clone().or(pole.take());
+        }
+    }
+    let spread = largest.saddle_heights();
+    for (mapped, (pole, ascent)) in poles.iter_mut().zip(given.poles) {
+        let distance = ((pole.value - largest.form.level()).norm() - spread).max(0.0);
+        if mapped.is_none() && distance * given.least < UNSEEN {
+            *mapped = far_pole(given.phase, &largest.form, pole, ascent);
+            if mapped.is_some() {
+                beyond = beyond.min(distance);
+            }
+        }
+    }
+    if !beyond.is_finite() {
+        return;
+    }
+    let split =
+        poles.iter().enumerate().fold(0, |bits, (n, pole)| bits | u32::from(pole.is_some()) << n);
+    let first = trials.len().saturating_sub(FAR_RINGS);
+    for index in first..trials.len() {
+        let form = trials[index].form.clone();
+        if let Some(mut trial) = Trial::with_poles(form, given, split, poles.clone()) {
+            trial.beyond = beyond.max(f64::MIN_POSITIVE);
+            trials.push(trial);
+        }
+    }
+}
+
 /// The first ring: smaller while there is no form or the tails are not negligible, larger while
 /// the mapped saddles do not fit.
 fn first_ring(
@@ -393,9 +466,14 @@ fn first_ring(
 ) -> Option<Trial> {
     let mut reach = reach;
     let mut found: Option<Trial> = None;
+    // Something singular close to a loose cluster leaves no room for more.
+    let mut tight = TIGHT.iter().filter(|_| saddles > 1).map(|part| part * least);
     for _ in 0..FIRST {
         if reach < least {
-            break;
+            match tight.next() {
+                Some(next) if found.is_none() => reach = next,
+                _ => break,
+            }
         }
         if let Some(ring) = NormalForm::find(given.phase, saddles, centre, reach)
             .and_then(|form| Trial::new(form, given))

@@ -338,7 +338,7 @@ fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error
             },
         })
         .collect();
-    let mut certificate = Certificate::new(topology, floor);
+    let mut certificate = Certificate::new(topology, floor, plan.floor);
     let mut closes = |partition: &[usize]| {
         let mut all = Vec::new();
         for &index in partition {

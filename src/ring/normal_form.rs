@@ -373,6 +373,11 @@ impl NormalForm {
         evaluate(&self.unfolding[1..self.saddles().max(1)], v) * v + lead
     }
 
+    /// `Phi'(u)` at `u = R v`.
+    pub(crate) fn slope(&self, v: Complex64) -> Complex64 {
+        evaluate(&self.derivative()[..self.degree], v)
+    }
+
     /// `i u Phi'(u)` at `u = R v`: its real part is the slope of `Re(i Phi)` along the radius.
     pub(crate) fn radial_slope(&self, v: Complex64) -> Complex64 {
         // Phi' R = sum j x_j R^j v^(j - 1), without powers.

@@ -5,11 +5,13 @@
 //! between them stays below the floor, if not at once then after both have gone further down. Points
 //! that cancel at one depth do so at every other, so one goes down only as far as is needed; how far each
 //! point has been followed and which chords were looked at is kept, for one certificate asks about many
-//! choices of groups.
+//! choices of groups. Valleys that a saddle too low to matter joins are one; this is asked only where they
+//! do not cancel otherwise.
 
 use super::topology::{SLACK, Topology};
 use super::trace::trace;
 use num_complex::Complex64;
+use std::f64::consts::PI;
 
 /// Depths at which points are compared.
 const ROUNDS: usize = 5;
@@ -18,6 +20,10 @@ const ROUNDS: usize = 5;
 pub(crate) struct Certificate<'t, 'p> {
     topology: &'t Topology<'p>,
     floor: f64,
+    /// Saddles with `Re(i f)` below this contribute nothing that matters.
+    seen: f64,
+    /// Points on the two sides of each of those.
+    passes: Option<Vec<[Complex64; 2]>>,
     wells: Vec<Well>,
     /// For each pair of wells `i < j`, at `j (j - 1)/2 + i`.
     chords: Vec<Chord>,
@@ -39,8 +45,9 @@ enum Chord {
 }
 
 impl<'t, 'p> Certificate<'t, 'p> {
-    pub fn new(topology: &'t Topology<'p>, floor: f64) -> Certificate<'t, 'p> {
-        Certificate { topology, floor, wells: Vec::new(), chords: Vec::new() }
+    /// Saddles with `Re(i f)` below `seen` contribute nothing that matters.
+    pub fn new(topology: &'t Topology<'p>, floor: f64, seen: f64) -> Certificate<'t, 'p> {
+        Certificate { topology, floor, seen, passes: None, wells: Vec::new(), chords: Vec::new() }
     }
 
     /// Do the valleys (weight and a point far down in each) and the ends of the contour cancel?
@@ -58,9 +65,20 @@ impl<'t, 'p> Certificate<'t, 'p> {
         if !ends.iter().all(|(_, z)| topology.h.height(*z) <= level) {
             return false;
         }
+        if self.cancel(&ends, ends.len()) {
+            return true;
+        }
+        let plain = ends.len();
+        ends.extend(self.passes().iter().flatten().map(|&z| (0, z)));
+        ends.len() > plain && self.cancel(&ends, plain)
+    }
+
+    /// Whether the weights cancel in each valley. From `passes` on points are joined two by two.
+    fn cancel(&mut self, ends: &[(i32, Complex64)], passes: usize) -> bool {
         let wells: Vec<usize> = ends.iter().map(|(_, z)| self.well(*z)).collect();
         // Each end's pool is that of its first member.
-        let mut pools: Vec<usize> = (0..ends.len()).collect();
+        let first = |n: usize| if n < passes { n } else { n - (n - passes) % 2 };
+        let mut pools: Vec<usize> = (0..ends.len()).map(first).collect();
         for round in 0..ROUNDS {
             for j in 1..ends.len() {
                 for i in 0..j {
@@ -80,6 +98,29 @@ impl<'t, 'p> Certificate<'t, 'p> {
             }
         }
         false
+    }
+
+    /// The two sides of each saddle too low to matter, below the floor.
+    fn passes(&mut self) -> Vec<[Complex64; 2]> {
+        let (topology, floor, seen) = (self.topology, self.floor, self.seen);
+        let sides = || {
+            let low = topology.saddles.iter().filter(|saddle| -saddle.value.im < seen);
+            let pair = low.filter_map(|saddle| {
+                let [h, _, bend] = topology.h.jet(saddle.z);
+                // A little way down: h = h_s + h'' dz^2/2.
+                let step = (2.0 * SLACK * topology.drop / bend.norm()).sqrt();
+                let step = step.min(0.01 * topology.longest);
+                let direction = Complex64::from_polar(step, 0.5 * (PI - bend.arg()));
+                if !(h.re.is_finite() && direction.re.is_finite() && direction.im.is_finite()) {
+                    return None;
+                }
+                let sides = vec![(0, saddle.z + direction), (0, saddle.z - direction)];
+                let sunk = topology.sunk(sides, floor)?;
+                Some([sunk[0].1, sunk[1].1])
+            });
+            pair.collect()
+        };
+        self.passes.get_or_insert_with(sides).clone()
     }
 
     /// What counts as below the floor.
@@ -142,7 +183,9 @@ impl<'t, 'p> Certificate<'t, 'p> {
                     topology.top - topology.bottom
                 };
             let mut line = vec![well.depths[round - 1]];
-            trace(&topology.h, line[0], deeper, topology.longest, &mut line);
+            if topology.h.height(line[0]) > deeper {
+                trace(&topology.h, line[0], deeper, topology.longest, &mut line);
+            }
             well.depths[round] = line[line.len() - 1];
             well.known = round + 1;
         }

@@ -42,6 +42,7 @@ pub(crate) struct Topology<'a> {
     pub(super) tails: [Vec<Complex64>; 2],
     /// The contour has no ends.
     pub(super) closed: bool,
+    pub(super) saddles: Vec<Saddle>,
     pub(super) top: f64,
     pub(super) bottom: f64,
     pub(super) drop: f64,
@@ -100,6 +101,7 @@ impl<'a> Topology<'a> {
             path,
             whole,
             closed,
+            saddles: saddles.to_vec(),
             top: top + 0.02 * (top - bottom) + 1e-12 * top.abs(),
             bottom,
             drop,
@@ -203,6 +205,25 @@ impl<'a> Topology<'a> {
         Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize)
     }
 
+    /// The ridge that the steepest ascent of `Re(i Phi)` from `v`, outside the ring, climbs.
+    pub fn climbs_to(form: &NormalForm, v: Complex64) -> Option<usize> {
+        let goal = 1.5 * v.norm().max(1.0);
+        let turn = Complex64::from_polar(1.0, DELTA);
+        let mut v = v;
+        for _ in 0..1000 {
+            if v.norm() > goal {
+                let turns = lift(form, &form.saddles_on_disc(), v) / (2.0 * PI) - 1.0;
+                return Some((turns.round() as i64).rem_euclid(form.degree() as i64) as usize);
+            }
+            let gradient = (form.radial_slope(v) / v * turn).conj();
+            if !(gradient.norm() > 0.0 && gradient.norm().is_finite()) {
+                return None;
+            }
+            v += gradient * (0.02 / gradient.norm());
+        }
+        None
+    }
+
     /// The steepest ascent from a point until it is above the contour, and how often the contour
     /// crosses it from right to left. None if it can't be followed.
     pub fn ascent(&self, z: Complex64) -> Option<(Vec<Complex64>, i32)> {
@@ -279,6 +300,16 @@ impl<'a> Topology<'a> {
         }
         if let Some((up, extreme, at)) = arc {
             close(up, extreme, at);
+        }
+        // To where i u Phi' is real: for a single saddle the steepest paths through it, whose sides of other
+        // saddles matter.
+        for (list, sign) in [(&mut arcs.ridges, 1.0), (&mut arcs.valleys, -1.0)] {
+            for v in list.iter_mut().flatten() {
+                for _ in 0..4 {
+                    let off = (form.radial_slope(*v) * turn * sign).arg().clamp(-0.5, 0.5);
+                    *v *= Complex64::from_polar(1.0, -off / degree as f64);
+                }
+            }
         }
         arcs
     }

@@ -35,7 +35,7 @@ impl<'a> Exponent<'a> {
         (f * self.factor, d * self.factor)
     }
 
-    fn jet(&self, z: Complex64) -> [Complex64; 3] {
+    pub fn jet(&self, z: Complex64) -> [Complex64; 3] {
         self.phase.jet(z).map(|f| f * self.factor)
     }
 }
