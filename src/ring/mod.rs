@@ -68,11 +68,7 @@ fn transforms() -> &'static Transforms {
             forward: planner.plan_fft_forward(length),
             inverse: planner.plan_fft_inverse(length),
         };
-        Transforms {
-            full: pair(POINTS),
-            coarse: pair(COARSE),
-            roots: std::array::from_fn(root),
-        }
+        Transforms { full: pair(POINTS), coarse: pair(COARSE), roots: std::array::from_fn(root) }
     })
 }
 
