@@ -16,8 +16,8 @@
 
 use super::division::{Term, Twin, divide_terms};
 use super::{
-    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, evaluate, tail, taylor,
-    to_coefficients, to_values, unit_points,
+    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, evaluate, foreseen_tail,
+    tail, taylor, to_coefficients, to_values, unit_points,
 };
 use crate::integral::Amplitude;
 use num_complex::Complex64;
@@ -111,6 +111,11 @@ impl Start {
     /// How far the coefficients have not decayed; near 1 with a pole inside the ring.
     pub fn tail(&self) -> f64 {
         self.tail
+    }
+
+    /// What the tail will be on a ring larger by `factor`, as far as can be seen.
+    pub(crate) fn foreseen_tail(&self, factor: f64) -> f64 {
+        foreseen_tail(&self.coefficients, 0, factor)
     }
 
     /// `max |G_0|` on the ring.
