@@ -51,7 +51,7 @@ const SMALLEST: f64 = 0.2;
 /// Tails as small as this are rounding.
 const NOISE: f64 = 1e-15;
 /// A larger ring is worth its larger tail for expansions of up to so many orders.
-const WORTH: i32 = 8;
+const WORTH: i32 = 11;
 
 /// A ring that was tried.
 struct Trial {
