@@ -40,6 +40,8 @@ const BY_POLE: f64 = 1.1;
 const SOUND: f64 = 1e-9;
 /// The first ring is made smaller until its tails are below this.
 const CLEAN: f64 = 1e-12;
+/// A form with tails below this is worth bringing to a smaller ring.
+const HOLDS: f64 = 1e-3;
 /// Times that the first ring may be made smaller.
 const FIRST: usize = 16;
 /// The last first rings that are tried, relative to the least one.
@@ -52,6 +54,11 @@ const FAR_RINGS: usize = 3;
 const UNSEEN: f64 = 45.0;
 /// The smallest ring that is kept, relative to the largest.
 const SMALLEST: f64 = 0.2;
+
+/// Tails as small as this are rounding.
+const NOISE: f64 = 1e-15;
+/// A larger ring is worth its larger tail for expansions of up to so many orders.
+const WORTH: i32 = 11;
 
 /// A ring that was tried.
 struct Trial {
@@ -115,6 +122,12 @@ impl Trial {
 
     fn tail(&self) -> f64 {
         self.start.tail().max(self.form.tail())
+    }
+
+    /// The tail on the next larger ring, as far as can be seen; named poles can be split off there.
+    fn foreseen_tail(&self) -> f64 {
+        let start = if self.poles.is_empty() { self.start.foreseen_tail(RATIO) } else { 0.0 };
+        start.max(self.form.foreseen_tail(RATIO))
     }
 }
 
@@ -223,7 +236,10 @@ impl Series {
             // The last Taylor coefficients grow at least like this.
             let expected = last.form.tail() * RATIO.powi(KEPT as i32 * 3 / 4);
             let enough = height(&last.form) * given.least > LARGEST && last.filling < ROOMY;
-            if enough || expected > WORST_TAIL {
+            // Each order passes on less of the rounding on a larger ring, but not so much less.
+            let no_gain =
+                last.foreseen_tail() > last.tail().max(NOISE) * RATIO.powi(degree * WORTH);
+            if enough || no_gain || expected > WORST_TAIL {
                 break;
             }
             let Some(next) =
@@ -240,16 +256,19 @@ impl Series {
         }
         let largest = trials.last()?.form.radius();
         // Inwards everything is known already, unless something singular lies inside.
-        while trials[0].form.radius() / RATIO >= SMALLEST * largest
-            && trials[0].filling * RATIO < FILLING
+        trials.reverse();
+        while let Some(last) = trials.last()
+            && last.form.radius() / RATIO >= SMALLEST * largest
+            && last.filling * RATIO < FILLING
         {
-            let inwards = if trials[0].tail() < SOUND {
-                trials[0].shrunk(1.0 / RATIO)
+            let inwards = if last.tail() < SOUND {
+                last.shrunk(1.0 / RATIO)
             } else {
-                Trial::new(trials[0].form.shrunk(1.0 / RATIO), given)?
+                Trial::new(last.form.shrunk(1.0 / RATIO), given)?
             };
-            trials.insert(0, inwards);
+            trials.push(inwards);
         }
+        trials.reverse();
         for index in 0..given.poles.len() {
             add_rings_by_pole(given, &mut trials, index);
         }
@@ -464,10 +483,16 @@ fn first_ring(
     reach: f64,
     least: f64,
 ) -> Option<Trial> {
+    let smaller = |ring: &Trial, factor: f64| {
+        let holds = ring.tail() < HOLDS;
+        holds.then(|| ring.form.resized(given.phase, 1.0 / factor)).flatten()
+    };
     let mut reach = reach;
     let mut found: Option<Trial> = None;
     // Something singular close to a loose cluster leaves no room for more.
     let mut tight = TIGHT.iter().filter(|_| saddles > 1).map(|part| part * least);
+    // A form that holds on a larger ring, brought to this one.
+    let mut known: Option<NormalForm> = None;
     for _ in 0..FIRST {
         if reach < least {
             match tight.next() {
@@ -475,9 +500,8 @@ fn first_ring(
                 _ => break,
             }
         }
-        if let Some(ring) = NormalForm::find(given.phase, saddles, centre, reach)
-            .and_then(|form| Trial::new(form, given))
-        {
+        let form = known.take().or_else(|| NormalForm::find(given.phase, saddles, centre, reach));
+        if let Some(ring) = form.and_then(|form| Trial::new(form, given)) {
             // A large wavenumber needs a small ring: the noise of the phase grows with its size.
             let excess = (ring.form.radius().powi(ring.form.degree() as i32) * given.least
                 / INNERMOST)
@@ -485,6 +509,7 @@ fn first_ring(
                 .min(ROOMY / ring.filling.max(1e-3));
             if excess > 1.01 && reach / excess > least {
                 reach /= excess;
+                known = smaller(&ring, excess);
                 continue;
             }
             let crowded = ring.filling * RATIO > FILLING;
@@ -492,6 +517,9 @@ fn first_ring(
             let best = found.as_ref().map_or(f64::INFINITY, Trial::tail);
             let noisy = ring.tail() > 0.3 * best;
             let done = crowded || noisy || ring.tail() < CLEAN;
+            if !done {
+                known = smaller(&ring, RATIO);
+            }
             if !noisy && (ring.filling < FILLING || found.is_none()) {
                 found = Some(ring);
             }

@@ -143,6 +143,21 @@ pub(crate) fn tail(full: &Values, from: usize, least: f64) -> f64 {
     if all > 0.0 && all.is_finite() { (rest / all).sqrt() } else { f64::INFINITY }
 }
 
+/// What [`tail`] will be on a ring larger by `factor`, by the decay from the second quarter of the
+/// coefficients to the third; 0 where rounding hides it.
+pub(crate) fn foreseen_tail(coefficients: &Coefficients, from: usize, factor: f64) -> f64 {
+    const QUARTER: usize = KEPT / 4;
+    let largest = |part: &[Complex64]| part.iter().fold(0.0f64, |m, c| m.max(c.norm_sqr())).sqrt();
+    let all = largest(&coefficients[from..]);
+    let second = largest(&coefficients[QUARTER..2 * QUARTER]);
+    let third = largest(&coefficients[2 * QUARTER..3 * QUARTER]);
+    if third > 50.0 * f64::EPSILON * all {
+        third / second * third / all * factor.powi(3 * QUARTER as i32)
+    } else {
+        0.0
+    }
+}
+
 /// `v` with `z(v) = z` for a map given by its coefficients, by Newton's method from `start`; None if it
 /// leaves the neighbourhood of the disc.
 pub(crate) fn preimage(map: &Coefficients, z: Complex64, start: Complex64) -> Option<Complex64> {

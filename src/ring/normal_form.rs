@@ -14,8 +14,8 @@
 //! memory); for K = 1 C. Chester, B. Friedman, F. Ursell (1957).
 
 use super::{
-    COARSE, Coefficients, I, KEPT, MAX_SADDLES, POINTS, ZERO, divide, evaluate, tail,
-    to_coefficients, unit_points, values_of,
+    COARSE, Coefficients, I, KEPT, MAX_SADDLES, POINTS, ZERO, divide, evaluate, foreseen_tail,
+    tail, to_coefficients, unit_points, values_of,
 };
 use crate::integral::Phase;
 use num_complex::Complex64;
@@ -99,7 +99,8 @@ impl NormalForm {
         form.settle(phase, 14).then_some(form)
     }
 
-    /// The same form on a ring `factor` times as large. None if Newton does not settle there.
+    /// The same form on a ring `factor` times as large (below 1: made anew on a smaller one). None if
+    /// Newton does not settle there.
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<NormalForm> {
         let mut form = self.rescaled(factor);
         form.evaluations = 0;
@@ -110,7 +111,14 @@ impl NormalForm {
                 *new = ZERO;
             }
         }
-        form.settle(phase, 7).then_some(form)
+        if !form.settle(phase, 7) {
+            return None;
+        }
+        if factor < 1.0 {
+            // The larger ring's rounding was in what the last step was measured from.
+            form.residuals::<POINTS>(phase)?;
+        }
+        Some(form)
     }
 
     /// The same form on a smaller ring: nothing new has to be found.
@@ -315,6 +323,11 @@ impl NormalForm {
     /// The size of the last kept Taylor coefficients of the map relative to its largest.
     pub fn tail(&self) -> f64 {
         self.tail
+    }
+
+    /// What the tail will be on a ring larger by `factor`, as far as can be seen.
+    pub(crate) fn foreseen_tail(&self, factor: f64) -> f64 {
+        foreseen_tail(&self.map, 1, factor)
     }
 
     /// Evaluations of the phase that this form took.

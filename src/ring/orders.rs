@@ -14,9 +14,10 @@
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
 
+use super::division::{Term, Twin, divide_terms};
 use super::{
-    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, divide, evaluate, tail,
-    taylor, to_coefficients, to_values, unit_points,
+    Coefficients, I, KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, evaluate, foreseen_tail,
+    tail, taylor, to_coefficients, to_values, unit_points,
 };
 use crate::integral::Amplitude;
 use num_complex::Complex64;
@@ -112,6 +113,11 @@ impl Start {
         self.tail
     }
 
+    /// What the tail will be on a ring larger by `factor`, as far as can be seen.
+    pub(crate) fn foreseen_tail(&self, factor: f64) -> f64 {
+        foreseen_tail(&self.coefficients, 0, factor)
+    }
+
     /// `max |G_0|` on the ring.
     pub(crate) fn size(&self) -> f64 {
         self.size
@@ -121,11 +127,8 @@ impl Start {
 impl Orders {
     /// All orders on the ring of a normal form.
     pub fn new(form: &NormalForm, start: &Start) -> Orders {
-        let mut noise = [[0.0; MAX_SADDLES]; MAX_ORDERS];
-        for (noise, p) in noise.iter_mut().zip(recursion(form, unit_noise())) {
-            *noise = p.map(|p| p.norm());
-        }
-        Orders { saddles: form.saddles(), p: recursion(form, &start.coefficients), noise }
+        let (p, noise) = recursion(form, &start.coefficients);
+        Orders { saddles: form.saddles(), p, noise }
     }
 
     /// `H_n` at a point `v` of the disc, and the same for unit noise (absolute values): what an end
@@ -159,63 +162,69 @@ impl Orders {
     }
 }
 
-fn recursion(form: &NormalForm, start: &Coefficients) -> [[Complex64; MAX_SADDLES]; MAX_ORDERS] {
-    let saddles = form.saddles();
+/// `p_j^(n)` for a start, and their absolute values for unit noise.
+#[expect(clippy::type_complexity)]
+fn recursion(
+    form: &NormalForm,
+    start: &Coefficients,
+) -> ([[Complex64; MAX_SADDLES]; MAX_ORDERS], [[f64; MAX_SADDLES]; MAX_ORDERS]) {
     let radius = form.radius();
+    let unit = unit_noise();
     let mut p = [[ZERO; MAX_SADDLES]; MAX_ORDERS];
+    let mut noise = [[0.0; MAX_SADDLES]; MAX_ORDERS];
     // With one saddle or none the recursion has a closed form: the moments of one power.
-    if saddles < 2 {
+    if form.saddles() < 2 {
         let mut factor = Complex64::new(1.0, 0.0);
-        for (n, p) in p.iter_mut().enumerate() {
-            if saddles == 0 {
-                p[0] = start[n] * factor;
-                factor *= I * ((n + 1) as f64 / radius);
-            } else {
-                p[0] = start[2 * n] * factor;
-                factor *= I * ((n as f64 + 0.5) / (radius * radius));
-            }
+        let mut size = 1.0;
+        for (n, (p, noise)) in p.iter_mut().zip(&mut noise).enumerate() {
+            let (at, next) = match form.saddles() {
+                0 => (n, (n + 1) as f64 / radius),
+                _ => (2 * n, (n as f64 + 0.5) / (radius * radius)),
+            };
+            p[0] = start[at] * factor;
+            noise[0] = unit[at].norm() * size;
+            factor *= I * next;
+            size *= next;
         }
-        return p;
+        return (p, noise);
     }
-    by_parts(form, start, |n, remainder, _| {
-        let mut power = 1.0;
-        for (p, &remainder) in p[n].iter_mut().zip(remainder) {
-            *p = remainder / power;
-            power *= radius;
-        }
-    });
     // The factor i of each order.
     let mut turn = Complex64::new(1.0, 0.0);
-    for p in &mut p {
-        for p in p.iter_mut() {
-            *p *= turn;
+    let both = std::array::from_fn(|n| Twin::new(start[n], unit[n]));
+    by_parts(form, &both, |n, remainder, _| {
+        let mut power = 1.0;
+        for ((p, noise), twin) in p[n].iter_mut().zip(&mut noise[n]).zip(remainder) {
+            *p = twin.get(0) * turn * power;
+            *noise = twin.get(1).norm() * power;
+            power /= radius;
         }
         turn *= I;
-    }
-    p
+    });
+    (p, noise)
 }
 
 /// Repeated division and differentiation; `take(n, remainder, quotient)` gets each order, without
 /// its factor `i^n`.
-fn by_parts(
+fn by_parts<T: Term>(
     form: &NormalForm,
-    start: &Coefficients,
-    mut take: impl FnMut(usize, &[Complex64], &[Complex64]),
+    start: &[T; KEPT],
+    mut take: impl FnMut(usize, &[T], &[T]),
 ) {
     let saddles = form.saddles();
     let divisor = form.derivative();
     let mut g = *start;
     let mut length = KEPT;
+    let inverse = form.radius().recip();
     for n in 0..MAX_ORDERS {
         if length <= saddles {
             break;
         }
-        divide(&mut g[..length], &divisor[..=saddles]);
+        divide_terms(&mut g[..length], &divisor[..=saddles]);
         take(n, &g[..saddles], &g[saddles..length]);
         // G_(n+1) = i dH/du, the i left out.
         length -= saddles + 1;
         for n in 0..length {
-            g[n] = g[n + saddles + 1] * ((n + 1) as f64 / form.radius());
+            g[n] = g[n + saddles + 1].scaled((n + 1) as f64 * inverse);
         }
     }
 }
