@@ -130,20 +130,29 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
 
     fn panel(&self, from: Complex64, to: Complex64) -> Result<Panel, Error> {
         let missing = |what, at| Error::NotFinite { what, at };
+        // The nodes are rounded: what the integrand varies by, from neighbour to neighbour on each half.
+        let mut last: [Option<Complex64>; 2] = [None; 2];
+        let (mut half, mut variation) = (0, 0.0);
         let panel = rule::panel(from, to, |z| {
             let h = self.sampler.exponent(z).ok_or_else(|| missing("phase", z))?;
             let g = self.sampler.amplitude(z).ok_or_else(|| missing("amplitude", z))?;
-            Ok([g * relative_exp(self.k, h, self.h0), h])
+            let value = g * relative_exp(self.k, h, self.h0);
+            if let Some(before) = last[half].replace(value) {
+                variation += (value - before).norm();
+            }
+            half = 1 - half;
+            Ok([value, h])
         })?;
         let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale((from + to) * 0.5);
         let noise = 4.0 * f64::EPSILON + self.k * (2.0 * panel.grass).max(stated);
+        let place = f64::EPSILON * from.norm().max(to.norm());
         Ok(Panel {
             from,
             to,
             value: panel.value,
             size: panel.size,
             defect: panel.defect,
-            noise: noise * panel.size,
+            noise: noise * panel.size + place * variation,
         })
     }
 

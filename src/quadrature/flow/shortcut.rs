@@ -1,15 +1,21 @@
 //! Detours: a contour that crosses a ridge into a valley and comes back over the same ridge.
 //!
-//! Its two crossings cancel, but no descent undoes them. Where two settled crossings lie at one
-//! saddle with only sunk edges between them, a chord between their outer flanks replaces the whole
-//! detour and descends on the near side, provided that the loop holds no singularity of the phase
-//! or the amplitude.
+//! Its two crossings cancel, but no descent undoes them; a contour led through a saddle of several
+//! valleys may cross more ridges in turn. Where a chord between the outer flanks of two settled crossings
+//! lies below both, it replaces the whole detour and descends on the near side, provided that the loop
+//! holds no singularity of the phase or the amplitude.
 
 use super::{Edge, Flow, State};
 use crate::integral::{Amplitude, Phase, Termination};
 use crate::quadrature::terrain::{Profile, Site};
 use num_complex::Complex64;
 
+/// Pairs of crossings that are looked at.
+const PAIRS: usize = 60;
+/// How far down the contour runs between two crossings, in units of 1/k.
+const VALLEY: f64 = 3.0;
+/// Pieces of a chord that is not resolved.
+const PIECES: usize = 12;
 /// Loop integrals round a detour count as zero below this fraction.
 const FRACTION: f64 = 1e-10;
 
@@ -26,15 +32,18 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
                 break;
             }
         }
-        // Crossings: runs of settled edges.
+        // Crossings: runs of settled edges with no valley between.
         let runs: Vec<&[usize]> = chain
-            .split(|&e| self.edges[e].state != State::Settled)
-            .filter(|run| !run.is_empty())
+            .chunk_by(|&e, &f| !self.valley_between(e, f))
+            .filter(|run| self.edges[run[0]].state == State::Settled)
             .collect();
-        // One run may turn back by itself, two may cancel each other.
-        let singles = runs.iter().map(|run| (*run, *run));
-        let pairs = runs.windows(2).map(|pair| (pair[0], pair[1]));
-        let found = singles.chain(pairs).find_map(|(out, back)| {
+        // One run may turn back by itself, two may cancel each other, or several lead round a saddle.
+        let pairs = (0..runs.len()).flat_map(|apart| {
+            let last = runs.len() - apart;
+            (0..last).map(move |first| (first, first + apart))
+        });
+        let found = pairs.take(PAIRS).find_map(|(first, last)| {
+            let (out, back) = (runs[first], runs[last]);
             let at = self.detour(out, back)?;
             Some((out[0], back[back.len() - 1], at))
         });
@@ -48,13 +57,9 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
     /// where on the two outer orbits that chord begins and ends.
     fn detour(&self, out: &[usize], back: &[usize]) -> Option<[usize; 2]> {
         let (one, two) = (self.summit(out)?, self.summit(back)?);
-        let across = Profile::of(&one, &two, self.k);
-        let same_saddle = across.resolved
-            && self.k * (one.h.re - two.h.re).abs() < 1.0
-            && self.k * (one.h.im - two.h.im).abs() < 2.0;
         let (first, last) = (&self.edges[out[0]], &self.edges[back[back.len() - 1]]);
         let (start, end) = (first.nodes[0], last.nodes[1]);
-        if !same_saddle || start == end {
+        if start == end {
             return None;
         }
         let low = one.h.re.min(two.h.re);
@@ -63,11 +68,46 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
         let at =
             [self.flank(start, first.at[0], before, low), self.flank(end, last.at[1], after, low)];
         let (from, to) = (self.nodes[start].orbit[at[0]], self.nodes[end].orbit[at[1]]);
-        let direct = Profile::of(&from, &to, self.k);
-        let gain = self.k * (low - direct.top - direct.margin);
+        let gain = self.k * (low - self.direct(&from, &to)?);
         let way = || self.way(start, at[0], end, at[1]);
-        (direct.resolved && gain > 1.0 && self.watch.free(&way(), &[from.z, to.z], FRACTION))
-            .then_some(at)
+        (gain > 1.0 && self.watch.free(&way(), &[from.z, to.z], FRACTION)).then_some(at)
+    }
+
+    /// Whether two neighbouring edges are parts of different crossings: one of them is not settled, or
+    /// the contour runs down into a valley between them.
+    fn valley_between(&self, e: usize, f: usize) -> bool {
+        let (left, right) = (&self.edges[e], &self.edges[f]);
+        if left.state != State::Settled || right.state != State::Settled {
+            return true;
+        }
+        let lowest = left.at[1].max(right.at[0]);
+        let floor = self.nodes[left.nodes[1]].orbit[lowest].h.re;
+        let top = |edge: usize| {
+            let (a, b) = self.ends_of(edge);
+            a.h.re.max(b.h.re)
+        };
+        self.k * (top(e).min(top(f)) - floor) > VALLEY
+    }
+
+    /// The height of a chord, cut in pieces if it is not resolved at once; None if it can't be told.
+    fn direct(&self, from: &Site, to: &Site) -> Option<f64> {
+        let whole = Profile::of(from, to, self.k);
+        if whole.resolved {
+            return Some(whole.top + whole.margin);
+        }
+        let mut top = f64::NEG_INFINITY;
+        let mut last = *from;
+        for piece in 1..=PIECES {
+            let next =
+                self.sampler.site(from.z + (to.z - from.z) * (piece as f64 / PIECES as f64))?;
+            let part = Profile::of(&last, &next, self.k);
+            if !part.resolved {
+                return None;
+            }
+            top = top.max(part.top + part.margin);
+            last = next;
+        }
+        Some(top)
     }
 
     /// How far down its orbit a node's flank may be used: to some units of 1/k below a level, as
