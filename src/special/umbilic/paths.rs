@@ -18,6 +18,8 @@ use num_complex::Complex64;
 
 /// Drop at which the integrand has vanished.
 const DEPTH: f64 = 42.0;
+/// A ridge this far down may be crossed without notice.
+const RIDGE: f64 = 37.0;
 /// Change of H along the first panel of an arm, later ones growing with the drop; the smaller ones
 /// are for descents that fail with the larger.
 const SPREADS: [f64; 3] = [6.5, 5.0, 3.7];
@@ -82,17 +84,16 @@ fn minima(drops: &[f64; DIRECTIONS], out: &mut [Complex64; ARMS]) -> usize {
 }
 
 /// Where the arms of a hub begin.
-fn starts(hub: &Hub, spread: f64, out: &mut [Complex64; ARMS]) -> usize {
+fn starts(hub: &Hub, lone: bool, spread: f64, out: &mut [Complex64; ARMS]) -> usize {
     let centre = hub.centre();
-    let radius = centre.reach(spread);
-    let wide = centre.quadratic();
-    if wide > radius {
+    if lone {
         // Two ways down, as the quadratic term alone tells, and straight on as long as it leads.
         let along = (-centre.bend()).sqrt().inv();
-        let along = along * (wide / along.norm());
+        let along = along * (centre.quadratic() / along.norm());
         out[..2].copy_from_slice(&[along, -along]);
         return 2;
     }
+    let radius = centre.reach(spread);
     let count = minima(&hub.circle(radius), out);
     for start in &mut out[..count] {
         *start *= radius;
@@ -124,9 +125,13 @@ fn descend(hub: &Hub, start: Complex64, spread: f64) -> Option<Arm> {
             arm.valley = valley;
             return Some(arm);
         }
-        // Where nothing is left to integrate a step need only stay below that.
-        let wide = if site.crest_drop > DEPTH { 0.9 * (site.crest_drop - DEPTH) } else { 0.0 };
-        site = step(hub, &site, (spread + 0.6 * site.drop.max(0.0)).max(wide))?;
+        // Where nothing is left to integrate a step must not cross a ridge that counts.
+        let change = if site.crest_drop > DEPTH {
+            site.crest_drop - RIDGE
+        } else {
+            spread + 0.6 * site.drop.max(0.0)
+        };
+        site = step(hub, &site, change)?;
     }
     None
 }
@@ -227,7 +232,7 @@ fn descents(land: &Landscape, from: i32, to: i32, spread: f64, sum: &mut Sum) ->
             break;
         }
         let mut places = [Complex64::ZERO; ARMS];
-        let found = starts(hub, spread, &mut places);
+        let found = starts(hub, lone::is_lone(hub), spread, &mut places);
         for (arm, start) in arms[index].iter_mut().zip(&places[..found]) {
             *arm = descend(hub, *start, spread);
         }
@@ -268,9 +273,8 @@ fn descents(land: &Landscape, from: i32, to: i32, spread: f64, sum: &mut Sum) ->
         if depth <= 0.0 {
             continue;
         }
-        // The rule across a saddle serves both arms; they begin short of everything else.
-        let two = arms.iter().flatten().all(|arm| arm.count == 2);
-        let lone = two && lone::is_lone(hub);
+        // The rule across a saddle serves both arms.
+        let lone = lone::is_lone(hub);
         for (arm, &flow) in arms.iter().zip(flows) {
             let Some(arm) = arm.as_ref().filter(|_| flow != 0.0) else {
                 continue;
