@@ -5,6 +5,8 @@
 //! multiply-add is assumed, since a call to it is slow where the processor has none). Products are
 //! exact for factors below 2^996 whose product lies above 2^-969.
 
+use num_complex::Complex64;
+
 /// `a + b = hi + lo` exactly.
 #[inline]
 pub(crate) fn two_sum(a: f64, b: f64) -> Dd {
@@ -168,6 +170,57 @@ pub(crate) fn exp_both(x: Dd) -> (f64, f64, i64) {
     let sinh = r.hi * (q * horner(&S, q)) + r.lo + r.hi;
     let cosh = q * horner(&C, q) + r.lo * r.hi;
     (1.0 + (cosh + sinh), 1.0 + (cosh - sinh), n)
+}
+
+/// A complex number in double-double.
+#[derive(Clone, Copy)]
+pub(crate) struct Precise {
+    /// The real part.
+    pub re: Dd,
+    /// The imaginary part.
+    pub im: Dd,
+}
+
+/// The sum, to 2^-104 of itself.
+#[inline]
+fn close_sum(a: Dd, b: Dd) -> Dd {
+    let top = two_sum(a.hi, b.hi);
+    let low = two_sum(a.lo, b.lo);
+    let sum = quick_two_sum(top.hi, top.lo + low.hi);
+    quick_two_sum(sum.hi, sum.lo + low.lo)
+}
+
+/// Product with a plain number.
+#[inline]
+fn scaled(a: Dd, b: f64) -> Dd {
+    let product = two_product(a.hi, b);
+    quick_two_sum(product.hi, product.lo + a.lo * b)
+}
+
+impl Precise {
+    /// Exactly this number.
+    pub(crate) fn from(z: Complex64) -> Self {
+        Precise { re: Dd { hi: z.re, lo: 0.0 }, im: Dd { hi: z.im, lo: 0.0 } }
+    }
+
+    /// `self * t + other`.
+    pub(crate) fn times_plus(self, t: Complex64, other: Precise) -> Self {
+        let re = close_sum(scaled(self.re, t.re), scaled(self.im, -t.im));
+        let im = close_sum(scaled(self.re, t.im), scaled(self.im, t.re));
+        Precise { re: close_sum(re, other.re), im: close_sum(im, other.im) }
+    }
+
+    /// Rounded.
+    pub(crate) fn round(self) -> Complex64 {
+        Complex64::new(self.re.hi, self.im.hi)
+    }
+}
+
+/// `e^w` as a number and an exponent of two.
+pub(crate) fn exponential(w: Precise) -> (Complex64, i64) {
+    let (sin, cos) = sin_cos(w.im);
+    let (up, _, n) = exp_both(w.re);
+    (Complex64::new(up * cos, up * sin), n)
 }
 
 /// `sign^j / (2j+1)!` for j = 1, 2, ...

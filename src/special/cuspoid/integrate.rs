@@ -5,10 +5,9 @@ use super::descent::Forest;
 use super::hubs::{Hub, Hubs};
 use super::lone;
 use super::panel::{self, MOMENTS};
-use super::polynomial::{
-    Polynomial, Precise, ZERO, exponential, moments_about_zero, precise, shifted, stretched,
-};
+use super::polynomial::{Polynomial, ZERO, moments_about_zero, precise, shifted, stretched};
 use super::walk::{Arm, DEPTH};
+use crate::special::double_double::{Precise, exponential};
 use num_complex::Complex64;
 
 /// The sum over the edges of flow times integral; every panel in so many pieces.

@@ -7,9 +7,10 @@
 
 use super::lone::{self, is_lone};
 use super::pearcey_nodes::{COLUMNS, NODES, ROWS};
-use super::polynomial::{Polynomial, ZERO, exponential, moments_about_zero, precise, shifted};
+use super::polynomial::{Polynomial, ZERO, moments_about_zero, precise, shifted};
 use super::{Moments, descent};
 use crate::Error;
+use crate::special::double_double::exponential;
 use num_complex::Complex64;
 
 /// Distance of nodes in x_1.

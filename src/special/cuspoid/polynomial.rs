@@ -1,7 +1,7 @@
 //! Complex polynomials of the degree of the phase: Taylor shift, values, moments, and the value
 //! and slope at a point in double-double.
 
-use crate::special::double_double::{Dd, exp_both, quick_two_sum, sin_cos, two_product, two_sum};
+use crate::special::double_double::Precise;
 use num_complex::Complex64;
 
 /// Coefficients of the largest polynomial (degree 6).
@@ -61,46 +61,6 @@ pub(super) fn moments_about_zero<const N: usize>(
     }
 }
 
-/// A complex number in double-double.
-#[derive(Clone, Copy)]
-pub(super) struct Precise {
-    pub re: Dd,
-    pub im: Dd,
-}
-
-#[inline]
-pub(super) fn plus(a: Dd, b: Dd) -> Dd {
-    let top = two_sum(a.hi, b.hi);
-    let low = two_sum(a.lo, b.lo);
-    let sum = quick_two_sum(top.hi, top.lo + low.hi);
-    quick_two_sum(sum.hi, sum.lo + low.lo)
-}
-
-/// Product with a plain number.
-#[inline]
-fn scaled(a: Dd, b: f64) -> Dd {
-    let product = two_product(a.hi, b);
-    quick_two_sum(product.hi, product.lo + a.lo * b)
-}
-
-impl Precise {
-    fn from(z: Complex64) -> Self {
-        Precise { re: Dd { hi: z.re, lo: 0.0 }, im: Dd { hi: z.im, lo: 0.0 } }
-    }
-
-    /// `self * t + other`.
-    fn times_plus(self, t: Complex64, other: Precise) -> Self {
-        let re = plus(scaled(self.re, t.re), scaled(self.im, -t.im));
-        let im = plus(scaled(self.re, t.im), scaled(self.im, t.re));
-        Precise { re: plus(re, other.re), im: plus(im, other.im) }
-    }
-
-    /// Rounded.
-    pub fn round(self) -> Complex64 {
-        Complex64::new(self.re.hi, self.im.hi)
-    }
-}
-
 /// `p(t)` and `p'(t)` in double-double.
 pub(super) fn precise<const D: usize>(p: &Polynomial, t: Complex64) -> (Precise, Precise) {
     let mut value = Precise::from(p[D]);
@@ -110,11 +70,4 @@ pub(super) fn precise<const D: usize>(p: &Polynomial, t: Complex64) -> (Precise,
         value = value.times_plus(t, Precise::from(p[m]));
     }
     (value, slope)
-}
-
-/// `e^w` as a number and an exponent of two.
-pub(super) fn exponential(w: Precise) -> (Complex64, i64) {
-    let (sin, cos) = sin_cos(w.im);
-    let (up, _, n) = exp_both(w.re);
-    (Complex64::new(up * cos, up * sin), n)
 }

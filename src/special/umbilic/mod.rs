@@ -15,6 +15,7 @@
 //! refuse with [`Error::NoDigits`].
 
 mod landscape;
+mod lone;
 mod panel;
 mod paths;
 mod slices;
@@ -22,9 +23,12 @@ mod slices;
 pub use slices::*;
 
 use crate::Error;
-use landscape::Landscape;
+use crate::scaled::pow2;
+use crate::special::double_double::{Dd, Precise, exponential, two_product, two_sum};
+use landscape::{Hub, Landscape};
 use num_complex::Complex64;
-use std::f64::consts::{FRAC_PI_4, PI};
+use panel::Moments;
+use std::f64::consts::PI;
 
 /// An umbilic integral and its first derivatives at one point.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
@@ -35,20 +39,21 @@ pub struct Umbilic {
     pub derivatives: [Complex64; 3],
 }
 
-/// The largest phase of which a digit or two are left.
-const FARTHEST: f64 = 1e13;
+/// The largest phase that is known to 1e-15 in double-double.
+const FARTHEST: f64 = 1e16;
 
 /// Refuses what is not finite and what leaves no digit.
 fn check(x: f64, y: f64, z: f64) -> Result<(), Error> {
     for (name, value, power) in [("x", x, 1.5), ("y", y, 1.5), ("z", z, 3.0)] {
         Error::require_finite(name, value)?;
-        let phase = value.abs().powf(power);
-        if phase > FARTHEST {
+        let phase = power * value.abs().log10();
+        if phase > FARTHEST.log10() {
             return Err(Error::NoDigits {
                 what: "an umbilic integral",
                 value: Complex64::new(value, 0.0),
-                digits: 15.5 - phase.log10(),
-                remedy: "make the parameters smaller: the phase of each saddle is lost here",
+                digits: 15.95 - phase,
+                remedy: "make the parameters smaller; only the leading asymptotic terms of each \
+                         saddle, without their phase, mean anything here",
             });
         }
     }
@@ -59,52 +64,72 @@ fn check(x: f64, y: f64, z: f64) -> Result<(), Error> {
 struct Form {
     land: Landscape,
     valleys: [i32; 2],
-    factor: f64,
-    phase: f64,
+    factor: Complex64,
+    phase: Dd,
+    /// Weight of 1/r in the derivatives, which hangs on the inner integral's own parameter.
+    weight: f64,
     /// Coefficients of 1, r, r^2, 1/r in the derivatives of the phase by x, y, z.
-    rates: [[Complex64; 4]; 3],
+    rates: [[f64; 4]; 3],
+}
+
+/// The integral as it grows, saddle by saddle.
+struct Sum {
+    moments: Moments,
+    phase: Dd,
+}
+
+impl Sum {
+    /// Adds moments in units of `e^H` at a hub.
+    fn add(&mut self, hub: &Hub, moments: &Moments, sign: f64) {
+        let Precise { re, im } = hub.level;
+        let (factor, exponent) = exponential(Precise { re, im: im.plus(self.phase) });
+        let factor = factor * (sign * pow2(exponent));
+        for (sum, m) in self.moments.iter_mut().zip(moments) {
+            *sum += m * factor;
+        }
+    }
 }
 
 fn evaluate(form: &Form) -> Result<Umbilic, Error> {
     let [from, to] = form.valleys;
-    let (moments, reference) =
-        paths::between(&form.land, from, to).ok_or(Error::NoConvergence {
-            what: "the descent from the saddles of an umbilic integral",
-            limit: 80,
-            remedy: "report the parameters: every finite set should be reached",
-        })?;
-    let level = Complex64::new(reference.re, reference.im + form.phase).exp() * form.factor;
-    let derivative = |rate: &[Complex64; 4]| {
-        let sum: Complex64 = rate.iter().zip(&moments).map(|(c, m)| m * c).sum();
-        Complex64::I * sum * level
-    };
-    Ok(Umbilic {
-        psi: moments[0] * level,
-        derivatives: [
-            derivative(&form.rates[0]),
-            derivative(&form.rates[1]),
-            derivative(&form.rates[2]),
-        ],
-    })
-}
-
-/// Below this the coefficient of 1/r counts as zero.
-const NEGLIGIBLE: f64 = 1e-280;
-/// Below this the derivative that hangs on 1/r comes from the differential equations, as
-/// `y Psi_yy`: the integral over 1/r is then the difference of large ones.
-const SMALL: f64 = 1e-11;
-
-fn real(rate: [f64; 4]) -> [Complex64; 4] {
-    rate.map(Complex64::from)
-}
-
-/// The coefficient of 1/r, and the weight w of the integrand w/r.
-fn inner(coefficient: f64, weight: f64) -> (f64, f64) {
-    match coefficient.abs() {
-        c if c < NEGLIGIBLE => (0.0, 0.0),
-        c if c < SMALL => (coefficient, 0.0),
-        _ => (coefficient, weight),
+    let mut sum = Sum { moments: [Complex64::ZERO; 4], phase: form.phase };
+    let mut land = form.land;
+    land.ln_weight = form.weight.abs().ln();
+    let direct = land.inner.hi.abs() * form.land.steepness() > SMALL;
+    if !direct {
+        land.ln_weight = f64::NEG_INFINITY;
     }
+    if !paths::between(&land, from, to, &mut sum) {
+        return Err(Error::NoConvergence {
+            what: "the descent from the saddles of an umbilic integral",
+            limit: paths::STEPS,
+            remedy: "report the parameters: every finite set should be reached",
+        });
+    }
+    if !direct {
+        sum.moments[3] = form.land.over_r(&sum.moments);
+    }
+    let moments = sum.moments.map(|m| m * form.factor);
+    let derivative = |rate: &[f64; 4]| {
+        let sum: Complex64 = rate.iter().zip(&moments).map(|(c, m)| m * c).sum();
+        Complex64::new(-sum.im, sum.re)
+    };
+    Ok(Umbilic { psi: moments[0], derivatives: form.rates.each_ref().map(derivative) })
+}
+
+/// Below this coefficient (in units of what the others allow) the integral with 1/r follows from the others: on its own it
+/// is then the difference of large ones.
+const SMALL: f64 = 1e-4;
+
+fn word(hi: f64) -> Dd {
+    Dd { hi, lo: 0.0 }
+}
+
+/// 1/n, n below 2^26.
+fn part(n: f64) -> Dd {
+    let hi = 1.0 / n;
+    let product = two_product(n, hi);
+    Dd { hi, lo: ((1.0 - product.hi) - product.lo) * hi }
 }
 
 /// The elliptic umbilic integral `Psi^(E)(x, y, z)` with its first derivatives.
@@ -126,22 +151,22 @@ fn inner(coefficient: f64, weight: f64) -> (f64, f64) {
 pub fn elliptic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     check(x, y, z)?;
     // s = r + z/3; the integral over t is Gaussian for Im r < 0.
-    let (inner, weight) = inner(y * y / 12.0, y / 6.0);
-    let by_y = if weight == 0.0 {
-        // Psi_yy = Psi_xx + (2 i z Psi_x - x Psi)/3: DLMF 36.10.
-        [(z * z + x) / 3.0, 4.0 / 3.0 * z, 1.0, 0.0].map(|c| Complex64::new(0.0, y * c))
-    } else {
-        real([0.0, 0.0, 0.0, weight])
-    };
+    let square = two_product(z, z);
+    // z (4/27 z^2 + x/3)
+    let phase = square.times(part(27.0)).times(word(4.0)).plus(word(x).times(part(3.0)));
     evaluate(&Form {
-        land: Landscape { outer: [z * z + x, 2.0 * z, 1.0], inner, weight: weight.abs() },
+        land: Landscape::new(
+            [square.plus(word(x)), word(2.0 * z), word(1.0)],
+            two_product(y, y).times(part(12.0)),
+        ),
         valleys: [-2, 0],
-        factor: (PI / 3.0).sqrt(),
-        phase: z * (4.0 / 27.0 * z * z + x / 3.0) - FRAC_PI_4,
+        factor: Complex64::new(1.0, -1.0) * (PI / 6.0).sqrt(),
+        phase: phase.times(word(z)),
+        weight: y / 6.0,
         rates: [
-            real([z / 3.0, 1.0, 0.0, 0.0]),
-            by_y,
-            real([4.0 / 9.0 * z * z + x / 3.0, 2.0 * z, 2.0, 0.0]),
+            [z / 3.0, 1.0, 0.0, 0.0],
+            [0.0, 0.0, 0.0, y / 6.0],
+            [4.0 / 9.0 * z * z + x / 3.0, 2.0 * z, 2.0, 0.0],
         ],
     })
 }
@@ -165,23 +190,22 @@ pub fn elliptic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
 pub fn hyperbolic(x: f64, y: f64, z: f64) -> Result<Umbilic, Error> {
     check(x, y, z)?;
     // s = a + b, t = a - b, a = r + z/6; the integral over b is Gaussian for Im r > 0.
-    let (sum, difference) = (x + y, x - y);
-    let (inner, weight) = inner(-difference * difference / 24.0, difference / 12.0);
-    // Half of Psi_x - Psi_y, over i.
-    let split = if weight == 0.0 {
-        // Sum of the two equations without Psi_xy, DLMF 36.10.
-        [sum / 6.0 + z * z / 12.0, 2.0 / 3.0 * z, 1.0, 0.0]
-            .map(|c| Complex64::new(0.0, -difference * c))
-    } else {
-        real([0.0, 0.0, 0.0, -weight])
-    };
-    let mean = real([z / 6.0, 1.0, 0.0, 0.0]);
-    let rate = |sign: f64| std::array::from_fn(|k| mean[k] + split[k] * sign);
+    let (sum, difference) = (two_sum(x, y), two_sum(x, -y));
+    let square = two_product(z, z);
+    // z (z^2/27 + sum/6)
+    let phase = square.times(part(27.0)).plus(sum.times(part(6.0)));
+    let half = Dd { hi: 0.5 * square.hi, lo: 0.5 * square.lo };
+    let weight = difference.hi / 12.0;
+    let rate = |sign: f64| [z / 6.0, 1.0, 0.0, -weight * sign];
     evaluate(&Form {
-        land: Landscape { outer: [0.5 * z * z + sum, 2.0 * z, 2.0], inner, weight: weight.abs() },
+        land: Landscape::new(
+            [half.plus(sum), word(2.0 * z), word(2.0)],
+            difference.times(difference).times(part(24.0)).minus(),
+        ),
         valleys: [1, 0],
-        factor: 2.0 * (PI / 6.0).sqrt(),
-        phase: z * (z * z / 27.0 + sum / 6.0) + FRAC_PI_4,
-        rates: [rate(1.0), rate(-1.0), real([z * z / 9.0 + sum / 6.0, z, 2.0, 0.0])],
+        factor: Complex64::new(1.0, 1.0) * (PI / 3.0).sqrt(),
+        phase: phase.times(word(z)),
+        weight,
+        rates: [rate(1.0), rate(-1.0), [z * z / 9.0 + sum.hi / 6.0, z, 2.0, 0.0]],
     })
 }

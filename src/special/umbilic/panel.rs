@@ -1,10 +1,7 @@
 //! One straight piece of a path in the plane of q, by the 20-point Gauss-Legendre rule (DLMF 3.5.19).
-//!
-//! Both exponentials are branch-free over the nodes: reduction by ln 2 and pi/2 in two parts (common
-//! practice), Taylor series.
 
 use super::super::panels::{NODES, WEIGHTS, exponentials};
-use super::landscape::Landscape;
+use super::landscape::Hub;
 use num_complex::Complex64;
 
 const HALF: usize = 10;
@@ -13,45 +10,84 @@ const ALL: usize = 2 * HALF;
 /// Integrals of `e^H` times 1, r, r^2, 1/r.
 pub(super) type Moments = [Complex64; 4];
 
-/// `integral of (1, r, r^2, 1/r) e^(H - reference) dq` along a straight piece.
-pub(super) fn moments(
-    land: &Landscape,
-    from: Complex64,
-    to: Complex64,
-    reference: Complex64,
-) -> Moments {
+/// Up to this distance from the hub `e^d - 1` is summed as a power series.
+const NEAR: f64 = 0.5;
+
+/// `1/n!`, n = 1 .. 15.
+const INVERSE: [f64; 15] = {
+    let mut table = [1.0; 15];
+    let mut n = 1;
+    while n < 15 {
+        table[n] = table[n - 1] / (n + 1) as f64;
+        n += 1;
+    }
+    table
+};
+
+/// `integral of (1, r, r^2, 1/r) e^(H - H_hub) dq` along a straight piece, its ends given by their distances from
+/// the hub.
+pub(super) fn moments(hub: &Hub, from: Complex64, to: Complex64) -> Moments {
     let (middle, half) = ((from + to) * 0.5, (to - from) * 0.5);
-    let (mut q_re, mut q_im) = ([0.0; ALL], [0.0; ALL]);
+    let (mut re, mut im) = ([0.0; ALL], [0.0; ALL]);
     for k in 0..HALF {
         let (a, b) = (half.re * NODES[k], half.im * NODES[k]);
-        (q_re[k], q_re[k + HALF]) = (middle.re + a, middle.re - a);
-        (q_im[k], q_im[k + HALF]) = (middle.im + b, middle.im - b);
+        (re[k], re[k + HALF]) = (middle.re + a, middle.re - a);
+        (im[k], im[k + HALF]) = (middle.im + b, middle.im - b);
     }
-    let (mut re, mut im) = (q_re, q_im);
-    exponentials(&mut re, &mut im);
-    let [c1, c2, c3] = land.outer;
+    let offset = re;
+    // E = e^d - 1 in (re, im), and the real part of e^d, which may be next to nothing.
+    let ratios;
+    if to.norm_sqr() < NEAR * NEAR {
+        for k in 0..ALL {
+            let (x, y) = (re[k], im[k]);
+            let (mut a, mut b) = (INVERSE[14], 0.0);
+            for c in INVERSE[..14].iter().rev() {
+                (a, b) = (a * x - b * y + c, a * y + b * x);
+            }
+            (re[k], im[k]) = (a * x - b * y, a * y + b * x);
+        }
+        ratios = re.map(|x| x + 1.0);
+    } else {
+        exponentials(&mut re, &mut im);
+        ratios = re;
+        for x in &mut re {
+            *x -= 1.0;
+        }
+    }
+    let [first, second, third] = hub.cubic();
+    let inner = hub.terms[3];
     let (mut h_re, mut h_im) = ([0.0; ALL], [0.0; ALL]);
+    let (mut over_re, mut over_im) = ([0.0; ALL], [0.0; ALL]);
     for k in 0..ALL {
         let (x, y) = (re[k], im[k]);
-        // c_1 + c_2 r + c_3 r^2, times r
-        let (a, b) = (c2 + c3 * x, c3 * y);
-        let (a, b) = (c1 + a * x - b * y, a * y + b * x);
-        let (a, b) = (a * x - b * y, a * y + b * x);
-        let over = land.inner / (x * x + y * y);
-        let (a, b) = (a + over * x, b - over * y);
-        h_re[k] = 0.5 * q_re[k] - b - reference.re;
-        h_im[k] = 0.5 * q_im[k] + a - reference.im;
+        let ratio = ratios[k];
+        let size = 1.0 / (ratio * ratio + y * y);
+        (over_re[k], over_im[k]) = (ratio * size, -y * size);
+        let (a, b) = (
+            third.re - (inner.re * over_re[k] - inner.im * over_im[k]),
+            third.im - (inner.re * over_im[k] + inner.im * over_re[k]),
+        );
+        let (a, b) = (second.re + a * x - b * y, second.im + a * y + b * x);
+        let (a, b) = (first.re + a * x - b * y, first.im + a * y + b * x);
+        h_re[k] = a * x - b * y + 0.5 * offset[k];
+        h_im[k] = a * y + b * x;
+    }
+    for k in 0..HALF {
+        let (a, b) = (0.5 * half.im * NODES[k], 0.5 * middle.im);
+        h_im[k] += b + a;
+        h_im[k + HALF] += b - a;
     }
     exponentials(&mut h_re, &mut h_im);
     let mut sums = [Complex64::ZERO; 4];
     for k in 0..ALL {
-        let r = Complex64::new(re[k], im[k]);
+        let ratio = Complex64::new(ratios[k], im[k]);
         let value = Complex64::new(h_re[k], h_im[k]) * WEIGHTS[k % HALF];
-        let first = value * r;
+        let next = value * ratio;
         sums[0] += value;
-        sums[1] += first;
-        sums[2] += first * r;
-        sums[3] += value * r.conj() / r.norm_sqr();
+        sums[1] += next;
+        sums[2] += next * ratio;
+        sums[3] += value * Complex64::new(over_re[k], over_im[k]);
     }
-    sums.map(|sum| sum * half)
+    let sums = sums.map(|sum| sum * half);
+    [sums[0], sums[1] * hub.r, sums[2] * hub.r * hub.r, sums[3] / hub.r]
 }

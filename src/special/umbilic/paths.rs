@@ -1,36 +1,44 @@
 //! Integrals between valleys: descents from the saddles, Gauss-Legendre panels on them.
 //!
-//! Every saddle is a hub: on a circle around it, small enough for one panel from its centre, the minima of the
-//! height are the starts of arms, which descend until a valley lies straight ahead and the integrand
+//! Every saddle is a hub. A lone one is crossed on one line (file `lone`); its arms are only followed to see
+//! where they lead. Else the minima of the height on a circle round it, small enough for one panel from
+//! its centre, are the starts of arms, which descend until a valley lies straight ahead and the integrand
 //! has vanished. Saddles that merge need no care: the circle then sees the minima of both. Hubs are taken
 //! from the lowest upwards (each with its copies at distances `2 pi i`) until the two valleys hang
 //! together. The plane of q has no singularity, so any path between the valleys gives the same integral; that it
 //! stays low keeps the digits.
+//!
+//! Where all saddles are lone and those off the real axis far above or below it, as for most large parameters, no
+//! path is needed: the path of the definition is the real axis of r, which passes every saddle on it from left to right.
 
-use super::landscape::{Landscape, Site, Valley};
+use super::landscape::{DIRECTIONS, Hub, Landscape, Site, Valley, direction};
 use super::panel::{self, Moments};
+use super::{Sum, lone};
 use num_complex::Complex64;
 
 /// Drop at which the integrand has vanished.
 const DEPTH: f64 = 42.0;
+/// A ridge this far down may be crossed without notice.
+const RIDGE: f64 = 37.0;
 /// Change of H along the first panel of an arm, later ones growing with the drop; the smaller ones
 /// are for descents that fail with the larger.
 const SPREADS: [f64; 3] = [6.5, 5.0, 3.7];
-const STEPS: usize = 80;
+/// Steps of a descent, and vertices before the integrand has vanished.
+pub(super) const STEPS: usize = 120;
+const VERTICES: usize = 40;
 const ARMS: usize = 6;
-/// Directions looked at on a circle.
-const DIRECTIONS: usize = 32;
 /// Nodes of the forest: outer valleys -6 .. 6, inner ones -2 .. 2.
 const VALLEYS: usize = 18;
 /// Shifts by `2 pi i` that are looked at.
 const SHIFTS: [i32; 3] = [0, -1, 1];
 const HUBS: usize = 4 * SHIFTS.len();
 
+/// Vertices as distances from the hub, the first one 0.
 #[derive(Clone, Copy)]
 struct Arm {
-    vertices: [Complex64; STEPS],
+    vertices: [Complex64; VERTICES],
     /// Drop of the highest wanted integrand at each vertex.
-    drops: [f64; STEPS],
+    drops: [f64; VERTICES],
     count: usize,
     valley: Valley,
 }
@@ -48,84 +56,104 @@ impl Valley {
     fn node(self, land: &Landscape, shift: i32) -> Option<usize> {
         let (number, range, first) = match self {
             Valley::Outer(n) => (n + 3 * shift, 6, 0),
-            Valley::Inner(_) if land.inner == 0.0 => (0, 2, 13),
+            Valley::Inner(_) if land.inner.hi == 0.0 => (0, 2, 13),
             Valley::Inner(m) => (m + shift, 2, 13),
         };
         (number.abs() <= range).then(|| (first + number + range) as usize)
     }
 }
 
-/// Directions of the minima of the height on a circle, lowest first; returns their number.
-fn minima(land: &Landscape, site: &Site, radius: f64, out: &mut [Complex64; ARMS]) -> usize {
-    let direction =
-        |k: usize| Complex64::from_polar(1.0, std::f64::consts::TAU * k as f64 / DIRECTIONS as f64);
-    let heights: [f64; DIRECTIONS] =
-        std::array::from_fn(|k| land.site(site.q + direction(k) * radius).height() - site.height());
+/// Directions of the minima of the height on a circle round a point, lowest first, given the drops
+/// there; returns their number.
+fn minima(drops: &[f64; DIRECTIONS], out: &mut [Complex64; ARMS]) -> usize {
     let mut found = [(0.0, 0); ARMS];
     let mut count = 0;
     for k in 0..DIRECTIONS {
-        let [before, after] = [k + DIRECTIONS - 1, k + 1].map(|k| heights[k % DIRECTIONS]);
-        if heights[k] < -0.02 && heights[k] < before && heights[k] <= after && count < ARMS {
-            found[count] = (heights[k], k);
+        let [before, after] = [k + DIRECTIONS - 1, k + 1].map(|k| drops[k % DIRECTIONS]);
+        if drops[k] > 0.02 && drops[k] > before && drops[k] >= after && count < ARMS {
+            found[count] = (drops[k], k);
             count += 1;
         }
     }
     let found = &mut found[..count];
-    found.sort_unstable_by(|a, b| a.0.total_cmp(&b.0));
+    found.sort_unstable_by(|a, b| b.0.total_cmp(&a.0));
     for (out, (_, k)) in out.iter_mut().zip(found) {
         *out = direction(*k);
     }
     count
 }
 
-/// Descends from a hub in a direction.
-fn descend(
-    land: &Landscape,
-    hub: &Site,
-    radius: f64,
-    direction: Complex64,
-    spread: f64,
-) -> Option<Arm> {
+/// Where the arms of a hub begin.
+fn starts(hub: &Hub, lone: bool, spread: f64, out: &mut [Complex64; ARMS]) -> usize {
+    let centre = hub.centre();
+    if lone {
+        // Two ways down, as the quadratic term alone tells, and straight on as long as it leads.
+        let along = (-centre.bend()).sqrt().inv();
+        let along = along * (centre.quadratic() / along.norm());
+        out[..2].copy_from_slice(&[along, -along]);
+        return 2;
+    }
+    let radius = centre.reach(spread);
+    let count = minima(&hub.circle(radius), out);
+    for start in &mut out[..count] {
+        *start *= radius;
+    }
+    count
+}
+
+/// Descends from a hub to a point and on.
+fn descend(hub: &Hub, start: Complex64, spread: f64) -> Option<Arm> {
     let mut arm = Arm {
-        vertices: [Complex64::ZERO; STEPS],
-        drops: [0.0; STEPS],
+        vertices: [Complex64::ZERO; VERTICES],
+        drops: [0.0; VERTICES],
         count: 1,
         valley: Valley::Inner(0),
     };
-    arm.vertices[0] = hub.q;
-    let mut site = land.site(hub.q + direction * radius);
-    while arm.count < STEPS {
-        let drop = hub.height() - site.crest();
-        arm.vertices[arm.count] = site.q;
-        arm.drops[arm.count] = drop;
-        arm.count += 1;
-        if drop > DEPTH
-            && let Some(valley) = land.valley(&site)
+    let mut site = hub.site(start);
+    for _ in 0..STEPS {
+        if arm.drops[arm.count - 1] <= DEPTH {
+            if arm.count == VERTICES {
+                return None;
+            }
+            arm.vertices[arm.count] = site.offset;
+            arm.drops[arm.count] = site.crest_drop;
+            arm.count += 1;
+        }
+        if site.crest_drop > DEPTH
+            && let Some(valley) = hub.valley(&site)
         {
             arm.valley = valley;
             return Some(arm);
         }
-        site = step(land, &site, spread + 0.6 * (hub.height() - site.height()).max(0.0))?;
+        // Where nothing is left to integrate a step must not cross a ridge that counts.
+        let change = if site.crest_drop > DEPTH {
+            site.crest_drop - RIDGE
+        } else {
+            spread + 0.6 * site.drop.max(0.0)
+        };
+        site = step(hub, &site, change)?;
     }
     None
 }
 
 /// One step down: along the slope at its middle, or wherever it goes down.
-fn step(land: &Landscape, site: &Site, spread: f64) -> Option<Site> {
+fn step(hub: &Hub, site: &Site, spread: f64) -> Option<Site> {
     let mut radius = site.reach(spread);
     let slope = site.slope();
     let down = |slope: Complex64| -slope.conj() / slope.norm_sqr().sqrt();
     for _ in 0..8 {
-        let middle = land.site(site.q + down(slope) * (0.5 * radius));
-        let next = land.site(site.q + down(middle.slope()) * radius);
+        let middle = hub.site(site.offset + down(slope) * (0.5 * radius));
+        let next = hub.site(site.offset + down(middle.slope()) * radius);
         // A quarter of the way that the slope promises, or of the step's own size.
-        if next.height() < site.height() - 0.2 * (radius * slope.norm()).min(spread) {
+        if next.drop > site.drop + 0.2 * (radius * slope.norm()).min(spread) {
             return Some(next);
         }
+        let drops: [f64; DIRECTIONS] =
+            std::array::from_fn(|k| hub.site(site.offset + direction(k) * radius).drop - site.drop);
         let mut directions = [Complex64::ZERO; ARMS];
-        if minima(land, site, radius, &mut directions) > 0 {
-            let next = land.site(site.q + directions[0] * radius);
-            if next.height() < site.height() - 0.4 {
+        if minima(&drops, &mut directions) > 0 {
+            let next = hub.site(site.offset + directions[0] * radius);
+            if next.drop > site.drop + 0.4 {
                 return Some(next);
             }
         }
@@ -134,11 +162,11 @@ fn step(land: &Landscape, site: &Site, spread: f64) -> Option<Site> {
     None
 }
 
-/// The sum over an arm, in units of `e^reference`, to the given drop.
-fn integrate(land: &Landscape, arm: &Arm, reference: Complex64, depth: f64) -> Moments {
+/// The sum over an arm to the given drop.
+fn integrate(hub: &Hub, arm: &Arm, depth: f64) -> Moments {
     let mut total = [Complex64::ZERO; 4];
     for k in 1..arm.count {
-        let more = panel::moments(land, arm.vertices[k - 1], arm.vertices[k], reference);
+        let more = panel::moments(hub, arm.vertices[k - 1], arm.vertices[k]);
         for (total, more) in total.iter_mut().zip(more) {
             *total += more;
         }
@@ -149,14 +177,49 @@ fn integrate(land: &Landscape, arm: &Arm, reference: Complex64, depth: f64) -> M
     total
 }
 
-/// The moments between two outer valleys, in units of `e^reference`, and the reference.
-pub(super) fn between(land: &Landscape, from: i32, to: i32) -> Option<(Moments, Complex64)> {
-    SPREADS.iter().find_map(|spread| descents(land, from, to, *spread))
+/// Adds the integral between two outer valleys; false if no path is found.
+pub(super) fn between(land: &Landscape, from: i32, to: i32, sum: &mut Sum) -> bool {
+    across(land, from, sum) || SPREADS.iter().any(|spread| descents(land, from, to, *spread, sum))
 }
 
-fn descents(land: &Landscape, from: i32, to: i32, spread: f64) -> Option<(Moments, Complex64)> {
-    let (saddles, count) = land.saddles();
-    let mut hubs: [Site; 4] = std::array::from_fn(|k| land.site(saddles[k]));
+/// Height above or below a real saddle from which a complex one does not count.
+const NEVER_SEEN: f64 = 45.0;
+
+/// All saddles on the real axis of r, one by one, if that is all there is; `from` tells on which side of
+/// `r = 0` the path passes.
+fn across(land: &Landscape, from: i32, sum: &mut Sum) -> bool {
+    if land.inner.hi == 0.0 {
+        return false;
+    }
+    let mut hubs = [None; 4];
+    let (roots, count) = land.saddles(0.0);
+    for (hub, r) in hubs.iter_mut().zip(&roots[..count]) {
+        if r.im.abs() > 1e-5 * r.re.abs() {
+            let phase = land.phase(*r);
+            if phase.im.abs() < NEVER_SEEN + 1e-13 * phase.re.abs() {
+                return false;
+            }
+            continue;
+        }
+        let r = Complex64::new(land.polished(r.re), 0f64.copysign(f64::from(from)));
+        let place = land.hub(r);
+        if !lone::is_lone(&place) {
+            return false;
+        }
+        *hub = Some(place);
+    }
+    let mut found = false;
+    for hub in hubs.iter().flatten() {
+        let along = Complex64::new(hub.r.re.signum(), 0.0);
+        sum.add(hub, &lone::moments(hub, along), 1.0);
+        found = true;
+    }
+    found
+}
+
+fn descents(land: &Landscape, from: i32, to: i32, spread: f64, sum: &mut Sum) -> bool {
+    let (saddles, count) = land.saddles(0.5);
+    let mut hubs: [Hub; 4] = std::array::from_fn(|k| land.hub(saddles[k.min(count - 1)]));
     let hubs = &mut hubs[..count];
     hubs.sort_unstable_by(|a, b| a.height().total_cmp(&b.height()));
     let [from, to] = [from, to].map(|n| (n + 6) as usize);
@@ -168,11 +231,10 @@ fn descents(land: &Landscape, from: i32, to: i32, spread: f64) -> Option<(Moment
         if component[from] == component[to] {
             break;
         }
-        let radius = hub.reach(spread);
-        let mut directions = [Complex64::ZERO; ARMS];
-        let found = minima(land, hub, radius, &mut directions);
-        for (arm, direction) in arms[index].iter_mut().zip(&directions[..found]) {
-            *arm = descend(land, hub, radius, *direction, spread);
+        let mut places = [Complex64::ZERO; ARMS];
+        let found = starts(hub, lone::is_lone(hub), spread, &mut places);
+        for (arm, start) in arms[index].iter_mut().zip(&places[..found]) {
+            *arm = descend(hub, *start, spread);
         }
         for (copy, shift) in SHIFTS.iter().enumerate() {
             let mut first: Option<usize> = None;
@@ -195,27 +257,36 @@ fn descents(land: &Landscape, from: i32, to: i32, spread: f64) -> Option<(Moment
             }
         }
     }
-    let (path, length) = path(&edges[..edge_count], from, to)?;
-    let top = path[..length]
-        .iter()
-        .map(|(e, _)| &hubs[e.hub % 4])
-        .max_by(|a, b| a.height().total_cmp(&b.height()))?;
-    let mut total = [Complex64::ZERO; 4];
-    for (edge, sign) in &path[..length] {
-        let hub = &hubs[edge.hub % 4];
-        let depth = DEPTH - (top.height() - hub.height());
-        if let Some(arm) = &arms[edge.hub % 4][edge.arm]
-            && depth > 0.0
-        {
-            // e^(pi i) for every 2 pi i.
-            let sign = if SHIFTS[edge.hub / 4] == 0 { *sign } else { -sign };
-            let along = integrate(land, arm, top.h, depth);
-            for (total, along) in total.iter_mut().zip(along) {
-                *total += along * sign;
+    let Some((path, length)) = path(&edges[..edge_count], from, to) else {
+        return false;
+    };
+    let path = &path[..length];
+    let top = path.iter().fold(f64::NEG_INFINITY, |top, (e, _)| top.max(hubs[e.hub % 4].height()));
+    // How often each arm is run down; copies of a hub share their integrals but for e^(pi i).
+    let mut flows = [[0.0; ARMS]; 4];
+    for (edge, sign) in path {
+        let turned = if SHIFTS[edge.hub / 4] == 0 { *sign } else { -sign };
+        flows[edge.hub % 4][edge.arm] += turned;
+    }
+    for ((hub, arms), flows) in hubs.iter().zip(&arms).zip(&flows) {
+        let depth = DEPTH - (top - hub.height());
+        if depth <= 0.0 {
+            continue;
+        }
+        // The rule across a saddle serves both arms.
+        let lone = lone::is_lone(hub);
+        for (arm, &flow) in arms.iter().zip(flows) {
+            let Some(arm) = arm.as_ref().filter(|_| flow != 0.0) else {
+                continue;
+            };
+            if !lone {
+                sum.add(hub, &integrate(hub, arm, depth), flow);
+            } else if flow > 0.0 {
+                sum.add(hub, &lone::moments(hub, arm.vertices[1]), flow);
             }
         }
     }
-    Some((total, top.h))
+    true
 }
 
 /// The edges from one valley to another, with +1 down into a valley and -1 out of one.
