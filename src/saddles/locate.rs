@@ -95,6 +95,8 @@ const RECTANGLES: usize = 3000;
 const SAME: f64 = 1e-3;
 /// Depth of quartering where the count is clean.
 const DEPTH: u32 = 18;
+/// Depth from which on a count that its quarters do not bear out is that of merged saddles.
+const DEEP: u32 = 12;
 /// Depth of quartering where it is not, or where `f'` may have a pole.
 const POLE_DEPTH: u32 = 5;
 
@@ -130,6 +132,10 @@ pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
         }
         // Poles of f' count against its zeros: believe a count where there is none.
         let count = winding(phase, &part).filter(|_| depth >= POLE_DEPTH || regular(phase, &part));
+        if std::env::var("DBL").is_ok() && part.holds(Complex64::new(-0.6267279, -0.40429622), 1e-2)
+        {
+            eprintln!("depth {depth} {:.6} {:.6}: {count:?}", part.low, part.high);
+        }
         match count {
             Some(0) => continue,
             Some(n) if n > 0 && n as usize <= MAX_SADDLES => {
@@ -137,7 +143,9 @@ pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
                     add(&mut found, &part, &roots[..n as usize]);
                     continue;
                 }
-                if depth == DEPTH {
+                // Merged saddles may be lost in the rounding of f' before they are told apart.
+                let uncountable = |quarter: &Region| winding(phase, quarter).is_none();
+                if depth == DEPTH || (depth >= DEEP && part.quarters().iter().any(uncountable)) {
                     found.extend(std::iter::repeat_n(part.centre(), n as usize));
                     continue;
                 }
