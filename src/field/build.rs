@@ -167,16 +167,26 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
     certify(&mut plan, &topology, lowest - drop)?;
-    for saddle in &saddles {
+    for (index, saddle) in saddles.iter().enumerate() {
         let [_, _, second] = phase.jet(saddle.z);
         let power: f64 =
             branches.iter().map(|b| (saddle.z - b.base).norm().powf(b.lambda - 1.0)).product();
-        let weight = amplitude.value(saddle.z).norm()
-            * power
-            * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
-        let h = Complex64::new(0.0, 1.0) * saddle.value;
-        let weight = if weight.is_finite() { weight } else { 0.0 };
-        plan.saddles.push(Place { z: saddle.z, exponent: h, weight });
+        let size = amplitude.value(saddle.z).norm() * power;
+        let mut weight = size * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
+        let mut together = [f64::INFINITY; MAX_SADDLES - 1];
+        let holding = plan.nodes.iter().filter(|node| node.members >> index & 1 == 1);
+        for form in holding.filter_map(|node| Some(node.series.as_ref()?.form())) {
+            if form.saddles() > 1 {
+                // Canonical integrals are of order one where u ~ k^(-1/D).
+                let stretch = form.map()[1].norm() / form.radius();
+                together[form.saddles() - 2] = 3.0 * size * stretch;
+            }
+        }
+        if !weight.is_finite() && together.iter().all(|w| !w.is_finite()) {
+            weight = 0.0;
+        }
+        let exponent = Complex64::new(0.0, 1.0) * saddle.value;
+        plan.saddles.push(Place { z: saddle.z, exponent, weight, together });
     }
     Ok(plan)
 }

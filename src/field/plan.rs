@@ -4,6 +4,7 @@ use super::build::{Problem, attempt};
 use crate::estimate::Form;
 use crate::expansion::{AlgebraicSeries, Contribution, NearEnd, Part, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
+use crate::ring::MAX_SADDLES;
 use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};
 use num_complex::Complex64;
@@ -89,8 +90,19 @@ pub(super) struct Place {
     pub z: Complex64,
     /// `i f`.
     pub exponent: Complex64,
-    /// The size of its leading term without the power of `k`: the lower term at a Stokes line.
+    /// The size of its leading term without the power of `k`: the lower term at a Stokes line. Alone, with
+    /// `k^(-1/2)`, and as one of a fold, .., butterfly, with `k^(-1/D)`, `D` = 3 to 6.
     pub weight: f64,
+    pub together: [f64; MAX_SADDLES - 1],
+}
+
+impl Place {
+    /// The size of its leading term: where saddles are merged each alone would seem too large.
+    fn size(&self, k: f64) -> Scaled {
+        let sizes = self.together.iter().zip(3i32..).map(|(w, d)| w * k.powf(-1.0 / f64::from(d)));
+        let size = sizes.fold(self.weight / k.sqrt(), f64::min);
+        Scaled::exp(Complex64::new(k * self.exponent.re, 0.0)) * size
+    }
 }
 
 /// Everything about an integral that does not depend on the wavenumber: the saddles, their
@@ -324,9 +336,7 @@ impl Plan {
                     && f.im.abs() < 3.0 * (2.0 * f.re).sqrt()
             });
             if near {
-                let size = Scaled::exp(Complex64::new(k * lower.exponent.re, 0.0))
-                    * (lower.weight / k.sqrt());
-                total.error = total.error + size;
+                total.error = total.error + lower.size(k);
             }
         }
     }

@@ -48,6 +48,12 @@ impl Region {
         (self.high.re - self.low.re).max(self.high.im - self.low.im)
     }
 
+    /// Larger by this part on each side.
+    fn widened(&self, margin: f64) -> Region {
+        let pad = (self.high - self.low) * margin;
+        Region { low: self.low - pad, high: self.high + pad }
+    }
+
     fn centre(&self) -> Complex64 {
         (self.low + self.high) * 0.5
     }
@@ -85,8 +91,12 @@ pub struct Saddle {
 
 /// Rectangles that are looked at in one search.
 const RECTANGLES: usize = 3000;
+/// Saddles found twice are this close, in units of a part.
+const SAME: f64 = 1e-3;
 /// Depth of quartering where the count is clean.
 const DEPTH: u32 = 18;
+/// Depth from which on a count that its quarters do not bear out is that of merged saddles.
+const DEEP: u32 = 12;
 /// Depth of quartering where it is not, or where `f'` may have a pole.
 const POLE_DEPTH: u32 = 5;
 
@@ -122,19 +132,34 @@ pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
         }
         // Poles of f' count against its zeros: believe a count where there is none.
         let count = winding(phase, &part).filter(|_| depth >= POLE_DEPTH || regular(phase, &part));
+        if std::env::var("DBL").is_ok() && part.holds(Complex64::new(-0.6267279, -0.40429622), 1e-2)
+        {
+            eprintln!("depth {depth} {:.6} {:.6}: {count:?}", part.low, part.high);
+        }
         match count {
             Some(0) => continue,
             Some(n) if n > 0 && n as usize <= MAX_SADDLES => {
                 if let Some(roots) = simultaneous(phase, &part, n as usize) {
-                    found.extend(&roots[..n as usize]);
+                    add(&mut found, &part, &roots[..n as usize]);
                     continue;
                 }
-                if depth == DEPTH {
+                // Merged saddles may be lost in the rounding of f' before they are told apart.
+                let uncountable = |quarter: &Region| winding(phase, quarter).is_none();
+                if depth == DEPTH || (depth >= DEEP && part.quarters().iter().any(uncountable)) {
                     found.extend(std::iter::repeat_n(part.centre(), n as usize));
                     continue;
                 }
             }
             None if depth >= POLE_DEPTH => {
+                // An edge may run close to a saddle.
+                let wide = part.widened(0.07);
+                if let Some(n) = winding(phase, &wide)
+                    && (1..=MAX_SADDLES as i64).contains(&n)
+                    && let Some(roots) = simultaneous(phase, &wide, n as usize)
+                {
+                    add(&mut found, &wide, &roots[..n as usize]);
+                    continue;
+                }
                 if let Some(roots) = simultaneous(phase, &part, 1) {
                     let new = |z: &Complex64| (z - roots[0]).norm() > 1e-7 * total;
                     if found.iter().all(new) {
@@ -149,6 +174,23 @@ pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
         stack.extend(part.quarters().map(|quarter| (quarter, depth + 1)));
     }
     Ok(found.into_iter().map(|z| Saddle { z, value: phase.value(z) }).collect())
+}
+
+/// All saddles in a part, of which some may be known already: merged ones by their number, since the
+/// places are not exact.
+fn add(found: &mut Vec<Complex64>, part: &Region, roots: &[Complex64]) {
+    let mut new = [Complex64::new(0.0, 0.0); MAX_SADDLES];
+    let mut count = roots.len();
+    new[..count].copy_from_slice(roots);
+    for known in found.iter().filter(|z| part.holds(**z, 1e-6)) {
+        let distance = |n: &usize| (new[*n] - known).norm();
+        let nearest = (0..count).min_by(|a, b| distance(a).total_cmp(&distance(b)));
+        if let Some(nearest) = nearest.filter(|n| distance(n) < SAME * part.size()) {
+            count -= 1;
+            new.swap(nearest, count);
+        }
+    }
+    found.extend(&new[..count]);
 }
 
 /// Zeros minus poles of `f'` inside, or None where `arg f'` could not be followed.

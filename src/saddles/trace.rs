@@ -69,7 +69,14 @@ pub(crate) fn trace(
     let mut z = start;
     let direction = if goal > origin.re { 1.0 } else { -1.0 };
     // Rounding of the heights themselves and of their range is the scale, whatever the unit.
-    let rounding = 1e-12 * origin.norm() + 1e-13 * (goal - origin.re).abs();
+    let own = 1e-12 * origin.norm();
+    let mut rounding = own + 1e-13 * (goal - origin.re).abs();
+    if slope.norm_sqr() < rounding * bend.norm() {
+        // A far goal may be very high: the range nearby.
+        let near =
+            [1e-3 * longest, -1e-3 * longest].map(|d| (h.height(start + d) - origin.re).abs());
+        rounding = own + 1e-13 * near[0].max(near[1]).min((goal - origin.re).abs());
+    }
     if slope.norm_sqr() < rounding * bend.norm() {
         // On a saddle, to rounding: the path has no direction of its own there.
         z = leave(h, start, (origin.re, 1e4 * rounding), direction, longest);
