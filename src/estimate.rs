@@ -1,6 +1,7 @@
 //! What every evaluation of an integral returns.
 
 use crate::Scaled;
+use crate::scaled::ldexp;
 use num_complex::Complex64;
 use std::ops::{Add, Neg, Sub};
 
@@ -92,6 +93,38 @@ impl Estimate {
         }
         let size = self.scaled.mantissa.norm() * self.relative_error;
         Scaled::new(Complex64::new(size, 0.0), self.scaled.exponent)
+    }
+}
+
+/// The value of an integral and its derivatives in `N` parameters, each with its error figure. Given by
+/// [`GradientPlan::at`](crate::GradientPlan::at) and
+/// [`Gradient::quadrature`](crate::Gradient::quadrature).
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct FieldGradient<const N: usize> {
+    /// `u`, the integral.
+    pub value: Estimate,
+    /// `du/dx_j`.
+    pub gradient: [Estimate; N],
+}
+
+impl<const N: usize> FieldGradient<N> {
+    /// `Im(conj(u) du/dx_j)`: with places as parameters the flux of a scalar wave, up to the constant
+    /// of its equation. Off by `|u| e_j + |du/dx_j| e` at most, `e` and `e_j` the error figures.
+    pub fn flux(&self) -> [f64; N] {
+        let along = self.value.scaled.conj();
+        self.gradient.map(|slope| (along * slope.scaled).to_complex().im)
+    }
+
+    /// `Im((du/dx_j)/u)`: the derivatives of the phase of `u`. With places as parameters this is the local
+    /// wave vector, and its direction that of the beam, also where the flux underflows; NaN at a zero of
+    /// `u`.
+    pub fn local_wave_vector(&self) -> [f64; N] {
+        let u = self.value.scaled;
+        let over = |slope: &Estimate| {
+            let ratio = slope.scaled.mantissa / u.mantissa;
+            ldexp(ratio.im, slope.scaled.exponent.saturating_sub(u.exponent))
+        };
+        std::array::from_fn(|j| over(&self.gradient[j]))
     }
 }
 

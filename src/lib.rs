@@ -69,8 +69,8 @@ mod scaled;
 pub mod special;
 
 pub use error::Error;
-pub use estimate::{Estimate, Form};
-pub use field::Plan;
-pub use integral::{Contour, Integral, Phase};
+pub use estimate::{Estimate, FieldGradient, Form};
+pub use field::{GradientPlan, Plan};
+pub use integral::{Contour, Gradient, Integral, Phase};
 pub use num_complex::{self, Complex64};
 pub use scaled::Scaled;

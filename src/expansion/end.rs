@@ -28,6 +28,7 @@ use num_complex::Complex64;
 const INSIDE: f64 = 0.9;
 
 /// The boundary terms of one ring.
+#[derive(Clone)]
 struct Boundary {
     ring: usize,
     u: Complex64,
@@ -39,6 +40,7 @@ struct Boundary {
 }
 
 /// An end point as seen from the rings of one cluster.
+#[derive(Clone)]
 pub(crate) struct NearEnd {
     /// The cluster: an index into the plan's nodes.
     pub node: usize,
@@ -87,6 +89,16 @@ impl NearEnd {
             noise_scale: phase.noise_scale(e),
             sign,
         })
+    }
+
+    /// The same for the series of another amplitude on the same rings.
+    pub fn for_series(&self, series: &Series) -> NearEnd {
+        let mut near = self.clone();
+        for boundary in &mut near.boundaries {
+            let ring = &series.rings()[boundary.ring];
+            boundary.terms = ring.start.boundary(&ring.form, boundary.u / ring.form.radius());
+        }
+        near
     }
 
     /// The contribution at wavenumber `k` with at most `orders` orders; None if the descent inside

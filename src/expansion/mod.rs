@@ -6,12 +6,15 @@ mod end;
 mod end_pole;
 mod figure;
 mod incomplete;
+mod layers;
 mod parabolic;
 mod pole;
 mod series;
 mod unfolding;
 
 pub(crate) use algebraic::{AlgebraicSeries, Part, Powered};
+pub(crate) use canonical::Moments;
 pub(crate) use end::NearEnd;
+pub(crate) use layers::{Layer, Layers};
 pub(crate) use pole::Pole;
 pub(crate) use series::{Contribution, Given, Series};

@@ -80,7 +80,8 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             let given =
                 Given { least, phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
             let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
-            ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
+            let own = own.map(|own| own.with_sign(sign).with_powers(&powered.powers));
+            ends.push(End { at, sign, own, near: Vec::new() });
         }
     }
 
@@ -166,14 +167,18 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         let [_, _, second] = phase.jet(saddle.z);
         let power: f64 =
             branches.iter().map(|b| (saddle.z - b.base).norm().powf(b.lambda - 1.0)).product();
-        let weight = amplitude.value(saddle.z).norm()
-            * power
-            * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
+        let spread = power * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
         let h = Complex64::new(0.0, 1.0) * saddle.value;
-        let weight = if weight.is_finite() { weight } else { 0.0 };
-        plan.saddles.push(Place { z: saddle.z, exponent: h, weight });
+        let weight = weighed(amplitude.value(saddle.z), spread);
+        plan.saddles.push(Place { z: saddle.z, exponent: h, weight, spread });
     }
     Ok(plan)
+}
+
+/// The weight of a saddle.
+pub(super) fn weighed(amplitude: Complex64, spread: f64) -> f64 {
+    let weight = amplitude.norm() * spread;
+    if weight.is_finite() { weight } else { 0.0 }
 }
 
 /// The poles with their steepest ascents and the contour's crossings of those.
@@ -283,7 +288,7 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
         if series.contributes() {
             reach.include(highest(group), lowest(group));
         }
-        nodes[index].series = Some(series);
+        nodes[index].series = Some(series.with_powers(&powered.powers));
         nodes[index].settled = true;
     }
     // Saddles without an expansion, alone or with others, are refused near the contour. Far from it they

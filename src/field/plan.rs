@@ -2,7 +2,7 @@
 
 use super::build::{Problem, attempt};
 use crate::estimate::Form;
-use crate::expansion::{AlgebraicSeries, Contribution, NearEnd, Part, Pole, Series};
+use crate::expansion::{AlgebraicSeries, Contribution, Moments, NearEnd, Part, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};
@@ -91,6 +91,8 @@ pub(super) struct Place {
     pub exponent: Complex64,
     /// The size of its leading term without the power of `k`: the lower term at a Stokes line.
     pub weight: f64,
+    /// The same for a unit amplitude.
+    pub spread: f64,
 }
 
 /// Everything about an integral that does not depend on the wavenumber: the saddles, their
@@ -227,10 +229,28 @@ impl Plan {
     /// # Errors
     /// As [`Plan::at`], and if `orders` is zero.
     pub fn at_orders(&self, k: f64, orders: usize) -> Result<Estimate, Error> {
+        Plan::check(k, orders)?;
+        let (total, form) = self.total(k, orders, None);
+        finish(&total, total.size, form, k)
+    }
+
+    /// Refuses wavenumbers and numbers of orders that mean nothing.
+    pub(super) fn check(k: f64, orders: usize) -> Result<(), Error> {
         Error::require_positive("wavenumber k", k)?;
         if orders == 0 {
             return Err(Error::domain("orders", 0.0, "keep one order or more"));
         }
+        Ok(())
+    }
+
+    /// The sum of all contributions, without a judgement; `shared` holds the canonical integrals for
+    /// other amplitudes on the same rings.
+    pub(super) fn total(
+        &self,
+        k: f64,
+        orders: usize,
+        mut shared: Option<&mut Shared>,
+    ) -> (Contribution, Form) {
         let mut total = Contribution::NONE;
         for end in &self.ends {
             total = total.and(&end.at(&self.nodes, k, orders));
@@ -251,7 +271,10 @@ impl Plan {
                     return Choice::NONE;
                 }
                 Choice {
-                    part: series.at(k, orders),
+                    part: match &mut shared {
+                        Some(shared) => series.summed(k, orders, shared.moments(index, series, k)),
+                        None => series.at(k, orders),
+                    },
                     clusters: 1,
                     largest: series.saddles(),
                     as_whole: true,
@@ -279,7 +302,7 @@ impl Plan {
         }
         total.error = total.error + Scaled::exp(Complex64::new(k * self.floor, 0.0));
         let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
-        finish(total, form, k)
+        (total, form)
     }
 
     /// What a single saddle adds, by the rings about an algebraic end near it.
@@ -356,14 +379,33 @@ impl Choice {
 }
 
 /// Whether one error is below another.
-fn below(a: Scaled, b: Scaled) -> bool {
+pub(super) fn below(a: Scaled, b: Scaled) -> bool {
     a.ln_norm() < b.ln_norm()
 }
 
-/// Refuses what has no correct digit: an error as large as all contributions together.
-fn finish(total: Contribution, form: Form, k: f64) -> Result<Estimate, Error> {
+/// Canonical integrals at one wavenumber, by node, as far as they have been asked for.
+pub(super) struct Shared([Option<Option<Moments>>; MAX_GROUPS]);
+
+impl Shared {
+    pub fn new() -> Shared {
+        Shared([None; MAX_GROUPS])
+    }
+
+    fn moments(&mut self, node: usize, series: &Series, k: f64) -> &Option<Moments> {
+        self.0[node].get_or_insert_with(|| series.moments(k))
+    }
+}
+
+/// Refuses what has no correct digit: an error as large as all contributions together, whose size is
+/// about `size`.
+pub(super) fn finish(
+    total: &Contribution,
+    size: Scaled,
+    form: Form,
+    k: f64,
+) -> Result<Estimate, Error> {
     let finite = total.value.is_finite() && total.error.is_finite();
-    if !finite || (!total.size.is_zero() && !below(total.error, total.size)) {
+    if !finite || (!size.is_zero() && !below(total.error, size)) {
         return Err(Error::Undecided {
             reason: format!("at k = {k} the expansion's error figure is as large as its value"),
             remedy: "use `quadrature` at this wavenumber",
