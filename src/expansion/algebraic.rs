@@ -108,9 +108,16 @@ impl Amplitude for Powered<'_> {
 pub(super) struct Ring {
     pub form: BasedForm,
     pub orders: BasedOrders,
-    filling: f64,
+    pub filling: f64,
     /// The value of `(dz/du)^(lambda - 1)` at the end.
     pub power: Complex64,
+}
+
+impl Ring {
+    /// The same with another amplitude, perhaps on a smaller ring.
+    pub fn with_orders(&self, form: &BasedForm, filling: f64, orders: BasedOrders) -> Ring {
+        Ring { form: form.clone(), orders, filling, power: self.power }
+    }
 }
 
 /// Paths from the end to valleys: valley number, weight with its sheet's factor.
@@ -273,6 +280,11 @@ impl AlgebraicSeries {
             }
         }
         Some(series)
+    }
+
+    /// The same with other orders on its rings.
+    pub(super) fn with_rings(&self, rings: Vec<Ring>) -> AlgebraicSeries {
+        AlgebraicSeries { rings, ..self.clone() }
     }
 
     /// How the contour leaves the end, from the ring without a saddle.

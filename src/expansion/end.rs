@@ -91,12 +91,23 @@ impl NearEnd {
         })
     }
 
-    /// The same for the series of another amplitude on the same rings.
-    pub fn for_series(&self, series: &Series) -> NearEnd {
+    /// The same for the series of another amplitude on the same `rings` rings and perhaps on smaller
+    /// ones after them. Those hold all saddles, so the descent leaves them through the same valley.
+    pub fn for_series(&self, series: &Series, rings: usize) -> NearEnd {
         let mut near = self.clone();
         for boundary in &mut near.boundaries {
             let ring = &series.rings()[boundary.ring];
             boundary.terms = ring.start.boundary(&ring.form, boundary.u / ring.form.radius());
+        }
+        if let Some(innermost) = self.boundaries.iter().find(|boundary| boundary.ring == 0) {
+            for (index, ring) in series.rings().iter().enumerate().skip(rings) {
+                let v = innermost.u / ring.form.radius();
+                if v.norm() <= INSIDE {
+                    let (terms, noise) = ring.orders.boundary(&ring.form, &ring.start, v);
+                    let inner = innermost.clone();
+                    near.boundaries.push(Boundary { ring: index, terms, noise, ..inner });
+                }
+            }
         }
         near
     }

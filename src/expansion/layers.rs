@@ -6,15 +6,21 @@
 //! kept, and only those three are made anew. All amplitudes are sampled together. A ring on which one of
 //! them has not decayed is not used for it; if none is left, the innermost is made smaller.
 
-use super::algebraic::{AlgebraicSeries, Powers};
+use super::algebraic::{AlgebraicSeries, Powers, Ring as AlgebraicRing};
 use super::pole::{MappedPole, Pole};
-use super::series::{CLEAN, FILLING, FIRST, RATIO, Ring, Series, WORST_TAIL};
+use super::series::{FILLING, FIRST, Ring, Series, WORST_TAIL};
 use crate::integral::Amplitude;
-use crate::ring::{BasedOrders, NormalForm, Orders, Start, ZERO};
+use crate::ring::{Based, BasedForm, BasedOrders, NormalForm, Orders, Start, ZERO};
 use num_complex::Complex64;
 
 /// With tails above this the rings are too large for an amplitude.
 const LOOSE: f64 = 1e-9;
+/// Ratio between rings that are added inwards.
+const INWARDS: f64 = 2.0;
+/// Rings that are added at most for an amplitude that is smaller there.
+const SMALLER: usize = 4;
+/// It must be smaller by this factor.
+const LIGHTER: f64 = 0.7;
 
 /// Several amplitudes on one phase.
 pub(crate) struct Layers<'a> {
@@ -79,32 +85,21 @@ impl Series {
                 rings.push(ring.with_start(usable.unwrap_or_else(Start::unknown)));
             }
         }
-        let finished = list.into_iter().zip(poles.iter().cloned()).enumerate().map(|(layer, (mut rings, poles))| {
-            // Rings are known by their place in the list: smaller ones are added at its end.
-            let mut least = rings[0].clone();
-            for _ in 0..FIRST {
-                let clear = |form: &NormalForm| {
-                    poles.iter().flatten().all(|pole| pole.is_clear_of(form))
-                };
-                let (loose, filling) = (least.start.tail() > LOOSE, least.filling * RATIO);
-                if !loose || filling > FILLING {
-                    break;
-                }
-                let form = least.form.shrunk(1.0 / RATIO);
-                let start = sampled(&form, least.split).swap_remove(layer);
-                let start = start.unwrap_or_else(Start::unknown);
-                let orders = Orders::new(&form, &start);
-                least = Ring { form, start, orders, filling, split: least.split };
-                if least.start.tail() < WORST_TAIL && clear(&least.form) {
-                    rings.push(least.clone());
-                }
-                if least.start.tail() < CLEAN {
-                    break;
-                }
-            }
-            self.with_rings(rings, poles)
+        let innermost = self.rings.first().map(|r| (r.form.clone(), r.filling, r.split));
+        let Some((mut form, mut filling, split)) = innermost else { return Vec::new() };
+        let measure = |ring: &Ring| (ring.start.tail(), ring.start.size());
+        add_inner_rings(&mut list, measure, || {
+            filling *= INWARDS;
+            form = form.shrunk(1.0 / INWARDS);
+            let clear = poles.iter().flatten().flatten().all(|pole| pole.is_clear_of(&form));
+            let ring = |start: Option<Start>| {
+                let start = start.filter(|_| clear).unwrap_or_else(Start::unknown);
+                let (orders, form) = (Orders::new(&form, &start), form.clone());
+                Ring { form, start, orders, filling, split }
+            };
+            (filling < FILLING).then(|| sampled(&form, split).into_iter().map(ring).collect())
         });
-        finished.collect()
+        list.into_iter().zip(poles).map(|(rings, poles)| self.with_rings(rings, poles)).collect()
     }
 
     /// The largest modulus of `g dz/du` on the innermost ring; None where it could not be sampled.
@@ -125,19 +120,67 @@ impl Ring {
 impl AlgebraicSeries {
     /// The same series for each of several amplitudes.
     pub fn with_amplitudes(&self, layers: &Layers) -> Vec<AlgebraicSeries> {
-        let mut list = vec![self.clone(); layers.count];
-        for (index, ring) in self.rings.iter().enumerate() {
-            let noise = ring.orders.noises();
-            let fill =
-                |z, values: &mut [Complex64]| layers.fill_powered(z, &self.powers, values);
-            let power = (self.lambda, ring.power);
-            let all = BasedOrders::several(&ring.form, power, layers.count, fill, noise);
-            for (series, orders) in list.iter_mut().zip(all) {
-                let usable = orders.filter(|orders| orders.tail < WORST_TAIL);
-                series.rings[index].orders =
-                    usable.unwrap_or_else(|| BasedOrders::unknown(noise));
+        let sampled = |form: &BasedForm, power: Complex64, noise: &Based| {
+            let fill = |z, values: &mut [Complex64]| layers.fill_powered(z, &self.powers, values);
+            let all =
+                BasedOrders::several(form, (self.lambda, power), layers.count, fill, noise);
+            let usable = |orders: Option<BasedOrders>| {
+                let decayed = orders.filter(|orders| orders.tail < WORST_TAIL);
+                decayed.unwrap_or_else(|| BasedOrders::unknown(noise))
+            };
+            all.into_iter().map(usable).collect::<Vec<_>>()
+        };
+        let mut list = vec![Vec::with_capacity(self.rings.len()); layers.count];
+        for ring in &self.rings {
+            let all = sampled(&ring.form, ring.power, ring.orders.noises());
+            for (rings, orders) in list.iter_mut().zip(all) {
+                rings.push(ring.with_orders(&ring.form, ring.filling, orders));
             }
         }
-        list
+        let Some(innermost) = self.rings.first() else { return Vec::new() };
+        let (mut form, mut filling) = (innermost.form.clone(), innermost.filling);
+        let measure = |ring: &AlgebraicRing| (ring.orders.tail, ring.orders.size);
+        add_inner_rings(&mut list, measure, || {
+            filling *= INWARDS;
+            form = form.shrunk(1.0 / INWARDS);
+            let noise = BasedOrders::unit(&form, self.lambda);
+            let ring = |orders| innermost.with_orders(&form, filling, orders);
+            let all = sampled(&form, innermost.power, &noise);
+            (filling < FILLING).then(|| all.into_iter().map(ring).collect())
+        });
+        list.into_iter().map(|rings| self.with_rings(rings)).collect()
+    }
+}
+
+/// Adds smaller rings to those of each amplitude where they are of use: where it has not decayed on the
+/// innermost (the first of the list), or is much smaller on the next, and its rounding noise with it.
+/// Rings are known by their place in the list, so these come at its end. `measure` gives tail and size of
+/// an amplitude on a ring, `next` the next smaller ring for all, if there is one.
+fn add_inner_rings<R>(
+    list: &mut [Vec<R>],
+    measure: impl Fn(&R) -> (f64, f64),
+    mut next: impl FnMut() -> Option<Vec<R>>,
+) {
+    let mut inner: Vec<(f64, f64)> = list.iter().map(|rings| measure(&rings[0])).collect();
+    for step in 0..FIRST {
+        let gains = |tail: f64| tail > LOOSE || step < SMALLER;
+        if !inner.iter().any(|inner| gains(inner.0)) {
+            return;
+        }
+        let Some(rings) = next() else { return };
+        let mut used = false;
+        for ((list, inner), ring) in list.iter_mut().zip(&mut inner).zip(rings) {
+            let (tail, size) = measure(&ring);
+            if inner.0 > LOOSE || (step < SMALLER && size < LIGHTER * inner.1) {
+                used = true;
+                *inner = (tail, size);
+                if tail < WORST_TAIL {
+                    list.push(ring);
+                }
+            }
+        }
+        if !used {
+            return;
+        }
     }
 }

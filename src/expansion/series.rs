@@ -17,7 +17,7 @@ use crate::saddles::Multiplicities;
 use num_complex::Complex64;
 
 /// Ratio between neighbouring rings.
-pub(super) const RATIO: f64 = 1.4;
+const RATIO: f64 = 1.4;
 /// Rings that are tried at most.
 const TRIED: usize = 30;
 /// Mapped saddles must lie within this part of the ring.
@@ -39,7 +39,7 @@ const BY_POLE: f64 = 1.1;
 /// With tails below this nothing singular lies inside a ring.
 const SOUND: f64 = 1e-9;
 /// The first ring is made smaller until its tails are below this.
-pub(super) const CLEAN: f64 = 1e-12;
+const CLEAN: f64 = 1e-12;
 /// Times that the first ring may be made smaller.
 pub(super) const FIRST: usize = 16;
 /// Branch points must lie beyond this part of a ring.
@@ -94,7 +94,7 @@ impl Trial {
 
 /// A ring that is kept.
 #[derive(Clone)]
-pub(super) struct Ring {
+pub(crate) struct Ring {
     pub form: NormalForm,
     pub start: Start,
     pub orders: Orders,
@@ -397,7 +397,7 @@ impl Series {
         &self.poles
     }
 
-    pub(super) fn rings(&self) -> &[Ring] {
+    pub fn rings(&self) -> &[Ring] {
         &self.rings
     }
 }

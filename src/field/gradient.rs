@@ -140,8 +140,9 @@ impl Plan {
         for end in &self.ends {
             for (plan, own) in plans.iter_mut().zip(several(&end.own)) {
                 let seen = |near: &crate::expansion::NearEnd| {
+                    let rings = self.nodes[near.node].series.as_ref()?.rings().len();
                     let series = plan.nodes[near.node].series.as_ref()?;
-                    Some(near.for_series(series))
+                    Some(near.for_series(series, rings))
                 };
                 let near = end.near.iter().filter_map(seen).collect();
                 plan.ends.push(End { at: end.at, sign: end.sign, own, near });

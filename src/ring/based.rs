@@ -79,6 +79,18 @@ impl BasedForm {
 
     /// The same on a ring `factor` times as large.
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<BasedForm> {
+        let mut form = self.rescaled(factor);
+        form.settle(phase, 7).then_some(form)
+    }
+
+    /// The same on a smaller ring: nothing new has to be found.
+    pub fn shrunk(&self, factor: f64) -> BasedForm {
+        let mut form = self.rescaled(factor);
+        form.measure_tail();
+        form
+    }
+
+    fn rescaled(&self, factor: f64) -> BasedForm {
         let mut form = self.clone();
         form.radius *= factor;
         let mut power = 1.0;
@@ -89,7 +101,13 @@ impl BasedForm {
             }
             power *= factor;
         }
-        form.settle(phase, 7).then_some(form)
+        form
+    }
+
+    fn measure_tail(&mut self) {
+        let mut full = [ZERO; POINTS];
+        full[..KEPT].copy_from_slice(&self.map);
+        self.tail = tail(&full, 1, 0.0);
     }
 
     fn settle(&mut self, phase: &dyn Phase, limit: usize) -> bool {
@@ -135,9 +153,7 @@ impl BasedForm {
                 return false;
             }
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
-                let mut full = [ZERO; POINTS];
-                full[..KEPT].copy_from_slice(&self.map);
-                self.tail = tail(&full, 1, 0.0);
+                self.measure_tail();
                 return true;
             }
             last_step = step;
@@ -229,7 +245,7 @@ impl BasedOrders {
         power: Complex64,
     ) -> Option<BasedOrders> {
         let fill = |z, values: &mut [Complex64]| values[0] = amplitude.value(z);
-        let noise = by_parts(form, lambda, unit_noise());
+        let noise = BasedOrders::unit(form, lambda);
         BasedOrders::several(form, (lambda, power), 1, fill, &noise).pop()?
     }
 
@@ -273,6 +289,11 @@ impl BasedOrders {
             })
         };
         values.into_iter().map(orders).collect()
+    }
+
+    /// What unit noise on the ring passes on to each order.
+    pub fn unit(form: &BasedForm, lambda: f64) -> Based {
+        by_parts(form, lambda, unit_noise())
     }
 
     /// What cannot be sampled: no figure can be trusted.

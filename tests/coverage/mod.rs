@@ -91,7 +91,7 @@ impl Tally {
         }
     }
 
-    fn report(&mut self, name: &str) {
+    pub fn report(&mut self, name: &str) {
         self.ratios.sort_by(f64::total_cmp);
         let at = |q: f64| {
             self.ratios.get((self.ratios.len() as f64 * q) as usize).copied().unwrap_or(0.0)
