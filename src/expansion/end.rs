@@ -14,7 +14,7 @@
 
 use super::end_pole::{ascent_in_ring, with_pole};
 use super::figure::Parts;
-use super::incomplete::incomplete;
+use super::incomplete::{Incomplete, incomplete};
 use super::pole::Pole;
 use super::series::{Contribution, Series};
 use super::unfolding::Unfolding;
@@ -23,6 +23,9 @@ use crate::integral::Phase;
 use crate::ring::{MAX_ORDERS, NormalForm, preimage};
 use crate::saddles::Topology;
 use num_complex::Complex64;
+
+/// Incomplete integrals that may have been asked for and may exist.
+pub(crate) type Known = Option<Option<Incomplete>>;
 
 /// An end point must lie within this part of a ring.
 const INSIDE: f64 = 0.9;
@@ -44,7 +47,9 @@ struct Boundary {
 pub(crate) struct NearEnd {
     /// The cluster: an index into the plan's nodes.
     pub node: usize,
+    /// Those that belong to all amplitudes come first.
     boundaries: Vec<Boundary>,
+    common: usize,
     value: Complex64,
     noise_scale: f64,
     sign: f64,
@@ -84,6 +89,7 @@ impl NearEnd {
         }
         (!boundaries.is_empty()).then(|| NearEnd {
             node,
+            common: boundaries.len(),
             boundaries,
             value: phase.value(e),
             noise_scale: phase.noise_scale(e),
@@ -113,16 +119,24 @@ impl NearEnd {
     }
 
     /// The contribution at wavenumber `k` with at most `orders` orders; None if the descent inside
-    /// the ring did not arrive.
-    pub fn at(&self, series: &Series, k: f64, orders: usize) -> Option<Contribution> {
+    /// the ring did not arrive. `known` keeps incomplete integrals for other amplitudes.
+    pub fn at(
+        &self,
+        series: &Series,
+        k: f64,
+        orders: usize,
+        known: &mut [Known],
+    ) -> Option<Contribution> {
         let mut best: Option<(usize, usize, f64, _, _)> = None;
         for (index, boundary) in self.boundaries.iter().enumerate() {
             let ring = &series.rings()[boundary.ring];
-            let Some(moments) =
-                incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k)
-            else {
-                continue;
+            let found =
+                || incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k);
+            let moments = match known.get_mut(index).filter(|_| index < self.common) {
+                Some(slot) => *slot.get_or_insert_with(found),
+                None => found(),
             };
+            let Some(moments) = moments else { continue };
             let mut parts = Parts::of_ring(ring, &moments.values.map(|c| c.norm()), k, orders);
             let mut power = 1.0 / k;
             for n in 0..MAX_ORDERS {

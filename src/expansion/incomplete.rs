@@ -39,6 +39,7 @@ const ROUNDING: [f64; 2] = [1.5e-13, 1e-12];
 pub(super) const FLOOR: f64 = 42.0;
 
 /// Incomplete moments with a bound on the error of each.
+#[derive(Clone, Copy)]
 pub(crate) struct Incomplete {
     pub values: [Complex64; MAX_SADDLES],
     pub errors: [f64; MAX_SADDLES],

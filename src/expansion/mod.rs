@@ -14,7 +14,7 @@ mod unfolding;
 
 pub(crate) use algebraic::{AlgebraicSeries, Part, Powered};
 pub(crate) use canonical::Moments;
-pub(crate) use end::NearEnd;
+pub(crate) use end::{Known, NearEnd};
 pub(crate) use layers::{Layer, Layers};
 pub(crate) use pole::Pole;
 pub(crate) use series::{Contribution, Given, Series};

@@ -2,7 +2,7 @@
 
 use super::build::{Problem, attempt};
 use crate::estimate::Form;
-use crate::expansion::{AlgebraicSeries, Contribution, Moments, NearEnd, Part, Pole, Series};
+use crate::expansion::{AlgebraicSeries, Contribution, Known, Moments, NearEnd, Part, Pole, Series};
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};
@@ -52,14 +52,23 @@ pub(super) struct End {
 
 impl End {
     /// The form with the smaller error figure.
-    fn at(&self, nodes: &[Node], k: f64, orders: usize) -> Contribution {
+    fn at(
+        &self,
+        nodes: &[Node],
+        k: f64,
+        orders: usize,
+        mut known: Option<&mut [[Known; BOUNDARIES]; NEAR]>,
+    ) -> Contribution {
         let mut best = self.own.as_ref().map(|own| own.at(k, orders));
-        for near in &self.near {
+        for (index, near) in self.near.iter().enumerate() {
             // The incomplete integrals cost more: not where the plain series is as good as can be.
             if best.is_some_and(|b| b.is_sharp()) {
                 break;
             }
-            let found = nodes[near.node].series.as_ref().and_then(|s| near.at(s, k, orders));
+            let known = known.as_mut().and_then(|known| known.get_mut(index));
+            let known: &mut [Known] = known.map_or(&mut [], |known| known);
+            let series = nodes[near.node].series.as_ref();
+            let found = series.and_then(|series| near.at(series, k, orders, known));
             if let Some(found) = found.filter(|f| best.is_none_or(|b| below(f.error, b.error))) {
                 best = Some(found);
             }
@@ -252,8 +261,9 @@ impl Plan {
         mut shared: Option<&mut Shared>,
     ) -> (Contribution, Form) {
         let mut total = Contribution::NONE;
-        for end in &self.ends {
-            total = total.and(&end.at(&self.nodes, k, orders));
+        for (index, end) in self.ends.iter().enumerate() {
+            let known = shared.as_mut().and_then(|shared| shared.ends.get_mut(index));
+            total = total.and(&end.at(&self.nodes, k, orders, known));
         }
         for end in &self.algebraic {
             total = total.and(&end.at(k, orders));
@@ -383,16 +393,24 @@ pub(super) fn below(a: Scaled, b: Scaled) -> bool {
     a.ln_norm() < b.ln_norm()
 }
 
-/// Canonical integrals at one wavenumber, by node, as far as they have been asked for.
-pub(super) struct Shared([Option<Option<Moments>>; MAX_GROUPS]);
+/// Groups near one end and rings of each whose incomplete integrals are kept.
+const NEAR: usize = 3;
+const BOUNDARIES: usize = 12;
+
+/// Canonical integrals at one wavenumber, as far as they have been asked for: by node the complete ones,
+/// by end, group and ring the incomplete ones.
+pub(super) struct Shared {
+    nodes: [Option<Option<Moments>>; MAX_GROUPS],
+    ends: [[[Known; BOUNDARIES]; NEAR]; 2],
+}
 
 impl Shared {
     pub fn new() -> Shared {
-        Shared([None; MAX_GROUPS])
+        Shared { nodes: [None; MAX_GROUPS], ends: [[[None; BOUNDARIES]; NEAR]; 2] }
     }
 
     fn moments(&mut self, node: usize, series: &Series, k: f64) -> &Option<Moments> {
-        self.0[node].get_or_insert_with(|| series.moments(k))
+        self.nodes[node].get_or_insert_with(|| series.moments(k))
     }
 }
 
