@@ -66,9 +66,8 @@ fn gradients(criterion: &mut Criterion) {
         b.iter(|| cubic.gradient(|z: Complex64| [z, z * z]).plan().is_ok());
     });
     group.bench_function("cubic, 2 of phase and amplitude", |b| {
-        let gradient = cubic
-            .gradient(|z: Complex64| [z, zero])
-            .amplitude(|z: Complex64| [z * z, z * 0.5]);
+        let gradient =
+            cubic.gradient(|z: Complex64| [z, zero]).amplitude(|z: Complex64| [z * z, z * 0.5]);
         b.iter(|| gradient.plan().is_ok());
     });
     group.bench_function("Bessel fold, a = 0.3, 2", |b| {

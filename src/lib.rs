@@ -47,7 +47,7 @@
 //! | --- | --- |
 //! | [`special`] | functions of numbers: Airy functions and canonical integrals |
 //! | [`ring`] | the numerical core: analytic functions on a circle, division, normal form |
-//! | [`integral`] | what a caller hands in: phase, amplitude, contour |
+//! | [`integral`] | what a caller hands in: phase, amplitude, contour, derivatives in parameters |
 //! | [`saddles`] | where the saddles are |
 //! | [`field`] | the one API: plan once, evaluate at any wavenumber |
 //! | [`guide`] | the application: modes of a slowly varying guide through cut-off |

@@ -1,16 +1,8 @@
 //! Derivatives of integrals in their parameters: from one plan, against tables, closed forms and the yardstick.
 
-#[path = "support/random.rs"]
-#[allow(dead_code)]
-mod random;
-
-mod coverage;
-
-use coverage::Tally;
 use merging_saddles::integral::{Jet, Polynomial};
 use merging_saddles::special::cuspoid;
-use merging_saddles::{Complex64 as C, Contour, Error, Estimate, FieldGradient, Integral};
-use random::{Family, Random};
+use merging_saddles::{Complex64 as C, Contour, Error, FieldGradient, Integral};
 use std::f64::consts::PI;
 
 fn c(re: f64, im: f64) -> C {
@@ -21,12 +13,7 @@ const ZERO: C = C::new(0.0, 0.0);
 
 /// Every derivative is within its figure and the yardstick's of the yardstick, and the figure is below
 /// `bar` times the size of the gradient.
-fn agrees<const N: usize>(
-    label: &str,
-    got: &FieldGradient<N>,
-    exact: &FieldGradient<N>,
-    bar: f64,
-) {
+fn agrees<const N: usize>(label: &str, got: &FieldGradient<N>, exact: &FieldGradient<N>, bar: f64) {
     let pairs = got.gradient.iter().zip(&exact.gradient);
     let size = exact.gradient.iter().map(|e| e.value.norm()).fold(0.0, f64::max);
     for (j, (got, exact)) in pairs.chain([(&got.value, &exact.value)]).enumerate() {
@@ -72,11 +59,7 @@ fn bessel_functions_in_argument_and_order() {
             // Next to a zero of one derivative the others set the scale.
             let scale = 2.0 * PI * [j, dx / k, dn / k].iter().map(|v| v.abs()).fold(0.0, f64::max);
             let scale = if exact == j { scale } else { scale * k };
-            println!(
-                "k {k} x {x} n {n}: {:.1e}, figure {:.1e}",
-                error / scale,
-                got.error / scale
-            );
+            println!("k {k} x {x} n {n}: {:.1e}, figure {:.1e}", error / scale, got.error / scale);
             assert!(error <= got.error, "k {k} x {x} n {n}");
             assert!(got.error < if k < 50.0 { 1e-4 } else { 1e-10 } * scale);
             if k > 50.0 {
@@ -240,9 +223,8 @@ fn finite_ends_that_stay_and_ends_that_move() {
         let shifted = |t: f64| {
             let start = c(end + 1.5 * t, 0.0);
             let contour = Contour::starting_at([start, C::from_polar(4.0, PI / 6.0)]);
-            let integral =
-                Integral::new(move |z: C| (z * z * z / 3.0 - z * x, z * z - x), contour)
-                    .amplitude(|z: C| (z * 0.3).exp());
+            let integral = Integral::new(move |z: C| (z * z * z / 3.0 - z * x, z * z - x), contour)
+                .amplitude(|z: C| (z * 0.3).exp());
             integral.quadrature(k, 1e-14).expect("a yardstick").value
         };
         let difference = |h: f64| (shifted(h) - shifted(-h)) / (2.0 * h);
@@ -275,7 +257,7 @@ fn both_ends_moving() {
 fn named_poles_that_stay_and_poles_that_move() {
     // 1/(z - p) beside the saddle of z^2 and of a fold; p is the second parameter, so that dg/dp has a
     // double pole.
-    for p in [c(0.02, 0.05), c(-0.3, -0.2), c(1e-3, 1e-3), c(0.8, 0.6)] {
+    for p in [c(0.02, 0.05), c(-0.3, -0.2), c(1e-3, 2e-3), c(0.8, 0.6)] {
         for k in [10.0, 400.0, 2e4] {
             let integral = Integral::new(
                 |z: C| (z * z, z * 2.0),
@@ -290,7 +272,10 @@ fn named_poles_that_stay_and_poles_that_move() {
             agrees(&format!("pole {p} k {k}"), &got, &exact, 1e-6);
             let fold = Integral::new(
                 |z: C| (z * z * z / 3.0 - z * 1e-2, z * z - 1e-2),
-                Contour::through([C::from_polar(4.0, PI * 5.0 / 6.0), C::from_polar(4.0, PI / 6.0)]),
+                Contour::through([
+                    C::from_polar(4.0, PI * 5.0 / 6.0),
+                    C::from_polar(4.0, PI / 6.0),
+                ]),
             )
             .amplitude(move |z: C| (z - p).inv())
             .pole(p);
@@ -330,10 +315,12 @@ fn algebraic_ends() {
         let got = plan.at(k).expect("a value");
         let ratio = got.gradient[0].value / got.value.value;
         assert!((ratio + lambda / a).norm() < 1e-13);
-        agrees("Gamma", &got, &gradient.quadrature(k, 1e-13).expect("a yardstick"), 1e-10);
+        agrees("Gamma", &got, &gradient.quadrature(k, 1e-13).expect("a yardstick"), 1e-8);
     }
     // With a saddle near the end, both parameters of the phase, and the amplitude.
-    for (x, lambda, k) in [(0.3, 0.5, 20.0), (1e-3, 1.7, 300.0), (-0.4, 0.25, 60.0), (1.5, 0.6, 40.0)] {
+    for (x, lambda, k) in
+        [(0.3, 0.5, 20.0), (1e-3, 1.7, 300.0), (-0.4, 0.25, 60.0), (1.5, 0.6, 40.0)]
+    {
         let integral = Integral::new(
             move |t: C| (t * t - t * x, t * 2.0 - x),
             Contour::starting_at([ZERO, c(2.5, 2.5)]),
@@ -374,7 +361,9 @@ fn branch_points() {
 fn bad_input_is_refused() {
     let integral = cusp(0.1, -0.3);
     let plan = integral.gradient(|z: C| [z]).plan().expect("a plan");
-    assert!(plan.at(f64::NAN).is_err() && plan.at(-1.0).is_err() && plan.at_orders(9.0, 0).is_err());
+    assert!(
+        plan.at(f64::NAN).is_err() && plan.at(-1.0).is_err() && plan.at_orders(9.0, 0).is_err()
+    );
     let nan = integral.gradient(|_| [c(f64::NAN, 0.0)]);
     assert!(matches!(nan.plan(), Err(Error::NotFinite { .. })));
     assert!(nan.quadrature(9.0, 1e-9).is_err());
@@ -419,89 +408,45 @@ fn exponents_stay_apart() {
     assert_eq!(u.flux(), [0.0, 0.0]);
 }
 
-/// A closure of its own for each derivative.
-type Slopes = Box<dyn Fn(C) -> [C; 2]>;
-
-/// Random derivatives of the phase, and of the amplitude with simple and double poles where it has some.
-fn slopes(random: &mut Random, poles: &[C]) -> (Slopes, Slopes) {
-    let (a, b, d) = (random.disc(1.0), random.disc(1.0), random.disc(1.0));
-    let power = 1 + random.below(4) as i32;
-    let phase: Slopes = if random.chance(0.3) {
-        Box::new(move |z: C| [a + b * z, (z * 0.5).sinh() * d])
-    } else {
-        Box::new(move |z: C| [z, a + b * z + d * z.powi(power)])
-    };
-    let list: Vec<(C, C, C)> =
-        poles.iter().map(|&p| (p, random.disc(1.0), random.disc(1.0))).collect();
-    let (p, q) = (random.disc(1.0), random.disc(1.0));
-    let amplitude: Slopes = Box::new(move |z: C| {
-        let principal: C = list
-            .iter()
-            .map(|&(pole, simple, double)| {
-                let inverse = (z - pole).inv();
-                (double * inverse + simple) * inverse
-            })
-            .sum();
-        [p * z + principal, q]
-    });
-    (phase, amplitude)
-}
-
-fn run(family: &Family, seeds: std::ops::Range<u64>, tally: &mut Tally) {
-    for seed in seeds {
-        let case = family.case(seed);
-        let mut random = Random::new(seed ^ 0x5eed);
-        let (phase, amplitude) = slopes(&mut random, case.integral.poles());
-        let both = random.chance(0.5);
-        let (got, exact) = if both {
-            let gradient = case.integral.gradient(phase).amplitude(amplitude);
-            (gradient.plan().and_then(|p| p.at(case.k)), gradient.quadrature(case.k, 1e-13))
-        } else {
-            let gradient = case.integral.gradient(phase);
-            (gradient.plan().and_then(|p| p.at(case.k)), gradient.quadrature(case.k, 1e-13))
-        };
-        for j in 0..2 {
-            let of = |all: &Result<FieldGradient<2>, Error>| -> Result<Estimate, Error> {
-                all.clone().map(|u| u.gradient[j])
-            };
-            tally.enter(&format!("{} [{j}] both {both}", case.label), of(&got), of(&exact));
+#[test]
+fn nonsense_does_no_harm() {
+    // Derivatives that are not analytic, not finite or huge: a value with its figure or an error.
+    type Slope = fn(C) -> [C; 1];
+    let slopes: [Slope; 10] = [
+        |z| [z / 0.0],
+        |z| [if z.re > 0.3 { c(f64::NAN, 0.0) } else { z }],
+        |z| [z * 1e300],
+        |z| [z * 1e-300],
+        |_| [c(f64::INFINITY, 0.0)],
+        |z| [(z - 0.05).inv()],
+        |z| [(z - c(0.1, 0.2)).ln()],
+        |z| [(z * z + 0.01).sqrt()],
+        |z| [z.conj()],
+        |z| [(z * z * 40.0).exp()],
+    ];
+    let far = C::from_polar(4.0, PI / 6.0);
+    let phase = |z: C| (z * z * z / 3.0 - z * 0.2, z * z - 0.2);
+    let amplitude = |z: C| (z - c(0.3, 0.3)).inv();
+    let through = Contour::through([C::from_polar(4.0, PI * 5.0 / 6.0), far]);
+    let between = Contour::starting_at([c(0.4, 0.0), far]);
+    for slope in slopes {
+        for contour in [&through, &between] {
+            let named =
+                Integral::new(phase, contour.clone()).amplitude(amplitude).pole(c(0.3, 0.3));
+            let powered = Integral::new(phase, contour.clone());
+            let powered = if contour == &between { powered.power_at_start(0.4) } else { powered };
+            for k in [3.0, 300.0] {
+                let at = |plan: Result<merging_saddles::GradientPlan<1>, Error>| {
+                    if let Ok(u) = plan.and_then(|plan| plan.at(k)) {
+                        let [slope] = u.gradient;
+                        assert!(slope.scaled.is_finite() && !slope.relative_error.is_nan());
+                    }
+                };
+                at(named.gradient(slope).plan());
+                at(named.gradient(|z: C| [z]).amplitude(slope).plan());
+                at(powered.gradient(slope).plan());
+                at(powered.gradient(|z: C| [z]).amplitude(slope).plan());
+            }
         }
-    }
-}
-
-const FAMILIES: [(&Family, u64, f64); 9] = [
-    (&random::FEW_SADDLES, 100, 0.97),
-    (&random::MORE_SADDLES, 100, 0.93),
-    (&random::CLUSTERS, 100, 0.93),
-    (&random::ENTIRE, 50, 0.9),
-    (&random::ENDS, 60, 0.93),
-    (&random::ENDS_NEAR, 60, 0.93),
-    (&random::POLES, 60, 0.9),
-    (&random::UNNAMED, 30, 0.9),
-    (&random::MIXED, 30, 0.85),
-];
-
-#[test]
-fn random_gradients() {
-    for (family, count, answered) in FAMILIES {
-        let mut tally = Tally::default();
-        run(family, 0..count, &mut tally);
-        tally.check(family.name, answered);
-    }
-}
-
-/// Some five thousand integrals of the long run of `random_integrals`, with two derivatives each.
-#[test]
-#[ignore = "minutes; run in release"]
-fn thousands_of_gradients() {
-    let mut tallies = Vec::new();
-    for (family, count, answered) in FAMILIES {
-        let mut tally = Tally::default();
-        run(family, 10_000..10_000 + 9 * count, &mut tally);
-        tally.report(family.name);
-        tallies.push((tally, family.name, answered));
-    }
-    for (mut tally, name, answered) in tallies {
-        tally.check(name, answered);
     }
 }

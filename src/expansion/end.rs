@@ -130,8 +130,7 @@ impl NearEnd {
         let mut best: Option<(usize, usize, f64, _, _)> = None;
         for (index, boundary) in self.boundaries.iter().enumerate() {
             let ring = &series.rings()[boundary.ring];
-            let found =
-                || incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k);
+            let found = || incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k);
             let moments = match known.get_mut(index).filter(|_| index < self.common) {
                 Some(slot) => *slot.get_or_insert_with(found),
                 None => found(),

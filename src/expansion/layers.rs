@@ -74,8 +74,7 @@ impl Series {
         };
         let poles: Vec<_> = (0..layers.count).map(mapped).collect();
         let sampled = |form: &NormalForm, split: u32| {
-            let fill =
-                |z, values: &mut [Complex64]| layers.fill_powered(z, &self.powers, values);
+            let fill = |z, values: &mut [Complex64]| layers.fill_powered(z, &self.powers, values);
             Start::several(form, layers.count, fill, |n, u| part(&poles[n], split, u))
         };
         let mut list: Vec<Vec<Ring>> = vec![Vec::with_capacity(self.rings.len()); layers.count];
@@ -122,8 +121,7 @@ impl AlgebraicSeries {
     pub fn with_amplitudes(&self, layers: &Layers) -> Vec<AlgebraicSeries> {
         let sampled = |form: &BasedForm, power: Complex64, noise: &Based| {
             let fill = |z, values: &mut [Complex64]| layers.fill_powered(z, &self.powers, values);
-            let all =
-                BasedOrders::several(form, (self.lambda, power), layers.count, fill, noise);
+            let all = BasedOrders::several(form, (self.lambda, power), layers.count, fill, noise);
             let usable = |orders: Option<BasedOrders>| {
                 let decayed = orders.filter(|orders| orders.tail < WORST_TAIL);
                 decayed.unwrap_or_else(|| BasedOrders::unknown(noise))

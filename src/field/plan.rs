@@ -2,7 +2,9 @@
 
 use super::build::{Problem, attempt};
 use crate::estimate::Form;
-use crate::expansion::{AlgebraicSeries, Contribution, Known, Moments, NearEnd, Part, Pole, Series};
+use crate::expansion::{
+    AlgebraicSeries, Contribution, Known, Moments, NearEnd, Part, Pole, Series,
+};
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};

@@ -208,7 +208,11 @@ where
             if termination != Termination::Finite {
                 let remedy = "only a finite end can move: elsewhere the derivatives of phase and \
                               amplitude are all";
-                return Err(Error::Domain { what: "moving end that is not finite", value: at, remedy });
+                return Err(Error::Domain {
+                    what: "moving end that is not finite",
+                    value: at,
+                    remedy,
+                });
             }
             if self.integral.powers() != [1.0; 2] {
                 return Err(Error::Unsupported {

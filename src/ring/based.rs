@@ -83,9 +83,11 @@ impl BasedForm {
         form.settle(phase, 7).then_some(form)
     }
 
-    /// The same on a smaller ring: nothing new has to be found.
+    /// The same on a smaller ring: nothing new has to be found. The residual vanishes at the end point, so
+    /// it falls with the radius (Schwarz's lemma, textbook).
     pub fn shrunk(&self, factor: f64) -> BasedForm {
         let mut form = self.rescaled(factor);
+        form.residual *= factor;
         form.measure_tail();
         form
     }

@@ -115,6 +115,24 @@ impl Tally {
         }
     }
 
+    /// Part of the cases that is answered.
+    pub fn answered(&self) -> f64 {
+        self.answered as f64 / self.cases.max(1) as f64
+    }
+
+    /// Adds another's cases.
+    pub fn absorb(&mut self, other: Tally) {
+        self.cases += other.cases;
+        self.answered += other.answered;
+        self.refused += other.refused;
+        self.hopeless += other.hopeless;
+        self.unsure += other.unsure;
+        self.uncovered.extend(other.uncovered);
+        self.wrong.extend(other.wrong);
+        self.ratios.extend(other.ratios);
+        self.reasons.extend(other.reasons);
+    }
+
     pub fn check(&mut self, name: &str, answered: f64) {
         self.report(name);
         assert!(self.wrong.is_empty(), "{name}: wrong without warning");
