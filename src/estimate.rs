@@ -99,6 +99,22 @@ impl Estimate {
 /// The value of an integral and its derivatives in `N` parameters, each with its error figure. Given by
 /// [`GradientPlan::at`](crate::GradientPlan::at) and
 /// [`Gradient::quadrature`](crate::Gradient::quadrature).
+///
+/// ```
+/// use merging_saddles::{Complex64 as C, Contour, Integral};
+/// use std::f64::consts::PI;
+/// // u(a) = integral of exp(i k (z^2 + a z)) dz = (pi i/k)^(1/2) exp(-i k a^2/4) (Gauss; DLMF 7.7.3): the local
+/// // wavenumber in a is -k a/2 and the flux that times |u|^2 = pi/k.
+/// let (a, k) = (0.5, 300.0);
+/// let integral = Integral::new(
+///     |z: C| (z * z + z * a, z * 2.0 + a),
+///     Contour::through([C::new(-2.0, -2.0), C::new(2.0, 2.0)]),
+/// );
+/// let u = integral.gradient(|z: C| [z]).plan()?.at(k)?;
+/// assert!((u.local_wave_vector()[0] + 0.5 * k * a).abs() < 1e-10);
+/// assert!((u.flux()[0] + 0.5 * PI * a).abs() < 1e-12);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct FieldGradient<const N: usize> {
     /// `u`, the integral.
