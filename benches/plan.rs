@@ -1,4 +1,5 @@
-//! Cost of a plan, of one evaluation at several wavenumbers, and of the yardstick beside them.
+//! Cost of a plan, of one evaluation at several wavenumbers, of both with a gradient, and of the yardstick
+//! beside them.
 
 use criterion::{Criterion, criterion_group, criterion_main};
 use merging_saddles::integral::Polynomial;
@@ -33,6 +34,13 @@ fn fold(a: f64) -> Integral<impl Fn(Complex64) -> (Complex64, Complex64)> {
     )
 }
 
+/// A finite end next to the saddles of the cubic.
+fn ended() -> Integral<Polynomial> {
+    let cubic = cheap();
+    let far = Complex64::from_polar(3.0, PI / 6.0);
+    Integral::new(cubic.phase().clone(), Contour::starting_at([c(0.6, 0.0), far]))
+}
+
 fn plans(criterion: &mut Criterion) {
     let mut group = criterion.benchmark_group("plan");
     let integral = cheap();
@@ -41,6 +49,59 @@ fn plans(criterion: &mut Criterion) {
         let integral = fold(a);
         group.bench_function(format!("Bessel fold, a = {a}"), |b| {
             b.iter(|| integral.plan().map(|_| ()).is_ok());
+        });
+    }
+    group.finish();
+}
+
+/// Plans with one and two parameters of the phase, and with two of both; against the plan alone.
+fn gradients(criterion: &mut Criterion) {
+    let mut group = criterion.benchmark_group("plan with gradient");
+    let (cubic, fold, ended) = (cheap(), fold(0.3), ended());
+    let zero = c(0.0, 0.0);
+    group.bench_function("cubic, 1", |b| {
+        b.iter(|| cubic.gradient(|z: Complex64| [z]).plan().is_ok());
+    });
+    group.bench_function("cubic, 2", |b| {
+        b.iter(|| cubic.gradient(|z: Complex64| [z, z * z]).plan().is_ok());
+    });
+    group.bench_function("cubic, 2 of phase and amplitude", |b| {
+        let gradient =
+            cubic.gradient(|z: Complex64| [z, zero]).amplitude(|z: Complex64| [z * z, z * 0.5]);
+        b.iter(|| gradient.plan().is_ok());
+    });
+    group.bench_function("Bessel fold, a = 0.3, 2", |b| {
+        b.iter(|| fold.gradient(|z: Complex64| [z.sinh(), z]).plan().is_ok());
+    });
+    group.bench_function("cubic with an end, alone", |b| b.iter(|| ended.plan().is_ok()));
+    group.bench_function("cubic with an end, 1", |b| {
+        b.iter(|| ended.gradient(|z: Complex64| [z]).plan().is_ok());
+    });
+    group.finish();
+    let mut group = criterion.benchmark_group("at(k) with gradient");
+    if let (Ok(alone), Ok(one), Ok(two)) = (
+        fold.plan(),
+        fold.gradient(|z: Complex64| [z.sinh()]).plan(),
+        fold.gradient(|z: Complex64| [z.sinh(), z]).plan(),
+    ) {
+        for k in [10.0, 1e6] {
+            group.bench_function(format!("fold, k = {k}, alone"), |b| {
+                b.iter(|| alone.at(black_box(k)).map(|u| u.value));
+            });
+            group.bench_function(format!("fold, k = {k}, 1"), |b| {
+                b.iter(|| one.at(black_box(k)).map(|u| u.value.value));
+            });
+            group.bench_function(format!("fold, k = {k}, 2"), |b| {
+                b.iter(|| two.at(black_box(k)).map(|u| u.value.value));
+            });
+        }
+    }
+    if let (Ok(alone), Ok(one)) = (ended.plan(), ended.gradient(|z: Complex64| [z]).plan()) {
+        group.bench_function("end near a fold, k = 100, alone", |b| {
+            b.iter(|| alone.at(black_box(100.0)).map(|u| u.value));
+        });
+        group.bench_function("end near a fold, k = 100, 1", |b| {
+            b.iter(|| one.at(black_box(100.0)).map(|u| u.value.value));
         });
     }
     group.finish();
@@ -67,5 +128,5 @@ fn evaluations(criterion: &mut Criterion) {
     group.finish();
 }
 
-criterion_group!(benches, plans, evaluations);
+criterion_group!(benches, plans, gradients, evaluations);
 criterion_main!(benches);

@@ -1,6 +1,7 @@
 //! What every evaluation of an integral returns.
 
 use crate::Scaled;
+use crate::scaled::ldexp;
 use num_complex::Complex64;
 use std::ops::{Add, Neg, Sub};
 
@@ -92,6 +93,54 @@ impl Estimate {
         }
         let size = self.scaled.mantissa.norm() * self.relative_error;
         Scaled::new(Complex64::new(size, 0.0), self.scaled.exponent)
+    }
+}
+
+/// The value of an integral and its derivatives in `N` parameters, each with its error figure. Given by
+/// [`GradientPlan::at`](crate::GradientPlan::at) and
+/// [`Gradient::quadrature`](crate::Gradient::quadrature).
+///
+/// ```
+/// use merging_saddles::{Complex64 as C, Contour, Integral};
+/// use std::f64::consts::PI;
+/// // u(a) = integral of exp(i k (z^2 + a z)) dz = (pi i/k)^(1/2) exp(-i k a^2/4) (Gauss; DLMF 7.7.3): the local
+/// // wavenumber in a is -k a/2 and the flux that times |u|^2 = pi/k.
+/// let (a, k) = (0.5, 300.0);
+/// let integral = Integral::new(
+///     |z: C| (z * z + z * a, z * 2.0 + a),
+///     Contour::through([C::new(-2.0, -2.0), C::new(2.0, 2.0)]),
+/// );
+/// let u = integral.gradient(|z: C| [z]).plan()?.at(k)?;
+/// assert!((u.local_wave_vector()[0] + 0.5 * k * a).abs() < 1e-10);
+/// assert!((u.flux()[0] + 0.5 * PI * a).abs() < 1e-12);
+/// # Ok::<(), merging_saddles::Error>(())
+/// ```
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct FieldGradient<const N: usize> {
+    /// `u`, the integral.
+    pub value: Estimate,
+    /// `du/dx_j`.
+    pub gradient: [Estimate; N],
+}
+
+impl<const N: usize> FieldGradient<N> {
+    /// `Im(conj(u) du/dx_j)`: with places as parameters the flux of a scalar wave, up to the constant
+    /// of its equation. Off by `|u| e_j + |du/dx_j| e` at most, `e` and `e_j` the error figures.
+    pub fn flux(&self) -> [f64; N] {
+        let along = self.value.scaled.conj();
+        self.gradient.map(|slope| (along * slope.scaled).to_complex().im)
+    }
+
+    /// `Im((du/dx_j)/u)`: the derivatives of the phase of `u`. With places as parameters this is the local
+    /// wave vector, and its direction that of the beam, also where the flux underflows; NaN at a zero of
+    /// `u`.
+    pub fn local_wave_vector(&self) -> [f64; N] {
+        let u = self.value.scaled;
+        let over = |slope: &Estimate| {
+            let ratio = slope.scaled.mantissa / u.mantissa;
+            ldexp(ratio.im, slope.scaled.exponent.saturating_sub(u.exponent))
+        };
+        std::array::from_fn(|j| over(&self.gradient[j]))
     }
 }
 

@@ -47,7 +47,7 @@
 //! | --- | --- |
 //! | [`special`] | functions of numbers: Airy functions and canonical integrals |
 //! | [`ring`] | the numerical core: analytic functions on a circle, division, normal form |
-//! | [`integral`] | what a caller hands in: phase, amplitude, contour |
+//! | [`integral`] | what a caller hands in: phase, amplitude, contour, derivatives in parameters |
 //! | [`saddles`] | where the saddles are |
 //! | [`field`] | the one API: plan once, evaluate at any wavenumber |
 //! | [`guide`] | the application: modes of a slowly varying guide through cut-off |
@@ -69,8 +69,8 @@ mod scaled;
 pub mod special;
 
 pub use error::Error;
-pub use estimate::{Estimate, Form};
-pub use field::Plan;
-pub use integral::{Contour, Integral, Phase};
+pub use estimate::{Estimate, FieldGradient, Form};
+pub use field::{GradientPlan, Plan};
+pub use integral::{Contour, Gradient, Integral, Phase};
 pub use num_complex::{self, Complex64};
 pub use scaled::Scaled;

@@ -41,12 +41,17 @@ const SMALLEST: f64 = 0.15;
 /// The error of the moments, relative to their parts.
 const ROUNDING: f64 = 8e-15;
 
-/// An amplitude with the powers of algebraic ends, each continued from a point off its end.
+/// An amplitude with the powers of algebraic ends.
 pub(crate) struct Powered<'a> {
     pub amplitude: &'a dyn Amplitude,
-    factors: Vec<Factor>,
+    pub powers: Powers,
 }
 
+/// The powers of algebraic ends, each continued from a point off its end.
+#[derive(Clone, Default)]
+pub(crate) struct Powers(Vec<Factor>);
+
+#[derive(Clone)]
 struct Factor {
     base: Complex64,
     /// The point from which the power is continued, seen from the end, and its logarithm.
@@ -75,39 +80,59 @@ impl<'a> Powered<'a> {
                 }
             })
             .collect();
-        Powered { amplitude, factors }
+        Powered { amplitude, powers: Powers(factors) }
     }
 
     /// The amplitude itself if there is no power.
     pub fn simplest(&self) -> &dyn Amplitude {
-        if self.factors.is_empty() { self.amplitude } else { self }
+        if self.powers.0.is_empty() { self.amplitude } else { self }
     }
 }
 
-impl Amplitude for Powered<'_> {
-    fn value(&self, z: Complex64) -> Complex64 {
-        self.factors.iter().fold(self.amplitude.value(z), |product, f| {
+impl Powers {
+    /// `product` times all powers.
+    pub fn times(&self, z: Complex64, product: Complex64) -> Complex64 {
+        self.0.iter().fold(product, |product, f| {
             let logarithm = ((z - f.base) / f.centre).ln() + f.logarithm;
             product * f.constant * (logarithm * f.exponent).exp()
         })
     }
 }
 
-struct Ring {
-    form: BasedForm,
-    orders: BasedOrders,
-    filling: f64,
+impl Amplitude for Powered<'_> {
+    fn value(&self, z: Complex64) -> Complex64 {
+        self.powers.times(z, self.amplitude.value(z))
+    }
+}
+
+#[derive(Clone)]
+pub(super) struct Ring {
+    pub form: BasedForm,
+    pub orders: BasedOrders,
+    pub filling: f64,
+    /// The value of `(dz/du)^(lambda - 1)` at the end.
+    pub power: Complex64,
+}
+
+impl Ring {
+    /// The same with another amplitude, perhaps on a smaller ring.
+    pub fn with_orders(&self, form: &BasedForm, filling: f64, orders: BasedOrders) -> Ring {
+        Ring { form: form.clone(), orders, filling, power: self.power }
+    }
 }
 
 /// Paths from the end to valleys: valley number, weight with its sheet's factor.
 type Paths = Vec<(i32, Complex64)>;
 
 /// An algebraic end on rings about it.
+#[derive(Clone)]
 pub(crate) struct AlgebraicSeries {
-    lambda: f64,
+    pub(super) lambda: f64,
     /// `Gamma(lambda) i^lambda`, where no saddle is near.
     gamma: Complex64,
-    rings: Vec<Ring>,
+    pub(super) rings: Vec<Ring>,
+    /// The power of the other end.
+    pub(super) powers: Powers,
     reference: usize,
     /// The end's own descent.
     own: Paths,
@@ -177,7 +202,7 @@ impl AlgebraicSeries {
             let power = branch.constant * (logarithm * (branch.lambda - 1.0)).exp();
             let orders = BasedOrders::new(&form, &smooth, branch.lambda, power)?;
             let filling = form.filling();
-            Some(Ring { form, orders, filling })
+            Some(Ring { form, orders, filling, power })
         };
         let tail = |ring: &Ring| ring.orders.tail.max(ring.form.tail());
         let mut reach = reach;
@@ -227,6 +252,7 @@ impl AlgebraicSeries {
             lambda: branch.lambda,
             gamma: Ways::new(&[], branch.lambda, 1.0)?.toward(0)?.values[0],
             rings,
+            powers: smooth.powers.clone(),
             reference,
             own: Vec::new(),
             rest: Vec::new(),
@@ -256,6 +282,11 @@ impl AlgebraicSeries {
             }
         }
         Some(series)
+    }
+
+    /// The same with other orders on its rings.
+    pub(super) fn with_rings(&self, rings: Vec<Ring>) -> AlgebraicSeries {
+        AlgebraicSeries { rings, ..self.clone() }
     }
 
     /// How the contour leaves the end, from the ring without a saddle.

@@ -14,7 +14,7 @@
 
 use super::end_pole::{ascent_in_ring, with_pole};
 use super::figure::Parts;
-use super::incomplete::incomplete;
+use super::incomplete::{Incomplete, incomplete};
 use super::pole::Pole;
 use super::series::{Contribution, Series};
 use super::unfolding::Unfolding;
@@ -24,10 +24,14 @@ use crate::ring::{MAX_ORDERS, NormalForm, preimage};
 use crate::saddles::Topology;
 use num_complex::Complex64;
 
+/// Incomplete integrals that may have been asked for and may exist.
+pub(crate) type Known = Option<Option<Incomplete>>;
+
 /// An end point must lie within this part of a ring.
 const INSIDE: f64 = 0.9;
 
 /// The boundary terms of one ring.
+#[derive(Clone)]
 struct Boundary {
     ring: usize,
     u: Complex64,
@@ -39,10 +43,13 @@ struct Boundary {
 }
 
 /// An end point as seen from the rings of one cluster.
+#[derive(Clone)]
 pub(crate) struct NearEnd {
     /// The cluster: an index into the plan's nodes.
     pub node: usize,
+    /// Those that belong to all amplitudes come first.
     boundaries: Vec<Boundary>,
+    common: usize,
     value: Complex64,
     noise_scale: f64,
     sign: f64,
@@ -86,6 +93,7 @@ impl NearEnd {
         }
         (!boundaries.is_empty()).then(|| NearEnd {
             node,
+            common: boundaries.len(),
             boundaries,
             value: phase.value(e),
             noise_scale: phase.noise_scale(e),
@@ -93,17 +101,45 @@ impl NearEnd {
         })
     }
 
+    /// The same for the series of another amplitude on the same `rings` rings and perhaps on smaller
+    /// ones after them. Those hold all saddles, so the descent leaves them through the same valley.
+    pub fn for_series(&self, series: &Series, rings: usize) -> NearEnd {
+        let mut near = self.clone();
+        for boundary in &mut near.boundaries {
+            let ring = &series.rings()[boundary.ring];
+            boundary.terms = ring.start.boundary(&ring.form, boundary.u / ring.form.radius());
+        }
+        if let Some(innermost) = self.boundaries.iter().find(|boundary| boundary.ring == 0) {
+            for (index, ring) in series.rings().iter().enumerate().skip(rings) {
+                let v = innermost.u / ring.form.radius();
+                if v.norm() <= INSIDE {
+                    let (terms, noise) = ring.orders.boundary(&ring.form, &ring.start, v);
+                    let inner = innermost.clone();
+                    near.boundaries.push(Boundary { ring: index, terms, noise, ..inner });
+                }
+            }
+        }
+        near
+    }
+
     /// The contribution at wavenumber `k` with at most `orders` orders; None if the descent inside
-    /// the ring did not arrive.
-    pub fn at(&self, series: &Series, k: f64, orders: usize) -> Option<Contribution> {
+    /// the ring did not arrive. `known` keeps incomplete integrals for other amplitudes.
+    pub fn at(
+        &self,
+        series: &Series,
+        k: f64,
+        orders: usize,
+        known: &mut [Known],
+    ) -> Option<Contribution> {
         let mut best: Option<(usize, usize, f64, _, _)> = None;
         for (index, boundary) in self.boundaries.iter().enumerate() {
             let ring = &series.rings()[boundary.ring];
-            let Some(moments) =
-                incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k)
-            else {
-                continue;
+            let found = || incomplete(&Unfolding::new(&ring.form), boundary.u, boundary.valley, k);
+            let moments = match known.get_mut(index).filter(|_| index < self.common) {
+                Some(slot) => *slot.get_or_insert_with(found),
+                None => found(),
             };
+            let Some(moments) = moments else { continue };
             let mut parts = Parts::of_ring(ring, &moments.values.map(|c| c.norm()), k, orders);
             let mut power = 1.0 / k;
             for n in 0..MAX_ORDERS {

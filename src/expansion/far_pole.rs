@@ -43,6 +43,7 @@ pub(super) fn far_pole(
         simple: pole.simple,
         double: pole.double / stretch,
         noise: (pole.noise.0, pole.noise.1 / stretch.norm()),
+        slope: stretch,
         blur: 2.0
             * f64::EPSILON
             * (v.norm() * form.radius() + (pole.noise_scale + form.level().norm()) / slope.norm()),

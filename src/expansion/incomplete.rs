@@ -41,6 +41,7 @@ const STRAIGHT: [f64; 2] = [0.9, 0.7];
 pub(super) const FLOOR: f64 = 42.0;
 
 /// Incomplete moments with a bound on the error of each.
+#[derive(Clone, Copy)]
 pub(crate) struct Incomplete {
     pub values: [Complex64; MAX_SADDLES],
     pub errors: [f64; MAX_SADDLES],

@@ -8,11 +8,14 @@ mod end_pole;
 mod far_pole;
 mod figure;
 mod incomplete;
+mod layers;
 mod pole;
 mod series;
 mod unfolding;
 
 pub(crate) use algebraic::{AlgebraicSeries, Part, Powered};
-pub(crate) use end::NearEnd;
+pub(crate) use canonical::Moments;
+pub(crate) use end::{Known, NearEnd};
+pub(crate) use layers::{Layer, Layers};
 pub(crate) use pole::Pole;
 pub(crate) use series::{Contribution, Given, Series};

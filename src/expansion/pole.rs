@@ -36,6 +36,8 @@ pub(crate) struct Pole {
     pub double: Complex64,
     /// Rounding errors of the two.
     pub noise: (f64, f64),
+    /// Of the circle that they were measured on.
+    pub radius: f64,
     /// `f` and `f'` there.
     pub value: Complex64,
     pub slope: Complex64,
@@ -65,7 +67,7 @@ impl Pole {
             let principal = |n: usize| values[POINTS - n];
             // Between the two orders that are covered and the far end of the Taylor half.
             let rest = values[KEPT * 3 / 4..POINTS - 2].iter().fold(0.0f64, |m, c| m.max(c.norm()));
-            if size.is_finite() && rest < 1e-14 * size {
+            if size.is_finite() && rest <= 1e-14 * size {
                 let (value, slope) = phase.value_and_derivative(z);
                 let noise = 4.0 * f64::EPSILON * size * radius;
                 return Ok(Pole {
@@ -73,6 +75,7 @@ impl Pole {
                     simple: principal(1) * radius,
                     double: principal(2) * (radius * radius),
                     noise: (noise, noise * radius),
+                    radius,
                     value,
                     slope,
                     crossings: 0,
@@ -112,6 +115,8 @@ pub(crate) struct MappedPole {
     pub simple: Complex64,
     pub double: Complex64,
     pub(super) noise: (f64, f64),
+    /// `dz/du` there.
+    pub(super) slope: Complex64,
     /// Rounding error of `u`.
     pub(super) blur: f64,
     pub(super) ridge: usize,
@@ -139,9 +144,20 @@ impl MappedPole {
             simple: pole.simple,
             double: pole.double / slope,
             noise: (pole.noise.0, pole.noise.1 / slope.norm()),
+            slope,
             blur: 2.0 * f64::EPSILON * (v.norm() * form.radius() + pole.z.norm() / slope.norm()),
             ridge,
         })
+    }
+
+    /// The same pole of another amplitude.
+    pub fn with_part_of(&self, pole: &Pole) -> MappedPole {
+        MappedPole {
+            simple: pole.simple,
+            double: pole.double / self.slope,
+            noise: (pole.noise.0, pole.noise.1 / self.slope.norm()),
+            ..*self
+        }
     }
 
     /// Whether the ring keeps its distance from it.

@@ -4,6 +4,7 @@
 //! Taylor tails decay. Small rings resolve better, large ones pass on less rounding noise: several
 //! are kept and the one with the least error figure is taken at each wavenumber.
 
+use super::algebraic::Powers;
 use super::canonical::Moments;
 use super::far_pole::far_pole;
 use super::figure::Parts;
@@ -21,9 +22,9 @@ const RATIO: f64 = 1.4;
 /// Rings that are tried at most.
 const TRIED: usize = 30;
 /// Mapped saddles must lie within this part of the ring.
-const FILLING: f64 = 0.9;
+pub(super) const FILLING: f64 = 0.9;
 /// Tails beyond which a ring is of no use.
-const WORST_TAIL: f64 = 1e-5;
+pub(super) const WORST_TAIL: f64 = 1e-5;
 /// No ring is enlarged once `k R^(K+2)` is beyond this at the least wavenumber: nothing is gained there,
 /// and the rounding error of `A` grows with it.
 const LARGEST: f64 = 80.0;
@@ -43,7 +44,7 @@ const CLEAN: f64 = 1e-12;
 /// A form with tails below this is worth bringing to a smaller ring.
 const HOLDS: f64 = 1e-3;
 /// Times that the first ring may be made smaller.
-const FIRST: usize = 16;
+pub(super) const FIRST: usize = 16;
 /// The last first rings that are tried, relative to the least one.
 const TIGHT: [f64; 3] = [1.0, 0.92, 0.86];
 /// Branch points must lie beyond this part of a ring.
@@ -132,7 +133,8 @@ impl Trial {
 }
 
 /// A ring that is kept.
-pub(super) struct Ring {
+#[derive(Clone)]
+pub(crate) struct Ring {
     pub form: NormalForm,
     pub start: Start,
     pub orders: Orders,
@@ -155,13 +157,16 @@ pub(crate) struct Given<'a> {
 }
 
 /// One cluster or end point, ready for any wavenumber.
+#[derive(Clone)]
 pub(crate) struct Series {
-    rings: Vec<Ring>,
+    pub(super) rings: Vec<Ring>,
+    /// The powers of algebraic ends in the amplitude.
+    pub(super) powers: Powers,
     /// A small ring for the topology.
     inner: NormalForm,
     /// The ring whose normal form left the smallest residual: `A` and `x_m` are taken from it.
     reference: usize,
-    poles: Vec<Option<MappedPole>>,
+    pub(super) poles: Vec<Option<MappedPole>>,
     m: Multiplicities,
     /// The same sheet by sheet with the factor of each, where an end of the contour is algebraic.
     sheets: Vec<(Complex64, Multiplicities)>,
@@ -209,6 +214,16 @@ impl Contribution {
             size: self.size + other.size,
             error: self.error + other.error,
             orders: self.orders.max(other.orders),
+        }
+    }
+
+    pub fn times(&self, factor: Complex64) -> Contribution {
+        let size = factor.norm();
+        Contribution {
+            value: self.value * factor,
+            size: self.size * size,
+            error: self.error * size,
+            orders: self.orders,
         }
     }
 }
@@ -296,6 +311,7 @@ impl Series {
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
         Some(Series {
             rings,
+            powers: Powers::default(),
             inner,
             reference,
             poles,
@@ -306,9 +322,27 @@ impl Series {
         })
     }
 
+    /// The same with other starts on its rings.
+    pub(super) fn with_rings(&self, rings: Vec<Ring>, poles: Vec<Option<MappedPole>>) -> Series {
+        Series {
+            rings,
+            poles,
+            powers: self.powers.clone(),
+            inner: self.inner.clone(),
+            sheets: self.sheets.clone(),
+            ..*self
+        }
+    }
+
     /// The normal form on a small ring.
     pub fn form(&self) -> &NormalForm {
         &self.inner
+    }
+
+    /// Sets the powers of algebraic ends that the amplitude has.
+    pub fn with_powers(mut self, powers: &Powers) -> Self {
+        self.powers = powers.clone();
+        self
     }
 
     /// Sets what the contour makes of the cluster.
@@ -340,8 +374,9 @@ impl Series {
         degree == 1 || uneven(&self.m) || self.sheets.iter().any(|(_, m)| uneven(m))
     }
 
-    /// The canonical integrals.
-    fn moments(&self, phi: &Unfolding, k: f64) -> Option<Moments> {
+    /// The canonical integrals at wavenumber `k`: the same for all amplitudes.
+    pub fn moments(&self, k: f64) -> Option<Moments> {
+        let phi = &Unfolding::new(&self.rings[self.reference].form);
         let Some(((factor, m), more)) = self.sheets.split_first() else {
             return Moments::new(phi, &self.m, k);
         };
@@ -363,8 +398,13 @@ impl Series {
 
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
+        self.summed(k, orders, &self.moments(k))
+    }
+
+    /// The same with the canonical integrals at hand.
+    pub fn summed(&self, k: f64, orders: usize, moments: &Option<Moments>) -> Contribution {
+        let Some(moments) = moments else { return Contribution::UNKNOWN };
         let phi = Unfolding::new(&self.rings[self.reference].form);
-        let Some(moments) = self.moments(&phi, k) else { return Contribution::UNKNOWN };
         let sizes = moments.values.map(|c| c.norm());
         let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
             let residual = ring.form.residual();
@@ -413,7 +453,7 @@ impl Series {
         &self.poles
     }
 
-    pub(super) fn rings(&self) -> &[Ring] {
+    pub fn rings(&self) -> &[Ring] {
         &self.rings
     }
 }

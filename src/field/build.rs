@@ -80,7 +80,8 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             let given =
                 Given { least, phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
             let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
-            ends.push(End { at, sign, own: own.map(|own| own.with_sign(sign)), near: Vec::new() });
+            let own = own.map(|own| own.with_sign(sign).with_powers(&powered.powers));
+            ends.push(End { at, sign, own, near: Vec::new() });
         }
     }
 
@@ -171,22 +172,19 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         let [_, _, second] = phase.jet(saddle.z);
         let power: f64 =
             branches.iter().map(|b| (saddle.z - b.base).norm().powf(b.lambda - 1.0)).product();
-        let size = amplitude.value(saddle.z).norm() * power;
-        let mut weight = size * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
+        let spread = power * (2.0 * std::f64::consts::PI / second.norm()).sqrt();
         let mut together = [f64::INFINITY; MAX_SADDLES - 1];
         let holding = plan.nodes.iter().filter(|node| node.members >> index & 1 == 1);
         for form in holding.filter_map(|node| Some(node.series.as_ref()?.form())) {
             if form.saddles() > 1 {
                 // Canonical integrals are of order one where u ~ k^(-1/D).
                 let stretch = form.map()[1].norm() / form.radius();
-                together[form.saddles() - 2] = 3.0 * size * stretch;
+                together[form.saddles() - 2] = 3.0 * power * stretch;
             }
         }
-        if !weight.is_finite() && together.iter().all(|w| !w.is_finite()) {
-            weight = 0.0;
-        }
         let exponent = Complex64::new(0.0, 1.0) * saddle.value;
-        plan.saddles.push(Place { z: saddle.z, exponent, weight, together });
+        let weight = amplitude.value(saddle.z).norm();
+        plan.saddles.push(Place { z: saddle.z, exponent, weight, spread, together });
     }
     Ok(plan)
 }
@@ -301,7 +299,7 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
         if series.contributes() {
             reach.include(highest(group), lowest(group));
         }
-        nodes[index].series = Some(series);
+        nodes[index].series = Some(series.with_powers(&powered.powers));
         nodes[index].settled = true;
     }
     // Saddles without an expansion, alone or with others, are refused near the contour. Far from it they

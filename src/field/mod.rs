@@ -3,6 +3,8 @@
 mod algebraic;
 mod build;
 mod explain;
+mod gradient;
 mod plan;
 
+pub use gradient::GradientPlan;
 pub use plan::Plan;

@@ -2,7 +2,9 @@
 
 use super::build::{Problem, attempt};
 use crate::estimate::Form;
-use crate::expansion::{AlgebraicSeries, Contribution, NearEnd, Part, Pole, Series};
+use crate::expansion::{
+    AlgebraicSeries, Contribution, Known, Moments, NearEnd, Part, Pole, Series,
+};
 use crate::integral::{Amplitude, Integral, Phase};
 use crate::ring::MAX_SADDLES;
 use crate::saddles::Group;
@@ -53,14 +55,23 @@ pub(super) struct End {
 
 impl End {
     /// The form with the smaller error figure.
-    fn at(&self, nodes: &[Node], k: f64, orders: usize) -> Contribution {
+    fn at(
+        &self,
+        nodes: &[Node],
+        k: f64,
+        orders: usize,
+        mut known: Option<&mut [[Known; BOUNDARIES]; NEAR]>,
+    ) -> Contribution {
         let mut best = self.own.as_ref().map(|own| own.at(k, orders));
-        for near in &self.near {
+        for (index, near) in self.near.iter().enumerate() {
             // The incomplete integrals cost more: not where the plain series is as good as can be.
             if best.is_some_and(|b| b.is_sharp()) {
                 break;
             }
-            let found = nodes[near.node].series.as_ref().and_then(|s| near.at(s, k, orders));
+            let known = known.as_mut().and_then(|known| known.get_mut(index));
+            let known: &mut [Known] = known.map_or(&mut [], |known| known);
+            let series = nodes[near.node].series.as_ref();
+            let found = series.and_then(|series| near.at(series, k, orders, known));
             if let Some(found) = found.filter(|f| best.is_none_or(|b| below(f.error, b.error))) {
                 best = Some(found);
             }
@@ -90,9 +101,11 @@ pub(super) struct Place {
     pub z: Complex64,
     /// `i f`.
     pub exponent: Complex64,
-    /// The size of its leading term without the power of `k`: the lower term at a Stokes line. Alone, with
-    /// `k^(-1/2)`, and as one of a fold, .., butterfly, with `k^(-1/D)`, `D` = 3 to 6.
+    /// `|g|`.
     pub weight: f64,
+    /// The size of its leading term, without `g` and the power of `k`: the lower term at a Stokes line.
+    /// Alone, with `k^(-1/2)`, and as one of a fold, .., butterfly, with `k^(-1/D)`, `D` = 3 to 6.
+    pub spread: f64,
     pub together: [f64; MAX_SADDLES - 1],
 }
 
@@ -100,7 +113,8 @@ impl Place {
     /// The size of its leading term: where saddles are merged each alone would seem too large.
     fn size(&self, k: f64) -> Scaled {
         let sizes = self.together.iter().zip(3i32..).map(|(w, d)| w * k.powf(-1.0 / f64::from(d)));
-        let size = sizes.fold(self.weight / k.sqrt(), f64::min);
+        let size = self.weight * sizes.fold(self.spread / k.sqrt(), f64::min);
+        let size = if size.is_finite() { size } else { 0.0 };
         Scaled::exp(Complex64::new(k * self.exponent.re, 0.0)) * size
     }
 }
@@ -239,13 +253,32 @@ impl Plan {
     /// # Errors
     /// As [`Plan::at`], and if `orders` is zero.
     pub fn at_orders(&self, k: f64, orders: usize) -> Result<Estimate, Error> {
+        Plan::check(k, orders)?;
+        let (total, form) = self.total(k, orders, None);
+        finish(&total, total.size, form, k)
+    }
+
+    /// Refuses wavenumbers and numbers of orders that mean nothing.
+    pub(super) fn check(k: f64, orders: usize) -> Result<(), Error> {
         Error::require_positive("wavenumber k", k)?;
         if orders == 0 {
             return Err(Error::domain("orders", 0.0, "keep one order or more"));
         }
+        Ok(())
+    }
+
+    /// The sum of all contributions, without a judgement; `shared` holds the canonical integrals for
+    /// other amplitudes on the same rings.
+    pub(super) fn total(
+        &self,
+        k: f64,
+        orders: usize,
+        mut shared: Option<&mut Shared>,
+    ) -> (Contribution, Form) {
         let mut total = Contribution::NONE;
-        for end in &self.ends {
-            total = total.and(&end.at(&self.nodes, k, orders));
+        for (index, end) in self.ends.iter().enumerate() {
+            let known = shared.as_mut().and_then(|shared| shared.ends.get_mut(index));
+            total = total.and(&end.at(&self.nodes, k, orders, known));
         }
         for end in &self.algebraic {
             total = total.and(&end.at(k, orders));
@@ -263,7 +296,10 @@ impl Plan {
                     return Choice::NONE;
                 }
                 Choice {
-                    part: series.at(k, orders),
+                    part: match &mut shared {
+                        Some(shared) => series.summed(k, orders, shared.moments(index, series, k)),
+                        None => series.at(k, orders),
+                    },
                     clusters: 1,
                     largest: series.saddles(),
                     as_whole: true,
@@ -291,7 +327,7 @@ impl Plan {
         }
         total.error = total.error + Scaled::exp(Complex64::new(k * self.floor, 0.0));
         let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
-        finish(total, form, k)
+        (total, form)
     }
 
     /// What a group adds, by the rings about an algebraic end near it.
@@ -366,14 +402,41 @@ impl Choice {
 }
 
 /// Whether one error is below another.
-fn below(a: Scaled, b: Scaled) -> bool {
+pub(super) fn below(a: Scaled, b: Scaled) -> bool {
     a.ln_norm() < b.ln_norm()
 }
 
-/// Refuses what has no correct digit: an error as large as all contributions together.
-fn finish(total: Contribution, form: Form, k: f64) -> Result<Estimate, Error> {
+/// Groups near one end and rings of each whose incomplete integrals are kept.
+const NEAR: usize = 3;
+const BOUNDARIES: usize = 12;
+
+/// Canonical integrals at one wavenumber, as far as they have been asked for: by node the complete ones,
+/// by end, group and ring the incomplete ones.
+pub(super) struct Shared {
+    nodes: [Option<Option<Moments>>; MAX_GROUPS],
+    ends: [[[Known; BOUNDARIES]; NEAR]; 2],
+}
+
+impl Shared {
+    pub fn new() -> Shared {
+        Shared { nodes: [None; MAX_GROUPS], ends: [[[None; BOUNDARIES]; NEAR]; 2] }
+    }
+
+    fn moments(&mut self, node: usize, series: &Series, k: f64) -> &Option<Moments> {
+        self.nodes[node].get_or_insert_with(|| series.moments(k))
+    }
+}
+
+/// Refuses what has no correct digit: an error as large as all contributions together, whose size is
+/// about `size`.
+pub(super) fn finish(
+    total: &Contribution,
+    size: Scaled,
+    form: Form,
+    k: f64,
+) -> Result<Estimate, Error> {
     let finite = total.value.is_finite() && total.error.is_finite();
-    if !finite || (!total.size.is_zero() && !below(total.error, total.size)) {
+    if !finite || (!size.is_zero() && !below(total.error, size)) {
         return Err(Error::Undecided {
             reason: format!("at k = {k} the expansion's error figure is as large as its value"),
             remedy: "use `quadrature` at this wavenumber",

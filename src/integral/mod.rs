@@ -7,11 +7,14 @@ use crate::Error;
 use num_complex::Complex64;
 
 mod contour;
+mod gradient;
 mod jet;
 mod phase;
 mod root;
 
 pub use contour::{Contour, Termination};
+pub(crate) use gradient::MovingEnd;
+pub use gradient::{Fixed, Gradient, ParameterDerivatives};
 pub use jet::{Formula, Jet};
 pub use phase::{Amplitude, Phase, Polynomial, Unit, ValueOnly};
 pub use root::{OverRoot, RootAmplitude, RootPhase};

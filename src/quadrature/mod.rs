@@ -7,6 +7,7 @@
 //! against it, point by point, by the person who uses it.
 
 mod flow;
+mod gradient;
 mod panels;
 mod residue;
 mod rule;

@@ -79,6 +79,20 @@ impl BasedForm {
 
     /// The same on a ring `factor` times as large.
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<BasedForm> {
+        let mut form = self.rescaled(factor);
+        form.settle(phase, 7).then_some(form)
+    }
+
+    /// The same on a smaller ring: nothing new has to be found. The residual vanishes at the end point, so
+    /// it falls with the radius (Schwarz's lemma, textbook).
+    pub fn shrunk(&self, factor: f64) -> BasedForm {
+        let mut form = self.rescaled(factor);
+        form.residual *= factor;
+        form.measure_tail();
+        form
+    }
+
+    fn rescaled(&self, factor: f64) -> BasedForm {
         let mut form = self.clone();
         form.radius *= factor;
         let mut power = 1.0;
@@ -89,7 +103,13 @@ impl BasedForm {
             }
             power *= factor;
         }
-        form.settle(phase, 7).then_some(form)
+        form
+    }
+
+    fn measure_tail(&mut self) {
+        let mut full = [ZERO; POINTS];
+        full[..KEPT].copy_from_slice(&self.map);
+        self.tail = tail(&full, 1, 0.0);
     }
 
     fn settle(&mut self, phase: &dyn Phase, limit: usize) -> bool {
@@ -135,9 +155,7 @@ impl BasedForm {
                 return false;
             }
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
-                let mut full = [ZERO; POINTS];
-                full[..KEPT].copy_from_slice(&self.map);
-                self.tail = tail(&full, 1, 0.0);
+                self.measure_tail();
                 return true;
             }
             last_step = step;
@@ -224,11 +242,14 @@ impl BasedForm {
     }
 }
 
+/// `p_j^(n)` at index `n`, `j`.
+pub(crate) type Based = [[Complex64; MAX_DEGREE]; MAX_ORDERS];
+
 /// The coefficients of the expansion on one ring, with what its error figure needs.
 #[derive(Clone, Debug)]
 pub(crate) struct BasedOrders {
-    p: [[Complex64; MAX_DEGREE]; MAX_ORDERS],
-    noise: [[Complex64; MAX_DEGREE]; MAX_ORDERS],
+    p: Based,
+    noise: Based,
     /// `max |G_0|`.
     pub size: f64,
     pub tail: f64,
@@ -243,6 +264,19 @@ impl BasedOrders {
         lambda: f64,
         power: Complex64,
     ) -> Option<BasedOrders> {
+        let fill = |z, values: &mut [Complex64]| values[0] = amplitude.value(z);
+        let noise = BasedOrders::unit(form, lambda);
+        BasedOrders::several(form, (lambda, power), 1, fill, &noise).pop()?
+    }
+
+    /// The same for several amplitudes sampled together; `noise` as in [`BasedOrders::noises`].
+    pub fn several(
+        form: &BasedForm,
+        (lambda, power): (f64, Complex64),
+        count: usize,
+        fill: impl Fn(Complex64, &mut [Complex64]),
+        noise: &Based,
+    ) -> Vec<Option<BasedOrders>> {
         let slope: Coefficients = std::array::from_fn(|n| {
             if n + 1 < KEPT { form.map[n + 1] * ((n + 1) as f64 / form.radius) } else { ZERO }
         });
@@ -250,24 +284,42 @@ impl BasedOrders {
         let first = form.map[1];
         let ratio: Coefficients =
             std::array::from_fn(|n| if n + 1 < KEPT { form.map[n + 1] / first } else { ZERO });
-        let mut values = to_values(&slope);
-        let (ratios, points) = (to_values(&ratio), to_values(&form.map));
-        let mut size = 0.0f64;
-        for ((value, q), &z) in values.iter_mut().zip(&ratios).zip(&points) {
-            *value *= amplitude.value(z) * (q.ln() * (lambda - 1.0)).exp() * power;
-            let square = value.norm_sqr();
-            if !square.is_finite() {
+        let (slopes, ratios) = (to_values(&slope), to_values(&ratio));
+        let mut values = vec![[ZERO; POINTS]; count];
+        let mut here = vec![ZERO; count];
+        for (s, z) in to_values(&form.map).into_iter().enumerate() {
+            let factor = slopes[s] * (ratios[s].ln() * (lambda - 1.0)).exp() * power;
+            fill(z, &mut here);
+            for (values, g) in values.iter_mut().zip(&here) {
+                values[s] = g * factor;
+            }
+        }
+        let orders = |mut values: Values| {
+            let size = values.iter().fold(0.0f64, |m, v| m.max(v.norm()));
+            if !values.iter().all(|v| v.norm_sqr().is_finite()) {
                 return None;
             }
-            size = size.max(square);
-        }
-        to_coefficients(&mut values);
-        Some(BasedOrders {
-            p: by_parts(form, lambda, &taylor(&values)),
-            noise: by_parts(form, lambda, unit_noise()),
-            size: size.sqrt(),
-            tail: tail(&values, 0, 0.1 * size.sqrt()),
-        })
+            to_coefficients(&mut values);
+            Some(BasedOrders {
+                p: by_parts(form, lambda, &taylor(&values)),
+                noise: *noise,
+                size,
+                // An amplitude that vanishes is known to all digits.
+                tail: if size > 0.0 { tail(&values, 0, 0.1 * size) } else { 0.0 },
+            })
+        };
+        values.into_iter().map(orders).collect()
+    }
+
+    /// What unit noise on the ring passes on to each order.
+    pub fn unit(form: &BasedForm, lambda: f64) -> Based {
+        by_parts(form, lambda, unit_noise())
+    }
+
+    /// What cannot be sampled: no figure can be trusted.
+    pub fn unknown(noise: &Based) -> BasedOrders {
+        let p = [[ZERO; MAX_DEGREE]; MAX_ORDERS];
+        BasedOrders { p, noise: *noise, size: 1.0, tail: f64::INFINITY }
     }
 
     /// `p_j^(n)`.
@@ -279,13 +331,14 @@ impl BasedOrders {
     pub fn noise(&self, n: usize) -> &[Complex64; MAX_DEGREE] {
         &self.noise[n]
     }
+
+    /// The same of all orders.
+    pub fn noises(&self) -> &Based {
+        &self.noise
+    }
 }
 
-fn by_parts(
-    form: &BasedForm,
-    lambda: f64,
-    start: &Coefficients,
-) -> [[Complex64; MAX_DEGREE]; MAX_ORDERS] {
+fn by_parts(form: &BasedForm, lambda: f64, start: &Coefficients) -> Based {
     let degree = form.degree;
     let divisor = form.divisor();
     let mut p = [[ZERO; MAX_DEGREE]; MAX_ORDERS];

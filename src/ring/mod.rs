@@ -20,7 +20,7 @@ mod division;
 mod normal_form;
 mod orders;
 
-pub(crate) use based::{BasedForm, BasedOrders, MAX_DEGREE};
+pub(crate) use based::{Based, BasedForm, BasedOrders, MAX_DEGREE};
 pub use division::divide;
 pub use normal_form::NormalForm;
 pub use orders::{MAX_ORDERS, Orders, Start};

@@ -75,22 +75,72 @@ impl Start {
     ) -> Option<Start> {
         let mut values = to_values(&form.map_derivative());
         let points = to_values(form.map());
+        for (value, &z) in values.iter_mut().zip(&points) {
+            *value *= amplitude.value(z);
+        }
+        Start::of_values(form, values, part)
+    }
+
+    /// Several amplitudes sampled together: `fill` writes their values at a point, `part` is what is
+    /// taken away from each. None for those that are not finite.
+    pub(crate) fn several(
+        form: &NormalForm,
+        count: usize,
+        fill: impl Fn(Complex64, &mut [Complex64]),
+        part: impl Fn(usize, Complex64) -> Complex64,
+    ) -> Vec<Option<Start>> {
+        let slopes = to_values(&form.map_derivative());
+        let mut values = vec![[ZERO; POINTS]; count];
+        let mut here = vec![ZERO; count];
+        for (s, (z, slope)) in to_values(form.map()).into_iter().zip(slopes).enumerate() {
+            fill(z, &mut here);
+            for (values, g) in values.iter_mut().zip(&here) {
+                values[s] = g * slope;
+            }
+        }
+        let layers = values.into_iter().enumerate();
+        layers.map(|(n, values)| Start::of_values(form, values, |u| part(n, u))).collect()
+    }
+
+    /// From `g z'` on the ring.
+    fn of_values(
+        form: &NormalForm,
+        mut values: Values,
+        part: impl Fn(Complex64) -> Complex64,
+    ) -> Option<Start> {
         let mut size = 0.0f64;
-        for ((value, &z), &v) in values.iter_mut().zip(&points).zip(unit_points()) {
-            let whole = *value * amplitude.value(z);
+        for (value, &v) in values.iter_mut().zip(unit_points()) {
             // The noise is that of the whole, which is large where a pole lies near the ring.
-            let square = whole.norm_sqr();
+            let square = value.norm_sqr();
             if !square.is_finite() {
                 return None;
             }
             size = size.max(square);
-            *value = whole - part(v * form.radius());
+            *value -= part(v * form.radius());
         }
         to_coefficients(&mut values);
         // Where poles have been taken away little may be left: the noise is that of the whole.
         let size = size.sqrt();
-        let tail = tail(&values, 0, 0.1 * size);
+        // An amplitude that vanishes is known to all digits.
+        let tail = if size > 0.0 { tail(&values, 0, 0.1 * size) } else { 0.0 };
         Some(Start { coefficients: taylor(&values), size, tail })
+    }
+
+    /// `H_n` at a point `v` of the disc.
+    pub(crate) fn boundary(&self, form: &NormalForm, v: Complex64) -> [Complex64; MAX_ORDERS] {
+        let mut terms = [ZERO; MAX_ORDERS];
+        by_parts(form, &self.coefficients, |n, _, quotient| terms[n] = evaluate(quotient, v));
+        let mut turn = Complex64::new(1.0, 0.0);
+        for term in &mut terms {
+            *term *= turn;
+            turn *= I;
+        }
+        terms
+    }
+
+    /// What cannot be sampled: no figure can be trusted.
+    pub(crate) fn unknown() -> Start {
+        Start { coefficients: [ZERO; KEPT], size: 1.0, tail: f64::INFINITY }
     }
 
     /// The same on a ring smaller by `factor`: nothing new has to be sampled.
@@ -139,16 +189,9 @@ impl Orders {
         start: &Start,
         v: Complex64,
     ) -> ([Complex64; MAX_ORDERS], [f64; MAX_ORDERS]) {
-        let mut terms = [ZERO; MAX_ORDERS];
-        by_parts(form, &start.coefficients, |n, _, quotient| terms[n] = evaluate(quotient, v));
         let mut noise = [0.0; MAX_ORDERS];
         by_parts(form, unit_noise(), |n, _, quotient| noise[n] = evaluate(quotient, v).norm());
-        let mut turn = Complex64::new(1.0, 0.0);
-        for term in &mut terms {
-            *term *= turn;
-            turn *= I;
-        }
-        (terms, noise)
+        (start.boundary(form, v), noise)
     }
 
     /// `p_j^(n)`, `j = 0..=K`, of order `n`.

@@ -91,7 +91,7 @@ impl Tally {
         }
     }
 
-    fn report(&mut self, name: &str) {
+    pub fn report(&mut self, name: &str) {
         self.ratios.sort_by(f64::total_cmp);
         let at = |q: f64| {
             self.ratios.get((self.ratios.len() as f64 * q) as usize).copied().unwrap_or(0.0)
@@ -113,6 +113,24 @@ impl Tally {
         for line in self.uncovered.iter().chain(&self.wrong).chain(&self.reasons).take(20) {
             println!("  {line}");
         }
+    }
+
+    /// Part of the cases that is answered.
+    pub fn answered(&self) -> f64 {
+        self.answered as f64 / self.cases.max(1) as f64
+    }
+
+    /// Adds another's cases.
+    pub fn absorb(&mut self, other: Tally) {
+        self.cases += other.cases;
+        self.answered += other.answered;
+        self.refused += other.refused;
+        self.hopeless += other.hopeless;
+        self.unsure += other.unsure;
+        self.uncovered.extend(other.uncovered);
+        self.wrong.extend(other.wrong);
+        self.ratios.extend(other.ratios);
+        self.reasons.extend(other.reasons);
     }
 
     pub fn check(&mut self, name: &str, answered: f64) {
