@@ -90,7 +90,7 @@ fn bad_parameters_are_refused() {
                 assert!(matches!(f(p[0], p[1], p[2]), Err(Error::Domain { .. })));
             }
         }
-        for p in [[1e9, 0.0, 0.0], [0.0, -1e9, 0.0], [0.0, 0.0, 1e5], [f64::MAX; 3]] {
+        for p in [[1e11, 0.0, 0.0], [0.0, -1e11, 0.0], [0.0, 0.0, 1e6], [f64::MAX; 3]] {
             assert!(matches!(f(p[0], p[1], p[2]), Err(Error::NoDigits { .. })));
         }
         // Smaller than anything: as at the origin.

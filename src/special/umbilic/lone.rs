@@ -18,7 +18,7 @@ const SHORTEST: f64 = 1.0;
 
 /// The terms beyond the second where that one is `far^2`.
 fn others(hub: &Hub, far: f64) -> f64 {
-    let [first, second, third] = hub.cubic();
+    let [first, second, third] = hub.cubic;
     let reach = far / second.norm().sqrt();
     if reach > WIDEST {
         return f64::INFINITY;
@@ -43,7 +43,7 @@ pub(super) fn moments(hub: &Hub, along: Complex64) -> Moments {
 }
 
 fn rule<const N: usize>(hub: &Hub, along: Complex64, step: f64) -> Moments {
-    let [first, second, third] = hub.cubic();
+    let [first, second, third] = hub.cubic;
     let inner = hub.terms[3];
     let mut scale = (-second).sqrt().inv();
     if (scale * along.conj()).re < 0.0 {

@@ -54,7 +54,7 @@ pub(super) fn moments(hub: &Hub, from: Complex64, to: Complex64) -> Moments {
             *x -= 1.0;
         }
     }
-    let [first, second, third] = hub.cubic();
+    let [first, second, third] = hub.cubic;
     let inner = hub.terms[3];
     let (mut h_re, mut h_im) = ([0.0; ALL], [0.0; ALL]);
     let (mut over_re, mut over_im) = ([0.0; ALL], [0.0; ALL]);
