@@ -55,6 +55,8 @@ pub(super) struct Landscape {
 pub(super) struct Hub {
     pub(super) q: Complex64,
     pub(super) r: Complex64,
+    /// `1/r`.
+    pub(super) inverse: Precise,
     /// H.
     pub(super) level: Precise,
     /// The coefficients of `E`, `E^2` and, without `k_-`, `E^3` of the module's page. The sums in the first two
@@ -86,7 +88,7 @@ const NEGLIGIBLE: f64 = 1e-280;
 
 const ZERO: Dd = Dd { hi: 0.0, lo: 0.0 };
 
-fn real(x: Dd) -> Precise {
+pub(super) fn real(x: Dd) -> Precise {
     Precise { re: x, im: ZERO }
 }
 
@@ -110,11 +112,11 @@ impl Landscape {
     /// The integral with 1/r from those with 1, r, r^2, for small `c_-`: integration of
     /// `(e^H r^-n)'` gives `(n - 1/2) I_-n = i (c_1 I_(1-n) + 2 c_2 I_(2-n) + 3 c_3 I_(3-n) - c_- I_(-n-1))`,
     /// of which the last term is small.
-    pub(super) fn over_r(&self, moments: &[Complex64; 4]) -> Complex64 {
+    pub(super) fn over_r(&self, moments: &[Complex64; 3]) -> Complex64 {
         let [c1, c2, c3] = self.outer.map(|c| c.hi);
         // I_-5 .. I_2 in places 0 .. 7.
         let mut all = [Complex64::ZERO; 8];
-        all[5..].copy_from_slice(&moments[..3]);
+        all[5..].copy_from_slice(moments);
         for _ in 0..5 {
             for n in 1..=4 {
                 let at = 5 - n;
@@ -176,8 +178,9 @@ impl Landscape {
         let inverse = r.inv();
         let lack = Precise::from(-inverse).times_plus(r, Precise::from(Complex64::ONE)).round();
         let rest = inverse * lack;
-        let over = [two_sum(inverse.re, rest.re), two_sum(inverse.im, rest.im)]
-            .map(|x| x.times(self.inner));
+        let inverse =
+            Precise { re: two_sum(inverse.re, rest.re), im: two_sum(inverse.im, rest.im) };
+        let over = [inverse.re, inverse.im].map(|x| x.times(self.inner));
         let q = r.ln();
         let half = |x: f64| Dd { hi: 0.5 * x, lo: 0.0 };
         let terms = [c1, c2, c3].map(|c| c.hi);
@@ -185,6 +188,7 @@ impl Landscape {
         Hub {
             q,
             r,
+            inverse,
             level: Precise {
                 re: powers.im.plus(over[1]).minus().plus(half(q.re)),
                 im: powers.re.plus(over[0]).plus(half(q.im)),
