@@ -86,7 +86,8 @@ fn hyperbolic_against_the_table() {
 #[test]
 fn at_the_origin() {
     // Psi^(E)(0) = (1/3) sqrt(pi) Gamma(1/6) = 3.28868, Psi^(H)(0) = (1/3) Gamma(1/3)^2 = 2.39224: DLMF 36.2.17
-    // to 36.2.19; Gamma(1/6) = 5.56631 60017 80235, Gamma(1/3) = 2.67893 85347 07748 (DLMF 5.17; (m)).
+    // to 36.2.19; Gamma(1/6) = 5.56631 60017 80235, Gamma(1/3) = 2.67893 85347 07748 (mpmath, 30
+    // digits).
     let e = elliptic(0.0, 0.0, 0.0).expect("a value");
     assert!((e.psi - PI.sqrt() * 5.566_316_001_780_235 / 3.0).norm() < 1e-14, "{e:?}");
     let h = hyperbolic(0.0, 0.0, 0.0).expect("a value");
