@@ -105,10 +105,10 @@ fn error_functions_against_the_table() {
 
 #[test]
 fn published_values() {
-    // w(i) = e erfc 1, e from DLMF 4.2.11; erfc 1 = 0.15729 92070 50285: tabulated in many places (m).
+    // w(i) = e erfc 1, e from DLMF 4.2.11; erfc 1 = 0.15729 92070 50285: mpmath, 30 digits.
     let v = w(C::new(0.0, 1.0)).re;
     assert!((v - std::f64::consts::E * 0.157_299_207_050_285_13).abs() < 3e-16);
-    // Zeros: DLMF tables 7.13.1 to 7.13.4 (m).
+    // Zeros: DLMF tables 7.13.1 to 7.13.4 (m); mpmath, 30 digits, agrees.
     let zeros = [
         erf(C::new(1.450_616_163_2, 1.880_943_000_2)),
         erf(C::new(2.244_659_273_8, 2.616_575_140_7)),

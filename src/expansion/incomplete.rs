@@ -14,22 +14,9 @@ use super::canonical::Moments;
 use super::unfolding::Unfolding;
 use crate::ring::{MAX_SADDLES, ZERO};
 use crate::saddles::Multiplicities;
+pub(super) use crate::special::panels::RULE;
 use num_complex::Complex64;
 use std::f64::consts::PI;
-
-/// Positive nodes and weights of the 20-point Gauss-Legendre rule on [-1, 1].
-pub(super) const RULE: [(f64, f64); 10] = [
-    (0.07652652113349734, 0.15275338713072584),
-    (0.22778585114164507, 0.14917298647260374),
-    (0.37370608871541955, 0.14209610931838204),
-    (0.5108670019508271, 0.13168863844917664),
-    (0.636053680726515, 0.11819453196151843),
-    (0.7463319064601508, 0.10193011981724044),
-    (0.8391169718222188, 0.08327674157670475),
-    (0.912234428251326, 0.06267204833410907),
-    (0.9639719272779138, 0.04060142980038694),
-    (0.9931285991850949, 0.017614007139152118),
-];
 
 /// Steps of one descent at most.
 pub(super) const STEPS: usize = 60;

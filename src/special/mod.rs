@@ -4,6 +4,6 @@ pub mod airy;
 pub mod cuspoid;
 pub(crate) mod double_double;
 pub mod faddeeva;
-mod panels;
+pub(crate) mod panels;
 mod slices;
 pub mod umbilic;

@@ -33,6 +33,17 @@ pub(super) const WEIGHTS: [f64; 10] = [
     0.15275338713072584,
 ];
 
+/// The same as pairs of a positive node and its weight, from the middle outwards.
+pub(crate) const RULE: [(f64, f64); 10] = {
+    let mut pairs = [(0.0, 0.0); 10];
+    let mut k = 0;
+    while k < 10 {
+        pairs[k] = (NODES[9 - k], WEIGHTS[9 - k]);
+        k += 1;
+    }
+    pairs
+};
+
 /// `1.5 * 2^52`: added and subtracted, it rounds to an integer, which then stands in the low bits.
 const ROUNDER: f64 = 6_755_399_441_055_744.0;
 /// ln 2 and pi/2 with trailing zero bits, and what is missing.

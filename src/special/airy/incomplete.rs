@@ -2,7 +2,7 @@
 //!
 //! With `phi(t) = i (t^3/3 + x t)` and the valleys of `e^phi` around `arg t = pi/6, 5 pi/6, -pi/2`:
 //! from the end point `a` a chain of straight pieces descends into some valley v; the integral along
-//! it is a sum of Gauss-Legendre rules (16 points for a change of the phase of at most 14), and the
+//! it is a sum of Gauss-Legendre rules (20 points for a change of the phase of at most 18), and the
 //! rest, from v to the valley of the definition, is a complete Airy integral (DLMF 9.5.4, its
 //! rotated forms). Any valley is right as long as both parts use the same one: no Stokes line needs
 //! attention, and no part exceeds the end-point or the saddle-point contribution it stands for.
@@ -14,6 +14,7 @@
 use super::pair::SIN_60;
 use super::{airy_extended, rotated_extended};
 use crate::special::double_double::{Dd, exp_both, sin_cos, two_product};
+use crate::special::panels::RULE;
 use crate::{Error, Scaled};
 use num_complex::Complex64;
 use std::f64::consts::{FRAC_PI_3, TAU};
@@ -26,18 +27,6 @@ pub struct IncompleteAiry<T> {
     /// The integral of `t exp(i (t^3/3 + x t))`.
     pub i1: T,
 }
-
-/// Positive abscissas and weights of the 16-point Gauss-Legendre rule (DLMF 3.5(v)).
-const GAUSS: [[f64; 2]; 8] = [
-    [0.9894009349916499, 0.027152459411754096],
-    [0.9445750230732326, 0.062253523938647894],
-    [0.8656312023878318, 0.09515851168249279],
-    [0.755404408355003, 0.12462897125553388],
-    [0.6178762444026438, 0.14959598881657674],
-    [0.45801677765722737, 0.16915651939500254],
-    [0.2816035507792589, 0.18260341504492358],
-    [0.09501250983763744, 0.1894506104550685],
-];
 
 /// The integrand is this many factors of e below its start where the chain may end.
 const DEPTH: f64 = 39.0;
@@ -196,8 +185,8 @@ fn descend(x: Complex64, a: Complex64) -> Result<([Complex64; 2], Complex64), Er
     let mut h = Complex64::ZERO;
     for _ in 0..LIMIT {
         let local = Local::at(a + h, x);
-        let step = local.lowest(local.length(8.0, 3.0));
-        for [node, weight] in GAUSS {
+        let step = local.lowest(local.length(10.0, 4.0));
+        for (node, weight) in RULE {
             for place in [0.5 - 0.5 * node, 0.5 + 0.5 * node] {
                 let here = h + step * place;
                 let term = start.change(here).exp() * step * (0.5 * weight);

@@ -55,10 +55,13 @@ pub(super) struct Landscape {
 pub(super) struct Hub {
     pub(super) q: Complex64,
     pub(super) r: Complex64,
+    /// `1/r`.
+    pub(super) inverse: Precise,
     /// H.
     pub(super) level: Precise,
-    /// H', all but zero.
-    slope: Complex64,
+    /// The coefficients of `E`, `E^2` and, without `k_-`, `E^3` of the module's page. The sums in the first two
+    /// may be far below their terms.
+    pub(super) cubic: [Complex64; 3],
     /// `k_1, k_2, k_3, k_-`.
     pub(super) terms: [Complex64; 4],
     /// See [`Landscape`].
@@ -85,7 +88,7 @@ const NEGLIGIBLE: f64 = 1e-280;
 
 const ZERO: Dd = Dd { hi: 0.0, lo: 0.0 };
 
-fn real(x: Dd) -> Precise {
+pub(super) fn real(x: Dd) -> Precise {
     Precise { re: x, im: ZERO }
 }
 
@@ -109,11 +112,11 @@ impl Landscape {
     /// The integral with 1/r from those with 1, r, r^2, for small `c_-`: integration of
     /// `(e^H r^-n)'` gives `(n - 1/2) I_-n = i (c_1 I_(1-n) + 2 c_2 I_(2-n) + 3 c_3 I_(3-n) - c_- I_(-n-1))`,
     /// of which the last term is small.
-    pub(super) fn over_r(&self, moments: &[Complex64; 4]) -> Complex64 {
+    pub(super) fn over_r(&self, moments: &[Complex64; 3]) -> Complex64 {
         let [c1, c2, c3] = self.outer.map(|c| c.hi);
         // I_-5 .. I_2 in places 0 .. 7.
         let mut all = [Complex64::ZERO; 8];
-        all[5..].copy_from_slice(&moments[..3]);
+        all[5..].copy_from_slice(moments);
         for _ in 0..5 {
             for n in 1..=4 {
                 let at = 5 - n;
@@ -167,14 +170,17 @@ impl Landscape {
         let zero = real(ZERO);
         let powers = real(c3).times_plus(r, real(c2)).times_plus(r, real(c1)).times_plus(r, zero);
         // 3 c_3 with c_3 = 1 or 2, and 2 c_2, are exact.
+        let bends = real(doubled(c3, 3.0)).times_plus(r, real(c2));
+        let bends = bends.times_plus(r, zero).times_plus(r, zero);
         let slopes = real(doubled(c3, 3.0)).times_plus(r, real(doubled(c2, 2.0)));
         let slopes = slopes.times_plus(r, real(c1)).times_plus(r, zero);
         // 1/r and what it lacks.
         let inverse = r.inv();
         let lack = Precise::from(-inverse).times_plus(r, Precise::from(Complex64::ONE)).round();
         let rest = inverse * lack;
-        let over = [two_sum(inverse.re, rest.re), two_sum(inverse.im, rest.im)]
-            .map(|x| x.times(self.inner));
+        let inverse =
+            Precise { re: two_sum(inverse.re, rest.re), im: two_sum(inverse.im, rest.im) };
+        let over = [inverse.re, inverse.im].map(|x| x.times(self.inner));
         let q = r.ln();
         let half = |x: f64| Dd { hi: 0.5 * x, lo: 0.0 };
         let terms = [c1, c2, c3].map(|c| c.hi);
@@ -182,14 +188,20 @@ impl Landscape {
         Hub {
             q,
             r,
+            inverse,
             level: Precise {
                 re: powers.im.plus(over[1]).minus().plus(half(q.re)),
                 im: powers.re.plus(over[0]).plus(half(q.im)),
             },
-            slope: Complex64::new(
-                0.5 - slopes.im.plus(over[1].minus()).hi,
-                slopes.re.plus(over[0].minus()).hi,
-            ),
+            cubic: [
+                // H' - 1/2, where H' is all but zero.
+                Complex64::new(
+                    -slopes.im.plus(over[1].minus()).hi,
+                    slopes.re.plus(over[0].minus()).hi,
+                ),
+                Complex64::new(-bends.im.plus(over[1]).hi, bends.re.plus(over[0]).hi),
+                ir * r * r * terms[2],
+            ],
             terms: [
                 ir * terms[0],
                 ir * r * terms[1],
@@ -207,13 +219,6 @@ impl Hub {
         self.level.re.hi
     }
 
-    /// The coefficients of `E`, `E^2` and `E^3` of the module's page (the last without `k_-`).
-    #[inline]
-    pub(super) fn cubic(&self) -> [Complex64; 3] {
-        let [_, k2, k3, inner] = self.terms;
-        [self.slope - 0.5, k2 + k3 * 3.0 + inner, k3]
-    }
-
     /// The point at a distance.
     pub(super) fn site(&self, offset: Complex64) -> Site {
         let (mut re, mut im) = ([offset.re], [offset.im]);
@@ -223,7 +228,7 @@ impl Hub {
         let [k1, k2, k3, inner] = self.terms;
         let terms = [k1 * ratio, k2 * square, k3 * square * ratio, inner * inverse];
         let e = ratio - 1.0;
-        let [first, second, third] = self.cubic();
+        let [first, second, third] = self.cubic;
         let change = e * (first + e * (second + e * (third - terms[3])));
         let drop = -(change.re + 0.5 * offset.re);
         let surplus = (self.ln_weight - self.q.re - offset.re).max(0.0);
@@ -236,7 +241,7 @@ impl Hub {
         let offset = re;
         let mut im: [f64; DIRECTIONS] = std::array::from_fn(|k| radius * sine(k));
         exponentials(&mut re, &mut im);
-        let [first, second, third] = self.cubic();
+        let [first, second, third] = self.cubic;
         let inner = self.terms[3];
         std::array::from_fn(|k| {
             let ratio = Complex64::new(re[k], im[k]);

@@ -18,7 +18,7 @@ const SHORTEST: f64 = 1.0;
 
 /// The terms beyond the second where that one is `far^2`.
 fn others(hub: &Hub, far: f64) -> f64 {
-    let [first, second, third] = hub.cubic();
+    let [first, second, third] = hub.cubic;
     let reach = far / second.norm().sqrt();
     if reach > WIDEST {
         return f64::INFINITY;
@@ -32,8 +32,7 @@ pub(super) fn is_lone(hub: &Hub) -> bool {
     others(hub, 9.0) < LONG
 }
 
-/// Moments along the line in the direction (of q) that makes an acute angle with `along`, in units
-/// of the integrand at the hub.
+/// Moments along the line in the direction (of q) that makes an acute angle with `along`.
 pub(super) fn moments(hub: &Hub, along: Complex64) -> Moments {
     match others(hub, 6.0) {
         x if x < SHORTEST => rule::<28>(hub, along, 0.48),
@@ -43,36 +42,36 @@ pub(super) fn moments(hub: &Hub, along: Complex64) -> Moments {
 }
 
 fn rule<const N: usize>(hub: &Hub, along: Complex64, step: f64) -> Moments {
-    let [first, second, third] = hub.cubic();
+    let [first, second, third] = hub.cubic;
     let inner = hub.terms[3];
     let mut scale = (-second).sqrt().inv();
     if (scale * along.conj()).re < 0.0 {
         scale = -scale;
     }
     let (mut re, mut im) = ([0.0; N], [0.0; N]);
-    let mut ratios = [Complex64::ZERO; N];
+    let mut offsets = [Complex64::ZERO; N];
     for k in 0..N {
         let e = scale * (step * (k as f64 - 0.5 * (N - 1) as f64));
         let ratio = e + 1.0;
         let over = inner * ratio.conj() * (1.0 / ratio.norm_sqr());
         let exponent = e * (first + e * (second + e * (third - over)));
-        (re[k], im[k], ratios[k]) = (exponent.re, exponent.im, ratio);
+        (re[k], im[k], offsets[k]) = (exponent.re, exponent.im, e);
     }
     exponentials(&mut re, &mut im);
     let mut sums = [Complex64::ZERO; 4];
     for k in 0..N {
-        let ratio = ratios[k];
+        let e = offsets[k];
+        let ratio = e + 1.0;
         // 1/sqrt(ratio), Re ratio > 0.
         let size = ratio.norm_sqr().sqrt();
         let root = (0.5 * (size + ratio.re)).sqrt();
         let inverse_root = Complex64::new(root, -0.5 * ratio.im / root) * (1.0 / size);
         let value = Complex64::new(re[k], im[k]) * inverse_root;
-        let next = value * ratio;
+        let next = value * e;
         sums[0] += value;
         sums[1] += next;
-        sums[2] += next * ratio;
-        sums[3] += value * ratio.conj() * (1.0 / (size * size));
+        sums[2] += next * e;
+        sums[3] += next * ratio.conj() * (1.0 / (size * size));
     }
-    let sums = sums.map(|sum| sum * scale * step);
-    [sums[0], sums[1] * hub.r, sums[2] * hub.r * hub.r, sums[3] / hub.r]
+    sums.map(|sum| sum * scale * step)
 }

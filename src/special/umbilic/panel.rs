@@ -7,7 +7,7 @@ use num_complex::Complex64;
 const HALF: usize = 10;
 const ALL: usize = 2 * HALF;
 
-/// Integrals of `e^H` times 1, r, r^2, 1/r.
+/// Integrals of `e^(H - H_hub)` times 1, E, E^2, E/(1 + E) with `E = r/r_hub - 1`.
 pub(super) type Moments = [Complex64; 4];
 
 /// Up to this distance from the hub `e^d - 1` is summed as a power series.
@@ -24,8 +24,7 @@ const INVERSE: [f64; 15] = {
     table
 };
 
-/// `integral of (1, r, r^2, 1/r) e^(H - H_hub) dq` along a straight piece, its ends given by their distances from
-/// the hub.
+/// The integrals along a straight piece, its ends given by their distances from the hub.
 pub(super) fn moments(hub: &Hub, from: Complex64, to: Complex64) -> Moments {
     let (middle, half) = ((from + to) * 0.5, (to - from) * 0.5);
     let (mut re, mut im) = ([0.0; ALL], [0.0; ALL]);
@@ -54,7 +53,7 @@ pub(super) fn moments(hub: &Hub, from: Complex64, to: Complex64) -> Moments {
             *x -= 1.0;
         }
     }
-    let [first, second, third] = hub.cubic();
+    let [first, second, third] = hub.cubic;
     let inner = hub.terms[3];
     let (mut h_re, mut h_im) = ([0.0; ALL], [0.0; ALL]);
     let (mut over_re, mut over_im) = ([0.0; ALL], [0.0; ALL]);
@@ -80,14 +79,13 @@ pub(super) fn moments(hub: &Hub, from: Complex64, to: Complex64) -> Moments {
     exponentials(&mut h_re, &mut h_im);
     let mut sums = [Complex64::ZERO; 4];
     for k in 0..ALL {
-        let ratio = Complex64::new(ratios[k], im[k]);
+        let e = Complex64::new(re[k], im[k]);
         let value = Complex64::new(h_re[k], h_im[k]) * WEIGHTS[k % HALF];
-        let next = value * ratio;
+        let next = value * e;
         sums[0] += value;
         sums[1] += next;
-        sums[2] += next * ratio;
-        sums[3] += value * Complex64::new(over_re[k], over_im[k]);
+        sums[2] += next * e;
+        sums[3] += next * Complex64::new(over_re[k], over_im[k]);
     }
-    let sums = sums.map(|sum| sum * half);
-    [sums[0], sums[1] * hub.r, sums[2] * hub.r * hub.r, sums[3] / hub.r]
+    sums.map(|sum| sum * half)
 }

@@ -18,6 +18,8 @@ use num_complex::Complex64;
 
 /// Drop at which the integrand has vanished.
 const DEPTH: f64 = 42.0;
+/// A minimum on a circle counts from this drop on: a saddle nearby may be hardly lower.
+const FLAT: f64 = 1e-7;
 /// A ridge this far down may be crossed without notice.
 const RIDGE: f64 = 37.0;
 /// Change of H along the first panel of an arm, later ones growing with the drop; the smaller ones
@@ -70,7 +72,7 @@ fn minima(drops: &[f64; DIRECTIONS], out: &mut [Complex64; ARMS]) -> usize {
     let mut count = 0;
     for k in 0..DIRECTIONS {
         let [before, after] = [k + DIRECTIONS - 1, k + 1].map(|k| drops[k % DIRECTIONS]);
-        if drops[k] > 0.02 && drops[k] > before && drops[k] >= after && count < ARMS {
+        if drops[k] > FLAT && drops[k] > before && drops[k] >= after && count < ARMS {
             found[count] = (drops[k], k);
             count += 1;
         }
