@@ -8,13 +8,17 @@ use num_complex::Complex64;
 
 mod contour;
 mod jet;
+mod map;
 mod phase;
 mod root;
+mod sheet;
 
 pub use contour::{Contour, Termination};
 pub use jet::{Formula, Jet};
+pub use map::{MappedAmplitude, MappedPhase};
 pub use phase::{Amplitude, Phase, Polynomial, Unit, ValueOnly};
 pub use root::{OverRoot, RootAmplitude, RootPhase};
+pub(crate) use sheet::check_continuous;
 
 /// The range of exponents of algebraic ends.
 const LEAST_POWER: f64 = 0.01;
