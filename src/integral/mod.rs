@@ -57,7 +57,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// Says that the amplitude has a simple or double pole at `z`.
     ///
     /// A plan needs to know the poles near the saddles and those that the contour must be drawn
-    /// across on its way down; the principal part is measured from values round the pole.
+    /// across on its way down; the principal part is measured from values round the pole. The yardstick finds
+    /// poles by itself, but counts one below some 1e-11 of the amplitude only if it was named.
     pub fn pole(mut self, z: Complex64) -> Self {
         self.poles.push(z);
         self
@@ -67,8 +68,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// start `z_0` of the contour.
     ///
     /// The power is continued along the contour, from its principal value where the contour leaves `z_0`;
-    /// the amplitude is what is left, analytic at `z_0`. A plan follows it with one saddle near `z_0` at
-    /// most; the contour may wind round its end.
+    /// the amplitude is what is left, analytic at `z_0`. A plan follows it with up to two saddles near
+    /// `z_0`; the contour may wind round its end.
     ///
     /// ```
     /// use merging_saddles::{Complex64 as C, Contour, Integral};

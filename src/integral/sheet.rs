@@ -56,7 +56,8 @@ fn jump(site: &dyn Fn(Complex64) -> Site, from: Site, to: Site) -> Option<(Compl
         let largest = a.2.norm().max(b.2.norm()).max(middle.2.norm()) * step.norm();
         let rounding = 64.0 * f64::EPSILON * (a.1.norm() + b.1.norm());
         let miss = b.1 - a.1 - rule;
-        if !(miss.norm() > CLOSE * largest + rounding) {
+        let allowed = CLOSE * largest + rounding;
+        if miss.norm() <= allowed || !allowed.is_finite() {
             // Continuous, or not finite: a singularity on the contour is refused elsewhere.
             continue;
         }

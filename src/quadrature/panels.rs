@@ -149,7 +149,7 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
         })?;
         let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale((from + to) * 0.5);
         let noise = 4.0 * f64::EPSILON + self.k * (2.0 * panel.grass).max(stated);
-        let place = f64::EPSILON * from.norm().max(to.norm());
+        let place = 0.5 * f64::EPSILON * from.norm().max(to.norm());
         Ok(Panel {
             from,
             to,
