@@ -52,3 +52,62 @@ proptest! {
         }
     }
 }
+
+#[test]
+fn a_jump_of_the_closure_on_the_contour_is_refused() {
+    use merging_saddles::{Contour, Error, Integral};
+    // Hankel's phase z - ln z (DLMF 5.9.2) on a contour round the origin: the principal logarithm jumps by 2 pi i on the
+    // negative axis. Turned away, the cut is met no more.
+    let minus_i = c(0.0, -1.0);
+    let contour = || {
+        Contour::through([
+            c(-3.0, -1.0),
+            c(0.5, -1.0),
+            c(1.0, 0.0),
+            c(0.5, 1.0),
+            c(-1.0, 0.3),
+            c(-3.0, -0.3),
+        ])
+    };
+    let principal = move |z: Complex64| ((z - z.ln()) * minus_i, (1.0 - z.inv()) * minus_i);
+    let jumps = Integral::new(principal, contour());
+    for refused in [jumps.plan().map(|_| ()), jumps.quadrature(5.0, 1e-9).map(|_| ())] {
+        assert!(matches!(refused, Err(Error::Undecided { .. })), "{refused:?}");
+    }
+    let reason = jumps.plan().err().map(|e| e.to_string()).unwrap_or_default();
+    assert!(reason.contains("jumps by") && reason.contains("branch cut"), "{reason}");
+    // On the sheet alone it is answered.
+    let loop_ =
+        Contour::through([c(-3.0, -1.0), c(0.5, -1.0), c(1.0, 0.0), c(0.5, 1.0), c(-3.0, 1.0)]);
+    let sheet = Integral::new(principal, loop_);
+    let (plan, yardstick) =
+        (sheet.plan().unwrap().at(9.0).unwrap(), sheet.quadrature(9.0, 1e-12).unwrap());
+    assert!((plan.value - yardstick.value).norm() <= plan.error + yardstick.error);
+}
+
+#[test]
+fn a_rational_phase_bounded_at_infinity_is_mapped() {
+    use merging_saddles::integral::{Formula, Jet};
+    use merging_saddles::{Contour, Integral};
+    use num_traits::Inv;
+    // f = 1/z + 1/(2 z^2) with z = 1/t: infinity is at t = 0, where dz = -dt/t^2 has a double pole.
+    let f = |z: Jet| z.inv() + (z * z).inv() * 0.5;
+    let ends = [c(0.05, 0.4), c(2.0, 1.0), c(0.1, -0.6)];
+    let direct = Integral::new(Formula(f), Contour::between(ends));
+    let mapped = direct
+        .clone()
+        .mapped(|t: Jet| t.inv(), Contour::between(ends.map(|z| z.inv())))
+        .pole(c(0.0, 0.0));
+    for k in [5.0, 40.0, 300.0] {
+        let yardstick = mapped.quadrature(k, 1e-12).unwrap();
+        let plan = mapped.plan().and_then(|plan| plan.at(k)).unwrap();
+        let given = direct.quadrature(k, 1e-12).unwrap();
+        for other in [plan, given] {
+            // Relative, since both are beyond the range of doubles at the largest k.
+            let miss = (other.scaled + -yardstick.scaled).ln_norm() - yardstick.scaled.ln_norm();
+            let figure = other.relative_error + yardstick.relative_error;
+            assert!(miss.exp() <= figure, "k {k}: {:e} {figure:e}", miss.exp());
+        }
+        assert!(plan.relative_error < 1e-3);
+    }
+}

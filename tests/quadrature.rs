@@ -360,14 +360,23 @@ fn any_k(from: f64, to: f64) -> impl Strategy<Value = f64> {
 
 /// The residue theorem (DLMF 1.10.8) for `g = 1 + weight (z - p)^(-order)` and a quartic phase: the
 /// contour above the pole minus the one below it gives -2 pi i times the residue.
-fn residue_agrees(k: f64, x: (f64, f64), p: C, order: i32, weight: f64, clearance: f64) -> bool {
+fn residue_agrees(
+    k: f64,
+    x: (f64, f64),
+    p: C,
+    order: i32,
+    weight: f64,
+    clearance: f64,
+    named: bool,
+) -> bool {
     let phase = cuspoid(&[c(x.0, 0.0), c(x.1, 0.0)]);
     let value = |shift: f64| {
         let (from, to) = (C::from_polar(5.0, 1.125 * PI), C::from_polar(5.0, 0.125 * PI));
-        Integral::new(phase.clone(), Contour::through([from, p + c(0.0, shift), to]))
-            .amplitude(move |z: C| 1.0 + weight * (z - p).powi(-order))
-            .quadrature(k, 1e-10)
-            .unwrap()
+        let integral =
+            Integral::new(phase.clone(), Contour::through([from, p + c(0.0, shift), to]))
+                .amplitude(move |z: C| 1.0 + weight * (z - p).powi(-order));
+        let integral = if named { integral.pole(p) } else { integral };
+        integral.quadrature(k, 1e-10).unwrap()
     };
     let (above, below) = (value(clearance), value(-clearance));
     let f = ((p * p + x.0) * p + x.1) * p;
@@ -405,10 +414,115 @@ fn weak_poles_are_found() {
         let x = (random(-3.0, 3.0), random(-2.0, 2.0));
         let p = c(random(-2.0, 2.0), random(-2.0, 2.0));
         let weight = 10.0_f64.powf(random(-8.0, -4.0));
-        right += i32::from(residue_agrees(k, x, p, 1 + n % 2, weight, random(0.05, 1.0)));
+        right += i32::from(residue_agrees(k, x, p, 1 + n % 2, weight, random(0.05, 1.0), false));
     }
     println!("weak poles: {right} of {total}");
     assert!(1000 * right >= 995 * total, "{right} of {total}");
+}
+
+// Integral e^(-k t^2)/(t - q) dt over the real line is i pi w(sqrt(k) q), Im q > 0 (DLMF 7.7.2), and for the double
+// pole its derivative in q (DLMF 7.10.2). The contour passes the pole as close as 1e-7, off the origin, so
+// that its nodes are rounded.
+#[test]
+fn figures_cover_next_to_simple_and_double_poles() {
+    use merging_saddles::special::faddeeva::w;
+    let mut state = 3_u64;
+    let mut random = |from: f64, to: f64| {
+        state =
+            state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        from + (to - from) * (state >> 11) as f64 / (1_u64 << 53) as f64
+    };
+    for n in 0..1000 {
+        let k = 10.0_f64.powf(random(0.0, 4.0));
+        let side = if n % 2 == 0 { 1.0 } else { -1.0 };
+        let p = c(1.0 + random(-3.0, 3.0) / k.sqrt(), side * 10.0_f64.powf(random(-7.0, -1.0)));
+        let q = p - 1.0;
+        let simple = C::from_polar(random(0.0, 1.0), random(0.0, 2.0 * PI));
+        let double = C::from_polar(random(0.0, 1.0), random(0.0, 2.0 * PI));
+        let double = if n % 3 == 0 { c(0.0, 0.0) } else { double };
+        let g = move |z: C| {
+            let inverse = (z - p).inv();
+            (double * inverse + simple) * inverse
+        };
+        let f = |z: C| ((z - 1.0) * (z - 1.0) * C::i(), (z - 1.0) * c(0.0, 2.0));
+        let got = Integral::new(f, Contour::through([c(-4.0, 0.0), c(6.0, 0.0)]))
+            .amplitude(g)
+            .quadrature(k, 1e-13)
+            .unwrap();
+        let x = q * k.sqrt() * side;
+        let first = w(x);
+        let slope = -2.0 * x * first + c(0.0, 2.0 / PI.sqrt());
+        let (one, two) = (simple * first * side, double * slope * k.sqrt());
+        let miss = (got.value - c(0.0, PI) * (one + two)).norm();
+        // w to 1.3e-15 (its own test), and what its derivative is a difference of.
+        let terms = 2.0 * x.norm() * first.norm() + 2.0 / PI.sqrt();
+        let rounding = 1.5e-15 * PI * (one.norm() + double.norm() * k.sqrt() * terms);
+        assert!(miss <= got.error + rounding, "k {k} p {p}: {miss:e} {:e}", got.error);
+    }
+}
+
+// A contour led through a cluster of saddles that it need not cross: far above the pass, over several
+// ridges. Its crossings cancel and must not be left in.
+#[test]
+fn clusters_that_need_not_be_crossed_are_left() {
+    let mut state = 8_u64;
+    let mut random = |from: f64, to: f64| {
+        state =
+            state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        from + (to - from) * (state >> 11) as f64 / (1_u64 << 53) as f64
+    };
+    let mut worst = 0.0_f64;
+    for n in 0..400 {
+        let centre = C::from_polar(random(0.0, 1.0), random(0.0, 2.0 * PI));
+        let size = 10.0_f64.powf(random(-5.0, -1.0));
+        let mut slope = vec![C::from_polar(random(0.3, 2.0), random(0.0, 2.0 * PI))];
+        for m in 0..3 + n % 3 {
+            let off = if m < 3 { size } else { random(1.0, 2.0) };
+            let s = centre + C::from_polar(off, random(0.0, 2.0 * PI));
+            let mut next = vec![c(0.0, 0.0); slope.len() + 1];
+            for (j, a) in slope.iter().enumerate() {
+                next[j + 1] += a;
+                next[j] -= a * s;
+            }
+            slope = next;
+        }
+        let degree = slope.len();
+        let terms = slope.iter().enumerate().map(|(j, a)| a / (j + 1) as f64);
+        let phase = Polynomial(std::iter::once(c(0.0, 0.0)).chain(terms).collect());
+        let lead = phase.0[degree].arg();
+        let valley =
+            |v: usize| C::from_polar(9.0, (0.5 * PI - lead + 2.0 * PI * v as f64) / degree as f64);
+        let k = 10.0_f64.powf(random(1.0, 3.5));
+        let value = |middle: C| {
+            let points = [valley(0), middle, valley(1 + n % (degree - 1))];
+            Integral::new(phase.clone(), Contour::through(points)).quadrature(k, 1e-12).unwrap()
+        };
+        let (through, beside) = (value(centre), value(centre + C::from_polar(1.0, 1.0)));
+        assert!(closure(&[(1.0, &through), (-1.0, &beside)]) < 1.0, "{n} k {k}");
+        worst = worst.max(through.relative_error);
+    }
+    println!("through clusters: figures up to {worst:.1e}");
+    assert!(worst < 1e-9);
+}
+
+// However weak a pole is: if it was named, the contour may be drawn across it.
+#[test]
+fn named_poles_of_any_weight_count() {
+    let mut state = 5_u64;
+    let mut random = |from: f64, to: f64| {
+        state =
+            state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        from + (to - from) * (state >> 11) as f64 / (1_u64 << 53) as f64
+    };
+    for n in 0..600 {
+        let k = 10.0_f64.powf(random(0.0, 4.0));
+        let x = (random(-3.0, 3.0), random(-2.0, 2.0));
+        let p = c(random(-2.0, 2.0), random(-2.0, 2.0));
+        let weight = 10.0_f64.powf(random(-18.0, -4.0));
+        let clearance = random(0.05, 1.0);
+        let right = residue_agrees(k, x, p, 1 + n % 2, weight, clearance, true);
+        assert!(right, "k {k} x {x:?} p {p} order {} weight {weight:e}", 1 + n % 2);
+    }
 }
 
 proptest! {
@@ -480,7 +594,7 @@ proptest! {
         weight in any_k(1e-4, 1.0),
         clearance in 0.05..1.0_f64,
     ) {
-        prop_assert!(residue_agrees(k, x, p, order, weight, clearance));
+        prop_assert!(residue_agrees(k, x, p, order, weight, clearance, false));
     }
 
     // A square root whose cut is turned away from the contour by two different angles.

@@ -111,7 +111,7 @@ impl Paths {
         let near = integrand.size(ZERO, NEXT)?;
         for s in integrand.saddles() {
             let height = integrand.value(s).norm();
-            if !(height <= FARTHEST) {
+            if height.is_nan() || height > FARTHEST {
                 return None;
             }
             // What lies next to 0 is seen from there.

@@ -384,8 +384,9 @@ fn certify(plan: &mut Plan, topology: &Topology, floor: f64) -> Result<(), Error
                      singularity or a cut in the way"
                 ),
                 remedy: "end the contour in a valley where Im f grows without bound; if f is bounded at \
-                         infinity, map infinity to a finite point first and give that as a finite end, \
-                         with `power_at_start` or `power_at_end` for an algebraic amplitude",
+                         infinity, map infinity to a finite point first (`Integral::mapped`; z = p + 1/t \
+                         for a rational f with a pole p, t = tanh z for one that saturates) and give that \
+                         as a finite end, with `power_at_start` or `power_at_end` for an algebraic amplitude",
             },
             None => undecided("the contributions found do not join the two ends of the contour"),
         });

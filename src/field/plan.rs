@@ -5,7 +5,7 @@ use crate::estimate::Form;
 use crate::expansion::{
     AlgebraicSeries, Contribution, Known, Moments, NearEnd, Part, Pole, Series,
 };
-use crate::integral::{Amplitude, Integral, Phase};
+use crate::integral::{Amplitude, Integral, Phase, check_continuous};
 use crate::ring::MAX_SADDLES;
 use crate::saddles::Group;
 use crate::{Error, Estimate, Scaled};
@@ -204,9 +204,15 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 return Err(Error::NotFinite { what: "phase", at: z });
             }
         }
+        check_continuous(self.phase(), self.contour())?;
         for &z in self.poles() {
             if !(z.re.is_finite() && z.im.is_finite()) {
                 return Err(Error::Domain { what: "pole", value: z, remedy: "name finite places" });
+            }
+            // Its ascent starts there.
+            let f = self.phase().value(z);
+            if !(f.re.is_finite() && f.im.is_finite()) {
+                return Err(Error::NotFinite { what: "phase", at: z });
             }
         }
         if self.poles().len() > MAX_POLES {

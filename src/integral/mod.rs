@@ -9,15 +9,19 @@ use num_complex::Complex64;
 mod contour;
 mod gradient;
 mod jet;
+mod map;
 mod phase;
 mod root;
+mod sheet;
 
 pub use contour::{Contour, Termination};
 pub(crate) use gradient::MovingEnd;
 pub use gradient::{Fixed, Gradient, ParameterDerivatives};
 pub use jet::{Formula, Jet};
+pub use map::{MappedAmplitude, MappedPhase};
 pub use phase::{Amplitude, Phase, Polynomial, Unit, ValueOnly};
 pub use root::{OverRoot, RootAmplitude, RootPhase};
+pub(crate) use sheet::check_continuous;
 
 /// The range of exponents of algebraic ends.
 const LEAST_POWER: f64 = 0.01;
@@ -56,7 +60,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// Says that the amplitude has a simple or double pole at `z`.
     ///
     /// A plan needs to know the poles near the saddles and those that the contour must be drawn
-    /// across on its way down; the principal part is measured from values round the pole.
+    /// across on its way down; the principal part is measured from values round the pole. The yardstick finds
+    /// poles by itself, but counts one below some 1e-11 of the amplitude only if it was named.
     pub fn pole(mut self, z: Complex64) -> Self {
         self.poles.push(z);
         self
@@ -66,8 +71,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// start `z_0` of the contour.
     ///
     /// The power is continued along the contour, from its principal value where the contour leaves `z_0`;
-    /// the amplitude is what is left, analytic at `z_0`. A plan follows it with one saddle near `z_0` at
-    /// most; the contour may wind round its end.
+    /// the amplitude is what is left, analytic at `z_0`. A plan follows it with up to two saddles near
+    /// `z_0`; the contour may wind round its end.
     ///
     /// ```
     /// use merging_saddles::{Complex64 as C, Contour, Integral};

@@ -8,6 +8,7 @@
 
 mod flow;
 mod gradient;
+mod named;
 mod panels;
 mod residue;
 mod rule;
@@ -63,7 +64,8 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// one is left, its crossings cancel and the figure says how many digits that takes.
     ///
     /// A pole of `g` is seen if its residue is above some 1e-3 `tolerance` (and 1e-11) times `g`
-    /// times the size of the region that the contour sweeps; weaker ones may be passed unnoticed.
+    /// times the size of the region that the contour sweeps; weaker ones may be passed unnoticed, unless
+    /// they were named by [`Integral::pole`].
     ///
     /// ```
     /// use merging_saddles::{Complex64 as C, Contour, Integral};
@@ -100,8 +102,9 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         for strict in [false, true] {
             let mut flow = Flow::new(&sampler, self.contour(), k, strict)?;
             let estimate = self.flowed(&sampler, &mut flow, k, tolerance)?;
-            if flow.keeps_class(self.contour(), fraction) {
-                return Ok(estimate);
+            let image = flow.image();
+            if flow.keeps_class(self.contour(), &image, fraction) {
+                return self.with_named_poles(estimate, &sampler, &image, k);
             }
         }
         Err(Error::Undecided {
@@ -110,6 +113,31 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
                 .to_owned(),
             remedy: "lead the contour near the saddles yourself, or ask for fewer digits",
         })
+    }
+
+    /// Adds the residues of the poles named that lie between the contour and its image.
+    fn with_named_poles(
+        &self,
+        estimate: Estimate,
+        sampler: &Sampler<'_, P, A>,
+        image: &[Complex64],
+        k: f64,
+    ) -> Result<Estimate, Error> {
+        let mut sum = estimate;
+        for &p in self.poles() {
+            let turns = named::turns(self.contour().points(), image, p);
+            if turns != 0 {
+                let others = self.poles().iter().map(|other| (other - p).norm());
+                let points = self.contour().points();
+                let size = points.iter().map(|z| (z - points[0]).norm()).fold(0.0, f64::max);
+                let room = others.filter(|&d| d > 0.0).fold(0.01 * size, f64::min);
+                let (value, error) = named::residue(sampler, p, k, 0.5 * room)?;
+                let form = Form::Quadrature { evaluations: sampler.count() - evaluations(&sum) };
+                let turns = Complex64::new(f64::from(turns), 0.0);
+                sum = sum + Estimate::new(value * turns, error * turns.norm(), 0, form);
+            }
+        }
+        Ok(sum)
     }
 
     /// The integral on the flowed contour, followed as deep as it takes.
@@ -175,6 +203,13 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             remedy: "it decays too slowly towards the ends: take a larger k, or put a growing \
                      exponential of the amplitude into the phase",
         })
+    }
+}
+
+fn evaluations(estimate: &Estimate) -> usize {
+    match estimate.form {
+        Form::Quadrature { evaluations } => evaluations,
+        _ => 0,
     }
 }
 

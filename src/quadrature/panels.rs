@@ -15,6 +15,8 @@ use num_complex::Complex64;
 const PANELS: usize = 40_000;
 /// Estimated errors of the rule below this multiple of the rounding noise may be noise themselves.
 const NOISE: f64 = 4.0;
+/// Halvings of a piece beside a named pole at most.
+const NEAREST: u32 = 24;
 /// The greatest change of `k h` over a new panel.
 const VARIATION: f64 = 10.0;
 
@@ -116,7 +118,9 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
                 left_out += self.left_out(&(a, b));
                 continue;
             }
-            if (variation <= VARIATION && profile.resolved) || level >= 60 {
+            // A weak pole shows in no sixteen values: panels are short beside one that was named.
+            let clear = level >= NEAREST || self.sampler.clear_of_poles(a.z, b.z);
+            if (variation <= VARIATION && profile.resolved && clear) || level >= 60 {
                 panels.push(self.panel(a.z, b.z)?);
                 continue;
             }
@@ -145,7 +149,7 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
         })?;
         let stated = 0.7 * f64::EPSILON * self.sampler.noise_scale((from + to) * 0.5);
         let noise = 4.0 * f64::EPSILON + self.k * (2.0 * panel.grass).max(stated);
-        let place = f64::EPSILON * from.norm().max(to.norm());
+        let place = 0.5 * f64::EPSILON * from.norm().max(to.norm());
         Ok(Panel {
             from,
             to,
@@ -192,7 +196,7 @@ impl<P: Phase, A: Amplitude> Quadrature<'_, P, A> {
 
 /// `exp(k (h - h0))` with the rounding of the difference and of the product made good: two
 /// contributions may be far apart in phase.
-fn relative_exp(k: f64, h: Complex64, h0: Complex64) -> Complex64 {
+pub(super) fn relative_exp(k: f64, h: Complex64, h0: Complex64) -> Complex64 {
     let (re, re_rest) = difference(h.re, h0.re);
     let (im, im_rest) = difference(h.im, h0.im);
     let product = Complex64::new(k * re, k * im);

@@ -68,6 +68,14 @@ impl<'a, P: Phase, A: Amplitude> Sampler<'a, P, A> {
         finite(h).then_some(h)
     }
 
+    /// Whether a chord is shorter than twice its distance from every pole that was named.
+    pub fn clear_of_poles(&self, a: Complex64, b: Complex64) -> bool {
+        self.integral.poles().iter().all(|p| {
+            let along = ((p - a) / (b - a)).re.clamp(0.0, 1.0);
+            (b - a).norm() <= 2.0 * (a + (b - a) * along - p).norm()
+        })
+    }
+
     /// `g(z)`.
     pub fn amplitude(&self, z: Complex64) -> Option<Complex64> {
         let g = self.integral.amplitude_at(z);

@@ -183,7 +183,21 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
         let contour = Contour::new(path, ends[0], ends[1]);
         let amplitude =
             UnrolledAmplitude { amplitude: self.amplitude_ref(), map, powers, constant };
-        Integral::new(UnrolledPhase { phase: self.phase(), map }, contour).amplitude(amplitude)
+        let lows = contour
+            .points()
+            .iter()
+            .fold((0.0f64, 0.0f64), |(low, high), s| (low.min(s.im), high.max(s.im)));
+        let mut unrolled =
+            Integral::new(UnrolledPhase { phase: self.phase(), map }, contour).amplitude(amplitude);
+        // A named pole has an image on each sheet that the contour may reach.
+        for s in self.poles().iter().map(|&p| map.inverse(p)) {
+            let turns = |angle: f64| ((angle - s.im) / std::f64::consts::TAU) as i32;
+            for turn in turns(lows.0) - 1..=turns(lows.1) + 1 {
+                let up = Complex64::new(0.0, std::f64::consts::TAU * f64::from(turn));
+                unrolled = unrolled.pole(s + up);
+            }
+        }
+        unrolled
     }
 }
 

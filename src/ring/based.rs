@@ -12,10 +12,11 @@
 //! Source: K = -1 is Watson's lemma (DLMF 2.4(i)); N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353
 //! for an algebraic end near a saddle.
 
+use super::normal_form::Leading;
 use super::orders::unit_noise;
 use super::{
     Coefficients, I, KEPT, MAX_ORDERS, POINTS, Values, ZERO, divide, evaluate, tail, taylor,
-    to_coefficients, to_values, unit_points,
+    to_coefficients, to_values,
 };
 use crate::integral::{Amplitude, Phase};
 use num_complex::Complex64;
@@ -52,15 +53,7 @@ impl BasedForm {
         if degree > MAX_DEGREE || !(reach.is_finite() && reach > 0.0) {
             return None;
         }
-        let mut values: Values =
-            std::array::from_fn(|s| phase.value(base + unit_points()[s] * reach));
-        to_coefficients(&mut values);
-        let lead = values[degree];
-        let turn = Complex64::from_polar(1.0, -lead.arg() / degree as f64);
-        let radius = lead.norm().powf(1.0 / degree as f64);
-        if !(radius.is_finite() && radius > 0.0) {
-            return None;
-        }
+        let Leading { values, turn, radius } = Leading::new(phase, base, reach, degree)?;
         let mut map = [ZERO; KEPT];
         map[0] = base;
         map[1] = turn * reach;
@@ -371,9 +364,8 @@ mod tests {
     fn the_form_reproduces_the_phase_with_the_end_in_place() {
         let base = Complex64::new(0.2, -0.1);
         let phase = |z: Complex64| (z.cosh() + z * 0.3, z.sinh() + 0.3);
-        for saddles in [0, 1] {
-            let form = BasedForm::find(&phase, saddles, base, if saddles == 0 { 0.2 } else { 0.8 })
-                .expect("a form");
+        for (saddles, reach) in [(0, 0.2), (1, 0.8)] {
+            let form = BasedForm::find(&phase, saddles, base, reach).expect("a form");
             assert_eq!(form.map()[0], base);
             for v in [Complex64::new(0.4, 0.3), Complex64::new(-0.7, 0.1)] {
                 let f = phase(form.point(v)).0 - form.level();

@@ -42,6 +42,29 @@ const SLOW: f64 = 0.4;
 /// ... so many times one after the other while large do not lead to a form that is of use.
 const PATIENCE: usize = 3;
 
+/// A phase on a circle, and what its leading coefficient says of a form with `Phi = u^D + ..`.
+pub(super) struct Leading {
+    /// Coefficients in `v`, `z = centre + reach v`, from a quarter of the points.
+    pub values: [Complex64; COARSE],
+    /// With `v -> turn v` the coefficient of `v^D` is `R^D`: the ring keeps its mean radius.
+    pub turn: Complex64,
+    pub radius: f64,
+}
+
+impl Leading {
+    /// None where the phase is not finite or has no such term.
+    pub fn new(phase: &dyn Phase, centre: Complex64, reach: f64, degree: usize) -> Option<Self> {
+        let mut values: [Complex64; COARSE] = std::array::from_fn(|s| {
+            phase.value(centre + unit_points()[s * (POINTS / COARSE)] * reach)
+        });
+        to_coefficients(&mut values);
+        let lead = values[degree];
+        let turn = Complex64::from_polar(1.0, -lead.arg() / degree as f64);
+        let radius = lead.norm().powf(1.0 / degree as f64);
+        (radius.is_finite() && radius > 0.0).then_some(Leading { values, turn, radius })
+    }
+}
+
 impl NormalForm {
     /// A form with `saddles = K + 1` saddles (0 for an end point) around `centre`, whose ring has
     /// the mean radius `reach` in the `z` plane. None if Newton does not settle.
@@ -55,18 +78,8 @@ impl NormalForm {
             return None;
         }
         let degree = saddles + 1;
-        let mut values: [Complex64; COARSE] = std::array::from_fn(|s| {
-            phase.value(centre + unit_points()[s * (POINTS / COARSE)] * reach)
-        });
-        to_coefficients(&mut values);
-        // In v: f = sum a_n v^n with z = centre + reach v. Let v -> c v so that a_D c^D = R^D with
-        // R = |a_D|^(1/D), which leaves |c| = 1: the ring keeps its mean radius.
+        let Leading { values, turn, radius } = Leading::new(phase, centre, reach, degree)?;
         let lead = values[degree];
-        let turn = Complex64::from_polar(1.0, -lead.arg() / degree as f64);
-        let radius = lead.norm().powf(1.0 / degree as f64);
-        if !(radius.is_finite() && radius > 0.0) {
-            return None;
-        }
         let mut map = [ZERO; KEPT];
         map[0] = centre;
         map[1] = turn * reach;

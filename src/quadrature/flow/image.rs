@@ -4,6 +4,7 @@ use super::super::terrain::Site;
 use super::{Edge, Flow, State};
 use crate::Error;
 use crate::integral::{Amplitude, Contour, Phase, Termination};
+use num_complex::Complex64;
 
 /// Steps of the tail that runs to infinity.
 const TAIL: usize = 2_000;
@@ -44,29 +45,29 @@ impl<P: Phase, A: Amplitude> Flow<'_, P, A> {
         })
     }
 
+    /// The flowed contour with the way of its ends down from the vertices of the given one.
+    pub fn image(&self) -> Vec<Complex64> {
+        if !matches!(self.ends[0], Termination::Closed) {
+            // The first and the last orbit are followed back up to their own vertices.
+            return self.way(0, 0, self.last, 0);
+        }
+        let first = self.first_index();
+        let Some(e) = self.nodes[0].right else { return Vec::new() };
+        let Edge { nodes: [_, next], at: [leave, arrive], .. } = self.edges[e];
+        let orbit = &self.nodes[0].orbit;
+        let mut image: Vec<_> =
+            orbit[first.min(leave)..=first.max(leave)].iter().map(|s| s.z).collect();
+        if first > leave {
+            image.reverse();
+        }
+        image.extend(self.way(next, arrive, 0, first));
+        image
+    }
+
     /// Whether the flowed contour is in the class of the given one, as far as residues of the
     /// amplitude down to a fraction of its size can tell.
-    pub fn keeps_class(&self, contour: &Contour, fraction: f64) -> bool {
-        // The first and the last orbit are followed back up to their own vertices.
-        let image = if contour.is_closed() {
-            let first = self.first_index();
-            let mut image = Vec::new();
-            if let Some(e) = self.nodes[0].right {
-                let Edge { nodes: [_, next], at: [leave, arrive], .. } = self.edges[e];
-                let orbit = &self.nodes[0].orbit;
-                let mut out: Vec<_> =
-                    orbit[first.min(leave)..=first.max(leave)].iter().map(|s| s.z).collect();
-                if first > leave {
-                    out.reverse();
-                }
-                image = out;
-                image.extend(self.way(next, arrive, 0, first));
-            }
-            image
-        } else {
-            self.way(0, 0, self.last, 0)
-        };
-        self.watch.same_class(contour.points(), &image, fraction)
+    pub fn keeps_class(&self, contour: &Contour, image: &[Complex64], fraction: f64) -> bool {
+        self.watch.same_class(contour.points(), image, fraction)
     }
 
     /// Where on the first vertex's orbit the contour begins: its vertex, or the end of the last edge
