@@ -34,7 +34,7 @@ pub(super) const RULE: [(f64, f64); 10] = [
 /// Steps of one descent at most.
 pub(super) const STEPS: usize = 60;
 /// Relative error of the rule and of the sums, for K up to 1 and beyond: somewhat above the worst seen.
-const ROUNDING: [f64; 2] = [1.5e-13, 1e-12];
+const ROUNDING: [f64; 2] = [3e-14, 1e-13];
 /// Nepers of the first step, by `D`: the first power of the exponent that the rule does not integrate exactly
 /// is smaller for the steeper ones.
 const BUDGET: [f64; 7] = [10.0, 10.0, 10.0, 8.0, 6.0, 5.0, 4.0];
