@@ -74,7 +74,7 @@ pub(crate) fn trace(
     if slope.norm_sqr() < rounding * bend.norm() {
         // A far goal may be very high: the range nearby.
         let near =
-            [1e-3 * longest, -1e-3 * longest].map(|d| (h.height(start + d) - origin.re).abs());
+            [0.1 * longest, -0.1 * longest].map(|d| (h.height(start + d) - origin.re).abs());
         rounding = own + 1e-13 * near[0].max(near[1]).min((goal - origin.re).abs());
     }
     if slope.norm_sqr() < rounding * bend.norm() {
