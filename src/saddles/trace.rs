@@ -73,8 +73,7 @@ pub(crate) fn trace(
     let mut rounding = own + 1e-13 * (goal - origin.re).abs();
     if slope.norm_sqr() < rounding * bend.norm() {
         // A far goal may be very high: the range nearby.
-        let near =
-            [0.1 * longest, -0.1 * longest].map(|d| (h.height(start + d) - origin.re).abs());
+        let near = [0.1 * longest, -0.1 * longest].map(|d| (h.height(start + d) - origin.re).abs());
         rounding = own + 1e-13 * near[0].max(near[1]).min((goal - origin.re).abs());
     }
     if slope.norm_sqr() < rounding * bend.norm() {
