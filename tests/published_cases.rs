@@ -300,6 +300,31 @@ fn gamma_function_of_complex_argument() {
 }
 
 #[test]
+fn reciprocal_gamma_function_from_a_loop_round_the_cut_of_the_logarithm() {
+    // 1/Gamma(z) = 1/(2 pi i) integral of e^t t^(-z) on Hankel's loop round the negative axis (DLMF 5.9.2),
+    // t = k s, z = k e^(i theta): both descents cross the cut of the logarithm and go on beyond it.
+    let mut tally = Tally::default();
+    for row in rows("gamma").iter().filter(|row| row.k <= 50.0) {
+        let theta = row.p.re;
+        let turn = C::from_polar(1.0, theta);
+        let loop_round = [c(-4.0, -0.2), c(-1.0, -1.0), c(1.5, 0.0), c(-1.0, 1.0), c(-4.0, 0.2)];
+        let integral = Integral::new(
+            exponent(move |s: C| (s - turn * s.ln(), 1.0 - turn / s)),
+            Contour::through(loop_round),
+        );
+        // Against z^z/Gamma(z) of the table.
+        let factor = -I / (2.0 * PI) * row.k * (I * turn * (row.k * theta)).exp();
+        let value = row.value.inv();
+        tally.enter(&integral, row.k, factor, (value, value.norm()), &format!("theta {theta}"));
+    }
+    tally.check("1/Gamma", |k| match k as u64 {
+        ..=3 => 1e-5,
+        ..=10 => 1e-9,
+        _ => 1e-13,
+    });
+}
+
+#[test]
 fn incomplete_gamma_function_with_a_pole_near_the_saddle() {
     // Q(a, x) = 1/(2 pi i) integral from c - i infinity to c + i infinity of
     // exp(a ((t - l) - ln(t/l)))/(l - t), 0 < c < l = x/a (N. M. Temme, Math. Comp. 29 (1975) 1109;
