@@ -136,12 +136,12 @@ fn many_saddles() {
 
 #[test]
 fn merging_saddles() {
-    run(&random::CLUSTERS, 0..400).check("clusters", 0.95);
+    run(&random::CLUSTERS, 0..400).check("clusters", 0.98);
 }
 
 #[test]
 fn entire_phases() {
-    run(&random::ENTIRE, 0..250).check("entire phases", 0.95);
+    run(&random::ENTIRE, 0..250).check("entire phases", 0.99);
 }
 
 #[test]
@@ -156,7 +156,7 @@ fn finite_ends_on_and_near_saddles() {
 
 #[test]
 fn named_poles() {
-    run(&random::POLES, 0..250).check("poles", 0.95);
+    run(&random::POLES, 0..250).check("poles", 0.99);
 }
 
 #[test]

@@ -111,8 +111,8 @@ fn arrives(phase: &dyn Phase, form: &NormalForm, v: Complex64, goal: Complex64) 
             let (f, d) = phase.value_and_derivative(z);
             let change = (target - f) / d;
             slope = d;
-            // NaN must not pass.
-            if !(change.norm() < 0.3 * length && change.norm() < last.max(1e-10 * length)) {
+            let calm = change.norm() < 0.3 * length && change.norm() < last.max(1e-10 * length);
+            if !calm {
                 return false;
             }
             z += change;
@@ -140,7 +140,7 @@ fn carried(
             let target = phase.value(z) - form.level();
             for _ in 0..8 {
                 let change = (target - form.unfolding_at(v)) / (form.slope(v) * form.radius());
-                if !(change.norm() < 1.0) {
+                if change.norm() >= 1.0 || change.re.is_nan() {
                     return None;
                 }
                 v += change;

@@ -21,7 +21,7 @@ use super::series::Contribution;
 use super::unfolding::Unfolding;
 use crate::integral::{Amplitude, Phase};
 use crate::ring::{
-    KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, to_coefficients, unit_points,
+    KEPT, MAX_SADDLES, NormalForm, Values, ZERO, evaluate, to_coefficients, unit_points,
 };
 use crate::saddles::Topology;
 use crate::{Error, Scaled};
@@ -60,21 +60,30 @@ impl Pole {
     ) -> Result<Pole, Error> {
         let mut radius = radius;
         for _ in 0..CIRCLES {
-            let mut values: Values =
-                std::array::from_fn(|s| amplitude.value(z + unit_points()[s] * radius));
-            let size = values.iter().fold(0.0f64, |m, g| m.max(g.norm()));
+            // g (z - z_p)^2 at the points as they are rounded, which near another pole are not quite those
+            // of the circle: carried over by the Taylor series.
+            let points: Values = std::array::from_fn(|s| z + unit_points()[s] * radius);
+            let found: Values =
+                std::array::from_fn(|s| amplitude.value(points[s]) * (points[s] - z).powi(2));
+            let size = found.iter().fold(0.0f64, |m, g| m.max(g.norm()));
+            let mut values = found;
             to_coefficients(&mut values);
-            let principal = |n: usize| values[POINTS - n];
-            // Between the two orders that are covered and the far end of the Taylor half.
-            let rest = values[KEPT * 3 / 4..POINTS - 2].iter().fold(0.0f64, |m, c| m.max(c.norm()));
+            let taylor: [Complex64; KEPT / 2] = std::array::from_fn(|n| values[n]);
+            values = std::array::from_fn(|s| {
+                let series = |v| evaluate(&taylor, v);
+                found[s] - (series((points[s] - z) / radius) - series(unit_points()[s]))
+            });
+            to_coefficients(&mut values);
+            // The last quarter of the Taylor half and the poles of higher order.
+            let rest = values[KEPT * 3 / 4..].iter().fold(0.0f64, |m, c| m.max(c.norm()));
             if size.is_finite() && rest <= 1e-14 * size {
                 let (value, slope) = phase.value_and_derivative(z);
-                let noise = 4.0 * f64::EPSILON * size * radius;
+                let noise = 4.0 * f64::EPSILON * size;
                 return Ok(Pole {
                     z,
-                    simple: principal(1) * radius,
-                    double: principal(2) * (radius * radius),
-                    noise: (noise, noise * radius),
+                    simple: values[1] / radius,
+                    double: values[0],
+                    noise: (noise / radius, noise),
                     radius,
                     value,
                     slope,

@@ -47,6 +47,8 @@ const HOLDS: f64 = 1e-3;
 pub(super) const FIRST: usize = 16;
 /// The last first rings that are tried, relative to the least one.
 const TIGHT: [f64; 3] = [1.0, 0.92, 0.86];
+/// First fillings of a fold whose saddles are far apart.
+const LOOSE: [f64; 2] = [0.6, 0.8];
 /// Branch points must lie beyond this part of a ring.
 const CLEAR: f64 = 1.05;
 /// Rings on which poles outside them are split off, too.
@@ -229,16 +231,17 @@ impl Contribution {
 }
 
 impl Series {
-    /// The rings for `saddles` saddles (0: an end point) round `centre`, the first one at about
+    /// The rings for some saddles (none: an end point) round `centre`, the first one at about
     /// `reach` from it but not below `least`. None if there is no normal form.
     pub fn new(
         given: &Given,
-        saddles: usize,
+        saddles: &[Complex64],
         centre: Complex64,
         (reach, least): (f64, f64),
     ) -> Option<Series> {
         let phase = given.phase;
-        let first = first_ring(given, saddles, centre, reach, least)?;
+        let first = first_ring(given, saddles.len(), centre, reach, least)
+            .or_else(|| first_ring_of_fold(given, saddles))?;
         let degree = first.form.degree() as i32;
         let height = |form: &NormalForm| form.radius().powi(degree);
         let low = (LOW / given.least / height(&first.form))
@@ -476,6 +479,15 @@ fn add_rings_by_pole(given: &Given, trials: &mut Vec<Trial>, index: usize) {
             trials.insert(at, ring);
         }
     }
+}
+
+/// The same for two saddles so far apart that no circle round both serves.
+fn first_ring_of_fold(given: &Given, saddles: &[Complex64]) -> Option<Trial> {
+    let &[first, second] = saddles else { return None };
+    LOOSE.into_iter().find_map(|filling| {
+        let form = NormalForm::find_fold(given.phase, [first, second], filling)?;
+        Trial::new(form, given)
+    })
 }
 
 /// The largest rings once more without the poles outside them that a series at the least wavenumber would

@@ -79,7 +79,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
             let powered = Powered::new(amplitude, at, branches.iter().copied().zip(lifts));
             let given =
                 Given { least, phase, amplitude: powered.simplest(), poles: &[], outside: &bases };
-            let own = Series::new(&given, 0, at, (0.3 * near, 1e-6 * size));
+            let own = Series::new(&given, &[], at, (0.3 * near, 1e-6 * size));
             let own = own.map(|own| own.with_sign(sign).with_powers(&powered.powers));
             ends.push(End { at, sign, own, near: Vec::new() });
         }
@@ -276,9 +276,10 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
             nodes[index].settled = true;
             continue;
         }
+        let places: Vec<Complex64> = group.members.iter().map(|&m| saddles[m].z).collect();
         let Some(series) = Series::new(
             given,
-            group.members.len(),
+            &places,
             group.centre,
             ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius),
         ) else {

@@ -112,6 +112,54 @@ impl NormalForm {
         form.settle(phase, 14).then_some(form)
     }
 
+    /// A form of two saddles far apart, whose places say more than a circle round their centre: `A` and `x_1`
+    /// from `f` at both, the first map from the cubic that has the right value and slope at both. The
+    /// saddles lie at `filling` of the ring's radius. None if Newton does not settle.
+    pub(crate) fn find_fold(
+        phase: &dyn Phase,
+        saddles: [Complex64; 2],
+        filling: f64,
+    ) -> Option<NormalForm> {
+        let [(f1, bend1), (f2, bend2)] = saddles.map(|z| {
+            let [f, _, bend] = phase.jet(z);
+            (f, bend)
+        });
+        // Phi(u_s) = -2 u_s^3; any of the three roots will do.
+        let u = ((f2 - f1) * 0.25).powf(1.0 / 3.0);
+        let radius = u.norm() / filling;
+        if !(radius.is_finite() && radius > 0.0) {
+            return None;
+        }
+        let (mean, half) = ((saddles[0] + saddles[1]) * 0.5, (saddles[0] - saddles[1]) * 0.5);
+        // u_s dz/du at both: (dz/du)^2 = Phi''/f'', the sign nearer to that of the chord.
+        let slope = |square: Complex64| {
+            let root = square.sqrt() * u;
+            if (root * half.conj()).re < 0.0 { -root } else { root }
+        };
+        let (first, second) = (slope(u * 6.0 / bend1), slope(-u * 6.0 / bend2));
+        let cube = ((first + second) * 0.5 - half) * 0.5;
+        let square = (first - second) * 0.25;
+        let scale = u.inv() * radius;
+        let mut map = [ZERO; KEPT];
+        map[0] = mean - square;
+        map[1] = (half - cube) * scale;
+        map[2] = square * scale * scale;
+        map[3] = cube * scale * scale * scale;
+        let mut unfolding = [ZERO; MAX_SADDLES];
+        unfolding[0] = (f1 + f2) * 0.5;
+        unfolding[1] = u * u * (-3.0 * radius);
+        let mut form = NormalForm {
+            degree: 3,
+            radius,
+            unfolding,
+            map,
+            residual: f64::INFINITY,
+            tail: f64::INFINITY,
+            evaluations: 0,
+        };
+        form.settle(phase, 14).then_some(form)
+    }
+
     /// The same form on a ring `factor` times as large (below 1: made anew on a smaller one). None if
     /// Newton does not settle there.
     pub fn resized(&self, phase: &dyn Phase, factor: f64) -> Option<NormalForm> {

@@ -45,12 +45,14 @@ impl<'a> Exponent<'a> {
 pub(crate) enum Ended {
     /// The height asked for was reached.
     Reached,
-    /// It came to a branch cut of the phase as the closure has it.
+    /// Uphill it came to a branch cut of the phase as the closure has it.
     Cut,
     /// The bound on steps, a singularity or another saddle stopped it.
     Stalled,
 }
 
+/// Branch cuts that one descent crosses at most.
+const CUTS: usize = 4;
 /// The next step may be longer by this.
 const GROWTH: f64 = 2.5;
 /// Steps of one trace at most.
@@ -73,8 +75,7 @@ pub(crate) fn trace(
     let mut rounding = own + 1e-13 * (goal - origin.re).abs();
     if slope.norm_sqr() < rounding * bend.norm() {
         // A far goal may be very high: the range nearby.
-        let near =
-            [0.03 * longest, -0.03 * longest].map(|d| (h.height(start + d) - origin.re).abs());
+        let near = [0.1 * longest, -0.1 * longest].map(|d| (h.height(start + d) - origin.re).abs());
         rounding = own + 1e-13 * near[0].max(near[1]).min((goal - origin.re).abs());
     }
     if slope.norm_sqr() < rounding * bend.norm() {
@@ -83,7 +84,8 @@ pub(crate) fn trace(
         path.push(z);
         [origin, slope, bend] = h.jet(z);
     }
-    let span = (goal - origin.re).abs();
+    let mut span = (goal - origin.re).abs();
+    let mut cuts = 0;
     let mut t = 0.0;
     let mut shrink = 1.0;
     // Where h'' happens to vanish the natural step is no guide: steps grow by a factor at most.
@@ -125,7 +127,14 @@ pub(crate) fn trace(
                 && jump.norm() > 0.5 * (size * w.norm())
                 && shrink < 0.1
             {
-                return Ended::Cut;
+                if direction > 0.0 || cuts == CUTS || !jump.re.is_finite() {
+                    return Ended::Cut;
+                }
+                // Downhill it goes on, on its own sheet, until it is low on the closure's too.
+                cuts += 1;
+                origin += jump;
+                span += jump.re.max(0.0);
+                continue;
             }
             // Put the point exactly on its height and measure anew before a shorter step.
             for _ in 0..2 {
