@@ -6,7 +6,7 @@ use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Powered, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
-use crate::saddles::{Certificate, Group, Region, Saddle, Sheeting, Topology, Tree, locate};
+use crate::saddles::{Certificate, Group, Region, Saddle, Sheeting, Topology, Tree, locate_few};
 use num_complex::Complex64;
 
 pub(super) fn undecided(reason: impl Into<String>) -> Error {
@@ -53,7 +53,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
     let region = Region::around(&reached, margin);
-    let saddles = locate(phase, region)?;
+    let saddles = locate_few(phase, region, MAX_GROUPS)?;
     let size = region.size();
     let topology = Topology::new(phase, contour, &saddles, drop);
     let tails = topology.tails();
@@ -94,7 +94,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let given = Given { least, phase, amplitude, poles: &poles, outside: &bases };
 
     let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
-    if tree.groups.len() > MAX_GROUPS || saddles.len() > MAX_GROUPS {
+    if tree.groups.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
     let algebraic = algebraic_ends(problem, &mut sheeting, &tree, &saddles, size)?;

@@ -172,7 +172,7 @@ impl NormalForm {
                 *new = ZERO;
             }
         }
-        if !form.settle(phase, 7) {
+        if !form.settle(phase, 10) {
             return None;
         }
         if factor < 1.0 {

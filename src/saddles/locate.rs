@@ -18,6 +18,7 @@ use crate::Error;
 use crate::integral::Phase;
 use crate::ring::MAX_SADDLES;
 use num_complex::Complex64;
+use std::cell::Cell;
 
 /// A rectangle in the complex plane.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -89,10 +90,41 @@ pub struct Saddle {
     pub value: Complex64,
 }
 
+/// A phase that answers so many times only, then with NaN.
+struct Metered<'a> {
+    phase: &'a dyn Phase,
+    left: Cell<usize>,
+}
+
+impl Metered<'_> {
+    fn is_spent(&self) -> bool {
+        let left = self.left.get();
+        self.left.set(left.saturating_sub(1));
+        left == 0
+    }
+}
+
+impl Phase for Metered<'_> {
+    fn value_and_derivative(&self, z: Complex64) -> (Complex64, Complex64) {
+        if self.is_spent() { (NAN, NAN) } else { self.phase.value_and_derivative(z) }
+    }
+
+    fn jet(&self, z: Complex64) -> [Complex64; 3] {
+        if self.is_spent() { [NAN; 3] } else { self.phase.jet(z) }
+    }
+}
+
+const NAN: Complex64 = Complex64::new(f64::NAN, f64::NAN);
+
 /// Rectangles that are looked at in one search.
 const RECTANGLES: usize = 3000;
 /// Saddles found twice are this close, in units of a part.
 const SAME: f64 = 1e-3;
+/// Values of `f'` that a search may take for each saddle that it may find: some 300 are used where many
+/// are found, 15,000 for a few beside poles and cuts.
+const EVALUATIONS: usize = 1000;
+/// The same in all.
+const MOST_EVALUATIONS: usize = 1_000_000;
 /// Depth of quartering where the count is clean.
 const DEPTH: u32 = 18;
 /// Depth from which on a count that its quarters do not bear out is that of merged saddles.
@@ -116,26 +148,43 @@ const POLE_DEPTH: u32 = 5;
 /// # Ok::<(), merging_saddles::Error>(())
 /// ```
 pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
+    locate_few(phase, region, usize::MAX)
+}
+
+/// The same for `most` saddles at most.
+///
+/// # Errors
+/// If there are more, too.
+pub(crate) fn locate_few(
+    phase: &dyn Phase,
+    region: Region,
+    most: usize,
+) -> Result<Vec<Saddle>, Error> {
+    let budget = most.saturating_mul(EVALUATIONS).min(MOST_EVALUATIONS);
+    let given = phase;
+    let phase = &Metered { phase, left: Cell::new(budget) };
     let mut found: Vec<Complex64> = Vec::new();
     let mut stack = vec![(region, 0u32)];
     let mut seen = 0;
     let total = region.size();
-    while let Some((part, depth)) = stack.pop() {
-        seen += 1;
-        if seen > RECTANGLES {
-            return Err(Error::Undecided {
-                reason: format!(
-                    "more than {RECTANGLES} rectangles were needed to count the saddles"
-                ),
-                remedy: "give a contour that stays closer to where the saddles are",
-            });
+    loop {
+        let reason = if found.len() > most {
+            format!("more than {most} saddles near the contour are too many")
+        } else if seen > RECTANGLES {
+            format!("more than {RECTANGLES} rectangles were needed to count the saddles")
+        } else if phase.left.get() == 0 {
+            format!("more than {budget} values of f' were needed to count the saddles")
+        } else {
+            String::new()
+        };
+        if !reason.is_empty() {
+            let remedy = "give a contour that stays closer to where the saddles are";
+            return Err(Error::Undecided { reason, remedy });
         }
+        let Some((part, depth)) = stack.pop() else { break };
+        seen += 1;
         // Poles of f' count against its zeros: believe a count where there is none.
         let count = winding(phase, &part).filter(|_| depth >= POLE_DEPTH || regular(phase, &part));
-        if std::env::var("DBL").is_ok() && part.holds(Complex64::new(-0.6267279, -0.40429622), 1e-2)
-        {
-            eprintln!("depth {depth} {:.6} {:.6}: {count:?}", part.low, part.high);
-        }
         match count {
             Some(0) => continue,
             Some(n) if n > 0 && n as usize <= MAX_SADDLES => {
@@ -173,7 +222,7 @@ pub fn locate(phase: &dyn Phase, region: Region) -> Result<Vec<Saddle>, Error> {
         }
         stack.extend(part.quarters().map(|quarter| (quarter, depth + 1)));
     }
-    Ok(found.into_iter().map(|z| Saddle { z, value: phase.value(z) }).collect())
+    Ok(found.into_iter().map(|z| Saddle { z, value: given.value(z) }).collect())
 }
 
 /// All saddles in a part, of which some may be known already: merged ones by their number, since the

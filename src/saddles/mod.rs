@@ -12,6 +12,7 @@ mod tree;
 pub(crate) use certificate::Certificate;
 pub(crate) use crossings::crossings;
 pub use follow::follow;
+pub(crate) use locate::locate_few;
 pub use locate::{Region, Saddle, locate};
 pub(crate) use sheets::{Branch, Sheeting, Sheets, Unrolled};
 pub(crate) use topology::{Multiplicities, Topology};
