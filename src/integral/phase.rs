@@ -76,6 +76,11 @@ impl Phase for Polynomial {
         (f, df)
     }
 
+    fn value(&self, z: Complex64) -> Complex64 {
+        let zero = Complex64::new(0.0, 0.0);
+        self.0.iter().rev().fold(zero, |f, &c| f * z + c)
+    }
+
     fn jet(&self, z: Complex64) -> [Complex64; 3] {
         let zero = Complex64::new(0.0, 0.0);
         let (mut f, mut df, mut half) = (zero, zero, zero);

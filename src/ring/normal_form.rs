@@ -240,8 +240,7 @@ impl NormalForm {
             let mut scale = self.map[1].norm();
             // Rounding alone is left to be corrected: the residual had to be measured, no more.
             if expected < SETTLED * scale {
-                self.measure_tail();
-                return true;
+                return self.finish(phase);
             }
             let step = self.correct(residuals);
             if !(step.is_finite() && step < 10.0 * scale && step < 4.0 * last_step) {
@@ -250,8 +249,7 @@ impl NormalForm {
             scale = self.map[1].norm();
             // Settled: at the rounding level, or small and no longer falling.
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
-                self.measure_tail();
-                return true;
+                return self.finish(phase);
             }
             // The next step falls by this ratio at least, by its square where all goes well.
             let ratio = step / last_step.min(0.1 * scale);
@@ -263,6 +261,16 @@ impl NormalForm {
             last_step = step;
         }
         false
+    }
+
+    fn finish(&mut self, phase: &dyn Phase) -> bool {
+        self.measure_tail();
+        if self.saddles() == 1 {
+            // The mean over the ring has the rounding of the much larger values there.
+            self.unfolding[0] = phase.value(self.map[0]);
+            self.evaluations += 1;
+        }
+        self.unfolding[0].is_finite()
     }
 
     /// `f(z(u)) - A - Phi(u)` on `N` points; None where it is not finite.

@@ -206,7 +206,6 @@ impl Orders {
 }
 
 /// `p_j^(n)` for a start, and their absolute values for unit noise.
-#[expect(clippy::type_complexity)]
 fn recursion(
     form: &NormalForm,
     start: &Coefficients,

@@ -110,7 +110,7 @@ pub(crate) fn trace(
         // The slope may not change much either: a long step can land on another path.
         let good = (correction * secant / ahead).norm() < 0.15
             && correction.norm() < 0.3 * w.norm()
-            && (ahead / slope).ln().norm() < 1.0;
+            && near_one(ahead / slope, 1.0);
         if good {
             z += step + correction;
             t += dt;
@@ -123,9 +123,7 @@ pub(crate) fn trace(
             // Where the slope is smooth but the value jumps, the path leaves the sheet that the closure
             // is on; the contour is on it, and can't be met again.
             let jump = value - (origin + direction * t) - (slope + ahead) * step * 0.5;
-            if (ahead / slope).ln().norm() < 0.2
-                && jump.norm() > 0.5 * (size * w.norm())
-                && shrink < 0.1
+            if near_one(ahead / slope, 0.2) && jump.norm() > 0.5 * (size * w.norm()) && shrink < 0.1
             {
                 if direction > 0.0 || cuts == CUTS || !jump.re.is_finite() {
                     return Ended::Cut;
@@ -153,6 +151,14 @@ pub(crate) fn trace(
         }
     }
     Ended::Stalled
+}
+
+/// `|ln q| < limit`; the logarithm is taken only where `|q - 1|` leaves it open.
+fn near_one(q: Complex64, limit: f64) -> bool {
+    let distance = (q - 1.0).norm_sqr();
+    // |q - 1| <= e^|ln q| - 1 and |ln q| <= -ln(1 - |q - 1|).
+    let (sure, most) = (-(-limit).exp_m1(), limit.exp_m1());
+    distance < sure * sure || (distance < most * most && q.ln().norm() < limit)
 }
 
 /// A point a little way off a saddle, where the height changes most in the direction wanted.
