@@ -21,6 +21,7 @@
 //! rounded would allow (a negative number there).
 
 mod descent;
+mod fold;
 mod hubs;
 mod integrate;
 mod lone;
