@@ -44,6 +44,17 @@ fn all(c: &mut Criterion) {
     run(c, "1024 pearcey |x1|<32, |x2|<16", &real([32.0, 16.0]), |(a, b)| cuspoid::pearcey(a, b));
     let name = format!("{} pearcey |x1|<300, |x2|<60", far.len());
     run(c, &name, &far, |(a, b)| cuspoid::pearcey(a, b));
+    // Within eight Airy units of the caustic 8 x_2^3 + 27 x_1^2 = 0.
+    let strip = real([8.0, 22.0]);
+    let strip: Vec<_> = strip
+        .into_iter()
+        .map(|(zeta, x2)| {
+            let x2 = x2 - 38.0;
+            let unit = (12.0 * (-x2 / 6.0).sqrt()).cbrt();
+            ((8.0f64 / 27.0).sqrt() * (-x2).powf(1.5) + zeta * unit, x2)
+        })
+        .collect();
+    run(c, "1024 pearcey, caustic", &strip, |(a, b)| cuspoid::pearcey(a, b));
     let complex = points([12.0, 8.0], 0.5);
     run(c, "1024 complex Pearcey", &complex, |x| cuspoid::real_line(&x));
     let tail = points([10.0, 8.0, 6.0], 0.0);

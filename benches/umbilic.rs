@@ -25,6 +25,8 @@ fn run(c: &mut Criterion, name: &str, half: f64, f: impl Fn([f64; 3]) -> Option<
 fn all(c: &mut Criterion) {
     run(c, "256 elliptic, up to 6", 6.0, |[x, y, z]| elliptic(x, y, z).ok());
     run(c, "256 hyperbolic, up to 6", 6.0, |[x, y, z]| hyperbolic(x, y, z).ok());
+    run(c, "256 elliptic, up to 10000", 1e4, |[x, y, z]| elliptic(x, y, z).ok());
+    run(c, "256 hyperbolic, up to 10000", 1e4, |[x, y, z]| hyperbolic(x, y, z).ok());
     run(c, "256 elliptic, up to 50", 50.0, |[x, y, z]| elliptic(x, y, z).ok());
     run(c, "256 hyperbolic, up to 50", 50.0, |[x, y, z]| hyperbolic(x, y, z).ok());
 }

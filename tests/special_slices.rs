@@ -149,7 +149,7 @@ fn airy_functions() {
         "modulus_phase",
         &reals(),
         finite(modulus_phase, |v| v.modulus + v.prime_phase.recip()),
-        |x, out| modulus_phase_slice(x, out),
+        modulus_phase_slice,
     );
     let pairs: Vec<[C; 2]> = complex_arrays();
     check("incomplete_airy", &pairs, |[x, a]| incomplete_airy(x, a), incomplete_airy_slice);

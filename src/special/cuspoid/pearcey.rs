@@ -3,8 +3,10 @@
 //! Near, `|x_2| <= 16` and `|x_1| <= 32`: one Taylor step from the nearest node of a table, in the
 //! distance along the straight line to the point. Its coefficients follow by integration by parts,
 //! as the differential equations of DLMF 36.10 do.
-//! Far: every saddle on its own where it is lone and the others are far below; else descents.
+//! Far: every saddle on its own where it is lone and the others are far below; near the caustic two of them
+//! together (the file `fold`); else descents.
 
+use super::fold;
 use super::lone::{self, is_lone};
 use super::pearcey_nodes::{COLUMNS, NODES, ROWS};
 use super::polynomial::{Polynomial, ZERO, moments_about_zero, precise, shifted};
@@ -120,9 +122,11 @@ fn far(x1: f64, x2: f64) -> Result<[Complex64; 3], Error> {
         let radius = 2.0 * (-third).sqrt();
         let angle = (-half / (third * third.abs().sqrt()).abs()).acos() / 3.0;
         const THIRD: f64 = std::f64::consts::TAU / 3.0;
-        [0.0, THIRD, -THIRD]
-            .iter()
-            .all(|turn| add(polished(radius * (angle + turn).cos(), p, q), &mut sum))
+        let root = |turn: f64| polished(radius * (angle + turn).cos(), p, q);
+        // The one at negative t stands alone first: its angle is between 2 pi/3 and pi.
+        add(root(THIRD), &mut sum)
+            && (fold::add(&h, x2, &mut sum)
+                || [0.0, -THIRD].iter().all(|turn| add(root(*turn), &mut sum)))
     } else {
         let u = -(half + discriminant.sqrt()).cbrt();
         let v = -third / u;
@@ -131,7 +135,7 @@ fn far(x1: f64, x2: f64) -> Result<[Complex64; 3], Error> {
         let pair = Complex64::new(-0.5 * real, 0.75f64.sqrt() * (u - v).abs());
         let square = pair * pair;
         let level = square * square + square * x2 + pair * x1;
-        level.im > BELOW && add(real, &mut sum)
+        add(real, &mut sum) && (level.im > BELOW || fold::add(&h, x2, &mut sum))
     };
     if done {
         return Ok(sum);
