@@ -72,7 +72,9 @@ impl<'a, P: Phase, A: Amplitude> Sampler<'a, P, A> {
     pub fn clear_of_poles(&self, a: Complex64, b: Complex64) -> bool {
         self.integral.poles().iter().all(|p| {
             let along = ((p - a) / (b - a)).re.clamp(0.0, 1.0);
-            (b - a).norm() <= 2.0 * (a + (b - a) * along - p).norm()
+            let distance = (a + (b - a) * along - p).norm();
+            // Places that are no numbers are clear of everything.
+            distance.is_nan() || (b - a).norm() <= 2.0 * distance
         })
     }
 
