@@ -410,7 +410,8 @@ impl Series {
         let phi = Unfolding::new(&self.rings[self.reference].form);
         let sizes = moments.values.map(|c| c.norm());
         let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
-            let residual = ring.form.residual();
+            // By chance the residual may be smaller than what f is known to.
+            let residual = ring.form.residual().max(2.0 * f64::EPSILON * self.noise_scale);
             self.poles[n].as_ref()?.contribution(&phi, &moments.values, k, residual)
         };
         let mut best = (0, 0, f64::INFINITY, Complex64::new(0.0, 0.0));

@@ -168,6 +168,14 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
     certify(&mut plan, &topology, lowest - drop)?;
+    let ends = !(plan.ends.is_empty() && plan.algebraic.is_empty());
+    let kept = plan.nodes.iter().filter_map(|node| node.series.as_ref());
+    if !ends
+        && plan.poles.iter().all(|p| p.crossings == 0)
+        && !kept.into_iter().any(Series::contributes)
+    {
+        return Err(undecided("what contributes could not be told from what is too low to matter"));
+    }
     for (index, saddle) in saddles.iter().enumerate() {
         let [_, _, second] = phase.jet(saddle.z);
         let power: f64 =
@@ -298,7 +306,9 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
             continue;
         };
         if series.contributes() {
-            reach.include(highest(group), lowest(group));
+            // Perhaps by its lowest saddle alone.
+            let heights = group.members.iter().map(|&m| height(saddles[m].value));
+            reach.include(heights.fold(f64::INFINITY, f64::min), lowest(group));
         }
         nodes[index].series = Some(series.with_powers(&powered.powers));
         nodes[index].settled = true;
