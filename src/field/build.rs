@@ -297,7 +297,10 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
             continue;
         };
         if series.contributes() {
-            reach.include(highest(group), lowest(group));
+            // Of several saddles the lowest may be the only one that does.
+            let least = |m: f64, &member: &usize| m.min(height(saddles[member].value));
+            let sure = group.members.iter().fold(f64::INFINITY, least);
+            reach.include(sure, lowest(group));
         }
         nodes[index].series = Some(series.with_powers(&powered.powers));
         nodes[index].settled = true;
