@@ -173,3 +173,18 @@ fn printed_zeros() {
     let inside = cuspoid::pearcey_zero_inside(1, 0).unwrap();
     assert!((inside.x2 + 4.378045).abs() < 5e-6 && (inside.x1 - 0.527678).abs() < 5e-6);
 }
+
+/// Five saddles at the edge of being one group, between two valleys whose way over the middle climbs by 29:
+/// the value is the difference of two rays, each by quadrature with 60 digits (mpmath).
+#[test]
+fn arms_stay_low() {
+    let x = [
+        Complex64::new(-3.6429717543735665, -0.31779712398760823),
+        Complex64::new(4.671632797076426, 2.165947965148653),
+        Complex64::new(0.26502735975983516, -4.473013133250039),
+        Complex64::new(-3.2148509999530765, 2.535017129675514),
+    ];
+    let exact = Complex64::new(0.913869459186435, 0.2840203573515999);
+    let got = cuspoid::between(&x, 2, 1).unwrap().psi.to_complex();
+    assert!((got - exact).norm() < 1e-14, "{got}");
+}
