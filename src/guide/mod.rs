@@ -83,10 +83,12 @@ pub mod layer;
 mod passage;
 mod profile;
 mod revival;
+mod second;
 mod sensitivity;
 mod slab;
 mod source;
 mod station;
+mod table;
 mod uniform;
 mod well;
 
