@@ -60,6 +60,15 @@ fn revival_and_scaling_laws() {
     for (eps, seen, _) in scan {
         assert!((field(eps) / seen[0] - 1.0).abs() < 5e-3, "{eps}: {} {}", field(eps), seen[0]);
     }
+    // The solution's own exponent, its next correction separated: ln|psi| = a + b ln eps + c eps^(1/3) through the
+    // three points; the plain slope is some 0.12 there.
+    let points = scan.map(|(eps, seen, _)| (eps.ln(), eps.cbrt(), seen[0].ln()));
+    let [(l0, r0, y0), (l1, r1, y1), (l2, r2, y2)] = points;
+    let determinant = (l1 - l0) * (r2 - r0) - (l2 - l0) * (r1 - r0);
+    let separated = ((y1 - y0) * (r2 - r0) - (y2 - y0) * (r1 - r0)) / determinant;
+    let plain = exponent(&scan.map(|(eps, seen, _)| (eps, seen[0])));
+    println!("at cut-off: plain {plain:.3}, correction separated {separated:.3}, expected 0.167");
+    assert!((separated - 1.0 / 6.0).abs() < 0.05, "{separated}");
     let found = exponent(&[1e-3, 1e-4, 1e-5].map(|eps| (eps, field(eps))));
     println!("exponent {found:.3}, expected 0.167");
     assert!((found - 1.0 / 6.0).abs() < 0.05, "{found}");
@@ -106,7 +115,10 @@ fn revivals_of_other_guides() {
         for shot in &shots[1..] {
             let (seen, formula) =
                 (inside(shot) / incoming, guide.revival(mode - 1, shot.h).unwrap());
-            println!("{name} incoming {incoming:.4} r {:.3}: {seen:.5} formula {formula:.5}", shot.r);
+            println!(
+                "{name} incoming {incoming:.4} r {:.3}: {seen:.5} formula {formula:.5}",
+                shot.r
+            );
             assert!((formula / seen - 1.0).abs() < 0.15, "{name}: {formula} {seen}");
         }
     }
