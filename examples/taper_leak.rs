@@ -19,18 +19,18 @@ mod cells;
 mod colours;
 #[path = "support/output.rs"]
 mod output;
+#[path = "support/passage.rs"]
+mod passage;
 #[path = "support/picture.rs"]
 mod picture;
 #[path = "support/table.rs"]
 #[allow(dead_code)] // its faults serve for every refusal
 mod table;
 
-use cells::{centres, levels};
 use clap::Parser;
 use merging_saddles::Error;
-use merging_saddles::guide::{Passage, Polarization, Profile, Slab, SlabGuide, level_db};
-use picture::Picture;
-use std::f64::consts::PI;
+use merging_saddles::guide::{Passage, Polarization, Slab, SlabGuide};
+use passage::{Words, fault, print_rows, raised_cosine};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use table::Fault;
@@ -88,10 +88,6 @@ fn main() -> ExitCode {
     }
 }
 
-fn fault(error: Error) -> Fault {
-    Fault(error.to_string())
-}
-
 fn run(arguments: &Arguments) -> Result<(), Fault> {
     let Arguments { from_nm, to_nm, length_nm, .. } = *arguments;
     output::prepare(&arguments.output)?;
@@ -108,20 +104,14 @@ fn run(arguments: &Arguments) -> Result<(), Fault> {
             "--to-nm {to_nm} does not lie between 0 and --from-nm {from_nm}: give a taper that narrows"
         )));
     }
-    // A raised cosine: no kink at either end.
-    let taper = Profile::from_fn(0.0, length_nm, move |s| {
-        let (angle, half) = (PI * s / length_nm, 0.5 * (from_nm - to_nm));
-        (to_nm + half * (1.0 + angle.cos()), -half * angle.sin() * PI / length_nm)
-    })
-    .map_err(fault)?;
+    let taper = raised_cosine(from_nm, to_nm, length_nm).map_err(fault)?;
     let leak = guide.along(arguments.mode, taper, 0.0).map_err(fault)?;
     report(&leak, polarization).map_err(fault)?;
     draw(&leak, arguments)
 }
 
 fn report(leak: &Passage, polarization: Polarization) -> Result<(), Error> {
-    let cut = leak.cutoff_range();
-    let length = leak.layer_range();
+    let (cut, length) = (leak.cutoff_range(), leak.layer_range());
     println!(
         "{polarization:?}, cut off {:.1} um along, at a half width of {:.0} nm",
         cut / 1e3,
@@ -136,50 +126,13 @@ fn report(leak: &Passage, polarization: Polarization) -> Result<(), Error> {
         beam.axis_rad.to_degrees()
     );
     println!("\n along (um)   in the core   level at the wall (dB)   formula");
-    for j in -3..=5 {
-        let range = cut + 0.6 * length * f64::from(j);
-        if range < leak.fitted_from() || range > leak.profile().ranges()[1] {
-            continue;
-        }
-        let wall = leak.field(range, leak.profile().width(range))?;
-        println!(
-            "{:11.1} {:11.4} % {:19.2} {:17.0e}",
-            range / 1e3,
-            100.0 * leak.energy_inside(range)?,
-            level_db(wall.value),
-            leak.departure(range)?
-        );
-    }
-    Ok(())
+    print_rows(leak, 1e3)
 }
 
 fn draw(leak: &Passage, arguments: &Arguments) -> Result<(), Fault> {
-    let [from, to] = leak.profile().ranges();
     let beam = leak.beam().map_err(fault)?;
     let (start, out) = leak.ray_start(beam.axis_rad);
-    let axis = |s: f64| out + beam.axis_rad.sin() * (s - start);
-    let to = to.min(leak.cutoff_range() + 7.0 * leak.layer_range());
-    let from = from.max(leak.cutoff_range() - 5.0 * leak.layer_range());
-    let top = (1.5 * axis(to)).max(3.0 * leak.cutoff_width());
-    let (ranges, across) =
-        (centres(from, to, arguments.columns), centres(0.0, top, arguments.rows));
-    let level_db = levels(&ranges, &across, |s, x| {
-        let value = if s < leak.fitted_from() {
-            leak.adiabatic(s, x)
-        } else {
-            leak.field(s, x).map(|u| u.value)
-        };
-        value.map_or(f64::NAN, level_db)
-    });
-    let um =
-        |points: Vec<(f64, f64)>| points.into_iter().map(|(s, x)| (s / 1e3, x / 1e3)).collect();
-    let line = |first: f64, x: &dyn Fn(f64) -> f64| -> Vec<(f64, f64)> {
-        um((0..=100)
-            .map(|j| first + (to - first) * f64::from(j) / 100.0)
-            .map(|s| (s, x(s)))
-            .collect())
-    };
-    let picture = Picture {
+    let words = Words {
         title: format!(
             "Mode {} of a tapered slab through its cut-off: guided, then a beam in the cladding",
             arguments.mode
@@ -192,20 +145,12 @@ fn draw(leak: &Passage, arguments: &Arguments) -> Result<(), Fault> {
             if arguments.tm { "TM" } else { "TE" }
         ),
         axes: ["along the taper (um)", "from the middle plane (um)"],
-        bed: line(from, &|s| leak.profile().width(s)),
-        bed_name: "edge of the core",
-        model_bed: um(leak.fitted_profile()),
-        beam: line(start, &axis),
-        cutoff: (leak.cutoff_range() / 1e3, leak.cutoff_width() / 1e3),
-        cutoff_name: format!("cut-off, {:.0} um", leak.cutoff_range() / 1e3),
-        downwards: false,
-        range: ranges.iter().map(|s| s / 1e3).collect(),
-        across: across.iter().map(|x| x / 1e3).collect(),
-        level_db,
-        floor_db: -40.0,
+        boundary: "edge of the core",
+        cutoff: "cut-off",
+        unit: 1e3,
+        range_unit: " um",
     };
-    let svg = picture.svg().map_err(|error| Fault(format!("the picture: {error}")))?;
-    output::write_whole(&arguments.output, &svg)?;
-    println!("\npicture: {}", arguments.output.display());
-    Ok(())
+    let cells = [arguments.columns, arguments.rows];
+    // In the one-way equation the axis falls by the sine of its angle.
+    passage::draw(leak, [start, out], beam.axis_rad.sin(), cells, words, &arguments.output)
 }

@@ -15,18 +15,18 @@ mod cells;
 mod colours;
 #[path = "support/output.rs"]
 mod output;
+#[path = "support/passage.rs"]
+mod passage;
 #[path = "support/picture.rs"]
 mod picture;
 #[path = "support/table.rs"]
 #[allow(dead_code)] // its faults serve for every refusal
 mod table;
 
-use cells::{centres, levels};
 use clap::Parser;
 use merging_saddles::Error;
-use merging_saddles::guide::{Passage, Profile, QuantumWell, level_db};
-use picture::Picture;
-use std::f64::consts::PI;
+use merging_saddles::guide::{Passage, QuantumWell};
+use passage::{Words, fault, print_rows, raised_cosine};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use table::Fault;
@@ -72,10 +72,6 @@ fn main() -> ExitCode {
     }
 }
 
-fn fault(error: Error) -> Fault {
-    Fault(error.to_string())
-}
-
 fn run(arguments: &Arguments) -> Result<(), Fault> {
     let Arguments { from, to, duration, .. } = *arguments;
     output::prepare(&arguments.output)?;
@@ -84,11 +80,7 @@ fn run(arguments: &Arguments) -> Result<(), Fault> {
             "--to {to} does not lie between 0 and --from {from}: give a well that narrows"
         )));
     }
-    let walls = Profile::from_fn(0.0, duration, move |t| {
-        let (angle, half) = (PI * t / duration, 0.5 * (from - to));
-        (to + half * (1.0 + angle.cos()), -half * angle.sin() * PI / duration)
-    })
-    .map_err(fault)?;
+    let walls = raised_cosine(from, to, duration).map_err(fault)?;
     let well = QuantumWell.along(arguments.state, walls, 0.0).map_err(fault)?;
     report(&well).map_err(fault)?;
     draw(&well, arguments)
@@ -114,64 +106,25 @@ fn report(well: &Passage) -> Result<(), Error> {
         peak.0,
         peak.0 * peak.0
     );
-    println!("\n     time    in the well   at the wall (dB)   formula");
-    for j in -3..=5 {
-        let time = release + 0.6 * length * f64::from(j);
-        if time < well.fitted_from() || time > well.profile().ranges()[1] {
-            continue;
-        }
-        let wall = well.field(time, well.profile().width(time))?;
-        println!(
-            "{time:9.1} {:12.4} % {:14.2} {:15.0e}",
-            100.0 * well.energy_inside(time)?,
-            level_db(wall.value),
-            well.departure(time)?
-        );
-    }
-    Ok(())
+    println!("\n       time   in the well   level at the wall (dB)   formula");
+    print_rows(well, 1.0)
 }
 
 fn draw(well: &Passage, arguments: &Arguments) -> Result<(), Fault> {
-    let [from, to] = well.profile().ranges();
-    let to = to.min(well.cutoff_range() + 6.0 * well.layer_range());
-    let from = from.max(well.cutoff_range() - 4.0 * well.layer_range());
     // A particle of the peak's momentum P = 2^(-1/3)/L_z moves at the speed 2 P.
     let speed = 2.0 * 0.5f64.cbrt() / well.layer_height();
-    let (start, out) = (well.cutoff_range(), well.cutoff_width());
-    let axis = |t: f64| out + speed * (t - start);
-    let top = (1.5 * axis(to)).max(3.0 * out);
-    let (times, across) = (centres(from, to, arguments.columns), centres(0.0, top, arguments.rows));
-    let level_db = levels(&times, &across, |t, x| {
-        let value = if t < well.fitted_from() {
-            well.adiabatic(t, x)
-        } else {
-            well.field(t, x).map(|u| u.value)
-        };
-        value.map_or(f64::NAN, level_db)
-    });
-    let line = |first: f64, x: &dyn Fn(f64) -> f64| -> Vec<(f64, f64)> {
-        (0..=100).map(|j| first + (to - first) * f64::from(j) / 100.0).map(|t| (t, x(t))).collect()
-    };
-    let picture = Picture {
+    let start = [well.cutoff_range(), well.cutoff_width()];
+    let words = Words {
         title: format!("State {} of a narrowing well: held, then released", arguments.state),
         subtitle:
             "Level of the wave function re its largest value inside; the half above the middle"
                 .to_string(),
         axes: ["time (hbar/V)", "from the middle (hbar/(2MV)^(1/2))"],
-        bed: line(from, &|t| well.profile().width(t)),
-        bed_name: "wall of the well",
-        model_bed: well.fitted_profile(),
-        beam: line(start, &axis),
-        cutoff: (start, out),
-        cutoff_name: format!("release, {start:.0}"),
-        downwards: false,
-        range: times,
-        across,
-        level_db,
-        floor_db: -40.0,
+        boundary: "wall of the well",
+        cutoff: "release",
+        unit: 1.0,
+        range_unit: "",
     };
-    let svg = picture.svg().map_err(|error| Fault(format!("the picture: {error}")))?;
-    output::write_whole(&arguments.output, &svg)?;
-    println!("\npicture: {}", arguments.output.display());
-    Ok(())
+    let cells = [arguments.columns, arguments.rows];
+    passage::draw(well, start, speed, cells, words, &arguments.output)
 }

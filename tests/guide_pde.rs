@@ -6,6 +6,7 @@
 //! outside up to ten layer lengths, at `t = (h_c - h)/(m^2 eps)^(1/3)`.
 
 #[path = "support/compare.rs"]
+#[allow(dead_code)] // shared by several tests
 mod compare;
 #[path = "support/tapered.rs"]
 #[allow(dead_code)] // shared by several tests

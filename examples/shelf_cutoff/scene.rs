@@ -85,7 +85,9 @@ impl Scene {
             Ok(beam) => beam.axis_rad,
             Err(_) => run.take_off_angle_small_rad().min(1.5),
         };
-        let (beam_start_m, _) = run.passage().ray_start(axis_rad);
+        // The ray is a line through this point; it leaves the bed a little before.
+        let (start_m, depth_m) = run.passage().ray_start(axis_rad);
+        let beam_start_m = leaves_bed(run, [start_m, depth_m], axis_rad, place.range_m);
         Ok(Followed {
             mode,
             place: *place,
@@ -168,6 +170,21 @@ impl Followed {
         let station = self.run.passage().station(range_m)?;
         Ok(decibels(station.field(depth_m)?.relative_error))
     }
+}
+
+/// Where the beam's axis crosses the bed, at or before the point from which its ray is counted.
+fn leaves_bed(run: &ModeCutOff, [start_m, depth_m]: [f64; 2], axis_rad: f64, cut_m: f64) -> f64 {
+    let below =
+        |range_m: f64| depth_m + axis_rad.sin() * (range_m - start_m) > run.depth_m(range_m);
+    let (mut before, mut after) = (cut_m.min(start_m), start_m);
+    if below(before) || !below(after) {
+        return after;
+    }
+    for _ in 0..60 {
+        let middle = 0.5 * (before + after);
+        if below(middle) { after = middle } else { before = middle }
+    }
+    after
 }
 
 /// A mode on the track at its cut-off, known in the water five transition lengths before.

@@ -1,161 +1,280 @@
-//! What the bend of a profile adds to the phase of the uniform field.
+//! What the bend of a profile adds to the uniform field.
 //!
-//! Round cut-off the scaled range is a polynomial of the width, `T(u) = u + c_2 u^2 + c_3 u^3 + ..`,
-//! `u = h_c - h` (unit slope at cut-off). The phase is `phi(p) = integral of 2 p T(h_n(p)) dp`; its part
-//! from `T = u` is elementary, the rest
+//! Round cut-off the scaled range is `T(u) = u + G(u)`, `u = h_c - h` (unit slope at cut-off). The phase is `phi(p) =
+//! integral of 2 p T(h_n(p)) dp`; its part from `T = u` is elementary, the rest
 //!
 //! ```text
-//! J(w) = integral from 0 to w of 2 sinh w cosh w G(h_c - h_n(w)) dw,   G(u) = c_2 u^2 + c_3 u^3 + ..
+//! J(w) = integral from 0 to w of 2 sinh w cosh w G(h_c - h_n(w)) dw
 //! ```
 //!
-//! is not. It is tabulated once per profile: Taylor series about the points of a grid of step 0.4, from
-//! values on circles that stay clear of the pole of the width at `i pi/2`, of the branch cuts and of the
-//! Brewster point (`m > 1`). Where no circle fits, and outside the grid, Gauss-Legendre panels (DLMF
-//! 3.5(v)) lead from 0 to the point, round the pole on the side of the contour.
+//! is not; it is tabulated once per profile (`table.rs`).
+//!
+//! `G` is known as a polynomial that fits the profile round the cut-off. The contour goes where `u` is complex and
+//! several times larger than that window, and where the field is nothing; but a polynomial of high degree grows into
+//! valleys of its own there. Where it does, it is written in powers of `v = u/(1 - (u/S)^2)`, `S` six times the window: the same
+//! on the window, and nearly the straight profile far away; its poles lie off the contour. The roots and powers of the slope, which have no such
+//! exponential, are polynomials of `u` of low degree: `1/T'` itself would have poles where the polynomial turns.
 //!
 //! Source: derived here.
 
 use super::dispersion::Dispersion;
+use super::second::Second;
+use super::table::Table;
 use crate::Complex64;
-use std::f64::consts::{FRAC_PI_2, TAU};
+use std::f64::consts::PI;
 use std::fmt;
 
-/// The grid: step, lower left corner, columns and rows.
-const STEP: f64 = 0.4;
-const CORNER: Complex64 = Complex64::new(-2.4, -0.8);
-const COLUMNS: usize = 13;
-const ROWS: usize = 9;
-/// Terms of a series, and places on its circle.
-const TERMS: usize = 36;
-const CIRCLE: usize = 64;
-/// The least distance from everything singular; half a diagonal of the grid is 0.283.
-const CLEAR: f64 = 0.65;
-
-/// Nodes and weights of the 6-point Gauss-Legendre rule on (-1, 1), positive half (DLMF 3.5(v)).
-const GAUSS: [(f64, f64); 3] = [
-    (0.238_619_186_083_196_93, 0.467_913_934_572_691),
-    (0.661_209_386_466_264_5, 0.360_761_573_048_138_6),
-    (0.932_469_514_203_152, 0.171_324_492_379_170_36),
-];
+/// Terms of `G` and of the slope.
+const BENDS: usize = 8;
+/// Width on each side of cut-off that counts, over `(m^2 eps)^(1/3)`.
+pub(super) const REACH: f64 = 2.5;
+const SLOPES: usize = 4;
+const ZERO: Complex64 = Complex64::new(0.0, 0.0);
+const ONE: Complex64 = Complex64::new(1.0, 0.0);
 
 /// A curved profile for one mode.
 #[derive(Clone, PartialEq)]
 pub(super) struct Curve {
     dispersion: Dispersion,
-    /// `c_2, c_3, ..`
+    /// `c_2, c_3, ..` as they were given.
     higher: Vec<Complex64>,
-    /// Taylor coefficients of `J` in powers of `(w - centre)/STEP`, one list for each point of the grid.
-    patches: Vec<Option<Vec<Complex64>>>,
-    /// Where the contour crosses the line `Im w = pi/2`.
-    gate: Complex64,
+    bend: Bend,
+    slope: LocalSlope,
+    table: Table,
+    /// What the bend adds to the next order.
+    second: Second,
 }
 
 impl fmt::Debug for Curve {
     /// Without the table.
     fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(out, "Curve({:?}, {:?})", self.dispersion, self.higher)
+        write!(out, "Curve({:?}, {:?})", self.dispersion, self.bend)
     }
 }
 
 impl Curve {
-    pub(super) fn new(dispersion: Dispersion, higher: Vec<Complex64>) -> Curve {
-        let gate = Complex64::new(-dispersion.gate(), FRAC_PI_2);
-        let mut curve = Curve { dispersion, higher, patches: Vec::new(), gate };
-        let turns: Vec<Complex64> = (0..CIRCLE)
-            .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
-            .collect();
-        let cells = (0..ROWS).flat_map(|row| (0..COLUMNS).map(move |column| (column, row)));
-        curve.patches = cells.map(|cell| curve.patch(centre(cell), &turns)).collect();
-        curve
+    /// `T(u) = u + c_2 u^2 + ..` from `c_2` on; `reach` is how much width to both sides of cut-off counts.
+    pub(super) fn new(dispersion: Dispersion, higher: &[Complex64], reach: f64) -> Curve {
+        let at = |u: f64| {
+            let (mut value, mut slope) = (ZERO, ZERO);
+            for c in higher.iter().rev() {
+                slope = slope * u + value;
+                value = value * u + c;
+            }
+            // value = G/u^2, and T' = 1 + ..
+            (value, (value * 2.0 + slope * u) * u + 1.0)
+        };
+        // As far as the slope stays within a factor 3.3 of that at cut-off.
+        let tame = |u: f64| (0.3..3.3).contains(&at(u).1.norm()) && at(u).1.re > 0.0;
+        let mut reach = reach;
+        while reach > 1e-6 && !(-8..=8).all(|j| tame(reach * f64::from(j) / 8.0)) {
+            reach *= 0.8;
+        }
+        // As it is where it grows into no valley of its own, which expansions at the saddles need.
+        let eps = (reach / REACH).powi(3) / (dispersion.m * dispersion.m);
+        let bend = Bend::plain(higher)
+            .filter(|bend| bend.is_benign(dispersion, eps))
+            .unwrap_or_else(|| Bend::new(reach, |u| at(u).0));
+        let slope = LocalSlope::new(reach, |u| at(u).1);
+        let table = Table::new(dispersion.gate(), 1e-12, |w| bend.rate(dispersion, w));
+        let second = Second::new(dispersion, slope);
+        Curve { dispersion, higher: higher.to_vec(), bend, slope, table, second }
     }
 
-    /// The series about a point: coefficients of `J'` by the trapezoidal rule on a circle, integrated term
-    /// by term.
-    fn patch(&self, centre: Complex64, turns: &[Complex64]) -> Option<Vec<Complex64>> {
-        let clear = self.dispersion.clearance(centre);
-        if clear < CLEAR {
-            return None;
+    /// `T(u)` and `T'(u)` of the polynomial itself.
+    pub(super) fn range(&self, u: f64) -> (Complex64, Complex64) {
+        let (mut value, mut slope) = (ZERO, ZERO);
+        for c in self.higher.iter().rev().copied().chain([ONE, ZERO]) {
+            slope = slope * u + value;
+            value = value * u + c;
         }
-        let circle = 0.6 * clear.min(1.6);
-        let values: Vec<Complex64> = turns.iter().map(|t| self.rate(centre + t * circle)).collect();
-        let mut series = vec![self.led(centre)];
-        let mut scale = STEP / CIRCLE as f64;
-        for n in 0..TERMS {
-            let sum: Complex64 =
-                values.iter().enumerate().map(|(j, v)| v * turns[j * n % CIRCLE].conj()).sum();
-            series.push(sum * (scale / (n + 1) as f64));
-            scale *= STEP / circle;
-        }
-        Some(series)
+        (value, slope)
     }
 
     /// `G(u)` and `G'(u)`.
     pub(super) fn excess(&self, u: Complex64) -> (Complex64, Complex64) {
-        let zero = Complex64::new(0.0, 0.0);
-        let (mut value, mut slope) = (zero, zero);
-        for c in self.higher.iter().rev() {
-            slope = slope * u + value;
-            value = value * u + c;
-        }
-        // value = G/u^2
-        (value * u * u, (value * 2.0 + slope * u) * u)
+        self.bend.excess(u)
     }
 
-    /// `dT/du`: the slope at cut-off over the local slope.
-    pub(super) fn flatness(&self, u: Complex64) -> Complex64 {
-        self.excess(u).1 + 1.0
+    /// `T'(u)^(1/2)`, the amplitude's factor, and the local slope over that at cut-off.
+    pub(super) fn slope(&self, u: Complex64) -> (Complex64, Complex64) {
+        (above_one(&self.slope.root, u), above_one(&self.slope.sigma, u))
+    }
+
+    /// Whether expansions at the saddles can use it.
+    pub(super) fn is_plain(&self) -> bool {
+        self.bend.is_plain()
     }
 
     /// `dJ/dw`.
     pub(super) fn rate(&self, w: Complex64) -> Complex64 {
-        let u = self.dispersion.cutoff - self.dispersion.width(w);
-        w.sinh() * w.cosh() * self.excess(u).0 * 2.0
+        self.bend.rate(self.dispersion, w)
     }
 
     /// `J(w)`.
     pub(super) fn phase(&self, w: Complex64) -> Complex64 {
-        let place = (w - CORNER) / STEP;
-        let (column, row) = (place.re.round(), place.im.round());
-        if (0.0..COLUMNS as f64).contains(&column) && (0.0..ROWS as f64).contains(&row) {
-            let cell = (column as usize, row as usize);
-            if let Some(series) = &self.patches[cell.1 * COLUMNS + cell.0] {
-                let offset = (w - centre(cell)) / STEP;
-                let start = Complex64::new(0.0, 0.0);
-                return series.iter().rev().fold(start, |sum, c| sum * offset + c);
-            }
-        }
-        self.led(w)
+        self.table.value(w, |w| self.rate(w))
     }
 
-    /// `J(w)` from panels.
-    fn led(&self, w: Complex64) -> Complex64 {
-        let zero = Complex64::new(0.0, 0.0);
-        if w.im <= FRAC_PI_2 {
-            self.along(zero, w)
-        } else {
-            self.along(zero, self.gate) + self.along(self.gate, w)
-        }
+    /// `p beta`, the whole next order inside, less its logarithm.
+    pub(super) fn smooth_beta(&self, w: Complex64) -> Complex64 {
+        self.second.smooth(self.dispersion, self.slope, w)
     }
 
-    /// The integral of `rate` along a straight line.
-    fn along(&self, from: Complex64, to: Complex64) -> Complex64 {
-        // Short beside the distance from the poles; a bounded number however far `to` is.
-        let panels = ((to - from).norm() / 0.25).ceil().clamp(1.0, 64.0);
-        let step = (to - from) / panels;
-        let mut sum = Complex64::new(0.0, 0.0);
-        for j in 0..panels as u32 {
-            let middle = from + step * (f64::from(j) + 0.5);
-            for (node, weight) in GAUSS {
-                let offset = step * (0.5 * node);
-                sum += (self.rate(middle + offset) + self.rate(middle - offset)) * weight;
-            }
-        }
-        sum * step * 0.5
+    /// The factor of `p log p` in `p beta`.
+    pub(super) fn logarithm(&self) -> Complex64 {
+        self.second.logarithm()
     }
 }
 
-fn centre((column, row): (usize, usize)) -> Complex64 {
-    CORNER + Complex64::new(STEP * column as f64, STEP * row as f64)
+/// `G = v^2 (b_0 + b_1 v + ..)`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+struct Bend {
+    b: [Complex64; BENDS],
+    far: f64,
+}
+
+impl Bend {
+    /// The polynomial itself, if it is not too long.
+    fn plain(higher: &[Complex64]) -> Option<Bend> {
+        let mut b = [ZERO; BENDS];
+        b.get_mut(..higher.len())?.copy_from_slice(higher);
+        Some(Bend { b, far: f64::INFINITY })
+    }
+
+    /// Whether the exponential falls all the way down both valleys at cut-off.
+    fn is_benign(&self, dispersion: Dispersion, eps: f64) -> bool {
+        const STEPS: u32 = 110;
+        [2.1, 0.0, 0.3].into_iter().all(|angle| {
+            let step = Complex64::from_polar(2.2 / f64::from(STEPS), angle);
+            let (mut sum, mut least) = (ZERO, 0.0f64);
+            for j in 1..=STEPS {
+                let w = step * f64::from(j);
+                sum += self.rate(dispersion, w - step * 0.5) * step;
+                let height =
+                    -(dispersion.action(w, Complex64::from(dispersion.cutoff)) + sum).im / eps;
+                // Beyond the contour's end nothing counts.
+                if height < -40.0 || w.im > 1.4 {
+                    break;
+                }
+                if height > least + 0.5 || height.is_nan() {
+                    return false;
+                }
+                least = least.min(height);
+            }
+            true
+        })
+    }
+
+    /// Whether it is the polynomial itself.
+    fn is_plain(&self) -> bool {
+        self.far == f64::INFINITY
+    }
+
+    /// From `G/u^2` on the window.
+    fn new(reach: f64, excess: impl Fn(f64) -> Complex64) -> Bend {
+        let far = 6.0 * reach;
+        let most = reach / (1.0 - (reach / far).powi(2));
+        // What is below 1e-4 of a radian in the phase only adds saddles far away.
+        let b = fitted(most, 2e-5 / reach, |v| {
+            let u = 2.0 * v / (1.0 + (1.0 + (2.0 * v / far).powi(2)).sqrt());
+            excess(u) * (u / v).powi(2)
+        });
+        Bend { b, far }
+    }
+
+    /// `G(u)` and `G'(u)`.
+    fn excess(&self, u: Complex64) -> (Complex64, Complex64) {
+        let s = u / self.far;
+        let near = (1.0 - s * s).inv();
+        let v = u * near;
+        let (mut value, mut slope) = (ZERO, ZERO);
+        for c in self.b.iter().rev() {
+            slope = slope * v + value;
+            value = value * v + c;
+        }
+        (value * v * v, (value * 2.0 + slope * v) * v * (s * s + 1.0) * near * near)
+    }
+
+    /// `dJ/dw`.
+    fn rate(&self, dispersion: Dispersion, w: Complex64) -> Complex64 {
+        let u = dispersion.cutoff - dispersion.width(w);
+        w.sinh() * w.cosh() * self.excess(u).0 * 2.0
+    }
+}
+
+/// The local slope over that at cut-off, `sigma = 1/T'`, `1/sigma` and `sigma^(-1/2)`, each as `1 + u (..)`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct LocalSlope {
+    pub(super) sigma: [Complex64; SLOPES],
+    pub(super) inverse: [Complex64; SLOPES],
+    root: [Complex64; BENDS],
+}
+
+impl LocalSlope {
+    /// From `T'` on the window.
+    pub(super) fn new(reach: f64, slope: impl Fn(f64) -> Complex64) -> LocalSlope {
+        LocalSlope {
+            sigma: fitted(reach, 1e-9, |u| (slope(u).inv() - 1.0) / u),
+            inverse: fitted(reach, 1e-9, |u| (slope(u) - 1.0) / u),
+            root: fitted(reach, 1e-9, |u| (slope(u).sqrt() - 1.0) / u),
+        }
+    }
+
+    /// `sigma`, its first and second derivative, and `1/sigma` at `u`.
+    pub(super) fn at(&self, u: Complex64) -> [Complex64; 4] {
+        let [mut value, mut slope, mut bend] = [ZERO; 3];
+        for c in self.sigma.iter().rev().copied().chain([ONE]) {
+            bend = bend * u + slope;
+            slope = slope * u + value;
+            value = value * u + c;
+        }
+        [value, slope, bend * 2.0, above_one(&self.inverse, u)]
+    }
+}
+
+/// `1 + u (c_0 + c_1 u + ..)`.
+fn above_one(c: &[Complex64], u: Complex64) -> Complex64 {
+    c.iter().rev().fold(ZERO, |sum, c| sum * u + c) * u + 1.0
+}
+
+/// Coefficients in powers of `u`, `|u| <= most`, from Chebyshev polynomials and the values at the zeros of
+/// a higher one (DLMF 3.11(ii)); without the last terms as far as they are below `least`.
+fn fitted<const N: usize>(
+    most: f64,
+    least: f64,
+    value: impl Fn(f64) -> Complex64,
+) -> [Complex64; N] {
+    const PLACES: u32 = 16;
+    let zero = [ZERO; N];
+    let mut c = zero;
+    for j in 0..PLACES {
+        let angle = PI * (f64::from(j) + 0.5) / f64::from(PLACES);
+        let value = value(most * angle.cos());
+        for (n, c) in (0..).zip(&mut c) {
+            let weight = if n == 0 { 1.0 } else { 2.0 } / f64::from(PLACES);
+            *c += value * (weight * (f64::from(n) * angle).cos());
+        }
+    }
+    for c in c.iter_mut().rev() {
+        if c.norm() > least {
+            break;
+        }
+        *c = ZERO;
+    }
+    // Clenshaw's recurrence (DLMF 3.11.15) on polynomials.
+    let (mut last, mut before) = (zero, zero);
+    for n in (0..N).rev() {
+        let factor = if n == 0 { 1.0 } else { 2.0 } / most;
+        let mut next = zero;
+        for i in 0..N {
+            let shifted = if i == 0 { c[n] } else { last[i - 1] * factor };
+            next[i] = shifted - before[i];
+        }
+        before = last;
+        last = next;
+    }
+    last
 }
 
 #[cfg(test)]
@@ -166,17 +285,13 @@ mod tests {
     fn phase_is_the_integral_of_its_rate() {
         let c = Complex64::new;
         for (n, m) in [(1, 1.0), (2, 0.55), (1, 0.9), (1, 1.3)] {
-            let curve = Curve::new(Dispersion::new(n, m), vec![c(0.25, 0.01), c(-0.1, 0.0)]);
+            let curve = Curve::new(Dispersion::new(n, m), &[c(0.25, 0.01), c(-0.1, 0.0)], 0.6);
             let points = [
                 c(0.1, 0.2),
                 c(-0.3, 0.3),
                 c(0.0, 1.0),
                 c(0.0, 1.2),
                 c(-0.3, 1.0),
-                c(-1.4, 1.5),
-                c(-1.4, 1.65),
-                c(-1.8, 2.3),
-                c(-2.9, 2.4),
                 c(if m > 1.0 { 0.7 * m.recip().atanh() } else { 1.4 }, 0.1),
             ];
             for w in points {
@@ -185,9 +300,6 @@ mod tests {
                 let rate = curve.rate(w);
                 let error = (slope - rate).norm() / (1.0 + rate.norm());
                 assert!(error < 1e-6, "n {n} m {m} w {w}: {slope} {rate}");
-                // The table against the panels.
-                let error = (curve.phase(w) - curve.led(w)).norm() / (1.0 + rate.norm());
-                assert!(error < 1e-9, "n {n} m {m} w {w}: {error:e}");
             }
         }
     }

@@ -38,6 +38,7 @@
 //! Source: derived here.
 
 use super::curve::Curve;
+use super::second::log_above;
 use crate::Complex64;
 use crate::integral::{Amplitude, Phase};
 use std::f64::consts::{FRAC_PI_2, FRAC_PI_4, PI};
@@ -95,25 +96,6 @@ impl Dispersion {
             } else {
                 slope.inv().atanh() + I * FRAC_PI_2.copysign(below.im)
             }
-    }
-
-    /// Distance from the pole of the width and from the branch cuts.
-    pub(super) fn clearance(&self, w: Complex64) -> f64 {
-        // All of it repeats with the period i pi.
-        let folded = (w.im - PI * (w.im / PI).round()).abs();
-        let above = FRAC_PI_2 - folded;
-        let pole = above.hypot(w.re);
-        let beyond = |gap: f64| gap.max(0.0);
-        if self.m == 1.0 {
-            pole
-        } else if self.m > 1.0 {
-            let brewster = self.m.recip().atanh();
-            pole.min(folded.hypot(beyond(brewster - w.re.abs())))
-        } else if self.passes_left() {
-            above.hypot(beyond(-self.m.atanh() - w.re))
-        } else {
-            pole.min(above.hypot(beyond(self.m.atanh() - w.re.abs())))
-        }
     }
 
     /// Whether the contour passes to the left of `i pi/2 - artanh m`.
@@ -285,8 +267,23 @@ pub struct ModeAmplitude {
     pub(super) eps: Complex64,
     /// Where the field is wanted.
     pub(super) side: Side,
+    /// What of the next order is in it.
+    pub(super) part: Part,
     /// The bend of the profile, if it has one.
     pub(super) curve: Option<Arc<Curve>>,
+}
+
+/// What of the next order the amplitude on a curved profile has.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) enum Part {
+    /// All but the logarithm at cut-off.
+    Smooth,
+    /// The logarithm alone, without the leading term.
+    Logarithm,
+    /// That of a straight profile with the local slope.
+    LocalSlope,
+    /// What `Smooth` has beyond `LocalSlope`, without the leading term.
+    Rest,
 }
 
 /// Inside at `x`, or outside (at the distance that the phase holds).
@@ -317,30 +314,59 @@ impl Amplitude for ModeAmplitude {
         // The local slope over that at cut-off is 1/flatness.
         let (root, eps) = match &self.curve {
             Some(curve) => {
-                let flatness = curve.flatness(self.dispersion.cutoff - width);
-                (flatness.sqrt(), self.eps / flatness)
+                let (root, slope) = curve.slope(self.dispersion.cutoff - width);
+                (root, self.eps * slope)
             }
             None => (Complex64::new(1.0, 0.0), self.eps),
         };
         // p D^(-1/2) sin(kappa x)/sin(kappa h_n) dp, sin(kappa h_n) = kappa/sqrt(D) up to sign.
-        let inside = || (p + eps * m / (d * 12.0)) * root;
+        let inside = self.inside_factor(w, p, d, eps) * root;
         match self.side {
-            Side::Inside { x, even: false } => inside() * (kappa * x).sin(),
-            Side::Inside { x, even: true } => inside() * (kappa * x).cos(),
-            Side::InsideSlope { x, even: false } => inside() * (kappa * x).cos() * kappa,
-            Side::InsideSlope { x, even: true } => -inside() * (kappa * x).sin() * kappa,
+            Side::Inside { x, even: false } => inside * (kappa * x).sin(),
+            Side::Inside { x, even: true } => inside * (kappa * x).cos(),
+            Side::InsideSlope { x, even: false } => inside * (kappa * x).cos() * kappa,
+            Side::InsideSlope { x, even: true } => -inside * (kappa * x).sin() * kappa,
             Side::Outside | Side::OutsideSlope => {
-                let mut factor = p;
-                if self.eps != Complex64::new(0.0, 0.0) {
+                let mut factor = inside;
+                if self.eps != Complex64::new(0.0, 0.0)
+                    && !matches!(self.part, Part::Logarithm | Part::Rest)
+                {
                     let bend = self.dispersion.width_slope(w, width) * I * 0.25;
-                    factor += eps * ((6.0 - 5.0 * m) / (d * 12.0) + bend);
+                    factor += eps * root * ((1.0 - m) / (d * 2.0) + bend);
                 }
                 if self.side == Side::OutsideSlope {
                     factor *= I * p;
                 }
-                factor * root * (I * p * (self.h - width)).exp() * kappa
-                    / self.dispersion.root_density(w)
+                factor * (I * p * (self.h - width)).exp() * kappa / self.dispersion.root_density(w)
             }
+        }
+    }
+}
+
+impl ModeAmplitude {
+    /// `p (1 + eps beta)`, or the part of it that is wanted; `local` is `eps` with the local slope.
+    fn inside_factor(
+        &self,
+        w: Complex64,
+        p: Complex64,
+        density: Complex64,
+        local: Complex64,
+    ) -> Complex64 {
+        let zero = Complex64::new(0.0, 0.0);
+        if self.eps == zero {
+            return p;
+        }
+        let curve = match &self.curve {
+            Some(curve) if self.part != Part::LocalSlope => curve,
+            _ => return p + local * self.dispersion.m / (density * 12.0),
+        };
+        match self.part {
+            Part::Smooth => p + self.eps * curve.smooth_beta(w),
+            Part::Rest => {
+                self.eps * curve.smooth_beta(w) - local * self.dispersion.m / (density * 12.0)
+            }
+            _ if p == zero => zero,
+            _ => self.eps * curve.logarithm() * p * log_above(p),
         }
     }
 }
@@ -357,7 +383,14 @@ mod tests {
         let lag = Complex64::new(0.0, 0.0);
         let phase = ModePhase { dispersion, h, d: one * 0.1, turn: one, curve: None, lag };
         let eps = one * 0.1;
-        let amplitude = ModeAmplitude { dispersion, h, eps, side: Side::Outside, curve: None };
+        let amplitude = ModeAmplitude {
+            dispersion,
+            h,
+            eps,
+            side: Side::Outside,
+            part: Part::Smooth,
+            curve: None,
+        };
         let mut worst = 0.0f64;
         for ends in points.windows(2) {
             let at = |j: i32| ends[0] + (ends[1] - ends[0]) * (f64::from(j) / 4000.0);
@@ -395,8 +428,8 @@ mod tests {
             let turn = Complex64::from_polar(1.0, -0.03);
             let d = Complex64::new(0.3, 0.01);
             let dispersion = Dispersion::new(2, m);
-            let higher = vec![Complex64::new(0.2, 0.01), Complex64::new(-0.05, 0.0)];
-            let curve = Some(Arc::new(Curve::new(dispersion, higher)));
+            let higher = [Complex64::new(0.2, 0.01), Complex64::new(-0.05, 0.0)];
+            let curve = Some(Arc::new(Curve::new(dispersion, &higher, 0.6)));
             let lag = Complex64::new(0.1, 0.02);
             let phase = ModePhase { dispersion, h, d, turn, curve, lag };
             for w in

@@ -56,15 +56,28 @@
 //! | 2 | 1 | straight | 0.01 | next | 4.0e-4 / 1.3e-4 | 1.2e-3 / 3.8e-4 |
 //! | 2 | 0.55 | straight | 0.01 | next | 4.2e-4 / 1.1e-4 | 5.5e-4 / 3.5e-4 |
 //! | 3 | 1.5 | straight | 0.02 | next | 2.1e-4 / 1.6e-3 | 5.3e-3 / 1.7e-3 |
-//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | leading | 7.5e-3 / 1.6e-2 | 4.0e-2 / 2.7e-2 |
-//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | next | 1.8e-3 / 1.5e-3 | 1.2e-2 / 2.1e-3 |
-//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | next | 5.7e-4 / 5.4e-4 | 8.7e-3 / 2.1e-3 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | leading | 6.1e-3 / 1.1e-2 | 3.3e-2 / 2.1e-2 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | local slope | 4.8e-4 / 1.0e-3 | 1.1e-2 / 1.4e-3 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | next | 1.5e-4 / 4.0e-4 | 1.1e-3 / 1.7e-3 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | leading | 6.1e-3 / 1.1e-2 | 3.7e-2 / 2.3e-2 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | local slope | 1.9e-4 / 4.7e-4 | 9.0e-3 / 2.1e-3 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | next | 1.1e-4 / 3.1e-4 | 3.7e-3 / 1.4e-3 |
+//!
+//! On the curved profiles one complex constant is taken out: the start of the solution leaves some tenths of a per
+//! cent of the mode behind. With density ratio 0.55 and modes 2 and 3 on these profiles the
+//! order is measured by the mismatch at the boundary: at `eps = 0.01` and `t = 0` it falls from 4 to 7 per cent at
+//! leading order over 0.1 to 0.5 per cent with the local slope to 0.1 to 0.2 per cent; late after cut-off the whole next
+//! order gains a factor of 1.2 to 1.8 over the local slope.
+//!
+//! Revivals ([`SlopingGuide::revival`]) at `eps = 0.01`, formula over solution at the lower cut-off and one layer's time
+//! later: `m = 0.55` 1.08 and 0.91, even modes 1.04 and 0.90, the profile `h_c - r + r^2/25` 0.98 and 1.12, losses
+//! (`eps (1 + 0.004 i)`) 1.01 and 0.99 (`tests/guide_revival.rs`, ignored test).
 //!
 //! The benchmark wedge (25 Hz, 1500 over 1700 m/s, density ratio 1.5, 0.5 dB per wavelength, 200 m deep, 1 in 20;
 //! `eps = 0.19`) in `tests/guide_wedge.rs`: outside 1 to 3 % in mode 1, 4 to 6 % in mode 2, 5 to 12 % in mode 3; inside 2 to 3, 6
 //! to 8 and 13 to 15 %, since modes couple at such a slope. Levels of the beam are within 0.4 dB, those in the water
-//! within 1.4 dB. [`Passage::departure`] says 5 to 44 %, and covers. [`Passage::station`] makes an error figure of it
-//! that covered every one of 1010 points of four runs (`eps` 0.02 and 0.1, straight and curved), 12 to 18 times the error
+//! within 1.4 dB. [`Passage::departure`] covers them. [`Passage::station`] makes an error figure of it
+//! that covered every one of 1010 points of four runs (`eps` 0.02 and 0.1, straight and curved), 9 to 16 times the error
 //! at the median.
 //!
 //! # Caution
@@ -83,10 +96,12 @@ pub mod layer;
 mod passage;
 mod profile;
 mod revival;
+mod second;
 mod sensitivity;
 mod slab;
 mod source;
 mod station;
+mod table;
 mod uniform;
 mod well;
 

@@ -1,14 +1,16 @@
 //! The revival of a released mode at the cut-offs of lower modes.
 //!
 //! After mode `n` has gone, the field near the boundary is nearly static, `psi ~ B (x - h)`,
-//! `|B| = (eps/sqrt 2) (r - r_n)^(-3/2)` (constant slope, `m = 1`, unit energy). When a lower mode reaches its own
-//! cut-off the boundary turns resonant and the field inside rises again, from order `eps` to `eps^(2/3)`:
+//! `|B| = (eps/sqrt 2) |r - r_n|^(-3/2)` for unit energy, with unit slope at the cut-off `r_n` of mode `n`: the
+//! saddle `p = 0` of the uniform field, where the density ratio and the parity play no part. When a lower mode reaches
+//! its own cut-off the boundary turns resonant and the field inside rises again, from order `eps` to `eps^(2/3)`:
 //! in the layer of the lower mode by the factor
 //!
 //! ```text
 //! R(t, y) = y + 2 i integral from 0 to infinity of p exp(i p y - i p^2 t - (2/3) p^3) dp
 //! ```
 //!
+//! times `|B| L`, `L = (m/(eps sigma))^(1/3)` with the slope `sigma` at the cut-off of the lower mode. It is
 //! an integral with two saddles and an end point beside them (an incomplete Airy function, DLMF 9.5.4 for the
 //! complete one), `R(t, 0) -> 1/t` for `t -> -infinity`.
 //!
@@ -22,6 +24,8 @@ use std::f64::consts::{PI, SQRT_2};
 const I: Complex64 = Complex64::new(0.0, 1.0);
 
 /// `R(t, y)`: the static field and its response at the cut-off of a lower mode.
+///
+/// `t` is complex where the media absorb.
 ///
 /// Accuracy: relative 1e-10 (with `y` taken off), with an error figure. Cost: one quadrature.
 ///
@@ -37,16 +41,19 @@ const I: Complex64 = Complex64::new(0.0, 1.0);
 /// assert!((r.im - exact).abs() < 1e-12 && r.re.abs() < 1e-12);
 /// # Ok::<(), merging_saddles::Error>(())
 /// ```
-pub fn revival(t: f64, y: f64) -> Result<Estimate, Error> {
-    Error::require_finite("t", t)?;
+pub fn revival(t: impl Into<Complex64>, y: f64) -> Result<Estimate, Error> {
+    let t = t.into();
+    if !(t.re.is_finite() && t.im.is_finite()) {
+        return Err(Error::Domain { what: "t", value: t, remedy: "pass a finite number" });
+    }
     Error::require_finite("y", y)?;
     if y < 0.0 {
         return Err(Error::domain("y", y, "count y outwards from the boundary"));
     }
     let (re, zero) = (Complex64::from, Complex64::new(0.0, 0.0));
-    let phase = Polynomial(vec![zero, re(y), re(-t), I * (2.0 / 3.0)]);
+    let phase = Polynomial(vec![zero, re(y), -t, I * (2.0 / 3.0)]);
     // The cube wins beyond the saddles.
-    let end = 2.0 + t.abs() + y.sqrt();
+    let end = 2.0 + t.norm() + y.sqrt();
     let contour = Contour::starting_at([zero, re(end)]);
     let integral = Integral::new(phase, contour).amplitude(Momentum).quadrature(1.0, 1e-10)?;
     let value = integral.scaled * (I * 2.0) + Scaled::from(re(y));
@@ -64,14 +71,17 @@ impl Amplitude for Momentum {
 }
 
 impl SlopingGuide {
-    /// Amplitude inside, for unit energy, to which the released mode revives at the cut-off of mode `lower`
-    /// where the guide has the width `h` (near that mode's cut-off): `|B| eps^(-1/3) |R(t, 0)|`. The field there is
-    /// that times `sin(kappa x)` of the lower mode.
+    /// Amplitude inside, for unit energy and without the carrier, to which the released mode revives at the cut-off
+    /// of mode `lower` of the same parity, where the guide has the width `h` (near that mode's cut-off):
+    /// `|B L R(t, 0)|`. The field there is that times the sine or cosine of the lower mode.
     ///
-    /// Leading order: within 15 % at `eps = 0.01`.
+    /// Any density ratio, both parities, curved profiles (with the range and slope of the profile at the lower
+    /// cut-off, so its coefficients must hold as far as that), and losses.
     ///
-    /// Errors: [`Error::Domain`] for a mode that is not lower than this one; [`Error::Unsupported`] for `m` other
-    /// than 1, even modes, curved profiles and losses, which were not derived.
+    /// Leading order: within 15 % of the wave equation at `eps = 0.01`.
+    ///
+    /// Errors: [`Error::Domain`] for a mode that is not lower than this one, an even mode 1, which is never cut
+    /// off, and a profile that has not fallen to the lower cut-off or does not fall there.
     ///
     /// ```
     /// use merging_saddles::guide::SlopingGuide;
@@ -83,23 +93,24 @@ impl SlopingGuide {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn revival(&self, lower: u32, h: f64) -> Result<f64, Error> {
-        let eps = self.eps();
-        if self.density_ratio() != 1.0 || !self.is_plain() || eps.im != 0.0 {
-            return Err(Error::Unsupported {
-                what: "a revival with a density jump, even modes, a curved profile or losses"
-                    .into(),
-                remedy: "ask for it at m = 1, odd modes, constant slope and without losses",
-            });
-        }
         Error::require_positive("width h", h)?;
-        let between = self.cutoff_width() - (f64::from(lower) - 0.5) * PI;
-        if lower == 0 || between <= 0.0 {
-            let remedy = "give the number of a lower mode, from 1 on";
+        let (cutoff, m, eps) = (self.cutoff_width(), self.density_ratio(), self.eps());
+        let least = if self.is_even() { 2 } else { 1 };
+        let width = (f64::from(lower) - if self.is_even() { 1.0 } else { 0.5 }) * PI;
+        if lower < least || width >= cutoff {
+            let remedy = "give the number of a lower mode that has a cut-off, from 1 on (even modes: from 2)";
             return Err(Error::domain("lower mode", f64::from(lower), remedy));
         }
-        let scale = eps.re.cbrt();
-        let t = ((f64::from(lower) - 0.5) * PI - h) / scale;
-        let r = revival(t, 0.0)?.value.norm();
-        Ok(eps.re / SQRT_2 * between.powf(-1.5) / scale * r)
+        // Range and slope at the lower cut-off, and the range now.
+        let (there, flatness) = self.range_lost(cutoff - width);
+        let (here, _) = self.range_lost(cutoff - h);
+        if !(there.re > 0.0 && flatness.re > 0.0) {
+            let remedy = "give a profile that goes on falling to the cut-off of the lower mode";
+            return Err(Error::domain("range of the lower cut-off", there.re, remedy));
+        }
+        let length = (flatness * m / eps).powf(1.0 / 3.0);
+        let t = (here - there) / (eps * length * length);
+        let static_slope = eps * there.powf(-1.5) / SQRT_2;
+        Ok((static_slope * length * revival(t, 0.0)?.value).norm())
     }
 }

@@ -8,7 +8,7 @@ use super::passage::Passage;
 use crate::{Complex64, Error, Estimate, Scaled};
 
 impl Passage {
-    /// How well the formula holds at a range: twice the mismatch of the two conditions at the boundary
+    /// How well the formula holds at a range: one and a half times the mismatch of the two conditions at the boundary
     /// ([`SlopingGuide::mismatch`](super::SlopingGuide::mismatch)), plus the phase that the fit of the profile leaves.
     ///
     /// Relative to the field at the boundary, as an amplitude; the constant phase of about `eps/2` at the
@@ -17,7 +17,7 @@ impl Passage {
     /// Cost: four quadratures. Errors: as [`field`](Self::field).
     pub fn departure(&self, range: f64) -> Result<f64, Error> {
         self.uniform(range, 0.0)?;
-        Ok(2.0 * self.guide().mismatch_at(self.place(range))? + self.fit_departure())
+        Ok(1.5 * self.guide().mismatch_at(self.place(range))? + self.fit_departure())
     }
 
     /// A range at which fields are wanted with the whole error figure, that of the formula included.
@@ -40,7 +40,7 @@ impl Passage {
         let at_boundary = self.field(range, self.profile().width(range))?.value.norm();
         // What the beam carries away from its birth.
         let h = self.media().q * self.cutoff_width();
-        let birth = 2.0 * self.guide().mismatch(h)? + self.fit_departure();
+        let birth = 1.5 * self.guide().mismatch(h)? + self.fit_departure();
         Ok(Station { passage: self, range, absolute: departure * at_boundary, relative: birth })
     }
 }

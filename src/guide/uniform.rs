@@ -38,16 +38,16 @@
 //! any `eps`.
 //!
 //! On a curved profile the phase is `integral of 2 p T(h_n(p)) dp` (see `curve.rs`), the amplitude gains
-//! `(-h'(T(p)))^(-1/2)`, and `eps` in the next order the local slope. Modes even in `x` have `(n - 1) pi` for
+//! `(-h'(T(p)))^(-1/2)`, and the next order has the local slope and its derivatives (`second.rs`). Modes even in `x` have `(n - 1) pi` for
 //! `(n - 1/2) pi` and the cosine.
 //!
 //! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_pde.rs` and
 //! `tests/guide_profiles.rs`.
 
-use super::curve::Curve;
-use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Side};
-use crate::integral::Amplitude;
-use crate::{Complex64, Error, Estimate, Integral, Scaled};
+use super::curve::{Curve, REACH};
+use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Part, Side};
+use crate::integral::{Amplitude, Termination};
+use crate::{Complex64, Contour, Error, Estimate, Integral, Scaled};
 use std::f64::consts::PI;
 use std::sync::Arc;
 
@@ -58,7 +58,11 @@ const I: Complex64 = Complex64::new(0.0, 1.0);
 pub enum Order {
     /// The leading term: error about `eps` before and `eps^(2/3)` after cut-off.
     Leading,
-    /// With the next term: some hundred times better at `eps = 0.01`.
+    /// The next term of a straight profile with the local slope: on a curved profile all but the slope's own
+    /// change, some ten times better than the leading term.
+    LocalSlope,
+    /// The whole next term: some hundred times better than the leading one at `eps = 0.01`, on curved profiles
+    /// too, where its amplitude has a logarithm at cut-off.
     #[default]
     Next,
 }
@@ -146,8 +150,9 @@ impl SlopingGuide {
     /// the one there.
     ///
     /// The phase is then `integral of 2 p T(h_n(p)) dp`, the amplitude has the factor
-    /// `T'(u)^(1/2)`, and the next order has the local slope `1/T'(u)` with `eps`. What is left out is
-    /// the slope's own derivative in that order.
+    /// `T'(u)^(1/2)`, and the next order the local slope `1/T'(u)` and its derivatives ([`Order`]). Only the part of the
+    /// polynomial counts that the mode feels: `|u|` up to some `3 (m^2 eps)^(1/3)`, as far as the slope stays within
+    /// a factor 3.3 of that at cut-off.
     ///
     /// Errors: [`Error::Domain`] for a coefficient that is not finite.
     ///
@@ -167,7 +172,10 @@ impl SlopingGuide {
             let remedy = "pass finite numbers";
             return Err(Error::Domain { what: "coefficient of the profile", value, remedy });
         }
-        let curve = Curve::new(self.dispersion, higher);
+        let m = self.dispersion.m;
+        // What the mode feels at its cut-off: the window of the transition.
+        let reach = REACH * (m * m * self.eps.norm()).cbrt();
+        let curve = Curve::new(self.dispersion, &higher, reach);
         Ok(SlopingGuide { curve: Some(Arc::new(curve)), ..self })
     }
 
@@ -262,11 +270,11 @@ impl SlopingGuide {
         let size = outside.exponent;
         let [outside, slope, within, within_slope] =
             [outside, slope, within, within_slope].map(|v| v.mantissa_at(size));
-        let flatness = match &self.curve {
-            Some(curve) => curve.flatness(self.dispersion.cutoff - place.h),
+        let steepness = match &self.curve {
+            Some(curve) => curve.slope(self.dispersion.cutoff - place.h).1,
             None => Complex64::new(1.0, 0.0),
         };
-        let drift = I * self.eps * 0.5 / flatness;
+        let drift = I * self.eps * 0.5 * steepness;
         let jump = within - outside;
         let flux = within_slope + drift * within - (slope + drift * outside) * m;
         let length = (m / self.eps.norm()).cbrt();
@@ -294,17 +302,28 @@ impl SlopingGuide {
         if h.re <= 0.0 {
             return Err(Error::domain("width h", h.re, "stop before the guide's tip"));
         }
-        let eps = if self.order == Order::Next { self.eps } else { Complex64::new(0.0, 0.0) };
+        let (eps, part) = self.next_order();
         let dispersion = self.dispersion;
         let lag = r - (dispersion.cutoff - h);
         let (curve, turn) = (self.curve.clone(), self.eps.inv() * self.eps.norm());
         let phase = ModePhase { dispersion, h, d: self.eps * distance, turn, curve, lag };
-        let amplitude = ModeAmplitude { dispersion, h, eps, side, curve: self.curve.clone() };
+        let amplitude = ModeAmplitude { dispersion, h, eps, side, part, curve: self.curve.clone() };
         let wavenumber = self.eps.norm().recip();
         let (contour, neglected) = self.contour(&phase, wavenumber)?;
         let prefactor = -I * (I * 2.0 / (PI * self.eps)).sqrt() * sign;
         let integral = Integral::new(phase, contour).amplitude(amplitude);
-        Ok(UniformField { integral, wavenumber, prefactor, neglected })
+        let apart = part == Part::Smooth && self.curve.is_some();
+        let logarithm = apart.then(|| integral.halves());
+        Ok(UniformField { integral, logarithm, wavenumber, prefactor, neglected })
+    }
+
+    /// `eps` of the amplitude, zero at leading order, and which part of the next order it has.
+    fn next_order(&self) -> (Complex64, Part) {
+        match self.order {
+            Order::Leading => (Complex64::new(0.0, 0.0), Part::LocalSlope),
+            Order::LocalSlope => (self.eps, Part::LocalSlope),
+            Order::Next => (self.eps, Part::Smooth),
+        }
     }
 
     /// The amplitude per scaled momentum `p = sinh w` of the radiation and its exponent, phases of
@@ -313,13 +332,14 @@ impl SlopingGuide {
         let Dispersion { cutoff, .. } = self.dispersion;
         let (p, kappa, width) = (w.sinh(), w.cosh(), self.dispersion.width(w));
         let curve = self.curve.clone();
-        let eps = if self.order == Order::Next { self.eps } else { Complex64::new(0.0, 0.0) };
+        let (eps, part) = self.next_order();
         // At h = h_n the amplitude has no exponential; the phase at cut-off is phi(p).
         let amplitude = ModeAmplitude {
             dispersion: self.dispersion,
             h: width,
             eps,
             side: Side::Outside,
+            part,
             curve,
         };
         let mut phase = self.dispersion.action(w, Complex64::from(cutoff));
@@ -337,9 +357,15 @@ impl SlopingGuide {
         (self.place(width).r.re, position.re)
     }
 
-    /// Whether it is an odd mode of a straight profile.
-    pub(super) fn is_plain(&self) -> bool {
-        !self.even && self.curve.is_none()
+    /// Whether the mode is even in `x`.
+    pub(super) fn is_even(&self) -> bool {
+        self.even
+    }
+
+    /// Range from cut-off where the width `u` has been lost, by the caller's own polynomial, and its derivative.
+    pub(super) fn range_lost(&self, u: f64) -> (Complex64, Complex64) {
+        let one = Complex64::new(1.0, 0.0);
+        self.curve.as_ref().map_or((one * u, one), |curve| curve.range(u))
     }
 
     /// Density inside over outside.
@@ -353,10 +379,36 @@ impl SlopingGuide {
     }
 }
 
+type ModeIntegral = Integral<ModePhase, ModeAmplitude>;
+
+impl ModeIntegral {
+    /// The logarithm alone, on the two halves of the contour: it is singular at `p = 0`.
+    fn halves(&self) -> [ModeIntegral; 2] {
+        let contour = self.contour();
+        let points = contour.points();
+        let (zero, cut) = (Complex64::new(0.0, 0.0), points.len() - 1);
+        let before = points[..cut].iter().copied().chain([zero]);
+        let after = [zero, points[cut]];
+        [
+            Contour::new(before, contour.start(), Termination::Finite),
+            Contour::new(after, Termination::Finite, contour.end()),
+        ]
+        .map(|contour| self.part(Part::Logarithm, contour))
+    }
+
+    /// With another part of the next order on another contour.
+    fn part(&self, part: Part, contour: Contour) -> ModeIntegral {
+        let amplitude = ModeAmplitude { part, ..self.amplitude_ref().clone() };
+        Integral::new(self.phase().clone(), contour).amplitude(amplitude)
+    }
+}
+
 /// The field at one point as an integral of the crate, `psi = prefactor * I(k)`.
 #[derive(Clone, Debug)]
 pub struct UniformField {
-    integral: Integral<ModePhase, ModeAmplitude>,
+    integral: ModeIntegral,
+    /// The logarithm of the next order on a curved profile, up to `p = 0` and from there on.
+    logarithm: Option<[ModeIntegral; 2]>,
     wavenumber: f64,
     prefactor: Complex64,
     neglected: f64,
@@ -365,7 +417,7 @@ pub struct UniformField {
 impl UniformField {
     /// The integral, to be planned or integrated at [`wavenumber`](Self::wavenumber) (its amplitude
     /// holds `eps` at the next order).
-    pub fn integral(&self) -> &Integral<ModePhase, ModeAmplitude> {
+    pub fn integral(&self) -> &ModeIntegral {
         &self.integral
     }
 
@@ -382,16 +434,47 @@ impl UniformField {
     /// The field by uniform expansions at the merging saddles.
     ///
     /// The error figure is that of the integral (and of what is neglected at the Brewster
-    /// parameter), not of the formula in `eps`. Cost: a plan, some 4 ms.
+    /// parameter), not of the formula in `eps`. Cost: a plan, some 4 ms; on a curved profile some 0.1 to 0.5 s, since
+    /// the phase has no closed form where the search for saddles goes.
     ///
     /// Errors: as [`Integral::plan`] and [`crate::Plan::at`]. Refused often for `m > 1`, where the
-    /// descent from the saddles runs into the Brewster point, and on curved profiles late after cut-off: use
-    /// [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i m/((n - 1/2) pi)`
-    /// at cut-off); the three are treated together.
+    /// descent from the saddles runs into the Brewster point; [`Error::Unsupported`] on a profile that bends much within
+    /// the transition: use [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i
+    /// m/((n - 1/2) pi)` at cut-off); the three are treated together.
     pub fn evaluate(&self) -> Result<Estimate, Error> {
-        Ok(self.finish(
-            self.integral.plan_for(self.wavenumber..=self.wavenumber)?.at(self.wavenumber)?,
-        ))
+        let k = self.wavenumber;
+        let curve = &self.integral.amplitude_ref().curve;
+        if curve.as_ref().is_some_and(|curve| !curve.is_plain()) {
+            return Err(Error::Unsupported {
+                what:
+                    "expansions at the saddles on a profile that bends so much within the mode's \
+                       transition"
+                        .into(),
+                remedy: "use `quadrature`, or a straighter profile or smaller eps",
+            });
+        }
+        if self.logarithm.is_none() {
+            return Ok(self.finish(self.integral.plan_for(k..=k)?.at(k)?));
+        }
+        // The part of the next order that is tabulated is small: a few digits by quadrature are enough.
+        let contour = self.integral.contour();
+        let local = self.integral.part(Part::LocalSlope, contour.clone());
+        let local = local.plan_for(k..=k)?.at(k)?;
+        let rest = self.integral.part(Part::Rest, contour.clone()).quadrature(k, 1e-7)?;
+        let (value, error) = (local.scaled + rest.scaled, error_of(&local) + error_of(&rest));
+        self.with_logarithm(Estimate::new(value, error, local.orders, local.form), 1e-7)
+    }
+
+    /// Adds the integral of the logarithm, if there is one, to that of the rest; and the prefactor.
+    fn with_logarithm(&self, rest: Estimate, tolerance: f64) -> Result<Estimate, Error> {
+        let (mut value, mut error) = (rest.scaled, error_of(&rest));
+        for half in self.logarithm.iter().flatten() {
+            // It is small: a few digits are enough, and cheap beside a singular end.
+            let half = half.quadrature(self.wavenumber, tolerance.max(1e-6))?;
+            value = value + half.scaled;
+            error = error + error_of(&half);
+        }
+        Ok(self.finish(Estimate::new(value, error, rest.orders, rest.form)))
     }
 
     /// The field by quadrature along the contour, to a relative `tolerance`.
@@ -412,7 +495,7 @@ impl UniformField {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn quadrature(&self, tolerance: f64) -> Result<Estimate, Error> {
-        Ok(self.finish(self.integral.quadrature(self.wavenumber, tolerance)?))
+        self.with_logarithm(self.integral.quadrature(self.wavenumber, tolerance)?, tolerance)
     }
 
     /// Multiplies by the prefactor and adds what is neglected to the error.

@@ -30,6 +30,12 @@ pub fn turn(sides: &[Vec<(C, C)>; 2]) -> C {
     overlap / overlap.norm()
 }
 
+/// The same with its modulus: what the start of the solution leaves of the incoming mode.
+pub fn incoming(sides: &[Vec<(C, C)>; 2]) -> C {
+    let overlap: C = sides.iter().flatten().map(|(a, b)| a.conj() * b).sum();
+    overlap / sides.iter().flatten().map(|(a, _)| a.norm_sqr()).sum::<f64>()
+}
+
 /// Relative L2 error with the phase taken out.
 pub fn error(side: &[(C, C)], turn: C) -> f64 {
     let difference: f64 = side.iter().map(|(a, b)| (a * turn - b).norm_sqr()).sum();

@@ -1,0 +1,218 @@
+//! Primitives of analytic functions near a contour, tabulated.
+//!
+//! `F(w) = integral from 0 to w of rate(w) dw` for rates without a closed form. The region that the contours of
+//! the guide cross is cut into squares; on each that the rate allows, `F` is a Taylor series whose coefficients
+//! come from a circle round it (trapezoidal rule, DLMF 3.5(i)). Whether a square is allowed its own circle
+//! tells: coefficients of negative powers vanish where the rate is analytic inside. If they do not, the
+//! square is cut in four, down to a quarter, near the saddles to an eighth. What is left, and all outside, is led by Gauss-Legendre
+//! panels (DLMF 3.5(v)) from 0 to the point, round the pole of the width at `i pi/2` on the side of the
+//! contour; panels are short near 0, where singularities may be near.
+//!
+//! Source: derived here.
+
+use crate::Complex64;
+use std::f64::consts::{FRAC_PI_2, TAU};
+
+/// Side of the largest squares, lower left corner, columns and rows.
+const SIDE: f64 = 0.4;
+const CORNER: Complex64 = Complex64::new(-2.6, -1.0);
+const COLUMNS: usize = 13;
+const ROWS: usize = 9;
+/// Terms of a series, and places on its circle.
+const TERMS: usize = 36;
+const CIRCLE: usize = 64;
+/// Radius of the circle over half the side of the square.
+const ROUND: f64 = 1.8;
+/// Squares nearer to 0 than this may be cut down to an eighth, others to a quarter.
+const NEAR: f64 = 0.6;
+
+/// Nodes and weights of the 6-point Gauss-Legendre rule on (-1, 1), positive half (DLMF 3.5(v)).
+const GAUSS: [(f64, f64); 3] = [
+    (0.238_619_186_083_196_93, 0.467_913_934_572_691),
+    (0.661_209_386_466_264_5, 0.360_761_573_048_138_6),
+    (0.932_469_514_203_152, 0.171_324_492_379_170_36),
+];
+
+/// The primitive of a rate that the caller keeps.
+#[derive(Clone, PartialEq)]
+pub(super) struct Table {
+    squares: Vec<Square>,
+    /// Where the contour crosses the line `Im w = pi/2`.
+    gate: Complex64,
+}
+
+#[derive(Clone, PartialEq)]
+enum Square {
+    /// Coefficients in powers of `(w - centre)/half`.
+    Series(Vec<Complex64>),
+    /// Lower left, lower right, upper left, upper right.
+    Cut(Box<[Square; 4]>),
+    None,
+}
+
+impl Table {
+    /// `gate` is how far to the left of `i pi/2` the contour passes; `noise` the relative rounding of the rate.
+    pub(super) fn new(
+        gate: f64,
+        noise: f64,
+        rate: impl Fn(Complex64) -> Complex64 + Copy,
+    ) -> Table {
+        let gate = Complex64::new(-gate, FRAC_PI_2);
+        let turns: Vec<Complex64> = (0..CIRCLE)
+            .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
+            .collect();
+        let build = Build { gate, noise, turns, rate };
+        let half = 0.5 * SIDE;
+        let squares = (0..ROWS * COLUMNS)
+            .map(|i| {
+                let (column, row) = (i % COLUMNS, i / COLUMNS);
+                let offset = Complex64::new(column as f64 + 0.5, row as f64 + 0.5) * SIDE;
+                let centre = CORNER + offset;
+                let depth = if centre.norm() < NEAR { 3 } else { 2 };
+                build.square(centre, half, depth)
+            })
+            .collect();
+        Table { squares, gate }
+    }
+
+    /// The primitive; `rate` must be that of the table.
+    pub(super) fn value(
+        &self,
+        w: Complex64,
+        rate: impl Fn(Complex64) -> Complex64 + Copy,
+    ) -> Complex64 {
+        self.tabulated(w).unwrap_or_else(|| led(self.gate, w, rate))
+    }
+
+    fn tabulated(&self, w: Complex64) -> Option<Complex64> {
+        let place = (w - CORNER) / SIDE;
+        let inside = |x: f64, count: usize| (0.0..count as f64).contains(&x);
+        if !(inside(place.re, COLUMNS) && inside(place.im, ROWS)) {
+            return None;
+        }
+        let (column, row) = (place.re as usize, place.im as usize);
+        let mut square = &self.squares[row * COLUMNS + column];
+        // From the square's centre, over half its side.
+        let mut offset = Complex64::new(place.re.fract() - 0.5, place.im.fract() - 0.5) * 2.0;
+        loop {
+            match square {
+                Square::None => return None,
+                Square::Series(series) => {
+                    let start = Complex64::new(0.0, 0.0);
+                    return Some(series.iter().rev().fold(start, |sum, c| sum * offset + c));
+                }
+                Square::Cut(quarters) => {
+                    let (right, up) = (offset.re >= 0.0, offset.im >= 0.0);
+                    square = &quarters[usize::from(right) + 2 * usize::from(up)];
+                    let side = |high: bool| if high { -1.0 } else { 1.0 };
+                    offset = offset * 2.0 + Complex64::new(side(right), side(up));
+                }
+            }
+        }
+    }
+}
+
+struct Build<F> {
+    gate: Complex64,
+    noise: f64,
+    turns: Vec<Complex64>,
+    rate: F,
+}
+
+impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
+    fn square(&self, centre: Complex64, half: f64, depth: u32) -> Square {
+        if let Some(series) = self.series(centre, half) {
+            return Square::Series(series);
+        }
+        if depth == 0 {
+            return Square::None;
+        }
+        let quarter = 0.5 * half;
+        Square::Cut(Box::new([(-1.0, -1.0), (1.0, -1.0), (-1.0, 1.0), (1.0, 1.0)].map(
+            |(right, up)| {
+                self.square(centre + Complex64::new(right, up) * quarter, quarter, depth - 1)
+            },
+        )))
+    }
+
+    fn series(&self, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
+        let values: Vec<Complex64> =
+            self.turns.iter().map(|t| (self.rate)(centre + t * (ROUND * half))).collect();
+        let coefficient = |n: usize| -> Complex64 {
+            values.iter().enumerate().map(|(j, v)| v * self.turns[j * n % CIRCLE].conj()).sum()
+        };
+        let size = values.iter().map(|v| v.norm()).sum::<f64>();
+        // Powers -1 to -12: of a function that is analytic inside there are none.
+        let analytic = (CIRCLE - 12..CIRCLE).all(|n| coefficient(n).norm() <= self.noise * size);
+        if !analytic || !size.is_finite() {
+            return None;
+        }
+        let mut series = vec![led(self.gate, centre, self.rate)];
+        let mut scale = half / CIRCLE as f64;
+        for n in 0..TERMS {
+            series.push(coefficient(n) * (scale / (n + 1) as f64));
+            scale /= ROUND;
+        }
+        Some(series)
+    }
+}
+
+/// The primitive from panels.
+fn led(gate: Complex64, w: Complex64, rate: impl Fn(Complex64) -> Complex64 + Copy) -> Complex64 {
+    let zero = Complex64::new(0.0, 0.0);
+    if w.im <= FRAC_PI_2 {
+        along(zero, w, rate)
+    } else {
+        along(zero, gate, rate) + along(gate, w, rate)
+    }
+}
+
+/// The integral of `rate` along a straight line.
+fn along(from: Complex64, to: Complex64, rate: impl Fn(Complex64) -> Complex64) -> Complex64 {
+    let length = (to - from).norm();
+    if length == 0.0 || !length.is_finite() {
+        return (to - from) * length;
+    }
+    let direction = (to - from) / length;
+    let mut sum = Complex64::new(0.0, 0.0);
+    let mut done = 0.0;
+    // Short beside the distance from singularities; a bounded number however far `to` is.
+    // Beyond the squares the field is nothing, and a few digits are enough.
+    let longest = if length > 2.5 { length / 8.0 } else { 0.16 };
+    while done < length {
+        let step = (0.3 * (from.norm() + done)).clamp(0.02, longest).min(length - done);
+        let middle = from + direction * (done + 0.5 * step);
+        for (node, weight) in GAUSS {
+            let offset = direction * (0.5 * step * node);
+            sum += (rate(middle + offset) + rate(middle - offset)) * (0.5 * step * weight);
+        }
+        done += step;
+    }
+    sum * direction
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_primitive_round_its_singularities() {
+        // Poles at i pi/2 and below 0; the primitive is elementary.
+        let c = Complex64::new;
+        let (pole, low) = (c(0.0, FRAC_PI_2), c(0.0, -0.13));
+        let rate = |w: Complex64| (w - low).powi(-2) + 1.0 / (w - pole) + w.cosh();
+        let table = Table::new(0.5, 1e-13, rate);
+        // The logarithm has its cut to the right of the pole.
+        let primitive = |w: Complex64| {
+            let log = (pole - w).ln();
+            -(w - low).inv() + log + w.sinh()
+        };
+        for w in [c(0.03, -0.02), c(0.2, 0.3), c(-0.7, 1.2), c(-1.1, 2.2), c(1.3, 0.7), c(3.0, 0.4)]
+        {
+            let error = table.value(w, rate) - (primitive(w) - primitive(c(0.0, 0.0)));
+            assert!(error.norm() < 1e-11, "{w}: {error:e}");
+            let tabulated = table.tabulated(w).is_some();
+            assert_eq!(tabulated, w.re < 2.0, "{w}");
+        }
+    }
+}
