@@ -15,6 +15,7 @@
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
 
 use super::figure::Parts;
+use super::level::Level;
 use super::parabolic::{gamma, parabolic};
 use super::series::Contribution;
 use crate::Scaled;
@@ -115,7 +116,7 @@ pub(crate) struct AlgebraicSeries {
     pub valleys: Vec<(i32, Complex64)>,
     unrolled: Option<Unrolled>,
     sign: f64,
-    noise_scale: f64,
+    level: Level,
 }
 
 /// The weights with the factors of their sheets about the other branch.
@@ -221,6 +222,7 @@ impl AlgebraicSeries {
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
         let unrolled = sheeting.unrolled(&rings[0].form, slot, start?)?;
         let sign = if branch.end == 0 { 1.0 } else { -1.0 };
+        let radius = 0.2 * rings[0].form.map()[1].norm();
         let mut series = AlgebraicSeries {
             lambda: branch.lambda,
             gamma: gamma(branch.lambda)?,
@@ -231,7 +233,7 @@ impl AlgebraicSeries {
             valleys: Vec::new(),
             unrolled: None,
             sign,
-            noise_scale: phase.noise_scale(branch.base),
+            level: Level::of(phase, branch.base, radius),
         };
         let other = branches.get(1 - slot);
         let degree = saddles as i32 + 1;
@@ -325,9 +327,9 @@ impl AlgebraicSeries {
             sum += order * power;
             power /= k;
         }
-        let noise = 4.0 * f64::EPSILON * k * self.noise_scale * sum.norm();
+        let noise = self.level.error(k) * sum.norm();
         Contribution::new(
-            Complex64::new(0.0, k) * ring.form.level(),
+            self.level.exponent(k),
             Scaled::from(sum * self.sign),
             Scaled::from(Complex64::new(figure + noise, 0.0)),
             kept,
@@ -353,7 +355,10 @@ fn parts(ring: &Ring, moments: &[(Complex64, f64); MAX_DEGREE], k: f64, orders: 
         noise,
         size: ring.orders.size,
         residual: k * form.residual(),
-        tail: ring.orders.tail + form.tail(),
+        folded: ring.orders.tail + form.tail(),
+        mean: 0.0,
+        missing: 0.0,
+        degree: form.degree(),
         spread: k * form.x1().norm() * ring.filling * form.radius(),
         filling: ring.filling,
         orders,

@@ -6,6 +6,7 @@ mod end;
 mod end_pole;
 mod figure;
 mod incomplete;
+mod level;
 mod parabolic;
 mod pole;
 mod series;

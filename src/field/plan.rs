@@ -326,6 +326,9 @@ impl Plan {
             if near {
                 let size = Scaled::exp(Complex64::new(k * lower.exponent.re, 0.0))
                     * (lower.weight / k.sqrt());
+                // Being switched on it shows in the upper's late terms: no more than those are in doubt.
+                let own = best[index].part.error;
+                let size = if below(own, size) { own } else { size };
                 total.error = total.error + size;
             }
         }

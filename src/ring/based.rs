@@ -160,11 +160,6 @@ impl BasedForm {
         self.radius
     }
 
-    /// `f` at the end point.
-    pub fn level(&self) -> Complex64 {
-        self.level
-    }
-
     /// `x_1` (one saddle; zero without).
     pub fn x1(&self) -> Complex64 {
         if self.degree > 1 { self.x[1] / self.radius } else { ZERO }
@@ -305,7 +300,7 @@ mod tests {
                 .expect("a form");
             assert_eq!(form.map()[0], base);
             for v in [Complex64::new(0.4, 0.3), Complex64::new(-0.7, 0.1)] {
-                let f = phase(form.point(v)).0 - form.level();
+                let f = phase(form.point(v)).0 - phase(base).0;
                 assert!((f - form.unfolding(v).0).norm() < 1e-14, "{saddles}");
             }
             if let Some(saddle) = form.saddle() {

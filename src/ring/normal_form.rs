@@ -27,8 +27,11 @@ pub struct NormalForm {
     radius: f64,
     /// `x_0 = A` and `x_1..x_K`, entry `j` multiplied by `R^j`.
     unfolding: [Complex64; MAX_SADDLES],
+    /// What `A` lacks as a double: it is a mean over the ring, known better than any value of `f`.
+    level_rest: Complex64,
     map: Coefficients,
     residual: f64,
+    unresolved: f64,
     tail: f64,
     evaluations: usize,
 }
@@ -83,8 +86,10 @@ impl NormalForm {
             degree,
             radius,
             unfolding,
+            level_rest: ZERO,
             map,
             residual: f64::INFINITY,
+            unresolved: f64::INFINITY,
             tail: f64::INFINITY,
             evaluations: POINTS,
         };
@@ -131,27 +136,32 @@ impl NormalForm {
         let mut last_step = f64::INFINITY;
         for _ in 0..limit {
             let mut residual = to_values(&self.map);
-            let mut largest = 0.0f64;
+            let level = self.unfolding[0];
             for (r, target) in residual.iter_mut().zip(&to_values(&self.unfolded())) {
-                *r = phase.value(*r) - target;
-                // NaN must not be lost in the maximum.
-                let square = r.norm_sqr();
-                largest = if square > largest || square.is_nan() { square } else { largest };
+                *r = (phase.value(*r) - level) - (target + self.level_rest);
             }
             self.evaluations += POINTS;
-            if !largest.is_finite() {
+            to_coefficients(&mut residual);
+            // What the step can't remove is noise, or not resolved; NaN is not lost in the sums.
+            let size = |part: &[Complex64]| {
+                let energy: f64 = part.iter().map(|c| c.norm_sqr()).sum();
+                (energy * POINTS as f64 / part.len() as f64).sqrt()
+            };
+            self.residual = size(&residual[POINTS * 3 / 4..]);
+            self.unresolved = size(&residual[KEPT + saddles..POINTS * 3 / 4]);
+            if !(self.residual.is_finite() && self.unresolved.is_finite()) {
                 return false;
             }
-            self.residual = largest.sqrt();
-            to_coefficients(&mut residual);
             // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
             let dividend = &mut residual[..KEPT + saddles];
+            let end = dividend[0];
             if saddles == 0 {
-                // The end point stays where it is.
+                // The end point stays where it is; f there is the mean over the ring.
                 dividend[0] = ZERO;
             }
             divide(dividend, &self.derivative()[..self.degree]);
-            for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles) {
+            self.add_to_level(if saddles == 0 { end } else { dividend[0] });
+            for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles).skip(1) {
                 *x += p;
             }
             let quotient: Coefficients = std::array::from_fn(|n| dividend[n + saddles]);
@@ -182,10 +192,17 @@ impl NormalForm {
         false
     }
 
-    /// Coefficients in `v` of `A + Phi`.
+    fn add_to_level(&mut self, change: Complex64) {
+        let old = self.unfolding[0];
+        let rest = self.level_rest + change;
+        self.unfolding[0] = old + rest;
+        self.level_rest = rest - (self.unfolding[0] - old);
+    }
+
+    /// Coefficients in `v` of `Phi`.
     fn unfolded(&self) -> Coefficients {
         let mut c = [ZERO; KEPT];
-        c[..MAX_SADDLES].copy_from_slice(&self.unfolding);
+        c[1..MAX_SADDLES].copy_from_slice(&self.unfolding[1..]);
         c[self.degree] += self.radius.powi(self.degree as i32);
         c
     }
@@ -228,6 +245,11 @@ impl NormalForm {
         self.unfolding[0]
     }
 
+    /// What [`level`](NormalForm::level) lacks as a double.
+    pub(crate) fn level_rest(&self) -> Complex64 {
+        self.level_rest
+    }
+
     /// `x_j`, the coefficient of `u^j`, for `1 <= j <= K`; zero otherwise.
     pub fn x(&self, j: usize) -> Complex64 {
         if (1..self.saddles()).contains(&j) {
@@ -247,10 +269,15 @@ impl NormalForm {
         evaluate(&self.map, v)
     }
 
-    /// `max |f(z(u)) - A - Phi(u)|` on the ring at the last step: the noise of the caller's phase
-    /// where the ring is well chosen.
+    /// What of `f(z(u)) - A - Phi(u)` on the ring no Newton step can remove, as a root mean square: the noise
+    /// of the caller's phase where the ring is well chosen, and singularities inside where it is not.
     pub fn residual(&self) -> f64 {
         self.residual
+    }
+
+    /// The same from the first powers beyond those that are kept: what is not resolved.
+    pub(crate) fn unresolved(&self) -> f64 {
+        self.unresolved
     }
 
     /// The size of the last kept Taylor coefficients of the map relative to its largest.

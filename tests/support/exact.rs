@@ -217,7 +217,6 @@ struct Arm {
 }
 
 struct Hub {
-    at: C,
     height: f64,
     arms: Vec<Arm>,
 }
@@ -229,7 +228,7 @@ struct Scene<'a> {
     radius: f64,
 }
 
-/// The value, or None where the arms do not join the two ends.
+/// The value, or None where the arms do not join the two ends, or only by a way far too high.
 pub fn exact(recipe: &Recipe, k: f64) -> Option<Exact> {
     let radius = match &recipe.law {
         Law::Polynomial(c) => {
@@ -283,12 +282,15 @@ pub fn exact(recipe: &Recipe, k: f64) -> Option<Exact> {
         }
     }
     let mut sum = Cd::from(0.0);
+    let mut size = 0.0;
     for (way, sign) in &ways {
         for chord in way.windows(2) {
             if chord.iter().all(|&z| scene.jet(z)[0].re < reference - 80.0) {
                 continue;
             }
-            sum = sum + scene.chord(chord[0], chord[1], reference, 0) * Cd::from(*sign);
+            let part = scene.chord(chord[0], chord[1], reference, 0) * Cd::from(*sign);
+            size += part.rounded().norm();
+            sum = sum + part;
         }
     }
     for (part, n) in recipe.parts.iter().zip(&turns) {
@@ -298,8 +300,14 @@ pub fn exact(recipe: &Recipe, k: f64) -> Option<Exact> {
             let residue = Cd::from(part.simple) + Cd::from(part.double) * slope;
             let pi = Dd { hi: 4.0 * HALF_PI[0], lo: 4.0 * HALF_PI[1] } * Dd::from(*n);
             let turn = Cd { re: 0.0.into(), im: pi };
-            sum = sum + residue * turn * (h - Cd::from(reference)).exp();
+            let part = residue * turn * (h - Cd::from(reference)).exp();
+            size += part.rounded().norm();
+            sum = sum + part;
         }
+    }
+    // Ways that climb higher than they need cancel: ten digits of thirty may go.
+    if !(sum.rounded().norm() > 1e-10 * size) {
+        return None;
     }
     let exponent = (reference / LN_2[0]).round();
     let rest =
@@ -353,7 +361,7 @@ impl Scene<'_> {
             arms.truncate(1);
         }
         let arms = arms.into_iter().filter_map(|(_, n)| self.descend(at, on(radius, n)));
-        Some(Hub { at, height: here.re, arms: arms.collect() })
+        Some(Hub { height: here.re, arms: arms.collect() })
     }
 
     /// From `from` straight to `z`, then down into a valley.
