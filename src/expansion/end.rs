@@ -29,7 +29,7 @@ use num_complex::Complex64;
 const INSIDE: f64 = 0.9;
 
 /// What is left of the residual's effect where the integral ends inside the ring.
-const CANCELLED: f64 = 0.5;
+const CANCELLED: f64 = 0.3;
 
 /// The boundary terms of one ring.
 struct Boundary {

@@ -131,7 +131,7 @@ pub(super) fn with_pole(
     let local = about[1].norm() + k.sqrt() + 2.0 / (p - u_e).norm();
     let third = total.double.norm() * (2.0 / nearest).min(local);
     let place = pole.shift() * (total.double.norm() * simple + third * double);
-    let mut error = ROUNDING * (total.lost.0 * simple + total.lost.1 * double)
+    let mut error = 0.5 * ROUNDING * (total.lost.0 * simple + total.lost.1 * double)
         + place
         + pole.noise.0 * total.simple.norm()
         + pole.noise.1 * total.double.norm();

@@ -4,8 +4,9 @@
 //! unit noise on the ring, the figure of the first `n` orders is the sum of
 //! - truncation: the largest of the next orders, taken over enough of them to bridge runs of
 //!   orders that vanish, and of geometric interpolations across order `n`;
-//! - rounding: the residual of the normal form times the wavenumber, passed through the series;
-//! - resolution: the Taylor tails of the amplitude and of the map;
+//! - rounding: the residual of the normal form times the wavenumber, passed through the series (all but
+//!   its mean over the ring, an error of `A`, which is known better: `level`);
+//! - resolution: what the transform folds into the amplitude's coefficients and what they lack;
 //! - division and canonical function.
 //!
 //! The least over `n` is taken: the smallest-term rule. The constants were found by covering
@@ -97,9 +98,9 @@ impl Parts {
             *log = a.ln();
         }
         // Of the canonical integrals, each as accurate as it is.
-        let canonical = EPS * if self.degree > 3 { 6 * (self.degree - 2) } else { 4 } as f64;
+        let canonical = EPS * if self.degree > 3 { 4 * (self.degree - 2) } else { 4 } as f64;
         let division = self.terms[0]
-            * (canonical + 0.8 * EPS * self.spread + 10.0 * self.filling.powi(POINTS as i32));
+            * (canonical + 0.5 * EPS * self.spread + 10.0 * self.filling.powi(POINTS as i32));
         // The mean of the residual is an error of A, which is known better.
         let level = self.size * self.mean;
         let mut best = (0, f64::INFINITY);

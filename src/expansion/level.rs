@@ -66,7 +66,7 @@ impl Level {
         let slope = form.degree() as f64 * form.radius().powi(form.degree() as i32 - 1);
         let place = f64::EPSILON * form.map()[0].norm() * form.radius() / form.map()[1].norm();
         // Where f is not stationary rounding errors on a circle are less independent.
-        let alike = if form.saddles() == 0 { 1.6 } else { 1.0 };
+        let alike = if form.saddles() == 0 { 1.7 } else { 1.0 };
         let noise = alike * centre.noise + form.x(1).norm() * (mean / slope + 0.3 * place);
         if noise < ring.noise { Level { noise, ..centre } } else { ring }
     }
@@ -96,7 +96,8 @@ const LEAST: f64 = 0.04;
 const CIRCLES: usize = 6;
 /// Change of the phase round the circle, relative to what it is summed from.
 const VARIED: f64 = 0.25;
-/// Error in units of the root mean square.
+/// Error in units of the expected one; parameters that are rounded within `f` move all its values alike, by
+/// as much as single values scatter.
 const CERTAIN: f64 = 8.0;
 /// Root mean square of the mean of unit noise over a ring: `POINTS^(-1/2)`.
 pub(super) const MEAN: f64 = 0.088_388_347_648_318_44;

@@ -69,7 +69,7 @@ impl Pole {
             let rest = values[KEPT * 3 / 4..POINTS - 2].iter().fold(0.0f64, |m, c| m.max(c.norm()));
             if size.is_finite() && rest < 1e-14 * size {
                 let (value, slope) = phase.value_and_derivative(z);
-                let noise = 2.0 * f64::EPSILON * size * radius;
+                let noise = f64::EPSILON * size * radius;
                 return Ok(Pole {
                     z,
                     simple: principal(1) * radius,
@@ -250,7 +250,7 @@ fn unsteady(form: &NormalForm, v: Complex64) -> f64 {
 /// Circles round a pole that are tried.
 const CIRCLES: usize = 12;
 /// Error of a pole's place in units of its root mean square.
-const BLUR: f64 = 8.0;
+const BLUR: f64 = 6.0;
 /// Poles up to this multiple of the ring's radius are split off.
 const OUTSIDE: f64 = 1.15;
 /// No ring may pass a pole closer than this part of its radius.
