@@ -1,17 +1,24 @@
-//! Random integrals against the yardstick: coverage and sharpness of the error figure.
+//! Random integrals against their exact values: coverage and sharpness of the error figure.
 //!
 //! Polynomial phases of degree 2 to 6, saddles that merge to within 1e-6 of each other, phases
 //! with sinh, cosh and exp; contours between random valleys, over several periods or with finite
 //! end points, also on saddles; amplitudes 1, entire, with simple and double poles; wavenumbers
 //! from 3 to 1e4. A plain run takes some 2,500, `cargo test --release --test random_integrals --
 //! --ignored --nocapture` ten thousand others.
+//!
+//! The exact values come from double-double arithmetic (`support/exact.rs`), so that every answer's true error
+//! is known and counts, down to the last rounding: covered is what lies within the figure alone, and the
+//! ratio of figure to error is that of all answers. The yardstick is held against the same values.
 // `!(a <= b)` is meant: NaN must fail.
 #![allow(clippy::neg_cmp_op_on_partial_ord)]
 
+#[path = "support/exact.rs"]
+mod exact;
 #[path = "support/random.rs"]
 #[allow(dead_code)]
 mod random;
 
+use exact::Exact;
 use merging_saddles::{Error, Estimate};
 use random::Family;
 
@@ -23,9 +30,12 @@ struct Tally {
     hopeless: Vec<String>,
     uncovered: Vec<String>,
     wrong: Vec<String>,
+    /// Figure over true error.
     ratios: Vec<f64>,
-    /// Without a yardstick, or with one of less than nine digits.
+    /// No exact value.
     unsure: Vec<String>,
+    /// The yardstick failed, or its own figure did not hold.
+    yardstick: Vec<String>,
 }
 
 impl Tally {
@@ -34,16 +44,26 @@ impl Tally {
         label: &str,
         got: Result<Estimate, Error>,
         yardstick: Result<Estimate, Error>,
+        exact: Option<Exact>,
     ) {
         self.cases += 1;
-        let exact = match yardstick {
-            Ok(exact) if exact.relative_error < 1e-9 => exact,
-            Ok(exact) => {
-                self.unsure.push(format!("{label}: yardstick to {:.1e}", exact.relative_error));
-                exact
-            }
-            Err(reason) => return self.unsure.push(format!("{label}: no yardstick, {reason}")),
+        let Some(exact) = exact else {
+            return self.unsure.push(format!("{label}: no exact value"));
         };
+        match yardstick {
+            Err(reason) => self.yardstick.push(format!("{label}: no yardstick, {reason}")),
+            Ok(value) => {
+                let mantissa = value.scaled.mantissa_at(exact.exponent);
+                let (error, size) = exact.difference(mantissa);
+                let figure = value.relative_error * mantissa.norm();
+                if !(error <= figure) {
+                    let (error, figure) = (error / size, figure / size);
+                    self.yardstick.push(format!(
+                        "{label}: yardstick's error {error:.1e}, figure {figure:.1e}"
+                    ));
+                }
+            }
+        }
         match got {
             Err(reason) => self.refused.push(format!("{label}: refused, {reason}")),
             Ok(got) if got.relative_error >= 1.0 => {
@@ -51,43 +71,39 @@ impl Tally {
             }
             Ok(got) => {
                 self.answered += 1;
-                // Both carry exponents: compare at the yardstick's.
-                let exponent = exact.scaled.exponent;
-                let value = got.scaled.mantissa_at(exponent);
-                let difference = (value - exact.scaled.mantissa_at(exponent)).norm();
-                let size = exact.scaled.mantissa.norm();
+                // Both carry exponents: compare at the exact one's.
+                let value = got.scaled.mantissa_at(exact.exponent);
+                let (error, size) = exact.difference(value);
                 let figure = got.relative_error * value.norm();
-                let doubt = exact.relative_error * size;
                 // A NaN counts as wrong.
-                if !(difference <= figure + doubt) {
+                if !(error <= figure) {
                     let line = format!(
-                        "{label}: error {:.1e}, figure {:.1e}, yardstick {:.1e}",
-                        difference / size,
-                        figure / size,
-                        doubt / size
+                        "{label}: error {:.1e}, figure {:.1e}",
+                        error / size,
+                        figure / size
                     );
-                    if difference <= 30.0 * (figure + doubt) {
+                    if error <= 30.0 * figure {
                         self.uncovered.push(line);
                     } else {
                         self.wrong.push(line);
                     }
                 }
-                if difference > 3.0 * doubt {
-                    self.ratios.push(figure / difference);
-                }
+                self.ratios.push(figure / error);
             }
         }
     }
 
+    /// Of the sorted ratios.
+    fn ratio(&self, part: f64) -> f64 {
+        self.ratios.get((self.ratios.len() as f64 * part) as usize).copied().unwrap_or(0.0)
+    }
+
     fn report(&mut self, name: &str) {
         self.ratios.sort_by(f64::total_cmp);
-        let at = |q: f64| {
-            self.ratios.get((self.ratios.len() as f64 * q) as usize).copied().unwrap_or(0.0)
-        };
         println!(
             "{name}: {} cases, {} answered, {} refused, {} with a figure of 100 % or more, {} \
-             with a doubtful yardstick; uncovered {}, wrong {}; figure/error median {:.1}, 95 % \
-             {:.1} of {}",
+             without an exact value; uncovered {}, wrong {}; figure/error median {:.1}, 95 % \
+             {:.1} of {}; yardstick failed or uncovered {}",
             self.cases,
             self.answered,
             self.refused.len(),
@@ -95,81 +111,98 @@ impl Tally {
             self.unsure.len(),
             self.uncovered.len(),
             self.wrong.len(),
-            at(0.5),
-            at(0.95),
-            self.ratios.len()
+            self.ratio(0.5),
+            self.ratio(0.95),
+            self.ratios.len(),
+            self.yardstick.len()
         );
-        let lists = [&self.wrong, &self.uncovered, &self.refused, &self.hopeless, &self.unsure];
+        let lists = [
+            &self.wrong,
+            &self.uncovered,
+            &self.refused,
+            &self.hopeless,
+            &self.unsure,
+            &self.yardstick,
+        ];
         for line in lists.into_iter().flatten() {
             println!("  {line}");
         }
     }
 
-    /// At least the part `answered` of all is answered, 99.9 % of those are covered, none is wrong.
-    fn check(&mut self, name: &str, answered: f64) {
+    /// At least the part `answered` of all is answered, 99.9 % of those are covered (of fewer than a
+    /// thousand all but one), none is wrong; figure over error has at most these median and 95 %.
+    fn check(&mut self, name: &str, answered: f64, (median, most): (f64, f64)) {
         self.report(name);
         assert!(self.wrong.is_empty(), "{name}: wrong without warning");
-        assert!(self.uncovered.len() * 1000 <= self.answered.max(1), "{name}: coverage");
+        assert!(self.uncovered.len() * 1000 <= self.answered.max(1000), "{name}: coverage");
         assert!(self.answered as f64 >= answered * self.cases as f64, "{name}: answered");
+        assert!(self.unsure.len() * 50 <= self.cases, "{name}: exact values");
+        assert!(self.ratio(0.5) <= median, "{name}: median of figure over error");
+        assert!(self.ratio(0.95) <= most, "{name}: 95 % of figure over error");
     }
 }
+
+/// Median and 95 % of figure over true error. Four classes miss them, by less than a half: on 20,000 cases
+/// clusters reached 16 and 120, ends near saddles 24 and 126, poles 24 and 120, ends with poles 19 and 159.
+const BARS: (f64, f64) = (20.0, 100.0);
 
 fn run(family: &Family, seeds: std::ops::Range<u64>) -> Tally {
     let mut tally = Tally::default();
     for seed in seeds {
         let case = family.case(seed);
         let got = case.integral.plan().and_then(|plan| plan.at(case.k));
-        tally.enter(&case.label, got, case.integral.quadrature(case.k, 1e-13));
+        let yardstick = case.integral.quadrature(case.k, 1e-13);
+        tally.enter(&case.label, got, yardstick, exact::exact(&case.recipe, case.k));
     }
     tally
 }
 
 #[test]
 fn one_or_two_saddles() {
-    run(&random::FEW_SADDLES, 0..400).check("degree 2 and 3", 0.99);
+    run(&random::FEW_SADDLES, 0..400).check("degree 2 and 3", 0.99, BARS);
 }
 
 #[test]
 fn many_saddles() {
-    run(&random::MORE_SADDLES, 0..400).check("degree 4 to 6", 0.95);
+    run(&random::MORE_SADDLES, 0..400).check("degree 4 to 6", 0.95, (20.0, 110.0));
 }
 
 #[test]
 fn merging_saddles() {
-    run(&random::CLUSTERS, 0..400).check("clusters", 0.98);
+    run(&random::CLUSTERS, 0..400).check("clusters", 0.98, (22.0, 130.0));
 }
 
 #[test]
 fn entire_phases() {
-    run(&random::ENTIRE, 0..250).check("entire phases", 0.99);
+    run(&random::ENTIRE, 0..250).check("entire phases", 0.99, BARS);
 }
 
 #[test]
 fn finite_ends() {
-    run(&random::ENDS, 0..250).check("finite ends", 0.95);
+    run(&random::ENDS, 0..250).check("finite ends", 0.95, BARS);
 }
 
 #[test]
 fn finite_ends_on_and_near_saddles() {
-    run(&random::ENDS_NEAR, 0..250).check("ends near saddles", 0.95);
+    run(&random::ENDS_NEAR, 0..250).check("ends near saddles", 0.95, (30.0, 140.0));
 }
 
 #[test]
 fn named_poles() {
-    run(&random::POLES, 0..250).check("poles", 0.99);
+    run(&random::POLES, 0..250).check("poles", 0.99, (30.0, 140.0));
 }
 
 #[test]
 fn unnamed_poles() {
-    run(&random::UNNAMED, 0..150).check("unnamed poles", 0.95);
+    run(&random::UNNAMED, 0..150).check("unnamed poles", 0.95, (20.0, 150.0));
 }
 
 #[test]
 fn ends_and_poles() {
-    run(&random::MIXED, 0..150).check("ends and poles", 0.9);
+    run(&random::MIXED, 0..150).check("ends and poles", 0.9, (27.0, 200.0));
 }
 
-/// Ten thousand more; `SEEDS=from..to` in the environment of the test chooses others.
+/// Ten thousand more, by seeds from 10,000 on; `FIRST=20000` in the environment chooses others.
 #[test]
 #[ignore = "minutes; run in release"]
 fn ten_thousand() {
@@ -184,7 +217,8 @@ fn ten_thousand() {
         (&random::UNNAMED, 400),
         (&random::MIXED, 600),
     ];
+    let first = std::env::var("FIRST").ok().and_then(|text| text.parse().ok()).unwrap_or(10_000);
     for (family, length) in lengths {
-        run(family, 10_000..10_000 + length).report(family.name);
+        run(family, first..first + length).report(family.name);
     }
 }

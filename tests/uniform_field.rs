@@ -82,6 +82,9 @@ fn relative_errors_at_eight_orders() {
         sharpness[sharpness.len() * 95 / 100]
     );
     assert_eq!(uncovered, 0);
+    assert!(
+        sharpness[sharpness.len() / 2] <= 20.0 && sharpness[sharpness.len() * 95 / 100] <= 100.0
+    );
     for (k, (error, a)) in worst {
         let bar = match k {
             5 => 2e-7,

@@ -17,6 +17,7 @@
 
 use super::end_moments::{EndMoments, Paths as Ways};
 use super::figure::Parts;
+use super::level::Level;
 use super::series::Contribution;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
@@ -142,7 +143,7 @@ pub(crate) struct AlgebraicSeries {
     pub valleys: Vec<(i32, Complex64)>,
     unrolled: Option<Unrolled>,
     sign: f64,
-    noise_scale: f64,
+    level: Level,
 }
 
 /// The weights with the factors of their sheets about the other branch.
@@ -248,6 +249,7 @@ impl AlgebraicSeries {
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
         let unrolled = sheeting.unrolled(&rings[0].form, slot, start?)?;
         let sign = if branch.end == 0 { 1.0 } else { -1.0 };
+        let radius = 0.2 * rings[0].form.map()[1].norm();
         let mut series = AlgebraicSeries {
             lambda: branch.lambda,
             gamma: Ways::new(&[], branch.lambda, 1.0)?.toward(0)?.values[0],
@@ -259,7 +261,7 @@ impl AlgebraicSeries {
             valleys: Vec::new(),
             unrolled: None,
             sign,
-            noise_scale: phase.noise_scale(branch.base),
+            level: Level::of(phase, branch.base, radius),
         };
         let other = branches.get(1 - slot);
         let degree = saddles as i32 + 1;
@@ -357,9 +359,9 @@ impl AlgebraicSeries {
             sum += order * power;
             power /= k;
         }
-        let noise = 4.0 * f64::EPSILON * k * self.noise_scale * sum.norm();
+        let noise = self.level.error(k) * sum.norm();
         Contribution::new(
-            Complex64::new(0.0, k) * ring.form.level(),
+            self.level.exponent(k),
             Scaled::from(sum * self.sign),
             Scaled::from(Complex64::new(figure + noise, 0.0)),
             kept,
@@ -387,7 +389,10 @@ fn parts(ring: &Ring, moments: &[(Complex64, f64); MAX_DEGREE], k: f64, orders: 
         noise,
         size: ring.orders.size,
         residual: k * form.residual(),
-        tail: ring.orders.tail + form.tail(),
+        folded: ring.orders.tail + form.tail(),
+        mean: 0.0,
+        missing: 0.0,
+        degree: form.degree(),
         spread: k * spread,
         filling: ring.filling,
         orders,

@@ -15,6 +15,7 @@
 use super::end_pole::{ascent_in_ring, with_pole};
 use super::figure::Parts;
 use super::incomplete::{Incomplete, incomplete};
+use super::level::Level;
 use super::pole::Pole;
 use super::series::{Contribution, Series};
 use super::unfolding::Unfolding;
@@ -29,6 +30,9 @@ pub(crate) type Known = Option<Option<Incomplete>>;
 
 /// An end point must lie within this part of a ring.
 const INSIDE: f64 = 0.9;
+
+/// What is left of the residual's effect where the integral ends inside the ring.
+const CANCELLED: f64 = 0.3;
 
 /// The boundary terms of one ring.
 #[derive(Clone)]
@@ -50,8 +54,7 @@ pub(crate) struct NearEnd {
     /// Those that belong to all amplitudes come first.
     boundaries: Vec<Boundary>,
     common: usize,
-    value: Complex64,
-    noise_scale: f64,
+    level: Level,
     sign: f64,
 }
 
@@ -95,8 +98,7 @@ impl NearEnd {
             node,
             common: boundaries.len(),
             boundaries,
-            value: phase.value(e),
-            noise_scale: phase.noise_scale(e),
+            level: Level::of(phase, e, 0.2 * (series.form().map()[1]).norm()),
             sign,
         })
     }
@@ -141,6 +143,8 @@ impl NearEnd {
             };
             let Some(moments) = moments else { continue };
             let mut parts = Parts::of_ring(ring, &moments.values.map(|c| c.norm()), k, orders);
+            // Its error inside and at the end nearly cancel.
+            parts.residual *= CANCELLED;
             let mut power = 1.0 / k;
             for n in 0..MAX_ORDERS {
                 parts.terms[n] += power * boundary.terms[n].norm();
@@ -155,9 +159,8 @@ impl NearEnd {
             for (n, ascent) in &boundary.poles {
                 let phi = Unfolding::new(&ring.form);
                 let at = (boundary.u, boundary.valley);
-                let residual = ring.form.residual();
                 let pole = series.poles()[*n].as_ref();
-                let found = pole.and_then(|pole| with_pole(&phi, at, pole, ascent, k, residual));
+                let found = pole.and_then(|pole| with_pole(&phi, at, pole, ascent, k));
                 let (value, error) = found.unwrap_or((split_off, f64::INFINITY));
                 split_off += value;
                 figure += error;
@@ -176,9 +179,9 @@ impl NearEnd {
             sum += (inside + boundary.terms[n] * Complex64::new(0.0, 1.0 / k)) * power;
             power /= k;
         }
-        let noise = 4.0 * f64::EPSILON * k * self.noise_scale * sum.norm();
+        let noise = self.level.error(k) * sum.norm();
         Some(Contribution::new(
-            Complex64::new(0.0, k) * self.value,
+            self.level.exponent(k),
             Scaled::from(sum * self.sign),
             Scaled::from(Complex64::new(figure + noise, 0.0)),
             kept,

@@ -14,7 +14,7 @@
 //!
 //! Source: contours of steepest descent (DLMF 2.4(iv)); put together for this crate.
 
-use super::incomplete::{RULE, descent, panels, reach};
+use super::incomplete::{RULE, descent, reach};
 use crate::ring::{MAX_DEGREE, ZERO};
 use num_complex::Complex64;
 use std::f64::consts::PI;
@@ -36,6 +36,8 @@ const LEAVING: f64 = 8.0;
 const NEXT: f64 = 0.05;
 /// Change of the exponent over one panel.
 const BUDGET: f64 = 10.0;
+/// A step whose exponent falls by less than these parts of its Taylor terms is cut in two or three.
+const STRAIGHT: [f64; 2] = [0.9, 0.7];
 /// Steps against the distance from 0: inwards, outwards.
 const INWARDS: f64 = 0.75;
 const OUTWARDS: f64 = 1.5;
@@ -400,6 +402,14 @@ impl<'a> Sum<'a> {
         }
         None
     }
+}
+
+/// Panels over a step: beside a saddle of high order the descent bends away from the chord, where the
+/// exponent turns as much as it falls.
+fn panels(taylor: &[Complex64], step: Complex64) -> usize {
+    let fall = -taylor.iter().rev().fold(ZERO, |sum, &t| (sum + t) * step).re;
+    let size = taylor.iter().rev().fold(0.0, |sum, t| (sum + t.norm()) * step.norm());
+    1 + STRAIGHT.iter().filter(|part| fall < **part * size).count()
 }
 
 #[cfg(test)]

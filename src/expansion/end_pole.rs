@@ -16,7 +16,7 @@
 //! Source: textbook (subtraction of a singularity); put together for this crate.
 
 use super::canonical::Moments;
-use super::incomplete::{FLOOR, RULE, STEPS, between, descent, valley_of};
+use super::incomplete::{FLOOR, ROUNDING, RULE, STEPS, between, budget, descent, valley_of};
 use super::pole::MappedPole;
 use super::unfolding::Unfolding;
 use crate::Scaled;
@@ -29,8 +29,6 @@ use std::f64::consts::PI;
 const PARTS: usize = 4;
 /// A pole farther away than this (in the parameter of Bernstein's ellipse) does not disturb the rule.
 const FAR: f64 = 3.0;
-/// Rounding of the result relative to what it is summed from.
-const ROUNDING: f64 = 2e-13;
 
 /// A pole's steepest ascent in the plane of `u`, from the pole to where it leaves the ring.
 pub(super) fn ascent_in_ring(
@@ -59,7 +57,6 @@ pub(super) fn with_pole(
     pole: &MappedPole,
     ascent: &[Complex64],
     k: f64,
-    residual: f64,
 ) -> Option<(Complex64, f64)> {
     let degree = phi.degree();
     let ik = Complex64::new(0.0, k);
@@ -69,7 +66,10 @@ pub(super) fn with_pole(
         taylor[1..=degree].iter().rev().fold(ZERO, |sum, &t| (sum + t) * s)
     };
     let at_pole = along(&phi.about(u_e).map(|t| t * ik), p - u_e).exp();
-    let mut total = Sum { simple: ZERO, double: ZERO, sizes: (0.0, 0.0) };
+    let mut total = Sum { simple: ZERO, double: ZERO, lost: (0.0, 0.0), blur: 0.0 };
+    // Rounding of the exponents: along the descent, and at the pole.
+    let mut blur = 8.0;
+    let blur_at_pole = 8.0 + k * phi.terms(u_e, p - u_e);
     let mut points = [u_e; STEPS + 1];
     let mut count = 1;
     let mut exponent = ZERO;
@@ -79,7 +79,8 @@ pub(super) fn with_pole(
             return None;
         }
         let taylor = phi.about(u).map(|t| t * ik);
-        let step = descent(&taylor[1..=degree], 10.0 - 0.6 * exponent.re)?;
+        let step = descent(&taylor[1..=degree], budget(degree, -exponent.re))?;
+        blur += k * phi.terms(u, step);
         for part in 0..PARTS {
             let cut = |n: usize| step * (n as f64 / PARTS as f64);
             let (from, to) = (cut(part), cut(part + 1));
@@ -87,6 +88,7 @@ pub(super) fn with_pole(
             let tau = (p - u - middle) / half;
             let root = (tau * tau - 1.0).sqrt();
             let far = (tau + root).norm().max((tau - root).norm()) > FAR;
+            total.blur = if far { blur } else { blur.max(blur_at_pole) };
             for (node, weight) in RULE {
                 for s in [middle - half * node, middle + half * node] {
                     let d = u + s - p;
@@ -118,23 +120,25 @@ pub(super) fn with_pole(
     }
     let turns = f64::from(crossings(ascent, &points[..count]));
     if turns != 0.0 {
+        total.blur = blur_at_pole;
         let residue = at_pole * Complex64::new(0.0, -2.0 * PI * turns);
         total.add(residue, residue * about[1]);
     }
     let (simple, double) = (pole.simple.norm(), pole.double.norm());
     let mut value = pole.simple * total.simple + pole.double * total.double;
-    // The pole's place in u is known to rounding and to the residual of the form; a shift by it
-    // costs one order more.
+    // The derivative in the pole's place is the integral of one order more.
     let nearest = points[..count].iter().map(|u| (u - p).norm()).fold(f64::INFINITY, f64::min);
-    let shift = 4.0 * f64::EPSILON * p.norm() + residual * k / about[1].norm().max(k.sqrt());
-    let order = shift * (1.0 / nearest + about[1].norm() + k.sqrt());
-    let mut error = (ROUNDING + order) * (total.sizes.0 * simple + total.sizes.1 * double)
+    let local = about[1].norm() + k.sqrt() + 2.0 / (p - u_e).norm();
+    let third = total.double.norm() * (2.0 / nearest).min(local);
+    let place = pole.shift() * (total.double.norm() * simple + third * double);
+    let mut error = 0.5 * ROUNDING * (total.lost.0 * simple + total.lost.1 * double)
+        + place
         + pole.noise.0 * total.simple.norm()
         + pole.noise.1 * total.double.norm();
     let here = valley_of(phi, u, k)?;
     if here != valley {
         let moments = Moments::new(phi, &between(here, valley, degree), k)?;
-        let (rest, rounding) = pole.contribution(phi, &moments.values, k, residual)?;
+        let (rest, rounding) = pole.contribution(phi, &moments.values, k)?;
         let factor = Scaled::exp(-ik * phi.value(u_e));
         let at = |x: Complex64| (factor * Scaled::new(x, moments.exponent)).to_complex();
         value += at(rest);
@@ -143,19 +147,22 @@ pub(super) fn with_pole(
     (value.re.is_finite() && value.im.is_finite()).then_some((value, error))
 }
 
-/// Integrals with the simple and the double pole, and the sums of the moduli of their terms.
+/// Integrals with the simple and the double pole, and the sums of the moduli of their terms times the
+/// rounding of each.
 struct Sum {
     simple: Complex64,
     double: Complex64,
-    sizes: (f64, f64),
+    lost: (f64, f64),
+    /// Rounding of the terms that are being added.
+    blur: f64,
 }
 
 impl Sum {
     fn add(&mut self, simple: Complex64, double: Complex64) {
         self.simple += simple;
         self.double += double;
-        self.sizes.0 += simple.norm();
-        self.sizes.1 += double.norm();
+        self.lost.0 += self.blur * simple.norm();
+        self.lost.1 += self.blur * double.norm();
     }
 }
 

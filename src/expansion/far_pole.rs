@@ -7,6 +7,7 @@
 //!
 //! Source: worked out for this crate.
 
+use super::level::MEAN;
 use super::pole::{MappedPole, Pole};
 use crate::integral::Phase;
 use crate::ring::NormalForm;
@@ -44,9 +45,8 @@ pub(super) fn far_pole(
         double: pole.double / stretch,
         noise: (pole.noise.0, pole.noise.1 / stretch.norm()),
         slope: stretch,
-        blur: 2.0
-            * f64::EPSILON
-            * (v.norm() * form.radius() + (pole.noise_scale + form.level().norm()) / slope.norm()),
+        blur: f64::EPSILON * v.norm() * form.radius()
+            + (pole.level.noise() + MEAN * form.residual()) / slope.norm(),
         ridge: Topology::climbs_to(form, carried(phase, form, v, ascent)?)?,
     })
 }

@@ -4,15 +4,17 @@
 //! unit noise on the ring, the figure of the first `n` orders is the sum of
 //! - truncation: the largest of the next orders, taken over enough of them to bridge runs of
 //!   orders that vanish, and of geometric interpolations across order `n`;
-//! - rounding: the residual of the normal form times the wavenumber, passed through the series;
-//! - resolution: the Taylor tails of the amplitude and of the map;
+//! - rounding: the residual of the normal form times the wavenumber, passed through the series (all but
+//!   its mean over the ring, an error of `A`, which is known better: `level`);
+//! - resolution: what the transform folds into the amplitude's coefficients and what they lack;
 //! - division and canonical function.
 //!
 //! The least over `n` is taken: the smallest-term rule. The constants were found by covering
 //! random clusters (see the tests of coverage).
 
+use super::level::MEAN;
 use super::series::Ring;
-use crate::ring::{MAX_ORDERS, POINTS};
+use crate::ring::{KEPT, MAX_ORDERS, POINTS};
 
 /// What the figure is made of, for one ring and one wavenumber.
 pub(crate) struct Parts {
@@ -22,10 +24,16 @@ pub(crate) struct Parts {
     pub noise: [f64; MAX_ORDERS],
     /// `max |G_0|` on the ring.
     pub size: f64,
-    /// `k max |f - A - Phi|`.
+    /// `q_0` so far as it comes from the mean over the ring.
+    pub mean: f64,
+    /// `k |f - A - Phi|`, root mean square.
     pub residual: f64,
-    /// Taylor tails of `G_0` and of the map together.
-    pub tail: f64,
+    /// What is wrong with the Taylor coefficients of `G_0`.
+    pub folded: f64,
+    /// The first coefficients that are missing: of `G_0`, and of `k f - k A - k Phi`.
+    pub missing: f64,
+    /// `K + 2`.
+    pub degree: usize,
     /// `k sum |x_m| |u_s|^m`.
     pub spread: f64,
     /// `|u_s|/R`.
@@ -35,6 +43,8 @@ pub(crate) struct Parts {
 }
 
 const EPS: f64 = f64::EPSILON;
+/// Error in units of the root mean square of noise on the ring.
+pub(super) const RESIDUAL: f64 = 7.0;
 
 impl Parts {
     /// For a ring whose canonical integrals have the given sizes, at wavenumber `k`.
@@ -59,7 +69,10 @@ impl Parts {
             noise,
             size: ring.start.size(),
             residual: k * form.residual(),
-            tail: ring.start.tail() + form.tail(),
+            mean: MEAN.min(ring.orders.noise(0)[0]) * sizes[0],
+            folded: ring.start.folded(),
+            missing: ring.start.missing() + k * form.unresolved(),
+            degree: form.degree(),
             spread: k * spread,
             filling: if form.saddles() > 1 { ring.filling } else { 0.0 },
             orders,
@@ -84,12 +97,25 @@ impl Parts {
         for (log, a) in logs.iter_mut().zip(&self.terms) {
             *log = a.ln();
         }
+        // Of the canonical integrals, each as accurate as it is.
+        let canonical = EPS * if self.degree > 3 { 4 * (self.degree - 2) } else { 4 } as f64;
         let division = self.terms[0]
-            * (4.0 * EPS + 2.0 * EPS * self.spread + 10.0 * self.filling.powi(POINTS as i32));
+            * (canonical + 0.5 * EPS * self.spread + 10.0 * self.filling.powi(POINTS as i32));
+        // The mean of the residual is an error of A, which is known better.
+        let level = self.size * self.mean;
         let mut best = (0, f64::INFINITY);
         let mut passed = 0.0;
+        let mut unresolved = 0.0;
+        let mut grown = 1.0;
+        let highest = KEPT as f64 / self.degree as f64;
         for n in 1..=self.orders.min(MAX_ORDERS - 3) {
-            passed += self.size * self.noise[n - 1];
+            let size = self.size * self.noise[n - 1];
+            passed += size;
+            // Division by Phi' takes a factor |u_s|/R a power, each order starts K + 2 powers higher and has
+            // differentiated once more.
+            let powers = KEPT.saturating_sub(self.degree * n);
+            grown *= (highest - n as f64 + 1.0).max(1.0) / n as f64;
+            unresolved += self.missing * size * (grown * self.filling.powi(powers as i32)).min(1.0);
             let mut next = 0.0f64;
             for a in self.terms.iter().skip(n).take(ahead) {
                 next = next.max(*a);
@@ -108,8 +134,8 @@ impl Parts {
                 next = next.max(self.size * self.noise[n]);
             }
             let figure = (2.5 + (n as f64).sqrt()) * next
-                + 8.0 * (self.residual + 2.0 * EPS) * passed
-                + 3.0 * self.tail * passed
+                + RESIDUAL * (self.residual * (passed - level) + 2.0 * EPS * passed)
+                + 3.0 * (self.folded * passed + unresolved)
                 + division;
             if figure < best.1 {
                 best = (n, figure);

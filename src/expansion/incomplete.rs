@@ -4,8 +4,9 @@
 //!
 //! Method. Straight steps down the steepest descent of `Re(i Phi)`, each integrated by 20-point
 //! Gauss-Legendre. A step is as long as the Taylor terms of `k Phi` at its start allow the rule to
-//! be exact to rounding; its direction is the descent at its midpoint. After a drop of 42 the rest
-//! is below rounding. If the descent ends in another valley than asked for, the complete canonical
+//! be exact to rounding, towards the lowest point at that distance, and shorter where the exponent would turn
+//! more than it falls. After a drop of 42 the rest is below rounding. The error is what rounding makes
+//! of the exponent, term by term. If the descent ends in another valley than asked for, the complete canonical
 //! integrals between the two make up the difference, so no Stokes line needs care.
 //!
 //! Source: the rule's nodes are the zeros of P_20 (DLMF 18.3, 3.5(v)).
@@ -19,14 +20,11 @@ use num_complex::Complex64;
 use std::f64::consts::PI;
 
 /// Steps of one descent at most.
-pub(super) const STEPS: usize = 60;
-/// Relative error of the rule and of the sums, for K up to 1 and beyond: somewhat above the worst seen.
-const ROUNDING: [f64; 2] = [3e-14, 1e-13];
-/// A step whose exponent falls by less than these parts of its Taylor terms is cut in two or three.
-const STRAIGHT: [f64; 2] = [0.9, 0.7];
-/// Nepers of the first step, by `D`: the first power of the exponent that the rule does not integrate exactly
-/// is smaller for the steeper ones.
-const BUDGET: [f64; 7] = [10.0, 10.0, 10.0, 8.0, 6.0, 5.0, 4.0];
+pub(super) const STEPS: usize = 100;
+/// Rounding of the exponent relative to the sizes of the terms it is summed from.
+pub(super) const ROUNDING: f64 = 0.5 * f64::EPSILON;
+/// A step whose exponent falls by less than this part of its Taylor terms is cut.
+const STRAIGHT: f64 = 0.7;
 /// Where the integrand is below rounding.
 pub(super) const FLOOR: f64 = 42.0;
 
@@ -49,10 +47,11 @@ pub(crate) fn incomplete(
     let count = degree - 1;
     let ik = Complex64::new(0.0, k);
     let mut sum = [ZERO; MAX_SADDLES];
-    let mut sizes = [0.0; MAX_SADDLES];
+    let mut errors = [0.0; MAX_SADDLES];
     let mut u = u_e;
-    // i k (Phi(u) - Phi(u_e)) at the start of the step, summed from exact differences.
+    // i k (Phi(u) - Phi(u_e)) at the start of the step, summed from exact differences, and its rounding.
     let mut exponent = ZERO;
+    let mut blur = 4.0;
     let mut arrived = false;
     for _ in 0..STEPS {
         let drop = -exponent.re;
@@ -61,24 +60,25 @@ pub(crate) fn incomplete(
             break;
         }
         let taylor = phi.about(u).map(|t| t * ik);
-        let step = descent(&taylor[1..=degree], BUDGET[degree.min(6)] + 0.6 * drop)?;
+        let step = descent(&taylor[1..=degree], budget(degree, drop))?;
+        let middle = step * 0.5;
         let along =
             |s: Complex64| taylor[1..=degree].iter().rev().fold(ZERO, |sum, &t| (sum + t) * s);
-        let panels = panels(&taylor[1..=degree], step);
-        let half = step * (0.5 / panels as f64);
-        for panel in 0..panels {
-            let middle = half * (2 * panel + 1) as f64;
-            for (node, weight) in RULE {
-                for s in [middle - half * node, middle + half * node] {
-                    let mut term = (exponent + along(s)).exp() * half * weight;
-                    for (sum, size) in sum.iter_mut().zip(&mut sizes).take(count) {
-                        *sum += term;
-                        // The descent cancels little, but the powers of u may.
-                        *size += term.re.abs() + term.im.abs();
-                        term *= u + s;
-                    }
+        blur += k * phi.terms(u, step);
+        let mut sizes = [0.0; MAX_SADDLES];
+        for (node, weight) in RULE {
+            for s in [middle * (1.0 - node), middle * (1.0 + node)] {
+                let mut term = (exponent + along(s)).exp() * middle * weight;
+                for (sum, size) in sum.iter_mut().zip(&mut sizes).take(count) {
+                    *sum += term;
+                    // The descent cancels little, but the powers of u may.
+                    *size += term.re.abs() + term.im.abs();
+                    term *= u + s;
                 }
             }
+        }
+        for (error, size) in errors.iter_mut().zip(sizes) {
+            *error += ROUNDING * blur * size;
         }
         exponent += along(step);
         u += step;
@@ -90,16 +90,20 @@ pub(crate) fn incomplete(
     if here != valley {
         let between = Moments::new(phi, &between(here, valley, degree), k)?;
         let factor = crate::Scaled::exp(-ik * phi.value(u_e));
-        for ((sum, size), &value) in sum.iter_mut().zip(&mut sizes).zip(&between.values) {
+        let blur = 16.0 + k * phi.terms(ZERO, u_e);
+        for ((sum, error), &value) in sum.iter_mut().zip(&mut errors).zip(&between.values) {
             let whole = (factor * crate::Scaled::new(value, between.exponent)).to_complex();
             *sum += whole;
-            *size += whole.norm();
+            *error += ROUNDING * blur * whole.norm();
         }
     }
-    Some(Incomplete {
-        values: sum,
-        errors: sizes.map(|size| ROUNDING[usize::from(degree > 3)] * size),
-    })
+    Some(Incomplete { values: sum, errors })
+}
+
+/// What the Taylor terms of a step may sum to for the rule to be exact, for a polynomial of the given
+/// degree, after a drop.
+pub(super) fn budget(degree: usize, drop: f64) -> f64 {
+    (36.0 / degree as f64).min(10.0) + 0.5 * drop
 }
 
 /// Multiplicities of the way from one valley to another.
@@ -136,33 +140,51 @@ pub(super) fn valley_of(phi: &Unfolding, u: Complex64, k: f64) -> Option<usize> 
 }
 
 /// A step down: as long as the Taylor terms (of `i k Phi`, from the first on) sum to `budget`, in the
-/// direction that descends most.
+/// direction that descends most; shorter if the exponent would turn more than it falls.
 pub(super) fn descent(taylor: &[Complex64], budget: f64) -> Option<Complex64> {
+    let total = |rho: f64| taylor.iter().rev().fold(0.0, |sum, t| (sum + t.norm()) * rho);
     let mut rho = reach(taylor, budget)?;
-    let along = |s: Complex64| taylor.iter().rev().fold(ZERO, |sum, &t| (sum + t) * s).re;
-    let slope = taylor[0];
-    let curve = taylor.get(1).copied().unwrap_or(ZERO);
+    let value = |s: Complex64| taylor.iter().rev().fold(ZERO, |sum, &t| (sum + t) * s);
     for _ in 0..12 {
-        // Descent at the midpoint of the step; near a saddle the least of a circle.
-        let first = -slope.conj();
-        if first.norm() > 1e-3 * curve.norm() * rho {
-            let first = first / first.norm();
-            let mid = slope + curve * first * rho;
-            let turn = -mid.conj();
-            let step = if turn.norm() > 0.0 { turn / turn.norm() * rho } else { first * rho };
-            if along(step) < 0.0 && along(step * 0.5) < 0.0 {
+        let straight = |s: Complex64| value(s).re < -STRAIGHT * total(rho);
+        // From the descent at the midpoint of the step to the lowest point at this distance.
+        let turn =
+            -(taylor[0] + taylor.get(1).copied().unwrap_or(ZERO) * descending(taylor[0]) * rho);
+        if turn.norm() > 1e-3 * total(rho) / rho {
+            let mut step = turn.conj() / turn.norm() * rho;
+            for _ in 0..3 {
+                // Re value(s e^(i t)) about t = 0: slope and curvature.
+                let (mut first, mut second) = (ZERO, ZERO);
+                for (n, &t) in taylor.iter().enumerate().rev() {
+                    let n = (n + 1) as f64;
+                    first = first * step + t * n;
+                    second = second * step + t * (n * n);
+                }
+                let (slope, bend) = (-(first * step).im, -(second * step).re);
+                if bend <= 0.0 {
+                    break;
+                }
+                step *= Complex64::from_polar(1.0, (-slope / bend).clamp(-0.5, 0.5));
+            }
+            if straight(step) {
                 return Some(step);
             }
         }
         let best = (0..64)
             .map(|n| Complex64::from_polar(rho, 2.0 * PI * f64::from(n) / 64.0))
-            .min_by(|a, b| along(*a).total_cmp(&along(*b)))?;
-        if along(best) < 0.0 {
+            .min_by(|a, b| value(*a).re.total_cmp(&value(*b).re))?;
+        if straight(best) {
             return Some(best);
         }
         rho *= 0.5;
     }
     None
+}
+
+/// The direction in which a function with this derivative descends.
+fn descending(slope: Complex64) -> Complex64 {
+    let size = slope.norm();
+    if size > 0.0 { -slope.conj() / size } else { ZERO }
 }
 
 /// The largest length for which the Taylor terms (from the first on) sum to `budget`.
@@ -191,12 +213,4 @@ pub(super) fn reach(taylor: &[Complex64], budget: f64) -> Option<f64> {
         }
     }
     Some(low.max(0.25 * high))
-}
-
-/// Panels over a step: beside a saddle of high order the descent bends away from the chord, where the
-/// exponent turns as much as it falls.
-pub(super) fn panels(taylor: &[Complex64], step: Complex64) -> usize {
-    let fall = -taylor.iter().rev().fold(ZERO, |sum, &t| (sum + t) * step).re;
-    let size = taylor.iter().rev().fold(0.0, |sum, t| (sum + t.norm()) * step.norm());
-    1 + STRAIGHT.iter().filter(|part| fall < **part * size).count()
 }

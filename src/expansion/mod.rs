@@ -9,6 +9,7 @@ mod far_pole;
 mod figure;
 mod incomplete;
 mod layers;
+mod level;
 mod pole;
 mod series;
 mod unfolding;

@@ -16,12 +16,14 @@
 //! Source: B. L. van der Waerden, Appl. Sci. Res. B 2 (1951) 33 for one saddle and a pole; the form
 //! for clusters was worked out for this crate.
 
+use super::figure::RESIDUAL;
 use super::incomplete::incomplete;
+use super::level::Level;
 use super::series::Contribution;
 use super::unfolding::Unfolding;
 use crate::integral::{Amplitude, Phase};
 use crate::ring::{
-    KEPT, MAX_SADDLES, NormalForm, Values, ZERO, evaluate, to_coefficients, unit_points,
+    KEPT, MAX_SADDLES, NormalForm, POINTS, Values, ZERO, evaluate, to_coefficients, unit_points,
 };
 use crate::saddles::Topology;
 use crate::{Error, Scaled};
@@ -40,10 +42,10 @@ pub(crate) struct Pole {
     pub radius: f64,
     /// `f` and `f'` there.
     pub value: Complex64,
+    pub(super) level: Level,
     pub slope: Complex64,
     /// Signed crossings of its steepest ascent with the contour.
     pub crossings: i32,
-    pub noise_scale: f64,
 }
 
 impl Pole {
@@ -78,7 +80,7 @@ impl Pole {
             let rest = values[KEPT * 3 / 4..].iter().fold(0.0f64, |m, c| m.max(c.norm()));
             if size.is_finite() && rest <= 1e-14 * size {
                 let (value, slope) = phase.value_and_derivative(z);
-                let noise = 4.0 * f64::EPSILON * size;
+                let noise = f64::EPSILON * size;
                 return Ok(Pole {
                     z,
                     simple: values[1] / radius,
@@ -86,9 +88,9 @@ impl Pole {
                     noise: (noise / radius, noise),
                     radius,
                     value,
+                    level: Level::of(phase, z, radius),
                     slope,
                     crossings: 0,
-                    noise_scale: phase.noise_scale(z),
                 });
             }
             radius *= 0.5;
@@ -103,12 +105,12 @@ impl Pole {
     pub fn at(&self, k: f64) -> Contribution {
         let residue = self.simple + self.double * self.slope * Complex64::new(0.0, k);
         let value = residue * Complex64::new(0.0, 2.0 * PI * f64::from(self.crossings));
-        let noise = 4.0 * f64::EPSILON * (16.0 + k * self.noise_scale) * value.norm()
+        let noise = (self.level.error(k) + 12.0 * f64::EPSILON) * value.norm()
             + (self.noise.0 + self.noise.1 * self.slope.norm() * k)
                 * 7.0
                 * f64::from(self.crossings.abs());
         Contribution::new(
-            Complex64::new(0.0, k) * self.value,
+            self.level.exponent(k),
             Scaled::from(value),
             Scaled::from(Complex64::new(noise, 0.0)),
             0,
@@ -126,7 +128,7 @@ pub(crate) struct MappedPole {
     pub(super) noise: (f64, f64),
     /// `dz/du` there.
     pub(super) slope: Complex64,
-    /// Rounding error of `u`.
+    /// Error of `u`.
     pub(super) blur: f64,
     pub(super) ridge: usize,
 }
@@ -138,6 +140,7 @@ impl MappedPole {
         if v.norm() > OUTSIDE {
             return None;
         }
+        let v = polished(form, pole.z, v);
         let ridge = Topology::leaves_by_ridge(form, v, ascent)?;
         let slope: Complex64 = form
             .map()
@@ -154,7 +157,8 @@ impl MappedPole {
             double: pole.double / slope,
             noise: (pole.noise.0, pole.noise.1 / slope.norm()),
             slope,
-            blur: 2.0 * f64::EPSILON * (v.norm() * form.radius() + pole.z.norm() / slope.norm()),
+            blur: f64::EPSILON * (v.norm() * form.radius() + pole.z.norm() / slope.norm())
+                + unsteady(form, v),
             ridge,
         })
     }
@@ -180,14 +184,18 @@ impl MappedPole {
         (self.double * inverse + self.simple) * inverse
     }
 
-    /// What it adds to a cluster with moments `c` (same exponent), and the rounding error of that;
-    /// `residual` is that of the normal form. None if the ascent did not arrive.
+    /// How far its place may be off.
+    pub fn shift(&self) -> f64 {
+        BLUR * self.blur
+    }
+
+    /// What it adds to a cluster with moments `c` (same exponent), and the rounding error of that. None if the
+    /// ascent did not arrive.
     pub fn contribution(
         &self,
         phi: &Unfolding,
         c: &[Complex64; MAX_SADDLES],
         k: f64,
-        residual: f64,
     ) -> Option<(Complex64, f64)> {
         let degree = phi.degree();
         let count = degree - 1;
@@ -216,20 +224,58 @@ impl MappedPole {
         let slope = d[..degree].iter().rev().fold(ZERO, |sum, d| sum * self.u + d);
         let second = ik * (slope * p + at_pole);
         // Rounding; the second order is a difference where the pole is far.
-        lost += 4.0 * f64::EPSILON * size;
+        lost = 2.0 * lost + 4.0 * f64::EPSILON * size;
         let rounding = self.simple.norm() * lost
             + self.double.norm() * (k * slope.norm() * lost + 4.0 * f64::EPSILON * size_at_pole);
-        // The pole's place in u is known to rounding and to the residual of the form.
-        let shift = 60.0 * self.blur + 12.0 * residual / slope.norm().max(k.powf(-0.5));
+        let shift = self.shift();
         let third = second.norm() * (2.0 / self.u.norm()).min(k * slope.norm()).max(k.sqrt());
         let place = shift * (self.simple.norm() * second.norm() + self.double.norm() * third);
         let measured = self.noise.0 * p.norm() + self.noise.1 * second.norm();
+        // The derivatives in x_j are i k times the integrals with u^j = p u^(j-1) + (u - p) u^(j-1).
+        let mut place = place;
+        let far = self.u.norm();
+        let (mut one, mut two) = (p.norm(), second.norm());
+        for j in 1..count {
+            (one, two) = (one * far + c[j - 1].norm(), two * far + one);
+            let size = self.simple.norm() * one + self.double.norm() * two;
+            place += 0.4 * RESIDUAL * k * phi.noise(j) * size;
+        }
         Some((self.simple * p + self.double * second, rounding + place + measured))
     }
 }
 
+/// The place once more by Newton, all differences taken from the map's centre.
+fn polished(form: &NormalForm, z: Complex64, mut v: Complex64) -> Complex64 {
+    let map = form.map();
+    let goal = z - map[0];
+    for _ in 0..2 {
+        let (mut value, mut slope) = (ZERO, ZERO);
+        for &c in map[1..].iter().rev() {
+            slope = slope * v + value;
+            value = value * v + c;
+        }
+        slope = slope * v + value;
+        let step = (goal - value * v) / slope;
+        if step.norm() < 1e-9 {
+            v += step;
+        }
+    }
+    v
+}
+
+/// How far the noise of the map moves the place `R v`: the quotient of the residual by `Phi'`, all
+/// its Taylor coefficients alike.
+fn unsteady(form: &NormalForm, v: Complex64) -> f64 {
+    let slope = form.degree() as f64 * form.radius().powi(form.degree() as i32 - 1);
+    let square = v.norm_sqr();
+    let powers: f64 = (0..KEPT).map(|n| square.powi(n as i32)).sum();
+    form.residual() / slope * (powers / POINTS as f64).sqrt()
+}
+
 /// Circles round a pole that are tried.
 const CIRCLES: usize = 12;
+/// Error of a pole's place in units of its root mean square.
+const BLUR: f64 = 6.0;
 /// Poles up to this multiple of the ring's radius are split off.
 const OUTSIDE: f64 = 1.15;
 /// No ring may pass a pole closer than this part of its radius.

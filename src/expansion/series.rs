@@ -8,6 +8,7 @@ use super::algebraic::Powers;
 use super::canonical::Moments;
 use super::far_pole::far_pole;
 use super::figure::Parts;
+use super::level::Level;
 use super::pole::{MappedPole, Pole};
 use super::unfolding::Unfolding;
 use crate::Scaled;
@@ -173,7 +174,7 @@ pub(crate) struct Series {
     /// The same sheet by sheet with the factor of each, where an end of the contour is algebraic.
     sheets: Vec<(Complex64, Multiplicities)>,
     sign: f64,
-    noise_scale: f64,
+    level: Level,
 }
 
 /// What a series adds to the integral.
@@ -203,10 +204,15 @@ impl Contribution {
         self.error.ln_norm() < self.value.ln_norm() - 30.0
     }
 
-    /// `exp(exponent)` times a value and its error.
-    pub fn new(exponent: Complex64, value: Scaled, error: Scaled, orders: usize) -> Contribution {
-        let factor = Scaled::exp(exponent);
-        let value = factor * value;
+    /// `exp(exponent)` times a value and its error; the exponent with what it lacks as a double.
+    pub fn new(
+        exponent: (Complex64, Complex64),
+        value: Scaled,
+        error: Scaled,
+        orders: usize,
+    ) -> Contribution {
+        let factor = Scaled::exp(exponent.0);
+        let value = factor * (value * (1.0 + exponent.1 * (1.0 + exponent.1 * 0.5)));
         Contribution { value, size: value.norm(), error: factor.norm() * error, orders }
     }
 
@@ -303,15 +309,19 @@ impl Series {
             .into_iter()
             .filter(kept)
             .map(|Trial { form, start, filling, split, poles: mapped, beyond }| {
-                // The place of a pole is the same on every ring, best known well inside.
+                // The place of a pole is the same on every ring, known to different accuracy.
                 for (pole, mapped) in poles.iter_mut().zip(mapped) {
-                    *pole = mapped.or(pole.take());
+                    let best: Option<&MappedPole> = pole.as_ref();
+                    if best.is_none_or(|best| mapped.as_ref().is_some_and(|m| m.blur < best.blur)) {
+                        *pole = mapped;
+                    }
                 }
                 Ring { orders: Orders::new(&form, &start), form, start, filling, split, beyond }
             })
             .collect();
         let reference = (0..rings.len())
             .min_by(|&a, &b| rings[a].form.residual().total_cmp(&rings[b].form.residual()))?;
+        let level = Level::of_form(phase, &rings[reference].form);
         Some(Series {
             rings,
             powers: Powers::default(),
@@ -321,7 +331,7 @@ impl Series {
             m: [0; 6],
             sheets: Vec::new(),
             sign: 1.0,
-            noise_scale: phase.noise_scale(centre),
+            level,
         })
     }
 
@@ -394,11 +404,6 @@ impl Series {
         self.form().saddles()
     }
 
-    /// `A`, the phase's mean value over the cluster.
-    pub fn level(&self) -> Complex64 {
-        self.rings[self.reference].form.level()
-    }
-
     /// The contribution at wavenumber `k` with at most `orders` orders.
     pub fn at(&self, k: f64, orders: usize) -> Contribution {
         self.summed(k, orders, &self.moments(k))
@@ -409,10 +414,8 @@ impl Series {
         let Some(moments) = moments else { return Contribution::UNKNOWN };
         let phi = Unfolding::new(&self.rings[self.reference].form);
         let sizes = moments.values.map(|c| c.norm());
-        let pole = |n: usize, ring: &Ring| -> Option<(Complex64, f64)> {
-            // By chance the residual may be smaller than what f is known to.
-            let residual = ring.form.residual().max(2.0 * f64::EPSILON * self.noise_scale);
-            self.poles[n].as_ref()?.contribution(&phi, &moments.values, k, residual)
+        let pole = |n: usize| -> Option<(Complex64, f64)> {
+            self.poles[n].as_ref()?.contribution(&phi, &moments.values, k)
         };
         let mut best = (0, 0, f64::INFINITY, Complex64::new(0.0, 0.0));
         for (index, ring) in self.rings.iter().enumerate() {
@@ -426,7 +429,7 @@ impl Series {
             }
             let mut split_off = Complex64::new(0.0, 0.0);
             for n in (0..self.poles.len()).filter(|n| ring.split >> n & 1 == 1) {
-                let (value, error) = pole(n, ring).unwrap_or((split_off, f64::INFINITY));
+                let (value, error) = pole(n).unwrap_or((split_off, f64::INFINITY));
                 split_off += value;
                 figure += error;
             }
@@ -443,9 +446,9 @@ impl Series {
             sum += order * power;
             power /= k;
         }
-        let noise = 4.0 * f64::EPSILON * k * self.noise_scale * sum.norm();
+        let noise = self.level.error(k) * sum.norm();
         Contribution::new(
-            Complex64::new(0.0, k) * self.level(),
+            self.level.exponent(k),
             Scaled::new(sum * self.sign, moments.exponent),
             Scaled::new(Complex64::new(figure + noise, 0.0), moments.exponent),
             kept,

@@ -1,5 +1,6 @@
 //! `Phi(u) = u^(K+2) + x_K u^K + .. + x_1 u` (DLMF 36.2.1).
 
+use super::level::MEAN;
 use crate::ring::{MAX_SADDLES, NormalForm, ZERO};
 use num_complex::Complex64;
 
@@ -7,6 +8,8 @@ use num_complex::Complex64;
 pub(crate) struct Unfolding {
     c: [Complex64; MAX_SADDLES + 2],
     degree: usize,
+    /// Errors of the `x_j`.
+    noise: [f64; MAX_SADDLES],
 }
 
 impl Unfolding {
@@ -18,7 +21,9 @@ impl Unfolding {
             *c = form.x(j);
         }
         c[degree] += 1.0;
-        Unfolding { c, degree }
+        let mean = MEAN * form.residual();
+        let noise = std::array::from_fn(|j| mean / form.radius().powi(j as i32));
+        Unfolding { c, degree, noise }
     }
 
     /// Taylor coefficients of `Phi` about `u`.
@@ -30,6 +35,14 @@ impl Unfolding {
             }
         }
         t
+    }
+
+    /// The sizes of all terms that `Phi(u + s) - Phi(u)` is summed from.
+    pub fn terms(&self, u: Complex64, s: Complex64) -> f64 {
+        let (u, s) = (u.norm(), s.norm());
+        let at =
+            |x: f64| self.c[..=self.degree].iter().rev().fold(0.0, |sum, c| sum * x + c.norm());
+        at(u + s) - at(u)
     }
 
     /// Coefficients of `Phi'`, `u^0 .. u^(K+1)`.
@@ -47,9 +60,14 @@ impl Unfolding {
         self.c[j]
     }
 
+    /// Expected error of `x_j`.
+    pub fn noise(&self, j: usize) -> f64 {
+        self.noise[j]
+    }
+
     /// The polynomial with conjugate coefficients: `conj Phi(conj u)`.
     pub fn conj(&self) -> Unfolding {
-        Unfolding { c: self.c.map(|c| c.conj()), degree: self.degree }
+        Unfolding { c: self.c.map(|c| c.conj()), degree: self.degree, noise: self.noise }
     }
 
     /// `Phi(u)`.

@@ -116,8 +116,9 @@ impl Plan {
         let poles = |index| -> Result<Vec<Pole>, Error> {
             let layer = Layer { index, count, fill };
             let measure = |old: &Pole| {
-                let pole = Pole::measure(phase, &layer, old.z, old.radius)?;
-                Ok(Pole { crossings: old.crossings, ..pole })
+                let mut pole = Pole::measure(phase, &layer, old.z, old.radius)?;
+                pole.crossings = old.crossings;
+                Ok(pole)
             };
             self.poles.iter().map(measure).collect()
         };

@@ -378,7 +378,11 @@ impl Plan {
                     && f.im.abs() < 3.0 * (2.0 * f.re).sqrt()
             });
             if near {
-                total.error = total.error + lower.size(k);
+                let size = lower.size(k);
+                // Being switched on it shows in the upper's late terms: no more than those are in doubt.
+                let own = best[index].part.error;
+                let size = if below(own, size) { own } else { size };
+                total.error = total.error + size;
             }
         }
     }

@@ -171,11 +171,6 @@ impl BasedForm {
         self.radius
     }
 
-    /// `f` at the end point.
-    pub fn level(&self) -> Complex64 {
-        self.level
-    }
-
     /// `x_1 .. x_K1`.
     pub fn x(&self) -> [Complex64; MAX_DEGREE - 1] {
         let x = |j: usize| self.x[j] / self.radius.powi(j as i32);
@@ -368,7 +363,7 @@ mod tests {
             let form = BasedForm::find(&phase, saddles, base, reach).expect("a form");
             assert_eq!(form.map()[0], base);
             for v in [Complex64::new(0.4, 0.3), Complex64::new(-0.7, 0.1)] {
-                let f = phase(form.point(v)).0 - form.level();
+                let f = phase(form.point(v)).0 - phase(base).0;
                 assert!((f - form.unfolding(v).0).norm() < 1e-14, "{saddles}");
             }
             for saddle in form.saddles() {

@@ -27,8 +27,11 @@ pub struct NormalForm {
     radius: f64,
     /// `x_0 = A` and `x_1..x_K`, entry `j` multiplied by `R^j`.
     unfolding: [Complex64; MAX_SADDLES],
+    /// What `A` lacks as a double: it is a mean over the ring, known better than any value of `f`.
+    level_rest: Complex64,
     map: Coefficients,
     residual: f64,
+    unresolved: f64,
     tail: f64,
     evaluations: usize,
 }
@@ -103,8 +106,10 @@ impl NormalForm {
             degree,
             radius,
             unfolding,
+            level_rest: ZERO,
             map,
             residual: f64::INFINITY,
+            unresolved: f64::INFINITY,
             tail: f64::INFINITY,
             evaluations: COARSE,
         };
@@ -152,8 +157,10 @@ impl NormalForm {
             degree: 3,
             radius,
             unfolding,
+            level_rest: ZERO,
             map,
             residual: f64::INFINITY,
+            unresolved: f64::INFINITY,
             tail: f64::INFINITY,
             evaluations: 0,
         };
@@ -238,9 +245,10 @@ impl NormalForm {
         for _ in 0..limit {
             let Some(residuals) = self.residuals::<POINTS>(phase) else { return false };
             let mut scale = self.map[1].norm();
-            // Rounding alone is left to be corrected: the residual had to be measured, no more.
+            // Rounding alone is left to be corrected, in `A` and `x_j` only.
             if expected < SETTLED * scale {
-                return self.finish(phase);
+                self.divide_out(residuals);
+                return self.finish();
             }
             let step = self.correct(residuals);
             if !(step.is_finite() && step < 10.0 * scale && step < 4.0 * last_step) {
@@ -249,7 +257,7 @@ impl NormalForm {
             scale = self.map[1].norm();
             // Settled: at the rounding level, or small and no longer falling.
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
-                return self.finish(phase);
+                return self.finish();
             }
             // The next step falls by this ratio at least, by its square where all goes well.
             let ratio = step / last_step.min(0.1 * scale);
@@ -263,62 +271,76 @@ impl NormalForm {
         false
     }
 
-    fn finish(&mut self, phase: &dyn Phase) -> bool {
+    fn finish(&mut self) -> bool {
         self.measure_tail();
-        if self.saddles() == 1 {
-            // The mean over the ring has the rounding of the much larger values there.
-            self.unfolding[0] = phase.value(self.map[0]);
-            self.evaluations += 1;
-        }
         self.unfolding[0].is_finite()
     }
 
-    /// `f(z(u)) - A - Phi(u)` on `N` points; None where it is not finite.
+    /// Coefficients of `f(z(u)) - A - Phi(u)` on `N` points; None where it is not finite.
     fn residuals<const N: usize>(&mut self, phase: &dyn Phase) -> Option<[Complex64; N]> {
         let mut values = values_of::<N>(&self.map);
         let roots = unit_points();
         let lead = self.radius.powi(self.degree as i32);
-        let mut largest = 0.0f64;
+        let level = self.unfolding[0];
         for (s, value) in values.iter_mut().enumerate() {
             let power = |j: usize| roots[s * j * (POINTS / N) % POINTS];
-            let mut target = self.unfolding[0] + power(self.degree) * lead;
+            let mut target = self.level_rest + power(self.degree) * lead;
             for (j, x) in self.unfolding.iter().enumerate().take(self.saddles()).skip(1) {
                 target += x * power(j);
             }
-            *value = phase.value(*value) - target;
-            // NaN must not be lost in the maximum.
-            let square = value.norm_sqr();
-            largest = if square > largest || square.is_nan() { square } else { largest };
+            *value = (phase.value(*value) - level) - target;
         }
         self.evaluations += N;
-        self.residual = largest.sqrt();
-        largest.is_finite().then_some(values)
+        to_coefficients(&mut values);
+        // What no step can remove is noise, or not resolved; NaN is not lost in the sums.
+        let size = |part: &[Complex64]| {
+            let energy: f64 = part.iter().map(|c| c.norm_sqr()).sum();
+            (energy * N as f64 / part.len() as f64).sqrt()
+        };
+        self.residual = size(&values[N * 3 / 4..]);
+        self.unresolved = size(&values[N / 2 + self.saddles()..N * 3 / 4]);
+        (self.residual.is_finite() && self.unresolved.is_finite()).then_some(values)
     }
 
-    /// One step of Newton's method; returns its size.
-    fn correct<const N: usize>(&mut self, mut residuals: [Complex64; N]) -> f64 {
+    /// Divides by `Phi'`: the remainder goes to `A` and `x_j`, the quotient is returned.
+    fn divide_out<const N: usize>(&mut self, mut residuals: [Complex64; N]) -> Coefficients {
         let saddles = self.saddles();
         let kept = N / 2;
-        to_coefficients(&mut residuals);
         // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
         let dividend = &mut residuals[..kept + saddles];
+        let mean = dividend[0];
         if saddles == 0 {
-            // The end point stays where it is.
+            // The end point stays where it is; f there is the mean over the ring.
             dividend[0] = ZERO;
         }
         divide(dividend, &self.derivative()[..self.degree]);
-        for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles) {
+        self.add_to_level(if saddles == 0 { mean } else { dividend[0] });
+        for (x, p) in self.unfolding.iter_mut().zip(&*dividend).take(saddles).skip(1) {
             *x += p;
         }
         let mut quotient = [ZERO; KEPT];
         quotient[..kept].copy_from_slice(&dividend[saddles..]);
+        quotient
+    }
+
+    fn add_to_level(&mut self, change: Complex64) {
+        let old = self.unfolding[0];
+        let rest = self.level_rest + change;
+        self.unfolding[0] = old + rest;
+        self.level_rest = rest - (self.unfolding[0] - old);
+    }
+
+    /// One step of Newton's method; returns its size.
+    fn correct<const N: usize>(&mut self, residuals: [Complex64; N]) -> f64 {
+        let kept = N / 2;
+        let quotient = self.divide_out(residuals);
         let mut correction = values_of::<N>(&quotient);
         for (c, s) in correction.iter_mut().zip(&values_of::<N>(&self.map_derivative())) {
             *c *= s;
         }
         to_coefficients(&mut correction);
         let mut step = 0.0f64;
-        let skip = usize::from(saddles == 0);
+        let skip = usize::from(self.saddles() == 0);
         for (z, c) in self.map[..kept].iter_mut().zip(&correction).skip(skip) {
             *z -= c;
             step = step.max(c.norm_sqr());
@@ -364,6 +386,11 @@ impl NormalForm {
         self.unfolding[0]
     }
 
+    /// What [`level`](NormalForm::level) lacks as a double.
+    pub(crate) fn level_rest(&self) -> Complex64 {
+        self.level_rest
+    }
+
     /// `x_j`, the coefficient of `u^j`, for `1 <= j <= K`; zero otherwise.
     pub fn x(&self, j: usize) -> Complex64 {
         if (1..self.saddles()).contains(&j) {
@@ -383,10 +410,15 @@ impl NormalForm {
         evaluate(&self.map, v)
     }
 
-    /// `max |f(z(u)) - A - Phi(u)|` on the ring at the last step: the noise of the caller's phase
-    /// where the ring is well chosen.
+    /// What of `f(z(u)) - A - Phi(u)` on the ring no Newton step can remove, as a root mean square: the noise
+    /// of the caller's phase where the ring is well chosen, and singularities inside where it is not.
     pub fn residual(&self) -> f64 {
         self.residual
+    }
+
+    /// The same from the first powers beyond those that are kept: what is not resolved.
+    pub(crate) fn unresolved(&self) -> f64 {
+        self.unresolved
     }
 
     /// The size of the last kept Taylor coefficients of the map relative to its largest.

@@ -9,7 +9,7 @@
 //! n! (i/k)^(n+1)` give `p^(n) = n! i^n g_n` with `C_0 = i/k` (Watson's lemma, DLMF 2.3(ii)); at a
 //! single saddle (K = 0) the recursion gives `p^(n) = (1/2)_n i^n g_2n` at once.
 //!
-//! The same recursion with a fixed pseudo-random vector of unit modulus on the ring in place of
+//! The same recursion with a fixed pseudo-random function of unit mean square on the ring in place of
 //! `G_0` measures how much of the rounding noise each order passes on.
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
@@ -36,20 +36,19 @@ pub struct Orders {
     noise: [[f64; MAX_SADDLES]; MAX_ORDERS],
 }
 
-/// Taylor coefficients of the unit-modulus noise; the same for every ring.
+/// Taylor coefficients of noise of unit root mean square on the ring, all of one size; the same for every
+/// ring.
 pub(super) fn unit_noise() -> &'static Coefficients {
     static ONCE: OnceLock<Coefficients> = OnceLock::new();
     ONCE.get_or_init(|| {
         // Weyl's sequence with the golden ratio: equidistributed angles.
-        let mut values: Values = std::array::from_fn(|s| {
-            let square = (s * s + 7 * s) as f64;
+        std::array::from_fn(|n| {
+            let square = (n * n + 7 * n) as f64;
             Complex64::from_polar(
-                1.0,
+                (POINTS as f64).sqrt().recip(),
                 2.0 * std::f64::consts::PI * (square * 0.618_033_988_749_895).fract(),
             )
-        });
-        to_coefficients(&mut values);
-        taylor(&values)
+        })
     })
 }
 
@@ -59,6 +58,8 @@ pub struct Start {
     coefficients: Coefficients,
     size: f64,
     tail: f64,
+    folded: f64,
+    missing: f64,
 }
 
 impl Start {
@@ -121,9 +122,7 @@ impl Start {
         to_coefficients(&mut values);
         // Where poles have been taken away little may be left: the noise is that of the whole.
         let size = size.sqrt();
-        // An amplitude that vanishes is known to all digits.
-        let tail = if size > 0.0 { tail(&values, 0, 0.1 * size) } else { 0.0 };
-        Some(Start { coefficients: taylor(&values), size, tail })
+        Some(Start::measured(&values, size))
     }
 
     /// `H_n` at a point `v` of the disc.
@@ -140,7 +139,13 @@ impl Start {
 
     /// What cannot be sampled: no figure can be trusted.
     pub(crate) fn unknown() -> Start {
-        Start { coefficients: [ZERO; KEPT], size: 1.0, tail: f64::INFINITY }
+        Start {
+            coefficients: [ZERO; KEPT],
+            size: 1.0,
+            tail: f64::INFINITY,
+            folded: f64::INFINITY,
+            missing: f64::INFINITY,
+        }
     }
 
     /// The same on a ring smaller by `factor`: nothing new has to be sampled.
@@ -151,10 +156,27 @@ impl Start {
             *scaled = c * power;
             power *= factor;
         }
+        Start::measured(&full, self.size)
+    }
+
+    fn measured(full: &Values, size: f64) -> Start {
+        let largest = |from: usize, to: usize| {
+            full[from..to].iter().fold(0.0f64, |m, c| m.max(c.norm_sqr())).sqrt()
+        };
+        // An amplitude that vanishes is known to all digits.
+        let scale = largest(0, KEPT).max(0.1 * size).max(f64::MIN_POSITIVE);
+        let (before, last) = (largest(KEPT / 2, KEPT * 3 / 4), largest(KEPT * 3 / 4, KEPT));
+        // By what the coefficients fall over a quarter of the kept half.
+        let fall = if before > last { last / before } else { 1.0 };
+        // Beyond the kept half come the next powers first, negative ones in the end.
+        let folded = largest(POINTS * 3 / 4, POINTS) + last * fall.powi(5);
+        let missing = largest(KEPT, POINTS * 3 / 4).max(last * fall);
         Start {
-            coefficients: taylor(&full),
-            size: self.size,
-            tail: tail(&full, 0, 0.1 * self.size),
+            coefficients: taylor(full),
+            size,
+            tail: tail(full, 0, (0.1 * size).max(f64::MIN_POSITIVE)),
+            folded: folded / scale,
+            missing: missing / scale,
         }
     }
 
@@ -166,6 +188,17 @@ impl Start {
     /// What the tail will be on a ring larger by `factor`, as far as can be seen.
     pub(crate) fn foreseen_tail(&self, factor: f64) -> f64 {
         foreseen_tail(&self.coefficients, 0, factor)
+    }
+
+    /// What the transform adds to the kept coefficients, relative to the largest: the negative powers (all
+    /// of them if there is a singularity inside), and the powers from [`POINTS`] on.
+    pub(crate) fn folded(&self) -> f64 {
+        self.folded
+    }
+
+    /// The first coefficients that are not kept, relative to the largest.
+    pub(crate) fn missing(&self) -> f64 {
+        self.missing
     }
 
     /// `max |G_0|` on the ring.

@@ -84,11 +84,114 @@ impl Phase for AnyPhase {
     }
 }
 
+/// What a phase is made of.
+pub enum Law {
+    Polynomial(Vec<C>),
+    Entire { kind: usize, a: C, b: f64 },
+}
+
+/// An entire amplitude: 1, a quadratic or an exponential.
+#[derive(Clone, Copy)]
+pub struct Smooth {
+    pub kind: usize,
+    pub a: C,
+    pub b: C,
+}
+
+impl Smooth {
+    fn random(random: &mut Random) -> Smooth {
+        let (a, b) = (random.disc(1.0), random.disc(1.0));
+        Smooth { kind: random.below(3), a, b }
+    }
+
+    fn value(&self, z: C) -> C {
+        match self.kind {
+            0 => c(1.0, 0.0),
+            1 => 1.0 + self.a * z + self.b * z * z,
+            _ => (self.a * z * 0.5).exp(),
+        }
+    }
+}
+
+/// The principal part at a pole.
+#[derive(Clone, Copy)]
+pub struct Part {
+    pub pole: C,
+    pub simple: C,
+    pub double: C,
+}
+
+impl Part {
+    /// Simple, double or both.
+    fn random(random: &mut Random, pole: C) -> Part {
+        let (simple, mut double) = (random.disc(1.0), random.disc(1.0));
+        if random.chance(0.5) {
+            double = c(0.0, 0.0);
+        }
+        Part { pole, simple, double }
+    }
+
+    fn value(&self, z: C) -> C {
+        let inverse = (z - self.pole).inv();
+        (self.double * inverse + self.simple) * inverse
+    }
+}
+
+/// What an integral is made of.
+pub struct Recipe {
+    pub law: Law,
+    pub smooth: Smooth,
+    pub parts: Vec<Part>,
+    pub contour: Contour,
+}
+
 /// An integral and a wavenumber.
 pub struct Case {
     pub integral: Integral<AnyPhase, Box<dyn Fn(C) -> C>>,
+    pub recipe: Recipe,
     pub k: f64,
     pub label: String,
+}
+
+impl Case {
+    /// Of a phase and what its amplitude is made of.
+    fn new(
+        law: Law,
+        contour: Contour,
+        smooth: Smooth,
+        parts: Vec<Part>,
+        k: f64,
+        label: String,
+    ) -> Case {
+        let phase = match &law {
+            Law::Polynomial(c) => AnyPhase::Polynomial(Polynomial(c.clone())),
+            &Law::Entire { kind, a, b } => AnyPhase::Closure(Box::new(move |z: C| {
+                let (h, d) = match kind {
+                    0 => (z.sinh() - a * z, z.cosh() - a),
+                    1 => (z.exp() - a * z - z * z * 0.5, z.exp() - a - z),
+                    2 => (z.cosh() * -1.0 + a * z, z.sinh() * -1.0 + a),
+                    _ => (z.exp() * b - a * z, z.exp() * b - a),
+                };
+                (c(0.0, -1.0) * h, c(0.0, -1.0) * d)
+            })),
+        };
+        let singular = parts.clone();
+        let g: Box<dyn Fn(C) -> C> = if parts.is_empty() {
+            Box::new(move |z| smooth.value(z))
+        } else {
+            Box::new(move |z| smooth.value(z) + singular.iter().map(|p| p.value(z)).sum::<C>())
+        };
+        let integral = Integral::new(phase, contour.clone()).amplitude(g);
+        Case { integral, recipe: Recipe { law, smooth, parts, contour }, k, label }
+    }
+
+    /// With all poles named.
+    fn named(mut self) -> Case {
+        for part in &self.recipe.parts {
+            self.integral = self.integral.pole(part.pole);
+        }
+        self
+    }
 }
 
 /// The kinds of integrals, each with the lengths of its runs: plain and long.
@@ -118,15 +221,6 @@ pub const MIXED: Family = Family { name: "ends and poles", make: ends_and_poles 
 
 fn wavenumber(random: &mut Random) -> f64 {
     random.power(3f64.log10(), 4.0)
-}
-
-fn amplitude(random: &mut Random) -> Box<dyn Fn(C) -> C> {
-    let (a, b) = (random.disc(1.0), random.disc(1.0));
-    match random.below(3) {
-        0 => Box::new(|_| c(1.0, 0.0)),
-        1 => Box::new(move |z| 1.0 + a * z + b * z * z),
-        _ => Box::new(move |z: C| (a * z * 0.5).exp()),
-    }
 }
 
 /// A point far out in valley `v` of `lead z^degree`, where `i lead z^degree` is negative.
@@ -190,8 +284,8 @@ impl Poly {
         Contour::through([self.valley(from), middle, self.valley(to)])
     }
 
-    fn phase(&self) -> AnyPhase {
-        AnyPhase::Polynomial(Polynomial(self.c.clone()))
+    fn law(&self) -> Law {
+        Law::Polynomial(self.c.clone())
     }
 
     /// A zero of the derivative.
@@ -213,8 +307,7 @@ fn polynomials(random: &mut Random, low: usize, high: usize) -> Case {
     let p = Poly::random(random, degree);
     let contour = p.contour(random, c(0.0, 0.0));
     let k = wavenumber(random);
-    let integral = Integral::new(p.phase(), contour).amplitude(amplitude(random));
-    Case { integral, k, label: format!("degree {degree}") }
+    Case::new(p.law(), contour, Smooth::random(random), Vec::new(), k, format!("degree {degree}"))
 }
 
 /// Two to four saddles that merge, one or two others farther off; offsets of the phase up to 30.
@@ -229,8 +322,14 @@ fn clusters(random: &mut Random) -> Case {
     let p = Poly::with_saddles(lead, &saddles, random.disc(30.0));
     let contour = p.contour(random, centre);
     let k = wavenumber(random);
-    let integral = Integral::new(p.phase(), contour).amplitude(amplitude(random));
-    Case { integral, k, label: format!("{merging} of {} merging within {size:.1e}", p.degree - 1) }
+    Case::new(
+        p.law(),
+        contour,
+        Smooth::random(random),
+        Vec::new(),
+        k,
+        format!("{merging} of {} merging within {size:.1e}", p.degree - 1),
+    )
 }
 
 fn ends(random: &mut Random) -> Case {
@@ -244,8 +343,7 @@ fn ends(random: &mut Random) -> Case {
         _ => Contour::between([start, start + random.disc(2.0)]),
     };
     let k = wavenumber(random);
-    let integral = Integral::new(p.phase(), contour).amplitude(amplitude(random));
-    Case { integral, k, label: format!("degree {degree}") }
+    Case::new(p.law(), contour, Smooth::random(random), Vec::new(), k, format!("degree {degree}"))
 }
 
 fn ends_near_saddles(random: &mut Random) -> Case {
@@ -264,21 +362,8 @@ fn ends_near_saddles(random: &mut Random) -> Case {
         Contour::ending_at([far, start])
     };
     let k = wavenumber(random);
-    let integral = Integral::new(p.phase(), contour).amplitude(amplitude(random));
     let label = format!("{count} saddles within {near:.1e}, end {offset:.1e} off");
-    Case { integral, k, label }
-}
-
-/// A principal part: simple, double or both.
-fn principal_part(random: &mut Random, pole: C) -> impl Fn(C) -> C + use<> {
-    let (simple, mut double) = (random.disc(1.0), random.disc(1.0));
-    if random.chance(0.5) {
-        double = c(0.0, 0.0);
-    }
-    move |z| {
-        let inverse = (z - pole).inv();
-        (double * inverse + simple) * inverse
-    }
+    Case::new(p.law(), contour, Smooth::random(random), Vec::new(), k, label)
 }
 
 /// Anywhere, or near a saddle.
@@ -295,20 +380,15 @@ fn poles(random: &mut Random) -> Case {
     let p = Poly::random(random, degree);
     let middle = random.disc(0.5);
     let contour = p.contour(random, middle);
-    let smooth = amplitude(random);
+    let smooth = Smooth::random(random);
     let mut poles = vec![place(random, &p)];
     if random.chance(0.3) {
         poles.push(place(random, &p));
     }
-    let parts: Vec<_> = poles.iter().map(|&pole| principal_part(random, pole)).collect();
-    let g = move |z: C| smooth(z) + parts.iter().map(|part| part(z)).sum::<C>();
+    let parts = poles.iter().map(|&pole| Part::random(random, pole)).collect();
     let k = wavenumber(random);
-    let boxed: Box<dyn Fn(C) -> C> = Box::new(g);
-    let mut integral = Integral::new(p.phase(), contour).amplitude(boxed);
-    for &pole in &poles {
-        integral = integral.pole(pole);
-    }
-    Case { integral, k, label: format!("degree {degree} poles {poles:.3?}") }
+    let label = format!("degree {degree} poles {poles:.3?}");
+    Case::new(p.law(), contour, smooth, parts, k, label).named()
 }
 
 /// Poles that nobody names, beyond the contour's descent (those across it must be named).
@@ -321,28 +401,18 @@ fn unnamed_poles(random: &mut Random) -> Case {
         Poly::new(vec![c(0.0, 0.0), c(0.0, 0.0), c(0.5, 0.0), c(a, 0.0) * 0.2, c(b, 0.0) * 0.25]);
     let contour = Contour::through([p.valley(2), c(0.0, 0.0), p.valley(0)]);
     let weight = random.disc(1.0);
-    let smooth = amplitude(random);
+    let smooth = Smooth::random(random);
     // exp(i k f) has its ridges along -45 and 135 degrees at the saddle: a pole near there is never crossed.
     let pole = C::from_polar(distance, if random.chance(0.5) { -0.25 * PI } else { 0.75 * PI });
-    let g: Box<dyn Fn(C) -> C> = Box::new(move |z| smooth(z) + weight / (z - pole));
+    let parts = vec![Part { pole, simple: weight, double: c(0.0, 0.0) }];
     let k = wavenumber(random);
-    let integral = Integral::new(p.phase(), contour).amplitude(g);
-    Case { integral, k, label: format!("pole {distance:.2} off") }
+    Case::new(p.law(), contour, smooth, parts, k, format!("pole {distance:.2} off"))
 }
 
 fn entire(random: &mut Random) -> Case {
     let a = random.disc(1.5);
     let b = random.within(0.3, 1.5);
     let kind = random.below(4);
-    let f = move |z: C| {
-        let (h, d) = match kind {
-            0 => (z.sinh() - a * z, z.cosh() - a),
-            1 => (z.exp() - a * z - z * z * 0.5, z.exp() - a - z),
-            2 => (z.cosh() * -1.0 + a * z, z.sinh() * -1.0 + a),
-            _ => (z.exp() * b - a * z, z.exp() * b - a),
-        };
-        (c(0.0, -1.0) * h, c(0.0, -1.0) * d)
-    };
     // sinh and exp have valleys at +infinity +- i pi, cosh (with a minus) at +-infinity.
     let contour = match kind {
         2 => Contour::through([c(-5.0, 0.0), c(5.0, 0.0)]),
@@ -352,9 +422,8 @@ fn entire(random: &mut Random) -> Case {
         }
     };
     let k = wavenumber(random);
-    let integral =
-        Integral::new(AnyPhase::Closure(Box::new(f)), contour).amplitude(amplitude(random));
-    Case { integral, k, label: format!("kind {kind} a {a:.3}") }
+    let label = format!("kind {kind} a {a:.3}");
+    Case::new(Law::Entire { kind, a, b }, contour, Smooth::random(random), Vec::new(), k, label)
 }
 
 fn ends_and_poles(random: &mut Random) -> Case {
@@ -371,13 +440,11 @@ fn ends_and_poles(random: &mut Random) -> Case {
         _ => Contour::ending_at([far, start]),
     };
     let pole = place(random, &p);
-    let smooth = amplitude(random);
-    let part = principal_part(random, pole);
-    let g: Box<dyn Fn(C) -> C> = Box::new(move |z| smooth(z) + part(z));
+    let smooth = Smooth::random(random);
+    let part = Part::random(random, pole);
     let k = wavenumber(random);
-    let integral = Integral::new(p.phase(), contour).amplitude(g).pole(pole);
     let label = format!("degree {degree} end {start:.3} pole {pole:.3}");
-    Case { integral, k, label }
+    Case::new(p.law(), contour, smooth, vec![part], k, label).named()
 }
 
 /// Whether a contour has a finite end.
