@@ -16,6 +16,11 @@ use std::f64::consts::PI;
 /// Depths at which points are compared.
 const ROUNDS: usize = 5;
 
+/// Points so unequally far down are compared on finer pieces next to the higher one.
+const UNEVEN: f64 = 30.0;
+/// How often those pieces are halved.
+const GRADES: i32 = 10;
+
 /// The valleys met so far, for one floor.
 pub(crate) struct Certificate<'t, 'p> {
     topology: &'t Topology<'p>,
@@ -165,9 +170,23 @@ impl<'t, 'p> Certificate<'t, 'p> {
             [12, 6, 18, 9, 15, 3, 21, 1, 2, 4, 5, 7, 8, 10, 11, 13, 14, 16, 17, 19, 20, 22, 23];
         let (a, b) = (self.deep(a, depth), self.deep(b, depth));
         let level = self.level();
-        ORDER
-            .iter()
-            .all(|&piece| self.topology.h.height(a + (b - a) * (piece as f64 / 24.0)) < level)
+        let height = |z: Complex64| self.topology.h.height(z);
+        let under =
+            |from: Complex64, to: Complex64, part: f64| height(from + (to - from) * part) < level;
+        if !ORDER.iter().all(|&piece| under(a, b, piece as f64 / 24.0)) {
+            return false;
+        }
+        // An end of the contour may lie far below and far out: a hill next to the other point would be
+        // missed.
+        let [first, second] = [a, b].map(|z| (level - height(z)).abs());
+        if first.max(second) < UNEVEN * first.min(second) {
+            return true;
+        }
+        let (near, far) = if first < second { (a, b) } else { (b, a) };
+        (1..=GRADES).all(|n| {
+            let part = 0.5f64.powi(n) / 12.0;
+            under(near, far, part) && under(near, far, 0.75 * part)
+        })
     }
 
     /// A well's point at a depth.
