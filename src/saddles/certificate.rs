@@ -16,9 +16,9 @@ use std::f64::consts::PI;
 /// Depths at which points are compared.
 const ROUNDS: usize = 5;
 
-/// Points so unequally far down are compared on finer pieces next to the higher one.
-const UNEVEN: f64 = 30.0;
-/// How often those pieces are halved.
+/// Pieces of a chord next to its points, over the length `|h'/h''|` on which the landscape changes there.
+const FINE: f64 = 0.5;
+/// How often those pieces are halved at most.
 const GRADES: i32 = 10;
 
 /// The valleys met so far, for one floor.
@@ -176,16 +176,16 @@ impl<'t, 'p> Certificate<'t, 'p> {
         if !ORDER.iter().all(|&piece| under(a, b, piece as f64 / 24.0)) {
             return false;
         }
-        // An end of the contour may lie far below and far out: a hill next to the other point would be
-        // missed.
-        let [first, second] = [a, b].map(|z| (level - height(z)).abs());
-        if first.max(second) < UNEVEN * first.min(second) {
-            return true;
-        }
-        let (near, far) = if first < second { (a, b) } else { (b, a) };
-        (1..=GRADES).all(|n| {
-            let part = 0.5f64.powi(n) / 12.0;
-            under(near, far, part) && under(near, far, 0.75 * part)
+        // Where the points are far apart (an end of the contour may lie far out) a hill next to one of
+        // them is narrower than a piece: finer pieces there, down to its own scale.
+        [(a, b), (b, a)].into_iter().all(|(near, far)| {
+            let [_, slope, bend] = self.topology.h.jet(near);
+            let scale = FINE * slope.norm() / bend.norm();
+            let length = (far - near).norm();
+            let parts = (1..=GRADES).map(|n| 0.5f64.powi(n) / 12.0);
+            parts
+                .take_while(|part| part * length > scale)
+                .all(|part| under(near, far, 0.5 * part) && under(near, far, 0.75 * part))
         })
     }
 
