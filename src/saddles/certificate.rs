@@ -16,6 +16,11 @@ use std::f64::consts::PI;
 /// Depths at which points are compared.
 const ROUNDS: usize = 5;
 
+/// Pieces of a chord next to its points, over the length `|h'/h''|` on which the landscape changes there.
+const FINE: f64 = 0.5;
+/// How often those pieces are halved at most.
+const GRADES: i32 = 10;
+
 /// The valleys met so far, for one floor.
 pub(crate) struct Certificate<'t, 'p> {
     topology: &'t Topology<'p>,
@@ -165,9 +170,23 @@ impl<'t, 'p> Certificate<'t, 'p> {
             [12, 6, 18, 9, 15, 3, 21, 1, 2, 4, 5, 7, 8, 10, 11, 13, 14, 16, 17, 19, 20, 22, 23];
         let (a, b) = (self.deep(a, depth), self.deep(b, depth));
         let level = self.level();
-        ORDER
-            .iter()
-            .all(|&piece| self.topology.h.height(a + (b - a) * (piece as f64 / 24.0)) < level)
+        let height = |z: Complex64| self.topology.h.height(z);
+        let under =
+            |from: Complex64, to: Complex64, part: f64| height(from + (to - from) * part) < level;
+        if !ORDER.iter().all(|&piece| under(a, b, piece as f64 / 24.0)) {
+            return false;
+        }
+        // Where the points are far apart (an end of the contour may lie far out) a hill next to one of
+        // them is narrower than a piece: finer pieces there, down to its own scale.
+        [(a, b), (b, a)].into_iter().all(|(near, far)| {
+            let [_, slope, bend] = self.topology.h.jet(near);
+            let scale = FINE * slope.norm() / bend.norm();
+            let length = (far - near).norm();
+            let parts = (1..=GRADES).map(|n| 0.5f64.powi(n) / 12.0);
+            parts
+                .take_while(|part| part * length > scale)
+                .all(|part| under(near, far, 0.5 * part) && under(near, far, 0.75 * part))
+        })
     }
 
     /// A well's point at a depth.
