@@ -57,7 +57,7 @@ fn curved_profiles() {
         // With the local slope most of the next order is there outside; inside it takes the whole of it.
         for (i, ([before, without], [inside, outside])) in leading.iter().zip(&next).enumerate() {
             assert!(*outside < [8e-4, 1.8e-3][i] && *inside < [6e-4, 4e-3][i]);
-            assert!(outside < &(without / 12.0) && inside < &(before / 10.0));
+            assert!(outside < &(without / 11.0) && inside < &(before / 10.0));
             assert!(inside < &(local[i][0] / 1.6));
         }
     }

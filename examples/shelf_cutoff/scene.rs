@@ -85,7 +85,7 @@ impl Scene {
             Ok(beam) => beam.axis_rad,
             Err(_) => run.take_off_angle_small_rad().min(1.5),
         };
-        // The ray is a line through this point; it leaves the bed a little before.
+        // The ray is a line through this point, which need not lie on the bed.
         let (start_m, depth_m) = run.passage().ray_start(axis_rad);
         let beam_start_m = leaves_bed(run, [start_m, depth_m], axis_rad, place.range_m);
         Ok(Followed {
@@ -172,13 +172,13 @@ impl Followed {
     }
 }
 
-/// Where the beam's axis crosses the bed, at or before the point from which its ray is counted.
+/// Where the beam's axis crosses the bed, near the point from which its ray is counted.
 fn leaves_bed(run: &ModeCutOff, [start_m, depth_m]: [f64; 2], axis_rad: f64, cut_m: f64) -> f64 {
     let below =
         |range_m: f64| depth_m + axis_rad.sin() * (range_m - start_m) > run.depth_m(range_m);
-    let (mut before, mut after) = (cut_m.min(start_m), start_m);
+    let (mut before, mut after) = (cut_m.min(start_m), start_m + run.layer_range_m());
     if below(before) || !below(after) {
-        return after;
+        return start_m;
     }
     for _ in 0..60 {
         let middle = 0.5 * (before + after);

@@ -66,7 +66,7 @@ pub fn draw(
     let (from, to) = (first.max(cut - 5.0 * length), last.min(cut + 7.0 * length));
     let axis = |s: f64| out + slope * (s - start);
     let width = |s: f64| passage.profile().width(s);
-    let leaves = meeting(&axis, &width, [cut.max(from), start.max(cut)]);
+    let leaves = meeting(&axis, &width, [cut.max(from), start.max(cut) + length]);
     let top = (1.5 * axis(to)).max(3.0 * passage.cutoff_width());
     let (ranges, across) = (centres(from, to, columns), centres(0.0, top, rows));
     let level_db = levels(&ranges, &across, |s, x| passage.value(s, x).map_or(f64::NAN, level_db));

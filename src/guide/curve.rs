@@ -12,8 +12,8 @@
 //! `G` is known as a polynomial that fits the profile round the cut-off. The contour goes where `u` is complex and
 //! several times larger than that window, and where the field is nothing; but a polynomial of high degree grows into
 //! valleys of its own there. Where it does, it is written in powers of `v = u/(1 - (u/S)^2)`, `S` six times the window: the same
-//! on the window, and nearly the straight profile far away; its poles lie off the contour. The roots and powers of the slope, which have no such
-//! exponential, are polynomials of `u` of low degree: `1/T'` itself would have poles where the polynomial turns.
+//! on the window, and nearly the straight profile far away; its poles lie off the contour. The slope in the next order, which has no such
+//! exponential, and its inverse are polynomials of `u` of low degree: `1/T'` itself would have poles where the polynomial turns.
 //!
 //! Source: derived here.
 
@@ -98,7 +98,7 @@ impl Curve {
 
     /// `T'(u)^(1/2)`, the amplitude's factor, and the local slope over that at cut-off.
     pub(super) fn slope(&self, u: Complex64) -> (Complex64, Complex64) {
-        (above_one(&self.slope.root, u), above_one(&self.slope.sigma, u))
+        ((self.excess(u).1 + 1.0).sqrt(), above_one(&self.slope.sigma, u))
     }
 
     /// Whether expansions at the saddles can use it.
@@ -203,12 +203,11 @@ impl Bend {
     }
 }
 
-/// The local slope over that at cut-off, `sigma = 1/T'`, `1/sigma` and `sigma^(-1/2)`, each as `1 + u (..)`.
+/// The local slope over that at cut-off, `sigma = 1/T'`, and `1/sigma`, each as `1 + u (..)`.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub(super) struct LocalSlope {
     pub(super) sigma: [Complex64; SLOPES],
     pub(super) inverse: [Complex64; SLOPES],
-    root: [Complex64; BENDS],
 }
 
 impl LocalSlope {
@@ -217,7 +216,6 @@ impl LocalSlope {
         LocalSlope {
             sigma: fitted(reach, 1e-9, |u| (slope(u).inv() - 1.0) / u),
             inverse: fitted(reach, 1e-9, |u| (slope(u) - 1.0) / u),
-            root: fitted(reach, 1e-9, |u| (slope(u).sqrt() - 1.0) / u),
         }
     }
 

@@ -56,12 +56,12 @@
 //! | 2 | 1 | straight | 0.01 | next | 4.0e-4 / 1.3e-4 | 1.2e-3 / 3.8e-4 |
 //! | 2 | 0.55 | straight | 0.01 | next | 4.2e-4 / 1.1e-4 | 5.5e-4 / 3.5e-4 |
 //! | 3 | 1.5 | straight | 0.02 | next | 2.1e-4 / 1.6e-3 | 5.3e-3 / 1.7e-3 |
-//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | leading | 6.1e-3 / 1.1e-2 | 3.3e-2 / 2.1e-2 |
-//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | local slope | 4.8e-4 / 1.0e-3 | 1.1e-2 / 1.4e-3 |
-//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | next | 1.5e-4 / 4.0e-4 | 1.1e-3 / 1.7e-3 |
-//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | leading | 6.1e-3 / 1.1e-2 | 3.7e-2 / 2.3e-2 |
-//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | local slope | 1.9e-4 / 4.7e-4 | 9.0e-3 / 2.1e-3 |
-//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | next | 1.1e-4 / 3.1e-4 | 3.7e-3 / 1.4e-3 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | leading | 6.2e-3 / 1.1e-2 | 3.2e-2 / 2.1e-2 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | local slope | 4.3e-4 / 8.7e-4 | 1.0e-2 / 1.1e-3 |
+//! | 1 | 1 | `h_c - r + r^2/4` | 0.01 | next | 2.0e-4 / 5.5e-4 | 8.7e-4 / 1.8e-3 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | leading | 6.1e-3 / 1.1e-2 | 3.6e-2 / 2.3e-2 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | local slope | 2.5e-4 / 6.1e-4 | 8.4e-3 / 2.0e-3 |
+//! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | next | 1.4e-4 / 3.4e-4 | 3.0e-3 / 1.3e-3 |
 //!
 //! On the curved profiles one complex constant is taken out: the start of the solution leaves some tenths of a per
 //! cent of the mode behind. With density ratio 0.55 and modes 2 and 3 on these profiles the

@@ -95,7 +95,7 @@ impl Passage {
         let step = (media.m * media.m * first_eps).cbrt();
         // In range: eps (m/eps)^(2/3)/(q g).
         let length = step / (media.q_real * first_slope);
-        let fit = profile.fit(cutoff_width, 3.0 * step / media.q_real, 1e-5 * length)?;
+        let fit = profile.fit(cutoff_width, 3.0 * step / media.q_real, 1e-3 * length)?;
         let real = expand(&fit.coefficients, Complex64::new(0.0, 0.0));
         let slope = real[1].re.recip();
         let eps = 2.0 * media.k_real * slope / media.q_real;

@@ -1,9 +1,9 @@
 //! The width of a guide against range as the caller has it, and its smooth form round a cut-off.
 //!
 //! The uniform field needs the range at *complex* widths: `T(h_n(p))`. So round each cut-off the range
-//! is fitted as a polynomial of the width lost, `s(U) = a_0 + a_1 U + .. + a_8 U^8`,
+//! is fitted as a polynomial of the width lost, `s(U) = a_0 + a_1 U + .. + a_6 U^6`,
 //! `U = D_c - D`, by least squares at 64 places of the caller's profile (Chebyshev nodes in range, DLMF
-//! 18.3). The lowest degree (1 to 8) is taken that leaves less than 0.00001 of a transition length. The window reaches
+//! 18.3). The lowest degree (1 to 6) is taken that leaves less than 0.001 of a transition length. The window reaches
 //! three transition heights of width to both sides, as far as the profile goes and falls at 0.3 to 3.3 times its rate at cut-off, but not
 //! beyond 0.6 of the width at cut-off. Fields keep the profile itself in everything that needs no
 //! continuation.
@@ -241,7 +241,7 @@ impl Profile {
             })
             .collect();
         let mut best = None;
-        for degree in 1..=8 {
+        for degree in 1..=6 {
             let Some(c) = least_squares(&places, degree) else { break };
             let at = |u: f64| c.iter().rev().fold(0.0, |sum, c| sum * u + c);
             let residual = places.iter().map(|&(u, s)| (at(u) - s).abs()).fold(0.0, f64::max);
