@@ -174,7 +174,7 @@ impl Start {
         Start {
             coefficients: taylor(full),
             size,
-            tail: tail(full, 0, (0.1 * size).max(f64::MIN_POSITIVE)),
+            tail: if size > 0.0 { tail(full, 0, 0.1 * size) } else { 0.0 },
             folded: folded / scale,
             missing: missing / scale,
         }
