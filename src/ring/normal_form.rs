@@ -201,7 +201,9 @@ impl NormalForm {
             if !largest.is_finite() {
                 return false;
             }
-            self.residual = largest.sqrt();
+            // By chance it may be smaller than the rounding of what was subtracted.
+            let rounding = 0.5 * f64::EPSILON * self.radius.powi(self.degree as i32);
+            self.residual = largest.sqrt().max(rounding);
             to_coefficients(&mut residual);
             // K + 1 coefficients beyond the kept ones: they decide the last ones of the map.
             let dividend = &mut residual[..KEPT + saddles];
