@@ -297,7 +297,9 @@ impl NormalForm {
             let energy: f64 = part.iter().map(|c| c.norm_sqr()).sum();
             (energy * N as f64 / part.len() as f64).sqrt()
         };
-        self.residual = size(&values[N * 3 / 4..]);
+        // By chance it may be smaller than the rounding of what was subtracted.
+        let rounding = 0.25 * f64::EPSILON * lead;
+        self.residual = size(&values[N * 3 / 4..]).max(rounding);
         self.unresolved = size(&values[N / 2 + self.saddles()..N * 3 / 4]);
         (self.residual.is_finite() && self.unresolved.is_finite()).then_some(values)
     }
