@@ -33,7 +33,7 @@ impl SlopingGuide {
         let inside = ModePhase { d: Complex64::new(0.0, 0.0), ..phase.clone() };
         let brewster = if m > 1.0 { m.recip().atanh() } else { f64::INFINITY };
         let reach = (0.95 * brewster).min(2.2);
-        let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.3, 0.6, 0.0] };
+        let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.0, 0.3, 0.6] };
         let (right, right_size) = lowest(&inside, k, Complex64::new(0.0, 0.0), angles, |_| reach);
         let mut neglected = right_size;
         let contour = if self.curve.is_none() {
@@ -42,7 +42,7 @@ impl SlopingGuide {
             // From the bound mode's saddle, below all that is singular on the line Im w = pi/2.
             let omega = self.bound_angle(phase.h.re);
             let length = |angle: f64| ((1.5 - omega) / angle.sin()).min(2.2);
-            let angles = [2.1, 2.35, 1.85, 2.6];
+            let angles = [1.85, 2.1, 2.35, 2.6];
             let (left, left_size) = lowest(&inside, k, I * omega, &angles, length);
             neglected += left_size;
             Contour::between([left, near, right])
@@ -95,9 +95,15 @@ fn lowest(
     let mut best = (from, f64::INFINITY);
     for &angle in angles {
         let step = Complex64::from_polar(length(angle) / f64::from(STEPS), angle);
+        let mut least = f64::INFINITY;
         for j in 1..=STEPS {
             let w = from + step * f64::from(j);
             let size = (I * k * phase.value(w)).re.exp();
+            // Behind a hill lies no valley of the field: a polynomial fit has some of its own.
+            least = least.min(size);
+            if size > 10.0 * least {
+                break;
+            }
             if size < best.1 {
                 best = (w, size);
             }

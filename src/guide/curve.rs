@@ -9,11 +9,8 @@
 //!
 //! is not; it is tabulated once per profile (`table.rs`).
 //!
-//! `G` is known as a polynomial that fits the profile round the cut-off. The contour goes where `u` is complex and
-//! several times larger than that window, and where the field is nothing; but a polynomial of high degree grows into
-//! valleys of its own there. Where it does, it is written in powers of `v = u/(1 - (u/S)^2)`, `S` six times the window: the same
-//! on the window, and nearly the straight profile far away; its poles lie off the contour. The slope in the next order, which has no such
-//! exponential, and its inverse are polynomials of `u` of low degree: `1/T'` itself would have poles where the polynomial turns.
+//! `G` is known as a polynomial that fits the profile round the cut-off. The slope in the next order and its inverse are
+//! polynomials of low degree of their own: `1/T'` would have poles where the fit turns, near the contour.
 //!
 //! Source: derived here.
 
@@ -24,8 +21,7 @@ use crate::Complex64;
 use std::f64::consts::PI;
 use std::fmt;
 
-/// Terms of `G` and of the slope.
-const BENDS: usize = 8;
+/// Terms of the slope.
 /// Width on each side of cut-off that counts, over `(m^2 eps)^(1/3)`.
 pub(super) const REACH: f64 = 2.5;
 const SLOPES: usize = 4;
@@ -36,8 +32,6 @@ const ONE: Complex64 = Complex64::new(1.0, 0.0);
 #[derive(Clone, PartialEq)]
 pub(super) struct Curve {
     dispersion: Dispersion,
-    /// `c_2, c_3, ..` as they were given.
-    higher: Vec<Complex64>,
     bend: Bend,
     slope: LocalSlope,
     table: Table,
@@ -70,25 +64,17 @@ impl Curve {
         while reach > 1e-6 && !(-8..=8).all(|j| tame(reach * f64::from(j) / 8.0)) {
             reach *= 0.8;
         }
-        // As it is where it grows into no valley of its own, which expansions at the saddles need.
-        let eps = (reach / REACH).powi(3) / (dispersion.m * dispersion.m);
-        let bend = Bend::plain(higher)
-            .filter(|bend| bend.is_benign(dispersion, eps))
-            .unwrap_or_else(|| Bend::new(reach, |u| at(u).0));
+        let bend = Bend { higher: higher.to_vec() };
         let slope = LocalSlope::new(reach, |u| at(u).1);
         let table = Table::new(dispersion.gate(), 1e-12, |w| bend.rate(dispersion, w));
         let second = Second::new(dispersion, slope);
-        Curve { dispersion, higher: higher.to_vec(), bend, slope, table, second }
+        Curve { dispersion, bend, slope, table, second }
     }
 
-    /// `T(u)` and `T'(u)` of the polynomial itself.
+    /// `T(u)` and `T'(u)`.
     pub(super) fn range(&self, u: f64) -> (Complex64, Complex64) {
-        let (mut value, mut slope) = (ZERO, ZERO);
-        for c in self.higher.iter().rev().copied().chain([ONE, ZERO]) {
-            slope = slope * u + value;
-            value = value * u + c;
-        }
-        (value, slope)
+        let (value, slope) = self.excess(Complex64::from(u));
+        (value + u, slope + 1.0)
     }
 
     /// `G(u)` and `G'(u)`.
@@ -99,11 +85,6 @@ impl Curve {
     /// `T'(u)^(1/2)`, the amplitude's factor, and the local slope over that at cut-off.
     pub(super) fn slope(&self, u: Complex64) -> (Complex64, Complex64) {
         ((self.excess(u).1 + 1.0).sqrt(), above_one(&self.slope.sigma, u))
-    }
-
-    /// Whether expansions at the saddles can use it.
-    pub(super) fn is_plain(&self) -> bool {
-        self.bend.is_plain()
     }
 
     /// `dJ/dw`.
@@ -127,73 +108,22 @@ impl Curve {
     }
 }
 
-/// `G = v^2 (b_0 + b_1 v + ..)`.
-#[derive(Clone, Copy, Debug, PartialEq)]
+/// `G = c_2 u^2 + c_3 u^3 + ..`.
+#[derive(Clone, Debug, PartialEq)]
 struct Bend {
-    b: [Complex64; BENDS],
-    far: f64,
+    higher: Vec<Complex64>,
 }
 
 impl Bend {
-    /// The polynomial itself, if it is not too long.
-    fn plain(higher: &[Complex64]) -> Option<Bend> {
-        let mut b = [ZERO; BENDS];
-        b.get_mut(..higher.len())?.copy_from_slice(higher);
-        Some(Bend { b, far: f64::INFINITY })
-    }
-
-    /// Whether the exponential falls all the way down both valleys at cut-off.
-    fn is_benign(&self, dispersion: Dispersion, eps: f64) -> bool {
-        const STEPS: u32 = 110;
-        [2.1, 0.0, 0.3].into_iter().all(|angle| {
-            let step = Complex64::from_polar(2.2 / f64::from(STEPS), angle);
-            let (mut sum, mut least) = (ZERO, 0.0f64);
-            for j in 1..=STEPS {
-                let w = step * f64::from(j);
-                sum += self.rate(dispersion, w - step * 0.5) * step;
-                let height =
-                    -(dispersion.action(w, Complex64::from(dispersion.cutoff)) + sum).im / eps;
-                // Beyond the contour's end nothing counts.
-                if height < -40.0 || w.im > 1.4 {
-                    break;
-                }
-                if height > least + 0.5 || height.is_nan() {
-                    return false;
-                }
-                least = least.min(height);
-            }
-            true
-        })
-    }
-
-    /// Whether it is the polynomial itself.
-    fn is_plain(&self) -> bool {
-        self.far == f64::INFINITY
-    }
-
-    /// From `G/u^2` on the window.
-    fn new(reach: f64, excess: impl Fn(f64) -> Complex64) -> Bend {
-        let far = 6.0 * reach;
-        let most = reach / (1.0 - (reach / far).powi(2));
-        // What is below 1e-4 of a radian in the phase only adds saddles far away.
-        let b = fitted(most, 2e-5 / reach, |v| {
-            let u = 2.0 * v / (1.0 + (1.0 + (2.0 * v / far).powi(2)).sqrt());
-            excess(u) * (u / v).powi(2)
-        });
-        Bend { b, far }
-    }
-
     /// `G(u)` and `G'(u)`.
     fn excess(&self, u: Complex64) -> (Complex64, Complex64) {
-        let s = u / self.far;
-        let near = (1.0 - s * s).inv();
-        let v = u * near;
         let (mut value, mut slope) = (ZERO, ZERO);
-        for c in self.b.iter().rev() {
-            slope = slope * v + value;
-            value = value * v + c;
+        for c in self.higher.iter().rev() {
+            slope = slope * u + value;
+            value = value * u + c;
         }
-        (value * v * v, (value * 2.0 + slope * v) * v * (s * s + 1.0) * near * near)
+        // value = G/u^2
+        (value * u * u, (value * 2.0 + slope * u) * u)
     }
 
     /// `dJ/dw`.
@@ -214,8 +144,8 @@ impl LocalSlope {
     /// From `T'` on the window.
     pub(super) fn new(reach: f64, slope: impl Fn(f64) -> Complex64) -> LocalSlope {
         LocalSlope {
-            sigma: fitted(reach, 1e-9, |u| (slope(u).inv() - 1.0) / u),
-            inverse: fitted(reach, 1e-9, |u| (slope(u) - 1.0) / u),
+            sigma: fitted(reach, |u| (slope(u).inv() - 1.0) / u),
+            inverse: fitted(reach, |u| (slope(u) - 1.0) / u),
         }
     }
 
@@ -237,12 +167,8 @@ fn above_one(c: &[Complex64], u: Complex64) -> Complex64 {
 }
 
 /// Coefficients in powers of `u`, `|u| <= most`, from Chebyshev polynomials and the values at the zeros of
-/// a higher one (DLMF 3.11(ii)); without the last terms as far as they are below `least`.
-fn fitted<const N: usize>(
-    most: f64,
-    least: f64,
-    value: impl Fn(f64) -> Complex64,
-) -> [Complex64; N] {
+/// a higher one (DLMF 3.11(ii)).
+fn fitted<const N: usize>(most: f64, value: impl Fn(f64) -> Complex64) -> [Complex64; N] {
     const PLACES: u32 = 16;
     let zero = [ZERO; N];
     let mut c = zero;
@@ -253,12 +179,6 @@ fn fitted<const N: usize>(
             let weight = if n == 0 { 1.0 } else { 2.0 } / f64::from(PLACES);
             *c += value * (weight * (f64::from(n) * angle).cos());
         }
-    }
-    for c in c.iter_mut().rev() {
-        if c.norm() > least {
-            break;
-        }
-        *c = ZERO;
     }
     // Clenshaw's recurrence (DLMF 3.11.15) on polynomials.
     let (mut last, mut before) = (zero, zero);

@@ -64,10 +64,7 @@
 //! | 1 | 1 | `h_c - r - r^2/5` | 0.01 | next | 1.4e-4 / 3.4e-4 | 3.0e-3 / 1.3e-3 |
 //!
 //! On the curved profiles one complex constant is taken out: the start of the solution leaves some tenths of a per
-//! cent of the mode behind. With density ratio 0.55 and modes 2 and 3 on these profiles the
-//! order is measured by the mismatch at the boundary: at `eps = 0.01` and `t = 0` it falls from 4 to 7 per cent at
-//! leading order over 0.1 to 0.5 per cent with the local slope to 0.1 to 0.2 per cent; late after cut-off the whole next
-//! order gains a factor of 1.2 to 1.8 over the local slope.
+//! cent of the mode behind.
 //!
 //! Revivals ([`SlopingGuide::revival`]) at `eps = 0.01`, formula over solution at the lower cut-off and one layer's time
 //! later: `m = 0.55` 1.08 and 0.91, even modes 1.04 and 0.90, the profile `h_c - r + r^2/25` 0.98 and 1.12, losses

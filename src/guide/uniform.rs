@@ -150,9 +150,7 @@ impl SlopingGuide {
     /// the one there.
     ///
     /// The phase is then `integral of 2 p T(h_n(p)) dp`, the amplitude has the factor
-    /// `T'(u)^(1/2)`, and the next order the local slope `1/T'(u)` and its derivatives ([`Order`]). Only the part of the
-    /// polynomial counts that the mode feels: `|u|` up to some `3 (m^2 eps)^(1/3)`, as far as the slope stays within
-    /// a factor 3.3 of that at cut-off.
+    /// `T'(u)^(1/2)`, and the next order the local slope `1/T'(u)` and its derivatives ([`Order`]).
     ///
     /// Errors: [`Error::Domain`] for a coefficient that is not finite.
     ///
@@ -438,21 +436,10 @@ impl UniformField {
     /// the phase has no closed form where the search for saddles goes.
     ///
     /// Errors: as [`Integral::plan`] and [`crate::Plan::at`]. Refused often for `m > 1`, where the
-    /// descent from the saddles runs into the Brewster point; [`Error::Unsupported`] on a profile that bends much within
-    /// the transition: use [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i
+    /// descent from the saddles runs into the Brewster point, and on curved profiles late after cut-off: use [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i
     /// m/((n - 1/2) pi)` at cut-off); the three are treated together.
     pub fn evaluate(&self) -> Result<Estimate, Error> {
         let k = self.wavenumber;
-        let curve = &self.integral.amplitude_ref().curve;
-        if curve.as_ref().is_some_and(|curve| !curve.is_plain()) {
-            return Err(Error::Unsupported {
-                what:
-                    "expansions at the saddles on a profile that bends so much within the mode's \
-                       transition"
-                        .into(),
-                remedy: "use `quadrature`, or a straighter profile or smaller eps",
-            });
-        }
         if self.logarithm.is_none() {
             return Ok(self.finish(self.integral.plan_for(k..=k)?.at(k)?));
         }
