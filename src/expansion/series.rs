@@ -437,9 +437,7 @@ impl Series {
                 best = (index, kept, figure, split_off);
             }
         }
-        let (index, kept, mut figure, mut sum) = best;
-        // What is split off has the factor exp(i k A), too.
-        figure += 2.0 * k * self.rings[self.reference].form.residual() * sum.norm();
+        let (index, kept, figure, mut sum) = best;
         let ring = &self.rings[index];
         let mut power = 1.0;
         for n in 0..kept {
