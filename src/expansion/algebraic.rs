@@ -340,7 +340,7 @@ impl AlgebraicSeries {
         let Some(moments) = self.moments(paths, k) else { return Contribution::UNKNOWN };
         let mut best = (0, 0, f64::INFINITY);
         for (index, ring) in self.rings.iter().enumerate() {
-            let (kept, figure) = parts(ring, &moments, k, orders).least();
+            let (kept, figure) = parts(ring, &moments, k, orders).least(best.2);
             // Paths that nearly cancel.
             let lost: f64 =
                 moments.iter().zip(ring.orders.coefficients(0)).map(|(m, p)| m.1 * p.norm()).sum();

@@ -151,7 +151,11 @@ impl NearEnd {
                 parts.noise[n] += power * boundary.noise[n];
                 power /= k;
             }
-            let (kept, mut figure) = parts.least();
+            let limit = best.as_ref().map_or(f64::INFINITY, |b| b.2);
+            let (kept, mut figure) = parts.least(limit);
+            if best.is_some() && figure >= limit {
+                continue;
+            }
             for (p, error) in ring.orders.coefficients(0).iter().zip(&moments.errors) {
                 figure += p.norm() * error;
             }

@@ -79,8 +79,9 @@ impl Parts {
         }
     }
 
-    /// The number of orders with the least figure, and that figure.
-    pub fn least(&self) -> (usize, f64) {
+    /// The number of orders with the least figure, and that figure; no less than `limit`, above which no
+    /// figure is of interest.
+    pub fn least(&self, limit: f64) -> (usize, f64) {
         let present = |n: usize| self.terms[n] >= 1000.0 * EPS * self.size * self.noise[n];
         let mut longest = 0;
         let mut run = 0;
@@ -93,17 +94,14 @@ impl Parts {
             }
         }
         let ahead = (1 + longest).max(2);
-        let mut logs = [f64::NEG_INFINITY; MAX_ORDERS];
-        for (log, a) in logs.iter_mut().zip(&self.terms) {
-            *log = a.ln();
-        }
+        let mut logs = None;
         // Of the canonical integrals, each as accurate as it is.
         let canonical = EPS * if self.degree > 3 { 4 * (self.degree - 2) } else { 4 } as f64;
         let division = self.terms[0]
             * (canonical + 0.5 * EPS * self.spread + 10.0 * self.filling.powi(POINTS as i32));
         // The mean of the residual is an error of A, which is known better.
         let level = self.size * self.mean;
-        let mut best = (0, f64::INFINITY);
+        let mut best = (0, limit);
         let mut passed = 0.0;
         let mut unresolved = 0.0;
         let mut grown = 1.0;
@@ -116,10 +114,25 @@ impl Parts {
             let powers = KEPT.saturating_sub(self.degree * n);
             grown *= (highest - n as f64 + 1.0).max(1.0) / n as f64;
             unresolved += self.missing * size * (grown * self.filling.powi(powers as i32)).min(1.0);
+            // What grows with the orders comes first: often nothing else has to be asked for.
+            let rest = RESIDUAL * (self.residual * (passed - level) + 2.0 * EPS * passed)
+                + 3.0 * (self.folded * passed + unresolved)
+                + division;
+            if rest >= best.1 || rest.is_nan() {
+                break;
+            }
             let mut next = 0.0f64;
             for a in self.terms.iter().skip(n).take(ahead) {
                 next = next.max(*a);
             }
+            if longest >= 3 {
+                next = next.max(self.size * self.noise[n]);
+            }
+            let weight = 2.5 + (n as f64).sqrt();
+            if weight * next + rest >= best.1 {
+                continue;
+            }
+            let logs = logs.get_or_insert_with(|| self.terms.map(f64::ln));
             let mut log = f64::NEG_INFINITY;
             for (i, j) in [(1usize, 1usize), (1, 2), (2, 1), (2, 2), (1, 3), (3, 1)] {
                 if i <= n && n + j < MAX_ORDERS {
@@ -129,14 +142,7 @@ impl Parts {
                     }
                 }
             }
-            next = next.max(0.3 * log.exp());
-            if longest >= 3 {
-                next = next.max(self.size * self.noise[n]);
-            }
-            let figure = (2.5 + (n as f64).sqrt()) * next
-                + RESIDUAL * (self.residual * (passed - level) + 2.0 * EPS * passed)
-                + 3.0 * (self.folded * passed + unresolved)
-                + division;
+            let figure = weight * next.max(0.3 * log.exp()) + rest;
             if figure < best.1 {
                 best = (n, figure);
             }

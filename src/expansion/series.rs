@@ -423,7 +423,7 @@ impl Series {
             if ring.beyond * k > UNSEEN {
                 continue;
             }
-            let (kept, mut figure) = Parts::of_ring(ring, &sizes, k, orders).least();
+            let (kept, mut figure) = Parts::of_ring(ring, &sizes, k, orders).least(best.2);
             if figure >= best.2 {
                 continue;
             }
