@@ -142,8 +142,10 @@ impl Tally {
     }
 }
 
-/// Median and 95 % of figure over true error. Four classes miss them, by less than a half: on 20,000 cases
-/// clusters reached 16 and 120, ends near saddles 24 and 126, poles 24 and 120, ends with poles 19 and 159.
+/// Median and 95 % of figure over true error: the aim. Five classes miss it by up to two fifths and have bars
+/// of their own, for what samples of this size scatter: the largest on four times 10,000 cases were
+/// clusters 19 and 106, ends near saddles 25 and 132, poles 23 and 132, unnamed poles 14 and 122, ends
+/// with poles 19 and 141.
 const BARS: (f64, f64) = (20.0, 100.0);
 
 fn run(family: &Family, seeds: std::ops::Range<u64>) -> Tally {
@@ -164,12 +166,12 @@ fn one_or_two_saddles() {
 
 #[test]
 fn many_saddles() {
-    run(&random::MORE_SADDLES, 0..400).check("degree 4 to 6", 0.95, (20.0, 110.0));
+    run(&random::MORE_SADDLES, 0..400).check("degree 4 to 6", 0.99, BARS);
 }
 
 #[test]
 fn merging_saddles() {
-    run(&random::CLUSTERS, 0..400).check("clusters", 0.98, (22.0, 130.0));
+    run(&random::CLUSTERS, 0..400).check("clusters", 0.98, (20.0, 115.0));
 }
 
 #[test]
@@ -179,27 +181,27 @@ fn entire_phases() {
 
 #[test]
 fn finite_ends() {
-    run(&random::ENDS, 0..250).check("finite ends", 0.95, BARS);
+    run(&random::ENDS, 0..250).check("finite ends", 0.99, BARS);
 }
 
 #[test]
 fn finite_ends_on_and_near_saddles() {
-    run(&random::ENDS_NEAR, 0..250).check("ends near saddles", 0.95, (30.0, 140.0));
+    run(&random::ENDS_NEAR, 0..250).check("ends near saddles", 0.99, (27.0, 140.0));
 }
 
 #[test]
 fn named_poles() {
-    run(&random::POLES, 0..250).check("poles", 0.99, (30.0, 140.0));
+    run(&random::POLES, 0..250).check("poles", 0.99, (26.0, 140.0));
 }
 
 #[test]
 fn unnamed_poles() {
-    run(&random::UNNAMED, 0..150).check("unnamed poles", 0.95, (20.0, 150.0));
+    run(&random::UNNAMED, 0..150).check("unnamed poles", 0.98, (20.0, 150.0));
 }
 
 #[test]
 fn ends_and_poles() {
-    run(&random::MIXED, 0..150).check("ends and poles", 0.9, (27.0, 200.0));
+    run(&random::MIXED, 0..150).check("ends and poles", 0.97, (22.0, 165.0));
 }
 
 /// Ten thousand more, by seeds from 10,000 on; `FIRST=20000` in the environment chooses others.
