@@ -15,10 +15,10 @@
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353.
 
+use super::contribution::Contribution;
 use super::end_moments::{EndMoments, Paths as Ways};
 use super::figure::Parts;
 use super::level::Level;
-use super::series::Contribution;
 use crate::Scaled;
 use crate::integral::{Amplitude, Phase};
 use crate::ring::{BasedForm, BasedOrders, MAX_DEGREE, MAX_ORDERS, ZERO};

@@ -12,12 +12,13 @@
 //!
 //! Source: N. Bleistein, Comm. Pure Appl. Math. 19 (1966) 353 (end point near a saddle).
 
+use super::contribution::Contribution;
 use super::end_pole::{ascent_in_ring, with_pole};
 use super::figure::Parts;
 use super::incomplete::{Incomplete, incomplete};
 use super::level::Level;
 use super::pole::Pole;
-use super::series::{Contribution, Series};
+use super::series::Series;
 use super::unfolding::Unfolding;
 use crate::Scaled;
 use crate::integral::Phase;

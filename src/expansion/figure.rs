@@ -13,7 +13,7 @@
 //! random clusters (see the tests of coverage).
 
 use super::level::MEAN;
-use super::series::Ring;
+use super::rings::Ring;
 use crate::ring::{KEPT, MAX_ORDERS, POINTS};
 
 /// What the figure is made of, for one ring and one wavenumber.

@@ -8,7 +8,8 @@
 
 use super::algebraic::{AlgebraicSeries, Powers, Ring as AlgebraicRing};
 use super::pole::{MappedPole, Pole};
-use super::series::{FILLING, FIRST, Ring, Series, WORST_TAIL};
+use super::rings::{FILLING, FIRST, Ring, WORST_TAIL};
+use super::series::Series;
 use crate::integral::Amplitude;
 use crate::ring::{Based, BasedForm, BasedOrders, NormalForm, Orders, Start, ZERO};
 use num_complex::Complex64;

@@ -16,10 +16,10 @@
 //! Source: B. L. van der Waerden, Appl. Sci. Res. B 2 (1951) 33 for one saddle and a pole; the form
 //! for clusters was worked out for this crate.
 
+use super::contribution::Contribution;
 use super::figure::RESIDUAL;
 use super::incomplete::incomplete;
 use super::level::Level;
-use super::series::Contribution;
 use super::unfolding::Unfolding;
 use crate::integral::{Amplitude, Phase};
 use crate::ring::{
