@@ -98,6 +98,22 @@ impl Trial {
         Some(Trial { form, start, filling, split, poles, beyond: 0.0 })
     }
 
+    /// The same with the poles at places that are better known: the part taken out on the ring must be the one
+    /// that is added again.
+    fn with_places(self, given: &Given, best: &[Option<MappedPole>]) -> Option<Trial> {
+        let pairs = || self.poles.iter().zip(best);
+        let moved = pairs().any(|(own, best)| match (own, best) {
+            (Some(own), Some(best)) => (own.u - best.u).norm() > best.blur,
+            _ => false,
+        });
+        if !moved {
+            return Some(self);
+        }
+        let poles = pairs().map(|(own, best)| own.as_ref().and(best.clone())).collect();
+        let placed = Trial::with_poles(self.form, given, self.split, poles)?;
+        Some(Trial { beyond: self.beyond, ..placed })
+    }
+
     fn shrunk(&self, factor: f64) -> Trial {
         Trial {
             form: self.form.shrunk(factor),
@@ -225,19 +241,28 @@ pub(super) fn rings(
             && ring.form.radius() >= SMALLEST * largest
             && ring.poles.iter().flatten().all(|pole| pole.is_clear_of(&ring.form))
     };
-    let mut poles = vec![None; given.poles.len()];
+    let trials: Vec<Trial> = trials.into_iter().filter(kept).collect();
+    // The place of a pole is the same on every ring, known to different accuracy.
+    let mut poles: Vec<Option<MappedPole>> = vec![None; given.poles.len()];
+    for trial in &trials {
+        for (pole, mapped) in poles.iter_mut().zip(&trial.poles) {
+            if let Some(mapped) = mapped
+                && pole.as_ref().is_none_or(|best| mapped.blur < best.blur)
+            {
+                *pole = Some(mapped.clone());
+            }
+        }
+    }
     let list = trials
         .into_iter()
-        .filter(kept)
-        .map(|Trial { form, start, filling, split, poles: mapped, beyond }| {
-            // The place of a pole is the same on every ring, known to different accuracy.
-            for (pole, mapped) in poles.iter_mut().zip(mapped) {
-                let best: Option<&MappedPole> = pole.as_ref();
-                if best.is_none_or(|best| mapped.as_ref().is_some_and(|m| m.blur < best.blur)) {
-                    *pole = mapped;
-                }
-            }
-            Ring { orders: Orders::new(&form, &start), form, start, filling, split, beyond }
+        .filter_map(|trial| trial.with_places(given, &poles))
+        .map(|Trial { form, start, filling, split, beyond, .. }| Ring {
+            orders: Orders::new(&form, &start),
+            form,
+            start,
+            filling,
+            split,
+            beyond,
         })
         .collect();
     Some(Rings { inner, list, poles })

@@ -2,11 +2,13 @@
 //!
 //! Method. `t = Re h` is the variable, `dz/dt = 1/h'`. Second-order predictor, then one Newton
 //! step onto the absolute target `h_start + t`, so that errors never add up. A step is accepted
-//! when that correction is small against the step and against the radius of curvature.
+//! when that correction is small against the step and against the radius of curvature. One that came
+//! down next to a saddle so far off its height that Newton can't put it there is taken back.
 //!
 //! Source: steepest descent is P. Debye's (1909); the step rule was found by trial.
 
 use crate::integral::Phase;
+use crate::ring::ZERO;
 use num_complex::Complex64;
 
 /// `h = i e^(i delta) f`: the exponent, turned a little to leave Stokes lines.
@@ -55,6 +57,8 @@ pub(crate) enum Ended {
 const CUTS: usize = 4;
 /// The next step may be longer by this.
 const GROWTH: f64 = 2.5;
+/// A step that is taken back is tried again with this part of its length.
+const BACK: f64 = 0.3;
 /// Steps of one trace at most.
 const STEPS: usize = 400;
 
@@ -90,7 +94,8 @@ pub(crate) fn trace(
     let mut shrink = 1.0;
     // Where h'' happens to vanish the natural step is no guide: steps grow by a factor at most.
     let mut reach = 0.1 * longest;
-    for _ in 0..STEPS {
+    let mut before: Option<(Complex64, f64)> = None;
+    'steps: for _ in 0..STEPS {
         if t >= span {
             return Ended::Reached;
         }
@@ -112,6 +117,7 @@ pub(crate) fn trace(
             && correction.norm() < 0.3 * w.norm()
             && near_one(ahead / slope, 1.0);
         if good {
+            before = Some((z, t));
             z += step + correction;
             t += dt;
             reach = (GROWTH * w.norm()).min(longest);
@@ -121,10 +127,12 @@ pub(crate) fn trace(
             shrink = 1.0;
         } else {
             // Where the slope is smooth but the value jumps, the path leaves the sheet that the closure
-            // is on; the contour is on it, and can't be met again.
-            let jump = value - (origin + direction * t) - (slope + ahead) * step * 0.5;
-            if near_one(ahead / slope, 0.2) && jump.norm() > 0.5 * (size * w.norm()) && shrink < 0.1
-            {
+            // is on; the contour is on it, and can't be met again. The jump is measured from the value at
+            // the point itself, which may be off its height.
+            let cut = shrink < 0.1 && near_one(ahead / slope, 0.2);
+            let rise = cut.then(|| value - h.of(h.phase.value(z)));
+            let jump = rise.map_or(ZERO, |rise| rise - (slope + ahead) * step * 0.5);
+            if jump.norm() > 0.5 * (size * w.norm()) {
                 if direction > 0.0 || cuts == CUTS || !jump.re.is_finite() {
                     return Ended::Cut;
                 }
@@ -142,6 +150,14 @@ pub(crate) fn trace(
                 if (polish * dd / d).norm() < 0.3 {
                     z += polish;
                     slope += dd * polish;
+                } else if let Some((last, height)) = before.take() {
+                    // Next to a saddle the last step came down too far off: back, and less at once.
+                    reach = BACK * (z - last).norm();
+                    (z, t) = (last, height);
+                    path.pop();
+                    let [_, d, dd] = h.jet(z);
+                    (slope, bend) = (d, dd);
+                    continue 'steps;
                 }
             }
             shrink *= 0.4;

@@ -5,8 +5,8 @@
 //! iteration or Newton) straight arms to the lowest points of a circle on which `k f` changes by
 //! 1, from there down by the midpoint rule into a valley. The arms join the valleys; the lowest way
 //! through them from the contour's first valley to its last is integrated, by 20-point
-//! Gauss-Legendre on chords. Which way round the amplitude's poles the contour goes is made good by
-//! residues and winding numbers. A finite end has one arm.
+//! Gauss-Legendre on chords short enough for it. Which way round the amplitude's poles the
+//! contour goes is made good by residues and winding numbers. A finite end has one arm.
 
 use super::random::{Law, Recipe};
 use merging_saddles::Complex64;
@@ -102,7 +102,7 @@ impl Dd {
         let r = rest * Dd::from(1.0 / 64.0);
         let mut sum = Dd::from(1.0);
         for n in (1..14).rev() {
-            sum = Dd::from(1.0) + sum * r * Dd::from(f64::from(n)).inverse();
+            sum = Dd::from(1.0) + sum * r * inverses()[n];
         }
         for _ in 0..6 {
             sum = sum * sum;
@@ -119,9 +119,9 @@ impl Dd {
         let square = -(r * r);
         let (mut cos, mut sin) = (Dd::from(1.0), Dd::from(1.0));
         for n in (1..15).rev() {
-            let m = f64::from(2 * n);
-            cos = Dd::from(1.0) + cos * square * Dd::from(m * (m - 1.0)).inverse();
-            sin = Dd::from(1.0) + sin * square * Dd::from(m * (m + 1.0)).inverse();
+            let m = 2 * n;
+            cos = Dd::from(1.0) + cos * square * inverses()[m * (m - 1)];
+            sin = Dd::from(1.0) + sin * square * inverses()[m * (m + 1)];
         }
         sin = sin * r;
         match (n as i64).rem_euclid(4) {
@@ -131,6 +131,12 @@ impl Dd {
             _ => (sin, -cos),
         }
     }
+}
+
+/// `1/n`.
+fn inverses() -> &'static [Dd; 813] {
+    static ONCE: OnceLock<[Dd; 813]> = OnceLock::new();
+    ONCE.get_or_init(|| std::array::from_fn(|n| Dd::from(n as f64).inverse()))
 }
 
 const LN_2: [f64; 3] = [std::f64::consts::LN_2, 2.3190468138462996e-17, 5.707708438416212e-34];
@@ -285,7 +291,8 @@ pub fn exact(recipe: &Recipe, k: f64) -> Option<Exact> {
     let mut size = 0.0;
     for (way, sign) in &ways {
         for chord in way.windows(2) {
-            if chord.iter().all(|&z| scene.jet(z)[0].re < reference - 80.0) {
+            let low = |z: C| scene.jet(z)[0].re < reference - 80.0;
+            if on_chord(chord[0], chord[1]).all(low) {
                 continue;
             }
             let part = scene.chord(chord[0], chord[1], reference, 0) * Cd::from(*sign);
@@ -467,8 +474,12 @@ impl Scene<'_> {
     fn chord(&self, a: C, b: C, reference: f64, level: usize) -> Cd {
         let (middle, half) = ((a + b) * 0.5, (b - a) * 0.5);
         let near = |part: &super::random::Part| (part.pole - middle).norm() < 2.0 * half.norm();
-        let fast = self.jet(middle)[1].norm() * half.norm() > 5.0;
-        if level < 60 && (fast || self.recipe.parts.iter().any(near)) {
+        let fast = on_chord(a, b).any(|z| self.jet(z)[1].norm() * half.norm() > 5.0);
+        if fast || self.recipe.parts.iter().any(near) {
+            // No value is better than one that may be off.
+            if level == 60 {
+                return Cd::from(f64::NAN);
+            }
             return self.chord(a, middle, reference, level + 1)
                 + self.chord(middle, b, reference, level + 1);
         }
@@ -487,6 +498,12 @@ impl Scene<'_> {
         }
         sum * exact_half
     }
+}
+
+/// Points of a chord at which it is looked at. A saddle in its middle must not make it look calm: nine values
+/// of `f'`, a polynomial of degree five at most, bound it everywhere on the chord.
+fn on_chord(a: C, b: C) -> impl Iterator<Item = C> {
+    (0..=8).map(move |n| a + (b - a) * (f64::from(n) / 8.0))
 }
 
 /// Turns of a closed line about a point.
