@@ -11,7 +11,7 @@ use merging_saddles::Complex64 as C;
 use merging_saddles::guide::{Order, Passage, Profile, QuantumWell, SlopingGuide};
 use std::f64::consts::PI;
 use std::rc::Rc;
-use tapered::Taper;
+use tapered::{Taper, slow_start};
 
 /// Times of the layer at which the fields are compared; the phase is taken at the first.
 const TIMES: [f64; 2] = [0.0, 2.0];
@@ -59,6 +59,61 @@ fn curved_profiles() {
             assert!(*outside < [8e-4, 1.8e-3][i] && *inside < [6e-4, 4e-3][i]);
             assert!(outside < &(without / 11.0) && inside < &(before / 10.0));
             assert!(inside < &(local[i][0] / 1.6));
+        }
+    }
+}
+
+#[test]
+fn curved_with_contrast_and_losses() {
+    // Mode 2, m = 0.55, the profile h_c - r + c r^2; losses outside turn eps, those inside turn the well.
+    // Slope -1.5 at r = -1 and flat before r = -3: an abrupt start leaves 2 % of mode 1.
+    let (eps, m, c, from) = (0.02, 0.55, 0.25, -3.0);
+    for (mode, turned, well) in [
+        (2, C::from(1.0), C::from(1.0)),
+        (1, C::new(1.0, 0.004), C::new(1.0, 0.01)),
+        (2, C::new(1.0, 0.004), C::new(1.0, 0.01)),
+    ] {
+        let cut = (f64::from(mode) - 0.5) * PI;
+        let t = Taper {
+            mode,
+            even: false,
+            m,
+            eps: turned * eps,
+            well,
+            from,
+            profile: Rc::new(move |r| {
+                if r >= -1.0 {
+                    return (cut - r + c * r * r, 2.0 * c * r - 1.0);
+                }
+                let (lost, slope) = slow_start(0.0, 2.0, r);
+                (cut + 1.0 + c + (lost - 1.0) * (1.0 + 2.0 * c), slope * (1.0 + 2.0 * c))
+            }),
+        };
+        // Lengths in 1/q; cut off at the complex range r_0, where the slope is s; then T = u + b u^2 + 2 b^2 u^3 + ..
+        let q = well.sqrt();
+        let (b_0, lost) = (C::from(c), cut - q.inv() * cut);
+        let r_0 = (1.0 - (1.0 - b_0 * lost * 4.0).sqrt()) / (2.0 * c);
+        let s = 1.0 - b_0 * r_0 * 2.0;
+        let b = b_0 / (q * s * s);
+        let series = [b, b.powi(2) * 2.0, b.powi(3) * 5.0, b.powi(4) * 14.0];
+        let guide = SlopingGuide::new(mode, m, turned * eps * s / q).unwrap();
+        let guide = guide.curved(&series).unwrap();
+        let [leading, next] = [Order::Leading, Order::Next].map(|order| {
+            let guide = guide.clone().order(order);
+            errors(&t, |_, h, x, within| {
+                let (h, x) = (q * h, q * x);
+                let field = if within {
+                    guide.inside(h, x)
+                } else {
+                    guide.outside(h, if x.re < h.re { C::from(0.0) } else { x - h })
+                };
+                field.unwrap().quadrature(1e-8).unwrap().value
+            })
+        });
+        println!("mode {mode} well {well} leading {leading:.5?}\n next {next:.5?}");
+        for ([inside, outside], [before, without]) in next.iter().zip(&leading) {
+            assert!(*outside < 4e-3 && *inside < 1.8e-3);
+            assert!(outside < &(without / 9.0) && inside < &(before / 9.0));
         }
     }
 }

@@ -2,7 +2,9 @@
 //!
 //! On a straight profile it runs from valley to valley. For `m > 1` it ends before the Brewster parameter,
 //! where the expansion in `eps` breaks down; on a curved profile both ends are finite, since the fit of the
-//! profile says nothing about far valleys. What is cut off is measured and refused above a tolerance.
+//! profile says nothing about far valleys: they lie where the bend of the profile still counts for less in the
+//! exponent than the rest. What is cut off is measured and refused above a tolerance, and so is the jump of the
+//! amplitude where the fitted slope turns.
 
 use super::dispersion::ModePhase;
 use super::uniform::SlopingGuide;
@@ -33,7 +35,7 @@ impl SlopingGuide {
         let inside = ModePhase { d: Complex64::new(0.0, 0.0), ..phase.clone() };
         let brewster = if m > 1.0 { m.recip().atanh() } else { f64::INFINITY };
         let reach = (0.95 * brewster).min(2.2);
-        let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.0, 0.3, 0.6] };
+        let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.3, 0.6, 0.0] };
         let (right, right_size) = lowest(&inside, k, Complex64::new(0.0, 0.0), angles, |_| reach);
         let mut neglected = right_size;
         let contour = if self.curve.is_none() {
@@ -45,6 +47,16 @@ impl SlopingGuide {
             let angles = [1.85, 2.1, 2.35, 2.6];
             let (left, left_size) = lowest(&inside, k, I * omega, &angles, length);
             neglected += left_size;
+            let jump = self.jump(&inside, k, [left, near, right]);
+            if jump > self.tolerance {
+                return Err(Error::Undecided {
+                    reason: format!(
+                        "the fit of the profile turns where the integrand has still the size {jump:.1e}"
+                    ),
+                    remedy: "take a smaller eps or a straighter profile, smoothed over its small bends",
+                });
+            }
+            neglected += jump;
             Contour::between([left, near, right])
         };
         if neglected.is_nan() || neglected > self.tolerance {
@@ -70,6 +82,27 @@ impl SlopingGuide {
         Ok((contour, neglected))
     }
 
+    /// Largest size of the exponential where a path crosses the cut of `T'(u)^(1/2)`: the fit of the profile turns
+    /// near there, and the amplitude jumps.
+    fn jump(&self, phase: &ModePhase, k: f64, points: [Complex64; 3]) -> f64 {
+        const STEPS: u32 = 40;
+        let Some(curve) = &self.curve else { return 0.0 };
+        let root = |w: Complex64| curve.slope(self.dispersion.cutoff - self.dispersion.width(w)).0;
+        let (mut last, mut most) = (root(points[0]), 0.0f64);
+        for ends in points.windows(2) {
+            for j in 1..=STEPS {
+                let w = ends[0] + (ends[1] - ends[0]) * (f64::from(j) / f64::from(STEPS));
+                let next = root(w);
+                // A smooth root turns by little in a step, one that jumps by half a turn.
+                if (next * last.conj()).re < 0.0 {
+                    most = most.max((I * k * phase.value(w)).re.exp());
+                }
+                last = next;
+            }
+        }
+        most
+    }
+
     /// `omega` of the bound mode `p = i sin(omega)` at the width `h` (without losses), 0 beyond cut-off:
     /// by bisection, as `h_n(i omega)` rises from the cut-off to infinity.
     pub(super) fn bound_angle(&self, h: f64) -> f64 {
@@ -92,16 +125,19 @@ fn lowest(
     length: impl Fn(f64) -> f64,
 ) -> (Complex64, f64) {
     const STEPS: u32 = 30;
+    let straight = ModePhase { curve: None, ..phase.clone() };
     let mut best = (from, f64::INFINITY);
     for &angle in angles {
         let step = Complex64::from_polar(length(angle) / f64::from(STEPS), angle);
         let mut least = f64::INFINITY;
         for j in 1..=STEPS {
             let w = from + step * f64::from(j);
-            let size = (I * k * phase.value(w)).re.exp();
-            // Behind a hill lies no valley of the field: a polynomial fit has some of its own.
+            let [height, plain] = [phase, &straight].map(|f| (I * k * f.value(w)).re);
+            let size = height.exp();
+            // Behind a hill lies no valley of the field, nor where the bend counts for nearly as much as the
+            // straight profile: a polynomial has valleys of its own.
             least = least.min(size);
-            if size > 10.0 * least {
+            if size > 10.0 * least || (height - plain).abs() > 1.0 + 0.7 * plain.abs() {
                 break;
             }
             if size < best.1 {
