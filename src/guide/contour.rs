@@ -13,6 +13,8 @@ use crate::{Complex64, Contour, Error};
 use std::f64::consts::{FRAC_PI_2, PI};
 
 const I: Complex64 = Complex64::new(0.0, 1.0);
+/// No less than this has to be looked for.
+const NOTHING: f64 = 1e-17;
 
 impl SlopingGuide {
     /// From the valley on the left to the right, with the size of the exponential where it ends (0
@@ -36,18 +38,30 @@ impl SlopingGuide {
         let brewster = if m > 1.0 { m.recip().atanh() } else { f64::INFINITY };
         let reach = (0.95 * brewster).min(2.2);
         let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.3, 0.6, 0.0] };
-        let (right, right_size) = lowest(&inside, k, Complex64::new(0.0, 0.0), angles, |_| reach);
-        let mut neglected = right_size;
+        let mut neglected;
         let contour = if self.curve.is_none() {
+            let (right, size) = lowest(&inside, k, Complex64::new(0.0, 0.0), angles, |_| reach);
+            neglected = size;
             Contour::ending_at([left, middle, near, right])
         } else {
             // From the bound mode's saddle, below all that is singular on the line Im w = pi/2.
             let omega = self.bound_angle(phase.h.re);
             let length = |angle: f64| ((1.5 - omega) / angle.sin()).min(2.2);
-            let angles = [1.85, 2.1, 2.35, 2.6];
-            let (left, left_size) = lowest(&inside, k, I * omega, &angles, length);
-            neglected += left_size;
-            let jump = self.jump(&inside, k, [left, near, right]);
+            let (left, left_size) = lowest(&inside, k, I * omega, &[1.85, 2.1, 2.35, 2.6], length);
+            // The right end by which the least is lost, the jump of the slope's root included.
+            let (mut right, mut jump) = (near, f64::INFINITY);
+            neglected = f64::INFINITY;
+            for angle in angles {
+                let (end, size) =
+                    lowest(&inside, k, Complex64::new(0.0, 0.0), &[*angle], |_| reach);
+                let here = self.jump(&inside, k, [left, near, end]);
+                if size + here < neglected {
+                    (right, jump, neglected) = (end, here, size + here);
+                }
+                if neglected < NOTHING {
+                    break;
+                }
+            }
             if jump > self.tolerance {
                 return Err(Error::Undecided {
                     reason: format!(
@@ -56,7 +70,7 @@ impl SlopingGuide {
                     remedy: "take a smaller eps or a straighter profile, smoothed over its small bends",
                 });
             }
-            neglected += jump;
+            neglected += left_size;
             Contour::between([left, near, right])
         };
         if neglected.is_nan() || neglected > self.tolerance {
@@ -143,7 +157,7 @@ fn lowest(
             if size < best.1 {
                 best = (w, size);
             }
-            if size < 1e-17 {
+            if size < NOTHING {
                 return best;
             }
         }
