@@ -38,8 +38,8 @@ where
     /// Plans the integral and its derivatives.
     ///
     /// Cost: the plan of the integral ([`Integral::plan`](crate::Integral::plan)) and, for all parameters
-    /// together, 128 values of each closure on every ring: a fifth to two fifths of that plan for one or two
-    /// parameters of the phase, up to two thirds where the amplitude depends on both.
+    /// together, 128 values of each closure on every ring: a quarter of that plan to the whole of it for one or two
+    /// parameters of the phase, up to twice where the amplitude depends on both.
     ///
     /// # Errors
     /// As [`Integral::plan`](crate::Integral::plan); a pole of order three or more in `dg/dx_j`; an end that

@@ -15,8 +15,8 @@
 use super::normal_form::Leading;
 use super::orders::unit_noise;
 use super::{
-    Coefficients, I, KEPT, MAX_ORDERS, POINTS, Values, ZERO, divide, evaluate, tail, taylor,
-    to_coefficients, to_values,
+    Coefficients, I, KEPT, MAX_ORDERS, POINTS, Values, ZERO, divide, evaluate, map_tail, rescale,
+    tail, taylor, to_coefficients, to_values,
 };
 use crate::integral::{Amplitude, Phase};
 use num_complex::Complex64;
@@ -81,28 +81,16 @@ impl BasedForm {
     pub fn shrunk(&self, factor: f64) -> BasedForm {
         let mut form = self.rescaled(factor);
         form.residual *= factor;
-        form.measure_tail();
+        form.tail = map_tail(&form.map);
         form
     }
 
     fn rescaled(&self, factor: f64) -> BasedForm {
         let mut form = self.clone();
         form.radius *= factor;
-        let mut power = 1.0;
-        for n in 0..KEPT {
-            form.map[n] *= power;
-            if n <= form.degree {
-                form.x[n] *= power;
-            }
-            power *= factor;
-        }
+        rescale(&mut form.map, factor);
+        rescale(&mut form.x[..=self.degree], factor);
         form
-    }
-
-    fn measure_tail(&mut self) {
-        let mut full = [ZERO; POINTS];
-        full[..KEPT].copy_from_slice(&self.map);
-        self.tail = tail(&full, 1, 0.0);
     }
 
     fn settle(&mut self, phase: &dyn Phase, limit: usize) -> bool {
@@ -148,7 +136,7 @@ impl BasedForm {
                 return false;
             }
             if step < SETTLED * scale || (step < 1e-7 * scale && step > 0.3 * last_step) {
-                self.measure_tail();
+                self.tail = map_tail(&self.map);
                 return true;
             }
             last_step = step;

@@ -143,6 +143,22 @@ pub(crate) fn tail(full: &Values, from: usize, least: f64) -> f64 {
     if all > 0.0 && all.is_finite() { (rest / all).sqrt() } else { f64::INFINITY }
 }
 
+/// [`tail`] of a map, which has no negative powers.
+fn map_tail(map: &Coefficients) -> f64 {
+    let mut full = [ZERO; POINTS];
+    full[..KEPT].copy_from_slice(map);
+    tail(&full, 1, 0.0)
+}
+
+/// Coefficients of powers on a ring `factor` times as large.
+fn rescale(coefficients: &mut [Complex64], factor: f64) {
+    let mut power = 1.0;
+    for c in coefficients {
+        *c *= power;
+        power *= factor;
+    }
+}
+
 /// What [`tail`] will be on a ring larger by `factor`, by the decay from the second quarter of the
 /// coefficients to the third; 0 where rounding hides it.
 pub(crate) fn foreseen_tail(coefficients: &Coefficients, from: usize, factor: f64) -> f64 {

@@ -15,7 +15,7 @@
 
 use super::{
     COARSE, Coefficients, I, KEPT, MAX_SADDLES, POINTS, ZERO, divide, evaluate, foreseen_tail,
-    tail, to_coefficients, unit_points, values_of,
+    map_tail, rescale, to_coefficients, unit_points, values_of,
 };
 use crate::integral::Phase;
 use num_complex::Complex64;
@@ -192,28 +192,16 @@ impl NormalForm {
     /// The same form on a smaller ring: nothing new has to be found.
     pub(crate) fn shrunk(&self, factor: f64) -> NormalForm {
         let mut form = self.rescaled(factor.min(1.0));
-        form.measure_tail();
+        form.tail = map_tail(&form.map);
         form
     }
 
     fn rescaled(&self, factor: f64) -> NormalForm {
         let mut form = self.clone();
         form.radius *= factor;
-        let mut power = 1.0;
-        for n in 0..KEPT {
-            form.map[n] *= power;
-            if n < form.saddles() {
-                form.unfolding[n] *= power;
-            }
-            power *= factor;
-        }
+        rescale(&mut form.map, factor);
+        rescale(&mut form.unfolding[..self.saddles()], factor);
         form
-    }
-
-    fn measure_tail(&mut self) {
-        let mut full = [ZERO; POINTS];
-        full[..KEPT].copy_from_slice(&self.map);
-        self.tail = tail(&full, 1, 0.0);
     }
 
     /// Newton's first steps on a quarter of the points, as far as they lead; nothing changes where they
@@ -272,7 +260,7 @@ impl NormalForm {
     }
 
     fn finish(&mut self) -> bool {
-        self.measure_tail();
+        self.tail = map_tail(&self.map);
         self.unfolding[0].is_finite()
     }
 
