@@ -103,8 +103,8 @@ fn the_two_formulas_agree_at_cut_off() {
 
 #[test]
 fn bottom_loss_attenuates_the_mode_at_its_textbook_rate() {
-    // d ln|p|/ds = -Im of the local modal wavenumber k_b + (q gamma)^2/(2 k_b) (one-way
-    // approximation of the textbook modal relation), kappa cot(kappa q h) = -m gamma.
+    // d ln|p|/ds = -Im of the local modal wavenumber (k_b^2 + (q gamma)^2)^(1/2), kappa cot(kappa q h) = -m gamma
+    // (textbook modal relation).
     let sea = TwoLayer { bottom_attenuation_db_per_wavelength: 0.6, ..SEA };
     let (gradient, kw) = (2e-4, TAU * 100.0 / 1500.0);
     let mode = cut_off(sea, 1, gradient);
@@ -121,7 +121,7 @@ fn bottom_loss_attenuates_the_mode_at_its_textbook_rate() {
             let slope = (f(kappa + 1e-6) - f(kappa - 1e-6)) / 2e-6;
             kappa -= f(kappa) / slope * 0.5;
         }
-        (k + (1.0 - kappa * kappa) * q * q / (2.0 * k)).im
+        (k * k + (1.0 - kappa * kappa) * q * q).sqrt().im
     };
     // From 1.7 to 1.4 cut-off depths, by Simpson's rule over the depth.
     let (deep, shallow) = (1.7 * mode.cutoff_depth_m(), 1.4 * mode.cutoff_depth_m());

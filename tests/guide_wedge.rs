@@ -60,7 +60,7 @@ fn reference(sea: TwoLayer, mode: u32, gradient: f64, length: f64) -> (Taper, Mo
         from: -1.0 - length,
         profile: Rc::new(move |r| slow_start(cut, length, r)),
     };
-    let run = guide.upslope(mode, gradient.atan(), (cut + 2.0) / q).unwrap();
+    let run = guide.upslope(mode, gradient.atan(), (cut + 2.0) / q).unwrap().paraxial().unwrap();
     (taper, run, q)
 }
 

@@ -326,6 +326,13 @@ impl ModeCutOff {
         ModeCutOff { passage: self.passage.order(order) }
     }
 
+    /// By the one-way (paraxial) equation instead of Helmholtz's: see [`Passage::paraxial`].
+    ///
+    /// Errors: as there.
+    pub fn paraxial(self) -> Result<ModeCutOff, Error> {
+        Ok(ModeCutOff { passage: self.passage.paraxial()? })
+    }
+
     /// The mode's passage through cut-off: beam, energy, levels; all lengths in m.
     pub fn passage(&self) -> &Passage {
         &self.passage

@@ -14,7 +14,7 @@ pub struct Adiabatic {
     pub kappa: Complex64,
     /// `gamma`: outside it decays like `exp(-gamma (x - h))`.
     pub gamma: Complex64,
-    /// Amplitude of the sine for unit energy, without the phase.
+    /// Amplitude of the sine for unit energy (in the wide-angle form unit flux of energy), without the phase.
     pub antinode: Complex64,
     /// Logarithm of the factor that the mode carries relative to cut-off: an imaginary phase, and
     /// with losses the decay up to cut-off.
@@ -76,10 +76,14 @@ impl SlopingGuide {
         }
         let (p, kappa) = (w.sinh(), w.cosh());
         let gamma = -I * p;
-        let antinode = (gamma * 2.0 / (m / self.dispersion.density(p) + gamma * h)).sqrt();
+        let wide = self.wide();
+        let shape = gamma * 2.0 / (m / self.dispersion.density(p) + gamma * h);
+        let antinode = (shape / wide.cosine(p)).sqrt();
         let mut action = self.dispersion.action(w, h);
         if let Some(curve) = &self.curve {
-            action += curve.phase(w) - p * p * (r - (cutoff - h));
+            action += curve.phase_once(wide.variable(p))
+                - p * p * (r - (cutoff - h))
+                - wide.excess(p) * r;
         }
         let exponent = I * action / self.eps;
         Ok(Adiabatic { kappa, gamma, antinode, exponent })

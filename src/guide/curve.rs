@@ -7,7 +7,8 @@
 //! J(w) = integral from 0 to w of 2 sinh w cosh w G(h_c - h_n(w)) dw
 //! ```
 //!
-//! is not; it is tabulated once per profile (`table.rs`).
+//! is not; it is tabulated once per profile (`table.rs`), when it is first wanted. In the wide-angle form (`wide.rs`)
+//! `P'` takes the place of `2 p` in the whole phase, and what that adds is in `J`, on straight profiles too.
 //!
 //! `G` is known as a polynomial that fits the profile round the cut-off. The slope in the next order and its inverse are
 //! polynomials of low degree of their own: `1/T'` would have poles where the fit turns, near the contour.
@@ -16,10 +17,12 @@
 
 use super::dispersion::Dispersion;
 use super::second::Second;
-use super::table::Table;
+use super::table::{Gate, Table, led};
+use super::wide::{Spot, WideAngle};
 use crate::Complex64;
-use std::f64::consts::PI;
+use std::f64::consts::{FRAC_PI_2, PI};
 use std::fmt;
+use std::sync::OnceLock;
 
 /// Terms of the slope.
 /// Width on each side of cut-off that counts, over `(m^2 eps)^(1/3)`.
@@ -33,10 +36,11 @@ const ONE: Complex64 = Complex64::new(1.0, 0.0);
 pub(super) struct Curve {
     dispersion: Dispersion,
     bend: Bend,
+    wide: WideAngle,
     slope: LocalSlope,
-    table: Table,
-    /// What the bend adds to the next order.
-    second: Second,
+    table: OnceLock<Table>,
+    /// What the bend adds to the next order, if there is one.
+    second: Option<Second>,
 }
 
 impl fmt::Debug for Curve {
@@ -48,7 +52,12 @@ impl fmt::Debug for Curve {
 
 impl Curve {
     /// `T(u) = u + c_2 u^2 + ..` from `c_2` on; `reach` is how much width to both sides of cut-off counts.
-    pub(super) fn new(dispersion: Dispersion, higher: &[Complex64], reach: f64) -> Curve {
+    pub(super) fn new(
+        dispersion: Dispersion,
+        higher: &[Complex64],
+        wide: WideAngle,
+        reach: f64,
+    ) -> Curve {
         let at = |u: f64| {
             let (mut value, mut slope) = (ZERO, ZERO);
             for c in higher.iter().rev() {
@@ -66,9 +75,23 @@ impl Curve {
         }
         let bend = Bend { higher: higher.to_vec() };
         let slope = LocalSlope::new(reach, |u| at(u).1);
-        let table = Table::new(dispersion.gate(), 1e-12, |w| bend.rate(dispersion, w));
-        let second = Second::new(dispersion, slope);
-        Curve { dispersion, bend, slope, table, second }
+        let second = (!higher.is_empty()).then(|| Second::new(dispersion, slope));
+        Curve { dispersion, bend, wide, slope, table: OnceLock::new(), second }
+    }
+
+    /// Whether the profile is not straight.
+    pub(super) fn bent(&self) -> bool {
+        self.second.is_some()
+    }
+
+    /// The coefficients from `c_2` on.
+    pub(super) fn higher(&self) -> &[Complex64] {
+        &self.bend.higher
+    }
+
+    /// The wide-angle form.
+    pub(super) fn wide(&self) -> WideAngle {
+        self.wide
     }
 
     /// `T(u)` and `T'(u)`.
@@ -87,24 +110,46 @@ impl Curve {
         ((self.excess(u).1 + 1.0).sqrt(), above_one(&self.slope.sigma, u))
     }
 
-    /// `dJ/dw`.
-    pub(super) fn rate(&self, w: Complex64) -> Complex64 {
-        self.bend.rate(self.dispersion, w)
+    /// `dJ/dz`.
+    pub(super) fn rate(&self, z: Complex64) -> Complex64 {
+        let Spot { p, kappa, w, cosine, .. } = self.wide.spot(z);
+        let u = self.dispersion.cutoff - self.dispersion.width(w);
+        let g = self.excess(u).0;
+        if self.wide.is_on() {
+            // (2/delta) sin(theta) (u + G) - 2 p (dp/d theta) u
+            return p * 2.0 / self.wide.root * (u * (1.0 - cosine) + g);
+        }
+        kappa * p * g * 2.0
     }
 
-    /// `J(w)`.
-    pub(super) fn phase(&self, w: Complex64) -> Complex64 {
-        self.table.value(w, |w| self.rate(w))
+    /// `J(z)`.
+    pub(super) fn phase(&self, z: Complex64) -> Complex64 {
+        let table = self.table.get_or_init(|| Table::new(self.gate(), 1e-12, |z| self.rate(z)));
+        table.value(z, |z| self.rate(z))
+    }
+
+    /// `J(z)` for a few places: without the table, in some ten microseconds.
+    pub(super) fn phase_once(&self, z: Complex64) -> Complex64 {
+        led(self.gate(), z, |z| self.rate(z))
+    }
+
+    /// How the places beyond `p = i` are reached.
+    fn gate(&self) -> Gate {
+        if !self.wide.is_on() {
+            return self.dispersion.way_round();
+        }
+        let w = Complex64::new(-self.dispersion.gate(), FRAC_PI_2 - 0.35);
+        Gate { by: self.wide.variable(w.sinh()), wide: Some(self.wide) }
     }
 
     /// `p beta`, the whole next order inside, less its logarithm.
     pub(super) fn smooth_beta(&self, w: Complex64) -> Complex64 {
-        self.second.smooth(self.dispersion, self.slope, w)
+        self.second.as_ref().map_or(ZERO, |s| s.smooth(self.dispersion, self.slope, w))
     }
 
     /// The factor of `p log p` in `p beta`.
     pub(super) fn logarithm(&self) -> Complex64 {
-        self.second.logarithm()
+        self.second.as_ref().map_or(ZERO, Second::logarithm)
     }
 }
 
@@ -124,12 +169,6 @@ impl Bend {
         }
         // value = G/u^2
         (value * u * u, (value * 2.0 + slope * u) * u)
-    }
-
-    /// `dJ/dw`.
-    fn rate(&self, dispersion: Dispersion, w: Complex64) -> Complex64 {
-        let u = dispersion.cutoff - dispersion.width(w);
-        w.sinh() * w.cosh() * self.excess(u).0 * 2.0
     }
 }
 
@@ -202,8 +241,10 @@ mod tests {
     #[test]
     fn phase_is_the_integral_of_its_rate() {
         let c = Complex64::new;
-        for (n, m) in [(1, 1.0), (2, 0.55), (1, 0.9), (1, 1.3)] {
-            let curve = Curve::new(Dispersion::new(n, m), &[c(0.25, 0.01), c(-0.1, 0.0)], 0.6);
+        let higher = [c(0.25, 0.01), c(-0.1, 0.0)];
+        for (n, m, delta) in [(1, 1.0, 0.0), (2, 0.55, 0.28), (1, 0.9, 0.0), (1, 1.3, 0.21)] {
+            let wide = WideAngle::new(c(delta, -0.01 * delta));
+            let curve = Curve::new(Dispersion::new(n, m), &higher, wide, 0.6);
             let points = [
                 c(0.1, 0.2),
                 c(-0.3, 0.3),

@@ -39,6 +39,8 @@
 
 use super::curve::Curve;
 use super::second::log_above;
+use super::table::Gate;
+use super::wide::{Spot, WideAngle};
 use crate::Complex64;
 use crate::integral::{Amplitude, Phase};
 use std::f64::consts::{FRAC_PI_2, FRAC_PI_4, PI};
@@ -77,6 +79,11 @@ impl Dispersion {
         } else {
             0.5
         }
+    }
+
+    /// How straight lines from 0 get beyond the line `Im w = pi/2`.
+    pub(super) fn way_round(&self) -> Gate {
+        Gate { by: Complex64::new(-self.gate(), FRAC_PI_2), wide: None }
     }
 
     /// `beta(w)`, continuous along the contour; `beta(w + i pi) = beta(w) + i pi`.
@@ -177,7 +184,8 @@ fn moment(w: Complex64) -> Complex64 {
     sum
 }
 
-/// The phase of the uniform field, `f = turn (phi(p) - p^2 r + p d)` as a function of `w`.
+/// The phase of the uniform field, `f = turn (phi(p) - p^2 r + p d)` as a function of `z = w`; in the
+/// wide-angle form with `P` for `p^2`, of `z = theta`.
 #[derive(Clone, Debug, PartialEq)]
 pub struct ModePhase {
     pub(super) dispersion: Dispersion,
@@ -187,77 +195,122 @@ pub struct ModePhase {
     pub(super) d: Complex64,
     /// `|eps|/eps`, so that the wavenumber `1/|eps|` is real.
     pub(super) turn: Complex64,
-    /// The bend of the profile, if it has one.
+    /// The bend of the profile and the wide-angle form, if it has either.
     pub(super) curve: Option<Arc<Curve>>,
     /// Range less `h_c - h`: zero on a straight profile.
     pub(super) lag: Complex64,
 }
 
 impl Phase for ModePhase {
-    fn value_and_derivative(&self, w: Complex64) -> (Complex64, Complex64) {
-        let (p, kappa) = (w.sinh(), w.cosh());
-        let slope = self.slope(w, p, kappa, self.dispersion.beta(w));
-        (self.value(w), slope * self.turn)
+    fn value_and_derivative(&self, z: Complex64) -> (Complex64, Complex64) {
+        let spot = self.wide().spot(z);
+        (self.height(z, &spot) * self.turn, self.slope(z, &spot) * self.turn)
     }
 
-    fn value(&self, w: Complex64) -> Complex64 {
-        let p = w.sinh();
-        let mut value = self.dispersion.action(w, self.h) + p * self.d;
-        if let Some(curve) = &self.curve {
-            value += curve.phase(w) - p * p * self.lag;
-        }
-        value * self.turn
+    fn value(&self, z: Complex64) -> Complex64 {
+        self.height(z, &self.wide().spot(z)) * self.turn
     }
 
-    fn jet(&self, w: Complex64) -> [Complex64; 3] {
-        let (p, kappa) = (w.sinh(), w.cosh());
-        let beta = self.dispersion.beta(w);
+    fn jet(&self, z: Complex64) -> [Complex64; 3] {
+        let spot = self.wide().spot(z);
+        let Spot { p, kappa, w, cosine, .. } = spot;
         let Dispersion { cutoff, m } = self.dispersion;
-        let excess = self.h * kappa - cutoff + I * beta;
-        let mut second = kappa * excess * 2.0
-            + p * 2.0 * (self.h * p + I * m / self.dispersion.density(p))
-            + p * self.d;
-        if let Some(curve) = &self.curve {
+        let second = if let Some((curve, wide)) = self.on_wide_angle() {
+            // d(2 p/root (T - r) + d cos(theta)/root)/d theta
             let width = self.dispersion.width(w);
             let (g, slope) = curve.excess(cutoff - width);
-            let turning = self.dispersion.width_slope(w, width) * kappa;
-            second += (p * p + kappa * kappa) * (g - self.lag) * 2.0;
-            second -= p * kappa * slope * turning * 2.0;
-        }
-        let slope = self.slope(w, p, kappa, beta);
-        [self.value(w), slope * self.turn, second * self.turn]
+            let turning = self.dispersion.width_slope(w, width) * cosine / wide.root;
+            let behind = self.h - width + g - self.lag;
+            (cosine / wide.root * behind - p * (slope + 1.0) * turning) * 2.0 / wide.root
+                - p * self.d
+        } else {
+            let excess = self.h * kappa - cutoff + I * self.dispersion.beta(w);
+            let mut second = kappa * excess * 2.0
+                + p * 2.0 * (self.h * p + I * m / self.dispersion.density(p))
+                + p * self.d;
+            if let Some(curve) = &self.curve {
+                let width = self.dispersion.width(w);
+                let (g, slope) = curve.excess(cutoff - width);
+                let turning = self.dispersion.width_slope(w, width) * kappa;
+                second += (p * p + kappa * kappa) * (g - self.lag) * 2.0;
+                second -= p * kappa * slope * turning * 2.0;
+            }
+            second
+        };
+        [self.height(z, &spot) * self.turn, self.slope(z, &spot) * self.turn, second * self.turn]
     }
 
-    fn noise_scale(&self, w: Complex64) -> f64 {
-        let p = w.sinh();
+    fn noise_scale(&self, z: Complex64) -> f64 {
+        let Spot { p, kappa, w, cosine, .. } = self.wide().spot(z);
         let q = (w * 0.5).sinh().norm_sqr();
         let Dispersion { cutoff, m } = self.dispersion;
         let even = 4.0 * q * ((self.h - cutoff).norm() + self.h.norm() * q);
         let odd = if m == 1.0 && w.norm() < 0.7 {
             0.0
         } else {
-            2.0 * (w.cosh() * self.dispersion.beta(w)).norm()
-                + 2.0 * m * self.dispersion.s(w).norm()
+            2.0 * (kappa * self.dispersion.beta(w)).norm() + 2.0 * m * self.dispersion.s(w).norm()
         };
-        let bend =
-            self.curve.as_ref().map_or(0.0, |c| c.phase(w).norm() + (p * p * self.lag).norm());
+        let bend = self.curve.as_ref().map_or(0.0, |c| {
+            let beyond = c.wide().excess_at(cosine) * self.range();
+            c.phase(z).norm() + (p * p * self.lag).norm() + beyond.norm()
+        });
         even + odd + (p * self.d).norm() + bend
     }
 }
 
 impl ModePhase {
-    /// `df/dw` without the turn.
-    fn slope(&self, w: Complex64, p: Complex64, kappa: Complex64, beta: Complex64) -> Complex64 {
-        let straight = p * 2.0 * (self.h * kappa - self.dispersion.cutoff + I * beta);
+    /// The wide-angle form, perhaps that of the one-way equation.
+    fn wide(&self) -> WideAngle {
+        self.curve.as_ref().map_or(WideAngle::new(Complex64::new(0.0, 0.0)), |c| c.wide())
+    }
+
+    pub(super) fn on_wide_angle(&self) -> Option<(&Curve, WideAngle)> {
+        let curve = self.curve.as_deref()?;
+        curve.wide().is_on().then(|| (curve, curve.wide()))
+    }
+
+    /// Whether the bend of the profile counts for nearly as much as the straight one.
+    pub(super) fn bend_rules(&self, z: Complex64) -> bool {
+        let u = self.dispersion.cutoff - self.dispersion.width(self.wide().spot(z).w);
+        self.curve.as_ref().is_some_and(|c| c.excess(u).0.norm() > 0.9 * u.norm())
+    }
+
+    /// Range from cut-off.
+    fn range(&self) -> Complex64 {
+        self.dispersion.cutoff - self.h + self.lag
+    }
+
+    /// `f` without the turn.
+    fn height(&self, z: Complex64, spot: &Spot) -> Complex64 {
+        let Spot { p, w, cosine, .. } = *spot;
+        let mut value = self.dispersion.action(w, self.h) + p * self.d;
+        if let Some(curve) = &self.curve {
+            value += curve.phase(z) - p * p * self.lag;
+            if curve.wide().is_on() {
+                value -= curve.wide().excess_at(cosine) * self.range();
+            }
+        }
+        value
+    }
+
+    /// `df/dz` without the turn.
+    fn slope(&self, z: Complex64, spot: &Spot) -> Complex64 {
+        let Spot { p, kappa, w, cosine, .. } = *spot;
+        // kappa (h - h_n), without its cancellation.
+        let above = self.h * kappa - self.dispersion.cutoff + I * self.dispersion.beta(w);
+        if let Some((curve, wide)) = self.on_wide_angle() {
+            let g = curve.excess(self.dispersion.cutoff - self.dispersion.width(w)).0;
+            return (p * 2.0 * (above / kappa + g - self.lag) + cosine * self.d) / wide.root;
+        }
         let bend = match &self.curve {
-            Some(curve) => curve.rate(w) - p * kappa * self.lag * 2.0,
+            Some(curve) => curve.rate(z) - p * kappa * self.lag * 2.0,
             None => Complex64::new(0.0, 0.0),
         };
-        straight + bend + kappa * self.d
+        p * 2.0 * above + bend + kappa * self.d
     }
 }
 
-/// The amplitude of the uniform field with respect to `dw`, inside or outside.
+/// The amplitude of the uniform field with respect to `dz`, inside or outside.
 #[derive(Clone, Debug, PartialEq)]
 pub struct ModeAmplitude {
     pub(super) dispersion: Dispersion,
@@ -269,7 +322,7 @@ pub struct ModeAmplitude {
     pub(super) side: Side,
     /// What of the next order is in it.
     pub(super) part: Part,
-    /// The bend of the profile, if it has one.
+    /// The bend of the profile and the wide-angle form, if it has either.
     pub(super) curve: Option<Arc<Curve>>,
 }
 
@@ -299,51 +352,77 @@ pub(super) enum Side {
         x: Complex64,
         even: bool,
     },
+    /// The derivative along the range, over `i k`, the carrier included: the field itself in the one-way equation.
+    InsideFlow {
+        x: Complex64,
+        even: bool,
+    },
     Outside,
+    /// The derivative along the range outside.
+    OutsideFlow,
     /// The derivative with respect to the distance.
     OutsideSlope,
 }
 
 impl Amplitude for ModeAmplitude {
-    fn value(&self, w: Complex64) -> Complex64 {
-        let (p, kappa) = (w.sinh(), w.cosh());
+    fn value(&self, z: Complex64) -> Complex64 {
+        let off = WideAngle::new(Complex64::new(0.0, 0.0));
+        let Spot { p, kappa, w, cosine, measure } =
+            self.curve.as_ref().map_or(off, |c| c.wide()).spot(z);
         let m = self.dispersion.m;
         let d = self.dispersion.density(p);
-        let bent = self.curve.is_some() || matches!(self.side, Side::Outside | Side::OutsideSlope);
-        let width = if bent { self.dispersion.width(w) } else { self.h };
-        // The local slope over that at cut-off is 1/flatness.
-        let (root, eps) = match &self.curve {
-            Some(curve) => {
-                let (root, slope) = curve.slope(self.dispersion.cutoff - width);
-                (root, self.eps * slope)
-            }
-            None => (Complex64::new(1.0, 0.0), self.eps),
-        };
+        let (within, bent) = (self.inside(), self.curve.as_ref().filter(|c| c.bent()));
+        let width =
+            if within.is_none() || bent.is_some() { self.dispersion.width(w) } else { self.h };
+        let one = Complex64::new(1.0, 0.0);
+        let (root, slope) =
+            bent.map_or((one, one), |curve| curve.slope(self.dispersion.cutoff - width));
+        let local = self.eps * slope;
         // p D^(-1/2) sin(kappa x)/sin(kappa h_n) dp, sin(kappa h_n) = kappa/sqrt(D) up to sign.
-        let inside = self.inside_factor(w, p, d, eps) * root;
+        let mut factor = self.inside_factor(w, p, d, local, cosine);
+        if within.is_none()
+            && self.eps != Complex64::new(0.0, 0.0)
+            && !matches!(self.part, Part::Logarithm | Part::Rest)
+        {
+            let bend = self.dispersion.width_slope(w, width) * I * 0.25;
+            factor += local * cosine * ((1.0 - m) / (d * 2.0) + bend);
+        }
+        factor *= root;
+        if matches!(self.side, Side::InsideFlow { .. } | Side::OutsideFlow) {
+            factor *= cosine;
+        }
+        if within.is_some() {
+            factor *= measure / kappa;
+        }
         match self.side {
-            Side::Inside { x, even: false } => inside * (kappa * x).sin(),
-            Side::Inside { x, even: true } => inside * (kappa * x).cos(),
-            Side::InsideSlope { x, even: false } => inside * (kappa * x).cos() * kappa,
-            Side::InsideSlope { x, even: true } => -inside * (kappa * x).sin() * kappa,
-            Side::Outside | Side::OutsideSlope => {
-                let mut factor = inside;
-                if self.eps != Complex64::new(0.0, 0.0)
-                    && !matches!(self.part, Part::Logarithm | Part::Rest)
-                {
-                    let bend = self.dispersion.width_slope(w, width) * I * 0.25;
-                    factor += eps * root * ((1.0 - m) / (d * 2.0) + bend);
-                }
+            Side::Inside { x, even } | Side::InsideFlow { x, even } => {
+                factor * if even { (kappa * x).cos() } else { (kappa * x).sin() }
+            }
+            Side::InsideSlope { x, even } => {
+                factor * kappa * if even { -(kappa * x).sin() } else { (kappa * x).cos() }
+            }
+            Side::Outside | Side::OutsideFlow | Side::OutsideSlope => {
                 if self.side == Side::OutsideSlope {
                     factor *= I * p;
                 }
-                factor * (I * p * (self.h - width)).exp() * kappa / self.dispersion.root_density(w)
+                factor * (I * p * (self.h - width)).exp() * measure
+                    / self.dispersion.root_density(w)
             }
         }
     }
 }
 
 impl ModeAmplitude {
+    /// The position, if the field is wanted inside.
+    fn inside(&self) -> Option<Complex64> {
+        match self.side {
+            Side::Inside { x, .. } | Side::InsideSlope { x, .. } | Side::InsideFlow { x, .. } => {
+                Some(x)
+            }
+            Side::Outside | Side::OutsideSlope | Side::OutsideFlow => None,
+        }
+    }
+
     /// `p (1 + eps beta)`, or the part of it that is wanted; `local` is `eps` with the local slope.
     fn inside_factor(
         &self,
@@ -351,20 +430,25 @@ impl ModeAmplitude {
         p: Complex64,
         density: Complex64,
         local: Complex64,
+        cosine: Complex64,
     ) -> Complex64 {
         let zero = Complex64::new(0.0, 0.0);
         if self.eps == zero {
             return p;
         }
-        let curve = match &self.curve {
-            Some(curve) if self.part != Part::LocalSlope => curve,
-            _ => return p + local * self.dispersion.m / (density * 12.0),
-        };
+        let straight = local * self.dispersion.m / (density * 12.0);
+        let (mut whole, mut bent) = (p + straight * cosine, None);
+        if let Some(curve) = &self.curve {
+            // The angle of the boundary against its tangent; the integral of 2 p h_n.
+            let action = self.dispersion.action(w, Complex64::new(0.0, 0.0));
+            whole += local * curve.wide().delta * I * p * action / 12.0;
+            bent = Some(curve).filter(|c| c.bent());
+        }
+        let Some(curve) = bent else { return whole };
         match self.part {
-            Part::Smooth => p + self.eps * curve.smooth_beta(w),
-            Part::Rest => {
-                self.eps * curve.smooth_beta(w) - local * self.dispersion.m / (density * 12.0)
-            }
+            Part::LocalSlope => whole,
+            Part::Smooth => whole + self.eps * curve.smooth_beta(w) - straight,
+            Part::Rest => self.eps * curve.smooth_beta(w) - straight,
             _ if p == zero => zero,
             _ => self.eps * curve.logarithm() * p * log_above(p),
         }
@@ -423,18 +507,22 @@ mod tests {
 
     #[test]
     fn jet_is_the_derivative() {
-        for m in [0.55, 0.8, 1.0, 1.3] {
+        for (m, delta) in
+            [(0.55, 0.0), (0.55, 0.28), (0.8, 0.0), (1.0, 0.0), (1.0, 1.2), (1.3, 0.2)]
+        {
             let h = Complex64::new(1.4, -0.02);
             let turn = Complex64::from_polar(1.0, -0.03);
             let d = Complex64::new(0.3, 0.01);
             let dispersion = Dispersion::new(2, m);
             let higher = [Complex64::new(0.2, 0.01), Complex64::new(-0.05, 0.0)];
-            let curve = Some(Arc::new(Curve::new(dispersion, &higher, 0.6)));
+            let wide = WideAngle::new(Complex64::new(delta, -0.01 * delta));
+            let curve = Some(Arc::new(Curve::new(dispersion, &higher, wide, 0.6)));
             let lag = Complex64::new(0.1, 0.02);
             let phase = ModePhase { dispersion, h, d, turn, curve, lag };
-            for w in
-                [Complex64::new(0.1, 0.2), Complex64::new(-0.7, 1.2), Complex64::new(-1.6, 2.2)]
-            {
+            // In the wide-angle form a wave that runs back, otherwise one beyond i pi/2.
+            let far =
+                if delta > 0.0 { Complex64::new(1.9, 0.3) } else { Complex64::new(-1.6, 2.2) };
+            for w in [Complex64::new(0.1, 0.2), Complex64::new(-0.7, 1.2), far] {
                 let [_, df, ddf] = phase.jet(w);
                 let step = 1e-5;
                 let ahead = phase.jet(w + step);

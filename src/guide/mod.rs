@@ -110,6 +110,7 @@ mod station;
 mod table;
 mod uniform;
 mod well;
+mod wide;
 
 pub use acoustic::{AcousticGuide, CutOffPlace, ModeCutOff, TwoLayer, level_db};
 pub use adiabatic::Adiabatic;

@@ -162,7 +162,7 @@ impl Second {
         };
         let near = 0.5 * circle;
         let smooth = |w: Complex64| smooth_rate(dispersion, slope, &rate, near, w);
-        let table = Table::new(dispersion.gate(), 1e-11, smooth);
+        let table = Table::new(dispersion.way_round(), 1e-11, smooth);
         Second { near, rate, local, table }
     }
 

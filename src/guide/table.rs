@@ -10,6 +10,7 @@
 //!
 //! Source: derived here.
 
+use super::wide::WideAngle;
 use crate::Complex64;
 use std::f64::consts::{FRAC_PI_2, TAU};
 
@@ -33,12 +34,25 @@ const GAUSS: [(f64, f64); 3] = [
     (0.932_469_514_203_152, 0.171_324_492_379_170_36),
 ];
 
+/// A place by which lines from 0 to places beyond the branch point `p = i` are led.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Gate {
+    pub by: Complex64,
+    /// The wide-angle form where the variable is its angle; else beyond is `Im w > pi/2`.
+    pub wide: Option<WideAngle>,
+}
+
+impl Gate {
+    fn is_before(self, z: Complex64) -> bool {
+        self.wide.map_or(z.im > FRAC_PI_2, |wide| wide.beyond(z))
+    }
+}
+
 /// The primitive of a rate that the caller keeps.
 #[derive(Clone, PartialEq)]
 pub(super) struct Table {
     squares: Vec<Square>,
-    /// Where the contour crosses the line `Im w = pi/2`.
-    gate: Complex64,
+    gate: Gate,
 }
 
 #[derive(Clone, PartialEq)]
@@ -51,13 +65,12 @@ enum Square {
 }
 
 impl Table {
-    /// `gate` is how far to the left of `i pi/2` the contour passes; `noise` the relative rounding of the rate.
+    /// `noise` is the relative rounding of the rate.
     pub(super) fn new(
-        gate: f64,
+        gate: Gate,
         noise: f64,
         rate: impl Fn(Complex64) -> Complex64 + Copy,
     ) -> Table {
-        let gate = Complex64::new(-gate, FRAC_PI_2);
         let turns: Vec<Complex64> = (0..CIRCLE)
             .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
             .collect();
@@ -113,7 +126,7 @@ impl Table {
 }
 
 struct Build<F> {
-    gate: Complex64,
+    gate: Gate,
     noise: f64,
     turns: Vec<Complex64>,
     rate: F,
@@ -158,12 +171,16 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
 }
 
 /// The primitive from panels.
-fn led(gate: Complex64, w: Complex64, rate: impl Fn(Complex64) -> Complex64 + Copy) -> Complex64 {
+pub(super) fn led(
+    gate: Gate,
+    w: Complex64,
+    rate: impl Fn(Complex64) -> Complex64 + Copy,
+) -> Complex64 {
     let zero = Complex64::new(0.0, 0.0);
-    if w.im <= FRAC_PI_2 {
-        along(zero, w, rate)
+    if gate.is_before(w) {
+        along(zero, gate.by, rate) + along(gate.by, w, rate)
     } else {
-        along(zero, gate, rate) + along(gate, w, rate)
+        along(zero, w, rate)
     }
 }
 
@@ -201,7 +218,7 @@ mod tests {
         let c = Complex64::new;
         let (pole, low) = (c(0.0, FRAC_PI_2), c(0.0, -0.13));
         let rate = |w: Complex64| (w - low).powi(-2) + 1.0 / (w - pole) + w.cosh();
-        let table = Table::new(0.5, 1e-13, rate);
+        let table = Table::new(Gate { by: c(-0.5, FRAC_PI_2), wide: None }, 1e-13, rate);
         // The logarithm has its cut to the right of the pole.
         let primitive = |w: Complex64| {
             let log = (pole - w).ln();

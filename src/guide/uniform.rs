@@ -46,6 +46,7 @@
 
 use super::curve::{Curve, REACH};
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Part, Side};
+use super::wide::{Spot, WideAngle};
 use crate::integral::{Amplitude, Termination};
 use crate::{Complex64, Contour, Error, Estimate, Integral, Scaled};
 use std::f64::consts::PI;
@@ -123,7 +124,7 @@ impl SlopingGuide {
 
     /// The mode that is even in `x` (`psi_x = 0` in place of `psi = 0` at `x = 0`): the other half of
     /// the modes of a symmetric slab. It is cut off at the width `(n - 1) pi`. Call it before
-    /// [`curved`](Self::curved).
+    /// [`curved`](Self::curved) and [`wide_angle`](Self::wide_angle).
     ///
     /// Errors: [`Error::Domain`] for mode 1, the one mode of a symmetric slab that has no cut-off.
     ///
@@ -170,11 +171,62 @@ impl SlopingGuide {
             let remedy = "pass finite numbers";
             return Err(Error::Domain { what: "coefficient of the profile", value, remedy });
         }
+        let wide = self.wide();
+        Ok(self.shaped(&higher, wide))
+    }
+
+    /// In the wide-angle form: sound or light by Helmholtz's equation instead of the one-way equation, with
+    /// `delta = (q/k)^2`, complex where the media absorb; 0 for the one-way equation again.
+    ///
+    /// A wave of scaled momentum `p` then runs at the angle whose sine is `delta^(1/2) p`, exactly, and keeps its
+    /// wavelength: steep beams point the right way at any distance. Inside and outside each solve
+    /// Helmholtz's equation; the mode comes in with unit flux of energy, `(beta/k)` times the integral of
+    /// `psi^2`, `beta` its wavenumber along the guide. Cost: as on a curved profile, since the phase has no closed form.
+    ///
+    /// Errors: [`Error::Domain`] for a `delta` that is not finite or not in the right half plane.
+    ///
+    /// ```
+    /// use merging_saddles::guide::SlopingGuide;
+    /// let (eps, delta) = (0.1, 0.2844);
+    /// let guide = SlopingGuide::new(1, 1.0, eps)?;
+    /// let wide = guide.clone().wide_angle(delta)?;
+    /// // Late and far out the field is a ray from near cut-off: its phase changes across the guide by q p =
+    /// // k sin(angle), tan(angle) = distance over range (ray optics, common practice); in scaled units
+    /// // p = sin(angle)/delta^(1/2), tan(angle) = d delta^(1/2) eps/(2 r).
+    /// let (r, d, step) = (1.5, 14.0, 0.01);
+    /// let at = |d: f64| wide.outside(wide.cutoff_width() - r, d)?.quadrature(1e-9);
+    /// let p = (at(d + step)?.value / at(d)?.value).arg() / step;
+    /// let ray = ((d - r) * f64::sqrt(delta) * eps / (2.0 * r)).atan().sin() / f64::sqrt(delta);
+    /// assert!((p / ray - 1.0).abs() < 0.05);
+    /// // And both conditions of Helmholtz's equation at the boundary are kept to order eps^(5/3).
+    /// assert!(wide.mismatch(wide.cutoff_width())? < 0.02);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
+    pub fn wide_angle(self, delta: impl Into<Complex64>) -> Result<Self, Error> {
+        let delta = delta.into();
+        if !(delta.norm().is_finite() && (delta.re > 0.0 || delta.norm() == 0.0)) {
+            let remedy = "pass (q/k)^2, with a positive real part, or 0 for the one-way equation";
+            return Err(Error::Domain { what: "delta", value: delta, remedy });
+        }
+        let higher = self.curve.as_ref().map_or(Vec::new(), |c| c.higher().to_vec());
+        Ok(self.shaped(&higher, WideAngle::new(delta)))
+    }
+
+    fn shaped(self, higher: &[Complex64], wide: WideAngle) -> Self {
+        if higher.is_empty() && !wide.is_on() {
+            return SlopingGuide { curve: None, ..self };
+        }
         let m = self.dispersion.m;
         // What the mode feels at its cut-off: the window of the transition.
         let reach = REACH * (m * m * self.eps.norm()).cbrt();
-        let curve = Curve::new(self.dispersion, &higher, reach);
-        Ok(SlopingGuide { curve: Some(Arc::new(curve)), ..self })
+        let curve = Curve::new(self.dispersion, higher, wide, reach);
+        SlopingGuide { curve: Some(Arc::new(curve)), ..self }
+    }
+
+    /// The wide-angle form, with `delta = 0` for none.
+    pub(super) fn wide(&self) -> WideAngle {
+        let off = WideAngle::new(Complex64::new(0.0, 0.0));
+        self.curve.as_ref().map_or(off, |curve| curve.wide())
     }
 
     /// With the amplitude to the given order in `eps` (without a call: [`Order::Next`]).
@@ -225,6 +277,12 @@ impl SlopingGuide {
         self.field(place, Side::Inside { x, even: self.even }, zero, self.sign())
     }
 
+    /// The derivative along the range inside, over `i k` (see [`Side::InsideFlow`]).
+    pub(super) fn flow_at(&self, place: Place, x: Complex64) -> Result<UniformField, Error> {
+        let zero = Complex64::new(0.0, 0.0);
+        self.field(place, Side::InsideFlow { x, even: self.even }, zero, self.sign())
+    }
+
     pub(super) fn outside_at(&self, place: Place, d: Complex64) -> Result<UniformField, Error> {
         self.field(place, Side::Outside, d, 1.0)
     }
@@ -240,7 +298,7 @@ impl SlopingGuide {
     /// The two sides are separate formulas and fit only as well as the expansion in `eps` goes, so
     /// this measures the order left out without a reference. Relative to the field at the boundary.
     ///
-    /// Cost: four quadratures. Errors: as [`UniformField::quadrature`].
+    /// Cost: four quadratures, six in the wide-angle form. Errors: as [`UniformField::quadrature`].
     ///
     /// ```
     /// use merging_saddles::guide::{Order, SlopingGuide};
@@ -265,16 +323,23 @@ impl SlopingGuide {
         let slope = value(Side::OutsideSlope, 1.0)?;
         let within = value(Side::Inside { x, even }, self.sign())?;
         let within_slope = value(Side::InsideSlope { x, even }, self.sign())?;
+        let wide = self.wide().is_on();
+        let (flow, within_flow) = if wide {
+            let within = value(Side::InsideFlow { x, even }, self.sign())?;
+            (value(Side::OutsideFlow, 1.0)?, within)
+        } else {
+            (outside, within)
+        };
         let size = outside.exponent;
-        let [outside, slope, within, within_slope] =
-            [outside, slope, within, within_slope].map(|v| v.mantissa_at(size));
+        let [outside, slope, within, within_slope, flow, within_flow] =
+            [outside, slope, within, within_slope, flow, within_flow].map(|v| v.mantissa_at(size));
         let steepness = match &self.curve {
-            Some(curve) => curve.slope(self.dispersion.cutoff - place.h).1,
-            None => Complex64::new(1.0, 0.0),
+            Some(curve) if curve.bent() => curve.slope(self.dispersion.cutoff - place.h).1,
+            _ => Complex64::new(1.0, 0.0),
         };
         let drift = I * self.eps * 0.5 * steepness;
         let jump = within - outside;
-        let flux = within_slope + drift * within - (slope + drift * outside) * m;
+        let flux = within_slope + drift * within_flow - (slope + drift * flow) * m;
         let length = (m / self.eps.norm()).cbrt();
         Ok((jump.norm() + length * flux.norm() / m) / outside.norm())
     }
@@ -288,8 +353,8 @@ impl SlopingGuide {
     ) -> Result<UniformField, Error> {
         let Place { h, r } = place;
         let x = match side {
-            Side::Inside { x, .. } | Side::InsideSlope { x, .. } => x,
-            Side::Outside | Side::OutsideSlope => distance,
+            Side::Inside { x, .. } | Side::InsideSlope { x, .. } | Side::InsideFlow { x, .. } => x,
+            Side::Outside | Side::OutsideSlope | Side::OutsideFlow => distance,
         };
         for (what, value) in [("width h", h), ("x or distance", x)] {
             if !(value.re.is_finite() && value.im.is_finite() && value.re >= 0.0) {
@@ -304,13 +369,14 @@ impl SlopingGuide {
         let dispersion = self.dispersion;
         let lag = r - (dispersion.cutoff - h);
         let (curve, turn) = (self.curve.clone(), self.eps.inv() * self.eps.norm());
+        let amplitude = ModeAmplitude { dispersion, h, eps, side, part, curve: curve.clone() };
         let phase = ModePhase { dispersion, h, d: self.eps * distance, turn, curve, lag };
-        let amplitude = ModeAmplitude { dispersion, h, eps, side, part, curve: self.curve.clone() };
         let wavenumber = self.eps.norm().recip();
         let (contour, neglected) = self.contour(&phase, wavenumber)?;
         let prefactor = -I * (I * 2.0 / (PI * self.eps)).sqrt() * sign;
         let integral = Integral::new(phase, contour).amplitude(amplitude);
-        let apart = part == Part::Smooth && self.curve.is_some();
+        let bent = self.curve.as_ref().is_some_and(|c| c.bent());
+        let apart = part == Part::Smooth && bent;
         let logarithm = apart.then(|| integral.halves());
         Ok(UniformField { integral, logarithm, wavenumber, prefactor, neglected })
     }
@@ -324,11 +390,13 @@ impl SlopingGuide {
         }
     }
 
-    /// The amplitude per scaled momentum `p = sinh w` of the radiation and its exponent, phases of
-    /// free propagation apart.
-    pub(super) fn spectrum(&self, w: Complex64) -> (Complex64, Complex64) {
-        let Dispersion { cutoff, .. } = self.dispersion;
-        let (p, kappa, width) = (w.sinh(), w.cosh(), self.dispersion.width(w));
+    /// The amplitude per scaled momentum `p` of the radiation and its exponent, phases of free propagation
+    /// apart.
+    pub(super) fn spectrum(&self, p: f64) -> (Complex64, Complex64) {
+        let (wide, cutoff) = (self.wide(), Complex64::from(self.dispersion.cutoff));
+        let z = wide.variable(Complex64::from(p));
+        let Spot { w, cosine, measure, .. } = wide.spot(z);
+        let width = self.dispersion.width(w);
         let curve = self.curve.clone();
         let (eps, part) = self.next_order();
         // At h = h_n the amplitude has no exponential; the phase at cut-off is phi(p).
@@ -340,11 +408,12 @@ impl SlopingGuide {
             part,
             curve,
         };
-        let mut phase = self.dispersion.action(w, Complex64::from(cutoff));
+        let mut phase = self.dispersion.action(w, cutoff);
         if let Some(curve) = &self.curve {
-            phase += curve.phase(w);
+            phase += curve.phase(z);
         }
-        (amplitude.value(w) / kappa, I * phase / self.eps - I * p * width)
+        let per_p = amplitude.value(z) / (measure * cosine);
+        (per_p, I * phase / self.eps - I * p * width)
     }
 
     /// Range (from cut-off) and position where the ray of the scaled momentum `p` starts.
@@ -482,6 +551,8 @@ impl UniformField {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn quadrature(&self, tolerance: f64) -> Result<Estimate, Error> {
+        // A descent that is to go deeper than the ends of the contour finds no way down from there.
+        let tolerance = tolerance.max((400.0 * self.neglected).min(1e-3));
         self.with_logarithm(self.integral.quadrature(self.wavenumber, tolerance)?, tolerance)
     }
 
