@@ -2,7 +2,6 @@
 
 use merging_saddles::guide::{
     AcousticGuide, Passage, Polarization, Profile, QuantumWell, Slab, SlabGuide, TwoLayer,
-    sensitivities,
 };
 use merging_saddles::{Complex64 as C, Error};
 use std::f64::consts::{PI, TAU};
@@ -241,33 +240,6 @@ fn a_source_is_the_sum_of_its_modes() {
     let loss = source.transmission_loss_db(range, depth).unwrap();
     assert!((loss + 20.0 * expected.norm().log10()).abs() < 0.1);
     assert!(guide.source(bay(), 0.0, 60.0).is_err() && guide.source(bay(), -1.0, 10.0).is_err());
-}
-
-#[test]
-fn sensitivities_of_a_level_and_a_range() {
-    let slope = 0.02f64.atan();
-    let range = |sea: TwoLayer, slope: f64| -> Result<f64, Error> {
-        AcousticGuide::new(sea)?
-            .cutoff_place(1, &Profile::plane(60.0, slope.tan())?)
-            .map(|p| p.range_m)
-    };
-    let s = sensitivities(SEA, slope, range).unwrap();
-    // s = (60 - h_c)/tan(slope), h_c inversely proportional to the frequency.
-    let depth = AcousticGuide::new(SEA).unwrap().cutoff_depth_m(1).unwrap();
-    assert!((s.per_frequency_hz / (depth / 100.0 / 0.02) - 1.0).abs() < 1e-7);
-    let per_slope = -(60.0 - depth) / slope.sin().powi(2);
-    assert!((s.per_slope_rad / per_slope - 1.0).abs() < 1e-7);
-    assert!(s.per_water_density_kg_per_m3 == 0.0);
-    // A level in the bottom, with losses.
-    let level = |sea: TwoLayer, slope: f64| {
-        let run = AcousticGuide::new(sea)?.upslope(1, slope, 20.0)?;
-        let p = run.pressure_uniform(200.0, 60.0)?;
-        Ok(merging_saddles::guide::level_db(p.value))
-    };
-    let s = sensitivities(SEA, slope, level).unwrap();
-    println!("{s:?}");
-    assert!(s.per_bottom_attenuation_db_per_wavelength < -1.0);
-    assert!(s.per_water_attenuation_db_per_wavelength < 0.0);
 }
 
 #[test]

@@ -15,28 +15,59 @@
 
 use super::passage::{Media, ModeNumber, Passage};
 use super::profile::Profile;
+use super::sensitivity::{Figure, Figures};
 use super::uniform::Order;
 use crate::{Complex64, Error, Estimate};
 use std::f64::consts::{FRAC_PI_4, LOG10_E, PI, TAU};
 
-/// What is known of the sea and its bottom.
+/// What is known of the sea and its bottom: numbers, or something else for each of them
+/// ([`sensitivities`](super::sensitivities)).
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct TwoLayer {
+pub struct TwoLayer<T = f64> {
     /// Frequency in Hz.
-    pub frequency_hz: f64,
+    pub frequency_hz: T,
     /// Sound speed in the water in m/s.
-    pub water_speed_m_per_s: f64,
+    pub water_speed_m_per_s: T,
     /// Sound speed in the bottom in m/s, above that in the water.
-    pub bottom_speed_m_per_s: f64,
+    pub bottom_speed_m_per_s: T,
     /// Density of the water in kg/m^3.
-    pub water_density_kg_per_m3: f64,
+    pub water_density_kg_per_m3: T,
     /// Density of the bottom in kg/m^3.
-    pub bottom_density_kg_per_m3: f64,
+    pub bottom_density_kg_per_m3: T,
     /// Attenuation in the water in dB per wavelength; 0 for none.
-    pub water_attenuation_db_per_wavelength: f64,
+    pub water_attenuation_db_per_wavelength: T,
     /// Attenuation in the bottom in dB per wavelength; 0 for none.
-    pub bottom_attenuation_db_per_wavelength: f64,
+    pub bottom_attenuation_db_per_wavelength: T,
 }
+
+impl Figures for TwoLayer {
+    type Of<T> = TwoLayer<T>;
+
+    fn map<T>(&self, mut f: impl FnMut(Figure) -> Result<T, Error>) -> Result<TwoLayer<T>, Error> {
+        // Results are singular where the speeds are equal.
+        let apart = self.bottom_speed_m_per_s - self.water_speed_m_per_s;
+        let mut own = |value: f64| f(Figure::new(value, value));
+        let frequency_hz = own(self.frequency_hz)?;
+        let water_density_kg_per_m3 = own(self.water_density_kg_per_m3)?;
+        let bottom_density_kg_per_m3 = own(self.bottom_density_kg_per_m3)?;
+        let mut speed = |value: f64| f(Figure::new(value, apart.min(value)));
+        let water_speed_m_per_s = speed(self.water_speed_m_per_s)?;
+        let bottom_speed_m_per_s = speed(self.bottom_speed_m_per_s)?;
+        let mut loss = |value: f64| f(Figure::new(value, 1.0).within(0.0, MOST_ATTENUATION));
+        Ok(TwoLayer {
+            frequency_hz,
+            water_speed_m_per_s,
+            bottom_speed_m_per_s,
+            water_density_kg_per_m3,
+            bottom_density_kg_per_m3,
+            water_attenuation_db_per_wavelength: loss(self.water_attenuation_db_per_wavelength)?,
+            bottom_attenuation_db_per_wavelength: loss(self.bottom_attenuation_db_per_wavelength)?,
+        })
+    }
+}
+
+/// Largest attenuation taken, in dB per wavelength.
+const MOST_ATTENUATION: f64 = 5.0;
 
 /// A validated two-layer sea at one frequency.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -107,7 +138,7 @@ impl AcousticGuide {
             ("water_attenuation_db_per_wavelength", sea.water_attenuation_db_per_wavelength),
             ("bottom_attenuation_db_per_wavelength", sea.bottom_attenuation_db_per_wavelength),
         ] {
-            if !(0.0..=5.0).contains(&attenuation) {
+            if !(0.0..=MOST_ATTENUATION).contains(&attenuation) {
                 return Err(Error::domain(
                     what,
                     attenuation,

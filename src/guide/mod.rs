@@ -14,8 +14,9 @@
 //!   [`AcousticGuide`] (sound in water over a sloping bottom, metres), [`SlabGuide`] (light in a tapered slab, TE and TM,
 //!   nanometres), [`QuantumWell`] (states of a narrowing well, scaled). Each gives a [`Passage`]: the field
 //!   everywhere, its error figure, the [`Beam`] and its [`Footprint`], the energy left inside, levels along a line of
-//!   receivers. For sound there are besides [`ModeCutOff`] (the same with metres in the names),
-//!   [`AcousticGuide::source`] (modes added with their phases) and [`sensitivities`].
+//!   receivers. For sound there are besides [`ModeCutOff`] (the same with metres in the names) and
+//!   [`AcousticGuide::source`] (modes added with their phases). [`sensitivities`] differentiates any result with
+//!   respect to all figures.
 //!
 //! ```
 //! use merging_saddles::guide::{AcousticGuide, TwoLayer, level_db};
@@ -118,7 +119,7 @@ pub use dispersion::{ModeAmplitude, ModePhase};
 pub use passage::Passage;
 pub use profile::Profile;
 pub use revival::revival;
-pub use sensitivity::{Sensitivities, sensitivities};
+pub use sensitivity::{Derivative, Figure, Figures, Sensitivities, sensitivities};
 pub use slab::{Polarization, Slab, SlabGuide};
 pub use source::SourceField;
 pub use station::Station;

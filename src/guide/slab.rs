@@ -7,6 +7,7 @@
 
 use super::passage::{Media, ModeNumber, Passage};
 use super::profile::Profile;
+use super::sensitivity::{Figure, Figures};
 use crate::{Complex64, Error};
 use std::f64::consts::{FRAC_PI_2, TAU};
 
@@ -19,17 +20,36 @@ pub enum Polarization {
     Tm,
 }
 
-/// What is known of a slab waveguide.
+/// What is known of a slab waveguide: numbers, or something else for each of them
+/// ([`sensitivities`](super::sensitivities)).
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Slab {
+pub struct Slab<T = f64> {
     /// Wavelength in vacuum in nm.
-    pub vacuum_wavelength_nm: f64,
+    pub vacuum_wavelength_nm: T,
     /// Refractive index of the core, above that of the cladding.
-    pub core_index: f64,
+    pub core_index: T,
     /// Refractive index of both claddings.
-    pub cladding_index: f64,
+    pub cladding_index: T,
     /// Polarization.
     pub polarization: Polarization,
+}
+
+impl Figures for Slab {
+    type Of<T> = Slab<T>;
+
+    fn map<T>(&self, mut f: impl FnMut(Figure) -> Result<T, Error>) -> Result<Slab<T>, Error> {
+        // Results are singular where the indices are equal.
+        let apart = self.core_index - self.cladding_index;
+        Ok(Slab {
+            vacuum_wavelength_nm: f(Figure::new(
+                self.vacuum_wavelength_nm,
+                self.vacuum_wavelength_nm,
+            ))?,
+            core_index: f(Figure::new(self.core_index, apart))?,
+            cladding_index: f(Figure::new(self.cladding_index, apart.min(self.cladding_index)))?,
+            polarization: self.polarization,
+        })
+    }
 }
 
 /// A validated slab waveguide at one wavelength.

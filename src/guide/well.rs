@@ -2,6 +2,7 @@
 
 use super::passage::{Media, Passage};
 use super::profile::Profile;
+use super::sensitivity::{Figure, Figures};
 use super::slab::{has_cutoff, number};
 use crate::{Complex64, Error};
 use std::f64::consts::FRAC_PI_2;
@@ -58,5 +59,14 @@ impl QuantumWell {
             carrier: Complex64::from(0.0),
         };
         Passage::new(media, number(index), half_width, reference_time)
+    }
+}
+
+impl Figures for QuantumWell {
+    type Of<T> = QuantumWell;
+
+    /// There are none: what can change is the profile.
+    fn map<T>(&self, _: impl FnMut(Figure) -> Result<T, Error>) -> Result<QuantumWell, Error> {
+        Ok(*self)
     }
 }
