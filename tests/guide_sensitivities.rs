@@ -189,14 +189,11 @@ fn a_sea_depends_on_ratios() {
     let loss: Quantity = |sea, bed| {
         AcousticGuide::new(*sea)?.source(bed.clone(), 0.0, 20.0)?.transmission_loss_db(900.0, 15.0)
     };
-    let length: Quantity =
-        |sea, bed| Ok(AcousticGuide::new(*sea)?.along(2, bed.clone(), 0.0)?.layer_range_m());
     let plane = Profile::plane(52.0, 0.024).unwrap();
     for (name, quantity, bed, bar) in [
         ("level, bay", level, bay(), 1e-8),
         ("axis, plane", axis, plane.clone(), 1e-3),
         ("loss, plane", loss, plane, 1e-8),
-        ("length, bay", length, bay(), 1e-9),
     ] {
         let per = sensitivities(&SEA, &bed, quantity).unwrap().per;
         let speeds = [

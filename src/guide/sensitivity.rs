@@ -218,10 +218,10 @@ fn derivative(
     Error::require_positive("scale of a figure", scale)?;
     let mut best: Option<Derivative> = None;
     let (mut refusal, mut finest, mut worse) = (None, None, 0);
-    for level in 0..INTERVALS {
-        let step = scale / 8.0 * 0.25f64.powi(level);
+    for interval in 0..INTERVALS {
+        let step = scale / 8.0 * 0.25f64.powi(interval);
         let [from, to] = [(value - step).max(low), (value + step).min(high)];
-        let Interpolant { slope, error, size, falls } =
+        let Interpolant { slope, error, size, falls, level } =
             match interpolate(value, centre, from, to, &f) {
                 Ok(interpolant) => interpolant,
                 Err(error) => {
@@ -239,7 +239,8 @@ fn derivative(
         } else {
             worse += 1;
         }
-        if error <= 1e-11 * slope.abs() || error <= 1e-12 * size / scale || worse == 2 {
+        let fine = error <= 1e-11 * slope.abs() || error <= 1e-12 * size / scale;
+        if fine || level || worse == 2 {
             break;
         }
     }
@@ -259,6 +260,8 @@ struct Interpolant {
     size: f64,
     /// Whether the coefficients fall, or are all as small as noise.
     falls: bool,
+    /// Whether they have come down to a level of noise.
+    level: bool,
 }
 
 fn interpolate(
@@ -278,7 +281,8 @@ fn interpolate(
     let u = (value - middle) / half;
     // U_{j-2} and U_{j-1} at the figure.
     let (mut before, mut second) = (0.0, 1.0);
-    let (mut slope, mut carried, mut lead, mut tail) = (0.0, 0.0, 0.0f64, 0.0f64);
+    let (mut slope, mut carried) = (0.0, 0.0);
+    let (mut lead, mut before_tail, mut tail) = (0.0f64, 0.0f64, 0.0f64);
     for j in 1..NODES {
         let weights = (0..NODES).map(|i| (angle(i) * j as f64).cos());
         let sum: f64 = results.iter().zip(weights).map(|(r, w)| r * w).sum();
@@ -289,10 +293,14 @@ fn interpolate(
         lead = lead.max(coefficient.abs());
         if j + 4 >= NODES {
             tail = tail.max(coefficient.abs());
+        } else if j + 8 >= NODES {
+            before_tail = before_tail.max(coefficient.abs());
         }
         (before, second) = (second, 2.0 * u * second - before);
     }
     let error = (3.0 * tail + 0.5 * f64::EPSILON * size) * carried;
     let falls = tail <= 1e-3 * lead || tail <= 1e-8 * size;
-    Ok(Interpolant { slope, error, size, falls })
+    // Rounding and the like, which a shorter interval would only magnify.
+    let level = tail <= 1e-9 * size && before_tail <= 3.0 * tail;
+    Ok(Interpolant { slope, error, size, falls, level })
 }
