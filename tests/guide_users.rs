@@ -243,6 +243,96 @@ fn a_source_is_the_sum_of_its_modes() {
 }
 
 #[test]
+fn a_launched_field_is_the_sum_of_its_modes() {
+    // In a guide that is nearly straight: the textbook mode of V = q a, by bisection of
+    // kappa tan(kappa a) = m gamma (even) or -kappa cot(kappa a) = m gamma (odd).
+    for polarization in [Polarization::Te, Polarization::Tm] {
+        let slab = Slab { polarization, ..CHIP };
+        let guide = SlabGuide::new(slab).unwrap();
+        let width = 2.6 * guide.cutoff_half_width_nm(1).unwrap();
+        let q = 2.6 * 0.5 * PI / width;
+        let k = TAU / slab.vacuum_wavelength_nm * slab.cladding_index;
+        let m = match polarization {
+            Polarization::Te => 1.0,
+            Polarization::Tm => (slab.core_index / slab.cladding_index).powi(2),
+        };
+        let mode = |index: u32| {
+            let least = f64::from(index) * 0.5 * PI / width;
+            let (mut low, mut high) = (least, (least + 0.5 * PI / width * (1.0 - 1e-9)).min(q));
+            let excess = |kappa: f64| {
+                let angle = kappa * width - f64::from(index) * 0.5 * PI;
+                kappa * angle.tan() - m * (q * q - kappa * kappa).max(0.0).sqrt()
+            };
+            for _ in 0..80 {
+                let middle = 0.5 * (low + high);
+                if excess(middle) < 0.0 { low = middle } else { high = middle }
+            }
+            let gamma = (q * q - low * low).sqrt();
+            let shape = move |x: f64| {
+                let side = if index % 2 == 1 && x < 0.0 { -1.0 } else { 1.0 };
+                let across =
+                    |x: f64| if index % 2 == 1 { (low * x).sin() } else { (low * x).cos() };
+                let x = x.abs();
+                side * across(x.min(width)) * (-gamma * (x - width).max(0.0)).exp()
+            };
+            (gamma, shape)
+        };
+        let flat = Profile::from_fn(0.0, 1e6, move |s| (width - 1e-7 * s, -1e-7)).unwrap();
+        let ((g0, m0), (g1, m1), (g2, m2)) = (mode(0), mode(1), mode(2));
+        let turn = C::new(0.6, 0.8);
+        let light = guide.launch(flat, 0.0, |x| m0(x) + turn * m1(x) - 2.0 * m2(x)).unwrap();
+        let amplitudes = [C::from(1.0), turn, C::from(-2.0)];
+        // Each mode's norm by the midpoint rule.
+        for ((index, energy), a) in light.energies().zip(amplitudes) {
+            let own = |x: f64| [m0(x), m1(x), m2(x)][index as usize].powi(2);
+            let weighted = |x: f64| own(x) * if x < width { 1.0 } else { m };
+            let step = width / 4000.0;
+            let sum: f64 = (0..80_000).map(|j| weighted((f64::from(j) + 0.5) * step) * step).sum();
+            let exact = 2.0 * sum * a.norm_sqr();
+            assert!((energy / exact - 1.0).abs() < 1e-5, "mode {index}: {energy} {exact}");
+        }
+        for (range, x) in [(0.0, -900.0), (0.0, 1.3 * width), (2e4, 700.0), (3e4, -1.1 * width)] {
+            let parts = [(g0, m0(x)), (g1, m1(x)), (g2, m2(x))];
+            let carried = parts.iter().zip(amplitudes).map(|((gamma, shape), a)| {
+                a * C::from_polar(1.0, (k + gamma * gamma / (2.0 * k)) * range) * *shape
+            });
+            let exact: C = carried.sum();
+            let seen = light.value(range, x).unwrap();
+            assert!((seen - exact).norm() < 2e-3, "{range} {x}: {seen} {exact}");
+        }
+        assert!(light.passage(1).is_some() && light.passage(0).is_none());
+        assert!(light.value(2e6, 0.0).is_err() && light.value(f64::NAN, 0.0).is_err());
+        assert!(light.value(0.0, f64::NAN).is_err());
+    }
+    let refused = |range: f64, field: fn(f64) -> C| {
+        QuantumWell
+            .launch(Profile::plane(3.5, 0.01).unwrap(), range, field)
+            .err()
+            .map(|e| e.to_string())
+    };
+    assert!(refused(400.0, |_| C::from(1.0)).unwrap().contains("range of the launch"));
+    assert!(refused(0.0, |x| C::from(1.0 / (x - x))).unwrap().contains("field of the launch"));
+    assert!(refused(0.0, |x| C::from((1e9 * x).sin())).unwrap().contains("did not converge"));
+}
+
+#[test]
+fn a_ridge_cuts_modes_off_although_it_is_deep_behind() {
+    let guide = AcousticGuide::new(SEA).unwrap();
+    let ridge = Profile::from_fn(0.0, 3000.0, |s| {
+        let x = (s - 1800.0) / 700.0;
+        (60.0 - 40.0 * (-x * x).exp(), 80.0 * x * (-x * x).exp() / 700.0)
+    })
+    .unwrap();
+    // Cut-off depths 9, 27, 45 m (textbook modal relation); the crest lies in 20 m.
+    let modes: Vec<u32> = guide.cutoffs(&ridge).unwrap().iter().map(|(mode, _)| *mode).collect();
+    assert_eq!(modes, [3, 2]);
+    // Short of the crest the source's modes 2 and 3 are those that leave.
+    let source = guide.source(ridge, 0.0, 25.0).unwrap();
+    let lost = source.modes().filter(|mode| mode.cutoff_range().is_finite()).count();
+    assert_eq!((source.mode_count(), lost), (3, 2));
+}
+
+#[test]
 fn attenuation_in_the_water_attenuates() {
     // Far before cut-off nearly all the energy is in the water: dB per wavelength of the water.
     let sea = TwoLayer { frequency_hz: 1000.0, water_attenuation_db_per_wavelength: 0.1, ..SEA };

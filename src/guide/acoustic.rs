@@ -13,6 +13,7 @@
 //!
 //! Source: derived here; the cut-off depth is the textbook modal relation (common practice).
 
+use super::modes::counts;
 use super::passage::{Media, ModeNumber, Passage};
 use super::profile::Profile;
 use super::sensitivity::{Figure, Figures};
@@ -248,19 +249,7 @@ impl AcousticGuide {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn cutoffs(&self, profile: &Profile) -> Result<Vec<(u32, CutOffPlace)>, Error> {
-        let [from, to] = profile.ranges();
-        let from = if from.is_finite() { from } else { 0.0 };
-        let deep = self.mode_count(profile.width(from))?;
-        let end = profile.width(to);
-        let shallow = if end > 0.0 { self.mode_count(end)? } else { 0 };
-        if deep.saturating_sub(shallow) > 10_000 {
-            let remedy = "cut the deep part off the profile or take a lower frequency";
-            return Err(Error::domain(
-                "number of modes cut off",
-                f64::from(deep - shallow),
-                remedy,
-            ));
-        }
+        let [shallow, deep] = counts(profile, |depth| self.mode_count(depth))?;
         (shallow + 1..=deep)
             .rev()
             .map(|mode| Ok((mode, self.cutoff_place(mode, profile)?)))

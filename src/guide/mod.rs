@@ -15,7 +15,8 @@
 //!   nanometres), [`QuantumWell`] (states of a narrowing well, scaled). Each gives a [`Passage`]: the field
 //!   everywhere, its error figure, the [`Beam`] and its [`Footprint`], the energy left inside, levels along a line of
 //!   receivers. For sound there are besides [`ModeCutOff`] (the same with metres in the names) and
-//!   [`AcousticGuide::source`] (modes added with their phases). [`sensitivities`] differentiates any result with
+//!   [`AcousticGuide::source`] (modes added with their phases; [`SlabGuide::launch`] and [`QuantumWell::launch`] take
+//!   any field apart into modes). [`sensitivities`] differentiates any result with
 //!   respect to all figures.
 //!
 //! ```
@@ -100,6 +101,7 @@ mod contour;
 mod curve;
 mod dispersion;
 pub mod layer;
+mod modes;
 mod passage;
 mod profile;
 mod revival;
@@ -108,6 +110,7 @@ mod sensitivity;
 mod slab;
 mod source;
 mod station;
+mod symmetric;
 mod table;
 mod uniform;
 mod well;
@@ -123,5 +126,6 @@ pub use sensitivity::{Derivative, Figure, Figures, Sensitivities, sensitivities}
 pub use slab::{Polarization, Slab, SlabGuide};
 pub use source::SourceField;
 pub use station::Station;
+pub use symmetric::LaunchedField;
 pub use uniform::{Order, SlopingGuide, UniformField};
 pub use well::QuantumWell;

@@ -12,6 +12,7 @@
 //! distances of some depths and more.
 
 use super::acoustic::AcousticGuide;
+use super::modes::{check_count, counts, passage};
 use super::passage::{ModeNumber, Passage};
 use super::profile::Profile;
 use crate::{Complex64, Error};
@@ -62,20 +63,12 @@ impl AcousticGuide {
             return Err(Error::domain("source_depth_m", source_depth_m, remedy));
         }
         let count = self.mode_count(water)?;
-        if count == 0 || count > 200 {
-            let remedy = "choose a depth and frequency that trap 1 to 200 modes at the source";
-            return Err(Error::domain("modes trapped at the source", f64::from(count), remedy));
-        }
-        let end = profile.width(to);
-        let kept = if end > 0.0 { self.mode_count(end)? } else { 0 };
+        check_count(count)?;
+        let [kept, _] = counts(&profile, |depth| self.mode_count(depth))?;
         let media = self.media();
         let modes = (1..=count).map(|n| -> Result<_, Error> {
             let number = ModeNumber { n, even: false };
-            let passage = if n <= kept {
-                Passage::trapped(media, number, profile.clone(), source_range_m)?
-            } else {
-                Passage::new(media, number, profile.clone(), source_range_m)?
-            };
+            let passage = passage(media, number, &profile, source_range_m, n <= kept)?;
             let mode = passage.bound_shape(source_range_m)?;
             // Wavenumber along the track, and Psi_n(z_s) times the antinode.
             let along = (media.k * media.k + (media.q * mode.gamma).powi(2)).sqrt();
