@@ -96,6 +96,7 @@
 
 mod acoustic;
 mod adiabatic;
+mod along;
 mod beam;
 mod contour;
 mod curve;

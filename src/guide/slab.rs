@@ -166,7 +166,7 @@ impl SlabGuide {
     /// is taken apart into the modes trapped there, and each goes its way. Give the electric field in TE, the
     /// magnetic in TM.
     ///
-    /// Each mode has the phase of the one-way equation, `k + q^2 gamma^2/(2 k)` along the taper.
+    /// Each mode has the wavenumber of the wave equation along the taper ([`Passage::wide_angle_factor`]).
     ///
     /// Errors: [`Error::Domain`] for a range off the profile, and for more than 200 modes; [`Error::NotFinite`] for
     /// such a field, [`Error::NoConvergence`] for one with jumps; what [`along`](Self::along) refuses for a

@@ -8,10 +8,11 @@
 //! ```
 //!
 //! From there each runs along the track by itself: adiabatic while it is trapped, by the uniform field
-//! through its cut-off. Modes that the source's own depth does not trap are left out: the field is that at
+//! through its cut-off, with the wavenumber of the wave equation ([`Passage::wide_angle_factor`]). Modes that the source's own depth does not trap are left out: the field is that at
 //! distances of some depths and more.
 
 use super::acoustic::AcousticGuide;
+use super::along::wavenumber;
 use super::modes::{check_count, counts, passage};
 use super::passage::{ModeNumber, Passage};
 use super::profile::Profile;
@@ -71,7 +72,7 @@ impl AcousticGuide {
             let passage = passage(media, number, &profile, source_range_m, n <= kept)?;
             let mode = passage.bound_shape(source_range_m)?;
             // Wavenumber along the track, and Psi_n(z_s) times the antinode.
-            let along = (media.k * media.k + (media.q * mode.gamma).powi(2)).sqrt();
+            let (along, _) = wavenumber(&media, mode.gamma);
             let at_source = (mode.kappa * media.q * source_depth_m).sin();
             let weight = media.q * mode.antinode.powi(2) * at_source / along.sqrt();
             Ok((weight, passage))
@@ -91,6 +92,16 @@ impl SourceField {
         self.modes.iter().map(|(_, passage)| passage)
     }
 
+    /// With another limit for what may be neglected in a mode's field: see
+    /// [`SlopingGuide::tolerance`](super::SlopingGuide::tolerance). A mode that is refused somewhere takes the whole sum with it.
+    pub fn tolerance(self, tolerance: f64) -> Self {
+        let modes = self.modes.into_iter();
+        SourceField {
+            modes: modes.map(|(weight, mode)| (weight, mode.tolerance(tolerance))).collect(),
+            ..self
+        }
+    }
+
     /// Pressure over that at 1 m from the source in open water.
     ///
     /// Errors: [`Error::Domain`] for a place that is not beyond the source or off the profile; what
@@ -100,7 +111,8 @@ impl SourceField {
         Error::require_positive("distance from the source", distance)?;
         let mut sum = Complex64::new(0.0, 0.0);
         for (weight, passage) in &self.modes {
-            sum += weight * passage.value(range_m, depth_m)?;
+            let along = passage.wide_angle_factor(self.source_range_m, range_m)?;
+            sum += weight * along * passage.value(range_m, depth_m)?;
         }
         Ok(sum * Complex64::from_polar((TAU / distance).sqrt(), FRAC_PI_4))
     }

@@ -6,6 +6,7 @@
 //! relation, common practice), by the double-exponential rule (H. Takahasi, M. Mori, Publ. RIMS 9 (1974) 721,
 //! cited from memory) inside and as far outside as the mode reaches.
 
+use super::along::{simpson, wavenumber};
 use super::modes::{check_count, counts, passage};
 use super::passage::{Media, ModeNumber, Passage};
 use super::profile::Profile;
@@ -85,7 +86,12 @@ impl Symmetric {
                 let number = number(index);
                 let passage = passage(self.media, number, &profile, reference, index < kept)?;
                 let shape = passage.bound_shape(reference)?;
-                (Carried::Passage(passage), shape.antinode.re, shape.kappa.re, shape.gamma.re)
+                (
+                    Carried::Passage(Box::new(passage)),
+                    shape.antinode.re,
+                    shape.kappa.re,
+                    shape.gamma.re,
+                )
             };
             let Media { q_real: q, m, .. } = self.media;
             let even = index.is_multiple_of(2);
@@ -113,7 +119,7 @@ impl Symmetric {
             let energy = 2.0 * amplitude.norm_sqr() / (q * antinode.powi(2));
             Ok(Mode { index, even, amplitude, energy, carried })
         });
-        Ok(LaunchedField { modes: modes.collect::<Result<_, _>>()? })
+        Ok(LaunchedField { modes: modes.collect::<Result<_, _>>()?, from: reference })
     }
 }
 
@@ -130,6 +136,7 @@ fn number(index: u32) -> ModeNumber {
 #[derive(Clone, Debug)]
 pub struct LaunchedField {
     modes: Vec<Mode>,
+    from: f64,
 }
 
 #[derive(Clone, Debug)]
@@ -144,7 +151,7 @@ struct Mode {
 #[derive(Clone, Debug)]
 enum Carried {
     Lowest(Lowest),
-    Passage(Passage),
+    Passage(Box<Passage>),
 }
 
 impl LaunchedField {
@@ -158,7 +165,7 @@ impl LaunchedField {
     /// 0, which has no cut-off, and for modes that were not trapped at the start.
     pub fn passage(&self, index: u32) -> Option<&Passage> {
         self.modes.iter().find(|mode| mode.index == index).and_then(|mode| match &mode.carried {
-            Carried::Passage(passage) => Some(passage),
+            Carried::Passage(passage) => Some(passage.as_ref()),
             Carried::Lowest(_) => None,
         })
     }
@@ -173,7 +180,9 @@ impl LaunchedField {
             let side = if mode.even || x >= 0.0 { 1.0 } else { -1.0 };
             let value = match &mode.carried {
                 Carried::Lowest(lowest) => lowest.value(range, x.abs())?,
-                Carried::Passage(passage) => passage.value(range, x.abs())?,
+                Carried::Passage(passage) => {
+                    passage.value(range, x.abs())? * passage.wide_angle_factor(self.from, range)?
+                }
             };
             sum += mode.amplitude * value * side;
         }
@@ -220,27 +229,25 @@ impl Lowest {
             let remedy = "stay on the profile and before the guide's tip";
             return Err(Error::domain("range", range, remedy));
         }
-        let Media { k_real, q_real: q, carrier, .. } = self.media;
-        // q^2 gamma^2/(2 k) over the range, by Simpson's rule on the profile itself.
-        const STEPS: u32 = 200;
-        let step = (range - self.reference) / f64::from(STEPS);
-        let mut turned = 0.0;
-        for j in 0..=STEPS {
-            let weight = match j {
-                0 | STEPS => 1.0,
-                _ if j % 2 == 1 => 4.0,
-                _ => 2.0,
-            };
-            let (_, _, gamma) =
-                self.shape(self.profile.width(self.reference + step * f64::from(j)));
-            turned += weight * step / 3.0 * (q * gamma).powi(2) / (2.0 * k_real);
-        }
+        let (media, timelike) = (self.media, self.media.carrier == Complex64::new(0.0, 0.0));
+        // Wavenumber along the guide; for a well the rate of its phase, and no flux.
+        let along = |range: f64| {
+            let gamma = Complex64::from(self.shape(self.profile.width(range)).2);
+            if timelike {
+                (gamma * media.q).powi(2) / (media.k * 2.0)
+            } else {
+                wavenumber(&media, gamma).0
+            }
+        };
+        let phase = simpson(self.reference, range, |range| Ok(along(range)))?;
+        let flux =
+            if timelike { Complex64::from(1.0) } else { along(self.reference) / along(range) };
+        let q = media.q_real;
         let (antinode, kappa, gamma) = self.shape(width);
         let first = self.shape(self.profile.width(self.reference)).0;
         let across = (kappa * q * x.min(width)).cos();
         let tail = (-gamma * q * (x - width).max(0.0)).exp();
-        let phase = carrier * (range - self.reference) + turned;
-        Ok((I * phase).exp() * (antinode / first * across * tail))
+        Ok(flux.sqrt() * (I * phase).exp() * (antinode / first * across * tail))
     }
 }
 
