@@ -41,6 +41,28 @@
 //! # Ok::<(), merging_saddles::Error>(())
 //! ```
 //!
+//! # What to call
+//!
+//! | you ask | for sound | for light | for a well |
+//! | --- | --- | --- | --- |
+//! | how many modes are trapped | [`AcousticGuide::mode_count`] | [`SlabGuide::mode_count`] | [`QuantumWell::state_count`] |
+//! | where each of them is cut off | [`AcousticGuide::cutoffs`] | [`SlabGuide::cutoffs`] | [`QuantumWell::releases`] |
+//! | one mode along a profile | [`AcousticGuide::along`], [`ModeCutOff::passage`] | [`SlabGuide::along`] | [`QuantumWell::along`] |
+//! | a source, or any field sent in | [`AcousticGuide::source`] | [`SlabGuide::launch`] | [`QuantumWell::launch`] |
+//!
+//! and of one mode's [`Passage`], in the units of its guide:
+//!
+//! | you ask | call |
+//! | --- | --- |
+//! | over what range it leaves, how far the field reaches outside | [`Passage::layer_range`], [`Passage::layer_height`] |
+//! | the field at a place before or after, inside or outside | [`Passage::value`] |
+//! | levels along a line of receivers | [`Passage::levels_db`] |
+//! | how good that is | [`Passage::station`] |
+//! | energy left inside | [`Passage::energy_inside`] |
+//! | the beam's angle and width, where it arrives | [`Passage::beam`], [`Passage::footprint`] |
+//! | energy per angle or momentum | [`Passage::radiation_per_rad`], [`Passage::radiation_per_wavenumber`] |
+//! | a derivative of any of this | [`sensitivities`] |
+//!
 //! # How good the formulas are
 //!
 //! Relative L2 errors inside / outside against a solution of the one-way equation, at the layer's time

@@ -42,8 +42,20 @@ impl AcousticGuide {
     /// let track = Profile::from_samples(&[0.0, 1000.0, 2000.0, 3000.0], &[60.0, 48.0, 34.0, 18.0])?;
     /// let source = guide.source(track, 0.0, 20.0)?;
     /// assert_eq!(source.mode_count(), 3); // cut-off depths 9, 27, 45 m: textbook modal relation
+    /// assert_eq!(source.cut_off_modes().count(), 2); // all but the first
     /// let loss_db = source.transmission_loss_db(1500.0, 25.0)?;
     /// assert!(loss_db > 40.0 && loss_db < 75.0);
+    ///
+    /// // One mode over a bed as good as flat: cylindrical spreading, 3 dB for twice the distance (common practice).
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let flat = Profile::from_fn(0.0, 5000.0, |s| (20.0 - 1e-7 * s, -1e-7))?;
+    /// let source = guide.source(flat, 0.0, 8.0)?;
+    /// let more = source.transmission_loss_db(4000.0, 15.0)? - source.transmission_loss_db(2000.0, 15.0)?;
+    /// assert!((more - 10.0 * 2f64.log10()).abs() < 1e-3);
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn source(
@@ -87,9 +99,11 @@ impl SourceField {
         self.modes.len()
     }
 
-    /// The modes' passages, each relative to its antinode at the source.
-    pub fn modes(&self) -> impl Iterator<Item = &Passage> {
-        self.modes.iter().map(|(_, passage)| passage)
+    /// The passages of the modes that the track cuts off, lowest mode first, each relative to its antinode at the
+    /// source: beams, footprints, transition lengths, error figures.
+    pub fn cut_off_modes(&self) -> impl Iterator<Item = &Passage> {
+        let passages = self.modes.iter().map(|(_, passage)| passage);
+        passages.filter(|passage| passage.cutoff_range().is_finite())
     }
 
     /// With another limit for what may be neglected in a mode's field: see

@@ -161,13 +161,16 @@ impl LaunchedField {
         self.modes.iter().map(|mode| (mode.index, mode.energy))
     }
 
-    /// The passage of a mode that was sent in, relative to its largest value at the start; none for mode
-    /// 0, which has no cut-off, and for modes that were not trapped at the start.
+    /// The passage of a mode that was sent in and is cut off, relative to its largest value at the start; none for
+    /// mode 0, for modes that stay trapped and for those not trapped at the start.
     pub fn passage(&self, index: u32) -> Option<&Passage> {
-        self.modes.iter().find(|mode| mode.index == index).and_then(|mode| match &mode.carried {
-            Carried::Passage(passage) => Some(passage.as_ref()),
-            Carried::Lowest(_) => None,
-        })
+        self.modes
+            .iter()
+            .find_map(|mode| match &mode.carried {
+                Carried::Passage(passage) if mode.index == index => Some(passage.as_ref()),
+                _ => None,
+            })
+            .filter(|passage| passage.cutoff_range().is_finite())
     }
 
     /// The field at a range and position, in the unit of the field that was sent in; positions to both sides of the
