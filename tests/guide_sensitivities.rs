@@ -1,23 +1,19 @@
 //! Derivatives of results, and whether their error figures cover: closed forms, identities of scale, noise, jumps.
 
-mod coverage;
+#[path = "support/mixing.rs"]
+mod mixing;
+#[path = "support/sea.rs"]
+mod sea;
 
-use coverage::Random;
 use merging_saddles::Error;
 use merging_saddles::guide::{
     AcousticGuide, Derivative, Figure, Figures, Polarization, Profile, QuantumWell, Slab,
     SlabGuide, TwoLayer, level_db, sensitivities,
 };
+use mixing::Random;
+use sea::bay;
 
-const SEA: TwoLayer = TwoLayer {
-    frequency_hz: 100.0,
-    water_speed_m_per_s: 1500.0,
-    bottom_speed_m_per_s: 1650.0,
-    water_density_kg_per_m3: 1000.0,
-    bottom_density_kg_per_m3: 1800.0,
-    water_attenuation_db_per_wavelength: 0.0,
-    bottom_attenuation_db_per_wavelength: 0.3,
-};
+const SEA: TwoLayer = TwoLayer { bottom_attenuation_db_per_wavelength: 0.3, ..sea::SEA };
 
 /// One figure of the caller's own.
 #[derive(Clone, Copy, Debug)]
@@ -154,14 +150,6 @@ fn weak_contrast_costs_no_digits() {
             Derivative { value: 0.0, ..s.bottom_density_kg_per_m3 }
         );
     }
-}
-
-fn bay() -> Profile {
-    Profile::from_fn(0.0, 2200.0, |s| {
-        let (angle, rate) = (s / 1500.0, 1.0 / 1500.0);
-        (52.0 - 0.02 * s - 5.0 * angle.sin(), -0.02 - 5.0 * rate * angle.cos())
-    })
-    .unwrap()
 }
 
 /// Within the figures, and the sum of these.

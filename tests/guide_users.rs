@@ -1,20 +1,14 @@
 //! What users ask of a passage: profiles of their own, slabs, wells, beams, sources, sensitivities, refusals.
 
+#[path = "support/sea.rs"]
+mod sea;
+
 use merging_saddles::guide::{
     AcousticGuide, Passage, Polarization, Profile, QuantumWell, Slab, SlabGuide, TwoLayer,
 };
 use merging_saddles::{Complex64 as C, Error};
+use sea::{SEA, bay, depth};
 use std::f64::consts::{PI, TAU};
-
-const SEA: TwoLayer = TwoLayer {
-    frequency_hz: 100.0,
-    water_speed_m_per_s: 1500.0,
-    bottom_speed_m_per_s: 1650.0,
-    water_density_kg_per_m3: 1000.0,
-    bottom_density_kg_per_m3: 1800.0,
-    water_attenuation_db_per_wavelength: 0.0,
-    bottom_attenuation_db_per_wavelength: 0.0,
-};
 
 const CHIP: Slab = Slab {
     vacuum_wavelength_nm: 1550.0,
@@ -22,15 +16,6 @@ const CHIP: Slab = Slab {
     cladding_index: 1.444,
     polarization: Polarization::Te,
 };
-
-fn depth(s: f64) -> (f64, f64) {
-    let (angle, rate) = (s / 1500.0, 1.0 / 1500.0);
-    (52.0 - 0.02 * s - 5.0 * angle.sin(), -0.02 - 5.0 * rate * angle.cos())
-}
-
-fn bay() -> Profile {
-    Profile::from_fn(0.0, 2200.0, depth).unwrap()
-}
 
 #[test]
 fn samples_and_function_give_one_field() {

@@ -2,32 +2,15 @@
 //!
 //! The measure: an error of Psi against max(|Psi|, 0.1), one of a derivative against the same of its own.
 
+#[path = "support/table.rs"]
+mod table;
+
 use merging_saddles::special::airy::{airy, airy_real};
 use merging_saddles::special::umbilic::{Umbilic, elliptic, hyperbolic};
 use merging_saddles::{Complex64 as C, Error};
 use proptest::prelude::*;
 use std::f64::consts::PI;
-
-/// The numbers of a table in tests/data; the last column names the kind of point.
-fn table(name: &str) -> Vec<Vec<f64>> {
-    let path = format!("{}/tests/data/{name}.csv", env!("CARGO_MANIFEST_DIR"));
-    let mut reader =
-        csv::ReaderBuilder::new().comment(Some(b'#')).from_path(path).expect("the table is there");
-    reader
-        .records()
-        .map(|row| row.unwrap().iter().map(|x| x.parse().unwrap_or(f64::NAN)).collect())
-        .collect()
-}
-
-/// Prints maximum, 99th percentile and median, and checks the first two.
-fn judge(what: &str, mut errors: Vec<f64>, max: f64, p99: f64) {
-    assert!(errors.len() >= 40 && errors.iter().all(|e| !e.is_nan()), "{what}: NaN or too few");
-    errors.sort_by(f64::total_cmp);
-    let at = |q: f64| errors[((errors.len() - 1) as f64 * q).round() as usize];
-    let line = format!("{what}: max {:.2e}, p99 {:.2e}, median {:.2e}", at(1.0), at(0.99), at(0.5));
-    println!("{line}");
-    assert!(at(1.0) <= max && at(0.99) <= p99, "{line}");
-}
+use table::{judge, table};
 
 fn four(v: &Umbilic) -> [C; 4] {
     let [x, y, z] = v.derivatives;
