@@ -414,6 +414,9 @@ fn fast_and_bent_profiles_are_refused_with_eps() {
     assert!(Profile::from_fn(1.0, 0.0, |_| (1.0, 0.0)).is_err());
     // A function that returns NaN is no crash and no silent value.
     let broken = Profile::from_fn(0.0, 1000.0, |_| (f64::NAN, f64::NAN)).unwrap();
+    assert!(guide.cutoffs(&broken).is_err() && guide.source(broken.clone(), 0.0, 5.0).is_err());
+    assert!(SlabGuide::new(CHIP).unwrap().cutoffs(&broken).is_err());
+    assert!(QuantumWell.launch(broken.clone(), 0.0, C::from).is_err());
     assert!(guide.along(1, broken, 0.0).is_err());
     assert!(guide.along(0, bay(), 0.0).is_err() && guide.along(2, bay(), 1e6).is_err());
     assert!(QuantumWell.along(0, Profile::plane(3.0, 0.01).unwrap(), 0.0).is_err());

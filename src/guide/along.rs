@@ -18,23 +18,68 @@ pub(super) fn wavenumber(media: &Media, gamma: Complex64) -> (Complex64, Complex
     (full, -extra * extra / (k * 2.0 * (full + k).powi(2)))
 }
 
-/// The integral by Simpson's rule.
-pub(super) fn simpson<T>(
+/// Wavenumber along a guide, and the sum of a rate of phase from the first range on.
+#[derive(Clone, Debug)]
+pub(super) struct Along {
     from: f64,
-    to: f64,
-    f: impl Fn(f64) -> Result<T, Error>,
-) -> Result<T, Error>
-where
-    T: std::ops::Mul<f64, Output = T> + std::ops::Add<Output = T>,
-{
-    const STEPS: u32 = 200;
-    let step = (to - from) / f64::from(STEPS);
-    let mut sum = f(from)? + f(to)?;
-    for j in 1..STEPS {
-        let weight = if j % 2 == 1 { 4.0 } else { 2.0 };
-        sum = sum + f(from + step * f64::from(j))? * weight;
+    step: f64,
+    cells: Vec<Cell>,
+}
+
+/// Wavenumber and rate at the beginning, the middle and the end of a step, and the phase up to it.
+#[derive(Clone, Debug)]
+struct Cell {
+    wavenumber: [Complex64; 3],
+    rate: [Complex64; 3],
+    phase: Complex64,
+}
+
+impl Along {
+    /// From a function that returns the wavenumber and the rate at a range, in steps of Simpson's rule.
+    pub(super) fn new(
+        from: f64,
+        to: f64,
+        at: impl Fn(f64) -> Result<(Complex64, Complex64), Error>,
+    ) -> Result<Self, Error> {
+        const STEPS: u32 = 100;
+        let step = (to - from) / f64::from(STEPS);
+        let mut phase = Complex64::new(0.0, 0.0);
+        let mut left = at(from)?;
+        let mut cells = Vec::with_capacity(STEPS as usize);
+        for j in 0..STEPS {
+            let middle = at(from + step * (f64::from(j) + 0.5))?;
+            let right = at(if j + 1 == STEPS { to } else { from + step * f64::from(j + 1) })?;
+            let cell = Cell {
+                wavenumber: [left.0, middle.0, right.0],
+                rate: [left.1, middle.1, right.1],
+                phase,
+            };
+            phase += (left.1 + middle.1 * 4.0 + right.1) * (step / 6.0);
+            cells.push(cell);
+            left = right;
+        }
+        Ok(Along { from, step, cells })
     }
-    Ok(sum * (step / 3.0))
+
+    /// `(k_n(from)/k_n)^(1/2) exp(i phase)` at a range; beyond the last one as there.
+    pub(super) fn factor(&self, range: f64) -> Complex64 {
+        let places = if self.step == 0.0 { 0.0 } else { (range - self.from) / self.step };
+        let places = places.clamp(0.0, self.cells.len() as f64);
+        let j = (places as usize).min(self.cells.len().saturating_sub(1));
+        let (Some(first), Some(cell)) = (self.cells.first(), self.cells.get(j)) else {
+            return Complex64::from(1.0);
+        };
+        // A parabola through the three places of the step, and its integral.
+        let u = places - j as f64;
+        let bend = |[a, b, c]: [Complex64; 3]| {
+            (b * 4.0 - a * 3.0 - c, (a + c - b * 2.0) * 2.0) // linear and square coefficients
+        };
+        let (slope, square) = bend(cell.wavenumber);
+        let here = cell.wavenumber[0] + (slope + square * u) * u;
+        let (slope, square) = bend(cell.rate);
+        let part = (cell.rate[0] + (slope * 0.5 + square * (u / 3.0)) * u) * (u * self.step);
+        (first.wavenumber[0] / here).sqrt() * (I * (cell.phase + part)).exp()
+    }
 }
 
 impl Passage {
@@ -47,7 +92,7 @@ impl Passage {
     /// [`AcousticGuide::source`](super::AcousticGuide::source) and [`SlabGuide::launch`](super::SlabGuide::launch) have
     /// it in them, fields of one mode have not.
     ///
-    /// Cost: 200 adiabatic modes. Errors: [`Error::Domain`] for ranges off the profile, or where the mode is not bound
+    /// Cost: 201 adiabatic modes. Errors: [`Error::Domain`] for ranges off the profile, or where the mode is not bound
     /// at `from`.
     ///
     /// ```
@@ -71,15 +116,24 @@ impl Passage {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn wide_angle_factor(&self, from: f64, to: f64) -> Result<Complex64, Error> {
+        Ok(self.along(from, to)?.map_or(Complex64::from(1.0), |along| along.factor(to)))
+    }
+
+    /// The same for all ranges up to the last or to cut-off; none for a well.
+    pub(super) fn along(&self, from: f64, to: f64) -> Result<Option<Along>, Error> {
         let media = *self.media();
         if media.carrier == Complex64::new(0.0, 0.0) {
-            return Ok(Complex64::from(1.0));
+            return Ok(None);
         }
         let [first, last] = self.profile().ranges();
         for range in [from, to] {
             if !(range.is_finite() && range >= first && range <= last) {
                 return Err(Error::domain("range", range, "stay on the profile"));
             }
+        }
+        if from >= self.cutoff_range() {
+            let remedy = "begin where the mode is bound, before its cut-off";
+            return Err(Error::domain("range", from, remedy));
         }
         let at = |range: f64| -> Result<(Complex64, Complex64), Error> {
             match self.bound_shape(range) {
@@ -91,13 +145,6 @@ impl Passage {
                 Err(error) => Err(error),
             }
         };
-        if from >= self.cutoff_range() {
-            let remedy = "begin where the mode is bound, before its cut-off";
-            return Err(Error::domain("range", from, remedy));
-        }
-        let end = to.min(self.cutoff_range());
-        let (before, after) = (at(from)?.0, at(end)?.0);
-        let turned = simpson(from, end, |range| Ok(at(range)?.1))?;
-        Ok((before / after).sqrt() * (I * turned).exp())
+        Along::new(from, to.min(self.cutoff_range()), at).map(Some)
     }
 }

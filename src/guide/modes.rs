@@ -17,12 +17,16 @@ pub(super) fn counts(
     // The narrowest place, among the steps of `Profile::first_range_of_width`.
     const STEPS: u32 = 2000;
     let step = (to - from) / f64::from(STEPS);
-    let least = (1..=STEPS)
-        .map(|j| profile.width(if j == STEPS { to } else { from + step * f64::from(j) }))
-        .fold(f64::INFINITY, f64::min);
-    let first = profile.width(from);
-    let last = count(least.min(first).max(f64::MIN_POSITIVE))?;
-    let first = count(first)?;
+    let width = |range: f64| {
+        let width = profile.width(range);
+        Error::require_finite("width of the profile", width).map(|()| width)
+    };
+    let first = width(from)?;
+    let mut least = first;
+    for j in 1..=STEPS {
+        least = least.min(width(if j == STEPS { to } else { from + step * f64::from(j) })?);
+    }
+    let [last, first] = [count(least.max(f64::MIN_POSITIVE))?, count(first)?];
     if first.saturating_sub(last) > 10_000 {
         let remedy = "cut the wide part off the profile or take a longer wavelength";
         return Err(Error::domain("number of modes cut off", f64::from(first - last), remedy));

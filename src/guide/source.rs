@@ -12,7 +12,7 @@
 //! distances of some depths and more.
 
 use super::acoustic::AcousticGuide;
-use super::along::wavenumber;
+use super::along::{Along, wavenumber};
 use super::modes::{check_count, counts, passage};
 use super::passage::{ModeNumber, Passage};
 use super::profile::Profile;
@@ -22,8 +22,15 @@ use std::f64::consts::{FRAC_PI_4, TAU};
 /// The field of a point source as a sum of modes.
 #[derive(Clone, Debug)]
 pub struct SourceField {
-    modes: Vec<(Complex64, Passage)>,
+    modes: Vec<Mode>,
     source_range_m: f64,
+}
+
+#[derive(Clone, Debug)]
+struct Mode {
+    weight: Complex64,
+    passage: Passage,
+    along: Option<Along>,
 }
 
 impl AcousticGuide {
@@ -84,10 +91,11 @@ impl AcousticGuide {
             let passage = passage(media, number, &profile, source_range_m, n <= kept)?;
             let mode = passage.bound_shape(source_range_m)?;
             // Wavenumber along the track, and Psi_n(z_s) times the antinode.
-            let (along, _) = wavenumber(&media, mode.gamma);
+            let (here, _) = wavenumber(&media, mode.gamma);
             let at_source = (mode.kappa * media.q * source_depth_m).sin();
-            let weight = media.q * mode.antinode.powi(2) * at_source / along.sqrt();
-            Ok((weight, passage))
+            let weight = media.q * mode.antinode.powi(2) * at_source / here.sqrt();
+            let along = passage.along(source_range_m, to)?;
+            Ok(Mode { weight, passage, along })
         });
         Ok(SourceField { modes: modes.collect::<Result<_, _>>()?, source_range_m })
     }
@@ -102,7 +110,7 @@ impl SourceField {
     /// The passages of the modes that the track cuts off, lowest mode first, each relative to its antinode at the
     /// source: beams, footprints, transition lengths, error figures.
     pub fn cut_off_modes(&self) -> impl Iterator<Item = &Passage> {
-        let passages = self.modes.iter().map(|(_, passage)| passage);
+        let passages = self.modes.iter().map(|mode| &mode.passage);
         passages.filter(|passage| passage.cutoff_range().is_finite())
     }
 
@@ -110,10 +118,8 @@ impl SourceField {
     /// [`SlopingGuide::tolerance`](super::SlopingGuide::tolerance). A mode that is refused somewhere takes the whole sum with it.
     pub fn tolerance(self, tolerance: f64) -> Self {
         let modes = self.modes.into_iter();
-        SourceField {
-            modes: modes.map(|(weight, mode)| (weight, mode.tolerance(tolerance))).collect(),
-            ..self
-        }
+        let modes = modes.map(|mode| Mode { passage: mode.passage.tolerance(tolerance), ..mode });
+        SourceField { modes: modes.collect(), ..self }
     }
 
     /// Pressure over that at 1 m from the source in open water.
@@ -124,8 +130,8 @@ impl SourceField {
         let distance = range_m - self.source_range_m;
         Error::require_positive("distance from the source", distance)?;
         let mut sum = Complex64::new(0.0, 0.0);
-        for (weight, passage) in &self.modes {
-            let along = passage.wide_angle_factor(self.source_range_m, range_m)?;
+        for Mode { weight, passage, along } in &self.modes {
+            let along = along.as_ref().map_or(Complex64::from(1.0), |along| along.factor(range_m));
             sum += weight * along * passage.value(range_m, depth_m)?;
         }
         Ok(sum * Complex64::from_polar((TAU / distance).sqrt(), FRAC_PI_4))

@@ -6,14 +6,12 @@
 //! relation, common practice), by the double-exponential rule (H. Takahasi, M. Mori, Publ. RIMS 9 (1974) 721,
 //! cited from memory) inside and as far outside as the mode reaches.
 
-use super::along::{simpson, wavenumber};
+use super::along::{Along, wavenumber};
 use super::modes::{check_count, counts, passage};
 use super::passage::{Media, ModeNumber, Passage};
 use super::profile::Profile;
 use crate::{Complex64, Error};
 use std::f64::consts::FRAC_PI_2;
-
-const I: Complex64 = Complex64::new(0.0, 1.0);
 
 /// The guide; without losses.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -78,20 +76,18 @@ impl Symmetric {
         check_count(count)?;
         let [kept, _] = counts(&profile, |width| self.mode_count(width))?;
         let modes = (0..count).map(|index| -> Result<_, Error> {
-            let (carried, antinode, kappa, gamma) = if index == 0 {
+            let (carried, along, antinode, kappa, gamma) = if index == 0 {
                 let lowest = Lowest { media: self.media, profile: profile.clone(), reference };
+                let along = Along::new(reference, to, |range| Ok(lowest.rate(range)))?;
                 let (antinode, kappa, gamma) = lowest.shape(width);
-                (Carried::Lowest(lowest), antinode, kappa, gamma)
+                (Carried::Lowest(lowest), Some(along), antinode, kappa, gamma)
             } else {
                 let number = number(index);
                 let passage = passage(self.media, number, &profile, reference, index < kept)?;
+                let along = passage.along(reference, to)?;
                 let shape = passage.bound_shape(reference)?;
-                (
-                    Carried::Passage(Box::new(passage)),
-                    shape.antinode.re,
-                    shape.kappa.re,
-                    shape.gamma.re,
-                )
+                let carried = Carried::Passage(Box::new(passage));
+                (carried, along, shape.antinode.re, shape.kappa.re, shape.gamma.re)
             };
             let Media { q_real: q, m, .. } = self.media;
             let even = index.is_multiple_of(2);
@@ -117,7 +113,7 @@ impl Symmetric {
             let amplitude = q * antinode.powi(2) * (inside + outside * (m * across(width)));
             // Twice the energy of one side.
             let energy = 2.0 * amplitude.norm_sqr() / (q * antinode.powi(2));
-            Ok(Mode { index, even, amplitude, energy, carried })
+            Ok(Mode { index, even, amplitude, energy, carried, along })
         });
         Ok(LaunchedField { modes: modes.collect::<Result<_, _>>()?, from: reference })
     }
@@ -146,6 +142,7 @@ struct Mode {
     amplitude: Complex64,
     energy: f64,
     carried: Carried,
+    along: Option<Along>,
 }
 
 #[derive(Clone, Debug)]
@@ -176,18 +173,21 @@ impl LaunchedField {
     /// The field at a range and position, in the unit of the field that was sent in; positions to both sides of the
     /// middle.
     ///
-    /// Errors: [`Error::Domain`] for a place off the profile; what [`Passage::field`] refuses.
+    /// Errors: [`Error::Domain`] for a place off the profile or before the launch; what [`Passage::field`] refuses.
     pub fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
         let mut sum = Complex64::new(0.0, 0.0);
+        if range < self.from {
+            let remedy = "ask for ranges from that of the launch on";
+            return Err(Error::domain("range", range, remedy));
+        }
         for mode in &self.modes {
             let side = if mode.even || x >= 0.0 { 1.0 } else { -1.0 };
+            let along = mode.along.as_ref().map_or(Complex64::from(1.0), |a| a.factor(range));
             let value = match &mode.carried {
                 Carried::Lowest(lowest) => lowest.value(range, x.abs())?,
-                Carried::Passage(passage) => {
-                    passage.value(range, x.abs())? * passage.wide_angle_factor(self.from, range)?
-                }
+                Carried::Passage(passage) => passage.value(range, x.abs())?,
             };
-            sum += mode.amplitude * value * side;
+            sum += mode.amplitude * along * value * side;
         }
         Ok(sum)
     }
@@ -223,6 +223,19 @@ impl Lowest {
         ((2.0 * gamma / (outside + gamma * h)).sqrt(), kappa, gamma)
     }
 
+    /// Wavenumber along the guide and the rate of the phase; for a well the latter alone.
+    fn rate(&self, range: f64) -> (Complex64, Complex64) {
+        let media = &self.media;
+        let gamma = Complex64::from(self.shape(self.profile.width(range)).2);
+        if media.carrier == Complex64::new(0.0, 0.0) {
+            (Complex64::from(1.0), (gamma * media.q).powi(2) / (media.k * 2.0))
+        } else {
+            let (full, _) = wavenumber(media, gamma);
+            (full, full)
+        }
+    }
+
+    /// The mode's shape, relative to its largest value at the reference.
     fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
         Error::require_finite("range", range)?;
         Error::require_finite("position", x)?;
@@ -232,25 +245,12 @@ impl Lowest {
             let remedy = "stay on the profile and before the guide's tip";
             return Err(Error::domain("range", range, remedy));
         }
-        let (media, timelike) = (self.media, self.media.carrier == Complex64::new(0.0, 0.0));
-        // Wavenumber along the guide; for a well the rate of its phase, and no flux.
-        let along = |range: f64| {
-            let gamma = Complex64::from(self.shape(self.profile.width(range)).2);
-            if timelike {
-                (gamma * media.q).powi(2) / (media.k * 2.0)
-            } else {
-                wavenumber(&media, gamma).0
-            }
-        };
-        let phase = simpson(self.reference, range, |range| Ok(along(range)))?;
-        let flux =
-            if timelike { Complex64::from(1.0) } else { along(self.reference) / along(range) };
-        let q = media.q_real;
+        let q = self.media.q_real;
         let (antinode, kappa, gamma) = self.shape(width);
         let first = self.shape(self.profile.width(self.reference)).0;
         let across = (kappa * q * x.min(width)).cos();
         let tail = (-gamma * q * (x - width).max(0.0)).exp();
-        Ok(flux.sqrt() * (I * phase).exp() * (antinode / first * across * tail))
+        Ok((antinode / first * across * tail).into())
     }
 }
 
