@@ -9,7 +9,10 @@
 //! `psi = p exp(-i k_b s)`; the layer at cut-off has `L_z = (2 k_b Gamma)^(-1/3)`,
 //! `L_s = 2 k_b L_z^2`, `Gamma = q^2 g/m`. Attenuation makes `k_b` and `q`, and with them every
 //! length and the place of cut-off, complex; the lengths returned here are those without loss, the
-//! fields have it all.
+//! fields have it all. They are those of the one-way equation: where the bottom alone is lossy a mode grows far
+//! before its cut-off, at `(k_n^2/k_b^2 - 1)/2` of the bottom's own rate (0.1 for 1500 over 1650 m/s), and phases
+//! run by `(k_n - k_b)^2/(2 k_b)` too fast. [`Passage::wide_angle_factor`] takes both away;
+//! [`AcousticGuide::source`] has it in it.
 //!
 //! Source: derived here; the cut-off depth is the textbook modal relation (common practice).
 
@@ -420,7 +423,8 @@ impl ModeCutOff {
     ///
     /// The error figure is that of the integral; the formula itself is good to about `eps^2` in the
     /// bottom (0.2 % at `eps = 0.02`, 1 to 4 % at 0.1) and somewhat less in the water late after cut-off,
-    /// beside a constant phase of about `eps/2`: [`Passage::departure`] measures it.
+    /// beside a constant phase of about `eps/2`: [`Passage::departure`] measures it. For levels far from the
+    /// reference multiply by [`Passage::wide_angle_factor`], the more so with losses.
     ///
     /// Cost and errors: as [`Passage::field`].
     pub fn pressure_uniform(&self, range_m: f64, depth_m: f64) -> Result<Estimate, Error> {

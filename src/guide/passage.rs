@@ -490,7 +490,8 @@ impl Passage {
     }
 
     /// Levels in dB re the incoming mode along a line of receivers `(range, x)`, each by the form that holds
-    /// there ([`value`](Self::value)).
+    /// there ([`value`](Self::value)). With losses add the level of [`wide_angle_factor`](Self::wide_angle_factor) from the
+    /// reference on.
     ///
     /// Errors: each receiver has its own.
     ///
