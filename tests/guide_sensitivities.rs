@@ -181,7 +181,8 @@ fn a_sea_depends_on_ratios() {
     for (name, quantity, bed, bar) in [
         ("level, bay", level, bay(), 1e-8),
         ("axis, plane", axis, plane.clone(), 1e-3),
-        ("loss, plane", loss, plane, 1e-8),
+        // Of a sum's values six digits are asked for; the noise of the rest is in the figures.
+        ("loss, plane", loss, plane, 1e-5),
     ] {
         let per = sensitivities(&SEA, &bed, quantity).unwrap().per;
         let speeds = [
