@@ -1,9 +1,11 @@
 //! Time per point of the cuspoid integrals, over fixed sets of points.
 
+mod support;
+
 use criterion::{Criterion, criterion_group, criterion_main};
 use merging_saddles::Complex64;
 use merging_saddles::special::cuspoid;
-use std::hint::black_box;
+use support::run;
 
 /// Points spread over a box (fractional parts of multiples of irrational numbers).
 fn points<const K: usize>(half: [f64; K], imaginary: f64) -> Vec<[Complex64; K]> {
@@ -22,17 +24,6 @@ fn points<const K: usize>(half: [f64; K], imaginary: f64) -> Vec<[Complex64; K]>
             })
         })
         .collect()
-}
-
-/// One figure per set: the time of 1024 points.
-fn run<T: Copy, U>(c: &mut Criterion, name: &str, points: &[T], f: impl Fn(T) -> U) {
-    c.bench_function(name, |b| {
-        b.iter(|| {
-            for &p in points {
-                black_box(f(black_box(p)));
-            }
-        })
-    });
 }
 
 fn all(c: &mut Criterion) {

@@ -1,38 +1,15 @@
 //! Time per point of the Faddeeva function and its kin, over fixed sets of points.
 
+mod support;
+
 use criterion::{Criterion, criterion_group, criterion_main};
 use merging_saddles::Complex64;
 use merging_saddles::special::faddeeva::*;
-use std::hint::black_box;
-
-/// Points spread over the disc `|z| <= radius` (golden-angle spiral).
-fn disc(radius: f64) -> Vec<Complex64> {
-    (0..1024)
-        .map(|i| {
-            let r = radius * ((i as f64 + 0.5) / 1024.0).sqrt();
-            Complex64::from_polar(r, 2.399_963_229_728_653 * i as f64)
-        })
-        .collect()
-}
+use support::{disc, line, run};
 
 /// The same in the upper half plane.
 fn half_disc(radius: f64) -> Vec<Complex64> {
     disc(radius).into_iter().map(|z| Complex64::new(z.re, z.im.abs())).collect()
-}
-
-fn line(low: f64, high: f64) -> Vec<f64> {
-    (0..1024).map(|i| low + (high - low) * ((i * 389 % 1024) as f64 + 0.5) / 1024.0).collect()
-}
-
-/// One figure per set: the time of 1024 points.
-fn run<T: Copy, U>(c: &mut Criterion, name: &str, points: &[T], f: impl Fn(T) -> U) {
-    c.bench_function(name, |b| {
-        b.iter(|| {
-            for &p in points {
-                black_box(f(black_box(p)));
-            }
-        })
-    });
 }
 
 fn all(c: &mut Criterion) {

@@ -4,29 +4,12 @@
 //! `S = max(|Psi|, |dPsi/dx_m| / T^m over m)`, an error of Psi counts against S, one of
 //! `dPsi/dx_m` against `S T^m`.
 
+#[path = "support/table.rs"]
+mod table;
+
 use merging_saddles::Complex64;
 use merging_saddles::special::cuspoid::{self, Cuspoid};
-
-/// The rows of a table in tests/data; fields that are no numbers are left out.
-fn table(name: &str) -> Vec<Vec<f64>> {
-    let path = format!("{}/tests/data/{name}.csv", env!("CARGO_MANIFEST_DIR"));
-    let mut reader =
-        csv::ReaderBuilder::new().comment(Some(b'#')).from_path(path).expect("the table is there");
-    reader
-        .records()
-        .map(|row| row.unwrap().iter().filter_map(|x| x.parse().ok()).collect())
-        .collect()
-}
-
-/// Prints maximum, 99th percentile and median, and checks the first two.
-fn judge(what: &str, mut errors: Vec<f64>, max: f64, p99: f64) {
-    assert!(errors.len() >= 40 && errors.iter().all(|e| !e.is_nan()), "{what}: NaN or too few");
-    errors.sort_by(f64::total_cmp);
-    let at = |q: f64| errors[((errors.len() - 1) as f64 * q).round() as usize];
-    let line = format!("{what}: max {:.2e}, p99 {:.2e}, median {:.2e}", at(1.0), at(0.99), at(0.5));
-    println!("{line}");
-    assert!(at(1.0) <= max && at(0.99) <= p99, "{line}");
-}
+use table::{judge, table};
 
 /// Complex numbers from pairs.
 fn complex(row: &[f64]) -> Vec<Complex64> {

@@ -1,19 +1,12 @@
 //! The two-layer sea: figures of the trade, refusals, losses, and the two formulas side by side.
 
+#[path = "support/sea.rs"]
+mod sea;
+
 use merging_saddles::guide::{AcousticGuide, ModeCutOff, Order, Profile, TwoLayer, level_db};
 use merging_saddles::{Complex64 as C, Error};
+use sea::SEA;
 use std::f64::consts::{PI, TAU};
-
-/// 100 Hz, 1500 over 1650 m/s, densities 1 to 1.8.
-const SEA: TwoLayer = TwoLayer {
-    frequency_hz: 100.0,
-    water_speed_m_per_s: 1500.0,
-    bottom_speed_m_per_s: 1650.0,
-    water_density_kg_per_m3: 1000.0,
-    bottom_density_kg_per_m3: 1800.0,
-    water_attenuation_db_per_wavelength: 0.0,
-    bottom_attenuation_db_per_wavelength: 0.0,
-};
 
 fn cut_off(sea: TwoLayer, mode: u32, gradient: f64) -> ModeCutOff {
     let guide = AcousticGuide::new(sea).unwrap();

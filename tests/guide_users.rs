@@ -1,21 +1,14 @@
 //! What users ask of a passage: profiles of their own, slabs, wells, beams, sources, sensitivities, refusals.
 
+#[path = "support/sea.rs"]
+mod sea;
+
 use merging_saddles::guide::{
     AcousticGuide, Passage, Polarization, Profile, QuantumWell, Slab, SlabGuide, TwoLayer,
-    sensitivities,
 };
 use merging_saddles::{Complex64 as C, Error};
+use sea::{SEA, bay, depth};
 use std::f64::consts::{PI, TAU};
-
-const SEA: TwoLayer = TwoLayer {
-    frequency_hz: 100.0,
-    water_speed_m_per_s: 1500.0,
-    bottom_speed_m_per_s: 1650.0,
-    water_density_kg_per_m3: 1000.0,
-    bottom_density_kg_per_m3: 1800.0,
-    water_attenuation_db_per_wavelength: 0.0,
-    bottom_attenuation_db_per_wavelength: 0.0,
-};
 
 const CHIP: Slab = Slab {
     vacuum_wavelength_nm: 1550.0,
@@ -23,15 +16,6 @@ const CHIP: Slab = Slab {
     cladding_index: 1.444,
     polarization: Polarization::Te,
 };
-
-fn depth(s: f64) -> (f64, f64) {
-    let (angle, rate) = (s / 1500.0, 1.0 / 1500.0);
-    (52.0 - 0.02 * s - 5.0 * angle.sin(), -0.02 - 5.0 * rate * angle.cos())
-}
-
-fn bay() -> Profile {
-    Profile::from_fn(0.0, 2200.0, depth).unwrap()
-}
 
 #[test]
 fn samples_and_function_give_one_field() {
@@ -171,7 +155,7 @@ fn scales_do_not_matter() {
 fn a_beam_has_an_axis_a_width_and_a_footprint() {
     let guide = AcousticGuide::new(SEA).unwrap();
     // The gentler the slope, the nearer the beam is to that of the layer: 4 p^2 exp(-(4/3) p^3), half its
-    // maximum at p = 0.3954 and 1.2494 (derived relation, solved by bisection here).
+    // maximum at p = 0.4228 and 1.1701 (derived relation, solved by bisection here).
     let half = |mut inner: f64, mut outer: f64| {
         let density = |p: f64| 4.0 * p * p * (-4.0 / 3.0 * p.powi(3)).exp();
         for _ in 0..60 {
@@ -232,43 +216,111 @@ fn a_source_is_the_sum_of_its_modes() {
         let norm =
             0.5 * h - (2.0 * k * h).sin() / (4.0 * k) + m * (k * h).sin().powi(2) / (2.0 * gamma);
         let along = (kw * kw - k * k).sqrt();
-        // Phases by the one-way equation, k_b + gamma^2/(2 k_b).
-        let phase = (kb + gamma * gamma / (2.0 * kb)) * range;
-        sum += C::from_polar((k * 15.0).sin() * (k * depth).sin() / norm / along.sqrt(), phase);
+        sum += C::from_polar(
+            (k * 15.0).sin() * (k * depth).sin() / norm / along.sqrt(),
+            along * range,
+        );
     }
     let expected = sum * C::from_polar((TAU / range).sqrt(), 0.25 * PI);
     let seen = source.pressure(range, depth).unwrap();
-    assert!((seen / expected - 1.0).norm() < 0.01, "{seen} {expected}");
+    assert!((seen / expected - 1.0).norm() < 2e-3, "{seen} {expected}");
     let loss = source.transmission_loss_db(range, depth).unwrap();
     assert!((loss + 20.0 * expected.norm().log10()).abs() < 0.1);
     assert!(guide.source(bay(), 0.0, 60.0).is_err() && guide.source(bay(), -1.0, 10.0).is_err());
 }
 
 #[test]
-fn sensitivities_of_a_level_and_a_range() {
-    let slope = 0.02f64.atan();
-    let range = |sea: TwoLayer, slope: f64| -> Result<f64, Error> {
-        AcousticGuide::new(sea)?
-            .cutoff_place(1, &Profile::plane(60.0, slope.tan())?)
-            .map(|p| p.range_m)
+fn a_launched_field_is_the_sum_of_its_modes() {
+    // In a guide that is nearly straight: the textbook mode of V = q a, by bisection of
+    // kappa tan(kappa a) = m gamma (even) or -kappa cot(kappa a) = m gamma (odd).
+    for polarization in [Polarization::Te, Polarization::Tm] {
+        let slab = Slab { polarization, ..CHIP };
+        let guide = SlabGuide::new(slab).unwrap();
+        let width = 2.6 * guide.cutoff_half_width_nm(1).unwrap();
+        let q = 2.6 * 0.5 * PI / width;
+        let k = TAU / slab.vacuum_wavelength_nm * slab.cladding_index;
+        let m = match polarization {
+            Polarization::Te => 1.0,
+            Polarization::Tm => (slab.core_index / slab.cladding_index).powi(2),
+        };
+        let mode = |index: u32| {
+            let least = f64::from(index) * 0.5 * PI / width;
+            let (mut low, mut high) = (least, (least + 0.5 * PI / width * (1.0 - 1e-9)).min(q));
+            let excess = |kappa: f64| {
+                let angle = kappa * width - f64::from(index) * 0.5 * PI;
+                kappa * angle.tan() - m * (q * q - kappa * kappa).max(0.0).sqrt()
+            };
+            for _ in 0..80 {
+                let middle = 0.5 * (low + high);
+                if excess(middle) < 0.0 { low = middle } else { high = middle }
+            }
+            let gamma = (q * q - low * low).sqrt();
+            let shape = move |x: f64| {
+                let side = if index % 2 == 1 && x < 0.0 { -1.0 } else { 1.0 };
+                let across =
+                    |x: f64| if index % 2 == 1 { (low * x).sin() } else { (low * x).cos() };
+                let x = x.abs();
+                side * across(x.min(width)) * (-gamma * (x - width).max(0.0)).exp()
+            };
+            (gamma, shape)
+        };
+        let flat = Profile::from_fn(0.0, 1e6, move |s| (width - 1e-7 * s, -1e-7)).unwrap();
+        let ((g0, m0), (g1, m1), (g2, m2)) = (mode(0), mode(1), mode(2));
+        let turn = C::new(0.6, 0.8);
+        let light = guide.launch(flat, 0.0, |x| m0(x) + turn * m1(x) - 2.0 * m2(x)).unwrap();
+        let amplitudes = [C::from(1.0), turn, C::from(-2.0)];
+        // Each mode's norm by the midpoint rule.
+        for ((index, energy), a) in light.energies().zip(amplitudes) {
+            let own = |x: f64| [m0(x), m1(x), m2(x)][index as usize].powi(2);
+            let weighted = |x: f64| own(x) * if x < width { 1.0 } else { m };
+            let step = width / 4000.0;
+            let sum: f64 = (0..80_000).map(|j| weighted((f64::from(j) + 0.5) * step) * step).sum();
+            let exact = 2.0 * sum * a.norm_sqr();
+            assert!((energy / exact - 1.0).abs() < 1e-5, "mode {index}: {energy} {exact}");
+        }
+        for (range, x) in [(0.0, -900.0), (0.0, 1.3 * width), (2e4, 700.0), (3e4, -1.1 * width)] {
+            let parts = [(g0, m0(x)), (g1, m1(x)), (g2, m2(x))];
+            let carried = parts.iter().zip(amplitudes).map(|((gamma, shape), a)| {
+                a * C::from_polar(1.0, k.hypot(*gamma) * range) * *shape
+            });
+            let exact: C = carried.sum();
+            let seen = light.value(range, x).unwrap();
+            assert!((seen - exact).norm() < 2e-3, "{range} {x}: {seen} {exact}");
+        }
+        assert!((0..4).all(|index| light.passage(index).is_none()));
+        assert!(light.value(2e6, 0.0).is_err() && light.value(f64::NAN, 0.0).is_err());
+        assert!(light.value(0.0, f64::NAN).is_err());
+    }
+    let state =
+        QuantumWell.launch(Profile::plane(3.5, 0.01).unwrap(), 0.0, |x| C::from((-x * x).exp()));
+    let state = state.unwrap();
+    assert!(state.passage(0).is_none() && state.passage(3).is_none());
+    assert!((state.passage(2).unwrap().cutoff_width() - PI).abs() < 1e-12);
+    let refused = |range: f64, field: fn(f64) -> C| {
+        QuantumWell
+            .launch(Profile::plane(3.5, 0.01).unwrap(), range, field)
+            .err()
+            .map(|e| e.to_string())
     };
-    let s = sensitivities(SEA, slope, range).unwrap();
-    // s = (60 - h_c)/tan(slope), h_c inversely proportional to the frequency.
-    let depth = AcousticGuide::new(SEA).unwrap().cutoff_depth_m(1).unwrap();
-    assert!((s.per_frequency_hz / (depth / 100.0 / 0.02) - 1.0).abs() < 1e-7);
-    let per_slope = -(60.0 - depth) / slope.sin().powi(2);
-    assert!((s.per_slope_rad / per_slope - 1.0).abs() < 1e-7);
-    assert!(s.per_water_density_kg_per_m3 == 0.0);
-    // A level in the bottom, with losses.
-    let level = |sea: TwoLayer, slope: f64| {
-        let run = AcousticGuide::new(sea)?.upslope(1, slope, 20.0)?;
-        let p = run.pressure_uniform(200.0, 60.0)?;
-        Ok(merging_saddles::guide::level_db(p.value))
-    };
-    let s = sensitivities(SEA, slope, level).unwrap();
-    println!("{s:?}");
-    assert!(s.per_bottom_attenuation_db_per_wavelength < -1.0);
-    assert!(s.per_water_attenuation_db_per_wavelength < 0.0);
+    assert!(refused(400.0, |_| C::from(1.0)).unwrap().contains("range of the launch"));
+    assert!(refused(0.0, |x| C::from(1.0 / (x - x))).unwrap().contains("field of the launch"));
+    assert!(refused(0.0, |x| C::from((1e9 * x).sin())).unwrap().contains("did not converge"));
+}
+
+#[test]
+fn a_ridge_cuts_modes_off_although_it_is_deep_behind() {
+    let guide = AcousticGuide::new(SEA).unwrap();
+    let ridge = Profile::from_fn(0.0, 3000.0, |s| {
+        let x = (s - 1800.0) / 700.0;
+        (60.0 - 40.0 * (-x * x).exp(), 80.0 * x * (-x * x).exp() / 700.0)
+    })
+    .unwrap();
+    // Cut-off depths 9, 27, 45 m (textbook modal relation); the crest lies in 20 m.
+    let modes: Vec<u32> = guide.cutoffs(&ridge).unwrap().iter().map(|(mode, _)| *mode).collect();
+    assert_eq!(modes, [3, 2]);
+    // Short of the crest the source's modes 2 and 3 are those that leave.
+    let source = guide.source(ridge, 0.0, 25.0).unwrap();
+    assert_eq!((source.mode_count(), source.cut_off_modes().count()), (3, 2));
 }
 
 #[test]
@@ -283,6 +335,54 @@ fn attenuation_in_the_water_attenuates() {
     let seen = 20.0 * (a / b).log10() / (150.0 / 1.5);
     println!("{seen} dB per wavelength");
     assert!((seen - 0.1).abs() < 0.02, "{seen}");
+}
+
+#[test]
+fn losses_are_those_of_the_modes() {
+    // Textbook perturbation of a mode's wavenumber: Im k_n = integral of k k'' psi^2/rho / (k_n integral of psi^2/rho),
+    // on a bed so gentle that the depth is the same over the distance. kappa cot(kappa h) = -m gamma by bisection.
+    let (depth, slope) = (40.0, 1e-5);
+    for (water, bottom) in [(0.0, 0.2), (0.1, 0.0)] {
+        let sea = TwoLayer {
+            water_attenuation_db_per_wavelength: water,
+            bottom_attenuation_db_per_wavelength: bottom,
+            ..SEA
+        };
+        let guide = AcousticGuide::new(sea).unwrap();
+        let (kw, kb) = (guide.water_wavenumber(), guide.bottom_wavenumber().re);
+        let (q, m) = ((kw * kw - kb * kb).sqrt(), guide.density_ratio());
+        let (mut low, mut high) = (0.5 * PI / depth, PI / depth);
+        for _ in 0..80 {
+            let k = 0.5 * (low + high);
+            if k / (k * depth).tan() + m * (q * q - k * k).max(0.0).sqrt() > 0.0 {
+                low = k
+            } else {
+                high = k
+            }
+        }
+        let gamma = (q * q - low * low).sqrt();
+        let inside = 0.5 * depth - (2.0 * low * depth).sin() / (4.0 * low);
+        let outside = m * (low * depth).sin().powi(2) / (2.0 * gamma);
+        let along = (kw * kw - low * low).sqrt();
+        let loss = |db: f64| db / (40.0 * PI * std::f64::consts::LOG10_E);
+        let expected = (kw * kw * loss(water) * inside + kb * kb * loss(bottom) * outside)
+            / (along * (inside + outside));
+        let run = guide.upslope(1, slope, depth).unwrap();
+        let from = (run.cutoff_depth_m() - depth) / slope.tan();
+        let to = from + 500.0;
+        let loss = |passage: &Passage| {
+            let [a, b] = [from, to].map(|s| passage.adiabatic(s, 0.4 * depth).unwrap().norm());
+            (a / b).ln() / 500.0
+        };
+        let narrow = run.passage().clone().paraxial().unwrap();
+        let (seen, without) = (loss(run.passage()), loss(&narrow));
+        println!(
+            "{water} {bottom}: {seen:.3e} (one-way {without:.3e}), expected {expected:.3e} Np/m"
+        );
+        assert!((seen / expected - 1.0).abs() < 0.02);
+        // The one-way equation is far off where the bottom alone is lossy.
+        assert!(water > 0.0 || without < 0.0);
+    }
 }
 
 #[test]
@@ -315,6 +415,9 @@ fn fast_and_bent_profiles_are_refused_with_eps() {
     assert!(Profile::from_fn(1.0, 0.0, |_| (1.0, 0.0)).is_err());
     // A function that returns NaN is no crash and no silent value.
     let broken = Profile::from_fn(0.0, 1000.0, |_| (f64::NAN, f64::NAN)).unwrap();
+    assert!(guide.cutoffs(&broken).is_err() && guide.source(broken.clone(), 0.0, 5.0).is_err());
+    assert!(SlabGuide::new(CHIP).unwrap().cutoffs(&broken).is_err());
+    assert!(QuantumWell.launch(broken.clone(), 0.0, C::from).is_err());
     assert!(guide.along(1, broken, 0.0).is_err());
     assert!(guide.along(0, bay(), 0.0).is_err() && guide.along(2, bay(), 1e6).is_err());
     assert!(QuantumWell.along(0, Profile::plane(3.0, 0.01).unwrap(), 0.0).is_err());

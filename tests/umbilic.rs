@@ -2,46 +2,33 @@
 //!
 //! The measure: an error of Psi against max(|Psi|, 0.1), one of a derivative against the same of its own.
 
+#[path = "support/table.rs"]
+mod table;
+
 use merging_saddles::special::airy::{airy, airy_real};
 use merging_saddles::special::umbilic::{Umbilic, elliptic, hyperbolic};
 use merging_saddles::{Complex64 as C, Error};
 use proptest::prelude::*;
 use std::f64::consts::PI;
-
-/// The numbers of a table in tests/data; the last column names the kind of point.
-fn table(name: &str) -> Vec<Vec<f64>> {
-    let path = format!("{}/tests/data/{name}.csv", env!("CARGO_MANIFEST_DIR"));
-    let mut reader =
-        csv::ReaderBuilder::new().comment(Some(b'#')).from_path(path).expect("the table is there");
-    reader
-        .records()
-        .map(|row| row.unwrap().iter().map(|x| x.parse().unwrap_or(f64::NAN)).collect())
-        .collect()
-}
-
-/// Prints maximum, 99th percentile and median, and checks the first two.
-fn judge(what: &str, mut errors: Vec<f64>, max: f64, p99: f64) {
-    assert!(errors.len() >= 40 && errors.iter().all(|e| !e.is_nan()), "{what}: NaN or too few");
-    errors.sort_by(f64::total_cmp);
-    let at = |q: f64| errors[((errors.len() - 1) as f64 * q).round() as usize];
-    let line = format!("{what}: max {:.2e}, p99 {:.2e}, median {:.2e}", at(1.0), at(0.99), at(0.5));
-    println!("{line}");
-    assert!(at(1.0) <= max && at(0.99) <= p99, "{line}");
-}
+use table::{judge, table};
 
 fn four(v: &Umbilic) -> [C; 4] {
     let [x, y, z] = v.derivatives;
     [v.psi, x, y, z]
 }
 
+/// The largest error of the integral and its derivatives in a row of a table.
+fn error(v: &Umbilic, row: &[f64]) -> f64 {
+    let exact: Vec<C> = row[3..11].chunks(2).map(|p| C::new(p[0], p[1])).collect();
+    let error = |(v, e): (C, &C)| (v - e).norm() / e.norm().max(0.1);
+    four(v).into_iter().zip(&exact).map(error).fold(0.0, f64::max)
+}
+
 fn against(name: &str, function: fn(f64, f64, f64) -> Result<Umbilic, Error>) {
     let mut errors = vec![];
     for row in table(name) {
         let v = function(row[0], row[1], row[2]).expect("a value");
-        let exact: Vec<C> = row[3..11].chunks(2).map(|p| C::new(p[0], p[1])).collect();
-        let error = |(v, e): (C, &C)| (v - e).norm() / e.norm().max(0.1);
-        let e = four(&v).into_iter().zip(&exact).map(error).fold(0.0, f64::max);
-        errors.push(e);
+        errors.push(error(&v, &row));
     }
     judge(name, errors, 2e-14, 1e-14);
 }
@@ -52,10 +39,7 @@ fn both_kinds(name: &str, bar: f64) {
     for row in table(name) {
         let kind = row[11] as usize;
         let v = [elliptic, hyperbolic][kind](row[0], row[1], row[2]).expect("a value");
-        let exact: Vec<C> = row[3..11].chunks(2).map(|p| C::new(p[0], p[1])).collect();
-        let error = |(v, e): (C, &C)| (v - e).norm() / e.norm().max(0.1);
-        let e = four(&v).into_iter().zip(&exact).map(error).fold(0.0, f64::max);
-        errors[kind].push(e);
+        errors[kind].push(error(&v, &row));
     }
     let [e, h] = errors;
     judge(&format!("elliptic, {name}"), e, bar, bar);
@@ -153,33 +137,32 @@ fn second(f: fn(f64, f64, f64) -> Result<Umbilic, Error>, p: [f64; 3], by: usize
     sum
 }
 
+/// Psi(x, y, z) is the conjugate of Psi(x, y, -z): DLMF 36.2.24.
+fn conjugate(x: f64, y: f64, z: f64) -> Result<(), TestCaseError> {
+    for f in [elliptic, hyperbolic] {
+        let (a, b) = (f(x, y, z).expect("a value"), f(x, y, -z).expect("a value"));
+        for (k, (a, b)) in four(&a).iter().zip(four(&b)).enumerate() {
+            let b = if k == 3 { -b.conj() } else { b.conj() };
+            prop_assert!(close(*a, b, a.norm()), "{a} {b}");
+        }
+    }
+    Ok(())
+}
+
 proptest! {
     #![proptest_config(ProptestConfig::with_cases(300))]
 
-    /// Psi(x, y, z) is the conjugate of Psi(x, y, -z): DLMF 36.2.24.
     #[test]
     fn conjugate_in_z([x, y, z] in parameters()) {
-        for f in [elliptic, hyperbolic] {
-            let (a, b) = (f(x, y, z).expect("a value"), f(x, y, -z).expect("a value"));
-            for (k, (a, b)) in four(&a).iter().zip(four(&b)).enumerate() {
-                let b = if k == 3 { -b.conj() } else { b.conj() };
-                prop_assert!(close(*a, b, a.norm()), "{a} {b}");
-            }
-        }
+        conjugate(x, y, z)?;
     }
 
-    /// The same at any size that is answered.
+    /// At any size that is answered.
     #[test]
     fn conjugate_at_any_size(x in -1.0..1.0f64, y in -1.0..1.0f64, z in -1.0..1.0f64, size in 1.0..10.0f64) {
         let size = 10f64.powf(size);
         let (x, y, z) = (x * size, y * size, z * 2.0 * size.sqrt());
-        for f in [elliptic, hyperbolic] {
-            let (a, b) = (f(x, y, z).expect("a value"), f(x, y, -z).expect("a value"));
-            for (k, (a, b)) in four(&a).iter().zip(four(&b)).enumerate() {
-                let b = if k == 3 { -b.conj() } else { b.conj() };
-                prop_assert!(close(*a, b, a.norm()), "{a} {b}");
-            }
-        }
+        conjugate(x, y, z)?;
     }
 
     /// t -> -t in the elliptic, s <-> t in the hyperbolic integral.

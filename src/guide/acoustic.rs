@@ -2,41 +2,75 @@
 //!
 //! Water with a pressure-release surface over a fluid bottom in which sound is faster. Time factor
 //! `exp(-i omega t)`. Ranges run along the bed, upslope; heights and depths are vertical: to the
-//! accuracy of the one-way equation (the slope squared) this makes no difference.
+//! accuracy of the formula (the slope squared) this makes no difference.
 //!
 //! With `q^2 = k_w^2 - k_b^2` and `g` the depth lost per metre of range, the scaled guide of
 //! [`SlopingGuide`] has `x = q z`, `r = q g s`, `eps = 2 k_b g/q`, `m = rho_w/rho_b` and
 //! `psi = p exp(-i k_b s)`; the layer at cut-off has `L_z = (2 k_b Gamma)^(-1/3)`,
 //! `L_s = 2 k_b L_z^2`, `Gamma = q^2 g/m`. Attenuation makes `k_b` and `q`, and with them every
 //! length and the place of cut-off, complex; the lengths returned here are those without loss, the
-//! fields have it all.
+//! fields have it all. They are those of Helmholtz's equation ([`SlopingGuide::wide_angle`]); by the one-way equation
+//! ([`Passage::paraxial`]) modes run by `(k_n - k_b)^2/(2 k_b)` too fast far before cut-off, and where the bottom alone is
+//! lossy they even grow there.
 //!
 //! Source: derived here; the cut-off depth is the textbook modal relation (common practice).
 
+use super::modes::counts;
 use super::passage::{Media, ModeNumber, Passage};
 use super::profile::Profile;
+use super::sensitivity::{Figure, Figures};
 use super::uniform::Order;
 use crate::{Complex64, Error, Estimate};
 use std::f64::consts::{FRAC_PI_4, LOG10_E, PI, TAU};
 
-/// What is known of the sea and its bottom.
+/// What is known of the sea and its bottom: numbers, or something else for each of them
+/// ([`sensitivities`](super::sensitivities)).
 #[derive(Clone, Copy, Debug, PartialEq)]
-pub struct TwoLayer {
+pub struct TwoLayer<T = f64> {
     /// Frequency in Hz.
-    pub frequency_hz: f64,
+    pub frequency_hz: T,
     /// Sound speed in the water in m/s.
-    pub water_speed_m_per_s: f64,
+    pub water_speed_m_per_s: T,
     /// Sound speed in the bottom in m/s, above that in the water.
-    pub bottom_speed_m_per_s: f64,
+    pub bottom_speed_m_per_s: T,
     /// Density of the water in kg/m^3.
-    pub water_density_kg_per_m3: f64,
+    pub water_density_kg_per_m3: T,
     /// Density of the bottom in kg/m^3.
-    pub bottom_density_kg_per_m3: f64,
+    pub bottom_density_kg_per_m3: T,
     /// Attenuation in the water in dB per wavelength; 0 for none.
-    pub water_attenuation_db_per_wavelength: f64,
+    pub water_attenuation_db_per_wavelength: T,
     /// Attenuation in the bottom in dB per wavelength; 0 for none.
-    pub bottom_attenuation_db_per_wavelength: f64,
+    pub bottom_attenuation_db_per_wavelength: T,
 }
+
+impl Figures for TwoLayer {
+    type Of<T> = TwoLayer<T>;
+
+    fn map<T>(&self, mut f: impl FnMut(Figure) -> Result<T, Error>) -> Result<TwoLayer<T>, Error> {
+        // Results are singular where the speeds are equal.
+        let apart = self.bottom_speed_m_per_s - self.water_speed_m_per_s;
+        let mut own = |value: f64| f(Figure::new(value, value));
+        let frequency_hz = own(self.frequency_hz)?;
+        let water_density_kg_per_m3 = own(self.water_density_kg_per_m3)?;
+        let bottom_density_kg_per_m3 = own(self.bottom_density_kg_per_m3)?;
+        let mut speed = |value: f64| f(Figure::new(value, apart.min(value)));
+        let water_speed_m_per_s = speed(self.water_speed_m_per_s)?;
+        let bottom_speed_m_per_s = speed(self.bottom_speed_m_per_s)?;
+        let mut loss = |value: f64| f(Figure::new(value, 1.0).within(0.0, MOST_ATTENUATION));
+        Ok(TwoLayer {
+            frequency_hz,
+            water_speed_m_per_s,
+            bottom_speed_m_per_s,
+            water_density_kg_per_m3,
+            bottom_density_kg_per_m3,
+            water_attenuation_db_per_wavelength: loss(self.water_attenuation_db_per_wavelength)?,
+            bottom_attenuation_db_per_wavelength: loss(self.bottom_attenuation_db_per_wavelength)?,
+        })
+    }
+}
+
+/// Largest attenuation taken, in dB per wavelength.
+const MOST_ATTENUATION: f64 = 5.0;
 
 /// A validated two-layer sea at one frequency.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -107,7 +141,7 @@ impl AcousticGuide {
             ("water_attenuation_db_per_wavelength", sea.water_attenuation_db_per_wavelength),
             ("bottom_attenuation_db_per_wavelength", sea.bottom_attenuation_db_per_wavelength),
         ] {
-            if !(0.0..=5.0).contains(&attenuation) {
+            if !(0.0..=MOST_ATTENUATION).contains(&attenuation) {
                 return Err(Error::domain(
                     what,
                     attenuation,
@@ -217,19 +251,7 @@ impl AcousticGuide {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn cutoffs(&self, profile: &Profile) -> Result<Vec<(u32, CutOffPlace)>, Error> {
-        let [from, to] = profile.ranges();
-        let from = if from.is_finite() { from } else { 0.0 };
-        let deep = self.mode_count(profile.width(from))?;
-        let end = profile.width(to);
-        let shallow = if end > 0.0 { self.mode_count(end)? } else { 0 };
-        if deep.saturating_sub(shallow) > 10_000 {
-            let remedy = "cut the deep part off the profile or take a lower frequency";
-            return Err(Error::domain(
-                "number of modes cut off",
-                f64::from(deep - shallow),
-                remedy,
-            ));
-        }
+        let [shallow, deep] = counts(profile, |depth| self.mode_count(depth))?;
         (shallow + 1..=deep)
             .rev()
             .map(|mode| Ok((mode, self.cutoff_place(mode, profile)?)))
@@ -372,7 +394,7 @@ impl ModeCutOff {
 
     /// The same angle with the exact relation `k_b sin(theta) = p/L_z`.
     ///
-    /// Errors: [`Error::Domain`] where no such angle exists; the one-way equation has long failed
+    /// Errors: [`Error::Domain`] where no such angle exists; the formula has long failed
     /// there.
     pub fn take_off_angle_rad(&self) -> Result<f64, Error> {
         self.passage.take_off_angle_rad()

@@ -46,6 +46,23 @@ pub struct Footprint {
 impl Passage {
     /// Angle in rad between the beam's axis and the boundary, from the small-angle formula
     /// `2^(-1/3)/(k L_z)`: no wavelength and no mode number in it.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let run = guide.upslope(2, 2f64.to_radians(), 60.0)?;
+    /// let angle = run.passage().take_off_angle_small_rad();
+    /// // [((c_b/c_w)^2 - 1) (rho_b/rho_w) g]^(1/3), the slope g (derived relation).
+    /// let expected = ((1.1f64.powi(2) - 1.0) * 1.8 * 2f64.to_radians().tan()).cbrt();
+    /// assert!((angle - expected).abs() < 1e-12);
+    /// // The exact relation gives a little more.
+    /// assert!((run.passage().take_off_angle_rad()?.sin() - angle).abs() < 1e-15);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn take_off_angle_small_rad(&self) -> f64 {
         // The radiated momentum density 4 p^2 exp(-(4/3) p^3) peaks at p = 2^(-1/3).
         0.5f64.cbrt() / (self.layer_height() * self.media().k_real)
@@ -53,7 +70,7 @@ impl Passage {
 
     /// The same angle with the exact relation `k sin(theta) = p/L_z`.
     ///
-    /// Errors: [`Error::Domain`] where no such angle exists; the one-way equation has long failed
+    /// Errors: [`Error::Domain`] where no such angle exists; the formula has long failed
     /// there.
     pub fn take_off_angle_rad(&self) -> Result<f64, Error> {
         let sine = self.take_off_angle_small_rad();
@@ -72,6 +89,22 @@ impl Passage {
     ///
     /// Errors: [`Error::Domain`] for an angle that is not between 0 and pi/2, or beyond the Brewster condition
     /// (as [`radiation_per_wavenumber`](Self::radiation_per_wavenumber)).
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let run = guide.upslope(1, 0.003, 20.0)?;
+    /// // All of the mode's energy leaves, at some angle (eps = 0.013).
+    /// let step = 1e-3;
+    /// let energy: Result<Vec<f64>, _> =
+    ///     (0..1000).map(|j| run.passage().radiation_per_rad((f64::from(j) + 0.5) * step)).collect();
+    /// assert!((energy?.iter().sum::<f64>() * step - 1.0).abs() < 1e-3);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn radiation_per_rad(&self, angle_rad: f64) -> Result<f64, Error> {
         if !(0.0..std::f64::consts::FRAC_PI_2).contains(&angle_rad) {
             let remedy = "give an angle from the axis of range, from 0 to below pi/2";
@@ -87,6 +120,20 @@ impl Passage {
     ///
     /// Errors: [`Error::Domain`] for a wavenumber that is negative or not finite, or, for `m > 1`, at and
     /// beyond that of the Brewster condition.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// // Slowly closing walls: the released particle's momentum is spread as 4 P^2 exp(-(4/3) P^3), P = p/v^(1/3)
+    /// // (derived relation).
+    /// let v = 1e-6f64;
+    /// let well = QuantumWell.along(1, Profile::plane(3.0, v)?, 0.0)?;
+    /// for p in [0.5, 0.8, 1.2] {
+    ///     let expected = 4.0 * p * p * (-4.0 / 3.0 * f64::powi(p, 3)).exp();
+    ///     let seen = well.radiation_per_wavenumber(p * v.cbrt())? * v.cbrt();
+    ///     assert!((seen / expected - 1.0).abs() < 0.02);
+    /// }
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn radiation_per_wavenumber(&self, across: f64) -> Result<f64, Error> {
         let Media { q_real, m, .. } = *self.media();
         let p = across / q_real;
@@ -105,6 +152,25 @@ impl Passage {
     ///
     /// Errors: [`Error::Undecided`] where the energy per angle has no maximum with both half-power angles
     /// below pi/2.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// // On a gentle slope the axis is that of the small-angle formula, and the half-power angles are 0.5327 and
+    /// // 1.4742 of it: 4 p^2 exp(-(4/3) p^3) is half its maximum at p = 0.42280 and 1.17008, the maximum at
+    /// // 2^(-1/3) (derived relation).
+    /// let run = guide.upslope(1, 1e-6, 20.0)?;
+    /// let (beam, angle) = (run.passage().beam()?, run.take_off_angle_small_rad());
+    /// assert!((beam.axis_rad / angle - 1.0).abs() < 2e-3);
+    /// assert!((beam.half_power_rad[0] / angle - 0.5327).abs() < 2e-3);
+    /// assert!((beam.half_power_rad[1] / angle - 1.4742).abs() < 2e-3);
+    /// assert_eq!(beam.half_power_width_rad(), beam.half_power_rad[1] - beam.half_power_rad[0]);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn beam(&self) -> Result<Beam, Error> {
         let at = |angle: f64| self.radiation_per_rad(angle).unwrap_or(0.0);
         let limit = std::f64::consts::FRAC_PI_2 * (1.0 - 1e-9);
@@ -119,11 +185,23 @@ impl Passage {
             }
         }
         let (mut low, mut high) = ((best - step).max(0.0), (best + step).min(limit));
-        for _ in 0..40 {
+        for _ in 0..12 {
             let (a, b) = ((2.0 * low + high) / 3.0, (low + 2.0 * high) / 3.0);
             if at(a) < at(b) { low = a } else { high = b }
         }
-        let axis_rad = 0.5 * (low + high);
+        // Thirds see the top to the root of rounding only; the slope, by differences of fourth order, to 1e-9.
+        let (mut axis_rad, gap) = (0.5 * (low + high), 0.2 * step);
+        for _ in 0..4 {
+            let [a, b, c, d, e] = [-2.0, -1.0, 0.0, 1.0, 2.0].map(|j| at(axis_rad + gap * j));
+            let shift = gap * (a - 8.0 * b + 8.0 * d - e) / (12.0 * (b - 2.0 * c + d));
+            if !(shift.abs() < 0.2 * gap
+                && axis_rad - 2.0 * gap > 0.0
+                && axis_rad + 2.0 * gap < limit)
+            {
+                break;
+            }
+            axis_rad -= shift;
+        }
         let half = 0.5 * at(axis_rad);
         let crossing = |mut above: f64, mut below: f64| {
             for _ in 0..50 {
@@ -159,6 +237,22 @@ impl Passage {
     /// axis and the half-power angles.
     ///
     /// Errors: as [`beam`](Self::beam); [`Error::Domain`] for a position that is not outside.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let run = guide.upslope(1, 0.003, 20.0)?;
+    /// let (beam, print) = (run.passage().beam()?, run.passage().footprint(120.0)?);
+    /// // Straight rays, by definition.
+    /// let (range, depth) = run.passage().ray_start(beam.axis_rad);
+    /// assert!((print.axis - range - (120.0 - depth) / beam.axis_rad.tan()).abs() < 1e-9);
+    /// assert!(print.half_power[0] < print.axis && print.axis < print.half_power[1]);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn footprint(&self, x: f64) -> Result<Footprint, Error> {
         let beam = self.beam()?;
         let cross = |angle: f64| -> Result<f64, Error> {
@@ -177,6 +271,25 @@ impl Passage {
     /// panels over the field; of sound and light the flux of energy along the range.
     ///
     /// Cost: some ten fields for the first mode, twenty in the wide-angle form. Errors: as [`Passage::field`].
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// // At cut-off, to leading order: eps^(1/3) m^(-4/3) |U(0, 0)|^2 h/2, with h = pi/2 of the scaled guide and
+    /// // |U(0, 0)|^2 = 8 pi 2^(-4/3) Ai'(0)^2 (derived relation; Ai'(0) = -0.2588194037928068, DLMF 9.2.6).
+    /// let run = guide.upslope(1, 1e-6, 20.0)?;
+    /// let pi = std::f64::consts::PI;
+    /// let u = 8.0 * pi * 0.5f64.powf(4.0 / 3.0) * 0.2588194037928068f64.powi(2);
+    /// let expected = run.eps().cbrt() * 1.8f64.powf(4.0 / 3.0) * u * pi / 4.0;
+    /// assert!((run.passage().energy_inside(0.0)? / expected - 1.0).abs() < 0.01);
+    /// // A transition length later hardly any is left.
+    /// assert!(run.passage().energy_inside(run.layer_range_m())? < 0.2 * expected);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn energy_inside(&self, range: f64) -> Result<f64, Error> {
         let width = self.profile().width(range);
         let waves = self.guide().cutoff_width() / std::f64::consts::PI;

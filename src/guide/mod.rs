@@ -14,8 +14,10 @@
 //!   [`AcousticGuide`] (sound in water over a sloping bottom, metres), [`SlabGuide`] (light in a tapered slab, TE and TM,
 //!   nanometres), [`QuantumWell`] (states of a narrowing well, scaled). Each gives a [`Passage`]: the field
 //!   everywhere, its error figure, the [`Beam`] and its [`Footprint`], the energy left inside, levels along a line of
-//!   receivers. For sound there are besides [`ModeCutOff`] (the same with metres in the names),
-//!   [`AcousticGuide::source`] (modes added with their phases) and [`sensitivities`].
+//!   receivers. For sound there are besides [`ModeCutOff`] (the same with metres in the names) and
+//!   [`AcousticGuide::source`] (modes added with their phases; [`SlabGuide::launch`] and [`QuantumWell::launch`] take
+//!   any field apart into modes). [`sensitivities`] differentiates any result with
+//!   respect to all figures.
 //!
 //! ```
 //! use merging_saddles::guide::{AcousticGuide, TwoLayer, level_db};
@@ -38,6 +40,28 @@
 //! }
 //! # Ok::<(), merging_saddles::Error>(())
 //! ```
+//!
+//! # What to call
+//!
+//! | you ask | for sound | for light | for a well |
+//! | --- | --- | --- | --- |
+//! | how many modes are trapped | [`AcousticGuide::mode_count`] | [`SlabGuide::mode_count`] | [`QuantumWell::state_count`] |
+//! | where each of them is cut off | [`AcousticGuide::cutoffs`] | [`SlabGuide::cutoffs`] | [`QuantumWell::releases`] |
+//! | one mode along a profile | [`AcousticGuide::along`], [`ModeCutOff::passage`] | [`SlabGuide::along`] | [`QuantumWell::along`] |
+//! | a source, or any field sent in | [`AcousticGuide::source`] | [`SlabGuide::launch`] | [`QuantumWell::launch`] |
+//!
+//! and of one mode's [`Passage`], in the units of its guide:
+//!
+//! | you ask | call |
+//! | --- | --- |
+//! | over what range it leaves, how far the field reaches outside | [`Passage::layer_range`], [`Passage::layer_height`] |
+//! | the field at a place before or after, inside or outside | [`Passage::value`] |
+//! | levels along a line of receivers | [`Passage::levels_db`] |
+//! | how good that is | [`Passage::station`] |
+//! | energy left inside | [`Passage::energy_inside`] |
+//! | the beam's angle and width, where it arrives | [`Passage::beam`], [`Passage::footprint`] |
+//! | energy per angle or momentum | [`Passage::radiation_per_rad`], [`Passage::radiation_per_wavenumber`] |
+//! | a derivative of any of this | [`sensitivities`] |
 //!
 //! # How good the formulas are
 //!
@@ -94,11 +118,13 @@
 
 mod acoustic;
 mod adiabatic;
+mod along;
 mod beam;
 mod contour;
 mod curve;
 mod dispersion;
 pub mod layer;
+mod modes;
 mod passage;
 mod profile;
 mod revival;
@@ -107,6 +133,7 @@ mod sensitivity;
 mod slab;
 mod source;
 mod station;
+mod symmetric;
 mod table;
 mod uniform;
 mod well;
@@ -119,9 +146,10 @@ pub use dispersion::{ModeAmplitude, ModePhase};
 pub use passage::Passage;
 pub use profile::Profile;
 pub use revival::revival;
-pub use sensitivity::{Sensitivities, sensitivities};
+pub use sensitivity::{Derivative, Figure, Figures, Sensitivities, sensitivities};
 pub use slab::{Polarization, Slab, SlabGuide};
 pub use source::SourceField;
 pub use station::Station;
+pub use symmetric::LaunchedField;
 pub use uniform::{Order, SlopingGuide, UniformField};
 pub use well::QuantumWell;

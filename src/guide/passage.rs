@@ -35,6 +35,20 @@ pub(super) struct Media {
 }
 
 impl Media {
+    /// Wavenumber along the guide of a bound mode; for a well 1.
+    pub(super) fn along(&self, gamma: Complex64) -> Complex64 {
+        if self.carrier.norm() == 0.0 {
+            return Complex64::new(1.0, 0.0);
+        }
+        (self.k * self.k + (self.q * gamma).powi(2)).sqrt()
+    }
+
+    /// The flux of a bound mode over the integral of its square, in units of the carrier's.
+    pub(super) fn flux(&self, gamma: Complex64) -> Complex64 {
+        let one = Complex64::new(1.0, 0.0);
+        if self.carrier.norm() == 0.0 { one } else { self.along(gamma) / self.k }
+    }
+
     /// `(q/k)^2` of the wide-angle form, 0 where ranges are times.
     fn delta(&self) -> Complex64 {
         if self.carrier.norm() > 0.0 { (self.q / self.k).powi(2) } else { self.carrier }
@@ -281,6 +295,16 @@ impl Passage {
     }
 
     /// `L_s`: the transition length, the range over which the mode turns into a beam.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// // In scaled units k = 1/2, q = m = 1: the height is v^(-1/3) and the time v^(-2/3) for walls of speed v
+    /// // (derived relation).
+    /// let well = QuantumWell.along(1, Profile::plane(3.0, 1e-3)?, 0.0)?;
+    /// assert!((well.layer_height() - 10.0).abs() < 1e-12);
+    /// assert!((well.layer_range() - 100.0).abs() < 1e-10);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn layer_range(&self) -> f64 {
         2.0 * self.media.k_real * self.height * self.height
     }
@@ -386,6 +410,23 @@ impl Passage {
     /// Errors: [`Error::Domain`] for a place off the profile, before
     /// [`fitted_from`](Self::fitted_from) or beyond the tip; [`Error::Undecided`] where the Brewster angle lies in the
     /// beam (`m > 1`); what [`crate::Integral::quadrature`] refuses.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// // At the wall at release, walls of speed v -> 0: v^(1/6) |U(0, 0)| over the antinode of the incoming mode,
+    /// // |U(0, 0)| = sqrt(8 pi) 2^(-2/3) |Ai'(0)| (derived relation), Ai'(0) = -0.2588194037928068 (DLMF 9.2.6).
+    /// let (v, wide) = (1e-9f64, 3.0);
+    /// let well = QuantumWell.along(1, Profile::plane(wide, v)?, 0.0)?;
+    /// let u = (8.0 * std::f64::consts::PI).sqrt() * 0.5f64.powf(2.0 / 3.0) * 0.2588194037928068;
+    /// // Of unit energy: the integral of sin^2 inside and of its tail, kappa = -kappa cot(3 kappa)/gamma, by hand.
+    /// let kappa = 0.7596207; // kappa = sin(3 kappa), the textbook's square well
+    /// let antinode = (1.5 + 0.5 / (1.0f64 - kappa * kappa).sqrt()).sqrt().recip();
+    /// let expected = v.powf(1.0 / 6.0) * u / antinode;
+    /// let seen = well.field(well.cutoff_range(), well.cutoff_width())?;
+    /// assert!((seen.value.norm() / expected - 1.0).abs() < 2e-3);
+    /// assert!(seen.relative_error < 1e-6);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn field(&self, range: f64, x: f64) -> Result<Estimate, Error> {
         Ok(times(self.uniform(range, x)?.quadrature(1e-9)?, self.relative(range)))
     }
@@ -393,6 +434,16 @@ impl Passage {
     /// The same by expansions at the merging saddles: the crate's own plan, made for the one wavenumber.
     ///
     /// Errors: as [`field`](Self::field), and where the plan could not be made.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// let well = QuantumWell.along(1, Profile::plane(3.5, 0.01)?, 0.0)?;
+    /// let (time, x) = (well.cutoff_range() + 10.0, 6.0);
+    /// let (quadrature, saddles) = (well.field(time, x)?, well.field_at_saddles(time, x)?);
+    /// // Two ways to one integral.
+    /// assert!((quadrature.value - saddles.value).norm() <= quadrature.error + saddles.error);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn field_at_saddles(&self, range: f64, x: f64) -> Result<Estimate, Error> {
         Ok(times(self.uniform(range, x)?.evaluate()?, self.relative(range)))
     }
@@ -403,6 +454,16 @@ impl Passage {
     ///
     /// Errors: [`Error::Domain`] for a place off the profile; [`Error::NoDigits`] hopelessly far from
     /// cut-off.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// let well = QuantumWell.along(1, Profile::plane(3.0, 1e-6)?, 0.0)?;
+    /// let (time, x) = (well.cutoff_range() + well.layer_range(), well.cutoff_width() + 50.0);
+    /// // The leading term of the uniform field: they differ by eps^(1/3) = 0.01 (derived relation).
+    /// let ratio = well.field_in_layer(time, x)? / well.field(time, x)?.value;
+    /// assert!((ratio - 1.0).norm() < 0.03);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn field_in_layer(&self, range: f64, x: f64) -> Result<Complex64, Error> {
         let inside = self.check(range, x)?;
         let width = self.profile.width(range);
@@ -423,6 +484,16 @@ impl Passage {
     }
 
     /// The layer's coordinates `(t, y)` of a place, complex with losses; `y` is counted outwards.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// let well = QuantumWell.along(1, Profile::plane(3.0, 1e-3)?, 0.0)?;
+    /// // One transition length after cut-off, one height outside: t = y = 1 by definition.
+    /// let range = well.cutoff_range() + well.layer_range();
+    /// let (t, y) = well.layer_coordinates(range, well.profile().width(range) + well.layer_height());
+    /// assert!((t - 1.0).norm() < 1e-12 && (y - 1.0).norm() < 1e-12);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn layer_coordinates(&self, range: f64, x: f64) -> (Complex64, Complex64) {
         let Media { k, q, m, .. } = self.media;
         let height = (k * 2.0 * q * q * self.turned_slope / m).powf(-1.0 / 3.0);
@@ -475,6 +546,19 @@ impl Passage {
     /// uniform from there on.
     ///
     /// Errors: as [`adiabatic`](Self::adiabatic) and [`field`](Self::field).
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// let walls = Profile::from_fn(0.0, 600.0, |t| {
+    ///     (4.0 - 3e-3 * t - 4e-6 * t * t, -3e-3 - 8e-6 * t)
+    /// })?;
+    /// let well = QuantumWell.along(1, walls, 0.0)?;
+    /// let join = well.fitted_from();
+    /// // Both forms hold where they join: within eps.
+    /// let (before, after) = (well.value(join - 1e-6, 1.0)?, well.value(join + 1e-6, 1.0)?);
+    /// assert!(join > 0.0 && (before / after - 1.0).norm() < well.eps());
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
         if range < self.fitted_from {
             self.adiabatic(range, x)
@@ -487,6 +571,18 @@ impl Passage {
     /// there ([`value`](Self::value)).
     ///
     /// Errors: each receiver has its own.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{Profile, QuantumWell};
+    /// // Mode 2 is even: its largest value lies in the middle, and is 0 dB at the reference by definition.
+    /// let well = QuantumWell.along(2, Profile::plane(6.0, 0.01)?, 0.0)?;
+    /// let line = [(0.0, 0.0), (0.0, -1.0), (well.cutoff_range() + 100.0, 20.0)];
+    /// let levels = well.levels_db(&line);
+    /// assert!(matches!(levels[0], Ok(level) if level.abs() < 0.1));
+    /// assert!(levels[1].is_err()); // positions count from the middle
+    /// assert!(matches!(levels[2], Ok(level) if level < 0.0 && level > -20.0)); // in the beam
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn levels_db(&self, receivers: &[(f64, f64)]) -> Vec<Result<f64, Error>> {
         receivers.iter().map(|&(s, x)| self.value(s, x).map(super::level_db)).collect()
     }
@@ -494,6 +590,22 @@ impl Passage {
     /// The adiabatic mode at a point, relative to the incoming one: for ranges well before cut-off.
     ///
     /// Errors: [`Error::Domain`] off the profile or where the guide is no wider than at cut-off.
+    ///
+    /// ```
+    /// use merging_saddles::guide::{AcousticGuide, TwoLayer};
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let run = guide.upslope(1, 1e-3, 60.0)?;
+    /// let deep = -(60.0 - run.cutoff_depth_m()) / 1e-3f64.tan();
+    /// let at = |depth: f64| run.passage().adiabatic(deep, depth).map(|p| p.norm());
+    /// // In the bottom a bound mode falls off by the same factor over equal heights (textbook modal relation).
+    /// let [a, b, c] = [at(60.0)?, at(65.0)?, at(70.0)?];
+    /// assert!((a / b - b / c).abs() < 1e-12);
+    /// # Ok::<(), merging_saddles::Error>(())
+    /// ```
     pub fn adiabatic(&self, range: f64, x: f64) -> Result<Complex64, Error> {
         let inside = self.check(range, x)?;
         let width = self.profile.width(range);

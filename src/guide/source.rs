@@ -12,6 +12,7 @@
 //! distances of some depths and more.
 
 use super::acoustic::AcousticGuide;
+use super::modes::{check_count, counts, passage};
 use super::passage::{ModeNumber, Passage};
 use super::profile::Profile;
 use crate::{Complex64, Error};
@@ -20,8 +21,14 @@ use std::f64::consts::{FRAC_PI_4, TAU};
 /// The field of a point source as a sum of modes.
 #[derive(Clone, Debug)]
 pub struct SourceField {
-    modes: Vec<(Complex64, Passage)>,
+    modes: Vec<Mode>,
     source_range_m: f64,
+}
+
+#[derive(Clone, Debug)]
+struct Mode {
+    weight: Complex64,
+    passage: Passage,
 }
 
 impl AcousticGuide {
@@ -40,8 +47,20 @@ impl AcousticGuide {
     /// let track = Profile::from_samples(&[0.0, 1000.0, 2000.0, 3000.0], &[60.0, 48.0, 34.0, 18.0])?;
     /// let source = guide.source(track, 0.0, 20.0)?;
     /// assert_eq!(source.mode_count(), 3); // cut-off depths 9, 27, 45 m: textbook modal relation
+    /// assert_eq!(source.cut_off_modes().count(), 2); // all but the first
     /// let loss_db = source.transmission_loss_db(1500.0, 25.0)?;
     /// assert!(loss_db > 40.0 && loss_db < 75.0);
+    ///
+    /// // One mode over a bed as good as flat: cylindrical spreading, 3 dB for twice the distance (common practice).
+    /// # let guide = AcousticGuide::new(TwoLayer {
+    /// #     frequency_hz: 100.0, water_speed_m_per_s: 1500.0, bottom_speed_m_per_s: 1650.0,
+    /// #     water_density_kg_per_m3: 1000.0, bottom_density_kg_per_m3: 1800.0,
+    /// #     water_attenuation_db_per_wavelength: 0.0,
+    /// #     bottom_attenuation_db_per_wavelength: 0.0 })?;
+    /// let flat = Profile::from_fn(0.0, 5000.0, |s| (20.0 - 1e-7 * s, -1e-7))?;
+    /// let source = guide.source(flat, 0.0, 8.0)?;
+    /// let more = source.transmission_loss_db(4000.0, 15.0)? - source.transmission_loss_db(2000.0, 15.0)?;
+    /// assert!((more - 10.0 * 2f64.log10()).abs() < 1e-3);
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn source(
@@ -62,26 +81,19 @@ impl AcousticGuide {
             return Err(Error::domain("source_depth_m", source_depth_m, remedy));
         }
         let count = self.mode_count(water)?;
-        if count == 0 || count > 200 {
-            let remedy = "choose a depth and frequency that trap 1 to 200 modes at the source";
-            return Err(Error::domain("modes trapped at the source", f64::from(count), remedy));
-        }
-        let end = profile.width(to);
-        let kept = if end > 0.0 { self.mode_count(end)? } else { 0 };
+        check_count(count)?;
+        let [kept, _] = counts(&profile, |depth| self.mode_count(depth))?;
         let media = self.media();
         let modes = (1..=count).map(|n| -> Result<_, Error> {
             let number = ModeNumber { n, even: false };
-            let passage = if n <= kept {
-                Passage::trapped(media, number, profile.clone(), source_range_m)?
-            } else {
-                Passage::new(media, number, profile.clone(), source_range_m)?
-            };
+            let passage = passage(media, number, &profile, source_range_m, n <= kept)?;
             let mode = passage.bound_shape(source_range_m)?;
             // Wavenumber along the track, and Psi_n(z_s) times the antinode.
-            let along = (media.k * media.k + (media.q * mode.gamma).powi(2)).sqrt();
+            let here = media.along(mode.gamma);
             let at_source = (mode.kappa * media.q * source_depth_m).sin();
-            let weight = media.q * mode.antinode.powi(2) * at_source / along.sqrt();
-            Ok((weight, passage))
+            let weight =
+                media.q * mode.antinode.powi(2) * media.flux(mode.gamma) * at_source / here.sqrt();
+            Ok(Mode { weight, passage })
         });
         Ok(SourceField { modes: modes.collect::<Result<_, _>>()?, source_range_m })
     }
@@ -93,9 +105,19 @@ impl SourceField {
         self.modes.len()
     }
 
-    /// The modes' passages, each relative to its antinode at the source.
-    pub fn modes(&self) -> impl Iterator<Item = &Passage> {
-        self.modes.iter().map(|(_, passage)| passage)
+    /// The passages of the modes that the track cuts off, lowest mode first, each relative to its antinode at the
+    /// source: beams, footprints, transition lengths, error figures.
+    pub fn cut_off_modes(&self) -> impl Iterator<Item = &Passage> {
+        let passages = self.modes.iter().map(|mode| &mode.passage);
+        passages.filter(|passage| passage.cutoff_range().is_finite())
+    }
+
+    /// With another limit for what may be neglected in a mode's field: see
+    /// [`SlopingGuide::tolerance`](super::SlopingGuide::tolerance). A mode that is refused somewhere takes the whole sum with it.
+    pub fn tolerance(self, tolerance: f64) -> Self {
+        let modes = self.modes.into_iter();
+        let modes = modes.map(|mode| Mode { passage: mode.passage.tolerance(tolerance), ..mode });
+        SourceField { modes: modes.collect(), ..self }
     }
 
     /// Pressure over that at 1 m from the source in open water.
@@ -106,7 +128,7 @@ impl SourceField {
         let distance = range_m - self.source_range_m;
         Error::require_positive("distance from the source", distance)?;
         let mut sum = Complex64::new(0.0, 0.0);
-        for (weight, passage) in &self.modes {
+        for Mode { weight, passage } in &self.modes {
             sum += weight * passage.value(range_m, depth_m)?;
         }
         Ok(sum * Complex64::from_polar((TAU / distance).sqrt(), FRAC_PI_4))

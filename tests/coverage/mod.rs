@@ -2,33 +2,12 @@
 
 #![allow(dead_code)] // Each test uses its part.
 
+#[path = "../support/mixing.rs"]
+mod mixing;
+
 use merging_saddles::{Complex64, Error, Estimate};
+pub use mixing::Random;
 use std::f64::consts::PI;
-
-/// Steele, Lea & Flood's mixing generator: the same cases on every machine.
-pub struct Random(pub u64);
-
-impl Random {
-    pub fn next(&mut self) -> f64 {
-        self.0 = self.0.wrapping_add(0x9e37_79b9_7f4a_7c15);
-        let mut z = self.0;
-        z = (z ^ (z >> 30)).wrapping_mul(0xbf58_476d_1ce4_e5b9);
-        z = (z ^ (z >> 27)).wrapping_mul(0x94d0_49bb_1331_11eb);
-        ((z ^ (z >> 31)) >> 11) as f64 / (1u64 << 53) as f64
-    }
-
-    pub fn within(&mut self, low: f64, high: f64) -> f64 {
-        low + (high - low) * self.next()
-    }
-
-    pub fn below(&mut self, n: usize) -> usize {
-        ((self.next() * n as f64) as usize).min(n - 1)
-    }
-
-    pub fn disc(&mut self, radius: f64) -> Complex64 {
-        Complex64::from_polar(radius * self.next().sqrt(), 2.0 * PI * self.next())
-    }
-}
 
 /// Answers against the yardstick: how often the error figure covers the error, and how sharply.
 #[derive(Default)]
