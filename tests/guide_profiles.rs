@@ -11,7 +11,7 @@ use merging_saddles::Complex64 as C;
 use merging_saddles::guide::{Order, Passage, Profile, QuantumWell, SlopingGuide};
 use std::f64::consts::PI;
 use std::rc::Rc;
-use tapered::{Taper, slow_start};
+use tapered::{Taper, flat_before};
 
 /// Times of the layer at which the fields are compared; the phase is taken at the first.
 const TIMES: [f64; 2] = [0.0, 2.0];
@@ -81,13 +81,7 @@ fn curved_with_contrast_and_losses() {
             eps: turned * eps,
             well,
             from,
-            profile: Rc::new(move |r| {
-                if r >= -1.0 {
-                    return (cut - r + c * r * r, 2.0 * c * r - 1.0);
-                }
-                let (lost, slope) = slow_start(0.0, 2.0, r);
-                (cut + 1.0 + c + (lost - 1.0) * (1.0 + 2.0 * c), slope * (1.0 + 2.0 * c))
-            }),
+            profile: flat_before(move |r| (cut - r + c * r * r, 2.0 * c * r - 1.0), 1.0, 2.0),
         };
         // Lengths in 1/q; cut off at the complex range r_0, where the slope is s; then T = u + b u^2 + 2 b^2 u^3 + ..
         let q = well.sqrt();

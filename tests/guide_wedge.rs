@@ -15,8 +15,7 @@ use compare::{error, pairs};
 use merging_saddles::Complex64 as C;
 use merging_saddles::guide::{AcousticGuide, ModeCutOff, Profile, TwoLayer};
 use std::f64::consts::{PI, TAU};
-use std::rc::Rc;
-use tapered::{Taper, slow_start};
+use tapered::{Taper, flat_before};
 
 const WEDGE: TwoLayer = TwoLayer {
     frequency_hz: 25.0,
@@ -58,7 +57,7 @@ fn reference(sea: TwoLayer, mode: u32, gradient: f64, length: f64) -> (Taper, Mo
         eps: kb * 2.0 * gradient / q,
         well: (kw * kw - kb * kb) / (q * q),
         from: -1.0 - length,
-        profile: Rc::new(move |r| slow_start(cut, length, r)),
+        profile: flat_before(move |r| (cut - r, -1.0), 1.0, length),
     };
     let run = guide.upslope(mode, gradient.atan(), (cut + 2.0) / q).unwrap();
     (taper, run, q)
