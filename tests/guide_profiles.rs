@@ -66,8 +66,8 @@ fn curved_profiles() {
 #[test]
 fn curved_with_contrast_and_losses() {
     // Mode 2, m = 0.55, the profile h_c - r + c r^2; losses outside turn eps, those inside turn the well.
-    // Slope -1.5 at r = -1 and flat before r = -3: an abrupt start leaves 2 % of mode 1.
-    let (eps, m, c, from) = (0.02, 0.55, 0.25, -3.0);
+    // Slope -1.5 at r = -1 and flat before r = -4: an abrupt start leaves 2 % of mode 1.
+    let (eps, m, c, from) = (0.02, 0.55, 0.25, -4.0);
     for (mode, turned, well) in [
         (2, C::from(1.0), C::from(1.0)),
         (1, C::new(1.0, 0.004), C::new(1.0, 0.01)),
@@ -81,7 +81,7 @@ fn curved_with_contrast_and_losses() {
             eps: turned * eps,
             well,
             from,
-            profile: flat_before(move |r| (cut - r + c * r * r, 2.0 * c * r - 1.0), 1.0, 2.0),
+            profile: flat_before(move |r| (cut - r + c * r * r, 2.0 * c * r - 1.0), 1.0, 3.0),
         };
         // Lengths in 1/q; cut off at the complex range r_0, where the slope is s; then T = u + b u^2 + 2 b^2 u^3 + ..
         let q = well.sqrt();
@@ -116,7 +116,7 @@ fn curved_with_contrast_and_losses() {
 fn even_and_higher_modes() {
     for (mode, even, m) in [(2, true, 1.0), (2, true, 0.55), (3, false, 1.5)] {
         let eps = 0.02;
-        let t = Taper::slow(mode, even, m, eps, 2.0);
+        let t = Taper::slow(mode, even, m, eps, 3.0);
         let guide = SlopingGuide::new(mode, m, eps).unwrap();
         let guide = if even { guide.even().unwrap() } else { guide };
         let [leading, next] = [Order::Leading, Order::Next].map(|order| {

@@ -20,7 +20,7 @@ const I: C = C::new(0.0, 1.0);
 /// Range step over `(m^2 eps)^(1/3)` at fineness 1.
 const STEP: f64 = 0.02;
 /// Strongest absorption over the energy `(eps/m)^(2/3)` of the layer.
-const ABSORBER: f64 = 15.0;
+const ABSORBER: f64 = 5.0;
 
 #[derive(Clone)]
 pub struct Taper {
@@ -118,6 +118,19 @@ impl Taper {
         }
     }
 
+    /// The same with the flat as near to cut-off as the layer allows: unit slope from `t = -knee` on, with
+    /// `t = r/(m^2 eps)^(1/3)`, and flat `length` earlier.
+    pub fn near(mode: u32, m: f64, eps: f64, knee: f64, length: f64) -> Taper {
+        let scale = (m * m * eps).cbrt();
+        let cut = (f64::from(mode) - 0.5) * PI;
+        let (knee, length) = (knee * scale, length * scale);
+        Taper {
+            from: -knee - length,
+            profile: flat_before(move |r| (cut - r, -1.0), knee, length),
+            ..Taper::straight(mode, m, eps, cut)
+        }
+    }
+
     /// Mode `n` (zero at `x = 0`) of a guide without losses that falls with unit slope from the width
     /// `start`; its ranges are minus the widths.
     pub fn straight(mode: u32, m: f64, eps: f64, start: f64) -> Taper {
@@ -135,7 +148,10 @@ impl Taper {
     /// The fields at the given ranges, in rising order. `fineness` divides step and mesh; `reach` is
     /// how far out the field is kept.
     pub fn run(&self, ranges: &[f64], reach: f64, fineness: f64) -> Vec<Snapshot> {
-        let spacing = 0.08 / fineness;
+        // Small beside the tail of the mode at the start and beside the layer.
+        let tail = self.shift((self.profile)(self.from).0).sqrt();
+        let length = (self.m / self.eps.norm()).cbrt();
+        let spacing = f64::max(0.08, (0.07 / tail).min(0.02 * length)) / fineness;
         let mesh = Mesh {
             inside: (90.0 * fineness * f64::from(self.mode)) as usize,
             spacing,
@@ -296,7 +312,7 @@ impl Taper {
             let far = (e - mesh.inside) as f64 * mesh.spacing - mesh.absorb;
             let depth = (far / (0.8 * mesh.absorb)).max(0.0);
             let strength = ABSORBER * (self.eps.norm() / self.m).powf(2.0 / 3.0);
-            -I * (strength * depth * depth) + shift
+            -I * (strength * depth.powi(3)) + shift
         };
         for (r, c) in [(0, 0), (0, 1), (1, 0), (1, 1)] {
             let (share, sign) = if r == c { (1.0 / 3.0, 1.0) } else { (1.0 / 6.0, -1.0) };
