@@ -138,7 +138,7 @@ fn revivals_of_other_guides() {
         let slope = 1.0 - 2.0 * c * there;
         let length = (m / (eps * slope)).cbrt();
         let times = [0.0, there, there + eps * length * length];
-        let shots = taper.run(&times, 20.0 / eps.cbrt(), 1.2);
+        let shots = taper.run(&times, (1.2 * there / eps.cbrt() + 15.0) / eps.cbrt(), 1.0);
         // T(u) for u = r - c r^2.
         let mut t = vec![1.0f64];
         for k in 2..24 {
