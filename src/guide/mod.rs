@@ -42,7 +42,7 @@
 //! # How good the formulas are
 //!
 //! Everything below is measured against solutions of the one-way equation by finite elements
-//! (`tests/support/tapered.rs`), which are good to 2e-5 inside and 3e-6 outside where this was tried (`m` 0.55 and
+//! (`tests/support/tapered.rs`), which are good to 3e-5 inside and 5e-6 outside where this was tried (`m` 0.55 and
 //! 1.5, modes 1 and 3, both bends). Unless said otherwise:
 //!
 //! - errors are `inside / outside`: relative L2 norms of the difference over `0 < x < h` and over ten layer lengths
