@@ -3,7 +3,8 @@
 //! The solution starts from the adiabatic mode two units of width before cut-off. One constant
 //! phase per run is taken out, the same inside, outside and at all times: it is the second-order
 //! phase at the start (about `eps/2`). Errors are relative L2 norms over the inside and over the
-//! outside up to ten layer lengths, at `t = (h_c - h)/(m^2 eps)^(1/3)`.
+//! outside up to ten layer lengths, at `t = (h_c - h)/(m^2 eps)^(1/3)`. Higher modes, which such a start would excite
+//! as well, and other profiles are in `guide_accuracy.rs`.
 
 #[path = "support/compare.rs"]
 #[allow(dead_code)] // shared by several tests
@@ -116,15 +117,6 @@ fn other_densities_and_steep_slopes() {
     // eps = 0.1: a bed of about 1 in 38. A few per cent by the next order.
     let [_, (next, _)] = errors(1, 0.55, 0.1);
     assert!(next.iter().all(|row| row[1] < 3.5e-2 && row[0] < 6e-3), "{next:?}");
-}
-
-#[test]
-fn second_mode() {
-    // The abrupt start leaves some 0.5 % of mode 1 inside, so only the outside is telling.
-    let [(leading, _), (next, phase)] = errors(2, 1.0, 0.01);
-    assert!(next.iter().all(|row| row[1] < 2.2e-3), "{next:?}");
-    assert!(next.iter().zip(&leading).all(|(a, b)| a[1] < b[1] / 5.0));
-    assert!(phase.abs() < 1e-2, "{phase}");
 }
 
 #[test]

@@ -26,52 +26,91 @@ fn exponent(points: &[(f64, f64)]) -> f64 {
     top / low
 }
 
+/// One `eps` of the scan: the amplitude inside at the cut-off of mode 2, half way to that of mode 1, there, and one
+/// layer's time later; and the two revivals by the formula.
+fn released(eps: f64) -> ([f64; 4], [f64; 2]) {
+    let scale = eps.cbrt();
+    // Nothing that the absorbing layer throws back arrives in time.
+    let reach = (1.2 * PI / scale + 15.0) / scale;
+    let ranges = [0.0, 0.5 * PI, PI, PI + scale];
+    let shots = Taper::near(2, 1.0, eps, 2.5, 8.0).run(&ranges, reach, 1.0);
+    let seen = [0, 1, 2, 3].map(|i| inside(&shots[i]));
+    let guide = SlopingGuide::new(2, 1.0, eps).unwrap();
+    (seen, [0.0, 1.0].map(|t| guide.revival(1, 0.5 * PI - t * scale).unwrap()))
+}
+
+/// Amplitude inside at cut-off by the solution, from two starts, and by the uniform field.
+fn at_cut_off(mode: u32, m: f64, eps: f64) -> [f64; 3] {
+    let solution = |knee: f64, length: f64| {
+        let taper = Taper::near(mode, m, eps, knee, length);
+        inside(&taper.run(&[0.0], 12.0 * (m / eps).cbrt(), 1.0)[0])
+    };
+    let guide = SlopingGuide::new(mode, m, eps).unwrap();
+    let field = guide.outside(guide.cutoff_width(), 0.0).unwrap().quadrature(1e-9).unwrap();
+    [solution(2.5, 8.0), solution(4.0, 9.0), field.value.norm()]
+}
+
 #[test]
 fn revival_and_scaling_laws() {
     // Mode 2 released, then the cut-off of mode 1 at r = pi.
-    let scan = [0.03, 0.017, 0.01].map(|eps: f64| {
-        let scale = eps.cbrt();
-        let taper = Taper::slow(2, false, 1.0, eps, 3.0);
-        let ranges = [0.0, 0.5 * PI, PI, PI + scale];
-        let shots = taper.run(&ranges, 25.0 / scale, 0.8);
-        // At the boundary: at cut-off, half way, and inside at the lower cut-off.
-        let edge = |s: &Snapshot| s.psi[s.inside].norm();
-        let seen = [edge(&shots[0]), inside(&shots[1]), inside(&shots[2]), inside(&shots[3])];
-        let guide = SlopingGuide::new(2, 1.0, eps).unwrap();
-        let formula = [0.0, 1.0].map(|t| guide.revival(1, 0.5 * PI - t * scale).unwrap());
+    let scan = [0.02, 0.006, 0.002].map(|eps: f64| {
+        let (seen, formula) = released(eps);
         println!("eps {eps}: {seen:.5?} revival {formula:.5?}");
-        (eps, seen, formula)
+        for (f, s) in formula.iter().zip(&seen[2..]) {
+            assert!((f / s - 1.0).abs() < 0.2 * eps.powf(2.0 / 3.0), "{formula:?} {seen:?}");
+        }
+        (eps, seen)
     });
-    let (_, seen, formula) = scan[2];
-    assert!((formula[0] / seen[2] - 1.0).abs() < 0.15, "{formula:?} {seen:?}");
-    assert!((formula[1] / seen[3] - 1.0).abs() < 0.15, "{formula:?} {seen:?}");
-    for (which, expected) in [(1, 1.0), (2, 2.0 / 3.0)] {
-        let points = scan.map(|(eps, seen, _)| (eps, seen[which]));
-        let found = exponent(&points);
+    for (which, expected) in [(1, 1.0), (2, 2.0 / 3.0), (3, 2.0 / 3.0)] {
+        let found = exponent(&scan.map(|(eps, seen)| (eps, seen[which])));
         println!("exponent {found:.3}, expected {expected:.3}");
-        assert!((found - expected).abs() < 0.05, "{found} {expected}");
+        assert!((found - expected).abs() < 0.02, "{found} {expected}");
     }
-    // At the cut-off itself eps^(1/6), reached more slowly: the solution at these eps, and the uniform field,
-    // which follows it, on to smaller ones.
-    let field = |eps: f64| {
-        let guide = SlopingGuide::new(2, 1.0, eps).unwrap();
-        guide.outside(guide.cutoff_width(), 0.0).unwrap().quadrature(1e-9).unwrap().value.norm()
-    };
-    for (eps, seen, _) in scan {
-        assert!((field(eps) / seen[0] - 1.0).abs() < 5e-3, "{eps}: {} {}", field(eps), seen[0]);
+}
+
+#[test]
+fn amplitude_at_cut_off() {
+    // eps^(1/6), reached the sooner the lower the mode.
+    for (mode, within) in [(1, 0.005), (2, 0.03)] {
+        let scan = [1e-2, 1e-3, 1e-4].map(|eps| {
+            let [near, far, field] = at_cut_off(mode, 1.0, eps);
+            println!("mode {mode} eps {eps}: {near:.5} {far:.5} uniform field {field:.5}");
+            assert!((near / far - 1.0).abs() < 2e-5, "the start matters: {near} {far}");
+            assert!((field / near - 1.0).abs() < 0.15 * eps, "{field} {near}");
+            (eps, near)
+        });
+        let found = exponent(&scan);
+        println!("exponent {found:.4}, last {:.4}", exponent(&scan[1..]));
+        assert!((found - 1.0 / 6.0).abs() < within, "{found}");
+        assert!((exponent(&scan[1..]) - 1.0 / 6.0).abs() < 0.3 * within);
     }
-    // The solution's own exponent, its next correction separated: ln|psi| = a + b ln eps + c eps^(1/3) through the
-    // three points; the plain slope is some 0.12 there.
-    let points = scan.map(|(eps, seen, _)| (eps.ln(), eps.cbrt(), seen[0].ln()));
-    let [(l0, r0, y0), (l1, r1, y1), (l2, r2, y2)] = points;
-    let determinant = (l1 - l0) * (r2 - r0) - (l2 - l0) * (r1 - r0);
-    let separated = ((y1 - y0) * (r2 - r0) - (y2 - y0) * (r1 - r0)) / determinant;
-    let plain = exponent(&scan.map(|(eps, seen, _)| (eps, seen[0])));
-    println!("at cut-off: plain {plain:.3}, correction separated {separated:.3}, expected 0.167");
-    assert!((separated - 1.0 / 6.0).abs() < 0.05, "{separated}");
-    let found = exponent(&[1e-3, 1e-4, 1e-5].map(|eps| (eps, field(eps))));
-    println!("exponent {found:.3}, expected 0.167");
-    assert!((found - 1.0 / 6.0).abs() < 0.05, "{found}");
+}
+
+#[test]
+#[ignore = "some minutes; its tables are in the notes of the module `guide`"]
+fn scaling_laws_far_down() {
+    let step = |last: (f64, f64), now: (f64, f64)| (now.1 / last.1).ln() / (now.0 / last.0).ln();
+    for (mode, m) in [(1, 1.0), (2, 1.0), (3, 1.0), (1, 0.55), (1, 1.5)] {
+        println!("mode {mode} m {m}: eps, solution, its exponent, field, its exponent");
+        let mut last = [(1.0, 1.0); 2];
+        for eps in [1e-2, 1e-3, 3e-4, 1e-4, 3e-5, 1e-5] {
+            let [near, far, field] = at_cut_off(mode, m, eps);
+            let now = [(eps, near), (eps, field)];
+            let [e, f] = [step(last[0], now[0]), step(last[1], now[1])];
+            println!("| {eps:.0e} | {near:.6} ({far:.6}) | {e:.4} | {field:.6} | {f:.4} |");
+            last = now;
+        }
+    }
+    let mut last = [(1.0, 1.0); 4];
+    for eps in [3e-2, 1e-2, 3e-3, 1e-3, 3e-4, 1e-4] {
+        let (seen, formula) = released(eps);
+        let now = seen.map(|s| (eps, s));
+        let e = [0, 1, 2, 3].map(|i| step(last[i], now[i]));
+        let [seen, formula] =
+            [&seen[..], &formula].map(|v| v.iter().map(|v| format!("{v:.3e}")).collect::<Vec<_>>());
+        println!("| {eps:.0e} | {} | {e:.3?} | {} |", seen.join(" "), formula.join(" "));
+        last = now;
+    }
 }
 
 #[test]
@@ -99,7 +138,7 @@ fn revivals_of_other_guides() {
         let slope = 1.0 - 2.0 * c * there;
         let length = (m / (eps * slope)).cbrt();
         let times = [0.0, there, there + eps * length * length];
-        let shots = taper.run(&times, 20.0 / eps.cbrt(), 1.2);
+        let shots = taper.run(&times, (1.2 * there / eps.cbrt() + 15.0) / eps.cbrt(), 1.0);
         // T(u) for u = r - c r^2.
         let mut t = vec![1.0f64];
         for k in 2..24 {

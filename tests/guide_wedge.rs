@@ -15,8 +15,7 @@ use compare::{error, pairs};
 use merging_saddles::Complex64 as C;
 use merging_saddles::guide::{AcousticGuide, ModeCutOff, Profile, TwoLayer};
 use std::f64::consts::{PI, TAU};
-use std::rc::Rc;
-use tapered::{Taper, slow_start};
+use tapered::{Taper, flat_before};
 
 const WEDGE: TwoLayer = TwoLayer {
     frequency_hz: 25.0,
@@ -58,7 +57,7 @@ fn reference(sea: TwoLayer, mode: u32, gradient: f64, length: f64) -> (Taper, Mo
         eps: kb * 2.0 * gradient / q,
         well: (kw * kw - kb * kb) / (q * q),
         from: -1.0 - length,
-        profile: Rc::new(move |r| slow_start(cut, length, r)),
+        profile: flat_before(move |r| (cut - r, -1.0), 1.0, length),
     };
     let run = guide.upslope(mode, gradient.atan(), (cut + 2.0) / q).unwrap().paraxial().unwrap();
     (taper, run, q)
@@ -68,7 +67,7 @@ fn reference(sea: TwoLayer, mode: u32, gradient: f64, length: f64) -> (Taper, Mo
 fn three_modes_of_the_wedge() {
     let kb = AcousticGuide::new(WEDGE).unwrap().bottom_wavenumber();
     for mode in 1..=3 {
-        let (taper, run, q) = reference(WEDGE, mode, 0.05, 2.0);
+        let (taper, run, q) = reference(WEDGE, mode, 0.05, 8.0);
         assert!((run.eps() - 0.19).abs() < 0.005);
         let scale = (taper.m * taper.m * run.eps()).cbrt();
         let length = (taper.m / run.eps()).cbrt();
@@ -109,9 +108,9 @@ fn three_modes_of_the_wedge() {
             // eps = 0.19: some per cent in mode 1, more in the higher ones, which couple to each other. The
             // figure says so.
             assert!(inside < figure && outside < figure);
-            assert!(inside < [0.04, 0.09, 0.16][mode as usize - 1]);
-            assert!(outside < [0.03, 0.07, 0.13][mode as usize - 1]);
-            assert!(level(&side[1]).abs() < 0.4 && level(&side[0]).abs() < 1.5);
+            assert!(inside < [0.035, 0.07, 0.12][mode as usize - 1]);
+            assert!(outside < [0.025, 0.055, 0.1][mode as usize - 1]);
+            assert!(level(&side[1]).abs() < 0.4 && level(&side[0]).abs() < 1.2);
         }
     }
 }
@@ -122,7 +121,7 @@ fn the_beam_leaves_at_the_formula_s_angle() {
     let sea = TwoLayer { bottom_attenuation_db_per_wavelength: 0.0, ..WEDGE };
     for slope in [0.5f64, 1.5, 3.0] {
         let gradient = slope.to_radians().tan();
-        let (taper, run, q) = reference(sea, 2, gradient, 2.0);
+        let (taper, run, q) = reference(sea, 2, gradient, 8.0);
         let kb = AcousticGuide::new(sea).unwrap().bottom_wavenumber().re;
         let scale = (taper.m * taper.m * run.eps()).cbrt();
         let length = (taper.m / run.eps()).cbrt();

@@ -6,7 +6,9 @@
 //! with losses. On a mesh with velocity `v` the weak form is
 //! `i eps [M u_r + (1/2) M_r u - C u] = (K + V) u` with `C_ij = (1/2) int w v (N_j' N_i - N_j N_i')`: the
 //! condition at the sloping boundary that keeps the energy is built in. The midpoint rule keeps
-//! the norm. Errors are of second order in step and mesh together, so two runs at half of both are extrapolated
+//! the norm. The phase of the bound mode, `gamma^2/eps` per unit of range, is taken out of the equation and put
+//! back, so the step need only be small beside the layer's length in range, `(m^2 eps)^(1/3)`, at any `eps`.
+//! Errors are of second order in step and mesh together, so two runs at half of both are extrapolated
 //! to fourth order.
 
 use merging_saddles::Complex64 as C;
@@ -14,6 +16,11 @@ use std::f64::consts::PI;
 use std::rc::Rc;
 
 const I: C = C::new(0.0, 1.0);
+
+/// Range step over `(m^2 eps)^(1/3)` at fineness 1.
+const STEP: f64 = 0.02;
+/// Strongest absorption over the energy `(eps/m)^(2/3)` of the layer.
+const ABSORBER: f64 = 5.0;
 
 #[derive(Clone)]
 pub struct Taper {
@@ -30,17 +37,33 @@ pub struct Taper {
     pub profile: Rc<dyn Fn(f64) -> (f64, f64)>,
 }
 
-/// Width and slope of a guide that is flat before `r = -1 - length` and has unit slope from `r = -1` on,
-/// with cut-off at `r = 0`: an abrupt start leaves some 0.5 % of the other modes.
-pub fn slow_start(cut: f64, length: f64, r: f64) -> (f64, f64) {
-    if r >= -1.0 {
-        return (cut - r, -1.0);
-    }
-    // The slope goes as sin^2.
-    let rate = 0.5 * PI / length;
-    let angle = rate * (r + 1.0 + length).max(0.0);
-    let lost = (0.5 * angle - 0.25 * (2.0 * angle).sin()) / rate;
-    (cut + 1.0 + 0.5 * length - lost, -angle.sin().powi(2))
+/// A profile (width, slope) that is flat before `r = -knee - length` and the given one from `-knee` on, all as smooth
+/// as the profile itself: an abrupt start leaves some 0.5 % of the other modes and light outside.
+pub fn flat_before(
+    profile: impl Fn(f64) -> (f64, f64) + 'static,
+    knee: f64,
+    length: f64,
+) -> Rc<dyn Fn(f64) -> (f64, f64)> {
+    Rc::new(move |r| {
+        if r >= -knee {
+            return profile(r);
+        }
+        // The profile at a range that rises slowly from rest: four derivatives are continuous.
+        let s = ((r + knee) / length + 1.0).max(0.0);
+        let speed = s.powi(4) * (35.0 - s * (84.0 - s * (70.0 - 20.0 * s)));
+        let gone = s.powi(5) * (7.0 - s * (14.0 - s * (10.0 - 2.5 * s)));
+        let (width, slope) = profile(-knee + length * (gone - 0.5));
+        (width, slope * speed)
+    })
+}
+
+/// What one step sees: width, slope, the energy taken out, and the step.
+#[derive(Clone, Copy)]
+struct Local {
+    h: f64,
+    slope: f64,
+    shift: f64,
+    dr: f64,
 }
 
 /// Resolution of one run.
@@ -49,7 +72,7 @@ struct Mesh {
     inside: usize,
     spacing: f64,
     outside: usize,
-    /// Range step over eps.
+    /// Range step over `(m^2 eps)^(1/3)`.
     step: f64,
     /// Outside distance at which absorption begins.
     absorb: f64,
@@ -80,8 +103,8 @@ pub struct Snapshot {
 }
 
 impl Taper {
-    /// A mode of a guide without losses that starts on a flat, `length` before unit slope; cut off at
-    /// `r = 0`.
+    /// A mode of a guide without losses that starts on a flat, `length` before unit slope from `r = -1` on; cut off
+    /// at `r = 0`.
     pub fn slow(mode: u32, even: bool, m: f64, eps: f64, length: f64) -> Taper {
         let cut = (f64::from(mode) - if even { 1.0 } else { 0.5 }) * PI;
         Taper {
@@ -91,7 +114,20 @@ impl Taper {
             eps: C::from(eps),
             well: C::from(1.0),
             from: -1.0 - length,
-            profile: Rc::new(move |r| slow_start(cut, length, r)),
+            profile: flat_before(move |r| (cut - r, -1.0), 1.0, length),
+        }
+    }
+
+    /// The same with the flat as near to cut-off as the layer allows: unit slope from `t = -knee` on, with
+    /// `t = r/(m^2 eps)^(1/3)`, and flat `length` earlier.
+    pub fn near(mode: u32, m: f64, eps: f64, knee: f64, length: f64) -> Taper {
+        let scale = (m * m * eps).cbrt();
+        let cut = (f64::from(mode) - 0.5) * PI;
+        let (knee, length) = (knee * scale, length * scale);
+        Taper {
+            from: -knee - length,
+            profile: flat_before(move |r| (cut - r, -1.0), knee, length),
+            ..Taper::straight(mode, m, eps, cut)
         }
     }
 
@@ -112,12 +148,15 @@ impl Taper {
     /// The fields at the given ranges, in rising order. `fineness` divides step and mesh; `reach` is
     /// how far out the field is kept.
     pub fn run(&self, ranges: &[f64], reach: f64, fineness: f64) -> Vec<Snapshot> {
-        let spacing = 0.08 / fineness;
+        // Small beside the tail of the mode at the start and beside the layer.
+        let tail = self.shift((self.profile)(self.from).0).sqrt();
+        let length = (self.m / self.eps.norm()).cbrt();
+        let spacing = f64::max(0.08, (0.07 / tail).min(0.02 * length)) / fineness;
         let mesh = Mesh {
-            inside: (60.0 * fineness * f64::from(self.mode).sqrt()) as usize,
+            inside: (90.0 * fineness * f64::from(self.mode)) as usize,
             spacing,
             outside: (1.8 * reach / spacing) as usize,
-            step: 0.06 / fineness,
+            step: STEP / fineness,
             absorb: reach,
         };
         let coarse = self.single(ranges, mesh);
@@ -126,33 +165,51 @@ impl Taper {
             .into_iter()
             .zip(fine)
             .map(|(mut c, f)| {
+                // The phase of the whole, where most of the error is, apart from the rest.
+                let overlap: C =
+                    c.psi.iter().zip(f.psi.iter().step_by(2)).map(|(c, f)| c.conj() * f).sum();
+                let turn = overlap / overlap.norm();
                 for (i, value) in c.psi.iter_mut().enumerate() {
-                    *value = (f.psi[2 * i] * 4.0 - *value) / 3.0;
+                    *value = (f.psi[2 * i] * 4.0 - *value * turn) / 3.0 * turn.cbrt();
                 }
                 c
             })
             .collect()
     }
 
-    /// The adiabatic mode of unit energy at the start, `kappa^2 + gamma^2 = v`: kappa, gamma and the
-    /// amplitude of its sine or cosine.
-    fn adiabatic(&self) -> [C; 3] {
-        let (m, h) = (self.m, (self.profile)(self.from).0);
+    /// `kappa` of the bound mode without losses where the guide has the width `h`: `kappa h` lies between its value
+    /// at cut-off and the next multiple of `pi/2`.
+    fn bound(&self, h: f64) -> f64 {
         let n = f64::from(self.mode) - if self.even { 0.5 } else { 0.0 };
-        // kappa h lies between the cut-off value and the next multiple of pi/2 (bisection without
-        // losses, then Newton).
-        let condition = |k: C| {
-            let g = (self.well - k * k).sqrt();
-            let (sin, cos) = ((k * h).sin(), (k * h).cos());
-            if self.even { k * sin - g * cos * m } else { k * cos + g * sin * m }
-        };
-        let (mut low, mut high) = ((n - 0.5) * PI / h, (1.0 - 1e-12f64).min(n * PI / h));
-        let below = condition(C::from(low)).re;
+        let (mut low, mut high) = ((n - 0.5) * PI / h, (n * PI / h).min(1.0));
+        let below = self.condition(C::from(low), C::from(1.0), h).re;
         for _ in 0..60 {
             let k = 0.5 * (low + high);
-            if condition(C::from(k)).re * below > 0.0 { low = k } else { high = k }
+            let same = self.condition(C::from(k), C::from(1.0), h).re * below > 0.0;
+            if same { low = k } else { high = k }
         }
-        let mut k = C::from(0.5 * (low + high));
+        0.5 * (low + high)
+    }
+
+    /// Zero for a mode, with `kappa^2 + gamma^2 = v`.
+    fn condition(&self, k: C, well: C, h: f64) -> C {
+        let g = (well - k * k).sqrt();
+        let (sin, cos) = ((k * h).sin(), (k * h).cos());
+        if self.even { k * sin - g * cos * self.m } else { k * cos + g * sin * self.m }
+    }
+
+    /// `gamma^2` of the bound mode without losses, 0 where it is cut off.
+    fn shift(&self, h: f64) -> f64 {
+        let cut = (f64::from(self.mode) - if self.even { 1.0 } else { 0.5 }) * PI;
+        if h > cut { (1.0 - self.bound(h).powi(2)).max(0.0) } else { 0.0 }
+    }
+
+    /// The adiabatic mode of unit energy at the start: kappa, gamma and the amplitude of its sine or cosine.
+    fn adiabatic(&self) -> [C; 3] {
+        let (m, h) = (self.m, (self.profile)(self.from).0);
+        // Newton from the mode without losses.
+        let condition = |k: C| self.condition(k, self.well, h);
+        let mut k = C::from(self.bound(h));
         for _ in 0..20 {
             let slope = (condition(k + 1e-6) - condition(k - 1e-6)) / 2e-6;
             k -= condition(k) / slope;
@@ -195,19 +252,25 @@ impl Taper {
         let mut out = Vec::new();
         let mut system = System::new(nodes);
         let mut r = self.from;
+        let layer = (self.m * self.m * self.eps.norm()).cbrt();
+        // The phase taken out.
+        let mut turned = C::from(0.0);
         for &target in ranges {
-            let steps = ((target - r) / (mesh.step * self.eps.norm())).ceil().max(1.0);
+            let steps = ((target - r) / (mesh.step * layer)).ceil().max(1.0);
             let dr = (target - r) / steps;
-            let mut fall = f64::NAN;
+            let mut before = [f64::NAN; 2];
             let mut boundary = system.rows[mesh.inside];
             for s in 0..steps as usize {
                 let (h, slope) = (self.profile)(r + dr * (s as f64 + 0.5));
-                // The outside is the same as long as the slope is.
-                if slope != fall {
-                    fall = slope;
+                let shift = self.shift(h);
+                turned += I * shift * dr / self.eps;
+                let at = Local { h, slope, shift, dr };
+                // The outside is the same as long as the slope is and nothing is taken out.
+                if [slope, shift] != before {
+                    before = [slope, shift];
                     system.clear(mesh.inside, nodes);
                     for e in mesh.inside..nodes {
-                        self.element(mesh, e, (h, slope), dr, &mut system);
+                        self.element(mesh, e, at, &mut system);
                     }
                     system.eliminate(mesh.inside + 1, nodes);
                     boundary = system.rows[mesh.inside];
@@ -215,7 +278,7 @@ impl Taper {
                 system.clear(0, mesh.inside);
                 system.rows[mesh.inside] = boundary;
                 for e in 0..mesh.inside {
-                    self.element(mesh, e, (h, slope), dr, &mut system);
+                    self.element(mesh, e, at, &mut system);
                 }
                 system.eliminate(first, mesh.inside + 1);
                 system.step(&mut u, first);
@@ -226,7 +289,7 @@ impl Taper {
                 r,
                 h,
                 x: (0..=nodes).map(|i| place(h, i)).collect(),
-                psi: u.clone(),
+                psi: u.iter().map(|u| u * turned.exp()).collect(),
                 inside: mesh.inside,
                 end: mesh.inside + (mesh.absorb / mesh.spacing) as usize,
             });
@@ -235,20 +298,21 @@ impl Taper {
     }
 
     /// Adds one element to the two sides of a step, `i eps M/dr +- (1/2) [i eps (M_r/2 - C) - (K + V)]`.
-    fn element(&self, mesh: Mesh, e: usize, (h, slope): (f64, f64), dr: f64, system: &mut System) {
-        let ie = I * self.eps;
+    fn element(&self, mesh: Mesh, e: usize, at: Local, system: &mut System) {
+        let (Local { h, slope, shift, dr }, ie) = (at, I * self.eps);
         let within = e < mesh.inside;
         let (j, w) = if within { (h / mesh.inside as f64, 1.0) } else { (mesh.spacing, self.m) };
         // Mesh velocity at the ends of the element, and the rate of its length.
         let speed = |i: usize| slope * i.min(mesh.inside) as f64 / mesh.inside as f64;
         let (v0, v1) = (speed(e), speed(e + 1));
-        // Potential: the well inside, absorption far out.
+        // Potential: the well inside, absorption far out in measures of the layer, less the mode's energy.
         let potential = if within {
-            -self.well
+            -self.well + shift
         } else {
             let far = (e - mesh.inside) as f64 * mesh.spacing - mesh.absorb;
             let depth = (far / (0.8 * mesh.absorb)).max(0.0);
-            -I * (0.8 * depth * depth)
+            let strength = ABSORBER * (self.eps.norm() / self.m).powf(2.0 / 3.0);
+            -I * (strength * depth.powi(3)) + shift
         };
         for (r, c) in [(0, 0), (0, 1), (1, 0), (1, 1)] {
             let (share, sign) = if r == c { (1.0 / 3.0, 1.0) } else { (1.0 / 6.0, -1.0) };
