@@ -149,10 +149,17 @@ impl Tally {
 const BARS: (f64, f64) = (20.0, 100.0);
 
 fn run(family: &Family, seeds: std::ops::Range<u64>) -> Tally {
+    run_with(family, seeds, false)
+}
+
+/// `narrow`: with a plan for the one wavenumber.
+fn run_with(family: &Family, seeds: std::ops::Range<u64>, narrow: bool) -> Tally {
     let mut tally = Tally::default();
     for seed in seeds {
         let case = family.case(seed);
-        let got = case.integral.plan().and_then(|plan| plan.at(case.k));
+        let k = case.k;
+        let plan = if narrow { case.integral.plan_for(k..=k) } else { case.integral.plan() };
+        let got = plan.and_then(|plan| plan.at(k));
         let yardstick = case.integral.quadrature(case.k, 1e-13);
         tally.enter(&case.label, got, yardstick, exact::exact(&case.recipe, case.k));
     }
@@ -227,6 +234,17 @@ fn found_before() {
 #[test]
 #[ignore = "minutes; run in release"]
 fn ten_thousand() {
+    ten_thousand_with(false);
+}
+
+/// The same by plans for the one wavenumber.
+#[test]
+#[ignore = "minutes; run in release"]
+fn ten_thousand_narrow() {
+    ten_thousand_with(true);
+}
+
+fn ten_thousand_with(narrow: bool) {
     let lengths = [
         (&random::FEW_SADDLES, 1600),
         (&random::MORE_SADDLES, 1600),
@@ -240,6 +258,6 @@ fn ten_thousand() {
     ];
     let first = std::env::var("FIRST").ok().and_then(|text| text.parse().ok()).unwrap_or(10_000);
     for (family, length) in lengths {
-        run(family, first..first + length).report(family.name);
+        run_with(family, first..first + length, narrow).report(family.name);
     }
 }

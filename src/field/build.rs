@@ -266,9 +266,23 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
     };
     let mut nodes: Vec<Node> = tree.groups.iter().map(Node::new).collect();
     let mut order: Vec<usize> = (0..tree.groups.len()).collect();
-    order.sort_by(|&a, &b| highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a])));
+    // Of the same height close groups come before their parts, others after them.
+    let rank = |index: usize| {
+        let close = tree.groups[index].close;
+        (!close, if close { usize::MAX - index } else { index })
+    };
+    order.sort_by(|&a, &b| {
+        let heights = highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a]));
+        heights.then(rank(a).cmp(&rank(b)))
+    });
+    // Parts of close groups with an expansion.
+    let mut spared: Vec<u64> = Vec::new();
     for index in order {
         let group = &tree.groups[index];
+        let members = nodes[index].members;
+        if spared.iter().any(|whole| whole & members == members) {
+            continue;
+        }
         let gap = if group.gap.is_finite() { group.gap } else { size };
         // An end point near a saddle needs its series, whether the saddle contributes or not.
         let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
@@ -310,25 +324,32 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
             let heights = group.members.iter().map(|&m| height(saddles[m].value));
             reach.include(heights.fold(f64::INFINITY, f64::min), lowest(group));
         }
+        if group.close {
+            spared.push(members);
+            nodes[index].parts = None;
+        }
         nodes[index].series = Some(series.with_powers(&powered.powers));
         nodes[index].settled = true;
     }
     // Saddles without an expansion, alone or with others, are refused near the contour. Far from it they
     // are left out, and the certificate decides whether they matter.
-    for &root in &tree.roots {
-        if !decided(&nodes, root) {
-            let group = &tree.groups[root];
-            if group.members.iter().any(|&m| home.holds(saddles[m].z, 0.0)) {
-                return Err(undecided(format!(
-                    "no normal form or no clear ridge for the saddles near {:.4}",
-                    group.centre
-                )));
-            }
-            let members = nodes[root].members;
-            for node in &mut nodes {
-                node.settled |= node.parts.is_none() && node.members & members != 0;
-            }
+    let mut stack: Vec<usize> = tree.roots.clone();
+    while let Some(index) = stack.pop() {
+        if decided(&nodes, index) {
+            continue;
         }
+        if let Some((a, b)) = nodes[index].parts {
+            stack.extend([a, b]);
+            continue;
+        }
+        let group = &tree.groups[index];
+        if group.members.iter().any(|&m| home.holds(saddles[m].z, 0.0)) {
+            return Err(undecided(format!(
+                "no normal form or no clear ridge for the saddles near {:.4}",
+                group.centre
+            )));
+        }
+        nodes[index].settled = true;
     }
     Ok(nodes)
 }
