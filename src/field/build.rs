@@ -36,13 +36,43 @@ pub(super) struct Problem<'a> {
 
 /// One attempt: saddles are looked for within `margin` of the contour.
 pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
+    let topology = Topology::new(problem.phase, problem.contour, problem.drop);
+    let points = problem.contour.points();
+    // An end far below the contour is likely too low to matter, like one in a valley.
+    let mut matters = [0, 1].map(|end| {
+        let z = [points[0], points[points.len() - 1]][end];
+        let finite = [problem.contour.start(), problem.contour.end()][end] == Termination::Finite;
+        finite && (problem.powers[end] != 1.0 || !topology.is_low(z))
+    });
+    loop {
+        match attempt_with(problem, margin, topology.clone(), matters)? {
+            Found::Plan(plan) => return Ok(*plan),
+            Found::EndMatters(end) => matters[end] = true,
+        }
+    }
+}
+
+/// What an attempt ends with.
+enum Found {
+    Plan(Box<Plan>),
+    /// An end of the contour is not as low as it was thought to be.
+    EndMatters(usize),
+}
+
+/// The same if it is known which ends of the contour may contribute.
+fn attempt_with(
+    problem: &Problem,
+    margin: f64,
+    topology: Topology,
+    matters: [bool; 2],
+) -> Result<Found, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
     let least = problem.wavenumbers.0;
     let points = contour.points();
     let mut reached = points.to_vec();
     // The saddle that an end point needs may lie beyond it, at about Newton's distance.
-    for (end, &z) in [(contour.start(), &points[0]), (contour.end(), &points[points.len() - 1])] {
-        if end == Termination::Finite {
+    for (matters, &z) in matters.into_iter().zip([&points[0], &points[points.len() - 1]]) {
+        if matters {
             let [_, slope, bend] = phase.jet(z);
             let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
             let far = (2.5 * slope.norm() / bend.norm()).min(4.0 * longest);
@@ -55,7 +85,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let region = Region::around(&reached, margin);
     let saddles = locate_few(phase, region, MAX_GROUPS)?;
     let size = region.size();
-    let topology = Topology::new(phase, contour, &saddles, drop);
+    let topology = topology.with_saddles(&saddles);
     let tails = topology.tails();
     let branches = branches(problem)?;
     let bases: Vec<Complex64> = branches.iter().map(|branch| branch.base).collect();
@@ -63,10 +93,10 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
 
     let mut ends: Vec<End> = Vec::new();
     let mut reach = Reach { top: f64::NEG_INFINITY, lowest: f64::INFINITY };
-    for (at, sign, termination) in
-        [(points[0], 1.0, contour.start()), (points[points.len() - 1], -1.0, contour.end())]
+    for (at, sign, matters) in
+        [(points[0], 1.0, matters[0]), (points[points.len() - 1], -1.0, matters[1])]
     {
-        if termination == Termination::Finite {
+        if matters {
             let f = phase.value(at);
             reach.include(height(f), topology.turned_height(f));
             if branches.iter().any(|branch| branch.base == at) {
@@ -150,6 +180,12 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
     let top = reach.top;
+    for (end, at) in [points[0], points[points.len() - 1]].into_iter().enumerate() {
+        let finite = [contour.start(), contour.end()][end] == Termination::Finite;
+        if finite && !matters[end] && height(phase.value(at)) >= top - drop {
+            return Ok(Found::EndMatters(end));
+        }
+    }
     if top == f64::NEG_INFINITY {
         return Err(undecided(
             "no saddle and no pole that was named contributes: the integral vanishes, both ends of the \
@@ -194,7 +230,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         let weight = amplitude.value(saddle.z).norm();
         plan.saddles.push(Place { z: saddle.z, exponent, weight, spread, together });
     }
-    Ok(plan)
+    Ok(Found::Plan(Box::new(plan)))
 }
 
 /// The poles with their steepest ascents and the contour's crossings of those.

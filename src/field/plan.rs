@@ -28,6 +28,9 @@ const NEPERS: f64 = 40.0;
 /// certificate says that a contributing saddle is missing.
 const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
 
+/// A plan with a relative error figure above this at the greatest wavenumber is tried to be bettered.
+const POOR: f64 = 1e-2;
+
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
     pub series: Option<Series>,
@@ -228,14 +231,31 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             drop: NEPERS / least,
             wavenumbers: (least, greatest),
         };
+        // Saddles next to the region may spoil the expansions of those inside: then its best plan.
+        let figure = |plan: &Plan| {
+            let top = plan.at(greatest).map(|u| u.relative_error);
+            if greatest.is_finite() { top.unwrap_or(f64::INFINITY) } else { 0.0 }
+        };
+        let mut best: Option<(f64, Plan)> = None;
         let mut last = None;
         for margin in MARGINS {
             match attempt(&problem, margin) {
-                Ok(plan) => return Ok(plan),
+                Ok(plan) => {
+                    let figure = figure(&plan);
+                    if figure < POOR {
+                        return Ok(plan);
+                    }
+                    if best.as_ref().is_none_or(|best| figure < best.0) {
+                        best = Some((figure, plan));
+                    }
+                }
                 Err(error) => last = Some(error),
             }
         }
-        Err(last.expect("at least one attempt was made"))
+        match best {
+            Some((_, plan)) => Ok(plan),
+            None => Err(last.expect("at least one attempt was made")),
+        }
     }
 }
 
