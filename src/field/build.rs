@@ -20,6 +20,11 @@ pub(super) fn undecided(reason: impl Into<String>) -> Error {
 /// The neighbourhood of the contour, in units of its size.
 const HOME: f64 = 0.3;
 
+/// The saddle that an end point needs may lie beyond it, at about Newton's distance: so many times that are
+/// searched, for an end too low to matter once.
+const BEYOND_AN_END: f64 = 2.5;
+const BEYOND_A_LOW_END: f64 = 1.5;
+
 /// An integral without its types.
 pub(super) struct Problem<'a> {
     pub phase: &'a dyn Phase,
@@ -36,56 +41,58 @@ pub(super) struct Problem<'a> {
 
 /// One attempt: saddles are looked for within `margin` of the contour.
 pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
-    let topology = Topology::new(problem.phase, problem.contour, problem.drop);
-    let points = problem.contour.points();
-    // An end far below the contour is likely too low to matter, like one in a valley.
-    let mut matters = [0, 1].map(|end| {
-        let z = [points[0], points[points.len() - 1]][end];
-        let finite = [problem.contour.start(), problem.contour.end()][end] == Termination::Finite;
-        finite && (problem.powers[end] != 1.0 || !topology.is_low(z))
-    });
+    let Problem { phase, contour, powers, drop, .. } = *problem;
+    let topology = Topology::new(phase, contour, drop);
+    let points = contour.points();
+    let ends = [points[0], points[points.len() - 1]];
+    let finite = [contour.start(), contour.end()].map(|end| end == Termination::Finite);
+    let mut reached = points.to_vec();
+    let mut matters = finite;
+    for (end, &z) in ends.iter().enumerate().filter(|&(end, _)| finite[end]) {
+        // An end far below the contour is likely too low to matter, like one in a valley.
+        matters[end] = powers[end] != 1.0 || !topology.is_low(z);
+        let beyond = if matters[end] { BEYOND_AN_END } else { BEYOND_A_LOW_END };
+        let [_, slope, bend] = phase.jet(z);
+        let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
+        let far = (beyond * slope.norm() / bend.norm()).min(4.0 * longest);
+        if far.is_finite() {
+            let corner = Complex64::new(far, far);
+            reached.extend([z - corner, z + corner]);
+        }
+    }
+    let region = Region::around(&reached, margin);
+    let saddles = locate_few(phase, region, MAX_GROUPS)?;
+    let topology = topology.with_saddles(&saddles);
     loop {
-        match attempt_with(problem, margin, topology.clone(), matters)? {
+        let place = Located { topology: &topology, saddles: &saddles, size: region.size(), matters };
+        match assemble(problem, &place)? {
             Found::Plan(plan) => return Ok(*plan),
             Found::EndMatters(end) => matters[end] = true,
         }
     }
 }
 
-/// What an attempt ends with.
+/// The saddles, the descents from the ends of the contour, and which ends may contribute.
+struct Located<'a> {
+    topology: &'a Topology<'a>,
+    saddles: &'a [Saddle],
+    /// Of the region that was searched.
+    size: f64,
+    matters: [bool; 2],
+}
+
+/// What is made of them.
 enum Found {
     Plan(Box<Plan>),
     /// An end of the contour is not as low as it was thought to be.
     EndMatters(usize),
 }
 
-/// The same if it is known which ends of the contour may contribute.
-fn attempt_with(
-    problem: &Problem,
-    margin: f64,
-    topology: Topology,
-    matters: [bool; 2],
-) -> Result<Found, Error> {
+fn assemble(problem: &Problem, place: &Located) -> Result<Found, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
+    let Located { topology, saddles, size, matters } = *place;
     let least = problem.wavenumbers.0;
     let points = contour.points();
-    let mut reached = points.to_vec();
-    // The saddle that an end point needs may lie beyond it, at about Newton's distance.
-    for (matters, &z) in matters.into_iter().zip([&points[0], &points[points.len() - 1]]) {
-        if matters {
-            let [_, slope, bend] = phase.jet(z);
-            let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
-            let far = (2.5 * slope.norm() / bend.norm()).min(4.0 * longest);
-            if far.is_finite() {
-                let corner = Complex64::new(far, far);
-                reached.extend([z - corner, z + corner]);
-            }
-        }
-    }
-    let region = Region::around(&reached, margin);
-    let saddles = locate_few(phase, region, MAX_GROUPS)?;
-    let size = region.size();
-    let topology = topology.with_saddles(&saddles);
     let tails = topology.tails();
     let branches = branches(problem)?;
     let bases: Vec<Complex64> = branches.iter().map(|branch| branch.base).collect();
@@ -115,7 +122,7 @@ fn attempt_with(
         }
     }
 
-    let poles = measure(problem, &topology, size)?;
+    let poles = measure(problem, topology, size)?;
     for (pole, _) in &poles {
         if pole.crossings != 0 {
             reach.include(height(pole.value), topology.turned_height(pole.value));
@@ -123,11 +130,11 @@ fn attempt_with(
     }
     let given = Given { least, phase, amplitude, poles: &poles, outside: &bases };
 
-    let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
+    let tree = Tree::new(phase, saddles, MAX_SADDLES, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
-    let algebraic = algebraic_ends(problem, &mut sheeting, &tree, &saddles, size)?;
+    let algebraic = algebraic_ends(problem, &mut sheeting, &tree, saddles, size)?;
     for (node, series) in algebraic.iter().flat_map(|end| &end.near) {
         if !series.is_plain() {
             for &member in &tree.groups[*node].members {
@@ -142,9 +149,9 @@ fn attempt_with(
     };
     let scene = Scene {
         sheeting: &sheeting,
-        topology: &topology,
+        topology,
         tree: &tree,
-        saddles: &saddles,
+        saddles,
         ends: &ends,
         beside: &beside,
         home: Region::around(points, HOME),
@@ -203,7 +210,7 @@ fn attempt_with(
         floor: top - drop,
     };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
-    certify(&mut plan, &topology, lowest - drop)?;
+    certify(&mut plan, topology, lowest - drop)?;
     let ends = !(plan.ends.is_empty() && plan.algebraic.is_empty());
     let kept = plan.nodes.iter().filter_map(|node| node.series.as_ref());
     if !ends
