@@ -8,6 +8,7 @@ use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
 use crate::saddles::{Certificate, Group, Region, Saddle, Sheeting, Topology, Tree, locate_few};
 use num_complex::Complex64;
+use std::collections::HashMap;
 
 pub(super) fn undecided(reason: impl Into<String>) -> Error {
     Error::Undecided {
@@ -63,9 +64,10 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let region = Region::around(&reached, margin);
     let saddles = locate_few(phase, region, MAX_GROUPS)?;
     let topology = topology.with_saddles(&saddles);
+    let mut known = Known::new();
     loop {
         let place = Located { topology: &topology, saddles: &saddles, size: region.size(), matters };
-        match assemble(problem, &place)? {
+        match assemble(problem, &place, &mut known)? {
             Found::Plan(plan) => return Ok(*plan),
             Found::EndMatters(end) => matters[end] = true,
         }
@@ -88,7 +90,10 @@ enum Found {
     EndMatters(usize),
 }
 
-fn assemble(problem: &Problem, place: &Located) -> Result<Found, Error> {
+/// The series of groups that have been looked at, by their saddles: none for some.
+type Known = HashMap<u64, Option<Series>>;
+
+fn assemble(problem: &Problem, place: &Located, known: &mut Known) -> Result<Found, Error> {
     let Problem { phase, amplitude, contour, drop, .. } = *problem;
     let Located { topology, saddles, size, matters } = *place;
     let least = problem.wavenumbers.0;
@@ -158,7 +163,7 @@ fn assemble(problem: &Problem, place: &Located) -> Result<Found, Error> {
         size,
         drop,
     };
-    let nodes = resolve(&given, &scene, &mut reach)?;
+    let nodes = resolve(&given, &scene, &mut reach, known)?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
@@ -190,6 +195,7 @@ fn assemble(problem: &Problem, place: &Located) -> Result<Found, Error> {
     for (end, at) in [points[0], points[points.len() - 1]].into_iter().enumerate() {
         let finite = [contour.start(), contour.end()][end] == Termination::Finite;
         if finite && !matters[end] && height(phase.value(at)) >= top - drop {
+            known.extend(nodes.into_iter().map(|n| (n.members, n.series)).filter(|n| n.1.is_some()));
             return Ok(Found::EndMatters(end));
         }
     }
@@ -297,9 +303,42 @@ struct Scene<'a> {
     drop: f64,
 }
 
+impl Scene<'_> {
+    /// The series of a group with its multiplicities.
+    fn series(&self, given: &Given, index: usize) -> Option<Series> {
+        let Scene { sheeting, topology, tree, saddles, beside, size, .. } = *self;
+        let group = &tree.groups[index];
+        // No ring may hold an algebraic end.
+        let branches = sheeting.branches();
+        let gap = if group.gap.is_finite() { group.gap } else { size };
+        let gap = branches.iter().map(|b| (b.base - group.centre).norm()).fold(gap, f64::min);
+        let lifts = branches.iter().map(|b| (*b, b.angle(group.centre)));
+        let powered = Powered::new(given.amplitude, group.centre, lifts);
+        let given = &Given { amplitude: powered.simplest(), ..*given };
+        let places: Vec<Complex64> = group.members.iter().map(|&m| saddles[m].z).collect();
+        let reach = ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius);
+        let series = Series::new(given, &places, group.centre, reach)?;
+        let series = if branches.is_empty() {
+            let m = topology.multiplicities(series.form())?;
+            series.with_multiplicities(m)
+        } else {
+            let sheets = sheeting.multiplicities(series.form(), group.centre)?;
+            on_sheets(series, branches, &sheets)
+        };
+        // Close to an algebraic end the ring about the end sees more than a small one beside it.
+        let agrees = beside(index).is_none_or(|t| t == series.contributes());
+        agrees.then(|| series.with_powers(&powered.powers))
+    }
+}
+
 /// Series and multiplicities of all groups, from the highest downwards.
-fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>, Error> {
-    let Scene { sheeting, topology, tree, saddles, ends, beside, home, size, drop } = *scene;
+fn resolve(
+    given: &Given,
+    scene: &Scene,
+    reach: &mut Reach,
+    known: &mut Known,
+) -> Result<Vec<Node>, Error> {
+    let Scene { topology, tree, saddles, ends, beside, home, size, drop, .. } = *scene;
     let highest = |g: &Group| {
         g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
     };
@@ -328,38 +367,16 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
         }
         let gap = if group.gap.is_finite() { group.gap } else { size };
         // An end point near a saddle needs its series, whether the saddle contributes or not.
-        let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
-        let together = beside(index);
-        nodes[index].settled = together.is_some();
-        // No ring may hold an algebraic end.
-        let branches = sheeting.branches();
-        let gap = branches.iter().map(|b| (b.base - group.centre).norm()).fold(gap, f64::min);
-        let lifts = branches.iter().map(|b| (*b, b.angle(group.centre)));
-        let powered = Powered::new(given.amplitude, group.centre, lifts);
-        let given = &Given { amplitude: powered.simplest(), ..*given };
+        let near = |end: &&End| (end.at - group.centre).norm() < group.radius + gap;
+        let ended = ends.iter().any(|end| near(&end) && !end.is_sharp(given.least, reach.top));
+        nodes[index].settled = beside(index).is_some();
         if !ended && (topology.above(lowest(group)) || highest(group) < reach.top - drop) {
             nodes[index].settled = true;
             continue;
         }
-        let places: Vec<Complex64> = group.members.iter().map(|&m| saddles[m].z).collect();
-        let Some(series) = Series::new(
-            given,
-            &places,
-            group.centre,
-            ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius),
-        ) else {
-            continue;
-        };
-        let series = if branches.is_empty() {
-            topology.multiplicities(series.form()).map(|m| series.with_multiplicities(m))
-        } else {
-            sheeting
-                .multiplicities(series.form(), group.centre)
-                .map(|s| on_sheets(series, branches, &s))
-        };
-        // Close to an algebraic end the ring about the end sees more than a small one beside it.
-        let agrees = |series: &Series| together.is_none_or(|t| t == series.contributes());
-        let Some(series) = series.filter(agrees) else {
+        let Some(series) = known.remove(&members).unwrap_or_else(|| scene.series(given, index))
+        else {
+            known.insert(members, None);
             continue;
         };
         if series.contributes() {
@@ -371,7 +388,7 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
             spared.push(members);
             nodes[index].parts = None;
         }
-        nodes[index].series = Some(series.with_powers(&powered.powers));
+        nodes[index].series = Some(series);
         nodes[index].settled = true;
     }
     // Saddles without an expansion, alone or with others, are refused near the contour. Far from it they

@@ -31,6 +31,9 @@ const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
 /// A plan with a relative error figure above this at the greatest wavenumber is tried to be bettered.
 const POOR: f64 = 1e-2;
 
+/// Rounding, in nepers.
+const ROUNDING: f64 = 36.0;
+
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
     pub series: Option<Series>,
@@ -57,6 +60,14 @@ pub(super) struct End {
 }
 
 impl End {
+    /// Whether its own series is as good as can be from this wavenumber on, or as needed beside a contribution
+    /// of the height `top`.
+    pub fn is_sharp(&self, least: f64, top: f64) -> bool {
+        let Some(own) = &self.own else { return false };
+        let own = own.at(least, usize::MAX);
+        own.is_sharp() || own.error.ln_norm() < least * top - ROUNDING
+    }
+
     /// The form with the smaller error figure.
     fn at(
         &self,
