@@ -211,6 +211,19 @@ fn ends_and_poles() {
     run(&random::MIXED, 0..150).check("ends and poles", 0.97, (22.0, 165.0));
 }
 
+/// A plan for one wavenumber answers as often: close saddles fall back on their parts where a pole leaves the
+/// whole no ring, an end high above the floor is followed down exactly.
+#[test]
+fn narrow_ranges() {
+    for (family, seeds, answered) in [
+        (&random::UNNAMED, 0..100, 0.97),
+        (&random::MORE_SADDLES, 0..150, 0.99),
+        (&random::ENDS, 10_240..10_300, 1.0),
+    ] {
+        run_with(family, seeds, true).check(family.name, answered, (32.0, 200.0));
+    }
+}
+
 /// Cases that other seeds found, each with what was wrong. An ascent next to a saddle that was taken for a
 /// branch cut lost a residue; chords of the exact value that looked calm in their middle; a pole outside the
 /// ring, taken out where the ring saw it and added where it is.

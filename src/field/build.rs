@@ -66,7 +66,8 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     let topology = topology.with_saddles(&saddles);
     let mut known = Known::new();
     loop {
-        let place = Located { topology: &topology, saddles: &saddles, size: region.size(), matters };
+        let place =
+            Located { topology: &topology, saddles: &saddles, size: region.size(), matters };
         match assemble(problem, &place, &mut known)? {
             Found::Plan(plan) => return Ok(*plan),
             Found::EndMatters(end) => matters[end] = true,
@@ -195,7 +196,8 @@ fn assemble(problem: &Problem, place: &Located, known: &mut Known) -> Result<Fou
     for (end, at) in [points[0], points[points.len() - 1]].into_iter().enumerate() {
         let finite = [contour.start(), contour.end()][end] == Termination::Finite;
         if finite && !matters[end] && height(phase.value(at)) >= top - drop {
-            known.extend(nodes.into_iter().map(|n| (n.members, n.series)).filter(|n| n.1.is_some()));
+            known
+                .extend(nodes.into_iter().map(|n| (n.members, n.series)).filter(|n| n.1.is_some()));
             return Ok(Found::EndMatters(end));
         }
     }

@@ -191,9 +191,10 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// cheaper plan, `k..=k` the cheapest.
     ///
     /// Contributions that are 40 nepers or more below the highest at the least `k` are left out: a
-    /// larger one asks less of the phase, which need not be analytic as far down the valleys. Saddles
-    /// are kept together only, or apart only, where the range allows no doubt which is better. Outside
-    /// its range a plan still answers, and its error figure says what may be missing.
+    /// larger one asks less of the phase, which need not be analytic as far down the valleys; so are finite
+    /// ends of the contour that lie as low. Saddles are kept together only, or apart only, where the range
+    /// allows no doubt which is better. Outside its range a plan still answers, and its error figure says what
+    /// may be missing.
     ///
     /// # Errors
     /// As [`Integral::plan`], and if the range's ends are not finite numbers above zero (an open upper

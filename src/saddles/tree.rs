@@ -60,17 +60,14 @@ impl Tree {
             let (a, b) = (&saddles[m], &saddles[n]);
             let near = |f: Complex64| (f - a.value).norm() < limit;
             near(b.value)
-                && [0.29, 0.5, 0.77]
-                    .iter()
-                    .all(|part| near(phase.value(a.z + (b.z - a.z) * part)))
+                && [0.29, 0.5, 0.77].iter().all(|part| near(phase.value(a.z + (b.z - a.z) * part)))
         };
         let merged_below = TOGETHER / (SPAN * least);
         let mut groups: Vec<Group> = Vec::new();
         let mut open: Vec<usize> = Vec::new();
         for index in 0..saddles.len() {
-            let merged = |&g: &usize| {
-                groups[g].members.iter().any(|&m| within(merged_below, m, index))
-            };
+            let merged =
+                |&g: &usize| groups[g].members.iter().any(|&m| within(merged_below, m, index));
             let open_to = |&g: &usize| groups[g].members.len() < largest && merged(&g);
             match open.iter().copied().find(open_to) {
                 Some(g) => groups[g].members.push(index),
@@ -86,9 +83,10 @@ impl Tree {
             let close = greatest < SPAN * least
                 && known(first)
                 && known(second)
-                && first.members.iter().all(|&m| {
-                    second.members.iter().all(|&n| within(TOGETHER / greatest, m, n))
-                });
+                && first
+                    .members
+                    .iter()
+                    .all(|&m| second.members.iter().all(|&n| within(TOGETHER / greatest, m, n)));
             let members = first.members.iter().chain(&second.members).copied().collect();
             open.retain(|&g| g != a && g != b);
             open.push(groups.len());
