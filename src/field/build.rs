@@ -1,7 +1,7 @@
 //! How a plan is made: location, grouping, expansions, topology, certificate.
 
 use super::algebraic::{algebraic_ends, branches, on_sheets};
-use super::plan::{End, MAX_GROUPS, Node, Place, Plan, decided};
+use super::plan::{End, LowEnd, MAX_GROUPS, Node, Place, Plan, decided};
 use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Powered, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
@@ -193,13 +193,21 @@ fn assemble(problem: &Problem, place: &Located, known: &mut Known) -> Result<Fou
         }
     }
     let top = reach.top;
-    for (end, at) in [points[0], points[points.len() - 1]].into_iter().enumerate() {
+    let mut low_ends = Vec::new();
+    for (end, z) in [points[0], points[points.len() - 1]].into_iter().enumerate() {
         let finite = [contour.start(), contour.end()][end] == Termination::Finite;
-        if finite && !matters[end] && height(phase.value(at)) >= top - drop {
+        if !finite || matters[end] {
+            continue;
+        }
+        let [f, slope, bend] = phase.jet(z);
+        if height(f) >= top - drop {
             known
                 .extend(nodes.into_iter().map(|n| (n.members, n.series)).filter(|n| n.1.is_some()));
             return Ok(Found::EndMatters(end));
         }
+        let weight = amplitude.value(z).norm();
+        let (slope, bend) = (slope.norm(), bend.norm());
+        low_ends.push(LowEnd { z, height: height(f), weight, slope, bend });
     }
     if top == f64::NEG_INFINITY {
         return Err(undecided(
@@ -212,6 +220,7 @@ fn assemble(problem: &Problem, place: &Located, known: &mut Known) -> Result<Fou
         nodes,
         roots: tree.roots,
         ends,
+        low_ends,
         algebraic,
         poles,
         saddles: Vec::new(),

@@ -133,6 +133,26 @@ impl Place {
     }
 }
 
+/// A finite end of the contour that was too low to matter.
+pub(super) struct LowEnd {
+    pub z: Complex64,
+    /// `Re(i f)`.
+    pub height: f64,
+    /// `|g|`, `|f'|` and `|f''|`.
+    pub weight: f64,
+    pub slope: f64,
+    pub bend: f64,
+}
+
+impl LowEnd {
+    /// What it may add: below the plan's range that counts.
+    fn size(&self, k: f64) -> Scaled {
+        let width = (2.0 * std::f64::consts::PI / (k * self.bend)).sqrt();
+        let size = 3.0 * self.weight * width.min((k * self.slope).recip());
+        Scaled::exp(Complex64::new(k * self.height, 0.0)) * size
+    }
+}
+
 /// Everything about an integral that does not depend on the wavenumber: the saddles, their
 /// groups with the uniform expansion of each, which of them the contour needs, and the error
 /// figures' ingredients. Made by [`Integral::plan`]; calls of [`Plan::at`] allocate nothing, and a
@@ -142,6 +162,7 @@ pub struct Plan {
     pub(super) nodes: Vec<Node>,
     pub(super) roots: Vec<usize>,
     pub(super) ends: Vec<End>,
+    pub(super) low_ends: Vec<LowEnd>,
     pub(super) algebraic: Vec<AlgebraicEnd>,
     pub(super) poles: Vec<Pole>,
     pub(super) saddles: Vec<Place>,
@@ -364,6 +385,9 @@ impl Plan {
             self.add_lower(root, &best, k, &mut total);
         }
         total.error = total.error + Scaled::exp(Complex64::new(k * self.floor, 0.0));
+        for end in &self.low_ends {
+            total.error = total.error + end.size(k);
+        }
         let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
         (total, form)
     }
