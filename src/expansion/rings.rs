@@ -38,6 +38,8 @@ const CLEAN: f64 = 1e-12;
 const HOLDS: f64 = 1e-3;
 /// Times that the first ring may be made smaller.
 pub(super) const FIRST: usize = 16;
+/// After so many rings without a form it is asked whether the phase has a cut there.
+const FAILURES: usize = 3;
 /// The last first rings that are tried, relative to the least one.
 const TIGHT: [f64; 3] = [1.0, 0.92, 0.86];
 /// First fillings of a fold whose saddles are far apart.
@@ -333,6 +335,20 @@ fn add_rings_without_far_poles(given: &Given, trials: &mut Vec<Trial>) {
     }
 }
 
+/// Whether the phase does not settle towards a point: across a cut through it values differ at any distance.
+fn jumps(phase: &dyn Phase, centre: Complex64, reach: f64) -> bool {
+    const POINTS: usize = 8;
+    let spread = |reach: f64| {
+        let value = |n: usize| {
+            let angle = std::f64::consts::TAU * (n as f64 + 0.3) / POINTS as f64;
+            phase.value(centre + Complex64::from_polar(reach, angle))
+        };
+        let first = value(0);
+        (1..POINTS).map(|n| (value(n) - first).norm()).fold(0.0, f64::max)
+    };
+    spread(0.5 * reach) > 0.7 * spread(reach)
+}
+
 /// The first ring: smaller while there is no form or the tails are not negligible, larger while
 /// the mapped saddles do not fit.
 fn first_ring(
@@ -352,6 +368,7 @@ fn first_ring(
     let mut tight = TIGHT.iter().filter(|_| saddles > 1).map(|part| part * least);
     // A form that holds on a larger ring, brought to this one.
     let mut known: Option<NormalForm> = None;
+    let mut failures = 0;
     for _ in 0..FIRST {
         if reach < least {
             match tight.next() {
@@ -360,6 +377,10 @@ fn first_ring(
             }
         }
         let form = known.take().or_else(|| NormalForm::find(given.phase, saddles, centre, reach));
+        failures = if form.is_some() { 0 } else { failures + 1 };
+        if failures > FAILURES && jumps(given.phase, centre, reach) {
+            break;
+        }
         if let Some(ring) = form.and_then(|form| Trial::new(form, given)) {
             // A large wavenumber needs a small ring: the noise of the phase grows with its size.
             let excess = (ring.form.radius().powi(ring.form.degree() as i32) * given.least

@@ -1,13 +1,14 @@
 //! How a plan is made: location, grouping, expansions, topology, certificate.
 
 use super::algebraic::{algebraic_ends, branches, on_sheets};
-use super::plan::{End, MAX_GROUPS, Node, Place, Plan, decided};
+use super::plan::{End, LowEnd, MAX_GROUPS, Node, Place, Plan, decided};
 use crate::Error;
 use crate::expansion::{Given, NearEnd, Pole, Powered, Series};
 use crate::integral::{Amplitude, Contour, Phase, Termination};
 use crate::ring::MAX_SADDLES;
 use crate::saddles::{Certificate, Group, Region, Saddle, Sheeting, Topology, Tree, locate_few};
 use num_complex::Complex64;
+use std::collections::HashMap;
 
 pub(super) fn undecided(reason: impl Into<String>) -> Error {
     Error::Undecided {
@@ -19,6 +20,11 @@ pub(super) fn undecided(reason: impl Into<String>) -> Error {
 
 /// The neighbourhood of the contour, in units of its size.
 const HOME: f64 = 0.3;
+
+/// The saddle that an end point needs may lie beyond it, at about Newton's distance: so many times that are
+/// searched, for an end too low to matter once.
+const BEYOND_AN_END: f64 = 2.5;
+const BEYOND_A_LOW_END: f64 = 1.5;
 
 /// An integral without its types.
 pub(super) struct Problem<'a> {
@@ -36,26 +42,63 @@ pub(super) struct Problem<'a> {
 
 /// One attempt: saddles are looked for within `margin` of the contour.
 pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
-    let Problem { phase, amplitude, contour, drop, .. } = *problem;
-    let least = problem.wavenumbers.0;
+    let Problem { phase, contour, powers, drop, .. } = *problem;
+    let topology = Topology::new(phase, contour, drop);
     let points = contour.points();
+    let ends = [points[0], points[points.len() - 1]];
+    let finite = [contour.start(), contour.end()].map(|end| end == Termination::Finite);
     let mut reached = points.to_vec();
-    // The saddle that an end point needs may lie beyond it, at about Newton's distance.
-    for (end, &z) in [(contour.start(), &points[0]), (contour.end(), &points[points.len() - 1])] {
-        if end == Termination::Finite {
-            let [_, slope, bend] = phase.jet(z);
-            let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
-            let far = (2.5 * slope.norm() / bend.norm()).min(4.0 * longest);
-            if far.is_finite() {
-                let corner = Complex64::new(far, far);
-                reached.extend([z - corner, z + corner]);
-            }
+    let mut matters = finite;
+    for (end, &z) in ends.iter().enumerate().filter(|&(end, _)| finite[end]) {
+        // An end far below the contour is likely too low to matter, like one in a valley.
+        matters[end] = powers[end] != 1.0 || !topology.is_low(z);
+        let beyond = if matters[end] { BEYOND_AN_END } else { BEYOND_A_LOW_END };
+        let [_, slope, bend] = phase.jet(z);
+        let longest = points.iter().map(|p| (p - z).norm()).fold(0.0, f64::max);
+        let far = (beyond * slope.norm() / bend.norm()).min(4.0 * longest);
+        if far.is_finite() {
+            let corner = Complex64::new(far, far);
+            reached.extend([z - corner, z + corner]);
         }
     }
     let region = Region::around(&reached, margin);
     let saddles = locate_few(phase, region, MAX_GROUPS)?;
-    let size = region.size();
-    let topology = Topology::new(phase, contour, &saddles, drop);
+    let topology = topology.with_saddles(&saddles);
+    let mut known = Known::new();
+    loop {
+        let place =
+            Located { topology: &topology, saddles: &saddles, size: region.size(), matters };
+        match assemble(problem, &place, &mut known)? {
+            Found::Plan(plan) => return Ok(*plan),
+            Found::EndMatters(end) => matters[end] = true,
+        }
+    }
+}
+
+/// The saddles, the descents from the ends of the contour, and which ends may contribute.
+struct Located<'a> {
+    topology: &'a Topology<'a>,
+    saddles: &'a [Saddle],
+    /// Of the region that was searched.
+    size: f64,
+    matters: [bool; 2],
+}
+
+/// What is made of them.
+enum Found {
+    Plan(Box<Plan>),
+    /// An end of the contour is not as low as it was thought to be.
+    EndMatters(usize),
+}
+
+/// The series of groups that have been looked at, by their saddles: none for some.
+type Known = HashMap<u64, Option<Series>>;
+
+fn assemble(problem: &Problem, place: &Located, known: &mut Known) -> Result<Found, Error> {
+    let Problem { phase, amplitude, contour, drop, .. } = *problem;
+    let Located { topology, saddles, size, matters } = *place;
+    let least = problem.wavenumbers.0;
+    let points = contour.points();
     let tails = topology.tails();
     let branches = branches(problem)?;
     let bases: Vec<Complex64> = branches.iter().map(|branch| branch.base).collect();
@@ -63,10 +106,10 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
 
     let mut ends: Vec<End> = Vec::new();
     let mut reach = Reach { top: f64::NEG_INFINITY, lowest: f64::INFINITY };
-    for (at, sign, termination) in
-        [(points[0], 1.0, contour.start()), (points[points.len() - 1], -1.0, contour.end())]
+    for (at, sign, matters) in
+        [(points[0], 1.0, matters[0]), (points[points.len() - 1], -1.0, matters[1])]
     {
-        if termination == Termination::Finite {
+        if matters {
             let f = phase.value(at);
             reach.include(height(f), topology.turned_height(f));
             if branches.iter().any(|branch| branch.base == at) {
@@ -85,7 +128,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
 
-    let poles = measure(problem, &topology, size)?;
+    let poles = measure(problem, topology, size)?;
     for (pole, _) in &poles {
         if pole.crossings != 0 {
             reach.include(height(pole.value), topology.turned_height(pole.value));
@@ -93,11 +136,11 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     }
     let given = Given { least, phase, amplitude, poles: &poles, outside: &bases };
 
-    let tree = Tree::new(phase, &saddles, MAX_SADDLES, problem.wavenumbers);
+    let tree = Tree::new(phase, saddles, MAX_SADDLES, problem.wavenumbers);
     if tree.groups.len() > MAX_GROUPS {
         return Err(undecided(format!("{} saddles near the contour are too many", saddles.len())));
     }
-    let algebraic = algebraic_ends(problem, &mut sheeting, &tree, &saddles, size)?;
+    let algebraic = algebraic_ends(problem, &mut sheeting, &tree, saddles, size)?;
     for (node, series) in algebraic.iter().flat_map(|end| &end.near) {
         if !series.is_plain() {
             for &member in &tree.groups[*node].members {
@@ -112,16 +155,16 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
     };
     let scene = Scene {
         sheeting: &sheeting,
-        topology: &topology,
+        topology,
         tree: &tree,
-        saddles: &saddles,
+        saddles,
         ends: &ends,
         beside: &beside,
         home: Region::around(points, HOME),
         size,
         drop,
     };
-    let nodes = resolve(&given, &scene, &mut reach)?;
+    let nodes = resolve(&given, &scene, &mut reach, known)?;
     for end in &mut ends {
         let tail = tails[usize::from(end.sign < 0.0)];
         for (index, node) in nodes.iter().enumerate() {
@@ -150,6 +193,22 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         }
     }
     let top = reach.top;
+    let mut low_ends = Vec::new();
+    for (end, z) in [points[0], points[points.len() - 1]].into_iter().enumerate() {
+        let finite = [contour.start(), contour.end()][end] == Termination::Finite;
+        if !finite || matters[end] {
+            continue;
+        }
+        let [f, slope, bend] = phase.jet(z);
+        if height(f) >= top - drop {
+            known
+                .extend(nodes.into_iter().map(|n| (n.members, n.series)).filter(|n| n.1.is_some()));
+            return Ok(Found::EndMatters(end));
+        }
+        let weight = amplitude.value(z).norm();
+        let (slope, bend) = (slope.norm(), bend.norm());
+        low_ends.push(LowEnd { z, height: height(f), weight, slope, bend });
+    }
     if top == f64::NEG_INFINITY {
         return Err(undecided(
             "no saddle and no pole that was named contributes: the integral vanishes, both ends of the \
@@ -161,13 +220,14 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         nodes,
         roots: tree.roots,
         ends,
+        low_ends,
         algebraic,
         poles,
         saddles: Vec::new(),
         floor: top - drop,
     };
     let lowest = if reach.lowest.is_finite() { reach.lowest } else { topology.bottom() };
-    certify(&mut plan, &topology, lowest - drop)?;
+    certify(&mut plan, topology, lowest - drop)?;
     let ends = !(plan.ends.is_empty() && plan.algebraic.is_empty());
     let kept = plan.nodes.iter().filter_map(|node| node.series.as_ref());
     if !ends
@@ -194,7 +254,7 @@ pub(super) fn attempt(problem: &Problem, margin: f64) -> Result<Plan, Error> {
         let weight = amplitude.value(saddle.z).norm();
         plan.saddles.push(Place { z: saddle.z, exponent, weight, spread, together });
     }
-    Ok(plan)
+    Ok(Found::Plan(Box::new(plan)))
 }
 
 /// The poles with their steepest ascents and the contour's crossings of those.
@@ -254,9 +314,42 @@ struct Scene<'a> {
     drop: f64,
 }
 
+impl Scene<'_> {
+    /// The series of a group with its multiplicities.
+    fn series(&self, given: &Given, index: usize) -> Option<Series> {
+        let Scene { sheeting, topology, tree, saddles, beside, size, .. } = *self;
+        let group = &tree.groups[index];
+        // No ring may hold an algebraic end.
+        let branches = sheeting.branches();
+        let gap = if group.gap.is_finite() { group.gap } else { size };
+        let gap = branches.iter().map(|b| (b.base - group.centre).norm()).fold(gap, f64::min);
+        let lifts = branches.iter().map(|b| (*b, b.angle(group.centre)));
+        let powered = Powered::new(given.amplitude, group.centre, lifts);
+        let given = &Given { amplitude: powered.simplest(), ..*given };
+        let places: Vec<Complex64> = group.members.iter().map(|&m| saddles[m].z).collect();
+        let reach = ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius);
+        let series = Series::new(given, &places, group.centre, reach)?;
+        let series = if branches.is_empty() {
+            let m = topology.multiplicities(series.form())?;
+            series.with_multiplicities(m)
+        } else {
+            let sheets = sheeting.multiplicities(series.form(), group.centre)?;
+            on_sheets(series, branches, &sheets)
+        };
+        // Close to an algebraic end the ring about the end sees more than a small one beside it.
+        let agrees = beside(index).is_none_or(|t| t == series.contributes());
+        agrees.then(|| series.with_powers(&powered.powers))
+    }
+}
+
 /// Series and multiplicities of all groups, from the highest downwards.
-fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>, Error> {
-    let Scene { sheeting, topology, tree, saddles, ends, beside, home, size, drop } = *scene;
+fn resolve(
+    given: &Given,
+    scene: &Scene,
+    reach: &mut Reach,
+    known: &mut Known,
+) -> Result<Vec<Node>, Error> {
+    let Scene { topology, tree, saddles, ends, beside, home, size, drop, .. } = *scene;
     let highest = |g: &Group| {
         g.members.iter().map(|&m| height(saddles[m].value)).fold(f64::NEG_INFINITY, f64::max)
     };
@@ -266,43 +359,35 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
     };
     let mut nodes: Vec<Node> = tree.groups.iter().map(Node::new).collect();
     let mut order: Vec<usize> = (0..tree.groups.len()).collect();
-    order.sort_by(|&a, &b| highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a])));
+    // Of the same height close groups come before their parts, others after them.
+    let rank = |index: usize| {
+        let close = tree.groups[index].close;
+        (!close, if close { usize::MAX - index } else { index })
+    };
+    order.sort_by(|&a, &b| {
+        let heights = highest(&tree.groups[b]).total_cmp(&highest(&tree.groups[a]));
+        heights.then(rank(a).cmp(&rank(b)))
+    });
+    // Parts of close groups with an expansion.
+    let mut spared: Vec<u64> = Vec::new();
     for index in order {
         let group = &tree.groups[index];
+        let members = nodes[index].members;
+        if spared.iter().any(|whole| whole & members == members) {
+            continue;
+        }
         let gap = if group.gap.is_finite() { group.gap } else { size };
         // An end point near a saddle needs its series, whether the saddle contributes or not.
-        let ended = ends.iter().any(|end| (end.at - group.centre).norm() < group.radius + gap);
-        let together = beside(index);
-        nodes[index].settled = together.is_some();
-        // No ring may hold an algebraic end.
-        let branches = sheeting.branches();
-        let gap = branches.iter().map(|b| (b.base - group.centre).norm()).fold(gap, f64::min);
-        let lifts = branches.iter().map(|b| (*b, b.angle(group.centre)));
-        let powered = Powered::new(given.amplitude, group.centre, lifts);
-        let given = &Given { amplitude: powered.simplest(), ..*given };
+        let near = |end: &&End| (end.at - group.centre).norm() < group.radius + gap;
+        let ended = ends.iter().any(|end| near(&end) && !end.is_sharp(given.least, reach.top));
+        nodes[index].settled = beside(index).is_some();
         if !ended && (topology.above(lowest(group)) || highest(group) < reach.top - drop) {
             nodes[index].settled = true;
             continue;
         }
-        let places: Vec<Complex64> = group.members.iter().map(|&m| saddles[m].z).collect();
-        let Some(series) = Series::new(
-            given,
-            &places,
-            group.centre,
-            ((1.5 * group.radius).max(0.3 * gap), 1.2 * group.radius),
-        ) else {
-            continue;
-        };
-        let series = if branches.is_empty() {
-            topology.multiplicities(series.form()).map(|m| series.with_multiplicities(m))
-        } else {
-            sheeting
-                .multiplicities(series.form(), group.centre)
-                .map(|s| on_sheets(series, branches, &s))
-        };
-        // Close to an algebraic end the ring about the end sees more than a small one beside it.
-        let agrees = |series: &Series| together.is_none_or(|t| t == series.contributes());
-        let Some(series) = series.filter(agrees) else {
+        let Some(series) = known.remove(&members).unwrap_or_else(|| scene.series(given, index))
+        else {
+            known.insert(members, None);
             continue;
         };
         if series.contributes() {
@@ -310,25 +395,32 @@ fn resolve(given: &Given, scene: &Scene, reach: &mut Reach) -> Result<Vec<Node>,
             let heights = group.members.iter().map(|&m| height(saddles[m].value));
             reach.include(heights.fold(f64::INFINITY, f64::min), lowest(group));
         }
-        nodes[index].series = Some(series.with_powers(&powered.powers));
+        if group.close {
+            spared.push(members);
+            nodes[index].parts = None;
+        }
+        nodes[index].series = Some(series);
         nodes[index].settled = true;
     }
     // Saddles without an expansion, alone or with others, are refused near the contour. Far from it they
     // are left out, and the certificate decides whether they matter.
-    for &root in &tree.roots {
-        if !decided(&nodes, root) {
-            let group = &tree.groups[root];
-            if group.members.iter().any(|&m| home.holds(saddles[m].z, 0.0)) {
-                return Err(undecided(format!(
-                    "no normal form or no clear ridge for the saddles near {:.4}",
-                    group.centre
-                )));
-            }
-            let members = nodes[root].members;
-            for node in &mut nodes {
-                node.settled |= node.parts.is_none() && node.members & members != 0;
-            }
+    let mut stack: Vec<usize> = tree.roots.clone();
+    while let Some(index) = stack.pop() {
+        if decided(&nodes, index) {
+            continue;
         }
+        if let Some((a, b)) = nodes[index].parts {
+            stack.extend([a, b]);
+            continue;
+        }
+        let group = &tree.groups[index];
+        if group.members.iter().any(|&m| home.holds(saddles[m].z, 0.0)) {
+            return Err(undecided(format!(
+                "no normal form or no clear ridge for the saddles near {:.4}",
+                group.centre
+            )));
+        }
+        nodes[index].settled = true;
     }
     Ok(nodes)
 }

@@ -9,7 +9,7 @@
 //!
 //! Source: differentiation under the integral sign (textbook); the expansions as in the plan.
 
-use super::plan::{AlgebraicEnd, End, Node, Place, Plan, Shared, below, finish};
+use super::plan::{AlgebraicEnd, End, LowEnd, Node, Place, Plan, Shared, below, finish};
 use crate::estimate::FieldGradient;
 use crate::expansion::{Contribution, Layer, Layers, Pole, Series};
 use crate::integral::{Amplitude, Gradient, MovingEnd, ParameterDerivatives, Phase};
@@ -129,6 +129,7 @@ impl Plan {
                 nodes: Vec::with_capacity(self.nodes.len()),
                 roots: self.roots.clone(),
                 ends: Vec::new(),
+                low_ends: Vec::new(),
                 algebraic: Vec::new(),
                 poles: layers.poles[n].clone(),
                 saddles: Vec::with_capacity(self.saddles.len()),
@@ -168,6 +169,12 @@ impl Plan {
             }
         }
         let mut values = vec![Complex64::new(0.0, 0.0); count];
+        for &LowEnd { z, height, slope, bend, .. } in &self.low_ends {
+            fill(z, &mut values);
+            for (plan, g) in plans.iter_mut().zip(&values) {
+                plan.low_ends.push(LowEnd { z, height, weight: g.norm(), slope, bend });
+            }
+        }
         for &Place { z, exponent, spread, together, .. } in &self.saddles {
             fill(z, &mut values);
             for (plan, &g) in plans.iter_mut().zip(&values) {

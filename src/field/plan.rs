@@ -28,6 +28,12 @@ const NEPERS: f64 = 40.0;
 /// certificate says that a contributing saddle is missing.
 const MARGINS: [f64; 3] = [0.3, 1.0, 3.0];
 
+/// A plan with a relative error figure above this at the greatest wavenumber is tried to be bettered.
+const POOR: f64 = 1e-2;
+
+/// Rounding, in nepers.
+const ROUNDING: f64 = 36.0;
+
 /// A group of saddles with its series, if it has one that could be followed.
 pub(super) struct Node {
     pub series: Option<Series>,
@@ -54,6 +60,14 @@ pub(super) struct End {
 }
 
 impl End {
+    /// Whether its own series is as good as can be from this wavenumber on, or as needed beside a contribution
+    /// of the height `top`.
+    pub fn is_sharp(&self, least: f64, top: f64) -> bool {
+        let Some(own) = &self.own else { return false };
+        let own = own.at(least, usize::MAX);
+        own.is_sharp() || own.error.ln_norm() < least * top - ROUNDING
+    }
+
     /// The form with the smaller error figure.
     fn at(
         &self,
@@ -119,6 +133,26 @@ impl Place {
     }
 }
 
+/// A finite end of the contour that was too low to matter.
+pub(super) struct LowEnd {
+    pub z: Complex64,
+    /// `Re(i f)`.
+    pub height: f64,
+    /// `|g|`, `|f'|` and `|f''|`.
+    pub weight: f64,
+    pub slope: f64,
+    pub bend: f64,
+}
+
+impl LowEnd {
+    /// What it may add: below the plan's range that counts.
+    fn size(&self, k: f64) -> Scaled {
+        let width = (2.0 * std::f64::consts::PI / (k * self.bend)).sqrt();
+        let size = 3.0 * self.weight * width.min((k * self.slope).recip());
+        Scaled::exp(Complex64::new(k * self.height, 0.0)) * size
+    }
+}
+
 /// Everything about an integral that does not depend on the wavenumber: the saddles, their
 /// groups with the uniform expansion of each, which of them the contour needs, and the error
 /// figures' ingredients. Made by [`Integral::plan`]; calls of [`Plan::at`] allocate nothing, and a
@@ -128,6 +162,7 @@ pub struct Plan {
     pub(super) nodes: Vec<Node>,
     pub(super) roots: Vec<usize>,
     pub(super) ends: Vec<End>,
+    pub(super) low_ends: Vec<LowEnd>,
     pub(super) algebraic: Vec<AlgebraicEnd>,
     pub(super) poles: Vec<Pole>,
     pub(super) saddles: Vec<Place>,
@@ -177,9 +212,10 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
     /// cheaper plan, `k..=k` the cheapest.
     ///
     /// Contributions that are 40 nepers or more below the highest at the least `k` are left out: a
-    /// larger one asks less of the phase, which need not be analytic as far down the valleys. Saddles
-    /// are kept together only, or apart only, where the range allows no doubt which is better. Outside
-    /// its range a plan still answers, and its error figure says what may be missing.
+    /// larger one asks less of the phase, which need not be analytic as far down the valleys; so are finite
+    /// ends of the contour that lie as low. Saddles are kept together only, or apart only, where the range
+    /// allows no doubt which is better. Outside its range a plan still answers, and its error figure says what
+    /// may be missing.
     ///
     /// # Errors
     /// As [`Integral::plan`], and if the range's ends are not finite numbers above zero (an open upper
@@ -228,14 +264,31 @@ impl<P: Phase, A: Amplitude> Integral<P, A> {
             drop: NEPERS / least,
             wavenumbers: (least, greatest),
         };
+        // Saddles next to the region may spoil the expansions of those inside: then its best plan.
+        let figure = |plan: &Plan| {
+            let top = plan.at(greatest).map(|u| u.relative_error);
+            if greatest.is_finite() { top.unwrap_or(f64::INFINITY) } else { 0.0 }
+        };
+        let mut best: Option<(f64, Plan)> = None;
         let mut last = None;
         for margin in MARGINS {
             match attempt(&problem, margin) {
-                Ok(plan) => return Ok(plan),
+                Ok(plan) => {
+                    let figure = figure(&plan);
+                    if figure < POOR {
+                        return Ok(plan);
+                    }
+                    if best.as_ref().is_none_or(|best| figure < best.0) {
+                        best = Some((figure, plan));
+                    }
+                }
                 Err(error) => last = Some(error),
             }
         }
-        Err(last.expect("at least one attempt was made"))
+        match best {
+            Some((_, plan)) => Ok(plan),
+            None => Err(last.expect("at least one attempt was made")),
+        }
     }
 }
 
@@ -332,6 +385,9 @@ impl Plan {
             self.add_lower(root, &best, k, &mut total);
         }
         total.error = total.error + Scaled::exp(Complex64::new(k * self.floor, 0.0));
+        for end in &self.low_ends {
+            total.error = total.error + end.size(k);
+        }
         let form = if clusters > 0 { Form::Saddles { clusters, largest } } else { Form::EndPoints };
         (total, form)
     }

@@ -18,6 +18,12 @@ pub trait Phase {
         self.value_and_derivative(z).0
     }
 
+    /// `f'(z)` alone. The search for saddles asks for nothing else: worth an override where the value
+    /// costs more than the derivative.
+    fn derivative(&self, z: Complex64) -> Complex64 {
+        self.value_and_derivative(z).1
+    }
+
     /// `f(z)`, `f'(z)` and `f''(z)`. The second derivative steers step lengths only; without an
     /// override it is a difference of `f'` over `1e-7 (1 + |z|)`, good to some eight digits where lengths
     /// are of order 1; for lengths below some 1e-4 measure `z` in other units or give a `Formula`.

@@ -109,6 +109,10 @@ impl Phase for Metered<'_> {
         if self.is_spent() { (NAN, NAN) } else { self.phase.value_and_derivative(z) }
     }
 
+    fn derivative(&self, z: Complex64) -> Complex64 {
+        if self.is_spent() { NAN } else { self.phase.derivative(z) }
+    }
+
     fn jet(&self, z: Complex64) -> [Complex64; 3] {
         if self.is_spent() { [NAN; 3] } else { self.phase.jet(z) }
     }
@@ -279,7 +283,7 @@ fn regular(phase: &dyn Phase, region: &Region) -> bool {
 }
 
 fn slope(phase: &dyn Phase, z: Complex64) -> Option<Complex64> {
-    let (_, d) = phase.value_and_derivative(z);
+    let d = phase.derivative(z);
     (d.re.is_finite() && d.im.is_finite() && d.norm() > 0.0).then_some(d)
 }
 
@@ -296,7 +300,9 @@ fn turning(
     // The size may not change too much either: exp turns by whole turns over one chord.
     let calm = first.re.abs() < 3.0 && second.re.abs() < 3.0;
     let (first, second) = (first.im, second.im);
-    if first.abs() < 0.8 && second.abs() < 0.8 && (calm || depth < 8) {
+    // Beside two saddles close to the chord a whole turn would be missed: there f' is far from its mean.
+    let straight = ((from.1 + to.1) * 0.5 - d).norm_sqr() < d.norm_sqr();
+    if first.abs() < 0.8 && second.abs() < 0.8 && straight && (calm || depth < 8) {
         return Some(first + second);
     }
     if depth == 0 {

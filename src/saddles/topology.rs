@@ -33,6 +33,7 @@ pub(super) const SLACK: f64 = 0.05;
 pub(super) const DELTA: f64 = 0.03;
 
 /// The contour as the topology sees it.
+#[derive(Clone)]
 pub(crate) struct Topology<'a> {
     pub(super) h: Exponent<'a>,
     /// The given path, its points moved by a hair so that none lies on a ridge.
@@ -50,13 +51,9 @@ pub(crate) struct Topology<'a> {
 }
 
 impl<'a> Topology<'a> {
-    /// `drop`: how far below the highest contribution a cluster may lie and still matter.
-    pub fn new(
-        phase: &'a dyn Phase,
-        contour: &Contour,
-        saddles: &[Saddle],
-        drop: f64,
-    ) -> Topology<'a> {
+    /// The heights of the contour alone. `drop`: how far below the highest contribution a cluster may lie
+    /// and still matter.
+    pub fn new(phase: &'a dyn Phase, contour: &Contour, drop: f64) -> Topology<'a> {
         let h = Exponent::new(phase, DELTA);
         let points = contour.points();
         let size = points.windows(2).map(|p| (p[1] - p[0]).norm()).fold(0.0, f64::max);
@@ -81,32 +78,38 @@ impl<'a> Topology<'a> {
                 bottom = bottom.min(height);
             }
         }
-        let longest = size;
-        let deep = saddles.iter().fold(bottom, |m, s| m.min(h.of(s.value).re)) - drop;
-        let tail = |from: Complex64| {
-            let mut line = vec![from];
-            if !closed {
-                trace(&h, from, deep, longest, &mut line);
-            }
-            line
-        };
-        let first = tail(path[0]);
-        let last = tail(path[path.len() - 1]);
-        let mut whole: Vec<Complex64> = first.iter().rev().copied().collect();
-        whole.extend(&path[1..]);
-        whole.extend(&last[1..]);
         Topology {
             h,
-            tails: [first, last],
+            tails: [path[0], path[path.len() - 1]].map(|end| vec![end]),
+            whole: path.clone(),
             path,
-            whole,
             closed,
-            saddles: saddles.to_vec(),
+            saddles: Vec::new(),
             top: top + 0.02 * (top - bottom) + 1e-12 * top.abs(),
             bottom,
             drop,
-            longest,
+            longest: size,
         }
+    }
+
+    /// With the saddles near, and the descents from the contour's ends.
+    pub fn with_saddles(mut self, saddles: &[Saddle]) -> Self {
+        self.saddles = saddles.to_vec();
+        let heights = saddles.iter().map(|s| self.h.of(s.value).re);
+        let deep = heights.fold(self.bottom, f64::min) - self.drop;
+        if !self.closed {
+            for tail in &mut self.tails {
+                trace(&self.h, tail[0], deep, self.longest, tail);
+            }
+        }
+        let [first, last] = &self.tails;
+        self.whole = first.iter().rev().chain(&self.path[1..]).chain(&last[1..]).copied().collect();
+        self
+    }
+
+    /// Whether a point lies so far below the highest point of the contour that it may not matter.
+    pub fn is_low(&self, z: Complex64) -> bool {
+        self.h.height(z) < self.top - self.drop
     }
 
     /// `Re h` of a phase value, in the turned exponent.

@@ -59,6 +59,8 @@ const CUTS: usize = 4;
 const GROWTH: f64 = 2.5;
 /// A step that is taken back is tried again with this part of its length.
 const BACK: f64 = 0.3;
+/// The last point is as exact as this part of the way.
+const EXACT: f64 = 1e-9;
 /// Steps of one trace at most.
 const STEPS: usize = 400;
 
@@ -125,6 +127,14 @@ pub(crate) fn trace(
             slope = ahead + secant * correction;
             bend = secant;
             shrink = 1.0;
+            // What Newton's step left over may be more than the last of a long way down.
+            if t >= span && (secant * correction * correction).norm() > EXACT * span {
+                let (value, slope) = h.value_and_slope(z);
+                let rest = (origin + direction * t - value) / slope;
+                if let Some(last) = path.last_mut().filter(|_| rest.norm() < w.norm()) {
+                    *last += rest;
+                }
+            }
         } else {
             // Where the slope is smooth but the value jumps, the path leaves the sheet that the closure
             // is on; the contour is on it, and can't be met again. The jump is measured from the value at

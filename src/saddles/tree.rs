@@ -24,6 +24,9 @@ pub(crate) struct Group {
     pub gap: f64,
     /// The two groups that this one joins; none for the finest level.
     pub parts: Option<(usize, usize)>,
+    /// Its saddles are so close at every wavenumber of the range that they are best taken together: the
+    /// parts are of use only where the whole has no expansion.
+    pub close: bool,
 }
 
 /// Groups, parts before wholes.
@@ -37,7 +40,8 @@ pub(crate) struct Tree {
 /// Saddles whose phases differ by less than this over the greatest wavenumber are not worth telling
 /// apart: each alone would be known to some `e^-6` at best.
 const TOGETHER: f64 = 6.0;
-/// Without a greatest wavenumber: this many times the least.
+/// No wavenumber is greater than this many times the least one: what is close even there is merged, and has no
+/// parts.
 const SPAN: f64 = 3e7;
 /// Beyond this over the least wavenumber, taking saddles together does not pay.
 const APART: f64 = 60.0;
@@ -50,22 +54,20 @@ impl Tree {
         largest: usize,
         (least, greatest): (f64, f64),
     ) -> Tree {
-        let merged_below = TOGETHER / greatest.min(SPAN * least);
+        // Merged saddles have no hill between them; distant ones may agree by chance, and halfway too where
+        // the phase is periodic.
+        let within = |limit: f64, m: usize, n: usize| {
+            let (a, b) = (&saddles[m], &saddles[n]);
+            let near = |f: Complex64| (f - a.value).norm() < limit;
+            near(b.value)
+                && [0.29, 0.5, 0.77].iter().all(|part| near(phase.value(a.z + (b.z - a.z) * part)))
+        };
+        let merged_below = TOGETHER / (SPAN * least);
         let mut groups: Vec<Group> = Vec::new();
         let mut open: Vec<usize> = Vec::new();
         for index in 0..saddles.len() {
-            let merged = |&g: &usize| {
-                groups[g].members.iter().any(|&m| {
-                    let (a, b) = (&saddles[m], &saddles[index]);
-                    // Merged saddles have no hill between them; distant ones may agree by chance,
-                    // and halfway too where the phase is periodic.
-                    let near = |f: Complex64| (f - a.value).norm() < merged_below;
-                    near(b.value)
-                        && [0.29, 0.5, 0.77]
-                            .iter()
-                            .all(|part| near(phase.value(a.z + (b.z - a.z) * part)))
-                })
-            };
+            let merged =
+                |&g: &usize| groups[g].members.iter().any(|&m| within(merged_below, m, index));
             let open_to = |&g: &usize| groups[g].members.len() < largest && merged(&g);
             match open.iter().copied().find(open_to) {
                 Some(g) => groups[g].members.push(index),
@@ -76,11 +78,19 @@ impl Tree {
             }
         }
         while let Some((a, b)) = nearest(&groups, &open, saddles, largest, APART / least) {
-            let mut members = groups[a].members.clone();
-            members.extend(&groups[b].members);
+            let (first, second) = (&groups[a], &groups[b]);
+            let known = |g: &Group| g.close || g.parts.is_none();
+            let close = greatest < SPAN * least
+                && known(first)
+                && known(second)
+                && first
+                    .members
+                    .iter()
+                    .all(|&m| second.members.iter().all(|&n| within(TOGETHER / greatest, m, n)));
+            let members = first.members.iter().chain(&second.members).copied().collect();
             open.retain(|&g| g != a && g != b);
             open.push(groups.len());
-            groups.push(group(members, Some((a, b))));
+            groups.push(Group { close, ..group(members, Some((a, b))) });
         }
         for group in &mut groups {
             measure(group, saddles);
@@ -90,7 +100,14 @@ impl Tree {
 }
 
 fn group(members: Vec<usize>, parts: Option<(usize, usize)>) -> Group {
-    Group { members, centre: Complex64::new(0.0, 0.0), radius: 0.0, gap: f64::INFINITY, parts }
+    Group {
+        members,
+        centre: Complex64::new(0.0, 0.0),
+        radius: 0.0,
+        gap: f64::INFINITY,
+        parts,
+        close: false,
+    }
 }
 
 fn measure(group: &mut Group, saddles: &[Saddle]) {
