@@ -94,6 +94,7 @@ impl Case {
             (h, slope * gradient)
         });
         let passage = guide.along(mode, bed.unwrap(), from).unwrap().passage().clone();
+        let passage = passage.paraxial().unwrap();
         assert!(passage.fit_departure() < 1e-9, "the fit is exact");
         (taper, passage, kb)
     }

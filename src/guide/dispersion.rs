@@ -211,6 +211,10 @@ impl Phase for ModePhase {
         self.height(z, &self.wide().spot(z)) * self.turn
     }
 
+    fn derivative(&self, z: Complex64) -> Complex64 {
+        self.slope(z, &self.wide().spot(z)) * self.turn
+    }
+
     fn jet(&self, z: Complex64) -> [Complex64; 3] {
         let spot = self.wide().spot(z);
         let Spot { p, kappa, w, cosine, .. } = spot;
