@@ -3,8 +3,9 @@
 //! On a straight profile it runs from valley to valley. For `m > 1` it ends before the Brewster parameter,
 //! where the expansion in `eps` breaks down; on a curved profile both ends are finite, since the fit of the
 //! profile says nothing about far valleys: they lie where the bend of the profile still counts for less in the
-//! exponent than the rest. What is cut off is measured and refused above a tolerance, and so is the jump of the
-//! amplitude where the fitted slope turns.
+//! exponent than the rest. What is cut off is measured and refused above a tolerance. So is the integrand at a complex
+//! width where the profile turns, if the contour crosses the cut from there: on which side such a point is passed is
+//! for the contour of steepest descent to say, and no fit is known well enough for that.
 
 use super::dispersion::ModePhase;
 use super::uniform::SlopingGuide;
@@ -48,7 +49,7 @@ impl SlopingGuide {
             let omega = self.bound_angle(phase.h.re);
             let length = |angle: f64| ((1.5 - omega) / angle.sin()).min(2.2);
             let (left, left_size) = lowest(&inside, k, I * omega, &[1.85, 2.1, 2.35, 2.6], length);
-            // The right end by which the least is lost, the jump of the slope's root included.
+            // The right end by which the least is lost, the turns of the profile included.
             let (mut right, mut jump) = (near, f64::INFINITY);
             neglected = f64::INFINITY;
             for angle in angles {
@@ -65,7 +66,7 @@ impl SlopingGuide {
             if jump > self.tolerance {
                 return Err(Error::Undecided {
                     reason: format!(
-                        "the fit of the profile turns where the integrand has still the size {jump:.1e}"
+                        "the profile turns at a complex width where the integrand has still the size {jump:.1e}"
                     ),
                     remedy: "take a smaller eps or a straighter profile, smoothed over its small bends",
                 });
@@ -96,22 +97,51 @@ impl SlopingGuide {
         Ok((contour, neglected))
     }
 
-    /// Largest size of the exponential where a path crosses the cut of `T'(u)^(1/2)`: the fit of the profile turns
-    /// near there, and the amplitude jumps.
+    /// Largest size of the exponential on the cuts of `T(u)` that a path crosses, from there in to the turn of the
+    /// profile at which they begin.
     fn jump(&self, phase: &ModePhase, k: f64, points: [Complex64; 3]) -> f64 {
         const STEPS: u32 = 40;
         let Some(curve) = &self.curve else { return 0.0 };
-        let root = |w: Complex64| curve.slope(self.dispersion.cutoff - self.dispersion.width(w)).0;
-        let (mut last, mut most) = (root(points[0]), 0.0f64);
+        let lost = |w: Complex64| self.dispersion.cutoff - self.dispersion.width(w);
+        let root = |u: Complex64| curve.slope(u).0;
+        let apart = |a: Complex64, b: Complex64| (a - b).norm() / (a.norm() + b.norm());
+        let (mut from, mut most) = (points[0], 0.0f64);
         for ends in points.windows(2) {
             for j in 1..=STEPS {
-                let w = ends[0] + (ends[1] - ends[0]) * (f64::from(j) / f64::from(STEPS));
-                let next = root(w);
-                // A smooth root turns by little in a step, one that jumps by half a turn.
-                if (next * last.conj()).re < 0.0 {
-                    most = most.max((I * k * phase.value(w)).re.exp());
+                let to = ends[0] + (ends[1] - ends[0]) * (f64::from(j) / f64::from(STEPS));
+                let (mut before, mut after) = (from, to);
+                from = to;
+                let [mut low, mut high] = [before, after].map(|w| root(lost(w)));
+                if apart(low, high) < 0.1 {
+                    continue;
                 }
-                last = next;
+                for _ in 0..30 {
+                    let middle = 0.5 * (before + after);
+                    let there = root(lost(middle));
+                    if apart(low, there) > apart(there, high) {
+                        (after, high) = (middle, there);
+                    } else {
+                        (before, low) = (middle, there);
+                    }
+                }
+                if apart(low, high) < 1e-3 {
+                    continue;
+                }
+                // The cut leads straight away from u = 0.
+                let (mut w, far) = (after, lost(after));
+                for step in (1..STEPS).rev() {
+                    most = most.max((I * k * phase.value(w)).re.exp());
+                    let u = far * (f64::from(step) / f64::from(STEPS));
+                    let sides = [1e-7, -1e-7].map(|turn| root(u * (1.0 + I * turn)));
+                    if apart(sides[0], sides[1]) < 1e-3 {
+                        break;
+                    }
+                    for _ in 0..8 {
+                        let width = self.dispersion.width(w);
+                        let slope = self.dispersion.width_slope(w, width) * w.cosh();
+                        w -= (width - (self.dispersion.cutoff - u)) / slope;
+                    }
+                }
             }
         }
         most

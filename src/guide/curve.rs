@@ -1,7 +1,12 @@
 //! What the bend of a profile adds to the uniform field.
 //!
-//! Round cut-off the scaled range is `T(u) = u + G(u)`, `u = h_c - h` (unit slope at cut-off). The phase is `phi(p) =
-//! integral of 2 p T(h_n(p)) dp`; its part from `T = u` is elementary, the rest
+//! Round cut-off the width lost is `u = h_c - h = r - a_2 r^2 - a_3 r^3 - ..` (unit slope at cut-off), a polynomial in
+//! the range. The field needs its inverse, the range `r = T(u) = u + G(u)`, at complex widths: it is followed from
+//! cut-off straight to `u` by Newton's method with the correction of second order, in steps over which the slope
+//! changes by little. So `T` and `T'^(1/2) = u'(r)^(-1/2)` are analytic but for cuts from the zeros of `u'(r)`, where
+//! the guide stops narrowing, straight away from cut-off; and for large `u` they are tame, where a polynomial in `u` is not.
+//!
+//! The phase is `phi(p) = integral of 2 p T(h_n(p)) dp`; its part from `T = u` is elementary, the rest
 //!
 //! ```text
 //! J(w) = integral from 0 to w of 2 sinh w cosh w G(h_c - h_n(w)) dw
@@ -9,22 +14,14 @@
 //!
 //! is not; it is tabulated once per profile (`table.rs`).
 //!
-//! `G` is known as a polynomial that fits the profile round the cut-off. The slope in the next order and its inverse are
-//! polynomials of low degree of their own: `1/T'` would have poles where the fit turns, near the contour.
-//!
 //! Source: derived here.
 
 use super::dispersion::Dispersion;
 use super::second::Second;
 use super::table::Table;
 use crate::Complex64;
-use std::f64::consts::PI;
 use std::fmt;
 
-/// Terms of the slope.
-/// Width on each side of cut-off that counts, over `(m^2 eps)^(1/3)`.
-pub(super) const REACH: f64 = 2.5;
-const SLOPES: usize = 4;
 const ZERO: Complex64 = Complex64::new(0.0, 0.0);
 const ONE: Complex64 = Complex64::new(1.0, 0.0);
 
@@ -33,7 +30,6 @@ const ONE: Complex64 = Complex64::new(1.0, 0.0);
 pub(super) struct Curve {
     dispersion: Dispersion,
     bend: Bend,
-    slope: LocalSlope,
     table: Table,
     /// What the bend adds to the next order.
     second: Second,
@@ -47,28 +43,12 @@ impl fmt::Debug for Curve {
 }
 
 impl Curve {
-    /// `T(u) = u + c_2 u^2 + ..` from `c_2` on; `reach` is how much width to both sides of cut-off counts.
-    pub(super) fn new(dispersion: Dispersion, higher: &[Complex64], reach: f64) -> Curve {
-        let at = |u: f64| {
-            let (mut value, mut slope) = (ZERO, ZERO);
-            for c in higher.iter().rev() {
-                slope = slope * u + value;
-                value = value * u + c;
-            }
-            // value = G/u^2, and T' = 1 + ..
-            (value, (value * 2.0 + slope * u) * u + 1.0)
-        };
-        // As far as the slope stays within a factor 3.3 of that at cut-off.
-        let tame = |u: f64| (0.3..3.3).contains(&at(u).1.norm()) && at(u).1.re > 0.0;
-        let mut reach = reach;
-        while reach > 1e-6 && !(-8..=8).all(|j| tame(reach * f64::from(j) / 8.0)) {
-            reach *= 0.8;
-        }
-        let bend = Bend { higher: higher.to_vec() };
-        let slope = LocalSlope::new(reach, |u| at(u).1);
+    /// The width lost is `r - a_2 r^2 - ..`, with the coefficients from `a_2` on.
+    pub(super) fn new(dispersion: Dispersion, higher: &[Complex64]) -> Curve {
+        let bend = Bend::new(higher);
         let table = Table::new(dispersion.gate(), 1e-12, |w| bend.rate(dispersion, w));
-        let second = Second::new(dispersion, slope);
-        Curve { dispersion, bend, slope, table, second }
+        let second = Second::new(dispersion, &bend);
+        Curve { dispersion, bend, table, second }
     }
 
     /// `T(u)` and `T'(u)`.
@@ -84,7 +64,8 @@ impl Curve {
 
     /// `T'(u)^(1/2)`, the amplitude's factor, and the local slope over that at cut-off.
     pub(super) fn slope(&self, u: Complex64) -> (Complex64, Complex64) {
-        ((self.excess(u).1 + 1.0).sqrt(), above_one(&self.slope.sigma, u))
+        let (r, root) = self.bend.follow(u);
+        (root.inv(), self.bend.lost(r)[1])
     }
 
     /// `dJ/dw`.
@@ -99,7 +80,7 @@ impl Curve {
 
     /// `p beta`, the whole next order inside, less its logarithm.
     pub(super) fn smooth_beta(&self, w: Complex64) -> Complex64 {
-        self.second.smooth(self.dispersion, self.slope, w)
+        self.second.smooth(self.dispersion, &self.bend, w)
     }
 
     /// The factor of `p log p` in `p beta`.
@@ -108,22 +89,70 @@ impl Curve {
     }
 }
 
-/// `G = c_2 u^2 + c_3 u^3 + ..`.
+/// The width lost as a polynomial of the range, `u = r - a_2 r^2 - a_3 r^3 - ..`, and its inverse.
 #[derive(Clone, Debug, PartialEq)]
-struct Bend {
+pub(super) struct Bend {
     higher: Vec<Complex64>,
 }
 
 impl Bend {
+    /// From the coefficients from `a_2` on.
+    pub(super) fn new(higher: &[Complex64]) -> Bend {
+        Bend { higher: higher.to_vec() }
+    }
+
+    /// `G = a_2 r^2 + ..` at the range `r` and its first three derivatives.
+    fn gained(&self, r: Complex64) -> [Complex64; 4] {
+        let [mut value, mut slope, mut bend, mut third] = [ZERO; 4];
+        for &a in self.higher.iter().rev().chain([&ZERO, &ZERO]) {
+            third = third * r + bend;
+            bend = bend * r + slope;
+            slope = slope * r + value;
+            value = value * r + a;
+        }
+        [value, slope, bend * 2.0, third * 6.0]
+    }
+
+    /// The width lost at the range `r` and its first three derivatives.
+    fn lost(&self, r: Complex64) -> [Complex64; 4] {
+        let [value, slope, bend, third] = self.gained(r);
+        [r - value, ONE - slope, -bend, -third]
+    }
+
+    /// The range where the width `u` is lost, and `u'(r)^(1/2)` there: both followed from cut-off straight to `u`.
+    fn follow(&self, u: Complex64) -> (Complex64, Complex64) {
+        const STEPS: u32 = 100;
+        let (mut r, mut root) = (ZERO, ONE);
+        for _ in 0..STEPS {
+            let [lost, slope, bend, _] = self.lost(r);
+            root = continued(slope.sqrt(), root);
+            let left = u - lost;
+            // Half of that, and the next zero of the slope is reached.
+            let sure = 0.25 * slope.norm_sqr() / bend.norm();
+            let near = left.norm() <= sure;
+            let straight = if near { left } else { left * (sure / left.norm()) } / slope;
+            let step = straight * (1.0 - straight * bend / (slope * 2.0));
+            r += step;
+            // The error of a step goes with its cube.
+            if near && step.norm() <= 3e-6 * r.norm() {
+                break;
+            }
+        }
+        (r, continued(self.lost(r)[1].sqrt(), root))
+    }
+
     /// `G(u)` and `G'(u)`.
     fn excess(&self, u: Complex64) -> (Complex64, Complex64) {
-        let (mut value, mut slope) = (ZERO, ZERO);
-        for c in self.higher.iter().rev() {
-            slope = slope * u + value;
-            value = value * u + c;
-        }
-        // value = G/u^2
-        (value * u * u, (value * 2.0 + slope * u) * u)
+        let [value, slope, ..] = self.gained(self.follow(u).0);
+        (value, slope / (1.0 - slope))
+    }
+
+    /// The local slope over that at cut-off, `sigma = u'(r)`, its first and second derivative with respect to `u`,
+    /// and `1/sigma`.
+    pub(super) fn local(&self, u: Complex64) -> [Complex64; 4] {
+        let [_, slope, bend, third] = self.lost(self.follow(u).0);
+        let flat = slope.inv();
+        [slope, bend * flat, (third - bend * bend * flat) * flat * flat, flat]
     }
 
     /// `dJ/dw`.
@@ -133,66 +162,9 @@ impl Bend {
     }
 }
 
-/// The local slope over that at cut-off, `sigma = 1/T'`, and `1/sigma`, each as `1 + u (..)`.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct LocalSlope {
-    pub(super) sigma: [Complex64; SLOPES],
-    pub(super) inverse: [Complex64; SLOPES],
-}
-
-impl LocalSlope {
-    /// From `T'` on the window.
-    pub(super) fn new(reach: f64, slope: impl Fn(f64) -> Complex64) -> LocalSlope {
-        LocalSlope {
-            sigma: fitted(reach, |u| (slope(u).inv() - 1.0) / u),
-            inverse: fitted(reach, |u| (slope(u) - 1.0) / u),
-        }
-    }
-
-    /// `sigma`, its first and second derivative, and `1/sigma` at `u`.
-    pub(super) fn at(&self, u: Complex64) -> [Complex64; 4] {
-        let [mut value, mut slope, mut bend] = [ZERO; 3];
-        for c in self.sigma.iter().rev().copied().chain([ONE]) {
-            bend = bend * u + slope;
-            slope = slope * u + value;
-            value = value * u + c;
-        }
-        [value, slope, bend * 2.0, above_one(&self.inverse, u)]
-    }
-}
-
-/// `1 + u (c_0 + c_1 u + ..)`.
-fn above_one(c: &[Complex64], u: Complex64) -> Complex64 {
-    c.iter().rev().fold(ZERO, |sum, c| sum * u + c) * u + 1.0
-}
-
-/// Coefficients in powers of `u`, `|u| <= most`, from Chebyshev polynomials and the values at the zeros of
-/// a higher one (DLMF 3.11(ii)).
-fn fitted<const N: usize>(most: f64, value: impl Fn(f64) -> Complex64) -> [Complex64; N] {
-    const PLACES: u32 = 16;
-    let zero = [ZERO; N];
-    let mut c = zero;
-    for j in 0..PLACES {
-        let angle = PI * (f64::from(j) + 0.5) / f64::from(PLACES);
-        let value = value(most * angle.cos());
-        for (n, c) in (0..).zip(&mut c) {
-            let weight = if n == 0 { 1.0 } else { 2.0 } / f64::from(PLACES);
-            *c += value * (weight * (f64::from(n) * angle).cos());
-        }
-    }
-    // Clenshaw's recurrence (DLMF 3.11.15) on polynomials.
-    let (mut last, mut before) = (zero, zero);
-    for n in (0..N).rev() {
-        let factor = if n == 0 { 1.0 } else { 2.0 } / most;
-        let mut next = zero;
-        for i in 0..N {
-            let shifted = if i == 0 { c[n] } else { last[i - 1] * factor };
-            next[i] = shifted - before[i];
-        }
-        before = last;
-        last = next;
-    }
-    last
+/// The root of two that goes on from the last.
+fn continued(root: Complex64, last: Complex64) -> Complex64 {
+    if (root * last.conj()).re < 0.0 { -root } else { root }
 }
 
 #[cfg(test)]
@@ -203,7 +175,7 @@ mod tests {
     fn phase_is_the_integral_of_its_rate() {
         let c = Complex64::new;
         for (n, m) in [(1, 1.0), (2, 0.55), (1, 0.9), (1, 1.3)] {
-            let curve = Curve::new(Dispersion::new(n, m), &[c(0.25, 0.01), c(-0.1, 0.0)], 0.6);
+            let curve = Curve::new(Dispersion::new(n, m), &[c(0.25, 0.01), c(-0.02, 0.0)]);
             let points = [
                 c(0.1, 0.2),
                 c(-0.3, 0.3),

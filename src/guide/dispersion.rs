@@ -429,7 +429,7 @@ mod tests {
             let d = Complex64::new(0.3, 0.01);
             let dispersion = Dispersion::new(2, m);
             let higher = [Complex64::new(0.2, 0.01), Complex64::new(-0.05, 0.0)];
-            let curve = Some(Arc::new(Curve::new(dispersion, &higher, 0.6)));
+            let curve = Some(Arc::new(Curve::new(dispersion, &higher)));
             let lag = Complex64::new(0.1, 0.02);
             let phase = ModePhase { dispersion, h, d, turn, curve, lag };
             for w in

@@ -6,7 +6,7 @@
 //! tells: coefficients of negative powers vanish where the rate is analytic inside. If they do not, the
 //! square is cut in four, down to a quarter, near the saddles to an eighth. What is left, and all outside, is led by Gauss-Legendre
 //! panels (DLMF 3.5(v)) from 0 to the point, round the pole of the width at `i pi/2` on the side of the
-//! contour; panels are short near 0, where singularities may be near.
+//! contour; panels are halved until they agree.
 //!
 //! Source: derived here.
 
@@ -167,26 +167,50 @@ fn led(gate: Complex64, w: Complex64, rate: impl Fn(Complex64) -> Complex64 + Co
     }
 }
 
-/// The integral of `rate` along a straight line.
-fn along(from: Complex64, to: Complex64, rate: impl Fn(Complex64) -> Complex64) -> Complex64 {
+/// The integral of `rate` along a straight line, by panels that are halved until they agree.
+fn along(
+    from: Complex64,
+    to: Complex64,
+    rate: impl Fn(Complex64) -> Complex64 + Copy,
+) -> Complex64 {
+    // Beside a singularity, which is touched by nothing that counts.
+    const SHORTEST: f64 = 1e-3;
     let length = (to - from).norm();
     if length == 0.0 || !length.is_finite() {
         return (to - from) * length;
     }
     let direction = (to - from) / length;
+    let panel = |[low, high]: [f64; 2]| -> Complex64 {
+        let (middle, half) = (from + direction * (0.5 * (low + high)), 0.5 * (high - low));
+        let sum: Complex64 = GAUSS
+            .iter()
+            .map(|&(node, weight)| {
+                let offset = direction * (half * node);
+                (rate(middle + offset) + rate(middle - offset)) * weight
+            })
+            .sum();
+        sum * half
+    };
     let mut sum = Complex64::new(0.0, 0.0);
     let mut done = 0.0;
-    // Short beside the distance from singularities; a bounded number however far `to` is.
     // Beyond the squares the field is nothing, and a few digits are enough.
-    let longest = if length > 2.5 { length / 8.0 } else { 0.16 };
+    let far = length > 2.5;
     while done < length {
-        let step = (0.3 * (from.norm() + done)).clamp(0.02, longest).min(length - done);
-        let middle = from + direction * (done + 0.5 * step);
-        for (node, weight) in GAUSS {
-            let offset = direction * (0.5 * step * node);
-            sum += (rate(middle + offset) + rate(middle - offset)) * (0.5 * step * weight);
+        let mut end = length.min(done + if far { length / 8.0 } else { 0.32 });
+        let mut whole = panel([done, end]);
+        loop {
+            let middle = 0.5 * (done + end);
+            let halves = [panel([done, middle]), panel([middle, end])];
+            let both = halves[0] + halves[1];
+            let enough = 1e-14 * sum.norm() + 1e-13 * both.norm();
+            let agree = (both - whole).norm() <= enough;
+            if agree || far || end - done < SHORTEST || both.is_nan() {
+                sum += both;
+                break;
+            }
+            (end, whole) = (middle, halves[0]);
         }
-        done += step;
+        done = end;
     }
     sum * direction
 }

@@ -44,7 +44,7 @@
 //! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_pde.rs` and
 //! `tests/guide_profiles.rs`.
 
-use super::curve::{Curve, REACH};
+use super::curve::Curve;
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Part, Side};
 use crate::integral::{Amplitude, Termination};
 use crate::{Complex64, Contour, Error, Estimate, Integral, Scaled};
@@ -145,12 +145,11 @@ impl SlopingGuide {
         Ok(SlopingGuide { dispersion, even: true, curve: None, ..self })
     }
 
-    /// With a curved profile: the range from cut-off is `T(u) = u + c_2 u^2 + c_3 u^3 + ..` where the
-    /// width is `h_c - u`, with the coefficients from `c_2` on. The slope at cut-off stays 1: `eps` is
-    /// the one there.
+    /// With a curved profile: at the range `r` from cut-off the width is `h_c - r + c_2 r^2 + c_3 r^3 + ..`,
+    /// with the coefficients from `c_2` on. The slope at cut-off stays 1: `eps` is the one there.
     ///
-    /// The phase is then `integral of 2 p T(h_n(p)) dp`, the amplitude has the factor
-    /// `T'(u)^(1/2)`, and the next order the local slope `1/T'(u)` and its derivatives ([`Order`]).
+    /// With the range `T` at which a width is reached, the phase is then `integral of 2 p T(h_n(p)) dp`, the amplitude
+    /// has the factor `(-h'(T))^(-1/2)`, and the next order the local slope `-h'(T)` and its derivatives ([`Order`]).
     ///
     /// Errors: [`Error::Domain`] for a coefficient that is not finite.
     ///
@@ -170,10 +169,7 @@ impl SlopingGuide {
             let remedy = "pass finite numbers";
             return Err(Error::Domain { what: "coefficient of the profile", value, remedy });
         }
-        let m = self.dispersion.m;
-        // What the mode feels at its cut-off: the window of the transition.
-        let reach = REACH * (m * m * self.eps.norm()).cbrt();
-        let curve = Curve::new(self.dispersion, &higher, reach);
+        let curve = Curve::new(self.dispersion, &higher);
         Ok(SlopingGuide { curve: Some(Arc::new(curve)), ..self })
     }
 
