@@ -64,8 +64,9 @@ impl Curve {
 
     /// `T'(u)^(1/2)`, the amplitude's factor, and the local slope over that at cut-off.
     pub(super) fn slope(&self, u: Complex64) -> (Complex64, Complex64) {
-        let (r, root) = self.bend.follow(u);
-        (root.inv(), self.bend.lost(r)[1])
+        let (r, sign) = self.bend.follow(u);
+        let slope = self.bend.lost(r)[1];
+        (slope.sqrt().inv() * sign, slope)
     }
 
     /// `dJ/dw`.
@@ -119,26 +120,33 @@ impl Bend {
         [r - value, ONE - slope, -bend, -third]
     }
 
-    /// The range where the width `u` is lost, and `u'(r)^(1/2)` there: both followed from cut-off straight to `u`.
-    fn follow(&self, u: Complex64) -> (Complex64, Complex64) {
+    /// The range where the width `u` is lost, followed from cut-off straight to `u`, and `u'(r)^(1/2)` over its
+    /// principal value there.
+    fn follow(&self, u: Complex64) -> (Complex64, f64) {
         const STEPS: u32 = 100;
-        let (mut r, mut root) = (ZERO, ONE);
+        let (mut r, mut sign, mut last) = (ZERO, 1.0, ONE);
         for _ in 0..STEPS {
             let [lost, slope, bend, _] = self.lost(r);
-            root = continued(slope.sqrt(), root);
+            // Over the cut of the principal root.
+            if last.re.min(slope.re) < 0.0 && last.im * slope.im < 0.0 {
+                sign = -sign;
+            }
+            last = slope;
             let left = u - lost;
-            // Half of that, and the next zero of the slope is reached.
-            let sure = 0.25 * slope.norm_sqr() / bend.norm();
-            let near = left.norm() <= sure;
-            let straight = if near { left } else { left * (sure / left.norm()) } / slope;
-            let step = straight * (1.0 - straight * bend / (slope * 2.0));
+            // A quarter of |u'|^2/|u''|: half of that, and the next zero of the slope may be reached.
+            let (steep, bent) = (slope.norm_sqr(), bend.norm_sqr());
+            let near = 16.0 * left.norm_sqr() * bent <= steep * steep;
+            let share = if near { 1.0 } else { 0.25 * steep / (left.norm_sqr() * bent).sqrt() };
+            let flat = slope.conj() / steep;
+            let straight = left * flat * share;
+            let step = straight * (1.0 - straight * bend * flat * 0.5);
             r += step;
             // The error of a step goes with its cube.
-            if near && step.norm() <= 3e-6 * r.norm() {
+            if near && step.norm_sqr() <= 1e-11 * r.norm_sqr() {
                 break;
             }
         }
-        (r, continued(self.lost(r)[1].sqrt(), root))
+        (r, sign)
     }
 
     /// `G(u)` and `G'(u)`.
@@ -160,11 +168,6 @@ impl Bend {
         let u = dispersion.cutoff - dispersion.width(w);
         w.sinh() * w.cosh() * self.excess(u).0 * 2.0
     }
-}
-
-/// The root of two that goes on from the last.
-fn continued(root: Complex64, last: Complex64) -> Complex64 {
-    if (root * last.conj()).re < 0.0 { -root } else { root }
 }
 
 #[cfg(test)]

@@ -4,7 +4,8 @@
 //! the guide cross is cut into squares; on each that the rate allows, `F` is a Taylor series whose coefficients
 //! come from a circle round it (trapezoidal rule, DLMF 3.5(i)). Whether a square is allowed its own circle
 //! tells: coefficients of negative powers vanish where the rate is analytic inside. If they do not, the
-//! square is cut in four, down to a quarter, near the saddles to an eighth. What is left, and all outside, is led by Gauss-Legendre
+//! square is cut in four, down to a quarter, near the saddles to an eighth, along the bound mode's line to a
+//! sixteenth. What is left, and all outside, is led by Gauss-Legendre
 //! panels (DLMF 3.5(v)) from 0 to the point, round the pole of the width at `i pi/2` on the side of the
 //! contour; panels are halved until they agree.
 //!
@@ -61,18 +62,31 @@ impl Table {
         let turns: Vec<Complex64> = (0..CIRCLE)
             .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
             .collect();
-        let build = Build { gate, noise, turns, rate };
+        let build = Build { noise, turns, rate };
         let half = 0.5 * SIDE;
-        let squares = (0..ROWS * COLUMNS)
-            .map(|i| {
-                let (column, row) = (i % COLUMNS, i / COLUMNS);
-                let offset = Complex64::new(column as f64 + 0.5, row as f64 + 0.5) * SIDE;
-                let centre = CORNER + offset;
-                let depth = if centre.norm() < NEAR { 3 } else { 2 };
-                build.square(centre, half, depth)
-            })
-            .collect();
-        Table { squares, gate }
+        let centre = |i: usize| {
+            let (column, row) = (i % COLUMNS, i / COLUMNS);
+            CORNER + Complex64::new(column as f64 + 0.5, row as f64 + 0.5) * SIDE
+        };
+        // From 0 outwards: each is led to from those that are there.
+        let mut order: Vec<usize> = (0..ROWS * COLUMNS).collect();
+        order.sort_by(|&i, &j| centre(i).norm().total_cmp(&centre(j).norm()));
+        let squares = (0..ROWS * COLUMNS).map(|_| Square::None).collect();
+        let mut table = Table { squares, gate };
+        for i in order {
+            let centre = centre(i);
+            // Cuts of a profile's range reach the contour on the line of the bound mode.
+            let bound = centre.re.abs() < SIDE && centre.im > 0.0;
+            let depth = if bound {
+                4
+            } else if centre.norm() < NEAR {
+                3
+            } else {
+                2
+            };
+            table.squares[i] = build.square(&table, centre, half, depth);
+        }
+        table
     }
 
     /// The primitive; `rate` must be that of the table.
@@ -81,7 +95,24 @@ impl Table {
         w: Complex64,
         rate: impl Fn(Complex64) -> Complex64 + Copy,
     ) -> Complex64 {
-        self.tabulated(w).unwrap_or_else(|| led(self.gate, w, rate))
+        if let Some(value) = self.tabulated(w) {
+            return value;
+        }
+        // On the way to it from where it is led from, the last place that is tabulated.
+        let high = w.im > FRAC_PI_2;
+        let from = if high { self.gate } else { Complex64::new(0.0, 0.0) };
+        let length = (w - from).norm();
+        let mut back = 0.01;
+        while back < length {
+            let place = w + (from - w) * (back / length);
+            if (place.im > FRAC_PI_2) == high
+                && let Some(value) = self.tabulated(place)
+            {
+                return value + along(place, w, rate);
+            }
+            back *= 2.0;
+        }
+        led(self.gate, w, rate)
     }
 
     fn tabulated(&self, w: Complex64) -> Option<Complex64> {
@@ -113,15 +144,14 @@ impl Table {
 }
 
 struct Build<F> {
-    gate: Complex64,
     noise: f64,
     turns: Vec<Complex64>,
     rate: F,
 }
 
 impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
-    fn square(&self, centre: Complex64, half: f64, depth: u32) -> Square {
-        if let Some(series) = self.series(centre, half) {
+    fn square(&self, table: &Table, centre: Complex64, half: f64, depth: u32) -> Square {
+        if let Some(series) = self.series(table, centre, half) {
             return Square::Series(series);
         }
         if depth == 0 {
@@ -130,12 +160,13 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
         let quarter = 0.5 * half;
         Square::Cut(Box::new([(-1.0, -1.0), (1.0, -1.0), (-1.0, 1.0), (1.0, 1.0)].map(
             |(right, up)| {
-                self.square(centre + Complex64::new(right, up) * quarter, quarter, depth - 1)
+                let centre = centre + Complex64::new(right, up) * quarter;
+                self.square(table, centre, quarter, depth - 1)
             },
         )))
     }
 
-    fn series(&self, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
+    fn series(&self, table: &Table, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
         let values: Vec<Complex64> =
             self.turns.iter().map(|t| (self.rate)(centre + t * (ROUND * half))).collect();
         let coefficient = |n: usize| -> Complex64 {
@@ -147,7 +178,7 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
         if !analytic || !size.is_finite() {
             return None;
         }
-        let mut series = vec![led(self.gate, centre, self.rate)];
+        let mut series = vec![table.value(centre, self.rate)];
         let mut scale = half / CIRCLE as f64;
         for n in 0..TERMS {
             series.push(coefficient(n) * (scale / (n + 1) as f64));
@@ -195,20 +226,25 @@ fn along(
     let mut done = 0.0;
     // Beyond the squares the field is nothing, and a few digits are enough.
     let far = length > 2.5;
+    let mut step = if far { length / 8.0 } else { 0.32 };
     while done < length {
-        let mut end = length.min(done + if far { length / 8.0 } else { 0.32 });
+        let mut end = length.min(done + step);
         let mut whole = panel([done, end]);
         loop {
             let middle = 0.5 * (done + end);
             let halves = [panel([done, middle]), panel([middle, end])];
             let both = halves[0] + halves[1];
-            let enough = 1e-14 * sum.norm() + 1e-13 * both.norm();
+            // The halves are nearer to the truth than to the whole by 2^11.
+            let enough = 1e-12 * sum.norm() + 2e-11 * both.norm();
             let agree = (both - whole).norm() <= enough;
             if agree || far || end - done < SHORTEST || both.is_nan() {
                 sum += both;
                 break;
             }
             (end, whole) = (middle, halves[0]);
+        }
+        if !far {
+            step = (2.0 * (end - done)).min(0.32);
         }
         done = end;
     }
