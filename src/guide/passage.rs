@@ -401,16 +401,45 @@ impl Passage {
         self.guide.adiabatic(self.media.q * self.profile.width(range))
     }
 
-    /// The field at a point by the form that holds there: adiabatic before the fitted part of the profile,
-    /// uniform from there on.
+    /// The field at a point by the form that holds there, to six digits: uniform from the fitted part of the profile
+    /// on; before it, where the profile is not known at complex widths, that of the guide which goes on straight, with
+    /// what the mode has gathered on its own way; and adiabatic deep in the guide, where `gamma^2 > 2/3`.
+    ///
+    /// [`adiabatic`](Self::adiabatic) alone is off by `eps`, and far out by more, since the field there comes from a ray
+    /// with a complex angle that left the guide earlier: by 2 dB at 35 dB below the mode, where `eps = 0.07`.
     ///
     /// Errors: as [`adiabatic`](Self::adiabatic) and [`field`](Self::field).
     pub fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
-        if range < self.fitted_from {
-            self.adiabatic(range, x)
-        } else {
-            Ok(self.field(range, x)?.value)
+        let inside = self.check(range, x)?;
+        if range >= self.fitted_from {
+            let field = self.uniform(range, x)?.quadrature(1e-6)?;
+            return Ok(times(field, self.relative(range)).value);
         }
+        match self.straight(range, x, inside) {
+            Some((field, own)) => {
+                let carried = Scaled::exp(self.bound_mode(range)?.1 - own);
+                Ok((field * carried * self.relative(range)).to_complex())
+            }
+            None => self.adiabatic(range, x),
+        }
+    }
+
+    /// The field of the guide that goes on straight, and the exponent of its own bound mode: none where the guide does
+    /// not narrow, where the Brewster condition lies in the beam, and near the branch points of `kappa`: the
+    /// mismatch at the boundary is 5 `eps` at `gamma^2 = 2/3` and grows from there.
+    fn straight(&self, range: f64, x: f64, inside: bool) -> Option<(Scaled, Complex64)> {
+        let Media { k, q, .. } = self.media;
+        let width = self.profile.width(range);
+        let guide = self.guide.straight(k * 2.0 * self.profile.fall(range) / q).ok()?;
+        let mode = guide.adiabatic(q * width).ok()?;
+        let field = if inside {
+            guide.inside(q * width, q * x)
+        } else {
+            guide.outside(q * width, q * (x - width))
+        };
+        let shallow = mode.gamma.norm_sqr() <= 2.0 / 3.0;
+        let field = shallow.then_some(field.ok()?)?;
+        Some((field.quadrature(1e-6).ok()?.scaled, mode.exponent))
     }
 
     /// Levels in dB re the incoming mode along a line of receivers `(range, x)`, each by the form that holds

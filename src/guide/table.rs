@@ -77,9 +77,10 @@ impl Table {
             let centre = centre(i);
             // Cuts of a profile's range reach the contour on the line of the bound mode.
             let bound = centre.re.abs() < SIDE && centre.im > 0.0;
+            let gate = (centre - table.gate).norm() < 2.0 * SIDE;
             let depth = if bound {
                 4
-            } else if centre.norm() < NEAR {
+            } else if gate || centre.norm() < NEAR {
                 3
             } else {
                 2
@@ -98,6 +99,7 @@ impl Table {
         if let Some(value) = self.tabulated(w) {
             return value;
         }
+        let fine = inside(w);
         // On the way to it from where it is led from, the last place that is tabulated.
         let high = w.im > FRAC_PI_2;
         let from = if high { self.gate } else { Complex64::new(0.0, 0.0) };
@@ -108,19 +110,18 @@ impl Table {
             if (place.im > FRAC_PI_2) == high
                 && let Some(value) = self.tabulated(place)
             {
-                return value + along(place, w, rate);
+                return value + along(place, w, fine, rate);
             }
             back *= 2.0;
         }
-        led(self.gate, w, rate)
+        led(self.gate, w, fine, rate)
     }
 
     fn tabulated(&self, w: Complex64) -> Option<Complex64> {
-        let place = (w - CORNER) / SIDE;
-        let inside = |x: f64, count: usize| (0.0..count as f64).contains(&x);
-        if !(inside(place.re, COLUMNS) && inside(place.im, ROWS)) {
+        if !inside(w) {
             return None;
         }
+        let place = (w - CORNER) / SIDE;
         let (column, row) = (place.re as usize, place.im as usize);
         let mut square = &self.squares[row * COLUMNS + column];
         // From the square's centre, over half its side.
@@ -188,24 +189,39 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
     }
 }
 
+/// Whether a place lies where squares are.
+fn inside(w: Complex64) -> bool {
+    let place = (w - CORNER) / SIDE;
+    let within = |x: f64, count: usize| (0.0..count as f64).contains(&x);
+    within(place.re, COLUMNS) && within(place.im, ROWS)
+}
+
 /// The primitive from panels.
-fn led(gate: Complex64, w: Complex64, rate: impl Fn(Complex64) -> Complex64 + Copy) -> Complex64 {
+fn led(
+    gate: Complex64,
+    w: Complex64,
+    fine: bool,
+    rate: impl Fn(Complex64) -> Complex64 + Copy,
+) -> Complex64 {
     let zero = Complex64::new(0.0, 0.0);
     if w.im <= FRAC_PI_2 {
-        along(zero, w, rate)
+        along(zero, w, fine, rate)
     } else {
-        along(zero, gate, rate) + along(gate, w, rate)
+        along(zero, gate, fine, rate) + along(gate, w, fine, rate)
     }
 }
 
-/// The integral of `rate` along a straight line, by panels that are halved until they agree.
+/// The integral of `rate` along a straight line, by panels that are halved until they agree; if not `fine`, by
+/// panels as they come: beyond the squares the field is nothing, and a few digits are enough.
 fn along(
     from: Complex64,
     to: Complex64,
+    fine: bool,
     rate: impl Fn(Complex64) -> Complex64 + Copy,
 ) -> Complex64 {
     // Beside a singularity, which is touched by nothing that counts.
     const SHORTEST: f64 = 1e-3;
+    const LONGEST: f64 = 0.32;
     let length = (to - from).norm();
     if length == 0.0 || !length.is_finite() {
         return (to - from) * length;
@@ -224,27 +240,26 @@ fn along(
     };
     let mut sum = Complex64::new(0.0, 0.0);
     let mut done = 0.0;
-    // Beyond the squares the field is nothing, and a few digits are enough.
-    let far = length > 2.5;
-    let mut step = if far { length / 8.0 } else { 0.32 };
+    // A bounded number however far `to` is.
+    let mut step = if fine { LONGEST } else { (0.125 * length).max(0.5 * LONGEST) };
     while done < length {
         let mut end = length.min(done + step);
         let mut whole = panel([done, end]);
-        loop {
+        while fine && end - done >= SHORTEST {
             let middle = 0.5 * (done + end);
             let halves = [panel([done, middle]), panel([middle, end])];
             let both = halves[0] + halves[1];
             // The halves are nearer to the truth than to the whole by 2^11.
             let enough = 1e-12 * sum.norm() + 2e-11 * both.norm();
-            let agree = (both - whole).norm() <= enough;
-            if agree || far || end - done < SHORTEST || both.is_nan() {
-                sum += both;
+            if (both - whole).norm() <= enough || both.is_nan() {
+                whole = both;
                 break;
             }
             (end, whole) = (middle, halves[0]);
         }
-        if !far {
-            step = (2.0 * (end - done)).min(0.32);
+        sum += whole;
+        if fine {
+            step = (2.0 * (end - done)).min(LONGEST);
         }
         done = end;
     }

@@ -173,6 +173,12 @@ impl SlopingGuide {
         Ok(SlopingGuide { curve: Some(Arc::new(curve)), ..self })
     }
 
+    /// The same mode of a straight guide.
+    pub(super) fn straight(&self, eps: Complex64) -> Result<Self, Error> {
+        let guide = SlopingGuide::new(self.mode, self.dispersion.m, eps)?;
+        Ok(SlopingGuide { curve: None, eps: guide.eps, ..self.clone() })
+    }
+
     /// With the amplitude to the given order in `eps` (without a call: [`Order::Next`]).
     pub fn order(self, order: Order) -> Self {
         SlopingGuide { order, ..self }
@@ -452,8 +458,8 @@ impl UniformField {
     fn with_logarithm(&self, rest: Estimate, tolerance: f64) -> Result<Estimate, Error> {
         let (mut value, mut error) = (rest.scaled, error_of(&rest));
         for half in self.logarithm.iter().flatten() {
-            // It is small: a few digits are enough, and cheap beside a singular end.
-            let half = half.quadrature(self.wavenumber, tolerance.max(1e-6))?;
+            // It is small: some digits less are enough, and cheap beside a singular end.
+            let half = half.quadrature(self.wavenumber, (1e2 * tolerance).clamp(1e-6, 1e-4))?;
             value = value + half.scaled;
             error = error + error_of(&half);
         }
