@@ -220,7 +220,7 @@ fn along(
     rate: impl Fn(Complex64) -> Complex64 + Copy,
 ) -> Complex64 {
     // Beside a singularity, which is touched by nothing that counts.
-    const SHORTEST: f64 = 1e-3;
+    const SHORTEST: f64 = 0.01;
     const LONGEST: f64 = 0.32;
     let length = (to - from).norm();
     if length == 0.0 || !length.is_finite() {
