@@ -105,9 +105,7 @@ fn run(arguments: &Arguments) -> Result<(), Fault> {
         )));
     }
     let taper = raised_cosine(from_nm, to_nm, length_nm).map_err(fault)?;
-    // The slope of the fitted taper turns near by: a few per cent of the field are lost by it and stand in its
-    // error figure.
-    let leak = guide.along(arguments.mode, taper, 0.0).map_err(fault)?.tolerance(0.1);
+    let leak = guide.along(arguments.mode, taper, 0.0).map_err(fault)?;
     report(&leak, polarization).map_err(fault)?;
     draw(&leak, arguments)
 }

@@ -90,15 +90,14 @@ fn curved_with_contrast_and_losses() {
             from,
             profile: flat_before(move |r| (cut - r + c * r * r, 2.0 * c * r - 1.0), 1.0, 3.0),
         };
-        // Lengths in 1/q; cut off at the complex range r_0, where the slope is s; then T = u + b u^2 + 2 b^2 u^3 + ..
+        // Lengths in 1/q; cut off at the complex range r_0, where the slope is s.
         let q = well.sqrt();
         let (b_0, lost) = (C::from(c), cut - q.inv() * cut);
         let r_0 = (1.0 - (1.0 - b_0 * lost * 4.0).sqrt()) / (2.0 * c);
         let s = 1.0 - b_0 * r_0 * 2.0;
         let b = b_0 / (q * s * s);
-        let series = [b, b.powi(2) * 2.0, b.powi(3) * 5.0, b.powi(4) * 14.0];
         let guide = SlopingGuide::new(mode, m, turned * eps * s / q).unwrap();
-        let guide = guide.curved(&series).unwrap();
+        let guide = guide.curved(&[b]).unwrap();
         let shots = solution(&t);
         let [leading, next] = [Order::Leading, Order::Next].map(|order| {
             let guide = guide.clone().order(order);

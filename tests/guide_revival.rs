@@ -139,15 +139,9 @@ fn revivals_of_other_guides() {
         let length = (m / (eps * slope)).cbrt();
         let times = [0.0, there, there + eps * length * length];
         let shots = taper.run(&times, (1.2 * there / eps.cbrt() + 15.0) / eps.cbrt(), 1.0);
-        // T(u) for u = r - c r^2.
-        let mut t = vec![1.0f64];
-        for k in 2..24 {
-            let sum: f64 = (1..k).map(|i| t[i - 1] * t[k - i - 1]).sum();
-            t.push(c * sum);
-        }
         let guide = SlopingGuide::new(mode, m, complex).unwrap();
         let guide = if even { guide.even().unwrap() } else { guide };
-        let guide = if c > 0.0 { guide.curved(&t[1..]).unwrap() } else { guide };
+        let guide = if c > 0.0 { guide.curved(&[c]).unwrap() } else { guide };
         // With losses the mode is known at its own cut-off.
         let at_cut_off = guide.outside(cut, 0.0).unwrap().quadrature(1e-8).unwrap().value.norm();
         let incoming = shots[0].psi[shots[0].inside].norm() / at_cut_off;

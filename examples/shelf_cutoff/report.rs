@@ -1,6 +1,6 @@
 //! The whole job: tables on the standard output, the picture into its file.
 
-use crate::cells::{centres, levels};
+use crate::cells::{centres, level, levels};
 use crate::output::{prepare, write_whole};
 use crate::picture::Picture;
 use crate::scene::{BEFORE, Followed, Level, Scene};
@@ -137,6 +137,8 @@ fn print_levels(arguments: &Arguments, followed: &Followed) {
     // The fraction of the depth where the mode's first antinode lies at cut-off.
     let antinode = 1.0 / (2.0 * f64::from(*mode) - 1.0);
     let cut = place.range_m;
+    // Before the fit there are no saddles to expand at.
+    let from = from.max(run.passage().fitted_from());
     let before = (0..5).map(|j| from + (cut - from) * f64::from(j) / 5.0);
     for range_m in before.chain((0..=7).map(|j| cut + (to - cut) * f64::from(j) / 7.0)) {
         row(range_m, antinode * run.depth_m(range_m));
@@ -175,7 +177,7 @@ fn picture(arguments: &Arguments, followed: &Followed) -> (Picture, usize) {
     let ranges = centres(*from, *to, arguments.columns);
     let depths = centres(0.0, bottom, arguments.rows);
     let level_db = levels(&ranges, &depths, |range_m, depth_m| {
-        followed.level(range_m, depth_m).map_or(f64::NAN, |level| level.db)
+        level(run.passage(), range_m, depth_m, FLOOR_DB)
     });
     let refused = level_db.iter().filter(|level| level.is_nan()).count();
     let line = |first: f64, depth: &dyn Fn(f64) -> f64| -> Vec<(f64, f64)> {

@@ -140,12 +140,12 @@ impl Followed {
         depth_m + self.axis_rad.sin() * (range_m - start_m)
     }
 
-    /// The level by the yardstick, or of the adiabatic mode before the fitted part of the track.
+    /// The level by the yardstick, or of a bed that goes on straight before the fitted part of the track.
     pub fn level(&self, range_m: f64, depth_m: f64) -> Result<Level, Error> {
         let passage = self.run.passage();
         if range_m < passage.fitted_from() {
-            let p = passage.adiabatic(range_m, depth_m)?;
-            // What the adiabatic form leaves out is of order eps.
+            let p = passage.value(range_m, depth_m)?;
+            // No more than the adiabatic form leaves out.
             let figure_db = decibels(self.run.eps());
             return Ok(Level { db: level_db(p), figure_db, apart_db: 0.0 });
         }

@@ -1,12 +1,23 @@
 //! The cells of a picture, computed column by column on all processors.
 
 use indicatif::{ProgressBar, ProgressStyle};
+use merging_saddles::guide::{Passage, level_db};
 use std::sync::Mutex;
 
 /// Centres of `count` equal cells.
 pub fn centres(from: f64, to: f64, count: u16) -> Vec<f64> {
     let step = (to - from) / f64::from(count);
     (0..count).map(|j| from + step * (f64::from(j) + 0.5)).collect()
+}
+
+/// The level of a cell in dB; NaN where there is no value. Where the adiabatic mode is well below the floor, the floor:
+/// outside, that falls more slowly than the field itself, whose integral is dear so far out.
+pub fn level(passage: &Passage, range: f64, x: f64, floor_db: f64) -> f64 {
+    let outside = x > passage.profile().width(range);
+    match passage.adiabatic(range, x) {
+        Ok(mode) if outside && level_db(mode) < floor_db - 10.0 => floor_db,
+        _ => passage.value(range, x).map_or(f64::NAN, level_db),
+    }
 }
 
 /// Levels of all cells, one column after the other; NaN where there is no value.

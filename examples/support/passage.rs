@@ -1,6 +1,6 @@
 //! What the programs that follow one mode through its cut-off have in common: a table along the guide and the picture.
 
-use crate::cells::{centres, levels};
+use crate::cells::{centres, level, levels};
 use crate::output;
 use crate::picture::Picture;
 use crate::table::Fault;
@@ -8,6 +8,9 @@ use merging_saddles::Error;
 use merging_saddles::guide::{Passage, Profile, level_db};
 use std::f64::consts::PI;
 use std::path::Path;
+
+/// The quietest level of the picture.
+const FLOOR_DB: f64 = -40.0;
 
 pub fn fault(error: Error) -> Fault {
     Fault(error.to_string())
@@ -69,7 +72,7 @@ pub fn draw(
     let leaves = meeting(&axis, &width, [cut.max(from), start.max(cut) + length]);
     let top = (1.5 * axis(to)).max(3.0 * passage.cutoff_width());
     let (ranges, across) = (centres(from, to, columns), centres(0.0, top, rows));
-    let level_db = levels(&ranges, &across, |s, x| passage.value(s, x).map_or(f64::NAN, level_db));
+    let level_db = levels(&ranges, &across, |s, x| level(passage, s, x, FLOOR_DB));
     let unit = words.unit;
     let scaled = |points: Vec<(f64, f64)>| -> Vec<(f64, f64)> {
         points.into_iter().map(|(s, x)| (s / unit, x / unit)).collect()
@@ -93,7 +96,7 @@ pub fn draw(
         range: ranges.iter().map(|s| s / unit).collect(),
         across: across.iter().map(|x| x / unit).collect(),
         level_db,
-        floor_db: -40.0,
+        floor_db: FLOOR_DB,
     };
     let svg = picture.svg().map_err(|error| Fault(format!("the picture: {error}")))?;
     output::write_whole(file, &svg)?;

@@ -3,9 +3,10 @@
 //! On a straight profile it runs from valley to valley. For `m > 1` it ends before the Brewster parameter,
 //! where the expansion in `eps` breaks down; on a curved profile both ends are finite, since the fit of the
 //! profile says nothing about far valleys: they lie where the bend of the profile still counts for less in the
-//! exponent than the rest. What is cut off is measured and refused above a tolerance, and so is the jump of the
-//! amplitude where the fitted slope turns. In the wide-angle form both ends are finite too, each where the
-//! exponential is below 1e-17 if there is such a place.
+//! exponent than the rest. What is cut off is measured and refused above a tolerance. So is the integrand at a complex
+//! width where the profile turns, if the contour crosses the cut from there: on which side such a point is passed is
+//! for the contour of steepest descent to say, and no fit is known well enough for that. In the wide-angle form
+//! both ends are finite too, each where the exponential is below 1e-17 if there is such a place.
 
 use super::curve::Curve;
 use super::dispersion::ModePhase;
@@ -34,6 +35,7 @@ impl SlopingGuide {
         let near = Complex64::new(0.1, 0.3);
         let right = Complex64::new(1.5, 0.25 * PI);
         let curve = phase.curve.as_deref();
+        let bent = curve.is_some_and(Curve::bent);
         if m <= 1.0 && curve.is_none() {
             return Ok((Contour::through([left, middle, near, right]), 0.0));
         }
@@ -41,67 +43,62 @@ impl SlopingGuide {
         let inside = ModePhase { d: Complex64::new(0.0, 0.0), ..phase.clone() };
         let brewster = if m > 1.0 { m.recip().atanh() } else { f64::INFINITY };
         let wide = curve.map_or(WideAngle::new(Complex64::new(0.0, 0.0)), Curve::wide);
-        let reach = (0.95 * brewster).min(2.2);
         let zero = Complex64::new(0.0, 0.0);
-        let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.3, 0.6, 0.0] };
         // Small beside the mode too where losses make it small so far before its cut-off.
-        let bound = wide.variable(I * self.bound_angle(phase.h.re).sin());
+        let omega = self.bound_angle(phase.h.re);
+        let bound = wide.variable(I * omega.sin());
         let enough = NOTHING * (I * k * inside.value(bound)).re.exp().min(1.0);
-        let mut neglected;
-        let contour = if curve.is_none() {
-            let (right, size) = lowest(&inside, k, enough, zero, angles, |_| reach);
-            neglected = size;
-            Contour::ending_at([left, middle, near, right])
-        } else if wide.is_on() {
-            let reach = move |_: f64| {
-                let brewster = (wide.root.norm() * brewster.sinh()).min(1.0).asin();
-                if m > 1.0 && brewster < FRAC_PI_2 { 0.95 * brewster } else { 2.5 }
-            };
-            // Past the wave straight across the guide, to waves that run back.
-            let angles: &[f64] = if m > 1.0 { &[0.0] } else { &[0.0, 0.2, -0.2, 0.4] };
-            let (right, size) = lowest(&inside, k, enough, zero, angles, reach);
-            // The same way on the left as in the one-way equation.
-            let there = |w: Complex64| wide.variable(w.sinh());
-            let angles = [1.6, 1.85, 2.1];
-            let (left, left_size) = lowest_on(&inside, k, enough, middle, &angles, |_| 1.5, there);
-            neglected = size + left_size;
-            Contour::between([
-                left,
-                there(middle),
-                there((middle + near) * 0.5),
-                there(near),
-                right,
-            ])
-        } else {
+        let there = |w: Complex64| if wide.is_on() { wide.variable(w.sinh()) } else { w };
+        let (points, left_size) = if curve.is_none() {
+            (vec![left, middle, near], 0.0)
+        } else if bent {
             // From the bound mode's saddle, below all that is singular on the line Im w = pi/2.
-            let omega = self.bound_angle(phase.h.re);
             let length = |angle: f64| ((1.5 - omega) / angle.sin()).min(2.2);
-            let (left, left_size) =
-                lowest(&inside, k, enough, I * omega, &[1.85, 2.1, 2.35, 2.6], length);
-            // The right end by which the least is lost, the jump of the slope's root included.
-            let (mut right, mut jump) = (near, f64::INFINITY);
-            neglected = f64::INFINITY;
-            for angle in angles {
-                let (end, size) = lowest(&inside, k, enough, zero, &[*angle], |_| reach);
-                let here = self.jump(&inside, k, [left, near, end]);
-                if size + here < neglected {
-                    (right, jump, neglected) = (end, here, size + here);
-                }
-                if neglected < enough {
-                    break;
-                }
-            }
-            if jump > self.tolerance {
-                return Err(Error::Undecided {
-                    reason: format!(
-                        "the fit of the profile turns where the integrand has still the size {jump:.1e}"
-                    ),
-                    remedy: "take a smaller eps or a straighter profile, smoothed over its small bends",
-                });
-            }
-            neglected += left_size;
-            Contour::between([left, near, right])
+            let angles = [1.85, 2.1, 2.35, 2.6];
+            let (left, size) = lowest(&inside, k, enough, I * omega, &angles, length, there);
+            (vec![left, there(near)], size)
+        } else {
+            let (left, size) =
+                lowest(&inside, k, enough, middle, &[1.6, 1.85, 2.1], |_| 1.5, there);
+            (vec![left, there(middle), there(0.5 * (middle + near)), there(near)], size)
         };
+        // The right end by which the least is lost, the turns of the profile included; in the wide-angle form past the
+        // wave straight across the guide, to waves that run back.
+        let angles: &[f64] = match (m > 1.0, wide.is_on()) {
+            (true, _) => &[0.0],
+            (false, true) => &[0.0, 0.2, -0.2, 0.4],
+            (false, false) => &[0.3, 0.6, 0.0],
+        };
+        let reach = if wide.is_on() {
+            let across = wide.root.norm() * brewster.sinh();
+            if across < 1.0 { 0.95 * across.asin() } else { 2.5 }
+        } else {
+            (0.95 * brewster).min(2.2)
+        };
+        let (mut right, mut jump, mut neglected) = (near, f64::INFINITY, f64::INFINITY);
+        for angle in angles {
+            let (end, size) = lowest(&inside, k, enough, zero, &[*angle], |_| reach, |z| z);
+            let path = [&points[..], &[end]].concat();
+            let here = if bent { self.jump(&inside, k, &path) } else { 0.0 };
+            if size + here < neglected {
+                (right, jump, neglected) = (end, here, size + here);
+            }
+            if neglected < enough {
+                break;
+            }
+        }
+        if bent && jump > self.tolerance {
+            return Err(Error::Undecided {
+                reason: format!(
+                    "the profile turns at a complex width where the integrand has still the size {jump:.1e}"
+                ),
+                remedy: "take a smaller eps or a straighter profile, smoothed over its small bends",
+            });
+        }
+        neglected += left_size;
+        let points = [points, vec![right]].concat();
+        let contour =
+            if curve.is_none() { Contour::ending_at(points) } else { Contour::between(points) };
         if neglected.is_nan() || neglected > self.tolerance {
             let reason = if m > 1.0 {
                 format!(
@@ -125,22 +122,54 @@ impl SlopingGuide {
         Ok((contour, neglected))
     }
 
-    /// Largest size of the exponential where a path crosses the cut of `T'(u)^(1/2)`: the fit of the profile turns
-    /// near there, and the amplitude jumps.
-    fn jump(&self, phase: &ModePhase, k: f64, points: [Complex64; 3]) -> f64 {
+    /// Largest size of the exponential on the cuts of `T(u)` that a path crosses, from there in to the turn of the
+    /// profile at which they begin.
+    fn jump(&self, phase: &ModePhase, k: f64, points: &[Complex64]) -> f64 {
         const STEPS: u32 = 40;
         let Some(curve) = &self.curve else { return 0.0 };
-        let root = |w: Complex64| curve.slope(self.dispersion.cutoff - self.dispersion.width(w)).0;
-        let (mut last, mut most) = (root(points[0]), 0.0f64);
+        let wide = curve.wide();
+        let from_w = |w: Complex64| if wide.is_on() { wide.variable(w.sinh()) } else { w };
+        let lost = |w: Complex64| self.dispersion.cutoff - self.dispersion.width(w);
+        let root = |u: Complex64| curve.slope(u).0;
+        let apart = |a: Complex64, b: Complex64| (a - b).norm() / (a.norm() + b.norm());
+        let (mut from, mut most) = (wide.spot(points[0]).w, 0.0f64);
         for ends in points.windows(2) {
             for j in 1..=STEPS {
-                let w = ends[0] + (ends[1] - ends[0]) * (f64::from(j) / f64::from(STEPS));
-                let next = root(w);
-                // A smooth root turns by little in a step, one that jumps by half a turn.
-                if (next * last.conj()).re < 0.0 {
-                    most = most.max((I * k * phase.value(w)).re.exp());
+                let z = ends[0] + (ends[1] - ends[0]) * (f64::from(j) / f64::from(STEPS));
+                let to = wide.spot(z).w;
+                let (mut before, mut after) = (from, to);
+                from = to;
+                let [mut low, mut high] = [before, after].map(|w| root(lost(w)));
+                if apart(low, high) < 0.1 {
+                    continue;
                 }
-                last = next;
+                for _ in 0..30 {
+                    let middle = 0.5 * (before + after);
+                    let there = root(lost(middle));
+                    if apart(low, there) > apart(there, high) {
+                        (after, high) = (middle, there);
+                    } else {
+                        (before, low) = (middle, there);
+                    }
+                }
+                if apart(low, high) < 1e-3 {
+                    continue;
+                }
+                // The cut leads straight away from u = 0.
+                let (mut w, far) = (after, lost(after));
+                for step in (1..STEPS).rev() {
+                    most = most.max((I * k * phase.value(from_w(w))).re.exp());
+                    let u = far * (f64::from(step) / f64::from(STEPS));
+                    let sides = [1e-7, -1e-7].map(|turn| root(u * (1.0 + I * turn)));
+                    if apart(sides[0], sides[1]) < 1e-3 {
+                        break;
+                    }
+                    for _ in 0..8 {
+                        let width = self.dispersion.width(w);
+                        let slope = self.dispersion.width_slope(w, width) * w.cosh();
+                        w -= (width - (self.dispersion.cutoff - u)) / slope;
+                    }
+                }
             }
         }
         most
@@ -158,21 +187,9 @@ impl SlopingGuide {
     }
 }
 
-/// The end of a contour: on rays from a point, the first place where the exponential is below `enough`, or the
+/// The end of a contour: on rays of another variable from a point, the first place where the exponential is below `enough`, or the
 /// lowest there is; with its size.
 fn lowest(
-    phase: &ModePhase,
-    k: f64,
-    enough: f64,
-    from: Complex64,
-    angles: &[f64],
-    length: impl Fn(f64) -> f64,
-) -> (Complex64, f64) {
-    lowest_on(phase, k, enough, from, angles, length, |z| z)
-}
-
-/// The same on rays of another variable.
-fn lowest_on(
     phase: &ModePhase,
     k: f64,
     enough: f64,

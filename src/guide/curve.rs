@@ -1,7 +1,12 @@
 //! What the bend of a profile adds to the uniform field.
 //!
-//! Round cut-off the scaled range is `T(u) = u + G(u)`, `u = h_c - h` (unit slope at cut-off). The phase is `phi(p) =
-//! integral of 2 p T(h_n(p)) dp`; its part from `T = u` is elementary, the rest
+//! Round cut-off the width lost is `u = h_c - h = r - a_2 r^2 - a_3 r^3 - ..` (unit slope at cut-off), a polynomial in
+//! the range. The field needs its inverse, the range `r = T(u) = u + G(u)`, at complex widths: it is followed from
+//! cut-off straight to `u` by Newton's method with the correction of second order, in steps over which the slope
+//! changes by little. So `T` and `T'^(1/2) = u'(r)^(-1/2)` are analytic but for cuts from the zeros of `u'(r)`, where
+//! the guide stops narrowing, straight away from cut-off; and for large `u` they are tame, where a polynomial in `u` is not.
+//!
+//! The phase is `phi(p) = integral of 2 p T(h_n(p)) dp`; its part from `T = u` is elementary, the rest
 //!
 //! ```text
 //! J(w) = integral from 0 to w of 2 sinh w cosh w G(h_c - h_n(w)) dw
@@ -10,9 +15,6 @@
 //! is not; it is tabulated once per profile (`table.rs`), when it is first wanted. In the wide-angle form (`wide.rs`)
 //! `P'` takes the place of `2 p` in the whole phase, and what that adds is in `J`, on straight profiles too.
 //!
-//! `G` is known as a polynomial that fits the profile round the cut-off. The slope in the next order and its inverse are
-//! polynomials of low degree of their own: `1/T'` would have poles where the fit turns, near the contour.
-//!
 //! Source: derived here.
 
 use super::dispersion::Dispersion;
@@ -20,14 +22,10 @@ use super::second::Second;
 use super::table::{Gate, Table, led};
 use super::wide::{Spot, WideAngle};
 use crate::Complex64;
-use std::f64::consts::{FRAC_PI_2, PI};
+use std::f64::consts::FRAC_PI_2;
 use std::fmt;
 use std::sync::OnceLock;
 
-/// Terms of the slope.
-/// Width on each side of cut-off that counts, over `(m^2 eps)^(1/3)`.
-pub(super) const REACH: f64 = 2.5;
-const SLOPES: usize = 4;
 const ZERO: Complex64 = Complex64::new(0.0, 0.0);
 const ONE: Complex64 = Complex64::new(1.0, 0.0);
 
@@ -37,7 +35,6 @@ pub(super) struct Curve {
     dispersion: Dispersion,
     bend: Bend,
     wide: WideAngle,
-    slope: LocalSlope,
     table: OnceLock<Table>,
     /// What the bend adds to the next order, if there is one.
     second: Option<Second>,
@@ -51,32 +48,11 @@ impl fmt::Debug for Curve {
 }
 
 impl Curve {
-    /// `T(u) = u + c_2 u^2 + ..` from `c_2` on; `reach` is how much width to both sides of cut-off counts.
-    pub(super) fn new(
-        dispersion: Dispersion,
-        higher: &[Complex64],
-        wide: WideAngle,
-        reach: f64,
-    ) -> Curve {
-        let at = |u: f64| {
-            let (mut value, mut slope) = (ZERO, ZERO);
-            for c in higher.iter().rev() {
-                slope = slope * u + value;
-                value = value * u + c;
-            }
-            // value = G/u^2, and T' = 1 + ..
-            (value, (value * 2.0 + slope * u) * u + 1.0)
-        };
-        // As far as the slope stays within a factor 3.3 of that at cut-off.
-        let tame = |u: f64| (0.3..3.3).contains(&at(u).1.norm()) && at(u).1.re > 0.0;
-        let mut reach = reach;
-        while reach > 1e-6 && !(-8..=8).all(|j| tame(reach * f64::from(j) / 8.0)) {
-            reach *= 0.8;
-        }
-        let bend = Bend { higher: higher.to_vec() };
-        let slope = LocalSlope::new(reach, |u| at(u).1);
-        let second = (!higher.is_empty()).then(|| Second::new(dispersion, slope));
-        Curve { dispersion, bend, wide, slope, table: OnceLock::new(), second }
+    /// The width lost is `r - a_2 r^2 - ..`, with the coefficients from `a_2` on.
+    pub(super) fn new(dispersion: Dispersion, higher: &[Complex64], wide: WideAngle) -> Curve {
+        let bend = Bend::new(higher);
+        let second = (!higher.is_empty()).then(|| Second::new(dispersion, &bend));
+        Curve { dispersion, bend, wide, table: OnceLock::new(), second }
     }
 
     /// Whether the profile is not straight.
@@ -84,7 +60,7 @@ impl Curve {
         self.second.is_some()
     }
 
-    /// The coefficients from `c_2` on.
+    /// The coefficients from `a_2` on.
     pub(super) fn higher(&self) -> &[Complex64] {
         &self.bend.higher
     }
@@ -107,7 +83,9 @@ impl Curve {
 
     /// `T'(u)^(1/2)`, the amplitude's factor, and the local slope over that at cut-off.
     pub(super) fn slope(&self, u: Complex64) -> (Complex64, Complex64) {
-        ((self.excess(u).1 + 1.0).sqrt(), above_one(&self.slope.sigma, u))
+        let (r, sign) = self.bend.follow(u);
+        let slope = self.bend.lost(r)[1];
+        (slope.sqrt().inv() * sign, slope)
     }
 
     /// `dJ/dz`.
@@ -130,7 +108,7 @@ impl Curve {
 
     /// `J(z)` for a few places: without the table, in some ten microseconds.
     pub(super) fn phase_once(&self, z: Complex64) -> Complex64 {
-        led(self.gate(), z, |z| self.rate(z))
+        led(self.gate(), z, true, |z| self.rate(z))
     }
 
     /// How the places beyond `p = i` are reached.
@@ -144,7 +122,7 @@ impl Curve {
 
     /// `p beta`, the whole next order inside, less its logarithm.
     pub(super) fn smooth_beta(&self, w: Complex64) -> Complex64 {
-        self.second.as_ref().map_or(ZERO, |s| s.smooth(self.dispersion, self.slope, w))
+        self.second.as_ref().map_or(ZERO, |s| s.smooth(self.dispersion, &self.bend, w))
     }
 
     /// The factor of `p log p` in `p beta`.
@@ -153,85 +131,81 @@ impl Curve {
     }
 }
 
-/// `G = c_2 u^2 + c_3 u^3 + ..`.
+/// The width lost as a polynomial of the range, `u = r - a_2 r^2 - a_3 r^3 - ..`, and its inverse.
 #[derive(Clone, Debug, PartialEq)]
-struct Bend {
+pub(super) struct Bend {
     higher: Vec<Complex64>,
 }
 
 impl Bend {
+    /// From the coefficients from `a_2` on.
+    pub(super) fn new(higher: &[Complex64]) -> Bend {
+        Bend { higher: higher.to_vec() }
+    }
+
+    /// `G = a_2 r^2 + ..` at the range `r` and its first three derivatives.
+    fn gained(&self, r: Complex64) -> [Complex64; 4] {
+        let [mut value, mut slope, mut bend, mut third] = [ZERO; 4];
+        for &a in self.higher.iter().rev().chain([&ZERO, &ZERO]) {
+            third = third * r + bend;
+            bend = bend * r + slope;
+            slope = slope * r + value;
+            value = value * r + a;
+        }
+        [value, slope, bend * 2.0, third * 6.0]
+    }
+
+    /// The width lost at the range `r` and its first three derivatives.
+    fn lost(&self, r: Complex64) -> [Complex64; 4] {
+        let [value, slope, bend, third] = self.gained(r);
+        [r - value, ONE - slope, -bend, -third]
+    }
+
+    /// The range where the width `u` is lost, followed from cut-off straight to `u`, and `u'(r)^(1/2)` over its
+    /// principal value there.
+    fn follow(&self, u: Complex64) -> (Complex64, f64) {
+        const STEPS: u32 = 100;
+        let (mut r, mut sign, mut last) = (ZERO, 1.0, ONE);
+        for _ in 0..STEPS {
+            let [lost, slope, bend, _] = self.lost(r);
+            // Over the cut of the principal root.
+            if last.re.min(slope.re) < 0.0 && last.im * slope.im < 0.0 {
+                sign = -sign;
+            }
+            last = slope;
+            let left = u - lost;
+            // A quarter of |u'|^2/|u''|: half of that, and the next zero of the slope may be reached.
+            let (steep, bent) = (slope.norm_sqr(), bend.norm_sqr());
+            let near = 16.0 * left.norm_sqr() * bent <= steep * steep;
+            let share = if near { 1.0 } else { 0.25 * steep / (left.norm_sqr() * bent).sqrt() };
+            let flat = slope.conj() / steep;
+            let straight = left * flat * share;
+            let step = straight * (1.0 - straight * bend * flat * 0.5);
+            r += step;
+            // The error of a step goes with its cube.
+            if near && step.norm_sqr() <= 1e-11 * r.norm_sqr() {
+                break;
+            }
+        }
+        (r, sign)
+    }
+
     /// `G(u)` and `G'(u)`.
     fn excess(&self, u: Complex64) -> (Complex64, Complex64) {
-        let (mut value, mut slope) = (ZERO, ZERO);
-        for c in self.higher.iter().rev() {
-            slope = slope * u + value;
-            value = value * u + c;
+        if self.higher.is_empty() {
+            return (ZERO, ZERO);
         }
-        // value = G/u^2
-        (value * u * u, (value * 2.0 + slope * u) * u)
-    }
-}
-
-/// The local slope over that at cut-off, `sigma = 1/T'`, and `1/sigma`, each as `1 + u (..)`.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub(super) struct LocalSlope {
-    pub(super) sigma: [Complex64; SLOPES],
-    pub(super) inverse: [Complex64; SLOPES],
-}
-
-impl LocalSlope {
-    /// From `T'` on the window.
-    pub(super) fn new(reach: f64, slope: impl Fn(f64) -> Complex64) -> LocalSlope {
-        LocalSlope {
-            sigma: fitted(reach, |u| (slope(u).inv() - 1.0) / u),
-            inverse: fitted(reach, |u| (slope(u) - 1.0) / u),
-        }
+        let [value, slope, ..] = self.gained(self.follow(u).0);
+        (value, slope / (1.0 - slope))
     }
 
-    /// `sigma`, its first and second derivative, and `1/sigma` at `u`.
-    pub(super) fn at(&self, u: Complex64) -> [Complex64; 4] {
-        let [mut value, mut slope, mut bend] = [ZERO; 3];
-        for c in self.sigma.iter().rev().copied().chain([ONE]) {
-            bend = bend * u + slope;
-            slope = slope * u + value;
-            value = value * u + c;
-        }
-        [value, slope, bend * 2.0, above_one(&self.inverse, u)]
+    /// The local slope over that at cut-off, `sigma = u'(r)`, its first and second derivative with respect to `u`,
+    /// and `1/sigma`.
+    pub(super) fn local(&self, u: Complex64) -> [Complex64; 4] {
+        let [_, slope, bend, third] = self.lost(self.follow(u).0);
+        let flat = slope.inv();
+        [slope, bend * flat, (third - bend * bend * flat) * flat * flat, flat]
     }
-}
-
-/// `1 + u (c_0 + c_1 u + ..)`.
-fn above_one(c: &[Complex64], u: Complex64) -> Complex64 {
-    c.iter().rev().fold(ZERO, |sum, c| sum * u + c) * u + 1.0
-}
-
-/// Coefficients in powers of `u`, `|u| <= most`, from Chebyshev polynomials and the values at the zeros of
-/// a higher one (DLMF 3.11(ii)).
-fn fitted<const N: usize>(most: f64, value: impl Fn(f64) -> Complex64) -> [Complex64; N] {
-    const PLACES: u32 = 16;
-    let zero = [ZERO; N];
-    let mut c = zero;
-    for j in 0..PLACES {
-        let angle = PI * (f64::from(j) + 0.5) / f64::from(PLACES);
-        let value = value(most * angle.cos());
-        for (n, c) in (0..).zip(&mut c) {
-            let weight = if n == 0 { 1.0 } else { 2.0 } / f64::from(PLACES);
-            *c += value * (weight * (f64::from(n) * angle).cos());
-        }
-    }
-    // Clenshaw's recurrence (DLMF 3.11.15) on polynomials.
-    let (mut last, mut before) = (zero, zero);
-    for n in (0..N).rev() {
-        let factor = if n == 0 { 1.0 } else { 2.0 } / most;
-        let mut next = zero;
-        for i in 0..N {
-            let shifted = if i == 0 { c[n] } else { last[i - 1] * factor };
-            next[i] = shifted - before[i];
-        }
-        before = last;
-        last = next;
-    }
-    last
 }
 
 #[cfg(test)]
@@ -241,10 +215,10 @@ mod tests {
     #[test]
     fn phase_is_the_integral_of_its_rate() {
         let c = Complex64::new;
-        let higher = [c(0.25, 0.01), c(-0.1, 0.0)];
+        let higher = [c(0.25, 0.01), c(-0.02, 0.0)];
         for (n, m, delta) in [(1, 1.0, 0.0), (2, 0.55, 0.28), (1, 0.9, 0.0), (1, 1.3, 0.21)] {
             let wide = WideAngle::new(c(delta, -0.01 * delta));
-            let curve = Curve::new(Dispersion::new(n, m), &higher, wide, 0.6);
+            let curve = Curve::new(Dispersion::new(n, m), &higher, wide);
             let points = [
                 c(0.1, 0.2),
                 c(-0.3, 0.3),

@@ -520,7 +520,7 @@ mod tests {
             let dispersion = Dispersion::new(2, m);
             let higher = [Complex64::new(0.2, 0.01), Complex64::new(-0.05, 0.0)];
             let wide = WideAngle::new(Complex64::new(delta, -0.01 * delta));
-            let curve = Some(Arc::new(Curve::new(dispersion, &higher, wide, 0.6)));
+            let curve = Some(Arc::new(Curve::new(dispersion, &higher, wide)));
             let lag = Complex64::new(0.1, 0.02);
             let phase = ModePhase { dispersion, h, d, turn, curve, lag };
             // In the wide-angle form a wave that runs back, otherwise one beyond i pi/2.

@@ -11,7 +11,7 @@
 
 use super::adiabatic::Adiabatic;
 use super::layer::bound_extended;
-use super::profile::Profile;
+use super::profile::{LocalFit, Profile};
 use super::uniform::{Order, Place, SlopingGuide, UniformField, times};
 use crate::{Complex64, Error, Estimate, Scaled};
 use std::f64::consts::FRAC_PI_4;
@@ -84,8 +84,8 @@ pub struct Passage {
     /// Where the fit begins, and its departure in transition lengths.
     fitted_from: f64,
     fit_departure: f64,
-    fit: Vec<f64>,
-    fitted_widths: [f64; 2],
+    /// None where nothing is fitted.
+    fit: Option<LocalFit>,
     reference: f64,
     incoming_exponent: Complex64,
     incoming_antinode: Complex64,
@@ -117,18 +117,18 @@ impl Passage {
         // In range: eps (m/eps)^(2/3)/(q g).
         let length = step / (media.q_real * first_slope);
         let fit = profile.fit(cutoff_width, 3.0 * step / media.q_real, 1e-3 * length)?;
-        let real = expand(&fit.coefficients, Complex64::new(0.0, 0.0));
-        let slope = real[1].re.recip();
+        let (crossing, real) = fit.about(Complex64::from(cutoff_width));
+        let (cutoff_range, slope) = (crossing.re, -real[1].re);
         let eps = 2.0 * media.k_real * slope / media.q_real;
         if !(slope > 0.0 && eps <= 1.0) {
             return Err(too_fast(eps, slope));
         }
         // About the complex width at cut-off.
-        let shifted = expand(&fit.coefficients, cutoff_width - media.q.inv() * cutoff);
-        let turned_slope = shifted[1].inv();
+        let (centre, turned) = fit.about(media.q.inv() * cutoff);
+        let turned_slope = -turned[1];
         let mut guide = scaled(media.k * 2.0 * turned_slope / media.q)?;
-        let higher: Vec<Complex64> = (2..shifted.len())
-            .map(|j| shifted[j] * turned_slope * media.q.powi(1 - j as i32))
+        let higher: Vec<Complex64> = (2..turned.len())
+            .map(|j| turned[j] * media.q / (media.q * turned_slope).powi(j as i32))
             .collect();
         if !higher.is_empty() {
             let bend: f64 = (0..)
@@ -138,7 +138,7 @@ impl Passage {
             if bend > 0.9 {
                 return Err(Error::Undecided {
                     reason: format!(
-                        "at the cut-off (range {crossing}) the slope changes by {:.0} % within one \
+                        "at the cut-off (range {cutoff_range}) the slope changes by {:.0} % within one \
                          transition length, at eps = {eps:.3}: the profile bends too fast",
                         100.0 * bend
                     ),
@@ -155,14 +155,13 @@ impl Passage {
             profile,
             even,
             cutoff_width,
-            cutoff_range: fit.coefficients[0],
+            cutoff_range,
             slope,
-            centre: shifted[0],
+            centre,
             turned_slope,
-            fitted_from: fit.from,
+            fitted_from: fit.window[0],
             fit_departure: fit.residual / length,
-            fit: fit.coefficients.clone(),
-            fitted_widths: fit.widths,
+            fit: (fit.coefficients.len() > 2).then_some(fit),
             reference,
             incoming_exponent: Complex64::new(0.0, 0.0),
             incoming_antinode: Complex64::new(1.0, 0.0),
@@ -209,8 +208,7 @@ impl Passage {
             turned_slope: Complex64::new(0.0, 0.0),
             fitted_from: f64::INFINITY,
             fit_departure: 0.0,
-            fit: Vec::new(),
-            fitted_widths: [cutoff_width; 2],
+            fit: None,
             reference,
             incoming_exponent: Complex64::new(0.0, 0.0),
             incoming_antinode: Complex64::new(1.0, 0.0),
@@ -318,14 +316,10 @@ impl Passage {
     /// The profile as the field has it round the cut-off, `(range, width)`: 41 points of the local fit. Empty
     /// where the profile is straight and is not fitted.
     pub fn fitted_profile(&self) -> Vec<(f64, f64)> {
-        let [low, high] = self.fitted_widths;
-        let at = |width: f64| {
-            let u = self.cutoff_width - width;
-            self.fit.iter().rev().fold(0.0, |sum, c| sum * u + c)
-        };
-        let widths = (0..=40).map(|j| high + (low - high) * f64::from(j) / 40.0);
-        let curved = self.fit.len() > 2;
-        widths.filter(|_| curved).map(|width| (at(width), width)).collect()
+        let Some(fit) = &self.fit else { return Vec::new() };
+        let [from, to] = fit.window;
+        let ranges = (0..=40).map(|j| from + (to - from) * f64::from(j) / 40.0);
+        ranges.map(|s| (s, fit.width(s))).collect()
     }
 
     /// First range of the fit; before it [`adiabatic`](Self::adiabatic) is right.
@@ -542,8 +536,12 @@ impl Passage {
         self.guide.adiabatic(self.media.q * self.profile.width(range))
     }
 
-    /// The field at a point by the form that holds there: adiabatic before the fitted part of the profile,
-    /// uniform from there on.
+    /// The field at a point by the form that holds there, to six digits: uniform from the fitted part of the profile
+    /// on; before it, where the profile is not known at complex widths, that of the guide which goes on straight, with
+    /// what the mode has gathered on its own way; and adiabatic deep in the guide, where `gamma^2 > 2/3`.
+    ///
+    /// [`adiabatic`](Self::adiabatic) alone is off by `eps`, and far out by more, since the field there comes from a ray
+    /// with a complex angle that left the guide earlier: by 2 dB at 35 dB below the mode, where `eps = 0.07`.
     ///
     /// Errors: as [`adiabatic`](Self::adiabatic) and [`field`](Self::field).
     ///
@@ -560,11 +558,36 @@ impl Passage {
     /// # Ok::<(), merging_saddles::Error>(())
     /// ```
     pub fn value(&self, range: f64, x: f64) -> Result<Complex64, Error> {
-        if range < self.fitted_from {
-            self.adiabatic(range, x)
-        } else {
-            Ok(self.field(range, x)?.value)
+        let inside = self.check(range, x)?;
+        if range >= self.fitted_from {
+            let field = self.uniform(range, x)?.quadrature(1e-6)?;
+            return Ok(times(field, self.relative(range)).value);
         }
+        match self.straight(range, x, inside) {
+            Some((field, own)) => {
+                let carried = Scaled::exp(self.bound_mode(range)?.1 - own);
+                Ok((field * carried * self.relative(range)).to_complex())
+            }
+            None => self.adiabatic(range, x),
+        }
+    }
+
+    /// The field of the guide that goes on straight, and the exponent of its own bound mode: none where the guide does
+    /// not narrow, where the Brewster condition lies in the beam, and near the branch points of `kappa`: the
+    /// mismatch at the boundary is 5 `eps` at `gamma^2 = 2/3` and grows from there.
+    fn straight(&self, range: f64, x: f64, inside: bool) -> Option<(Scaled, Complex64)> {
+        let Media { k, q, .. } = self.media;
+        let width = self.profile.width(range);
+        let guide = self.guide.straight(k * 2.0 * self.profile.fall(range) / q).ok()?;
+        let mode = guide.adiabatic(q * width).ok()?;
+        let field = if inside {
+            guide.inside(q * width, q * x)
+        } else {
+            guide.outside(q * width, q * (x - width))
+        };
+        let shallow = mode.gamma.norm_sqr() <= 2.0 / 3.0;
+        let field = shallow.then_some(field.ok()?)?;
+        Some((field.quadrature(1e-6).ok()?.scaled, mode.exponent))
     }
 
     /// Levels in dB re the incoming mode along a line of receivers `(range, x)`, each by the form that holds
@@ -630,18 +653,6 @@ impl Passage {
         Scaled::exp(carrier - self.incoming_exponent)
             * (self.incoming_antinode.inv() * self.guide.sign())
     }
-}
-
-/// Taylor coefficients of a polynomial about `u`.
-fn expand(coefficients: &[f64], u: Complex64) -> Vec<Complex64> {
-    let mut out: Vec<Complex64> = coefficients.iter().map(|&c| Complex64::from(c)).collect();
-    for low in 0..out.len() {
-        for j in (low..out.len() - 1).rev() {
-            let above = out[j + 1];
-            out[j] += above * u;
-        }
-    }
-    out
 }
 
 fn too_fast(eps: f64, slope: f64) -> Error {

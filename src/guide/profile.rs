@@ -1,17 +1,18 @@
 //! The width of a guide against range as the caller has it, and its smooth form round a cut-off.
 //!
-//! The uniform field needs the range at *complex* widths: `T(h_n(p))`. So round each cut-off the range
-//! is fitted as a polynomial of the width lost, `s(U) = a_0 + a_1 U + .. + a_6 U^6`,
-//! `U = D_c - D`, by least squares at 64 places of the caller's profile (Chebyshev nodes in range, DLMF
-//! 18.3). The lowest degree (1 to 6) is taken that leaves less than 0.001 of a transition length. The window reaches
-//! three transition heights of width to both sides, as far as the profile goes and falls at 0.3 to 3.3 times its rate at cut-off, but not
-//! beyond 0.6 of the width at cut-off. Fields keep the profile itself in everything that needs no
+//! The uniform field needs the profile at *complex* widths and ranges. So round each cut-off the width is fitted as a
+//! polynomial of the range, `D(s) = d_0 + d_1 (s - s_c) + .. + d_6 (s - s_c)^6`, by least squares at 64 places of the
+//! caller's profile (Chebyshev nodes in range, DLMF 18.3). The lowest degree (1 to 6) is taken that leaves less than
+//! 0.001 of a transition length. The width is what is smooth: the range as a function of the width has branch points
+//! where the profile turns, and a polynomial of the width is worth nothing beyond them. The window reaches three
+//! transition heights of width to both sides, as far as the profile goes and falls at 0.3 to 3.3 times its rate at
+//! cut-off, but not beyond 0.6 of the width at cut-off. Fields keep the profile itself in everything that needs no
 //! continuation.
 //!
 //! Samples are joined by monotone cubics (F. N. Fritsch, J. Butland, SIAM J. Sci. Stat. Comput. 5
 //! (1984) 300, cited from memory). Source of the fit: least squares, common practice.
 
-use crate::Error;
+use crate::{Complex64, Error};
 use std::f64::consts::PI;
 use std::fmt;
 use std::sync::Arc;
@@ -202,17 +203,17 @@ impl Profile {
         })
     }
 
-    /// The fit of range against width lost, round the range where the width falls to `width`;
+    /// The fit of the width against range, round the range where it falls to `width`;
     /// `reach` is the width to both sides, `fine` the departure in range that is as good as none.
     pub(super) fn fit(&self, width: f64, reach: f64, fine: f64) -> Result<LocalFit, Error> {
         let centre = self.first_range_of_width(width)?;
         if let Shape::Plane { fall, .. } = self.shape {
-            let coefficients = vec![centre, fall.recip()];
+            let window = [f64::NEG_INFINITY, f64::INFINITY];
             return Ok(LocalFit {
-                coefficients,
+                centre,
+                coefficients: vec![width, -fall],
                 residual: 0.0,
-                from: f64::NEG_INFINITY,
-                widths: [width; 2],
+                window,
             });
         }
         let reach = reach.min(0.6 * width);
@@ -233,18 +234,22 @@ impl Profile {
             });
         }
         const PLACES: u32 = 64;
+        let half = (to - centre).max(centre - from);
         let places: Vec<(f64, f64)> = (0..PLACES)
             .map(|j| {
                 let x = (PI * (f64::from(j) + 0.5) / f64::from(PLACES)).cos();
                 let s = 0.5 * (from + to) + 0.5 * (to - from) * x;
-                ((width - self.width(s)) / reach, s - centre)
+                ((s - centre) / half, self.width(s))
             })
             .collect();
         let mut best = None;
         for degree in 1..=6 {
             let Some(c) = least_squares(&places, degree) else { break };
-            let at = |u: f64| c.iter().rev().fold(0.0, |sum, c| sum * u + c);
-            let residual = places.iter().map(|&(u, s)| (at(u) - s).abs()).fold(0.0, f64::max);
+            let value = |x: f64| c.iter().rev().fold(0.0, |sum, c| sum * x + c);
+            // In range.
+            let departure =
+                |&(x, d): &(f64, f64)| (value(x) - d).abs() / self.fall(centre + half * x).abs();
+            let residual = places.iter().map(departure).fold(0.0, f64::max);
             best = Some((c, residual));
             if residual < fine {
                 break;
@@ -254,10 +259,9 @@ impl Profile {
             return Err(Error::domain("width of the profile", f64::NAN, "return finite widths"));
         };
         for (j, c) in coefficients.iter_mut().enumerate() {
-            *c /= reach.powi(j as i32);
+            *c /= half.powi(j as i32);
         }
-        coefficients[0] += centre;
-        Ok(LocalFit { coefficients, residual, from, widths: [width - below, width + above] })
+        Ok(LocalFit { centre, coefficients, residual, window: [from, to] })
     }
 
     /// How far from `centre` the profile goes on falling at a similar rate, up to `reach` of width.
@@ -294,16 +298,54 @@ impl Profile {
     }
 }
 
-/// Range against width lost round a cut-off.
+/// Width against range round a cut-off.
+#[derive(Clone, Debug)]
 pub(super) struct LocalFit {
-    /// `s = a_0 + a_1 U + ..`
+    /// Range where the profile itself has the cut-off width.
+    pub centre: f64,
+    /// `D = d_0 + d_1 (s - centre) + ..`
     pub coefficients: Vec<f64>,
     /// Largest departure from the caller's profile, in range.
     pub residual: f64,
-    /// First range of the window.
-    pub from: f64,
-    /// Least and greatest width in it.
-    pub widths: [f64; 2],
+    /// First and last range of the window.
+    pub window: [f64; 2],
+}
+
+impl LocalFit {
+    /// Taylor coefficients of the width about the range where it is `width`, and that range; the width is complex
+    /// with losses.
+    pub fn about(&self, width: Complex64) -> (Complex64, Vec<Complex64>) {
+        let mut offset = Complex64::new(0.0, 0.0);
+        let mut taylor = expand(&self.coefficients, offset);
+        // Newton's method: `centre` is near.
+        for _ in 0..20 {
+            let step = (width - taylor[0]) / taylor[1];
+            offset += step;
+            taylor = expand(&self.coefficients, offset);
+            if step.norm() <= 1e-15 * offset.norm() {
+                break;
+            }
+        }
+        (offset + self.centre, taylor)
+    }
+
+    /// The width at a range.
+    pub fn width(&self, range: f64) -> f64 {
+        let x = range - self.centre;
+        self.coefficients.iter().rev().fold(0.0, |sum, c| sum * x + c)
+    }
+}
+
+/// Taylor coefficients of a polynomial about `x`.
+fn expand(coefficients: &[f64], x: Complex64) -> Vec<Complex64> {
+    let mut out: Vec<Complex64> = coefficients.iter().map(|&c| Complex64::from(c)).collect();
+    for low in 0..out.len() {
+        for j in (low..out.len() - 1).rev() {
+            let above = out[j + 1];
+            out[j] += above * x;
+        }
+    }
+    out
 }
 
 /// Gradients at the points for which the cubics are monotone: the harmonic mean of the two

@@ -22,7 +22,7 @@
 //!
 //! Source: derived here; checked in `tests/guide_profiles.rs`.
 
-use super::curve::LocalSlope;
+use super::curve::Bend;
 use super::dispersion::Dispersion;
 use super::table::Table;
 use crate::Complex64;
@@ -55,7 +55,7 @@ struct Local {
 }
 
 impl Local {
-    fn new(dispersion: Dispersion, slope: LocalSlope, w: Complex64) -> Local {
+    fn new(dispersion: Dispersion, bend: &Bend, w: Complex64) -> Local {
         let m = dispersion.m;
         let (p, kappa) = (w.sinh(), w.cosh());
         let (kappa2, density) = (kappa * kappa, dispersion.density(p));
@@ -66,7 +66,7 @@ impl Local {
         let second = (I * m * d_slope / density - p * first * 3.0 - width) / kappa2;
         let bent = (2.0 * (1.0 - m * m)) / density - d_slope * d_slope * 2.0;
         let third = (I * m * bent / density - p * second * 5.0 - first * 4.0) / kappa2;
-        let s = slope.at(dispersion.cutoff - width);
+        let s = bend.local(dispersion.cutoff - width);
         Local { p, kappa2, density, h: [width, first, second, third], s }
     }
 
@@ -106,10 +106,10 @@ struct Ring {
 }
 
 impl Ring {
-    fn new(dispersion: Dispersion, slope: LocalSlope, radius: f64) -> Ring {
+    fn new(dispersion: Dispersion, bend: &Bend, radius: f64) -> Ring {
         let at = |j: usize| {
             let p = Complex64::from_polar(radius, TAU * j as f64 / CIRCLE as f64);
-            Local::new(dispersion, slope, p.asinh())
+            Local::new(dispersion, bend, p.asinh())
         };
         Ring { radius, places: (0..CIRCLE).map(at).collect() }
     }
@@ -132,7 +132,7 @@ impl Ring {
 }
 
 impl Second {
-    pub(super) fn new(dispersion: Dispersion, slope: LocalSlope) -> Second {
+    pub(super) fn new(dispersion: Dispersion, bend: &Bend) -> Second {
         let m = dispersion.m;
         // The zero of H' nearest to 0: p H D = -i m, by Newton in w.
         let mut w = -I * (m / dispersion.cutoff);
@@ -151,7 +151,7 @@ impl Second {
         let mut circle = 0.6 * zero.min(brewster);
         // Smaller where something singular is near.
         let (rate, local) = loop {
-            let ring = Ring::new(dispersion, slope, circle);
+            let ring = Ring::new(dispersion, bend, circle);
             let rate = ring.taylor(|l| l.rate(m) * l.p.powi(3));
             let local = ring.taylor(|l| l.local(m) * l.p.powi(2));
             match (rate, local) {
@@ -161,7 +161,7 @@ impl Second {
             }
         };
         let near = 0.5 * circle;
-        let smooth = |w: Complex64| smooth_rate(dispersion, slope, &rate, near, w);
+        let smooth = |w: Complex64| smooth_rate(dispersion, bend, &rate, near, w);
         let table = Table::new(dispersion.way_round(), 1e-11, smooth);
         Second { near, rate, local, table }
     }
@@ -172,21 +172,16 @@ impl Second {
     }
 
     /// `p beta` less its logarithm.
-    pub(super) fn smooth(
-        &self,
-        dispersion: Dispersion,
-        slope: LocalSlope,
-        w: Complex64,
-    ) -> Complex64 {
+    pub(super) fn smooth(&self, dispersion: Dispersion, bend: &Bend, w: Complex64) -> Complex64 {
         let p = w.sinh();
         let Second { near, rate, local, table } = self;
-        let rest = table.value(w, |w| smooth_rate(dispersion, slope, rate, *near, w));
+        let rest = table.value(w, |w| smooth_rate(dispersion, bend, rate, *near, w));
         if p.norm() < *near {
             // local[0] = rate[0]/2: the poles of second order cancel.
             let tail = series(&local[2..], p);
             return local[1] - rate[1] + p * (tail + rest);
         }
-        let terms = Local::new(dispersion, slope, w).local(dispersion.m);
+        let terms = Local::new(dispersion, bend, w).local(dispersion.m);
         p * (terms + rest) - rate[0] / (p * 2.0) - rate[1]
     }
 }
@@ -194,7 +189,7 @@ impl Second {
 /// `w sigma'` less its pole, with respect to `dw`.
 fn smooth_rate(
     dispersion: Dispersion,
-    slope: LocalSlope,
+    bend: &Bend,
     rate: &[Complex64],
     near: f64,
     w: Complex64,
@@ -204,7 +199,7 @@ fn smooth_rate(
         return series(&rate[3..], p) * w.cosh();
     }
     let pole = ((rate[0] / p + rate[1]) / p + rate[2]) / p;
-    (Local::new(dispersion, slope, w).rate(dispersion.m) - pole) * w.cosh()
+    (Local::new(dispersion, bend, w).rate(dispersion.m) - pole) * w.cosh()
 }
 
 fn series(coefficients: &[Complex64], p: Complex64) -> Complex64 {
@@ -225,15 +220,15 @@ mod tests {
         let c = Complex64::new;
         for (n, m) in [(1, 1.0), (2, 0.55), (3, 1.0), (1, 1.5), (2, 1.5)] {
             let dispersion = Dispersion::new(n, m);
-            let slope = LocalSlope::new(0.6, |u| c(1.0 + 0.5 * u, 0.02 * u));
-            let second = Second::new(dispersion, slope);
+            let bend = &Bend::new(&[c(0.25, 0.01), c(0.1, 0.0)]);
+            let second = Second::new(dispersion, bend);
             let [a3, l2] = [second.rate[0], second.local[0]];
             assert!((l2 - a3 * 0.5).norm() < 1e-9, "n {n} m {m}: {a3} {l2}");
             // Inside and outside of the circle of the series.
             for angle in [-0.6f64, 0.5, 2.0] {
                 let at = |share: f64| {
                     let p = Complex64::from_polar(second.near * share, angle);
-                    second.smooth(dispersion, slope, p.asinh())
+                    second.smooth(dispersion, bend, p.asinh())
                 };
                 let (a, b) = (at(1.0 - 1e-9), at(1.0 + 1e-9));
                 assert!((a - b).norm() < 1e-7 * (1.0 + a.norm()), "n {n} m {m}: {a} {b}");

@@ -4,9 +4,10 @@
 //! the guide cross is cut into squares; on each that the rate allows, `F` is a Taylor series whose coefficients
 //! come from a circle round it (trapezoidal rule, DLMF 3.5(i)). Whether a square is allowed its own circle
 //! tells: coefficients of negative powers vanish where the rate is analytic inside. If they do not, the
-//! square is cut in four, down to a quarter, near the saddles to an eighth. What is left, and all outside, is led by Gauss-Legendre
+//! square is cut in four, down to a quarter, near the saddles to an eighth, along the bound mode's line to a
+//! sixteenth. What is left, and all outside, is led by Gauss-Legendre
 //! panels (DLMF 3.5(v)) from 0 to the point, round the pole of the width at `i pi/2` on the side of the
-//! contour; panels are short near 0, where singularities may be near.
+//! contour; panels are halved until they agree.
 //!
 //! Source: derived here.
 
@@ -43,7 +44,8 @@ pub(super) struct Gate {
 }
 
 impl Gate {
-    fn is_before(self, z: Complex64) -> bool {
+    /// Whether it is needed on the way.
+    fn leads_to(self, z: Complex64) -> bool {
         self.wide.map_or(z.im > FRAC_PI_2, |wide| wide.beyond(z))
     }
 }
@@ -74,18 +76,32 @@ impl Table {
         let turns: Vec<Complex64> = (0..CIRCLE)
             .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
             .collect();
-        let build = Build { gate, noise, turns, rate };
+        let build = Build { noise, turns, rate };
         let half = 0.5 * SIDE;
-        let squares = (0..ROWS * COLUMNS)
-            .map(|i| {
-                let (column, row) = (i % COLUMNS, i / COLUMNS);
-                let offset = Complex64::new(column as f64 + 0.5, row as f64 + 0.5) * SIDE;
-                let centre = CORNER + offset;
-                let depth = if centre.norm() < NEAR { 3 } else { 2 };
-                build.square(centre, half, depth)
-            })
-            .collect();
-        Table { squares, gate }
+        let centre = |i: usize| {
+            let (column, row) = (i % COLUMNS, i / COLUMNS);
+            CORNER + Complex64::new(column as f64 + 0.5, row as f64 + 0.5) * SIDE
+        };
+        // From 0 outwards: each is led to from those that are there.
+        let mut order: Vec<usize> = (0..ROWS * COLUMNS).collect();
+        order.sort_by(|&i, &j| centre(i).norm().total_cmp(&centre(j).norm()));
+        let squares = (0..ROWS * COLUMNS).map(|_| Square::None).collect();
+        let mut table = Table { squares, gate };
+        for i in order {
+            let centre = centre(i);
+            // Cuts of a profile's range reach the contour on the line of the bound mode.
+            let bound = centre.re.abs() < SIDE && centre.im > 0.0;
+            let gate = (centre - table.gate.by).norm() < 2.0 * SIDE;
+            let depth = if bound {
+                4
+            } else if gate || centre.norm() < NEAR {
+                3
+            } else {
+                2
+            };
+            table.squares[i] = build.square(&table, centre, half, depth);
+        }
+        table
     }
 
     /// The primitive; `rate` must be that of the table.
@@ -94,15 +110,32 @@ impl Table {
         w: Complex64,
         rate: impl Fn(Complex64) -> Complex64 + Copy,
     ) -> Complex64 {
-        self.tabulated(w).unwrap_or_else(|| led(self.gate, w, rate))
+        if let Some(value) = self.tabulated(w) {
+            return value;
+        }
+        let fine = inside(w);
+        // On the way to it from where it is led from, the last place that is tabulated.
+        let high = self.gate.leads_to(w);
+        let from = if high { self.gate.by } else { Complex64::new(0.0, 0.0) };
+        let length = (w - from).norm();
+        let mut back = 0.01;
+        while back < length {
+            let place = w + (from - w) * (back / length);
+            if self.gate.leads_to(place) == high
+                && let Some(value) = self.tabulated(place)
+            {
+                return value + along(place, w, fine, rate);
+            }
+            back *= 2.0;
+        }
+        led(self.gate, w, fine, rate)
     }
 
     fn tabulated(&self, w: Complex64) -> Option<Complex64> {
-        let place = (w - CORNER) / SIDE;
-        let inside = |x: f64, count: usize| (0.0..count as f64).contains(&x);
-        if !(inside(place.re, COLUMNS) && inside(place.im, ROWS)) {
+        if !inside(w) {
             return None;
         }
+        let place = (w - CORNER) / SIDE;
         let (column, row) = (place.re as usize, place.im as usize);
         let mut square = &self.squares[row * COLUMNS + column];
         // From the square's centre, over half its side.
@@ -126,15 +159,14 @@ impl Table {
 }
 
 struct Build<F> {
-    gate: Gate,
     noise: f64,
     turns: Vec<Complex64>,
     rate: F,
 }
 
 impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
-    fn square(&self, centre: Complex64, half: f64, depth: u32) -> Square {
-        if let Some(series) = self.series(centre, half) {
+    fn square(&self, table: &Table, centre: Complex64, half: f64, depth: u32) -> Square {
+        if let Some(series) = self.series(table, centre, half) {
             return Square::Series(series);
         }
         if depth == 0 {
@@ -143,12 +175,13 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
         let quarter = 0.5 * half;
         Square::Cut(Box::new([(-1.0, -1.0), (1.0, -1.0), (-1.0, 1.0), (1.0, 1.0)].map(
             |(right, up)| {
-                self.square(centre + Complex64::new(right, up) * quarter, quarter, depth - 1)
+                let centre = centre + Complex64::new(right, up) * quarter;
+                self.square(table, centre, quarter, depth - 1)
             },
         )))
     }
 
-    fn series(&self, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
+    fn series(&self, table: &Table, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
         let values: Vec<Complex64> =
             self.turns.iter().map(|t| (self.rate)(centre + t * (ROUND * half))).collect();
         let coefficient = |n: usize| -> Complex64 {
@@ -160,7 +193,7 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
         if !analytic || !size.is_finite() {
             return None;
         }
-        let mut series = vec![led(self.gate, centre, self.rate)];
+        let mut series = vec![table.value(centre, self.rate)];
         let mut scale = half / CIRCLE as f64;
         for n in 0..TERMS {
             series.push(coefficient(n) * (scale / (n + 1) as f64));
@@ -170,40 +203,79 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
     }
 }
 
+/// Whether a place lies where squares are.
+fn inside(w: Complex64) -> bool {
+    let place = (w - CORNER) / SIDE;
+    let within = |x: f64, count: usize| (0.0..count as f64).contains(&x);
+    within(place.re, COLUMNS) && within(place.im, ROWS)
+}
+
 /// The primitive from panels.
 pub(super) fn led(
     gate: Gate,
     w: Complex64,
+    fine: bool,
     rate: impl Fn(Complex64) -> Complex64 + Copy,
 ) -> Complex64 {
     let zero = Complex64::new(0.0, 0.0);
-    if gate.is_before(w) {
-        along(zero, gate.by, rate) + along(gate.by, w, rate)
+    if gate.leads_to(w) {
+        along(zero, gate.by, fine, rate) + along(gate.by, w, fine, rate)
     } else {
-        along(zero, w, rate)
+        along(zero, w, fine, rate)
     }
 }
 
-/// The integral of `rate` along a straight line.
-fn along(from: Complex64, to: Complex64, rate: impl Fn(Complex64) -> Complex64) -> Complex64 {
+/// The integral of `rate` along a straight line, by panels that are halved until they agree; if not `fine`, by
+/// panels as they come: beyond the squares the field is nothing, and a few digits are enough.
+fn along(
+    from: Complex64,
+    to: Complex64,
+    fine: bool,
+    rate: impl Fn(Complex64) -> Complex64 + Copy,
+) -> Complex64 {
+    // Beside a singularity, which is touched by nothing that counts.
+    const SHORTEST: f64 = 0.01;
+    const LONGEST: f64 = 0.32;
     let length = (to - from).norm();
     if length == 0.0 || !length.is_finite() {
         return (to - from) * length;
     }
     let direction = (to - from) / length;
+    let panel = |[low, high]: [f64; 2]| -> Complex64 {
+        let (middle, half) = (from + direction * (0.5 * (low + high)), 0.5 * (high - low));
+        let sum: Complex64 = GAUSS
+            .iter()
+            .map(|&(node, weight)| {
+                let offset = direction * (half * node);
+                (rate(middle + offset) + rate(middle - offset)) * weight
+            })
+            .sum();
+        sum * half
+    };
     let mut sum = Complex64::new(0.0, 0.0);
     let mut done = 0.0;
-    // Short beside the distance from singularities; a bounded number however far `to` is.
-    // Beyond the squares the field is nothing, and a few digits are enough.
-    let longest = if length > 2.5 { length / 8.0 } else { 0.16 };
+    // A bounded number however far `to` is.
+    let mut step = if fine { LONGEST } else { (0.125 * length).max(0.5 * LONGEST) };
     while done < length {
-        let step = (0.3 * (from.norm() + done)).clamp(0.02, longest).min(length - done);
-        let middle = from + direction * (done + 0.5 * step);
-        for (node, weight) in GAUSS {
-            let offset = direction * (0.5 * step * node);
-            sum += (rate(middle + offset) + rate(middle - offset)) * (0.5 * step * weight);
+        let mut end = length.min(done + step);
+        let mut whole = panel([done, end]);
+        while fine && end - done >= SHORTEST {
+            let middle = 0.5 * (done + end);
+            let halves = [panel([done, middle]), panel([middle, end])];
+            let both = halves[0] + halves[1];
+            // The halves are nearer to the truth than to the whole by 2^11.
+            let enough = 1e-12 * sum.norm() + 2e-11 * both.norm();
+            if (both - whole).norm() <= enough || both.is_nan() {
+                whole = both;
+                break;
+            }
+            (end, whole) = (middle, halves[0]);
         }
-        done += step;
+        sum += whole;
+        if fine {
+            step = (2.0 * (end - done)).min(LONGEST);
+        }
+        done = end;
     }
     sum * direction
 }

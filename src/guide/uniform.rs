@@ -49,7 +49,7 @@
 //! Source: derived here; checked against a Crank-Nicolson solution in `tests/guide_accuracy.rs`, `tests/guide_pde.rs` and
 //! `tests/guide_profiles.rs`.
 
-use super::curve::{Curve, REACH};
+use super::curve::Curve;
 use super::dispersion::{Dispersion, ModeAmplitude, ModePhase, Part, Side};
 use super::wide::{Spot, WideAngle};
 use crate::integral::{Amplitude, Termination};
@@ -83,6 +83,8 @@ pub struct SlopingGuide {
     order: Order,
     pub(super) tolerance: f64,
     pub(super) curve: Option<Arc<Curve>>,
+    /// That of a straight guide in the wide-angle form.
+    flat: Option<Arc<Curve>>,
 }
 
 /// A place along the guide: its width and its range, counted from cut-off.
@@ -124,7 +126,8 @@ impl SlopingGuide {
         }
         let dispersion = Dispersion::new(mode, density_ratio);
         let order = Order::Next;
-        Ok(SlopingGuide { dispersion, mode, even: false, eps, order, tolerance: 1e-3, curve: None })
+        let (curve, flat) = (None, None);
+        Ok(SlopingGuide { dispersion, mode, even: false, eps, order, tolerance: 1e-3, curve, flat })
     }
 
     /// The mode that is even in `x` (`psi_x = 0` in place of `psi = 0` at `x = 0`): the other half of
@@ -148,15 +151,14 @@ impl SlopingGuide {
             return Err(Error::domain("even mode", 1.0, remedy));
         }
         let dispersion = Dispersion::even(self.mode, self.dispersion.m);
-        Ok(SlopingGuide { dispersion, even: true, curve: None, ..self })
+        Ok(SlopingGuide { dispersion, even: true, curve: None, flat: None, ..self })
     }
 
-    /// With a curved profile: the range from cut-off is `T(u) = u + c_2 u^2 + c_3 u^3 + ..` where the
-    /// width is `h_c - u`, with the coefficients from `c_2` on. The slope at cut-off stays 1: `eps` is
-    /// the one there.
+    /// With a curved profile: at the range `r` from cut-off the width is `h_c - r + c_2 r^2 + c_3 r^3 + ..`,
+    /// with the coefficients from `c_2` on. The slope at cut-off stays 1: `eps` is the one there.
     ///
-    /// The phase is then `integral of 2 p T(h_n(p)) dp`, the amplitude has the factor
-    /// `T'(u)^(1/2)`, and the next order the local slope `1/T'(u)` and its derivatives ([`Order`]).
+    /// With the range `T` at which a width is reached, the phase is then `integral of 2 p T(h_n(p)) dp`, the amplitude
+    /// has the factor `(-h'(T))^(-1/2)`, and the next order the local slope `-h'(T)` and its derivatives ([`Order`]).
     ///
     /// Errors: [`Error::Domain`] for a coefficient that is not finite.
     ///
@@ -219,19 +221,29 @@ impl SlopingGuide {
 
     fn shaped(self, higher: &[Complex64], wide: WideAngle) -> Self {
         if higher.is_empty() && !wide.is_on() {
-            return SlopingGuide { curve: None, ..self };
+            return SlopingGuide { curve: None, flat: None, ..self };
         }
-        let m = self.dispersion.m;
-        // What the mode feels at its cut-off: the window of the transition.
-        let reach = REACH * (m * m * self.eps.norm()).cbrt();
-        let curve = Curve::new(self.dispersion, higher, wide, reach);
-        SlopingGuide { curve: Some(Arc::new(curve)), ..self }
+        let curve = Arc::new(Curve::new(self.dispersion, higher, wide));
+        let flat = wide.is_on().then(|| {
+            if curve.bent() {
+                Arc::new(Curve::new(self.dispersion, &[], wide))
+            } else {
+                curve.clone()
+            }
+        });
+        SlopingGuide { curve: Some(curve), flat, ..self }
     }
 
     /// The wide-angle form, with `delta = 0` for none.
     pub(super) fn wide(&self) -> WideAngle {
         let off = WideAngle::new(Complex64::new(0.0, 0.0));
         self.curve.as_ref().map_or(off, |curve| curve.wide())
+    }
+
+    /// The same mode of a straight guide.
+    pub(super) fn straight(&self, eps: Complex64) -> Result<Self, Error> {
+        let guide = SlopingGuide::new(self.mode, self.dispersion.m, eps)?;
+        Ok(SlopingGuide { curve: self.flat.clone(), eps: guide.eps, ..self.clone() })
     }
 
     /// With the amplitude to the given order in `eps` (without a call: [`Order::Next`]).
@@ -530,8 +542,8 @@ impl UniformField {
     fn with_logarithm(&self, rest: Estimate, tolerance: f64) -> Result<Estimate, Error> {
         let (mut value, mut error) = (rest.scaled, error_of(&rest));
         for half in self.logarithm.iter().flatten() {
-            // It is small: a few digits are enough, and cheap beside a singular end.
-            let half = half.quadrature(self.wavenumber, tolerance.max(1e-6))?;
+            // It is small: some digits less are enough, and cheap beside a singular end.
+            let half = half.quadrature(self.wavenumber, (1e2 * tolerance).clamp(1e-6, 1e-4))?;
             value = value + half.scaled;
             error = error + error_of(&half);
         }
