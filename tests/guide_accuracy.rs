@@ -47,15 +47,9 @@ struct Row {
     departure: [f64; 5],
 }
 
-/// Width and slope where the range from cut-off is `u + c_2 u^2 + c_3 u^3` (monotone), `u` the width lost.
+/// Width `h_c - r + c_2 r^2 + c_3 r^3` and slope at the range `r` from cut-off.
 fn bent(cut: f64, [c2, c3]: [f64; 2]) -> impl Fn(f64) -> (f64, f64) + Copy {
-    move |r| {
-        let mut u = r;
-        for _ in 0..60 {
-            u -= (u * (1.0 + u * (c2 + c3 * u)) - r) / (1.0 + u * (2.0 * c2 + 3.0 * c3 * u));
-        }
-        (cut - u, -(1.0 + u * (2.0 * c2 + 3.0 * c3 * u)).recip())
-    }
+    move |r| (cut - r + r * r * (c2 + c3 * r), r * (2.0 * c2 + 3.0 * c3 * r) - 1.0)
 }
 
 impl Case {
@@ -78,7 +72,7 @@ impl Case {
         let gradient = eps / (2.0 * kb.re);
         let (cut, scale) = ((f64::from(mode) - 0.5) * PI, (m * m * eps).cbrt());
         let (knee, length) = (2.5 * scale, (20.0 * scale).min(3.0));
-        let profile = bent(cut, [bend, 0.5 * bend * bend]);
+        let profile = bent(cut, [bend, 0.0]);
         let taper = Taper {
             mode,
             even: false,
@@ -249,8 +243,9 @@ fn curved_profiles_of_any_density() {
         {
             for ((error, before), most) in errors.iter().zip(before).zip(most) {
                 assert!(*error < most && *error < before / 4.0, "{case:?} {errors:?} {before}");
-                // The formula's own figure, which knows nothing of the solution, covers what it leaves out.
-                assert!(*error < figure, "{figure}");
+                // The formula's own figure, which knows nothing of the solution, covers what it leaves out, with that at
+                // t = 0, where the constant is taken.
+                assert!(*error < figure + next.departure[2], "{figure}");
             }
         }
     }
@@ -288,18 +283,18 @@ fn the_solution_itself_has_converged() {
 fn exponents_of_what_the_orders_leave_out() {
     // The mismatch at the boundary needs no solution: the exponents of eps far down. Leading order and local slope
     // leave eps^(2/3), the whole next order eps^(4/3) on a straight profile and eps on a curved one.
-    // The local slope leaves eps as well where c_3 = c_2^2, which makes the Schwarzian derivative of the profile zero.
+    // The local slope leaves eps as well where c_3 = -c_2^2, which makes the Schwarzian derivative of the profile zero.
     for (m, mode, c2, c3) in [
         (1.0, 1, 0.0, 0.0),
         (0.55, 2, 0.0, 0.0),
         (1.0, 1, 0.2, 0.02),
         (0.55, 2, -0.2, 0.0),
         (1.5, 1, 0.2, 0.03),
-        (1.0, 1, 0.2, 0.04),
-        (0.55, 2, -0.1, 0.01),
-        (1.5, 1, 0.2, 0.04),
+        (1.0, 1, 0.2, -0.04),
+        (0.55, 2, -0.1, -0.01),
+        (1.5, 1, 0.2, -0.04),
     ] {
-        let local = match (c2 == 0.0, f64::abs(c3 - c2 * c2) < 1e-12) {
+        let local = match (c2 == 0.0, f64::abs(c3 + c2 * c2) < 1e-12) {
             (true, _) => 4.0 / 3.0,
             (_, true) => 1.0,
             _ => 2.0 / 3.0,

@@ -48,7 +48,7 @@ impl SlopingGuide {
         let omega = self.bound_angle(phase.h.re);
         let bound = wide.variable(I * omega.sin());
         let enough = NOTHING * (I * k * inside.value(bound)).re.exp().min(1.0);
-        let there = |w: Complex64| if wide.is_on() { wide.variable(w.sinh()) } else { w };
+        let there = |w: Complex64| if wide.by_angle { wide.variable(w.sinh()) } else { w };
         let (points, left_size) = if curve.is_none() {
             (vec![left, middle, near], 0.0)
         } else if bent {
@@ -64,20 +64,26 @@ impl SlopingGuide {
         };
         // The right end by which the least is lost, the turns of the profile included; in the wide-angle form past the
         // wave straight across the guide, to waves that run back.
-        let angles: &[f64] = match (m > 1.0, wide.is_on()) {
+        let angles: &[f64] = match (m > 1.0, wide.by_angle) {
             (true, _) => &[0.0],
             (false, true) => &[0.0, 0.2, -0.2, 0.4],
             (false, false) => &[0.3, 0.6, 0.0],
         };
-        let reach = if wide.is_on() {
+        let reach = |angle: f64| {
             let across = wide.root.norm() * brewster.sinh();
-            if across < 1.0 { 0.95 * across.asin() } else { 2.5 }
-        } else {
-            (0.95 * brewster).min(2.2)
+            match (wide.by_angle, across < 1.0) {
+                (true, true) => 0.95 * across.asin(),
+                (true, false) => 2.5,
+                // Along the real axis the branch point of the cosine.
+                (false, _) if angle == 0.0 && wide.is_on() => {
+                    0.95 * brewster.min(wide.root.norm().recip().asinh())
+                }
+                (false, _) => (0.95 * brewster).min(2.2),
+            }
         };
         let (mut right, mut jump, mut neglected) = (near, f64::INFINITY, f64::INFINITY);
         for angle in angles {
-            let (end, size) = lowest(&inside, k, enough, zero, &[*angle], |_| reach, |z| z);
+            let (end, size) = lowest(&inside, k, enough, zero, &[*angle], reach, |z| z);
             let path = [&points[..], &[end]].concat();
             let here = if bent { self.jump(&inside, k, &path) } else { 0.0 };
             if size + here < neglected {
@@ -126,9 +132,9 @@ impl SlopingGuide {
     /// profile at which they begin.
     fn jump(&self, phase: &ModePhase, k: f64, points: &[Complex64]) -> f64 {
         const STEPS: u32 = 40;
-        let Some(curve) = &self.curve else { return 0.0 };
+        let Some(curve) = &phase.curve else { return 0.0 };
         let wide = curve.wide();
-        let from_w = |w: Complex64| if wide.is_on() { wide.variable(w.sinh()) } else { w };
+        let from_w = |w: Complex64| if wide.by_angle { wide.variable(w.sinh()) } else { w };
         let lost = |w: Complex64| self.dispersion.cutoff - self.dispersion.width(w);
         let root = |u: Complex64| curve.slope(u).0;
         let apart = |a: Complex64, b: Complex64| (a - b).norm() / (a.norm() + b.norm());

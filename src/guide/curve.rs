@@ -24,9 +24,11 @@ use super::wide::{Spot, WideAngle};
 use crate::Complex64;
 use std::f64::consts::FRAC_PI_2;
 use std::fmt;
-use std::sync::OnceLock;
+use std::sync::Arc;
 
 const ZERO: Complex64 = Complex64::new(0.0, 0.0);
+/// Of the tabulated phase.
+const ACCURACY: f64 = 2e-11;
 const ONE: Complex64 = Complex64::new(1.0, 0.0);
 
 /// A curved profile for one mode.
@@ -35,9 +37,11 @@ pub(super) struct Curve {
     dispersion: Dispersion,
     bend: Bend,
     wide: WideAngle,
-    table: OnceLock<Table>,
+    /// How the places beyond `p = i` are reached.
+    gate: Gate,
+    table: Table,
     /// What the bend adds to the next order, if there is one.
-    second: Option<Second>,
+    second: Option<Arc<Second>>,
 }
 
 impl fmt::Debug for Curve {
@@ -51,8 +55,28 @@ impl Curve {
     /// The width lost is `r - a_2 r^2 - ..`, with the coefficients from `a_2` on.
     pub(super) fn new(dispersion: Dispersion, higher: &[Complex64], wide: WideAngle) -> Curve {
         let bend = Bend::new(higher);
-        let second = (!higher.is_empty()).then(|| Second::new(dispersion, &bend));
-        Curve { dispersion, bend, wide, table: OnceLock::new(), second }
+        let second = (!higher.is_empty()).then(|| Arc::new(Second::new(dispersion, &bend)));
+        Curve::with(dispersion, bend, wide, second)
+    }
+
+    fn with(
+        dispersion: Dispersion,
+        bend: Bend,
+        wide: WideAngle,
+        second: Option<Arc<Second>>,
+    ) -> Curve {
+        let gate = if wide.by_angle {
+            let w = Complex64::new(-dispersion.gate(), FRAC_PI_2 - 0.35);
+            Gate { by: wide.variable(w.sinh()), wide: Some(wide) }
+        } else {
+            dispersion.way_round()
+        };
+        Curve { dispersion, bend, wide, gate, table: Table::new(gate, 1e-12, ACCURACY), second }
+    }
+
+    /// The same with `w` as the variable of integration.
+    pub(super) fn by_w(&self) -> Curve {
+        Curve::with(self.dispersion, self.bend.clone(), self.wide.by_w(), self.second.clone())
     }
 
     /// Whether the profile is not straight.
@@ -90,34 +114,22 @@ impl Curve {
 
     /// `dJ/dz`.
     pub(super) fn rate(&self, z: Complex64) -> Complex64 {
-        let Spot { p, kappa, w, cosine, .. } = self.wide.spot(z);
+        let Spot { p, w, cosine, measure, .. } = self.wide.spot(z);
         let u = self.dispersion.cutoff - self.dispersion.width(w);
         let g = self.excess(u).0;
-        if self.wide.is_on() {
-            // (2/delta) sin(theta) (u + G) - 2 p (dp/d theta) u
-            return p * 2.0 / self.wide.root * (u * (1.0 - cosine) + g);
-        }
-        kappa * p * g * 2.0
+        // P' (u + G) - 2 p u, with respect to z.
+        let straight = if self.wide.is_on() { u * (1.0 - cosine) } else { ZERO };
+        p * measure * 2.0 * (straight + g)
     }
 
     /// `J(z)`.
     pub(super) fn phase(&self, z: Complex64) -> Complex64 {
-        let table = self.table.get_or_init(|| Table::new(self.gate(), 1e-12, |z| self.rate(z)));
-        table.value(z, |z| self.rate(z))
+        self.table.value(z, |z| self.rate(z))
     }
 
     /// `J(z)` for a few places: without the table, in some ten microseconds.
     pub(super) fn phase_once(&self, z: Complex64) -> Complex64 {
-        led(self.gate(), z, true, |z| self.rate(z))
-    }
-
-    /// How the places beyond `p = i` are reached.
-    fn gate(&self) -> Gate {
-        if !self.wide.is_on() {
-            return self.dispersion.way_round();
-        }
-        let w = Complex64::new(-self.dispersion.gate(), FRAC_PI_2 - 0.35);
-        Gate { by: self.wide.variable(w.sinh()), wide: Some(self.wide) }
+        led(self.gate, z, Some(ACCURACY), |z| self.rate(z))
     }
 
     /// `p beta`, the whole next order inside, less its logarithm.
@@ -127,7 +139,7 @@ impl Curve {
 
     /// The factor of `p log p` in `p beta`.
     pub(super) fn logarithm(&self) -> Complex64 {
-        self.second.as_ref().map_or(ZERO, Second::logarithm)
+        self.second.as_ref().map_or(ZERO, |s| s.logarithm())
     }
 }
 

@@ -217,16 +217,16 @@ impl Phase for ModePhase {
 
     fn jet(&self, z: Complex64) -> [Complex64; 3] {
         let spot = self.wide().spot(z);
-        let Spot { p, kappa, w, cosine, .. } = spot;
+        let Spot { p, kappa, w, .. } = spot;
         let Dispersion { cutoff, m } = self.dispersion;
-        let second = if let Some((curve, wide)) = self.on_wide_angle() {
-            // d(2 p/root (T - r) + d cos(theta)/root)/d theta
+        let second = if let Some(curve) = self.on_wide_angle() {
+            // d(P' (T - r) + d)/dz, P' = 2 p measure
             let width = self.dispersion.width(w);
             let (g, slope) = curve.excess(cutoff - width);
-            let turning = self.dispersion.width_slope(w, width) * cosine / wide.root;
+            let narrowing = self.dispersion.width_slope(w, width) * spot.slope;
             let behind = self.h - width + g - self.lag;
-            (cosine / wide.root * behind - p * (slope + 1.0) * turning) * 2.0 / wide.root
-                - p * self.d
+            spot.turning * behind - p * spot.measure * (slope + 1.0) * narrowing * 2.0
+                + spot.bend * self.d
         } else {
             let excess = self.h * kappa - cutoff + I * self.dispersion.beta(w);
             let mut second = kappa * excess * 2.0
@@ -268,9 +268,8 @@ impl ModePhase {
         self.curve.as_ref().map_or(WideAngle::new(Complex64::new(0.0, 0.0)), |c| c.wide())
     }
 
-    pub(super) fn on_wide_angle(&self) -> Option<(&Curve, WideAngle)> {
-        let curve = self.curve.as_deref()?;
-        curve.wide().is_on().then(|| (curve, curve.wide()))
+    pub(super) fn on_wide_angle(&self) -> Option<&Curve> {
+        self.curve.as_deref().filter(|curve| curve.wide().is_on())
     }
 
     /// Whether the bend of the profile counts for nearly as much as the straight one.
@@ -299,12 +298,12 @@ impl ModePhase {
 
     /// `df/dz` without the turn.
     fn slope(&self, z: Complex64, spot: &Spot) -> Complex64 {
-        let Spot { p, kappa, w, cosine, .. } = *spot;
+        let Spot { p, kappa, w, .. } = *spot;
         // kappa (h - h_n), without its cancellation.
         let above = self.h * kappa - self.dispersion.cutoff + I * self.dispersion.beta(w);
-        if let Some((curve, wide)) = self.on_wide_angle() {
+        if let Some(curve) = self.on_wide_angle() {
             let g = curve.excess(self.dispersion.cutoff - self.dispersion.width(w)).0;
-            return (p * 2.0 * (above / kappa + g - self.lag) + cosine * self.d) / wide.root;
+            return p * 2.0 * spot.measure * (above / kappa + g - self.lag) + spot.slope * self.d;
         }
         let bend = match &self.curve {
             Some(curve) => curve.rate(z) - p * kappa * self.lag * 2.0,
@@ -371,7 +370,7 @@ pub(super) enum Side {
 impl Amplitude for ModeAmplitude {
     fn value(&self, z: Complex64) -> Complex64 {
         let off = WideAngle::new(Complex64::new(0.0, 0.0));
-        let Spot { p, kappa, w, cosine, measure } =
+        let Spot { p, kappa, w, cosine, measure, .. } =
             self.curve.as_ref().map_or(off, |c| c.wide()).spot(z);
         let m = self.dispersion.m;
         let d = self.dispersion.density(p);

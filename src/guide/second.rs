@@ -161,8 +161,7 @@ impl Second {
             }
         };
         let near = 0.5 * circle;
-        let smooth = |w: Complex64| smooth_rate(dispersion, bend, &rate, near, w);
-        let table = Table::new(dispersion.way_round(), 1e-11, smooth);
+        let table = Table::new(dispersion.way_round(), 1e-11, 1e-8);
         Second { near, rate, local, table }
     }
 

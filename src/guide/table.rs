@@ -4,8 +4,8 @@
 //! the guide cross is cut into squares; on each that the rate allows, `F` is a Taylor series whose coefficients
 //! come from a circle round it (trapezoidal rule, DLMF 3.5(i)). Whether a square is allowed its own circle
 //! tells: coefficients of negative powers vanish where the rate is analytic inside. If they do not, the
-//! square is cut in four, down to a quarter, near the saddles to an eighth, along the bound mode's line to a
-//! sixteenth. What is left, and all outside, is led by Gauss-Legendre
+//! square is cut in four, and so on. Squares are made when they are first asked for. What is left beside singularities and
+//! cuts, and all outside, is led by Gauss-Legendre
 //! panels (DLMF 3.5(v)) from 0 to the point, round the pole of the width at `i pi/2` on the side of the
 //! contour; panels are halved until they agree.
 //!
@@ -14,6 +14,7 @@
 use super::wide::WideAngle;
 use crate::Complex64;
 use std::f64::consts::{FRAC_PI_2, TAU};
+use std::sync::OnceLock;
 
 /// Side of the largest squares, lower left corner, columns and rows.
 const SIDE: f64 = 0.4;
@@ -25,8 +26,8 @@ const TERMS: usize = 36;
 const CIRCLE: usize = 64;
 /// Radius of the circle over half the side of the square.
 const ROUND: f64 = 1.8;
-/// Squares nearer to 0 than this may be cut down to an eighth, others to a quarter.
-const NEAR: f64 = 0.6;
+/// How often a square may be cut in four.
+const DEPTH: u32 = 6;
 
 /// Nodes and weights of the 6-point Gauss-Legendre rule on (-1, 1), positive half (DLMF 3.5(v)).
 const GAUSS: [(f64, f64); 3] = [
@@ -53,8 +54,10 @@ impl Gate {
 /// The primitive of a rate that the caller keeps.
 #[derive(Clone, PartialEq)]
 pub(super) struct Table {
-    squares: Vec<Square>,
+    squares: Vec<OnceLock<Square>>,
     gate: Gate,
+    noise: f64,
+    accuracy: f64,
 }
 
 #[derive(Clone, PartialEq)]
@@ -62,67 +65,45 @@ enum Square {
     /// Coefficients in powers of `(w - centre)/half`.
     Series(Vec<Complex64>),
     /// Lower left, lower right, upper left, upper right.
-    Cut(Box<[Square; 4]>),
+    Cut(Box<[OnceLock<Square>; 4]>),
     None,
 }
 
 impl Table {
-    /// `noise` is the relative rounding of the rate.
-    pub(super) fn new(
-        gate: Gate,
-        noise: f64,
-        rate: impl Fn(Complex64) -> Complex64 + Copy,
-    ) -> Table {
-        let turns: Vec<Complex64> = (0..CIRCLE)
-            .map(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64))
-            .collect();
-        let build = Build { noise, turns, rate };
-        let half = 0.5 * SIDE;
-        let centre = |i: usize| {
-            let (column, row) = (i % COLUMNS, i / COLUMNS);
-            CORNER + Complex64::new(column as f64 + 0.5, row as f64 + 0.5) * SIDE
-        };
-        // From 0 outwards: each is led to from those that are there.
-        let mut order: Vec<usize> = (0..ROWS * COLUMNS).collect();
-        order.sort_by(|&i, &j| centre(i).norm().total_cmp(&centre(j).norm()));
-        let squares = (0..ROWS * COLUMNS).map(|_| Square::None).collect();
-        let mut table = Table { squares, gate };
-        for i in order {
-            let centre = centre(i);
-            // Cuts of a profile's range reach the contour on the line of the bound mode.
-            let bound = centre.re.abs() < SIDE && centre.im > 0.0;
-            let gate = (centre - table.gate.by).norm() < 2.0 * SIDE;
-            let depth = if bound {
-                4
-            } else if gate || centre.norm() < NEAR {
-                3
-            } else {
-                2
-            };
-            table.squares[i] = build.square(&table, centre, half, depth);
-        }
-        table
+    /// `noise` is the relative rounding of the rate, `accuracy` what is asked of the panels.
+    pub(super) fn new(gate: Gate, noise: f64, accuracy: f64) -> Table {
+        let squares = (0..ROWS * COLUMNS).map(|_| OnceLock::new()).collect();
+        Table { squares, gate, noise, accuracy }
     }
 
-    /// The primitive; `rate` must be that of the table.
+    /// The primitive; `rate` must be the same at every call.
     pub(super) fn value(
         &self,
         w: Complex64,
         rate: impl Fn(Complex64) -> Complex64 + Copy,
     ) -> Complex64 {
-        if let Some(value) = self.tabulated(w) {
-            return value;
-        }
-        let fine = inside(w);
-        // On the way to it from where it is led from, the last place that is tabulated.
+        self.tabulated(w, rate).unwrap_or_else(|| self.reached(w, None, rate))
+    }
+
+    /// The primitive where it is not tabulated, from the last place that is on the way from where it is led from,
+    /// other than in one square.
+    fn reached(
+        &self,
+        w: Complex64,
+        other_than: Option<usize>,
+        rate: impl Fn(Complex64) -> Complex64 + Copy,
+    ) -> Complex64 {
+        // Beyond the squares the field is nothing, and a few digits are enough.
+        let fine = index(w).map(|_| self.accuracy);
         let high = self.gate.leads_to(w);
         let from = if high { self.gate.by } else { Complex64::new(0.0, 0.0) };
         let length = (w - from).norm();
         let mut back = 0.01;
         while back < length {
             let place = w + (from - w) * (back / length);
-            if self.gate.leads_to(place) == high
-                && let Some(value) = self.tabulated(place)
+            if index(place).is_none_or(|i| Some(i) != other_than && nearer(i, other_than))
+                && self.gate.leads_to(place) == high
+                && let Some(value) = self.tabulated(place, rate)
             {
                 return value + along(place, w, fine, rate);
             }
@@ -131,69 +112,88 @@ impl Table {
         led(self.gate, w, fine, rate)
     }
 
-    fn tabulated(&self, w: Complex64) -> Option<Complex64> {
-        if !inside(w) {
-            return None;
-        }
-        let place = (w - CORNER) / SIDE;
-        let (column, row) = (place.re as usize, place.im as usize);
-        let mut square = &self.squares[row * COLUMNS + column];
-        // From the square's centre, over half its side.
-        let mut offset = Complex64::new(place.re.fract() - 0.5, place.im.fract() - 0.5) * 2.0;
-        loop {
+    fn tabulated(
+        &self,
+        w: Complex64,
+        rate: impl Fn(Complex64) -> Complex64 + Copy,
+    ) -> Option<Complex64> {
+        let i = index(w)?;
+        let build = Build { table: self, i, rate };
+        let (mut middle, mut half) = (centre(i), 0.5 * SIDE);
+        let mut square = self.squares.get(i)?.get_or_init(|| build.square(middle, half, 0));
+        for depth in 1.. {
+            // From the square's centre, over half its side.
+            let offset = (w - middle) / half;
             match square {
-                Square::None => return None,
+                Square::None => break,
                 Square::Series(series) => {
                     let start = Complex64::new(0.0, 0.0);
                     return Some(series.iter().rev().fold(start, |sum, c| sum * offset + c));
                 }
                 Square::Cut(quarters) => {
                     let (right, up) = (offset.re >= 0.0, offset.im >= 0.0);
-                    square = &quarters[usize::from(right) + 2 * usize::from(up)];
-                    let side = |high: bool| if high { -1.0 } else { 1.0 };
-                    offset = offset * 2.0 + Complex64::new(side(right), side(up));
+                    half *= 0.5;
+                    let side = |high: bool| if high { half } else { -half };
+                    middle += Complex64::new(side(right), side(up));
+                    let quarter = &quarters[usize::from(right) + 2 * usize::from(up)];
+                    square = quarter.get_or_init(|| build.square(middle, half, depth));
                 }
             }
         }
+        None
     }
 }
 
-struct Build<F> {
-    noise: f64,
-    turns: Vec<Complex64>,
+/// The square in which a place lies, if it is in one.
+fn index(w: Complex64) -> Option<usize> {
+    let place = (w - CORNER) / SIDE;
+    let within = |x: f64, count: usize| (0.0..count as f64).contains(&x);
+    let there = within(place.re, COLUMNS) && within(place.im, ROWS);
+    there.then(|| place.im as usize * COLUMNS + place.re as usize)
+}
+
+fn centre(i: usize) -> Complex64 {
+    CORNER + Complex64::new((i % COLUMNS) as f64 + 0.5, (i / COLUMNS) as f64 + 0.5) * SIDE
+}
+
+/// Whether a square may be asked for while another is made: if its centre is nearer to 0, so that none waits for itself.
+fn nearer(i: usize, other: Option<usize>) -> bool {
+    other.is_none_or(|other| (centre(i).norm(), i) < (centre(other).norm(), other))
+}
+
+struct Build<'a, F> {
+    table: &'a Table,
+    /// The square.
+    i: usize,
     rate: F,
 }
 
-impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
-    fn square(&self, table: &Table, centre: Complex64, half: f64, depth: u32) -> Square {
-        if let Some(series) = self.series(table, centre, half) {
-            return Square::Series(series);
+impl<F: Fn(Complex64) -> Complex64 + Copy> Build<'_, F> {
+    fn square(&self, centre: Complex64, half: f64, depth: u32) -> Square {
+        match self.series(centre, half) {
+            Some(series) => Square::Series(series),
+            None if depth < DEPTH => {
+                Square::Cut(Box::new(std::array::from_fn(|_| OnceLock::new())))
+            }
+            None => Square::None,
         }
-        if depth == 0 {
-            return Square::None;
-        }
-        let quarter = 0.5 * half;
-        Square::Cut(Box::new([(-1.0, -1.0), (1.0, -1.0), (-1.0, 1.0), (1.0, 1.0)].map(
-            |(right, up)| {
-                let centre = centre + Complex64::new(right, up) * quarter;
-                self.square(table, centre, quarter, depth - 1)
-            },
-        )))
     }
 
-    fn series(&self, table: &Table, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
-        let values: Vec<Complex64> =
-            self.turns.iter().map(|t| (self.rate)(centre + t * (ROUND * half))).collect();
+    fn series(&self, centre: Complex64, half: f64) -> Option<Vec<Complex64>> {
+        let turns: [Complex64; CIRCLE] =
+            std::array::from_fn(|j| Complex64::from_polar(1.0, TAU * j as f64 / CIRCLE as f64));
+        let values = turns.map(|t| (self.rate)(centre + t * (ROUND * half)));
         let coefficient = |n: usize| -> Complex64 {
-            values.iter().enumerate().map(|(j, v)| v * self.turns[j * n % CIRCLE].conj()).sum()
+            values.iter().enumerate().map(|(j, v)| v * turns[j * n % CIRCLE].conj()).sum()
         };
         let size = values.iter().map(|v| v.norm()).sum::<f64>();
         // Powers -1 to -12: of a function that is analytic inside there are none.
-        let analytic = (CIRCLE - 12..CIRCLE).all(|n| coefficient(n).norm() <= self.noise * size);
+        let analytic =
+            (CIRCLE - 12..CIRCLE).all(|n| coefficient(n).norm() <= self.table.noise * size);
         if !analytic || !size.is_finite() {
             return None;
         }
-        let mut series = vec![table.value(centre, self.rate)];
+        let mut series = vec![self.table.reached(centre, Some(self.i), self.rate)];
         let mut scale = half / CIRCLE as f64;
         for n in 0..TERMS {
             series.push(coefficient(n) * (scale / (n + 1) as f64));
@@ -203,18 +203,11 @@ impl<F: Fn(Complex64) -> Complex64 + Copy> Build<F> {
     }
 }
 
-/// Whether a place lies where squares are.
-fn inside(w: Complex64) -> bool {
-    let place = (w - CORNER) / SIDE;
-    let within = |x: f64, count: usize| (0.0..count as f64).contains(&x);
-    within(place.re, COLUMNS) && within(place.im, ROWS)
-}
-
 /// The primitive from panels.
 pub(super) fn led(
     gate: Gate,
     w: Complex64,
-    fine: bool,
+    fine: Option<f64>,
     rate: impl Fn(Complex64) -> Complex64 + Copy,
 ) -> Complex64 {
     let zero = Complex64::new(0.0, 0.0);
@@ -225,16 +218,16 @@ pub(super) fn led(
     }
 }
 
-/// The integral of `rate` along a straight line, by panels that are halved until they agree; if not `fine`, by
-/// panels as they come: beyond the squares the field is nothing, and a few digits are enough.
+/// The integral of `rate` along a straight line, by panels that are halved until they agree to `fine`, if that is asked
+/// for; beside a singularity, which is touched by nothing that counts, a bounded number of times.
 fn along(
     from: Complex64,
     to: Complex64,
-    fine: bool,
+    fine: Option<f64>,
     rate: impl Fn(Complex64) -> Complex64 + Copy,
 ) -> Complex64 {
-    // Beside a singularity, which is touched by nothing that counts.
     const SHORTEST: f64 = 0.01;
+    const HALVINGS: u32 = 12;
     const LONGEST: f64 = 0.32;
     let length = (to - from).norm();
     if length == 0.0 || !length.is_finite() {
@@ -255,24 +248,29 @@ fn along(
     let mut sum = Complex64::new(0.0, 0.0);
     let mut done = 0.0;
     // A bounded number however far `to` is.
-    let mut step = if fine { LONGEST } else { (0.125 * length).max(0.5 * LONGEST) };
+    let mut halvings = 0;
+    let mut step = if fine.is_some() { LONGEST } else { (0.125 * length).max(0.5 * LONGEST) };
     while done < length {
         let mut end = length.min(done + step);
         let mut whole = panel([done, end]);
-        while fine && end - done >= SHORTEST {
+        while let Some(accuracy) = fine
+            && end - done >= SHORTEST
+            && halvings < HALVINGS
+        {
             let middle = 0.5 * (done + end);
             let halves = [panel([done, middle]), panel([middle, end])];
             let both = halves[0] + halves[1];
             // The halves are nearer to the truth than to the whole by 2^11.
-            let enough = 1e-12 * sum.norm() + 2e-11 * both.norm();
+            let enough = accuracy * (0.05 * sum.norm() + both.norm());
             if (both - whole).norm() <= enough || both.is_nan() {
                 whole = both;
                 break;
             }
             (end, whole) = (middle, halves[0]);
+            halvings += 1;
         }
         sum += whole;
-        if fine {
+        if fine.is_some() {
             step = (2.0 * (end - done)).min(LONGEST);
         }
         done = end;
@@ -290,7 +288,7 @@ mod tests {
         let c = Complex64::new;
         let (pole, low) = (c(0.0, FRAC_PI_2), c(0.0, -0.13));
         let rate = |w: Complex64| (w - low).powi(-2) + 1.0 / (w - pole) + w.cosh();
-        let table = Table::new(Gate { by: c(-0.5, FRAC_PI_2), wide: None }, 1e-13, rate);
+        let table = Table::new(Gate { by: c(-0.5, FRAC_PI_2), wide: None }, 1e-13, 2e-11);
         // The logarithm has its cut to the right of the pole.
         let primitive = |w: Complex64| {
             let log = (pole - w).ln();
@@ -300,7 +298,7 @@ mod tests {
         {
             let error = table.value(w, rate) - (primitive(w) - primitive(c(0.0, 0.0)));
             assert!(error.norm() < 1e-11, "{w}: {error:e}");
-            let tabulated = table.tabulated(w).is_some();
+            let tabulated = table.tabulated(w, rate).is_some();
             assert_eq!(tabulated, w.re < 2.0, "{w}");
         }
     }

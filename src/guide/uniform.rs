@@ -83,7 +83,8 @@ pub struct SlopingGuide {
     order: Order,
     pub(super) tolerance: f64,
     pub(super) curve: Option<Arc<Curve>>,
-    /// That of a straight guide in the wide-angle form.
+    /// In the wide-angle form: the same by `w`, where it is bent, and that of a straight guide.
+    early: Option<Arc<Curve>>,
     flat: Option<Arc<Curve>>,
 }
 
@@ -126,8 +127,17 @@ impl SlopingGuide {
         }
         let dispersion = Dispersion::new(mode, density_ratio);
         let order = Order::Next;
-        let (curve, flat) = (None, None);
-        Ok(SlopingGuide { dispersion, mode, even: false, eps, order, tolerance: 1e-3, curve, flat })
+        Ok(SlopingGuide {
+            dispersion,
+            mode,
+            even: false,
+            eps,
+            order,
+            tolerance: 1e-3,
+            curve: None,
+            early: None,
+            flat: None,
+        })
     }
 
     /// The mode that is even in `x` (`psi_x = 0` in place of `psi = 0` at `x = 0`): the other half of
@@ -151,7 +161,7 @@ impl SlopingGuide {
             return Err(Error::domain("even mode", 1.0, remedy));
         }
         let dispersion = Dispersion::even(self.mode, self.dispersion.m);
-        Ok(SlopingGuide { dispersion, even: true, curve: None, flat: None, ..self })
+        Ok(SlopingGuide { dispersion, even: true, curve: None, early: None, flat: None, ..self })
     }
 
     /// With a curved profile: at the range `r` from cut-off the width is `h_c - r + c_2 r^2 + c_3 r^3 + ..`,
@@ -221,17 +231,15 @@ impl SlopingGuide {
 
     fn shaped(self, higher: &[Complex64], wide: WideAngle) -> Self {
         if higher.is_empty() && !wide.is_on() {
-            return SlopingGuide { curve: None, flat: None, ..self };
+            return SlopingGuide { curve: None, early: None, flat: None, ..self };
         }
         let curve = Arc::new(Curve::new(self.dispersion, higher, wide));
-        let flat = wide.is_on().then(|| {
-            if curve.bent() {
-                Arc::new(Curve::new(self.dispersion, &[], wide))
-            } else {
-                curve.clone()
-            }
+        let early = (wide.is_on() && curve.bent()).then(|| Arc::new(curve.by_w()));
+        let flat = wide.is_on().then(|| match curve.bent() {
+            true => Arc::new(Curve::new(self.dispersion, &[], wide)),
+            false => curve.clone(),
         });
-        SlopingGuide { curve: Some(curve), flat, ..self }
+        SlopingGuide { curve: Some(curve), early, flat, ..self }
     }
 
     /// The wide-angle form, with `delta = 0` for none.
@@ -243,7 +251,7 @@ impl SlopingGuide {
     /// The same mode of a straight guide.
     pub(super) fn straight(&self, eps: Complex64) -> Result<Self, Error> {
         let guide = SlopingGuide::new(self.mode, self.dispersion.m, eps)?;
-        Ok(SlopingGuide { curve: self.flat.clone(), eps: guide.eps, ..self.clone() })
+        Ok(SlopingGuide { curve: self.flat.clone(), early: None, eps: guide.eps, ..self.clone() })
     }
 
     /// With the amplitude to the given order in `eps` (without a call: [`Order::Next`]).
@@ -385,7 +393,9 @@ impl SlopingGuide {
         let (eps, part) = self.next_order();
         let dispersion = self.dispersion;
         let lag = r - (dispersion.cutoff - h);
-        let (curve, turn) = (self.curve.clone(), self.eps.inv() * self.eps.norm());
+        let before = if h.re > self.dispersion.cutoff { self.early.as_ref() } else { None };
+        let (curve, turn) =
+            (before.or(self.curve.as_ref()).cloned(), self.eps.inv() * self.eps.norm());
         let amplitude = ModeAmplitude { dispersion, h, eps, side, part, curve: curve.clone() };
         let phase = ModePhase { dispersion, h, d: self.eps * distance, turn, curve, lag };
         let wavenumber = self.eps.norm().recip();

@@ -17,7 +17,8 @@
 //! `|psi|^2`, is kept. The term with `delta/12` is the sloping bed's own angle against its tangent: `eps^2 delta/12` is a third of
 //! the slope squared.
 //!
-//! The variable of integration is `theta`: in `p` the wave straight across the guide, `theta = pi/2`, is a branch point, to
+//! The variable of integration is `theta` (before cut-off on a curved profile `w`, which leaves more room about `p = i`): in `p`
+//! the wave straight across the guide, `theta = pi/2`, is a branch point, to
 //! whose other side (waves that run back) the steepest descents lead on. `kappa` and `w = arsinh p` have one at `p = i`, which
 //! the contour passes on the left, to beyond `Im w = pi/2`; the cut leads from there to the right and upwards.
 //!
@@ -39,11 +40,18 @@ const HALF_ROOT_3: f64 = 0.866_025_403_784_438_6;
 pub(super) struct WideAngle {
     pub(super) delta: Complex64,
     pub(super) root: Complex64,
+    /// Whether the variable of integration is the angle, else `w`.
+    pub(super) by_angle: bool,
 }
 
 impl WideAngle {
     pub(super) fn new(delta: Complex64) -> WideAngle {
-        WideAngle { delta, root: delta.sqrt() }
+        WideAngle { delta, root: delta.sqrt(), by_angle: delta.norm() > 0.0 }
+    }
+
+    /// The same with `w` as the variable.
+    pub(super) fn by_w(self) -> WideAngle {
+        WideAngle { by_angle: false, ..self }
     }
 
     /// Whether it is not the one-way equation.
@@ -51,9 +59,9 @@ impl WideAngle {
         self.delta.norm() > 0.0
     }
 
-    /// `theta` of a wave that runs forth, `w` in the one-way equation.
+    /// `theta` or `w` of a wave that runs forth.
     pub(super) fn variable(self, p: Complex64) -> Complex64 {
-        if self.is_on() { (self.root * p).asin() } else { arsinh(p, kappa(p)) }
+        if self.by_angle { (self.root * p).asin() } else { arsinh(p, kappa(p)) }
     }
 
     /// The cosine of the angle of a wave that runs forth.
@@ -81,14 +89,29 @@ impl WideAngle {
 
     /// The parameters at the variable of integration, `theta` or `w`.
     pub(super) fn spot(self, z: Complex64) -> Spot {
-        if self.is_on() {
-            let p = z.sin() / self.root;
+        if self.by_angle {
+            let (p, cosine) = (z.sin() / self.root, z.cos());
             let kappa = kappa(p);
-            Spot { p, kappa, w: arsinh(p, kappa), cosine: z.cos(), measure: self.root.inv() }
-        } else {
-            let kappa = z.cosh();
-            Spot { p: z.sinh(), kappa, w: z, cosine: Complex64::new(1.0, 0.0), measure: kappa }
+            let (slope, measure) = (cosine / self.root, self.root.inv());
+            let turning = slope * measure * 2.0;
+            return Spot {
+                p,
+                kappa,
+                w: arsinh(p, kappa),
+                cosine,
+                slope,
+                bend: -p,
+                measure,
+                turning,
+            };
         }
+        let (p, kappa) = (z.sinh(), z.cosh());
+        let cosine = if self.is_on() { self.cosine(p) } else { Complex64::new(1.0, 0.0) };
+        let measure = kappa / cosine;
+        let turning = (p * p / kappa + kappa + self.delta * p * p * kappa / (cosine * cosine))
+            * measure
+            * 2.0;
+        Spot { p, kappa, w: z, cosine, slope: kappa, bend: p, measure, turning }
     }
 }
 
@@ -100,8 +123,13 @@ pub(super) struct Spot {
     pub(super) w: Complex64,
     /// Of the angle; 1 in the one-way equation.
     pub(super) cosine: Complex64,
-    /// `dp` over the cosine and the variable's differential.
+    /// `dp/dz` and `d^2p/dz^2` by the variable of integration `z`.
+    pub(super) slope: Complex64,
+    pub(super) bend: Complex64,
+    /// `dp/dz` over the cosine.
     pub(super) measure: Complex64,
+    /// `d(2 p measure)/dz`, that is `d^2P/dz^2`.
+    pub(super) turning: Complex64,
 }
 
 /// `(1 + p^2)^(1/2)`, with the cut of the branch point `p = i` to the right, 30 degrees upwards.
