@@ -73,7 +73,7 @@ pub struct Arguments {
     #[arg(long, value_name = "SVG", default_value = "out/shelf_cutoff.svg")]
     output: PathBuf,
     /// Columns of the picture
-    #[arg(long, default_value_t = 150, value_parser = clap::value_parser!(u16).range(10..=2000))]
+    #[arg(long, default_value_t = 100, value_parser = clap::value_parser!(u16).range(10..=2000))]
     columns: u16,
     /// Rows of the picture
     #[arg(long, default_value_t = 100, value_parser = clap::value_parser!(u16).range(10..=2000))]

@@ -10,12 +10,13 @@ pub fn centres(from: f64, to: f64, count: u16) -> Vec<f64> {
     (0..count).map(|j| from + step * (f64::from(j) + 0.5)).collect()
 }
 
-/// The level of a cell in dB; NaN where there is no value. Where the adiabatic mode is well below the floor, the floor:
-/// outside, that falls more slowly than the field itself, whose integral is dear so far out.
+/// The level of a cell in dB; NaN where there is no value. Where the adiabatic mode has fallen well below the floor on its
+/// way out from the boundary, the floor: the field itself, whose integral is dear so far out, falls faster.
 pub fn level(passage: &Passage, range: f64, x: f64, floor_db: f64) -> f64 {
-    let outside = x > passage.profile().width(range);
-    match passage.adiabatic(range, x) {
-        Ok(mode) if outside && level_db(mode) < floor_db - 10.0 => floor_db,
+    let boundary = passage.profile().width(range);
+    let modes = (passage.adiabatic(range, x), passage.adiabatic(range, boundary));
+    match modes {
+        (Ok(there), Ok(here)) if level_db(there / here) < floor_db - 10.0 => floor_db,
         _ => passage.value(range, x).map_or(f64::NAN, level_db),
     }
 }

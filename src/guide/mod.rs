@@ -65,7 +65,24 @@
 //!
 //! # How good the formulas are
 //!
-//! Everything below is measured against solutions of the one-way equation by finite elements
+//! Sound and light have the wide-angle form ([`SlopingGuide::wide_angle`]). Against finite elements for Helmholtz's equation over
+//! a bed that is flat at first and then straight (`tests/guide_helmholtz.rs`; the tables are good to 1e-8, the
+//! reflected energy is below 1e-9), errors `inside / outside` as below, one complex constant taken out at `t = -1` whose modulus
+//! is 0.990 to 0.999; outside up to 12 layer lengths; `delta` is `(q/k)^2`, 0.28 for 1500 over 1700 m/s, 1.25 for glass in air:
+//!
+//! | mode | m | delta | eps | t = -1 | t = 0 | t = 2 | t = 3 | one-way equation, t = 2 | t = 3 |
+//! | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- |
+//! | 1 | 1 | 0.28 | 0.05 | 8.9e-4 / 1.6e-3 | 8.1e-4 / 1.1e-3 | 9.2e-3 / 1.9e-3 | 3.5e-2 / 3.0e-3 | 1.2e-2 / 2.4e-2 | 4.0e-2 / 3.4e-2 |
+//! | 1 | 0.67 | 0.28 | 0.19 | 1.0e-2 / 3.3e-2 | 9.4e-3 / 1.9e-2 | 2.3e-2 / 1.5e-2 | 7.2e-2 / 1.7e-2 | 5.1e-2 / 7.9e-2 | 8.3e-2 / 1.3e-1 |
+//! | 1 | 0.56 | 0.21 | 0.1 | 3.1e-3 / 8.7e-3 | 3.0e-3 / 5.3e-3 | 6.3e-3 / 4.2e-3 | 2.1e-2 / 4.8e-3 | 2.7e-2 / 3.8e-2 | 2.8e-2 / 6.3e-2 |
+//! | 2 | 0.67 | 0.28 | 0.1 | 1.0e-2 / 2.3e-2 | 9.8e-3 / 1.6e-2 | 1.1e-2 / 1.2e-2 | 2.5e-2 / 1.4e-2 | 2.8e-2 / 2.9e-2 | 5.4e-2 / 4.9e-2 |
+//! | 1 | 1 | 1.25 | 0.05 | 1.0e-3 / 1.8e-3 | 8.6e-4 / 1.2e-3 | 9.2e-3 / 1.9e-3 | 3.5e-2 / 2.9e-3 | 2.2e-2 / 1.1e-1 | 5.5e-2 / 1.6e-1 |
+//! | 1 | 1 | 1.25 | 0.1 | 2.5e-3 / 9.5e-3 | 1.8e-3 / 5.5e-3 | 2.2e-2 / 5.8e-3 | 8.6e-2 / 8.5e-3 | 3.9e-2 / 1.8e-1 | 1.1e-1 / 2.5e-1 |
+//!
+//! The beams of these six cases leave at 8.3 to 21 degrees; [`Passage::beam`] says so to 0.1 to 0.5 degrees, and the energy per
+//! angle is right to half of `eps` of its maximum, best at large angles.
+//!
+//! Everything below is measured against solutions of the one-way equation ([`Passage::paraxial`]) by finite elements
 //! (`tests/support/tapered.rs`), which are good to 3e-5 inside and 5e-6 outside where this was tried (`m` 0.55 and
 //! 1.5, modes 1 and 3, both bends). Unless said otherwise:
 //!

@@ -528,11 +528,11 @@ impl UniformField {
     /// The field by uniform expansions at the merging saddles.
     ///
     /// The error figure is that of the integral (and of what is neglected at the Brewster
-    /// parameter), not of the formula in `eps`. Cost: a plan, some 4 ms; on a curved profile some 0.1 to 0.5 s, since
-    /// the phase has no closed form where the search for saddles goes.
+    /// parameter), not of the formula in `eps`. Cost: a plan, some 4 ms on a straight profile by the one-way equation;
+    /// otherwise 0.1 to 0.5 s, since the phase has no closed form where the search for saddles goes.
     ///
     /// Errors: as [`Integral::plan`] and [`crate::Plan::at`]. Refused often for `m > 1`, where the
-    /// descent from the saddles runs into the Brewster point, and on curved profiles late after cut-off: use [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i
+    /// descent from the saddles runs into the Brewster point: use [`quadrature`](Self::quadrature) then. Higher modes have a third saddle near (at `w = -2 i
     /// m/((n - 1/2) pi)` at cut-off); the three are treated together.
     pub fn evaluate(&self) -> Result<Estimate, Error> {
         let k = self.wavenumber;
