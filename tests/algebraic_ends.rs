@@ -1,6 +1,8 @@
 //! Algebraic end points: (z - z_0)^(lambda - 1) at a finite end of the contour.
 
 mod coverage;
+#[path = "support/mixing.rs"]
+mod mixing;
 
 use coverage::{Random, Tally, amplitude, valley};
 use merging_saddles::integral::Polynomial;

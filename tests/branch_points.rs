@@ -1,6 +1,8 @@
 //! Square-root branch points, removed by z = z_b + w^2.
 
 mod coverage;
+#[path = "support/mixing.rs"]
+mod mixing;
 
 use coverage::{Random, Tally, amplitude, valley};
 use merging_saddles::integral::Jet;

@@ -1,6 +1,8 @@
 //! Closed contours and contours of several pieces.
 
 mod coverage;
+#[path = "support/mixing.rs"]
+mod mixing;
 
 use coverage::{Random, Tally, amplitude};
 use merging_saddles::integral::Polynomial;

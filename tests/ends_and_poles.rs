@@ -1,6 +1,8 @@
 //! A finite end point, a pole and one or two saddles together.
 
 mod coverage;
+#[path = "support/mixing.rs"]
+mod mixing;
 
 use coverage::{Random, Tally, amplitude, valley};
 use merging_saddles::integral::Polynomial;

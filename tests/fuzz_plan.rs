@@ -5,6 +5,8 @@
 // `!(a <= b)` is meant: NaN must fail; the lists of closures are read once.
 #![allow(clippy::neg_cmp_op_on_partial_ord, clippy::type_complexity)]
 
+#[path = "support/mixing.rs"]
+mod mixing;
 #[path = "support/random.rs"]
 #[allow(dead_code)]
 mod random;

@@ -4,6 +4,8 @@
 //! The integrals are those of `random_integrals`; the phase's derivatives are polynomials and sinh, half of
 //! the amplitudes vary too, with simple and double poles where the amplitude has some.
 
+#[path = "support/mixing.rs"]
+mod mixing;
 #[path = "support/random.rs"]
 #[allow(dead_code)]
 mod random;

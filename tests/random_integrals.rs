@@ -14,6 +14,8 @@
 
 #[path = "support/exact.rs"]
 mod exact;
+#[path = "support/mixing.rs"]
+mod mixing;
 #[path = "support/random.rs"]
 #[allow(dead_code)]
 mod random;

@@ -2,11 +2,8 @@
 
 #![allow(dead_code)] // Each test uses its part.
 
-#[path = "../support/mixing.rs"]
-mod mixing;
-
+pub use super::mixing::Random;
 use merging_saddles::{Complex64, Error, Estimate};
-pub use mixing::Random;
 use std::f64::consts::PI;
 
 /// Answers against the yardstick: how often the error figure covers the error, and how sharply.
