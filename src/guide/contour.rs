@@ -11,7 +11,6 @@
 use super::curve::Curve;
 use super::dispersion::ModePhase;
 use super::uniform::SlopingGuide;
-use super::wide::WideAngle;
 use crate::integral::Phase;
 use crate::{Complex64, Contour, Error};
 use std::f64::consts::{FRAC_PI_2, PI};
@@ -42,7 +41,7 @@ impl SlopingGuide {
         // Inside and at the boundary; farther out the exponential of the distance turns only.
         let inside = ModePhase { d: Complex64::new(0.0, 0.0), ..phase.clone() };
         let brewster = if m > 1.0 { m.recip().atanh() } else { f64::INFINITY };
-        let wide = curve.map_or(WideAngle::new(Complex64::new(0.0, 0.0)), Curve::wide);
+        let wide = curve.map(Curve::wide).unwrap_or_default();
         let zero = Complex64::new(0.0, 0.0);
         // Small beside the mode too where losses make it small so far before its cut-off.
         let omega = self.bound_angle(phase.h.re);

@@ -265,7 +265,7 @@ impl Phase for ModePhase {
 impl ModePhase {
     /// The wide-angle form, perhaps that of the one-way equation.
     fn wide(&self) -> WideAngle {
-        self.curve.as_ref().map_or(WideAngle::new(Complex64::new(0.0, 0.0)), |c| c.wide())
+        self.curve.as_ref().map(|c| c.wide()).unwrap_or_default()
     }
 
     pub(super) fn on_wide_angle(&self) -> Option<&Curve> {
@@ -289,9 +289,7 @@ impl ModePhase {
         let mut value = self.dispersion.action(w, self.h) + p * self.d;
         if let Some(curve) = &self.curve {
             value += curve.phase(z) - p * p * self.lag;
-            if curve.wide().is_on() {
-                value -= curve.wide().excess_at(cosine) * self.range();
-            }
+            value -= curve.wide().excess_at(cosine) * self.range();
         }
         value
     }
@@ -369,9 +367,8 @@ pub(super) enum Side {
 
 impl Amplitude for ModeAmplitude {
     fn value(&self, z: Complex64) -> Complex64 {
-        let off = WideAngle::new(Complex64::new(0.0, 0.0));
-        let Spot { p, kappa, w, cosine, measure, .. } =
-            self.curve.as_ref().map_or(off, |c| c.wide()).spot(z);
+        let wide = self.curve.as_ref().map(|c| c.wide()).unwrap_or_default();
+        let Spot { p, kappa, w, cosine, measure, .. } = wide.spot(z);
         let m = self.dispersion.m;
         let d = self.dispersion.density(p);
         let (within, bent) = (self.inside(), self.curve.as_ref().filter(|c| c.bent()));

@@ -244,8 +244,7 @@ impl SlopingGuide {
 
     /// The wide-angle form, with `delta = 0` for none.
     pub(super) fn wide(&self) -> WideAngle {
-        let off = WideAngle::new(Complex64::new(0.0, 0.0));
-        self.curve.as_ref().map_or(off, |curve| curve.wide())
+        self.curve.as_ref().map(|curve| curve.wide()).unwrap_or_default()
     }
 
     /// The same mode of a straight guide.

@@ -35,8 +35,8 @@ const I: Complex64 = Complex64::new(0.0, 1.0);
 /// Cosine of 30 degrees.
 const HALF_ROOT_3: f64 = 0.866_025_403_784_438_6;
 
-/// `delta` and its root, zero for the one-way equation.
-#[derive(Clone, Copy, Debug, PartialEq)]
+/// `delta` and its root, zero for the one-way equation (the default).
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub(super) struct WideAngle {
     pub(super) delta: Complex64,
     pub(super) root: Complex64,
